@@ -1,0 +1,1 @@
+"""Floor 1: elements, formulas, the catalogue of compounds, units."""

@@ -1,0 +1,1 @@
+"""The elements: atomic weights, and electrons relative to the reference compounds."""

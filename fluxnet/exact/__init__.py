@@ -1,0 +1,1 @@
+"""Floor 1: linear algebra over the rationals."""

@@ -1,0 +1,88 @@
+"""Faults of the input, as values: what is wrong, where, why, and what would mend it."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass, field, replace
+
+from fluxnet.ground.names import Name, Severity
+from fluxnet.ground.source import NOWHERE, Span
+
+__all__ = ["Acceptance", "Diagnostic", "has_errors", "in_order", "silence"]
+
+
+@dataclass(frozen=True, slots=True)
+class Diagnostic:
+    """One finding about the input.
+
+    ``message`` is one sentence in the user's terms that stands alone; ``because``
+    gives the reckoning behind it; ``mend`` states what would repair it; ``source_line``
+    is the user's own line, untouched; ``also`` are second places (a first declaration).
+    ``accepted`` holds the user's reason where the line silences the warning.
+    """
+
+    name: Name
+    message: str
+    span: Span = NOWHERE
+    because: str | None = None
+    mend: str | None = None
+    source_line: str | None = None
+    also: tuple[Span, ...] = field(default=())
+    accepted: str | None = None
+
+    @property
+    def severity(self) -> Severity:
+        """How grave it is: a property of the name, never of the place."""
+        return self.name.severity
+
+
+@dataclass(frozen=True, slots=True)
+class Acceptance:
+    """``accept NAME: REASON`` at the end of a line."""
+
+    name: Name
+    reason: str
+    span: Span
+
+
+def has_errors(diagnostics: Iterable[Diagnostic]) -> bool:
+    """Whether any finding forbids an answer."""
+    return any(d.severity is Severity.ERROR and d.accepted is None for d in diagnostics)
+
+
+def in_order(diagnostics: Iterable[Diagnostic]) -> tuple[Diagnostic, ...]:
+    """Errors first, then warnings, then notes; inside each by place; each once."""
+    unique = dict.fromkeys(diagnostics)
+    return tuple(
+        sorted(unique, key=lambda d: (d.severity.rank, d.span.file, d.span.line, d.span.column))
+    )
+
+
+def silence(
+    diagnostics: Iterable[Diagnostic], acceptances: Iterable[Acceptance]
+) -> tuple[Diagnostic, ...]:
+    """Mark warnings that their own line accepts, and report acceptances that met nothing.
+
+    Errors cannot be accepted away.
+    """
+    waiting = {(a.span.file, a.span.line, a.name): a for a in acceptances}
+    used: set[tuple[str, int, Name]] = set()
+    marked: list[Diagnostic] = []
+    for diagnostic in diagnostics:
+        key = (diagnostic.span.file, diagnostic.span.line, diagnostic.name)
+        if key in waiting and diagnostic.severity is not Severity.ERROR:
+            used.add(key)
+            marked.append(replace(diagnostic, accepted=waiting[key].reason))
+        else:
+            marked.append(diagnostic)
+    for key, acceptance in waiting.items():
+        if key not in used:
+            marked.append(
+                Diagnostic(
+                    Name.ACCEPT_UNUSED,
+                    f"nothing on this line gives the warning {acceptance.name.value}",
+                    acceptance.span,
+                    mend="take the acceptance away",
+                )
+            )
+    return tuple(marked)

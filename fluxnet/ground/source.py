@@ -1,0 +1,38 @@
+"""Where a piece of text stands: files, lines, columns."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+__all__ = ["NOWHERE", "Source", "Span"]
+
+
+@dataclass(frozen=True, slots=True, order=True)
+class Span:
+    """A stretch of one line of one input.
+
+    ``line`` and ``column`` count from 1, in code points; ``end_column`` is one past
+    the last character. In a workbook ``file`` names the sheet as well
+    (``rates.xlsx!Run 7``), ``line`` is the row and ``column`` the column.
+    Line 0 means the file as a whole.
+    """
+
+    file: str
+    line: int
+    column: int = 1
+    end_column: int = 1
+
+
+NOWHERE = Span("", 0, 0, 0)
+
+
+@dataclass(frozen=True, slots=True)
+class Source:
+    """One input text, decoded, with its lines (without line ends)."""
+
+    file: str
+    lines: tuple[str, ...]
+
+    def line(self, number: int) -> str:
+        """Line ``number`` (from 1), or an empty text where there is none."""
+        return self.lines[number - 1] if 1 <= number <= len(self.lines) else ""

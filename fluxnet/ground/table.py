@@ -1,0 +1,61 @@
+"""Tables of results: rows, columns, units. What is shown is decided once, here as data."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from enum import Enum
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    import pandas as pd
+
+__all__ = ["Align", "Cell", "Column", "Table"]
+
+Cell = str | float | int | bool | None
+
+
+class Align(Enum):
+    """Where a column's text stands."""
+
+    LEFT = "left"
+    RIGHT = "right"
+
+
+@dataclass(frozen=True, slots=True)
+class Column:
+    """A column: its title on screen, its key in data, its unit.
+
+    ``sd_of`` names the column whose standard deviation this one holds: on screen the two are
+    shown together, rounded to what the error allows. ``digits`` rounds otherwise.
+    """
+
+    title: str
+    key: str
+    unit: str = ""
+    align: Align = Align.LEFT
+    sd_of: str | None = None
+    digits: int = 4
+
+
+@dataclass(frozen=True, slots=True)
+class Table:
+    """One table of a result; missing values are None, never NaN."""
+
+    key: str
+    title: str
+    columns: tuple[Column, ...]
+    rows: tuple[tuple[Cell, ...], ...]
+    notes: tuple[str, ...] = ()
+
+    def __post_init__(self) -> None:
+        for row in self.rows:
+            if len(row) != len(self.columns):
+                raise ValueError(f"a row of table {self.key} has {len(row)} cells")
+
+    def to_frame(self) -> pd.DataFrame:
+        """The table as a pandas frame, columns by key, numbers at full precision."""
+        import pandas as pd
+
+        return pd.DataFrame(
+            [list(row) for row in self.rows], columns=[c.key for c in self.columns]
+        )

@@ -1,0 +1,1 @@
+"""Floor 3: labelled matrices of a network."""

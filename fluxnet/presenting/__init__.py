@@ -1,0 +1,1 @@
+"""Floor 7: what is shown, and how."""

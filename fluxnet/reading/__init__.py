@@ -1,0 +1,1 @@
+"""Floor 3: model text to a network, and back."""

@@ -1,0 +1,1 @@
+"""Floor 6: whole answers: closure, fluxes."""
