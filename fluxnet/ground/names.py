@@ -40,6 +40,7 @@ class Name(Enum):
     remedy: str
 
     def __new__(cls, name: str, severity: Severity, headline: str, why: str, remedy: str) -> Name:
+        """Make the member; the enumeration's value is the name alone."""
         member = object.__new__(cls)
         member._value_ = name
         member.severity = severity

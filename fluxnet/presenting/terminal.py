@@ -1,0 +1,220 @@
+"""Screens and diagnostics on a terminal or in a pipe (rich is imported when called)."""
+
+from __future__ import annotations
+
+import os
+import sys
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, TextIO
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Severity
+from fluxnet.ground.table import Align, Cell, Column, Table
+from fluxnet.presenting.numbers import format_measured, format_number
+from fluxnet.presenting.screen import Block, Heading, Mood, Sentence
+
+if TYPE_CHECKING:
+    from rich.console import Console
+
+__all__ = ["Terminal", "diagnostic_lines", "table_cells"]
+
+_STYLE = {
+    Mood.PLAIN: "",
+    Mood.GOOD: "green",
+    Mood.BAD: "bold red",
+    Mood.DOUBTFUL: "yellow",
+    Mood.QUIET: "dim",
+}
+_SEVERITY_STYLE = {Severity.ERROR: "bold red", Severity.WARNING: "yellow", Severity.NOTE: "cyan"}
+
+# What stands for a sign where the stream's encoding lacks it.
+_ASCII = str.maketrans(
+    {"±": "+-", "→": "->", "⇌": "<->", "·": ".", "‾": "^", "─": "-", "━": "=", "…": "...",
+     "–": "-", "≤": "<=", "≥": ">=", "µ": "u", "γ": "gamma", "×": "x"}
+)  # fmt: skip
+
+
+@dataclass(frozen=True, slots=True)
+class Terminal:
+    """A stream, whether it may be coloured, and how wide it is.
+
+    In a pipe nothing is coloured and no line is cut: tables are as wide as they need.
+    """
+
+    stream: TextIO
+    colour: bool
+    width: int | None
+    ascii_only: bool
+
+    @classmethod
+    def on(cls, stream: TextIO | None = None, *, no_color: bool = False) -> Terminal:
+        """Find out what a stream can do (standard output by default)."""
+        stream = stream or sys.stdout
+        is_terminal = stream.isatty()
+        colour = (
+            is_terminal
+            and not no_color
+            and not os.environ.get("NO_COLOR")
+            and os.environ.get("TERM") != "dumb"
+        )
+        try:
+            "±→‾─–".encode(getattr(stream, "encoding", None) or "ascii")
+            ascii_only = False
+        except (UnicodeEncodeError, LookupError):
+            ascii_only = True
+        return cls(stream, colour, None if is_terminal else _pipe_width(), ascii_only)
+
+    def show(self, screen: tuple[Block, ...], *, quiet: bool = False) -> None:
+        """Show a screen; quiet keeps only the verdicts."""
+        console = self._console()
+        for place, block in enumerate(screen):
+            if quiet and not (isinstance(block, Sentence) and block.verdict):
+                continue
+            if isinstance(block, Heading):
+                self._print(console, ("\n" if place else "") + block.text, "bold")
+            elif isinstance(block, Sentence):
+                self._print(console, block.text, _STYLE[block.mood])
+            else:
+                self._show_table(console, block)
+
+    def show_diagnostics(self, diagnostics: tuple[Diagnostic, ...], *, most: int = 20) -> None:
+        """Show findings, the first ``most`` of them in full."""
+        console = self._console()
+        for diagnostic in diagnostics[:most]:
+            head, *rest = diagnostic_lines(diagnostic)
+            self._print(console, head, _SEVERITY_STYLE[diagnostic.severity])
+            for line in rest:
+                self._print_whole(console, line)
+        if len(diagnostics) > most:
+            self._print(console, f"... and {len(diagnostics) - most} more (--all shows them)", "")
+
+    def _console(self) -> Console:
+        from rich.console import Console
+
+        return Console(
+            file=self.stream,
+            force_terminal=self.colour,
+            no_color=not self.colour,
+            color_system="auto" if self.colour else None,
+            width=self.width,
+            highlight=False,
+            markup=False,
+            emoji=False,
+            legacy_windows=False,
+        )
+
+    def _print(self, console: Console, text: str, style: str) -> None:
+        from rich.text import Text
+
+        # In a pipe sentences are broken for 80 columns; only tables may be wider.
+        width = None if self.width is None else min(self.width, 80)
+        console.print(Text(self._plain(text), style=style if self.colour else ""), width=width)
+
+    def _print_whole(self, console: Console, line: str) -> None:
+        """A line that must not be broken, because the next points into it."""
+        from rich.text import Text
+
+        console.print(Text(self._plain(line)), soft_wrap=True)
+
+    def _plain(self, text: str) -> str:
+        return text.translate(_ASCII) if self.ascii_only else text
+
+    def _show_table(self, console: Console, table: Table) -> None:
+        from rich import box
+        from rich.table import Table as Grid
+        from rich.text import Text
+
+        grid = Grid(
+            title=Text(self._plain(table.title), style="bold" if self.colour else ""),
+            title_justify="left",
+            box=box.ASCII2 if self.ascii_only else box.SIMPLE_HEAD,
+            pad_edge=False,
+            show_edge=False,
+            collapse_padding=True,
+            header_style="bold" if self.colour else "",
+        )
+        columns, rows = table_cells(table)
+        for column in columns:
+            title = f"{column.title} [{column.unit}]" if column.unit else column.title
+            grid.add_column(
+                self._plain(title),
+                justify="right" if column.align is Align.RIGHT else "left",
+                overflow="fold",
+            )
+        for row in rows:
+            grid.add_row(*(Text(self._plain(cell)) for cell in row))
+        console.print()
+        console.print(grid)
+        for note in table.notes:
+            self._print(console, "  " + note, "dim")
+
+
+def table_cells(table: Table) -> tuple[tuple[Column, ...], tuple[tuple[str, ...], ...]]:
+    """The columns and cells of a table as shown: a value and its sd stand together."""
+    partner = {c.sd_of: k for k, c in enumerate(table.columns) if c.sd_of is not None}
+    shown = [(k, c) for k, c in enumerate(table.columns) if c.sd_of is None and c.title]
+    rows: list[tuple[str, ...]] = []
+    for row in table.rows:
+        cells: list[str] = []
+        for k, column in shown:
+            sd = row[partner[column.key]] if column.key in partner else None
+            cells.append(_cell(row[k], sd, column))
+        rows.append(tuple(cells))
+    return tuple(c for _, c in shown), tuple(rows)
+
+
+def _cell(value: Cell, sd: Cell, column: Column) -> str:
+    if value is None:
+        return "" if column.align is Align.LEFT else "–"
+    if isinstance(value, bool):
+        return "yes" if value else "no"
+    if isinstance(value, str):
+        return value
+    if isinstance(sd, (int, float)):
+        return format_measured(float(value), float(sd))
+    return format_number(float(value), column.digits)
+
+
+def diagnostic_lines(diagnostic: Diagnostic) -> tuple[str, ...]:
+    """A finding as lines: the sentence with its place, the source, because, mend.
+
+    The exact words are marked in the line below the source line.
+    """
+    span = diagnostic.span
+    place = span.file
+    if span.line:
+        place += f", line {span.line}, column {span.column}"
+    head = f"{place}: " if place else ""
+    severity = "" if diagnostic.severity is Severity.ERROR else f"{diagnostic.severity.value}: "
+    lines = [f"{head}{severity}{diagnostic.message} ({diagnostic.name.value})"]
+    if diagnostic.source_line is not None:
+        source = diagnostic.source_line.rstrip()
+        cut = len(source) - len(source.lstrip())
+        before = source[cut : span.column - 1]
+        width = max(1, span.end_column - span.column)
+        lines.append("    " + source[cut:].expandtabs(4))
+        lines.append("    " + " " * _width(before.expandtabs(4)) + "‾" * width)
+    if diagnostic.because:
+        lines.append(f"    because  {diagnostic.because}")
+    if diagnostic.mend:
+        lines.append(f"    mend     {diagnostic.mend}")
+    for other in diagnostic.also:
+        lines.append(f"    see      {other.file}, line {other.line}, column {other.column}")
+    if diagnostic.accepted is not None:
+        lines.append(f"    accepted {diagnostic.accepted}")
+    return tuple(lines)
+
+
+def _width(text: str) -> int:
+    """The number of terminal cells that a text takes."""
+    from unicodedata import combining, east_asian_width
+
+    return sum(
+        0 if combining(letter) else 2 if east_asian_width(letter) in "WF" else 1 for letter in text
+    )
+
+
+def _pipe_width() -> int:
+    """Wide enough that nothing is cut where the output is not a terminal."""
+    columns = os.environ.get("COLUMNS", "")
+    return int(columns) if columns.isdigit() and int(columns) >= 40 else 200
