@@ -1,0 +1,112 @@
+"""Net equations: what a compartment, or the whole cell, does altogether at given fluxes."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.matrices.stoichiometry import Stoichiometry
+from fluxnet.network.model import Network
+
+__all__ = ["EquationTerm", "NetEquation", "find_equations", "reference_substrate"]
+
+Array = NDArray[np.float64]
+
+# A coefficient this small beside the terms that make it up is rounding, not chemistry.
+_ROUNDING = 1e-9
+
+
+@dataclass(frozen=True, slots=True)
+class EquationTerm:
+    """A species and how much of it is made (negative: used), in the unit of the rates.
+
+    ``implied`` marks water and protons, which no reaction writes.
+    """
+
+    species: str
+    coefficient: float
+    implied: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class NetEquation:
+    """What a compartment (None: the whole cell) does at the solved fluxes.
+
+    ``per`` names the substrate whose uptake ``per_amount`` (in the unit of the rates) the
+    coefficients are divided by to read "per mol substrate"; None where none is taken up.
+    ``base`` is the base that the released protons need, for the whole cell only.
+    """
+
+    compartment: str | None
+    terms: tuple[EquationTerm, ...]
+    per: str | None
+    per_amount: float | None
+    base: float | None = None
+
+
+def reference_substrate(network: Network, releases: Mapping[str, float]) -> str | None:
+    """The first substrate declared that is taken up and holds carbon."""
+    for species in network.boundary:
+        if (
+            releases.get(species.name, 0.0) < 0
+            and species.formula is not None
+            and species.formula.count("C") > 0
+        ):
+            return species.name
+    return None
+
+
+def find_equations(
+    network: Network,
+    matrix: Stoichiometry,
+    coefficients: Array,
+    fluxes: Array,
+) -> tuple[NetEquation, ...]:
+    """The net equation of each compartment, then the whole cell's (without implied terms).
+
+    ``coefficients`` is the stoichiometric matrix, species x reactions. An inside species that
+    one compartment passes to another stands in both equations; in the whole cell's only
+    boundary species are left.
+    """
+    parts = coefficients * fluxes
+    boundary = [matrix.species[i] for i in matrix.boundary]
+    totals = _sums(parts)
+    releases = {name: totals[matrix.row(name)] for name in boundary}
+    per = reference_substrate(network, releases)
+    amount = -releases[per] if per is not None else None
+    equations = [
+        _equation(
+            compartment.name,
+            matrix,
+            parts[:, [r.compartment == compartment.name for r in network.reactions]],
+            range(len(matrix.species)),
+            per,
+            amount,
+        )
+        for compartment in network.compartments
+    ]
+    equations.append(_equation(None, matrix, parts, matrix.boundary, per, amount))
+    return tuple(equations)
+
+
+def _equation(
+    compartment: str | None,
+    matrix: Stoichiometry,
+    parts: Array,
+    rows: range | tuple[int, ...],
+    per: str | None,
+    amount: float | None,
+) -> NetEquation:
+    sums = _sums(parts)
+    terms = tuple(EquationTerm(matrix.species[i], float(sums[i])) for i in rows if sums[i] != 0)
+    return NetEquation(compartment, terms, per, amount)
+
+
+def _sums(parts: Array) -> Array:
+    """Sums of rows in which what is only rounding is zero."""
+    sums: Array = parts.sum(axis=1)
+    sums[np.abs(sums) <= _ROUNDING * np.abs(parts).sum(axis=1)] = 0.0
+    return sums

@@ -1,0 +1,101 @@
+"""The carrier ledger: which compartment makes and which spends each carrier."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.matrices.stoichiometry import Stoichiometry
+from fluxnet.network.model import Network
+
+__all__ = ["LedgerLine", "LedgerPlace", "keep_ledger", "ledger_places", "ledger_rows"]
+
+Array = NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True)
+class LedgerPlace:
+    """One carrier in one compartment that touches it."""
+
+    carrier: str
+    compartment: str
+
+
+@dataclass(frozen=True, slots=True)
+class LedgerLine:
+    """What one compartment makes and spends of one carrier, in the unit of the rates.
+
+    ``net`` is ``made - spent``; over all compartments the nets of a carrier add up to zero.
+    ``sd`` is that of the net where the net is determined, else None; ``low`` and ``high``
+    bound the net as they bound a flux.
+    """
+
+    carrier: str
+    compartment: str
+    made: float
+    spent: float
+    net: float
+    sd: float | None = None
+    low: float | None = None
+    high: float | None = None
+
+
+def ledger_places(network: Network, matrix: Stoichiometry) -> tuple[LedgerPlace, ...]:
+    """The carriers by compartment, both in the order of the file, where any reaction has one."""
+    compartment_of = [r.compartment for r in network.reactions]
+    touched = {(matrix.species[i], compartment_of[j]) for i, j, _ in matrix.entries}
+    return tuple(
+        LedgerPlace(carrier.name, compartment.name)
+        for carrier in network.carriers
+        for compartment in network.compartments
+        if (carrier.name, compartment.name) in touched
+    )
+
+
+def ledger_rows(
+    network: Network, matrix: Stoichiometry, coefficients: Array, places: tuple[LedgerPlace, ...]
+) -> Array:
+    """The net of each place as a row over the fluxes (places x reactions).
+
+    ``coefficients`` is the stoichiometric matrix, species x reactions.
+    """
+    rows = np.zeros((len(places), len(matrix.reactions)))
+    for k, place in enumerate(places):
+        inside = [r.compartment == place.compartment for r in network.reactions]
+        rows[k, inside] = coefficients[matrix.row(place.carrier), inside]
+    return rows
+
+
+def keep_ledger(
+    places: tuple[LedgerPlace, ...],
+    rows: Array,
+    fluxes: Array,
+    sds: Array | None = None,
+    lows: Array | None = None,
+    highs: Array | None = None,
+) -> tuple[LedgerLine, ...]:
+    """The ledger at given fluxes.
+
+    ``rows`` are those of :func:`ledger_rows`; ``sds``, ``lows`` and ``highs`` belong to the
+    nets, one a place (NaN in ``sds`` where the net is not determined).
+    """
+    lines: list[LedgerLine] = []
+    for k, place in enumerate(places):
+        parts = rows[k] * fluxes
+        made, spent = float(parts[parts > 0].sum()), float(-parts[parts < 0].sum())
+        sd = None if sds is None or np.isnan(sds[k]) else float(sds[k])
+        lines.append(
+            LedgerLine(
+                place.carrier,
+                place.compartment,
+                made,
+                spent,
+                made - spent,
+                sd,
+                None if lows is None else float(lows[k]),
+                None if highs is None else float(highs[k]),
+            )
+        )
+    return tuple(lines)
