@@ -1,0 +1,132 @@
+"""Tables as files: CSV and workbooks, written beside and then renamed, never half."""
+
+from __future__ import annotations
+
+import csv
+import io
+import os
+import tempfile
+from collections.abc import Sequence
+from pathlib import Path
+
+from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.table import Cell, Table
+
+__all__ = ["write_csv", "write_text", "write_workbook"]
+
+# A cell that begins like this would run as a formula in a spreadsheet.
+_FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r")
+
+
+def write_text(path: Path, text: str, *, force: bool = False) -> None:
+    """Write a text file, whole or not at all.
+
+    Raises
+    ------
+    MisuseError
+        Where the file exists and ``force`` is not given.
+    """
+    _write(path, text.encode("utf-8"), force)
+
+
+def write_csv(tables: Sequence[Table], folder: Path, *, force: bool = False) -> tuple[Path, ...]:
+    """Write each table as ``KEY.csv`` into a folder; columns by key, numbers in full.
+
+    Raises
+    ------
+    MisuseError
+        Where a file exists and ``force`` is not given.
+    """
+    folder.mkdir(parents=True, exist_ok=True)
+    paths = tuple(folder / f"{table.key}.csv" for table in tables)
+    if not force:
+        for path in paths:
+            _refuse_existing(path)
+    for table, path in zip(tables, paths, strict=True):
+        stream = io.StringIO(newline="")
+        writer = csv.writer(stream)
+        writer.writerow([c.key for c in table.columns])
+        for row in table.rows:
+            writer.writerow([_safe(cell) for cell in row])
+        _write(path, stream.getvalue().encode("utf-8"), force=True)
+    return paths
+
+
+def write_workbook(tables: Sequence[Table], path: Path, *, force: bool = False) -> None:
+    """Write each table as a sheet: titles, a units row, numbers as numbers.
+
+    Raises
+    ------
+    MisuseError
+        Where the file exists and ``force`` is not given, or xlsxwriter is not installed.
+    """
+    if not force:
+        _refuse_existing(path)
+    try:
+        import xlsxwriter
+    except ImportError:
+        raise MisuseError(
+            "workbooks need the extra `sheets`: python -m pip install 'fluxnet[sheets]'"
+        ) from None
+    stream = io.BytesIO()
+    options = {"in_memory": True, "strings_to_formulas": False, "strings_to_urls": False}
+    with xlsxwriter.Workbook(stream, options) as book:
+        bold = book.add_format({"bold": True})
+        names: set[str] = set()
+        for table in tables:
+            sheet = book.add_worksheet(_sheet_name(table.key, names))
+            for j, column in enumerate(table.columns):
+                sheet.write_string(0, j, column.key, bold)
+                sheet.write_string(1, j, column.unit)
+            for i, row in enumerate(table.rows, start=2):
+                for j, cell in enumerate(row):
+                    if isinstance(cell, bool):
+                        sheet.write_boolean(i, j, cell)
+                    elif isinstance(cell, (int, float)):
+                        sheet.write_number(i, j, cell)
+                    elif cell is not None:
+                        sheet.write_string(i, j, cell)
+            sheet.freeze_panes(2, 1)
+            sheet.autofit()
+    _write(path, stream.getvalue(), force)
+
+
+def _safe(cell: Cell) -> Cell:
+    if isinstance(cell, str) and cell.startswith(_FORMULA_STARTS):
+        return "'" + cell
+    return cell
+
+
+def _sheet_name(key: str, names: set[str]) -> str:
+    """A name that a workbook allows: at most 31 characters, unique."""
+    base = "".join("_" if letter in "[]:*?/\\'" else letter for letter in key)[:28]
+    name, number = base, 2
+    while name.lower() in names:
+        name, number = f"{base[:25]}_{number}", number + 1
+    names.add(name.lower())
+    return name
+
+
+def _refuse_existing(path: Path) -> None:
+    if path.exists():
+        raise MisuseError(f"{path} exists; --force overwrites it")
+
+
+def _write(path: Path, data: bytes, force: bool) -> None:
+    if not force:
+        _refuse_existing(path)
+    handle, name = tempfile.mkstemp(prefix=f".{path.name}.", dir=path.parent)
+    try:
+        with os.fdopen(handle, "wb") as file:
+            file.write(data)
+        os.chmod(name, 0o666 & ~_umask())
+        os.replace(name, path)
+    except BaseException:
+        Path(name).unlink(missing_ok=True)
+        raise
+
+
+def _umask() -> int:
+    mask = os.umask(0)
+    os.umask(mask)
+    return mask
