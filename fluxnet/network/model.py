@@ -246,7 +246,8 @@ class Basis(Enum):
 class Network:
     """A whole model, every line of it resolved; the order is the file's.
 
-    Built by :func:`fluxnet.reading.model.read_model`; changed only by making another.
+    ``free`` names species that any reaction may use or make unwritten; phosphate is one of
+    them unless ``balance_phosphate``. Built by :func:`fluxnet.reading.model.read_model`; changed only by making another.
     """
 
     title: str
@@ -260,6 +261,7 @@ class Network:
     free: tuple[str, ...] = ()
     acceptances: tuple[Acceptance, ...] = ()
     variant: str = "base"
+    balance_phosphate: bool = False
     _species: dict[str, Species] = field(init=False, repr=False, compare=False, hash=False)
     _reactions: dict[str, Reaction] = field(init=False, repr=False, compare=False, hash=False)
 
