@@ -1,0 +1,86 @@
+"""``fluxnet new``: a folder to start from."""
+
+from __future__ import annotations
+
+import argparse
+from pathlib import Path
+
+from fluxnet.cli.main import Exit
+from fluxnet.presenting.files import write_text
+
+__all__ = ["EXAMPLES", "MODEL", "RATES", "add_arguments", "run"]
+
+EXAMPLES = """A folder to start from: a model, a rates table, a short how-to.
+
+  fluxnet new my-strain
+"""
+
+MODEL = """\
+model   My strain                      # a title
+basis   mmol/g/h                       # the unit of every rate
+
+substrate  glucose                     # can only be taken up
+substrate  ammonia, oxygen
+product    ethanol                     # can only be released
+exchange   CO2                         # either way
+biomass    X          CH1.8O0.5N0.2  ash 8 %
+
+carrier    ATP        carries energy
+carrier    NADH       carries 2 electrons
+inside     pyruvate
+
+parameter  PO   = 1.4 ± 0.2  in [0.5, 2.5]     # mol ATP per atom of oxygen
+parameter  K_X  = 1.8 ± 0.3                    # mol ATP per mole of X
+
+compartment catabolism
+    glycolysis : glucose -> 2 pyruvate + 2 ATP + 2 NADH
+    ferment    : pyruvate + NADH -> ethanol + CO2
+    burn       : pyruvate -> 3 CO2 + 5 NADH + ATP
+    oxphos     : NADH + 0.5 oxygen -> PO ATP
+
+compartment anabolism
+    growth     : ? glucose + 0.2 ammonia + K_X ATP -> X + 0.1 CO2 + ? NADH
+
+compartment maintenance
+    upkeep     : ATP -> nothing
+
+limit  upkeep = 1.0 ± 0.3              # a measured value, mmol ATP/g/h
+"""
+
+RATES = """\
+shared error biomass 4 %
+run,species,direction,rate,sd,unit
+1,glucose,in,2.00,3 %,mmol/g/h
+1,oxygen,in,5.10,5 %,mmol/g/h
+1,CO2,out,5.90,5 %,mmol/g/h
+1,ethanol,out,0.55,5 %,mmol/g/h
+1,mu,,0.155,3 %,1/h
+"""
+
+_HOW_TO = """\
+Put your reactions into model.flux and your rates into rates.csv, then
+
+    fluxnet check model.flux                 is the reaction list sound?
+    fluxnet closure rates.csv --model model.flux      do carbon and electrons close?
+    fluxnet solve model.flux rates.csv       what did the cell do?
+
+The numbers in rates.csv are placeholders. A blank rate says: exchanged, but not measured.
+`fluxnet manual language` and `fluxnet manual rates` tell how the two files are written.
+"""
+
+
+def add_arguments(parser: argparse.ArgumentParser) -> None:
+    """Options of the command."""
+    parser.add_argument("name", type=Path, help="the folder")
+    parser.add_argument("--force", "-f", action="store_true", help="overwrite files that exist")
+
+
+def run(arguments: argparse.Namespace) -> int:
+    """Write the folder."""
+    folder: Path = arguments.name
+    files = {"model.flux": MODEL, "rates.csv": RATES, "HOW-TO.txt": _HOW_TO}
+    folder.mkdir(parents=True, exist_ok=True)
+    for name, text in files.items():
+        write_text(folder / name, text, force=arguments.force)
+    print(f"wrote {', '.join(files)} into {folder}; next: fluxnet check {folder / 'model.flux'}")
+    return Exit.SOUND
