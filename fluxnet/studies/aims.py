@@ -1,0 +1,101 @@
+"""What is to be made as large or as small as possible."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from difflib import get_close_matches
+from enum import Enum
+from fractions import Fraction
+
+from fluxnet.ground.errors import MisuseError
+from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role
+
+__all__ = ["Aim", "Sense", "read_aim"]
+
+
+
+class Sense(Enum):
+    """Which way the aim goes."""
+
+    MAXIMISE = "maximise"
+    MINIMISE = "minimise"
+
+
+@dataclass(frozen=True, slots=True)
+class Aim:
+    """A weighted sum of quantities, to be made as large or as small as possible."""
+
+    sense: Sense
+    terms: tuple[tuple[Fraction, Quantity], ...]
+
+    @property
+    def surplus(self) -> tuple[str, ...]:
+        """The carriers whose surplus takes part."""
+        return tuple(q.name for _, q in self.terms if q.kind is QuantityKind.SURPLUS)
+
+    def __str__(self) -> str:
+        parts = (f"{w} {_words(q)}" if w != 1 else _words(q) for w, q in self.terms)
+        return f"{self.sense.value} {' + '.join(parts)}"
+
+
+def read_aim(text: str, sense: Sense, network: Network) -> Aim:
+    """The aim that a user names: ``ethanol``, ``in glucose``, ``mu``, ``oxphos``, ``ATP``.
+
+    A boundary species stands for its release, or its uptake after ``in``; a substrate for its
+    uptake; a carrier for its surplus. A weighted sum is ``2 ethanol + lactate``.
+
+    Raises
+    ------
+    MisuseError
+        Where a name is none of the network's, with the nearest.
+    """
+    terms = tuple(_read_term(part.split(), network) for part in text.split(" + "))
+    return Aim(sense, terms)
+
+
+def _read_term(words: Sequence[str], network: Network) -> tuple[Fraction, Quantity]:
+    weight = Fraction(1)
+    rest = list(words)
+    if len(rest) > 1:
+        try:
+            weight = Fraction(rest[0])
+            rest = rest[1:]
+        except ValueError:
+            pass
+    direction = None
+    if len(rest) > 1 and rest[0] in ("in", "out"):
+        direction = Direction(rest.pop(0))
+    elif len(rest) > 1 and rest[-1] in ("in", "out"):
+        direction = Direction(rest.pop())
+    if len(rest) != 1:
+        raise MisuseError(f"an aim is a name, not {' '.join(words) or 'nothing'!r}")
+    return weight, _find_quantity(rest[0], direction, network)
+
+
+def _find_quantity(name: str, direction: Direction | None, network: Network) -> Quantity:
+    if name == "mu":
+        return Quantity(QuantityKind.MU)
+    species = network.find_species(name)
+    if species is not None and species.role.is_boundary:
+        usual = Direction.IN if species.role is Role.SUBSTRATE else Direction.OUT
+        return Quantity(QuantityKind.RATE, name, direction or usual)
+    if species is not None and species.role is Role.CARRIER:
+        return Quantity(QuantityKind.SURPLUS, name)
+    if network.find_reaction(name) is not None:
+        return Quantity(QuantityKind.FLUX, name)
+    if species is not None:
+        raise MisuseError(
+            f"{name} is an inside species and cannot leave the cell; name a boundary species, "
+            "a reaction, a carrier or mu"
+        )
+    known = [s.name for s in network.species] + [r.name for r in network.reactions]
+    near = get_close_matches(name, known, 3, 0.6)
+    hint = f"; near to it are {', '.join(near)}" if near else ""
+    raise MisuseError(f"the model has no {name}{hint}")
+
+
+def _words(quantity: Quantity) -> str:
+    if quantity.kind is QuantityKind.SURPLUS:
+        return f"surplus of {quantity.name}"
+    return str(quantity)
