@@ -35,6 +35,9 @@ class Row:
     ``name`` is told to the user: the species of a balance or role, the limit as written, the
     measured quantity. ``quantity`` is what the row's product with the fluxes is the value of
     (None for a balance). ``value`` and ``sd`` are those of a measured row.
+
+    A ratio A / B at ``ratio`` is the row A - ratio B. Where it is measured, ``value`` is 0 and
+    ``sd`` is the ratio's own sd times ``denominator``, the size taken for B.
     """
 
     kind: RowKind
@@ -43,6 +46,8 @@ class Row:
     value: float | None = None
     sd: float | None = None
     span: Span = NOWHERE
+    ratio: float | None = None
+    denominator: float | None = None
 
 
 @dataclass(frozen=True, slots=True)
