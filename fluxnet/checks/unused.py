@@ -1,0 +1,71 @@
+"""What is declared and never used, and a model without anything to live on."""
+
+from __future__ import annotations
+
+from fluxnet.chemistry.formula import degree_of_reduction
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Name
+from fluxnet.ground.source import NOWHERE
+from fluxnet.network.model import Network, Role, Species
+
+__all__ = ["check_substrates", "check_unused"]
+
+
+def check_unused(network: Network) -> tuple[Diagnostic, ...]:
+    """Species and parameters that no reaction uses, of the base model or of any variant.
+
+    Where a variant is applied nothing is told: what it leaves out is meant to be.
+    """
+    if network.variant != "base":
+        return ()
+    reactions = [*network.reactions, *(r for v in network.variants for r in v.reactions)]
+    terms = [term for reaction in reactions for _, term in reaction.terms]
+    species = {t.species for t in terms}
+    parameters = {n for t in terms if t.coefficient for n in t.coefficient.parameters}
+    told = [
+        Diagnostic(
+            Name.UNUSED_SPECIES,
+            f"{s.name} is declared, but no reaction uses it",
+            s.span,
+            mend="use it in a reaction, or take the declaration away",
+        )
+        for s in network.species
+        if s.name not in species and s.name not in network.free
+    ]
+    told += [
+        Diagnostic(
+            Name.UNUSED_PARAMETER,
+            f"parameter {p.name} stands in no coefficient",
+            p.span,
+            mend="use it in a coefficient, or take the line away",
+        )
+        for p in network.parameters
+        if p.name not in parameters
+    ]
+    return tuple(told)
+
+
+def check_substrates(network: Network) -> tuple[Diagnostic, ...]:
+    """A warning where nothing with carbon can be taken up; CO2 as an exchange is no food."""
+    if any(_is_food(s) for s in network.boundary):
+        return ()
+    place = network.boundary[0].span if network.boundary else NOWHERE
+    return (
+        Diagnostic(
+            Name.NO_SUBSTRATE,
+            "no species with carbon can be taken up",
+            place,
+            because="without a substrate no flux can run",
+            mend="declare one: substrate glucose",
+        ),
+    )
+
+
+def _is_food(species: Species) -> bool:
+    if species.formula is None or species.formula.count("C") <= 0:
+        return False
+    if species.role is Role.SUBSTRATE:
+        return True
+    return species.role is Role.EXCHANGE and (degree_of_reduction(species.formula) or 0) > 0
+
+
