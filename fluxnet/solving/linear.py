@@ -235,6 +235,7 @@ class Programme:
             ("output_flag", False),
             ("presolve", "off"),
             ("solver", "simplex"),
+            ("simplex_strategy", 0),
             ("threads", 1),
             ("primal_feasibility_tolerance", TOLERANCE),
             ("dual_feasibility_tolerance", TOLERANCE),

@@ -1,0 +1,67 @@
+"""The fluxes with the smallest total among all that meet the bounds."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.ground.errors import MisuseError
+from fluxnet.solving.linear import Outcome, Programme, worst_violation
+from fluxnet.solving.problem import Problem
+
+__all__ = ["least_total_flux"]
+
+
+def least_total_flux(problem: Problem) -> NDArray[np.float64]:
+    """Fluxes with the smallest sum of absolute values.
+
+    min sum |v| subject to the problem's bounds, as a linear programme in which each flux that
+    can go both ways is the difference of two. To ask for the least total among the optima of
+    an aim, hold the aim at its optimum first (:func:`fluxnet.solving.alter.with_row`). Several
+    fluxes may share the smallest total; this is one of them.
+
+    Returns
+    -------
+    numpy.ndarray
+        One flux a column, in the unit of the problem. A circle of reactions never runs in it.
+
+    Raises
+    ------
+    MisuseError
+        Where no fluxes meet the bounds.
+    ArithmeticError
+        Where the solver failed, or its answer does not meet the bounds.
+
+    Examples
+    --------
+    >>> from fluxnet.solving.problem import Row, RowKind
+    >>> problem = Problem(("long", "short", "back"), (Row(RowKind.BALANCE, "s"),),
+    ...     np.array([[0.5, 1.0, -1.0]]), np.ones(1), np.ones(1),
+    ...     np.array([0.0, 0.0, -np.inf]), np.full(3, np.inf))
+    >>> least_total_flux(problem).tolist()
+    [0.0, 1.0, 0.0]
+    """
+    low, high = problem.column_low, problem.column_high
+    both = np.flatnonzero((low < 0) & (high > 0))
+    ahead_low, ahead_high = low.copy(), high.copy()
+    ahead_low[both] = 0.0
+    count = len(both)
+    split = replace(
+        problem,
+        columns=(*problem.columns, *(f"{problem.columns[j]} backwards" for j in both)),
+        matrix=np.hstack([problem.matrix, -problem.matrix[:, both]]),
+        column_low=np.append(ahead_low, np.zeros(count)),
+        column_high=np.append(ahead_high, -low[both]),
+    )
+    costs = np.where(high <= 0, -1.0, 1.0)
+    solution = Programme(split).minimise(np.append(costs, np.ones(count)))
+    if solution.outcome is Outcome.INFEASIBLE:
+        raise MisuseError("no fluxes meet the bounds: there is no least total")
+    fluxes = solution.fluxes[: len(low)].copy()
+    fluxes[both] -= solution.fluxes[len(low) :]
+    if solution.outcome is not Outcome.OPTIMAL or worst_violation(problem, fluxes) > 1e-6:
+        raise ArithmeticError("the least total flux could not be found")
+    fluxes.setflags(write=False)
+    return fluxes

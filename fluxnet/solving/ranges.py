@@ -1,0 +1,109 @@
+"""The range of every flux, or of other functionals of the fluxes, on one warm model."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.progress import Progress, silent
+from fluxnet.solving.linear import Outcome, Programme
+from fluxnet.solving.problem import Problem
+
+__all__ = ["Ranges", "find_ranges"]
+
+Vector = NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True)
+class Ranges:
+    """Least and largest values, one pair a flux (or functional), ±inf where unbounded.
+
+    ``outcome`` is OPTIMAL, or INFEASIBLE where no fluxes meet the bounds at all: then every
+    range is empty (low inf, high -inf). FAILED: at least one end could not be found, and is
+    given as unbounded. ``residual`` is the worst violation among all the solutions.
+    """
+
+    low: Vector
+    high: Vector
+    outcome: Outcome
+    residual: float
+
+
+def find_ranges(
+    problem: Problem, rows: Vector | None = None, *, progress: Progress = silent
+) -> Ranges:
+    """Minimise and maximise each flux, or each functional, under all bounds of a problem.
+
+    One model is kept warm: only costs change. A flux that stood at its own bound in any earlier
+    solution cannot go further, and is not asked for again; that is exact.
+
+    Parameters
+    ----------
+    problem
+        What the fluxes must meet.
+    rows
+        Functionals, each a row over the columns; None asks for every flux.
+
+    Returns
+    -------
+    Ranges
+        In the order of the columns, or of ``rows``.
+
+    Raises
+    ------
+    MisuseError
+        Where ``rows`` holds NaN or has not one number a column.
+
+    Examples
+    --------
+    >>> from fluxnet.solving.problem import Row, RowKind
+    >>> problem = Problem(("in", "a", "b"), (Row(RowKind.BALANCE, "s"),),
+    ...     np.array([[1.0, -1.0, -1.0]]), np.zeros(1), np.zeros(1),
+    ...     np.zeros(3), np.array([4.0, np.inf, 1.0]))
+    >>> ranges = find_ranges(problem)
+    >>> ranges.low.tolist(), ranges.high.tolist()
+    ([0.0, 0.0, 0.0], [4.0, 4.0, 1.0])
+    """
+    columns = len(problem.columns)
+    programme = Programme(problem)
+    if rows is None:
+        targets = np.eye(columns)
+        floor, ceiling = problem.column_low, problem.column_high
+    else:
+        targets = np.asarray(rows, dtype=np.float64)
+        if targets.ndim != 2 or targets.shape[1] != columns or np.isnan(targets).any():
+            raise MisuseError("each functional needs one number for every column")
+        floor, ceiling = np.full(len(targets), -np.inf), np.full(len(targets), np.inf)
+    low, high = np.full(len(targets), np.inf), np.full(len(targets), -np.inf)
+    if not programme.is_feasible():
+        return Ranges(low, high, Outcome.INFEASIBLE, 0.0)
+    worst, outcome = 0.0, Outcome.OPTIMAL
+    seen = programme.fluxes()[None] @ targets.T
+    lowest, highest = seen[0].copy(), seen[0].copy()
+    for k, target in enumerate(targets):
+        progress("ranges", k, len(targets))
+        for sign, ends, reached, bound in (
+            (1.0, low, lowest, floor),
+            (-1.0, high, highest, ceiling),
+        ):
+            if sign * reached[k] <= sign * bound[k]:
+                ends[k] = bound[k]
+                continue
+            programme.set_costs(sign * target)
+            answer = programme.run()
+            if answer is not Outcome.OPTIMAL:
+                outcome = outcome if answer is Outcome.UNBOUNDED else Outcome.FAILED
+                ends[k] = -sign * np.inf
+                continue
+            fluxes = programme.fluxes()
+            worst = max(worst, programme.violation(fluxes))
+            values = fluxes if rows is None else targets @ fluxes
+            np.minimum(lowest, values, out=lowest)
+            np.maximum(highest, values, out=highest)
+            ends[k] = min(max(values[k], floor[k]), ceiling[k]) + 0.0
+    for ends in (low, high):
+        ends.setflags(write=False)
+    return Ranges(low, high, outcome, worst)
