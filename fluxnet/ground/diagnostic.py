@@ -8,7 +8,15 @@ from dataclasses import dataclass, field, replace
 from fluxnet.ground.names import Name, Severity
 from fluxnet.ground.source import NOWHERE, Span
 
-__all__ = ["Acceptance", "Diagnostic", "has_errors", "in_order", "silence"]
+__all__ = ["Acceptance", "Diagnostic", "Edit", "has_errors", "in_order", "silence"]
+
+
+@dataclass(frozen=True, slots=True)
+class Edit:
+    """Text that stands in the place of another (an empty place: text put in between)."""
+
+    span: Span
+    text: str
 
 
 @dataclass(frozen=True, slots=True)
@@ -18,7 +26,8 @@ class Diagnostic:
     ``message`` is one sentence in the user's terms that stands alone; ``because``
     gives the reckoning behind it; ``mend`` states what would repair it; ``source_line``
     is the user's own line, untouched; ``also`` are second places (a first declaration).
-    ``accepted`` holds the user's reason where the line silences the warning.
+    ``accepted`` holds the user's reason where the line silences the warning. ``edits`` carry
+    the mend out where it is certain; empty where it needs the user's decision.
     """
 
     name: Name
@@ -29,6 +38,7 @@ class Diagnostic:
     source_line: str | None = None
     also: tuple[Span, ...] = field(default=())
     accepted: str | None = None
+    edits: tuple[Edit, ...] = ()
 
     @property
     def severity(self) -> Severity:

@@ -172,6 +172,9 @@ class Name(Enum):
         "ash-assumed", _N, "no ash content is given; 0 is taken",
         "Dry weight includes ash: 8 % ash moves every specific rate's mass basis by 8 %.",
         "Write `ash 8 %` behind the biomass formula.")
+    BAD_ASH = (
+        "bad-ash", _E, "an ash content cannot be used",
+        "It is a share of dry weight.", "Write `ash 8 %`, or as a fraction: `ash 0.08`.")
     BAD_CARGO = (
         "bad-cargo", _E, "what a carrier carries cannot be read",
         "Its balance decides the proportions of the compartments.",

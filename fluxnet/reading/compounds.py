@@ -1,0 +1,158 @@
+"""What a declared species holds: its formula or cargo, given or of the catalogue."""
+
+from __future__ import annotations
+
+from fluxnet.chemistry.catalogue import Compound, load_catalogue
+from fluxnet.chemistry.formula import EMPTY, Formula, degree_of_reduction
+from fluxnet.chemistry.reader import FormulaError, FormulaFault, read_formula
+from fluxnet.ground.names import Name
+from fluxnet.network.model import Cargo, CargoKind, Role
+from fluxnet.reading import syntax as s
+from fluxnet.reading.lines import LogicalLine
+from fluxnet.reading.scope import Scope
+
+__all__ = ["cargo_of", "formula_of"]
+
+
+def formula_of(
+    role: Role, entry: s.Entry, line: LogicalLine, scope: Scope
+) -> tuple[Formula | None, str | None]:
+    """The formula of a species that is no carrier, and the catalogue entry it matches."""
+    compound = None if role in (Role.CARRIER, Role.BIOMASS) else _compound(entry.name.text)
+    if entry.formula is None:
+        if compound is not None and not compound.kind.is_carrier:
+            return compound.formula, compound.name
+        if role.is_boundary:
+            near = load_catalogue().nearest(entry.name.text)
+            scope.findings.add(
+                Name.FORMULA_NEEDED,
+                f"{entry.name.text} crosses the boundary, but has no formula and is not in the "
+                "catalogue",
+                line, entry.name,
+                mend="write its formula behind the name"
+                + (f", or one of these names: {', '.join(near)}" if near else ""),
+            )  # fmt: skip
+        return None, None
+    if compound is not None and _is_second_name(entry, compound, line, scope):
+        return compound.formula, compound.name
+    formula = _read(entry.formula, line, scope)
+    if formula is None:
+        return None, None
+    if role is Role.BIOMASS and not formula.count("C"):
+        scope.findings.add(
+            Name.BIOMASS_WITHOUT_CARBON,
+            f"the formula of {entry.name.text} holds no carbon", line, entry.formula,
+            mend="write one C-mol of biomass, for example CH1.8O0.5N0.2",
+        )  # fmt: skip
+    if compound is None:
+        return formula, None
+    if not _agree(formula, compound.formula):
+        scope.findings.add(
+            Name.FORMULA_DIFFERS,
+            f"{entry.name.text} is {compound.formula.written} in the catalogue, not "
+            f"{entry.formula.text}",
+            line, entry.formula,
+            because="the two differ by more than water and protons",
+            mend=f"leave the formula out ({compound.formula.written} is then taken), or give "
+            "the species another name",
+        )  # fmt: skip
+    return formula, compound.name
+
+
+def _compound(name: str) -> Compound | None:
+    return load_catalogue().find(name)
+
+
+def _is_second_name(entry: s.Entry, compound: Compound, line: LogicalLine, scope: Scope) -> bool:
+    """Whether what stands as the formula is the name of another compound."""
+    assert entry.formula is not None
+    other = load_catalogue().find(entry.formula.text)
+    if other is None or other.name == compound.name:
+        return False
+    if _same_counts(other.formula, compound.formula):
+        return False
+    gap = s.Word("", entry.name.end, entry.name.end)
+    scope.findings.add(
+        Name.MISSING_COMMA,
+        f"{entry.name.text} is {compound.formula.written}, not {entry.formula.text}: a comma is "
+        "missing between two names",
+        line, s.Word("", entry.name.start, entry.formula.end),
+        mend=f"write `{entry.name.text}, {entry.formula.text}`", certain=[(gap, ",")],
+    )  # fmt: skip
+    scope.lost = scope.lost | {entry.formula.text}
+    return True
+
+
+def _same_counts(one: Formula, other: Formula) -> bool:
+    return dict(one.counts) == dict(other.counts)
+
+
+def _agree(one: Formula, other: Formula) -> bool:
+    """Whether two formulas differ only by water and protons (and by rounding as written)."""
+    elements = set(one.elements) | set(other.elements)
+    for element in elements - {"H", "O"}:
+        slack = one.half_unit(element) + other.half_unit(element)
+        if abs(one.count(element) - other.count(element)) > slack:
+            return False
+    first, second = degree_of_reduction(one), degree_of_reduction(other)
+    if first is None or second is None:
+        return True
+    slack = sum((8 * half for _, half in (*one.half_units, *other.half_units)), first * 0)
+    return abs(first - second) <= slack
+
+
+def _read(word: s.Word, line: LogicalLine, scope: Scope) -> Formula | None:
+    try:
+        return read_formula(word.text)
+    except FormulaError as error:
+        unknown = error.kind is FormulaFault.UNKNOWN_ELEMENT
+        scope.findings.add(
+            Name.UNKNOWN_ELEMENT if unknown else Name.BAD_FORMULA,
+            f"the formula {word.text} cannot be read: {error}",
+            line, s.Word("", word.start + error.position, word.start + error.end),
+            mend="check upper and lower case: Co is cobalt, CO carbon and oxygen"
+            if unknown else "write elements with counts, for example C6H12O6",
+        )  # fmt: skip
+        return None
+
+
+def cargo_of(
+    entry: s.Entry, line: LogicalLine, scope: Scope
+) -> tuple[Cargo | None, str | None]:
+    """What a carrier carries, and the catalogue entry it matches."""
+    compound = _compound(entry.name.text)
+    if compound is not None and not compound.kind.is_carrier:
+        compound = None
+    matched = compound.name if compound else None
+    said = entry.cargo
+    if said is None:
+        if compound is None:
+            scope.findings.add(
+                Name.BAD_CARGO, f"it is not said what {entry.name.text} carries", line,
+                entry.name,
+                mend="write `carries energy`, `carries 2 electrons` or `carries` and a formula",
+            )  # fmt: skip
+            return None, None
+        if not compound.formula.counts:
+            return Cargo(CargoKind.ENERGY), matched
+        return _group(compound.formula, known=True), matched
+    if said.electrons is not None:
+        if said.electrons.value <= 0:
+            scope.findings.add(
+                Name.BAD_CARGO, f"{entry.name.text} carries no electrons", line, said,
+                mend="write `carries energy` if it carries none",
+            )  # fmt: skip
+            return None, None
+        return Cargo(CargoKind.ELECTRONS, said.electrons.value), matched
+    if said.formula is None:
+        return Cargo(CargoKind.ENERGY), matched
+    formula = _read(said.formula, line, scope)
+    if formula is None:
+        return None, None
+    return _group(formula, known="charge" in said.formula.text or formula.charge != 0), matched
+
+
+def _group(formula: Formula, *, known: bool) -> Cargo:
+    electrons = degree_of_reduction(formula)
+    return Cargo(CargoKind.GROUP, electrons if electrons is not None else EMPTY.charge,
+                 formula, known)  # fmt: skip

@@ -1,0 +1,86 @@
+"""Faults as they are found, with the place in the user's own line, and near names."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass, field
+from typing import Protocol
+
+from fluxnet.ground.diagnostic import Diagnostic, Edit
+from fluxnet.ground.names import Name
+from fluxnet.ground.source import Span
+from fluxnet.reading.lines import LogicalLine
+
+__all__ = ["Findings", "Stretch", "nearest_names", "only_case_differs"]
+
+
+class Stretch(Protocol):
+    """Anything with a start and an end in a logical line."""
+
+    @property
+    def start(self) -> int:
+        """The first offset."""
+        ...
+
+    @property
+    def end(self) -> int:
+        """One past the last."""
+        ...
+
+
+@dataclass(slots=True)
+class Findings:
+    """The list of faults of one reading."""
+
+    found: list[Diagnostic] = field(default_factory=list)
+
+    def add(
+        self,
+        name: Name,
+        message: str,
+        line: LogicalLine,
+        place: Stretch | None = None,
+        *,
+        because: str | None = None,
+        mend: str | None = None,
+        certain: Iterable[tuple[Stretch, str]] = (),
+        also: Iterable[Span] = (),
+    ) -> None:
+        """Note a fault at a stretch of a line (None: the whole line).
+
+        ``certain`` are the replacements that carry the mend out, where it needs no decision.
+        """
+        span = line.whole if place is None else line.span(place.start, place.end)
+        edits = tuple(Edit(line.span(s.start, s.end), text) for s, text in certain)
+        self.found.append(
+            Diagnostic(name, message, span, because, mend, None, tuple(also), None, edits)
+        )
+
+
+def nearest_names(name: str, candidates: Iterable[str], most: int = 3) -> tuple[str, ...]:
+    """The candidates that are spelt nearly so, the nearest first.
+
+    Examples
+    --------
+    >>> nearest_names("pyruvat", ["glucose", "pyruvate"])
+    ('pyruvate',)
+    """
+    from difflib import SequenceMatcher
+
+    lower = name.casefold()
+    scored = []
+    for candidate in dict.fromkeys(candidates):
+        matcher = SequenceMatcher(None, lower, candidate.casefold())
+        if matcher.real_quick_ratio() < 0.6 or matcher.quick_ratio() < 0.6:
+            continue
+        ratio = matcher.ratio()
+        allowed = 0.66 if len(lower) <= 4 else 0.74
+        if ratio >= allowed:
+            scored.append((-ratio, candidate))
+    return tuple(candidate for _, candidate in sorted(scored)[:most])
+
+
+def only_case_differs(name: str, candidates: Iterable[str]) -> str | None:
+    """The candidate that is the same but for upper and lower case."""
+    lower = name.casefold()
+    return next((c for c in candidates if c.casefold() == lower and c != name), None)

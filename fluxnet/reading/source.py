@@ -1,0 +1,95 @@
+"""Files of text: found, decoded, cut into lines. What cannot be read is told, never raised."""
+
+from __future__ import annotations
+
+import re
+from pathlib import Path
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Name
+from fluxnet.ground.source import Source, Span
+
+__all__ = ["MOST_LINES", "read_source", "source_of_text"]
+
+MOST_LINES = 20_000
+"""More lines than this are refused unless they are asked for."""
+
+_LINE_END = re.compile("\r\n|\r|\n")
+
+
+def read_source(
+    path: Path, *, shown: str | None = None, large: bool = False
+) -> tuple[Source | None, tuple[Diagnostic, ...]]:
+    """The text of a file, and what is wrong with it."""
+    name = shown or str(path)
+    span = Span(name, 0)
+    try:
+        if path.is_dir():
+            return None, (Diagnostic(Name.NOT_A_FILE, f"{name} is a folder", span,
+                                     mend="name the file inside it"),)  # fmt: skip
+        data = path.read_bytes()
+    except (FileNotFoundError, NotADirectoryError):
+        return None, (Diagnostic(Name.FILE_MISSING, f"there is no file {name}", span,
+                                 mend=_beside(path)),)  # fmt: skip
+    except (OSError, ValueError) as error:
+        reason = getattr(error, "strerror", None) or str(error)
+        return None, (Diagnostic(Name.FILE_MISSING, f"{name} cannot be opened: {reason}", span),)
+    return _decoded(data, name, large)
+
+
+def _beside(path: Path) -> str | None:
+    from fluxnet.reading.findings import nearest_names
+
+    try:
+        others = [p.name for p in path.parent.iterdir()]
+    except (OSError, ValueError):
+        return f"there is no folder {path.parent}"
+    near = nearest_names(path.name, others)
+    return f"a file with a similar name is there: {', '.join(near)}" if near else None
+
+
+def _decoded(
+    data: bytes, name: str, large: bool
+) -> tuple[Source | None, tuple[Diagnostic, ...]]:
+    notes: list[Diagnostic] = []
+    span = Span(name, 0)
+    if data.startswith((b"\xff\xfe", b"\xfe\xff")):
+        text = data.decode("utf-16", errors="replace")
+    elif b"\x00" in data[:65536] or data.startswith((b"PK\x03\x04", b"%PDF")):
+        return None, (Diagnostic(Name.BINARY_FILE, f"{name} is not a text file", span,
+                                 mend="save it as plain text (UTF-8)"),)  # fmt: skip
+    else:
+        try:
+            text = data.decode("utf-8-sig")
+        except UnicodeDecodeError as error:
+            text = data.decode("latin-1")
+            line = data.count(b"\n", 0, error.start) + 1
+            notes.append(
+                Diagnostic(Name.WRONG_ENCODING, f"{name} is not UTF-8; it was read as Latin-1",
+                           Span(name, line), mend="save the file as UTF-8")  # fmt: skip
+            )
+    source, more = source_of_text(text, name, large=large)
+    return source, (*notes, *more)
+
+
+def source_of_text(
+    text: str, name: str, *, large: bool = False
+) -> tuple[Source | None, tuple[Diagnostic, ...]]:
+    """A text cut into lines, and what is wrong with it as a whole."""
+    lines = _LINE_END.split(text.removeprefix("\ufeff"))
+    if len(lines) > 1 and not lines[-1]:
+        lines.pop()
+    span = Span(name, 0)
+    if len(lines) > MOST_LINES and not large:
+        return None, (
+            Diagnostic(
+                Name.FILE_TOO_LONG,
+                f"{name} has {len(lines)} lines; more than {MOST_LINES} are no model as one is "
+                "expected",
+                span, mend="if it is meant, repeat the command with --large",
+            ),
+        )  # fmt: skip
+    if "\x00" in text:
+        return None, (Diagnostic(Name.BINARY_FILE, f"{name} is not a text file", span,
+                                 mend="save it as plain text (UTF-8)"),)  # fmt: skip
+    return Source(name, tuple(lines)), ()
