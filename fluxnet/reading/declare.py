@@ -5,6 +5,7 @@ from __future__ import annotations
 from fractions import Fraction
 
 from fluxnet.ground.names import Name
+from fluxnet.ground.source import Span
 from fluxnet.network.model import Parameter, Role, Species
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
@@ -29,7 +30,7 @@ def claim(scope: Scope, kind: Kind, line: LogicalLine, word: s.Word) -> bool:
         return False
     if name in scope.places:
         before, where = scope.places[name]
-        also = f"line {where.line}" if where.file == line.file else f"{where.file}, line {where.line}"
+        also = place_words(where, line)
         what = "is declared twice" if before is kind else f"is a {before.value} already"
         scope.findings.add(
             Name.DECLARED_TWICE, f"{name} {what} (first in {also})", line, word,
@@ -47,6 +48,11 @@ def claim(scope: Scope, kind: Kind, line: LogicalLine, word: s.Word) -> bool:
     scope.places[name] = (kind, line.span(word.start, word.end))
     scope.folded.setdefault(name.casefold(), name)
     return True
+
+
+def place_words(where: Span, line: LogicalLine) -> str:
+    """``line 3``, with the file where it is another one."""
+    return f"line {where.line}" if where.file == line.file else f"{where.file}, line {where.line}"
 
 
 def declare_species(placed: Placed, said: s.SpeciesLine, scope: Scope) -> tuple[Species, ...]:

@@ -6,7 +6,13 @@ from fractions import Fraction
 
 from fluxnet.ground.names import Name
 from fluxnet.network.model import (
-    Direction, Limit, Quantity, QuantityKind, Relation, Role, Species,
+    Direction,
+    Limit,
+    Quantity,
+    QuantityKind,
+    Relation,
+    Role,
+    Species,
 )  # fmt: skip
 from fluxnet.reading import syntax as s
 from fluxnet.reading.findings import nearest_names

@@ -8,7 +8,9 @@ from pathlib import Path
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Source
+from fluxnet.network.balance import check_balances
 from fluxnet.network.model import Network
+from fluxnet.network.unknown import solve_unknowns
 from fluxnet.reading.blocks import place_statements
 from fluxnet.reading.findings import Findings
 from fluxnet.reading.lines import logical_lines
@@ -60,6 +62,9 @@ def _read(source: Source, told: tuple[Diagnostic, ...]) -> ModelReading:
         parsed.append((line, statement))
     placed = place_statements(parsed, findings)
     network = resolve_network(placed, Scope(findings))
+    if not has_errors(findings.found):
+        network, unsolved = solve_unknowns(network)
+        findings.found.extend((*unsolved, *check_balances(network)))
     diagnostics = in_order(
         replace(d, source_line=source.line(d.span.line)) if d.span.line else d
         for d in findings.found

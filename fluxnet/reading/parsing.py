@@ -130,7 +130,7 @@ class _Builder(Transformer[Token, Any]):
         return s.NameNode(_word(parts[0]))
 
     def bracket(self, parts: list[Any]) -> s.SumNode:
-        return cast(s.SumNode, parts[1])
+        return cast("s.SumNode", parts[1])
 
     def negative(self, parts: list[Any]) -> s.OperationNode:
         return s.OperationNode("-", None, parts[1], _start(parts[0]), _node_end(parts[1]))
@@ -202,11 +202,11 @@ _RELATION = {"AT_MOST": Relation.AT_MOST, "AT_LEAST": Relation.AT_LEAST,
 
 
 def _start(token: Token) -> int:
-    return cast(int, token.start_pos)
+    return cast("int", token.start_pos)
 
 
 def _end(token: Token) -> int:
-    return cast(int, token.end_pos)
+    return cast("int", token.end_pos)
 
 
 def _word(token: Token) -> s.Word:
@@ -283,6 +283,6 @@ _parser = cache(statement_parser)
 def parse_statement(text: str) -> s.Statement | None:
     """The statement of a logical line, or None where it is none."""
     try:
-        return cast(s.Statement, _parser().parse(text))
+        return cast("s.Statement", _parser().parse(text))
     except lark.exceptions.UnexpectedInput:
         return None

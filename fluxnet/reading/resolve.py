@@ -7,7 +7,13 @@ from collections.abc import Sequence
 from fluxnet.ground.diagnostic import Acceptance
 from fluxnet.ground.names import Name
 from fluxnet.network.model import (
-    Basis, Compartment, Limit, Network, Parameter, Reaction, Species,
+    Basis,
+    Compartment,
+    Limit,
+    Network,
+    Parameter,
+    Reaction,
+    Species,
 )  # fmt: skip
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed

@@ -66,7 +66,7 @@ def _decoded(
             line = data.count(b"\n", 0, error.start) + 1
             notes.append(
                 Diagnostic(Name.WRONG_ENCODING, f"{name} is not UTF-8; it was read as Latin-1",
-                           Span(name, line), mend="save the file as UTF-8")  # fmt: skip
+                           Span(name, line), mend="save the file as UTF-8")
             )
     source, more = source_of_text(text, name, large=large)
     return source, (*notes, *more)
