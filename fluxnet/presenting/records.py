@@ -15,7 +15,10 @@ import fluxnet
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.source import Span
 
-__all__ = ["Document", "Input", "diagnostic_record", "document_text", "hash_file", "span_record"]
+__all__ = [
+    "Document", "Input", "diagnostic_record", "document_text", "hash_bytes", "hash_file",
+    "span_record",
+]
 
 Record = dict[str, Any]
 
@@ -39,7 +42,12 @@ class Input:
 
 def hash_file(path: Path, shown: str) -> Input:
     """The input as named by the user, with its hash."""
-    return Input(shown, hashlib.sha256(path.read_bytes()).hexdigest())
+    return hash_bytes(path.read_bytes(), shown)
+
+
+def hash_bytes(data: bytes, shown: str) -> Input:
+    """The input that was read as these bytes, with their hash."""
+    return Input(shown, hashlib.sha256(data).hexdigest())
 
 
 def document_text(

@@ -143,8 +143,11 @@ class Terminal:
             )
         for row in rows:
             grid.add_row(*(Text(self._plain(cell)) for cell in row))
-        console.print()
-        console.print(grid)
+        with console.capture() as capture:
+            console.print()
+            console.print(grid)
+        # rich fills every line to the table's width; a pipe has no use for that.
+        print("\n".join(line.rstrip() for line in capture.get().split("\n")), file=self.stream, end="")
         for note in table.notes:
             self._print(console, "  " + note, "dim")
 

@@ -1,0 +1,54 @@
+"""Where a result goes: the terminal, JSON, CSV files, a workbook."""
+
+from __future__ import annotations
+
+import argparse
+import sys
+from collections.abc import Mapping, Sequence
+from typing import Any
+
+from fluxnet.cli.main import Exit
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.presenting.files import write_csv, write_workbook
+from fluxnet.presenting.records import Input, document_text
+from fluxnet.presenting.screen import Block, screen_tables
+from fluxnet.presenting.terminal import Terminal
+
+__all__ = ["give_findings", "give_screen"]
+
+
+def give_screen(
+    arguments: argparse.Namespace,
+    document: str,
+    inputs: Sequence[Input],
+    diagnostics: Sequence[Diagnostic],
+    body: Mapping[str, Any],
+    screen: tuple[Block, ...],
+    *,
+    sound: bool = True,
+) -> int:
+    """Give one result in every form that was asked for, and the exit status.
+
+    Standard output carries the result; where files were written is said on standard error.
+    """
+    tables = screen_tables(screen)
+    if arguments.csv is not None:
+        paths = write_csv(tables, arguments.csv, force=arguments.force)
+        print(f"wrote {len(paths)} tables into {arguments.csv}", file=sys.stderr)
+    if arguments.xlsx is not None:
+        write_workbook(tables, arguments.xlsx, force=arguments.force)
+        print(f"wrote {arguments.xlsx}", file=sys.stderr)
+    if arguments.json:
+        print(document_text(document, inputs, diagnostics, body))
+    else:
+        Terminal.on(no_color=arguments.no_color).show(screen, quiet=arguments.quiet)
+    return Exit.SOUND if sound else Exit.FINDING
+
+
+def give_findings(arguments: argparse.Namespace, diagnostics: Sequence[Diagnostic]) -> None:
+    """Tell findings about the input, on standard error; JSON carries them itself."""
+    if diagnostics and not arguments.json:
+        most = len(diagnostics) if arguments.all else 20
+        Terminal.on(sys.stderr, no_color=arguments.no_color).show_diagnostics(
+            tuple(diagnostics), most=most
+        )

@@ -1,0 +1,185 @@
+"""The answer to "what did the cell do": one frozen result for every way of asking."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from enum import Enum
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.network.model import Limit, Network, Quantity
+from fluxnet.solving.conflict import Conflict, LeastChange
+from fluxnet.solving.unbounded import Unbounded
+from fluxnet.studies.aims import Aim
+from fluxnet.studies.equations import NetEquation
+from fluxnet.studies.ledger import LedgerLine
+from fluxnet.studies.yields import Yield
+
+__all__ = [
+    "BindingLimit", "FluxEstimate", "FluxKind", "FluxSolution", "FluxTest", "MovedParameter",
+    "RateEstimate", "RateKind", "Solution", "SolveStatus",
+]
+
+
+class SolveStatus(Enum):
+    """How a solve ended.
+
+    ``SOLVED``: fluxes found, and neither the balances nor the limits reject the rates.
+    ``INCONSISTENT``: fluxes found, but the rates are rejected at 5 %. ``OPTIMAL``: the aim's
+    best value found. ``INFEASIBLE``: what must hold exactly has no solution. ``UNBOUNDED``:
+    the aim has no best value.
+    """
+
+    SOLVED = "solved"
+    INCONSISTENT = "inconsistent"
+    OPTIMAL = "optimal"
+    INFEASIBLE = "infeasible"
+    UNBOUNDED = "unbounded"
+
+    @property
+    def is_sound(self) -> bool:
+        """Whether nothing is wrong with data and model."""
+        return self in (SolveStatus.SOLVED, SolveStatus.OPTIMAL)
+
+
+class FluxKind(Enum):
+    """Whether what is known leaves a flux one value."""
+
+    DETERMINED = "determined"
+    UNDETERMINED = "undetermined"
+
+
+class RateKind(Enum):
+    """What the balances say of a rate: tested by the others, or not; calculable, or not."""
+
+    BALANCEABLE = "balanceable"
+    NOT_BALANCEABLE = "not_balanceable"
+    CALCULABLE = "calculable"
+    NOT_CALCULABLE = "not_calculable"
+
+
+@dataclass(frozen=True, slots=True)
+class FluxEstimate:
+    """A reaction's flux, in the unit of the rates.
+
+    ``value`` is the representative shown (of an undetermined flux: that of the least total
+    flux); ``sd`` is None where it is not determined. ``low`` to ``high`` is what 95 % of the
+    evidence allows, ``best_low`` to ``best_high`` the range at the best fit or optimum;
+    infinities mark open ends.
+    """
+
+    reaction: str
+    compartment: str
+    value: float
+    sd: float | None
+    low: float
+    high: float
+    best_low: float
+    best_high: float
+    kind: FluxKind
+
+
+@dataclass(frozen=True, slots=True)
+class RateEstimate:
+    """A boundary rate (or another measured quantity), in its direction.
+
+    ``measured`` and ``sd`` are None where it was not measured; ``z`` is the adjustment over
+    its sd. ``reversed_`` marks a rate that came out against its direction.
+    """
+
+    quantity: Quantity
+    unit: str
+    measured: float | None
+    sd: float | None
+    reconciled: float
+    reconciled_sd: float | None
+    low: float
+    high: float
+    z: float | None
+    kind: RateKind
+    reversed_: bool = False
+
+
+@dataclass(frozen=True, slots=True)
+class FluxTest:
+    """Whether the rates agree with the balances, and what the bounds add.
+
+    ``h`` is the least weighted sum of squares under the equalities alone, chi-squared with
+    ``dof`` degrees of freedom; None where nothing is redundant. ``bound_h`` is what the bounds
+    add to it, ``bound_p`` its probability by parametric bootstrap, ``active`` the bounds that
+    hold the fit back.
+    """
+
+    h: float | None
+    dof: int
+    p: float | None
+    limit: float | None
+    closes: bool | None
+    bound_h: float
+    bound_p: float | None
+    active: tuple[str, ...] = ()
+    pulling: tuple[str, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class MovedParameter:
+    """A parameter with ± and where the fit moved it."""
+
+    name: str
+    value: float
+    sd: float
+    moved: float
+    moved_sd: float
+
+
+@dataclass(frozen=True, slots=True)
+class BindingLimit:
+    """A limit that holds the optimum back; ``worth`` is the aim's gain per unit of it."""
+
+    name: str
+    value: float
+    worth: float
+
+
+@dataclass(frozen=True, slots=True)
+class FluxSolution:
+    """The answer for one run (None: the model's limits alone)."""
+
+    run: str | None
+    variant: str
+    status: SolveStatus
+    unit: str
+    words: str
+    aim: Aim | None = None
+    optimum: float | None = None
+    within: float | None = None
+    fluxes: tuple[FluxEstimate, ...] = ()
+    rates: tuple[RateEstimate, ...] = ()
+    test: FluxTest | None = None
+    ledger: tuple[LedgerLine, ...] = ()
+    equations: tuple[NetEquation, ...] = ()
+    yields: tuple[Yield, ...] = ()
+    limits: tuple[BindingLimit, ...] = ()
+    relations: tuple[str, ...] = ()
+    moved: tuple[MovedParameter, ...] = ()
+    conflict: Conflict | None = None
+    least_change: LeastChange | None = None
+    unbounded: Unbounded | None = None
+    violated_limits: tuple[str, ...] = ()
+    left_free: tuple[str, ...] = ()
+    left_out: tuple[Limit, ...] = ()
+    replaced: tuple[Limit, ...] = ()
+    residual: float = 0.0
+    notes: tuple[Diagnostic, ...] = ()
+
+
+@dataclass(frozen=True, slots=True)
+class Solution:
+    """The answers for all runs that were asked for, and the network that they were asked of."""
+
+    network: Network
+    runs: tuple[FluxSolution, ...]
+
+    @property
+    def is_sound(self) -> bool:
+        """Whether nothing is wrong with any run."""
+        return all(run.status.is_sound for run in self.runs)
