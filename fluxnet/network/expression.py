@@ -160,6 +160,22 @@ class Expression:
         return self.numerator.number if self.denominator == _UNIT else None
 
     @property
+    def constant_value(self) -> Fraction | None:
+        """The number that it is for every value of its parameters, else None.
+
+        Examples
+        --------
+        >>> a = parameter("a")
+        >>> (a / (a + a)).constant_value
+        Fraction(1, 2)
+        """
+        number = self.number
+        if number is None and self.numerator.terms:
+            quotient = self.numerator.terms[0][1] / self.denominator.terms[0][1]
+            number = quotient if self == constant(quotient) else None
+        return Fraction(0) if self.is_zero else number
+
+    @property
     def parameters(self) -> frozenset[str]:
         """The names of the parameters in it."""
         polynomials = (self.numerator, self.denominator)

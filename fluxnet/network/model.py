@@ -247,7 +247,8 @@ class Network:
     """A whole model, every line of it resolved; the order is the file's.
 
     ``free`` names species that any reaction may use or make unwritten; phosphate is one of
-    them unless ``balance_phosphate``. Built by :func:`fluxnet.reading.model.read_model`; changed only by making another.
+    them unless ``balance_phosphate``. Built by :func:`fluxnet.reading.model.read_model`;
+    changed only by making another.
     """
 
     title: str

@@ -1,0 +1,158 @@
+"""``?`` coefficients, solved from the reaction's own balances as expressions."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass, replace
+from fractions import Fraction
+
+from fluxnet.exact.linear import independent_rows, kernel, solve
+from fluxnet.ground.diagnostic import Diagnostic, has_errors
+from fluxnet.network.contents import Content, Functional
+from fluxnet.network.expression import ZERO, Expression
+from fluxnet.network.line_balance import (
+    Contents,
+    Verdict,
+    balance_line,
+    contents_of_network,
+    line_functionals,
+)
+from fluxnet.network.model import Network, Reaction, Term
+from fluxnet.network.unknown_signs import sign_findings
+from fluxnet.network.unknown_words import contradiction, free_unknowns, unseen_composition
+from fluxnet.network.water import water_of
+
+__all__ = ["solve_unknowns"]
+
+
+@dataclass(frozen=True, slots=True)
+class _Unknown:
+    """A ``?`` of one reaction: its side (-1 left, +1 right) and its place on that side."""
+
+    sign: int
+    place: int
+    term: Term
+
+
+def solve_unknowns(
+    network: Network, reactions: Iterable[Reaction] | None = None
+) -> tuple[Network, tuple[Diagnostic, ...]]:
+    """Solve every ``?`` of a network.
+
+    The balances of a line are linear in its ``?``. Where they are more than the ``?``, the
+    first independent ones are solved, in the order carbon, nitrogen, sulfur, phosphorus, the
+    other elements, electrons; the rest must then close within the rounding of the written
+    numbers, else the line contradicts itself.
+
+    Parameters
+    ----------
+    network
+        A network with ``?`` (terms whose coefficient is None, or that were solved before).
+    reactions
+        Report on these reactions only (default: all); all are solved.
+
+    Returns
+    -------
+    Network
+        The network with solved terms. A line with an error keeps its ``?``. A coefficient
+        that comes out as zero stays in its line with the value 0.
+    tuple of Diagnostic
+        ``coefficient-free``, ``-contradicts``, ``-negative``, ``-changes-sign``, ``-zero``.
+    """
+    contents = contents_of_network(network)
+    chosen = None if reactions is None else {r.name for r in reactions}
+    found: list[Diagnostic] = []
+    solved: list[Reaction] = []
+    for reaction in network.reactions:
+        after, diagnostics = _solve_line(reaction, contents)
+        solved.append(after)
+        if chosen is None or reaction.name in chosen:
+            found.extend(diagnostics)
+    if all(a is b for a, b in zip(solved, network.reactions, strict=True)):
+        return network, tuple(found)
+    return replace(network, reactions=tuple(solved)), tuple(found)
+
+
+def _solve_line(
+    reaction: Reaction, contents: Contents
+) -> tuple[Reaction, tuple[Diagnostic, ...]]:
+    unknowns = [
+        _Unknown(sign, place, term)
+        for sign, side in ((-1, reaction.left), (1, reaction.right))
+        for place, term in enumerate(side)
+        if term.coefficient is None or term.solved
+    ]
+    if not unknowns:
+        return reaction, ()
+    reaction = _filled(reaction, unknowns, [None] * len(unknowns))
+    names = dict.fromkeys(term.species for _, term in reaction.terms)
+    unseen = [n for n in names if contents.by_species.get(n) is None]
+    if unseen:
+        return reaction, (unseen_composition(reaction, unknowns[0].term, unseen),)
+    present = {n: c for n in names if (c := contents.by_species[n]) is not None}
+    species = [s for n in names if (s := contents.network.find_species(n)) is not None]
+    functionals = line_functionals(present, contents.free, water_of(species).checked)
+    rows = [
+        [u.sign * f.of(present[u.term.species]) for u in unknowns] for f in functionals
+    ]
+    signed = [(u.sign, u.term) for u in unknowns]
+    loose = kernel(rows, len(unknowns))
+    if loose:
+        return reaction, free_unknowns(
+            reaction, signed, loose, functionals, contents.network, present
+        )
+    values = _solution(reaction, functionals, present, rows)
+    after = _filled(reaction, unknowns, values)
+    line = balance_line(after, contents)
+    if line.verdict is Verdict.OPEN:
+        return reaction, (contradiction(reaction, signed, line, contents),)
+    diagnostics = sign_findings(after, signed, values, contents.network.parameters)
+    if has_errors(diagnostics):
+        return reaction, diagnostics
+    return after, diagnostics
+
+
+def _solution(
+    reaction: Reaction,
+    functionals: Sequence[Functional],
+    present: Mapping[str, Content],
+    rows: Sequence[Sequence[Fraction]],
+) -> list[Expression]:
+    """The unknowns from the first independent balances: a rational inverse times the rest."""
+    count = len(rows[0])
+    chosen = independent_rows(rows, count)
+    square = [rows[i] for i in chosen]
+    rests = [_known(reaction, functionals[i], present) for i in chosen]
+    values: list[Expression] = [ZERO] * count
+    for k, rest in enumerate(rests):
+        unit = [Fraction(int(i == k)) for i in range(count)]
+        column = solve(square, unit, count)
+        assert column is not None, "independent rows have a solution"
+        for j, factor in enumerate(column):
+            if factor:
+                values[j] = values[j] - rest.scaled(factor)
+    return values
+
+
+def _known(
+    reaction: Reaction, functional: Functional, present: Mapping[str, Content]
+) -> Expression:
+    """What the written coefficients add up to in one balance, right less left."""
+    total = ZERO
+    for sign, term in reaction.terms:
+        amount = sign * functional.of(present[term.species])
+        if term.coefficient is not None and amount:
+            total = total + term.coefficient.scaled(amount)
+    return total
+
+
+def _filled(
+    reaction: Reaction, unknowns: Sequence[_Unknown], values: Sequence[Expression | None]
+) -> Reaction:
+    """The reaction with these coefficients for its unknowns (None: back to ``?``)."""
+    sides = {-1: list(reaction.left), 1: list(reaction.right)}
+    for unknown, value in zip(unknowns, values, strict=True):
+        sides[unknown.sign][unknown.place] = replace(
+            unknown.term, coefficient=value, solved=value is not None
+        )
+    return replace(reaction, left=tuple(sides[-1]), right=tuple(sides[1]))

@@ -1,0 +1,96 @@
+"""Water and protons that a reaction writes: where they can be checked, and in which form."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass
+from fractions import Fraction
+
+from fluxnet.chemistry.formula import Formula
+from fluxnet.network.contents import CHARGE, PHOSPHATE, Content, content_of_formula
+from fluxnet.network.model import CargoKind, Species
+
+__all__ = ["Water", "at_ph_seven", "form_at_ph_seven", "is_proton", "is_water", "water_of"]
+
+
+@dataclass(frozen=True, slots=True)
+class Water:
+    """``checked``: ``"O"`` where water is checked, ``"charge"`` where protons are.
+
+    ``unchecked_for`` are the carriers that forbid it: those that carry energy, or a cargo
+    without a charge.
+    """
+
+    checked: tuple[str, ...] = ()
+    unchecked_for: tuple[str, ...] = ()
+
+
+def is_water(formula: Formula | None) -> bool:
+    """Whether a composition is water."""
+    return formula is not None and _is(formula, {"H": 2, "O": 1}, 0)
+
+
+def is_proton(formula: Formula | None) -> bool:
+    """Whether a composition is the proton."""
+    return formula is not None and _is(formula, {"H": 1}, 1)
+
+
+def _is(formula: Formula, counts: Mapping[str, int], charge: int) -> bool:
+    return dict(formula.counts) == counts and formula.charge == charge
+
+
+def water_of(species: Sequence[Species]) -> Water:
+    """Which of water and protons can be checked in a line with these species."""
+    written: list[str] = []
+    if any(is_water(s.formula) for s in species):
+        written.append("O")
+    if any(is_proton(s.formula) for s in species):
+        written.append(CHARGE)
+    if not written:
+        return Water()
+    blocking = tuple(
+        s.name
+        for s in species
+        if s.cargo is not None
+        and (s.cargo.kind is CargoKind.ENERGY or not s.cargo.checks_protons)
+    )
+    return Water((), blocking) if blocking else Water(tuple(written))
+
+
+def form_at_ph_seven(species: Species) -> Formula | None:
+    """The form in which a species stands at pH 7.
+
+    The catalogue's form where the model takes the catalogue's formula; a formula of the
+    model's own stands as written, and so do carbon dioxide and biomass.
+    """
+    if species.formula is None or species.entry is None or species.cargo is not None:
+        return species.formula
+    if _is(species.formula, {"C": 1, "O": 2}, 0):
+        return species.formula
+    from fluxnet.chemistry.catalogue import load_catalogue
+
+    compound = load_catalogue().find(species.entry)
+    if compound is None or dict(compound.formula.counts) != dict(species.formula.counts):
+        return species.formula
+    return species.formula if species.formula.charge else compound.formula_ph7
+
+
+def at_ph_seven(
+    species: Iterable[Species], present: Mapping[str, Content], free: Iterable[Content]
+) -> tuple[dict[str, Content], tuple[Content, ...]]:
+    """The contents of a line, and the free ones, with every acid in its form at pH 7."""
+    ionised = dict(present)
+    for one in species:
+        form = form_at_ph_seven(one)
+        if form is not None and one.cargo is None:
+            ionised[one.name] = content_of_formula(form)
+    return ionised, tuple(_phosphate_ion() if f is PHOSPHATE else f for f in free)
+
+
+def _phosphate_ion() -> Content:
+    from fluxnet.chemistry.catalogue import load_catalogue
+
+    compound = load_catalogue().find("phosphate")
+    if compound is not None:
+        return content_of_formula(compound.formula_ph7)
+    return Content({"P": Fraction(1), "O": Fraction(4), "H": Fraction(1), CHARGE: Fraction(-2)}, {})
