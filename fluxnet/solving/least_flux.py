@@ -61,7 +61,7 @@ def least_total_flux(problem: Problem) -> NDArray[np.float64]:
         raise MisuseError("no fluxes meet the bounds: there is no least total")
     fluxes = solution.fluxes[: len(low)].copy()
     fluxes[both] -= solution.fluxes[len(low) :]
-    if solution.outcome is not Outcome.OPTIMAL or worst_violation(problem, fluxes) > 1e-6:
+    if solution.outcome is not Outcome.OPTIMAL or worst_violation(problem, fluxes) > 1e-7:
         raise ArithmeticError("the least total flux could not be found")
     fluxes.setflags(write=False)
     return fluxes

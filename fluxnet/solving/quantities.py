@@ -16,7 +16,7 @@ from fluxnet.network.model import Basis, Direction, Network, Quantity, QuantityK
 
 __all__ = [
     "Frame", "ash_key", "default_direction", "derivative_frame", "frame_at", "has_mu",
-    "number_values", "quantity_row",
+    "number_values", "quantity_row", "units_per_mole",
 ]
 
 Vector = NDArray[np.float64]
@@ -47,7 +47,7 @@ class Frame:
     def row(self, quantity: Quantity, ratio: float | None = None) -> Vector:
         """The row whose product with the fluxes is the quantity's value.
 
-        A ratio A / B gives the row A - ratio B; it counts moles in every basis.
+        A ratio A / B gives the row A - ratio B, both in the unit of the basis.
 
         Raises
         ------
@@ -68,11 +68,7 @@ class Frame:
             case QuantityKind.RATIO:
                 if ratio is None or quantity.numerator is None or quantity.denominator is None:
                     raise MisuseError("a ratio is a row only at a given value")
-                parts = (quantity.numerator, quantity.denominator)
-                frame = self
-                if all(part.kind is not QuantityKind.MU for part in parts):
-                    frame = replace(self, per_mole=np.ones_like(self.per_mole))
-                return frame.row(parts[0]) - ratio * frame.row(parts[1])
+                return self.row(quantity.numerator) - ratio * self.row(quantity.denominator)
 
     def _rate(self, quantity: Quantity) -> Vector:
         try:
@@ -114,6 +110,13 @@ def number_values(network: Network, values: Mapping[str, float] | None = None) -
         if name not in numbers:
             raise MisuseError(f"the model has no parameter {name}")
     return numbers | dict(values or {})
+
+
+def units_per_mole(species: Species, basis: Basis) -> float:
+    """Units of the basis in a mole: the carbon of a boundary species where C-mol are counted."""
+    carbon = species.formula.count("C") if species.formula else Fraction(0)
+    counted = basis is Basis.CARBON and species.role.is_boundary and carbon > 0
+    return float(carbon) if counted else 1.0
 
 
 def has_mu(network: Network, basis: Basis) -> bool:
@@ -189,12 +192,7 @@ def _frame(
     basis: Basis,
     flux: float,
 ) -> Frame:
-    per_mole = np.ones(len(network.species))
-    if basis is Basis.CARBON:
-        for i, species in enumerate(network.species):
-            carbon = species.formula.count("C") if species.formula else Fraction(0)
-            if species.role.is_boundary and carbon > 0:
-                per_mole[i] = float(carbon)
+    per_mole = np.array([units_per_mole(species, basis) for species in network.species])
     growth = None
     if has_mu(network, basis):
         growth = np.zeros(matrix.shape[1])

@@ -1,0 +1,267 @@
+"""The least change of the measured values that lets them hold together with the hard part."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.network.model import Quantity, QuantityKind
+from fluxnet.solving.alter import hard_part
+from fluxnet.solving.linear import Outcome, Programme
+from fluxnet.solving.problem import Problem, Row, RowKind
+from fluxnet.solving.quadratic import solve_quadratic
+
+__all__ = ["Change", "LeastChange", "Violation", "find_violations", "least_change"]
+
+Vector = NDArray[np.float64]
+_PASSES = 30
+
+
+@dataclass(frozen=True, slots=True)
+class Change:
+    """One measured value and what it would have to be.
+
+    Both in the quantity's own unit and direction (a ratio's as a ratio); ``in_sd`` is the
+    signed change in its own sds.
+    """
+
+    name: str
+    quantity: Quantity
+    measured: float
+    changed: float
+    in_sd: float
+
+
+@dataclass(frozen=True, slots=True)
+class LeastChange:
+    """The least change, or ``possible`` False: no change of measured values helps.
+
+    ``changes`` has every measured value with an sd, in the order of the rows; ``total`` is the
+    sum of (change/sd)^2; ``common_k`` the smallest number of sd within which all measured
+    values can hold together. Both are None where it is not possible.
+    """
+
+    possible: bool
+    changes: tuple[Change, ...]
+    total: float | None
+    common_k: float | None
+
+
+@dataclass(frozen=True, slots=True)
+class Violation:
+    """A measured value that by itself lies beyond a limit, by ``in_sd`` of its sds."""
+
+    limit: Row
+    measured: Row
+    in_sd: float
+
+
+def least_change(problem: Problem) -> LeastChange:
+    """The smallest change of measured values that meets everything else.
+
+    min sum ((A v - y) / sd)^2 over the measured rows, subject to all other bounds; limits and
+    exact values do not give way. Bounds on measured rows (within K sd) are lifted. A measured
+    ratio's sd goes with its denominator, which is found in a few passes.
+
+    Returns
+    -------
+    LeastChange
+
+    Raises
+    ------
+    ArithmeticError
+        Where a solver failed.
+    """
+    hard = hard_part(problem)
+    if not Programme(hard).is_feasible():
+        return LeastChange(False, (), None, None)
+    soft = _soft_rows(problem)
+    if not soft.values.size:
+        return LeastChange(True, (), 0.0, 0.0)
+    total, fluxes = _least_squares(hard, soft)
+    changes = _changes(problem, soft, fluxes)
+    enough = max(abs(change.in_sd) for change in changes)
+    return LeastChange(True, changes, total, _common_k(hard, soft, enough))
+
+
+def find_violations(problem: Problem, beyond: float = 2.0) -> tuple[Violation, ...]:
+    """Limits that a measured value of the same quantity violates by more than some sd."""
+    found = []
+    for i, row in enumerate(problem.rows):
+        if row.kind is not RowKind.LIMIT or row.quantity is None or row.ratio is not None:
+            continue
+        for other in problem.rows:
+            if other.value is None or not other.sd or other.quantity is None:
+                continue
+            sign = _same_way(row.quantity, other.quantity)
+            if sign == 0:
+                continue
+            value = sign * other.value
+            over = max(problem.row_low[i] - value, value - problem.row_high[i]) / other.sd
+            if over > beyond:
+                found.append(Violation(row, other, float(over)))
+    return tuple(found)
+
+
+def _same_way(one: Quantity, other: Quantity) -> int:
+    """1 for the same quantity, -1 for the same in the other direction, else 0."""
+    if one == other:
+        return 1
+    rate = QuantityKind.RATE
+    if one.kind is rate and other.kind is rate and one.name == other.name:
+        return -1
+    return 0
+
+
+def _least_squares(hard: Problem, soft: _Soft) -> tuple[float, Vector]:
+    """The smallest sum of squares, and the fluxes that have it."""
+    matrix, count = hard.matrix, len(hard.columns)
+    bounded = np.isfinite(hard.row_low) | np.isfinite(hard.row_high)
+    rows = np.vstack([matrix[bounded], np.eye(count)])
+    low = np.append(hard.row_low[bounded], hard.column_low)
+    high = np.append(hard.row_high[bounded], hard.column_high)
+    sds = soft.sds
+    for _ in range(_PASSES):
+        weighted = soft.rows / sds[:, None]
+        target = soft.values / sds
+        answer = solve_quadratic(
+            weighted.T @ weighted, -weighted.T @ target, rows, low, high
+        )
+        if answer.x is None:
+            raise ArithmeticError(f"the least change could not be found: {answer.outcome.value}")
+        fluxes = answer.x
+        before, sds = sds, soft.sds_at(fluxes)
+        if np.allclose(sds, before, rtol=1e-10, atol=0.0):
+            break
+    return float((((soft.rows @ fluxes - soft.values) / sds) ** 2).sum()), fluxes
+
+
+def _common_k(hard: Problem, soft: _Soft, enough: float) -> float:
+    """The smallest K within which all hold: one programme, or bisection where ratios take part.
+
+    ``enough`` is a K that is known to do.
+    """
+    if not soft.below:
+        count, width = len(soft.values), len(hard.columns)
+        rows = tuple(Row(RowKind.MEASUREMENT, str(i)) for i in range(2 * count))
+        both = np.vstack([soft.rows, soft.rows])
+        slack = np.append(soft.sds, -soft.sds)
+        problem = Problem(
+            columns=(*hard.columns, "K"),
+            rows=hard.rows + rows,
+            matrix=np.vstack(
+                [
+                    np.hstack([hard.matrix, np.zeros((len(hard.rows), 1))]),
+                    np.hstack([both, slack[:, None]]),
+                ]
+            ),
+            row_low=np.concatenate(
+                [hard.row_low, soft.values, np.full(count, -np.inf)]
+            ),
+            row_high=np.concatenate(
+                [hard.row_high, np.full(count, np.inf), soft.values]
+            ),
+            column_low=np.append(hard.column_low, 0.0),
+            column_high=np.append(hard.column_high, np.inf),
+        )
+        solution = Programme(problem).minimise(np.append(np.zeros(width), 1.0))
+        if solution.outcome is not Outcome.OPTIMAL:
+            raise ArithmeticError("the smallest common number of sd could not be found")
+        return max(0.0, solution.objective)
+    low, high = 0.0, enough
+    if soft.holds_within(hard, 0.0):
+        return 0.0
+    while high - low > 1e-10 * max(1.0, high):
+        middle = (low + high) / 2
+        if soft.holds_within(hard, middle):
+            high = middle
+        else:
+            low = middle
+    return high
+
+
+@dataclass(frozen=True, slots=True)
+class _Soft:
+    """The measured rows. ``below`` holds the row of each ratio's denominator, by place."""
+
+    rows: Vector
+    values: Vector
+    sds: Vector
+    own: Vector
+    below: dict[int, Vector]
+
+    def sds_at(self, fluxes: Vector) -> Vector:
+        """The sds of the rows, those of ratios at the denominators that fluxes give."""
+        sds = self.sds.copy()
+        for k, row in self.below.items():
+            size = abs(float(row @ fluxes))
+            sds[k] = self.own[k] * size if size else sds[k]
+        return sds
+
+    def holds_within(self, hard: Problem, k: float) -> bool:
+        """Whether all can hold within k sd; a ratio's bounds are exact, not linearised."""
+        matrix, low, high = self.rows.copy(), self.values - k * self.sds, self.values + k * self.sds
+        extra = []
+        for place, row in self.below.items():
+            half = k * self.own[place]
+            extra.append(matrix[place] + half * row)
+            matrix[place] = matrix[place] - half * row
+            low[place], high[place] = -np.inf, 0.0
+        more = len(extra)
+        names = tuple(
+            Row(RowKind.MEASUREMENT, str(i)) for i in range(len(self.values) + more)
+        )
+        problem = replace(
+            hard,
+            rows=hard.rows + names,
+            matrix=np.vstack([hard.matrix, matrix, *extra]),
+            row_low=np.concatenate([hard.row_low, low, np.zeros(more)]),
+            row_high=np.concatenate([hard.row_high, high, np.full(more, np.inf)]),
+        )
+        return Programme(problem).is_feasible()
+
+
+def _soft_rows(problem: Problem) -> _Soft:
+    places = [i for i, row in enumerate(problem.rows) if row.sd is not None and row.sd > 0]
+    below: dict[int, Vector] = {}
+    for k, i in enumerate(places):
+        quantity = problem.rows[i].quantity
+        if quantity is not None and quantity.denominator is not None:
+            row = _row_of(problem, quantity.denominator)
+            if row is not None:
+                below[k] = row
+    rows = [problem.rows[i] for i in places]
+    sds = np.array([row.sd for row in rows], dtype=np.float64)
+    sizes = np.array([row.denominator or 1.0 for row in rows])
+    values = np.array([row.value for row in rows], dtype=np.float64)
+    return _Soft(problem.matrix[places], values, sds, sds / sizes, below)
+
+
+def _row_of(problem: Problem, quantity: Quantity) -> Vector | None:
+    """The row of a quantity that the problem itself holds, in any direction."""
+    if quantity.kind is QuantityKind.FLUX:
+        row = np.zeros(len(problem.columns))
+        row[problem.column(quantity.name)] = 1.0
+        return row
+    for i, label in enumerate(problem.rows):
+        sign = _same_way(quantity, label.quantity) if label.quantity is not None else 0
+        if sign:
+            found: Vector = sign * problem.matrix[i]
+            return found
+    return None
+
+
+def _changes(problem: Problem, soft: _Soft, fluxes: Vector) -> tuple[Change, ...]:
+    labels = [row for row in problem.rows if row.sd is not None and row.sd > 0]
+    gaps, sds = soft.rows @ fluxes - soft.values, soft.sds_at(fluxes)
+    changes = []
+    for k, label in enumerate(labels):
+        measured, moved = float(soft.values[k]), float(gaps[k])
+        if label.ratio is not None:
+            measured, moved = label.ratio, moved * float(soft.own[k] / sds[k])
+        in_sd = float(gaps[k] / sds[k])
+        if label.quantity is not None:
+            changes.append(Change(label.name, label.quantity, measured, measured + moved, in_sd))
+    return tuple(changes)
