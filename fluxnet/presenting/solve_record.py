@@ -1,0 +1,186 @@
+"""A solve as data: the keys that others rely on."""
+
+from __future__ import annotations
+
+from typing import Any
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.network.model import Quantity, QuantityKind
+from fluxnet.presenting.records import diagnostic_record
+from fluxnet.solving.words import limit_words
+from fluxnet.studies.solution import FluxSolution, Solution
+
+__all__ = ["quantity_record", "solve_record"]
+
+Record = dict[str, Any]
+
+
+def solve_record(solution: Solution, accepted: tuple[Diagnostic, ...] = ()) -> Record:
+    """The body of a ``solve/1`` document."""
+    return {
+        "runs": [_run(run) for run in solution.runs],
+        "accepted": [diagnostic_record(d) for d in accepted],
+    }
+
+
+def quantity_record(quantity: Quantity) -> Record:
+    """A quantity: the species (or reaction, or ratio) and the direction."""
+    is_rate = quantity.kind is QuantityKind.RATE
+    return {
+        "species": quantity.name if is_rate else str(quantity),
+        "direction": quantity.direction.value if is_rate and quantity.direction else None,
+    }
+
+
+def _run(run: FluxSolution) -> Record:
+    test = run.test
+    return {
+        "run": run.run,
+        "variant": run.variant,
+        "status": run.status.value,
+        "words": run.words,
+        "unit": run.unit,
+        "aim": None if run.aim is None else str(run.aim),
+        "optimum": run.optimum,
+        "within": run.within,
+        "fluxes": [
+            {
+                "reaction": f.reaction,
+                "compartment": f.compartment,
+                "value": f.value,
+                "sd": f.sd,
+                "low": f.low,
+                "high": f.high,
+                "best_low": f.best_low,
+                "best_high": f.best_high,
+                "kind": f.kind.value,
+            }
+            for f in run.fluxes
+        ],
+        "rates": [
+            {
+                **quantity_record(r.quantity),
+                "unit": r.unit,
+                "measured": r.measured,
+                "sd": r.sd,
+                "reconciled": r.reconciled,
+                "reconciled_sd": r.reconciled_sd,
+                "low": r.low,
+                "high": r.high,
+                "z": r.z,
+                "kind": r.kind.value,
+                "reversed": r.reversed_,
+            }
+            for r in run.rates
+        ],
+        "test": None
+        if test is None
+        else {
+            "h": test.h,
+            "dof": test.dof,
+            "p": test.p,
+            "limit": test.limit,
+            "closes": test.closes,
+            "bound_h": test.bound_h,
+            "bound_p": test.bound_p,
+            "active_bounds": list(test.active),
+            "pulling_bounds": list(test.pulling),
+        },
+        "ledger": [
+            {
+                "carrier": line.carrier,
+                "compartment": line.compartment,
+                "made": line.made,
+                "spent": line.spent,
+                "net": line.net,
+                "sd": line.sd,
+                "low": line.low,
+                "high": line.high,
+            }
+            for line in run.ledger
+        ],
+        "equations": [
+            {
+                "compartment": equation.compartment,
+                "terms": [
+                    {
+                        "species": term.species,
+                        "coefficient": term.coefficient,
+                        "implied": term.implied,
+                    }
+                    for term in equation.terms
+                ],
+                "per": equation.per,
+                "per_amount": equation.per_amount,
+                "base": equation.base,
+            }
+            for equation in run.equations
+        ],
+        "yields": [
+            {
+                "product": y.product,
+                "substrate": y.substrate,
+                "mol_per_mol": y.per_mole,
+                "g_per_g": y.per_mass,
+                "cmol_per_cmol": y.per_carbon,
+            }
+            for y in run.yields
+        ],
+        "relations": list(run.relations),
+        "prices": [],
+        "limits": [{"name": x.name, "value": x.value, "worth": x.worth} for x in run.limits],
+        "conflict": _conflict(run),
+        "unbounded": None
+        if run.unbounded is None
+        else {
+            "words": run.unbounded.words,
+            "steps": [
+                {"reaction": s.reaction, "coefficient": s.coefficient} for s in run.unbounded.steps
+            ],
+        },
+        "violated_limits": list(run.violated_limits),
+        # Nothing is called proven until the proof has been checked in exact arithmetic.
+        "proof": {"verified": False, "residual": run.residual},
+        "left_free": list(run.left_free),
+        "left_out": [limit_words(limit) for limit in run.left_out],
+        "replaced": [limit_words(limit) for limit in run.replaced],
+        "moved_parameters": [
+            {
+                "name": m.name,
+                "value": m.value,
+                "sd": m.sd,
+                "moved": m.moved,
+                "moved_sd": m.moved_sd,
+            }
+            for m in run.moved
+        ],
+        "notes": [diagnostic_record(note) for note in run.notes],
+    }
+
+
+def _conflict(run: FluxSolution) -> Record | None:
+    if run.conflict is None or not run.conflict.members:
+        return None
+    change = run.least_change
+    return {
+        "members": [
+            {"kind": m.kind.value, "name": m.name, "words": m.words} for m in run.conflict.members
+        ],
+        "irreducible": run.conflict.verified,
+        "bill": [],
+        "least_change": []
+        if change is None
+        else [
+            {
+                **quantity_record(c.quantity),
+                "measured": c.measured,
+                "changed": c.changed,
+                "in_sd": c.in_sd,
+            }
+            for c in change.changes
+        ],
+        "possible": None if change is None else change.possible,
+        "total": None if change is None else change.total,
+        "smallest_common_sd": None if change is None else change.common_k,
+        "words": run.words,
+    }

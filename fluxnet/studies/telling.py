@@ -1,0 +1,118 @@
+"""One sentence that says what was found."""
+
+from __future__ import annotations
+
+from fluxnet.solving.conflict import Conflict, LeastChange
+from fluxnet.solving.unbounded import Unbounded
+from fluxnet.studies.aims import Aim
+from fluxnet.studies.solution import FluxKind, FluxSolution, FluxTest, RateKind
+
+__all__ = ["tell_fit", "tell_infeasible", "tell_optimum", "tell_unbounded"]
+
+
+def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
+    """What a least-squares solve found."""
+    determined = sum(f.kind is FluxKind.DETERMINED for f in solution.fluxes)
+    known = f"{determined} of {len(solution.fluxes)} fluxes are determined"
+    spender = _largest_spender(solution)
+    if test.h is None:
+        return f"The rates fit the network, but none tests another; {known}.{spender}"
+    chance = "below 0.001" if test.p is not None and test.p < 0.001 else f"{test.p:.2g}"
+    if test.closes is False:
+        worst = _worst(solution)
+        return (
+            f"The rates and the network do not agree: by chance they would differ so much with a "
+            f"probability {chance}; {worst}. Fluxes are given, and not to be trusted."
+        )
+    if test.bound_p is not None and test.bound_p < 0.05:
+        return (
+            "The rates balance, but only with fluxes that the limits forbid: "
+            f"{', '.join(test.active)}. Fluxes are given, and not to be trusted."
+        )
+    return f"The rates and the network agree (p = {chance}); {known}.{spender}"
+
+
+def _worst(solution: FluxSolution) -> str:
+    moved = [r for r in solution.rates if r.z is not None and r.kind is RateKind.BALANCEABLE]
+    if not moved:
+        return "no single rate can be named"
+    worst = max(moved, key=lambda rate: abs(rate.z or 0.0))
+    return f"the largest adjustment is that of {worst.quantity} (z = {worst.z:.1f})"
+
+
+def _largest_spender(solution: FluxSolution) -> str:
+    """Who spends the first carrier that is spent, and how much of it."""
+    for carrier in dict.fromkeys(line.carrier for line in solution.ledger):
+        lines = [line for line in solution.ledger if line.carrier == carrier]
+        spent = -sum(line.net for line in lines if line.net < 0)
+        if spent > 0:
+            most = min(lines, key=lambda line: line.net)
+            return (
+                f" Of the {carrier} that compartments make for one another, {most.compartment} "
+                f"spends {-most.net / spent:.0%}."
+            )
+    return ""
+
+
+def tell_optimum(solution: FluxSolution) -> str:
+    """What an aim's best value is, per what, and what holds it back."""
+    value = f"{solution.optimum:.4g} {_aim_unit(solution)}"
+    words = f"The best that the network allows: {solution.aim} gives {value}"
+    share = _share(solution)
+    words += f"{share}. "
+    if solution.limits:
+        words += f"It is held back by {_listed([limit.name for limit in solution.limits[:3]])}."
+    else:
+        words += "No limit of the model holds it back, only the balances."
+    return words
+
+
+def _aim_unit(solution: FluxSolution) -> str:
+    aim = solution.aim
+    is_mu = aim is not None and all(str(quantity) == "mu" for _, quantity in aim.terms)
+    return "1/h" if is_mu else solution.unit
+
+
+def _share(solution: FluxSolution) -> str:
+    """The aim's yield where it is the release of one product."""
+    aim = solution.aim
+    if aim is None or len(aim.terms) != 1:
+        return ""
+    name = aim.terms[0][1].name
+    for line in solution.yields:
+        if line.product == name and line.per_mole is not None:
+            mass = f", {line.per_mass:.4g} g/g" if line.per_mass is not None else ""
+            return f", {line.per_mole:.4g} mol per mol {line.substrate}{mass}"
+    return ""
+
+
+def tell_infeasible(
+    conflict: Conflict, change: LeastChange | None, within: float | None = None
+) -> str:
+    """What cannot hold together, and how much would have to give way."""
+    given = [member.words for member in conflict.given]
+    names = _listed(given) if given else "what the model demands"
+    held = f" within {within:g} sd" if within is not None else ""
+    words = f"No fluxes meet everything{held}: {names} cannot hold together"
+    if change is None:
+        return words + "."
+    if not change.possible:
+        return words + ", and no change of the measured rates mends it."
+    if change.common_k is None or not change.changes:
+        return words + "."
+    most = max(change.changes, key=lambda one: abs(one.in_sd))
+    return (
+        f"{words}. The least change that mends it moves {most.quantity} from {most.measured:.4g} "
+        f"to {most.changed:.4g} ({most.in_sd:+.1f} sd)."
+    )
+
+
+def tell_unbounded(aim: Aim, reason: Unbounded) -> str:
+    """Why an aim has no best value."""
+    return f"To {aim} has no end: {reason.words}."
+
+
+def _listed(words: list[str]) -> str:
+    if len(words) <= 1:
+        return "".join(words)
+    return f"{', '.join(words[:-1])} and {words[-1]}"
