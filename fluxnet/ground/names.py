@@ -263,6 +263,10 @@ class Name(Enum):
     VARIANT_TARGET = (
         "variant-target", _E, "a variant changes a thing that the model does not have",
         "The change would have no effect.", "Write the nearest name.")
+    STILL_USED = (
+        "still-used", _E, "a variant drops a thing that something else still uses",
+        "What is left would name a thing that is not there.",
+        "Drop what uses it as well, or keep it.")
     VARIANT_EMPTY = (
         "variant-empty", _W, "a variant changes nothing",
         "It gives the same answers as base.", "Write its changes, or take it away.")
@@ -403,6 +407,14 @@ class Name(Enum):
     TABLE_UNDERSTOOD = (
         "table-understood", _N, "how a table was read", "What is guessed is said.",
         "Overrule it with --decimal, --separator or --sheet.")
+    BIOMASS_ASSUMED = (
+        "biomass-assumed", _N, "a table names biomass, and nothing says its formula",
+        "CH1.8O0.5N0.2 without ash is taken; its nitrogen and ash decide several per cent.",
+        "Write a line `biomass X CH1.8O0.5N0.2 ash 8 %` above the table, or give the model.")
+    NOT_IN_MODEL = (
+        "not-in-model", _W, "a measured species is not in the model",
+        "Closure counts it by the catalogue's formula; no flux of the model can make or use it.",
+        "Declare it in the model, or leave its row out.")
     FREE_ACID_TAKEN = (
         "free-acid-taken", _N, "grams of an acid or its ion are taken as grams of the free acid",
         "The sodium salt is heavier by up to 40 %.",
