@@ -49,7 +49,7 @@ def solve_unknowns(
     network
         A network with ``?`` (terms whose coefficient is None, or that were solved before).
     reactions
-        Report on these reactions only (default: all); all are solved.
+        Only these reactions (default: all).
 
     Returns
     -------
@@ -64,10 +64,10 @@ def solve_unknowns(
     found: list[Diagnostic] = []
     solved: list[Reaction] = []
     for reaction in network.reactions:
-        after, diagnostics = _solve_line(reaction, contents)
-        solved.append(after)
         if chosen is None or reaction.name in chosen:
+            reaction, diagnostics = _solve_line(reaction, contents)
             found.extend(diagnostics)
+        solved.append(reaction)
     if all(a is b for a, b in zip(solved, network.reactions, strict=True)):
         return network, tuple(found)
     return replace(network, reactions=tuple(solved)), tuple(found)

@@ -1,0 +1,103 @@
+"""Coefficients that are written as numbers or expressions: their signs and their spread."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator, Mapping
+from fractions import Fraction
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Name
+from fluxnet.network.amounts import number_text
+from fluxnet.network.model import Network, Parameter, Reaction, Term
+from fluxnet.network.unknown_signs import changes_sign
+
+__all__ = ["check_coefficients"]
+
+_WIDEST = 10**10
+
+
+def check_coefficients(
+    network: Network, reactions: Iterable[Reaction] | None = None
+) -> tuple[Diagnostic, ...]:
+    """Check the coefficients as written; those solved for ``?`` are judged where solved.
+
+    Parameters
+    ----------
+    network
+        Where the parameters are declared.
+    reactions
+        Only these reactions (default: all).
+
+    Returns
+    -------
+    tuple of Diagnostic
+        ``division-by-zero`` and ``coefficient-not-positive`` at the parameters' values,
+        ``coefficient-changes-sign`` within their ranges, ``wide-coefficients`` for a reaction
+        whose coefficients differ by more than ten decades.
+    """
+    parameters = {p.name: p for p in network.parameters}
+    found: list[Diagnostic] = []
+    for reaction in network.reactions if reactions is None else reactions:
+        sizes: list[Fraction] = []
+        for _, term in reaction.terms:
+            if term.coefficient is not None and not term.solved:
+                found.extend(_term_findings(reaction, term, parameters, sizes))
+        if sizes and max(sizes) > _WIDEST * min(sizes):
+            found.append(
+                Diagnostic(
+                    Name.WIDE_COEFFICIENTS,
+                    f"the coefficients of {reaction.name} run from {float(min(sizes)):.3g} "
+                    f"to {float(max(sizes)):.3g}",
+                    reaction.span,
+                    mend="write the reaction per another amount, or check the numbers",
+                )
+            )
+    return tuple(found)
+
+
+def _term_findings(
+    reaction: Reaction, term: Term, parameters: Mapping[str, Parameter], sizes: list[Fraction]
+) -> Iterator[Diagnostic]:
+    coefficient = term.coefficient
+    if coefficient is None:
+        return
+    number = coefficient.number
+    if number is not None and number > 0:
+        sizes.append(number)
+        return
+    name = f"the coefficient of {term.species} in {reaction.name}"
+    at = {n: parameters[n].value for n in coefficient.parameters}
+    try:
+        value = coefficient.exact(at)
+    except ZeroDivisionError:
+        yield Diagnostic(
+            Name.DIVISION_BY_ZERO,
+            f"{name}, {term.written}, divides by zero at the parameters' values",
+            term.span,
+            because=_values(at),
+        )
+        return
+    if value <= 0:
+        yield Diagnostic(
+            Name.COEFFICIENT_NOT_POSITIVE,
+            f"{name} is {number_text(value)}",
+            term.span,
+            because=_values(at) or None,
+            mend=f"take {term.species} out"
+            if not value
+            else f"write {term.species} on the other side",
+        )
+        return
+    sizes.append(value)
+    negative = changes_sign(coefficient, parameters)
+    if negative is not None:
+        place, lowest = negative
+        yield Diagnostic(
+            Name.COEFFICIENT_CHANGES_SIGN,
+            f"{name} is {number_text(value)}, but {number_text(lowest)} at {_values(place)}",
+            term.span,
+        )
+
+
+def _values(place: Mapping[str, Fraction]) -> str:
+    return ", ".join(f"{n} = {number_text(v)}" for n, v in sorted(place.items()))

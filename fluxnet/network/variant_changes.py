@@ -1,0 +1,144 @@
+"""What variants change, key by key; overriding and clashes decided without any order.
+
+A change is keyed by the thing that it sets: a species, a parameter, a reaction, the limit on
+one quantity in one direction. Of the variants that take part (those named and all they build
+on, each once) a descendant's change hides its ancestors'. Where two variants remain, of which
+neither builds on the other, their changes must be equal.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from dataclasses import dataclass, replace
+from enum import Enum
+
+from fluxnet.ground.source import NOWHERE, Span
+from fluxnet.network.model import (
+    Direction,
+    Limit,
+    Network,
+    Parameter,
+    Quantity,
+    QuantityKind,
+    Reaction,
+    Species,
+    Variant,
+)
+
+__all__ = [
+    "Change", "ChangeKind", "Key", "Thing", "ancestors_of", "base_thing", "changes_of",
+    "keys_of_limit", "keys_of_quantity", "plain",
+]  # fmt: skip
+
+Thing = Species | Parameter | Reaction | Limit
+
+
+class ChangeKind(Enum):
+    """What kind of thing a change sets; the value is the word for it."""
+
+    SPECIES = "species"
+    PARAMETER = "parameter"
+    REACTION = "reaction"
+    LIMIT = "limit"
+
+
+@dataclass(frozen=True, slots=True)
+class Key:
+    """The thing that a change sets."""
+
+    kind: ChangeKind
+    name: str = ""
+    quantity: Quantity | None = None
+
+    def __str__(self) -> str:
+        if self.kind is ChangeKind.LIMIT:
+            return f"limit {self.quantity}"
+        return self.name
+
+
+@dataclass(frozen=True, slots=True)
+class Change:
+    """One change of one variant; ``value`` None is a drop.
+
+    A parameter's value holds only what its ``set`` line gives.
+    """
+
+    key: Key
+    variant: str
+    value: Thing | None
+    span: Span = NOWHERE
+
+
+def keys_of_quantity(quantity: Quantity) -> tuple[Key, ...]:
+    """The keys that a quantity stands for: a rate without a direction stands for both."""
+    if quantity.kind is QuantityKind.RATE and quantity.direction is None:
+        return tuple(
+            Key(ChangeKind.LIMIT, quantity=replace(quantity, direction=d)) for d in Direction
+        )
+    return (Key(ChangeKind.LIMIT, quantity=quantity),)
+
+
+def keys_of_limit(limit: Limit) -> tuple[Key, ...]:
+    """The keys that a limit sets: ``between in 1 and out 5`` sets both directions."""
+    quantity = limit.quantity
+    if quantity.kind is QuantityKind.RATE and limit.low is not None and limit.low < 0:
+        return keys_of_quantity(replace(quantity, direction=None))
+    return keys_of_quantity(quantity)
+
+
+def ancestors_of(name: str, variants: Mapping[str, Variant]) -> frozenset[str]:
+    """All that a variant builds on, itself left out; the variants must hold no circle."""
+    found: set[str] = set()
+    waiting = list(variants[name].parents)
+    while waiting:
+        parent = waiting.pop()
+        if parent in variants and parent not in found:
+            found.add(parent)
+            waiting.extend(variants[parent].parents)
+    return frozenset(found)
+
+
+def changes_of(variant: Variant, context: frozenset[str]) -> Iterator[Change]:
+    """The changes that a variant makes itself.
+
+    ``context`` are the names of species that are there before it: a dropped name among them is
+    a species, any other a reaction.
+    """
+    for drop in variant.drops:
+        if drop.quantity is not None:
+            for key in keys_of_quantity(drop.quantity):
+                yield Change(key, variant.name, None, drop.span)
+        else:
+            kind = ChangeKind.SPECIES if drop.name in context else ChangeKind.REACTION
+            yield Change(Key(kind, drop.name), variant.name, None, drop.span)
+    for species in variant.species:
+        yield Change(Key(ChangeKind.SPECIES, species.name), variant.name, species, species.span)
+    for setting in variant.settings:
+        yield Change(Key(ChangeKind.PARAMETER, setting.name), variant.name, setting, setting.span)
+    for reaction in variant.reactions:
+        yield Change(Key(ChangeKind.REACTION, reaction.name), variant.name, reaction, reaction.span)
+    for limit in variant.limits:
+        for key in keys_of_limit(limit):
+            yield Change(key, variant.name, limit, limit.span)
+
+
+def plain(thing: Thing | None) -> object:
+    """What two equal things have in common: all but where they stand in the text."""
+    if isinstance(thing, Reaction):
+        terms = tuple(
+            (sign, t.species, None if t.solved else t.coefficient, t.half_unit)
+            for sign, t in thing.terms
+        )
+        return (thing.name, thing.compartment, thing.reversible, terms)
+    return None if thing is None else replace(thing, span=NOWHERE)
+
+
+def base_thing(key: Key, network: Network) -> Thing | None:
+    """What the network has under a key."""
+    if key.kind is ChangeKind.SPECIES:
+        return network.find_species(key.name)
+    if key.kind is ChangeKind.REACTION:
+        return network.find_reaction(key.name)
+    if key.kind is ChangeKind.PARAMETER:
+        return next((p for p in network.parameters if p.name == key.name), None)
+    return next((m for m in network.limits if key in keys_of_limit(m)), None)
