@@ -9,13 +9,13 @@ what does not pass is solved again more carefully, and last by a slow method of 
 from __future__ import annotations
 
 from dataclasses import dataclass
-from enum import Enum
 
 import daqp
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.solving.linear import Outcome
 from fluxnet.solving.nonnegative import find_least_distance
 
 __all__ = ["Outcome", "QuadraticSolution", "solve_quadratic"]
@@ -27,15 +27,6 @@ FEASIBLE = 1e-9
 OPTIMAL = 1e-8
 """Largest accepted gradient left, relative to the sizes of its terms."""
 _NONE = 1e30
-
-
-class Outcome(Enum):
-    """How a programme ended."""
-
-    OPTIMAL = "optimal"
-    INFEASIBLE = "infeasible"
-    UNBOUNDED = "unbounded"
-    FAILED = "failed"
 
 
 @dataclass(frozen=True, slots=True)
