@@ -109,13 +109,15 @@ def find_parts(network: Network, stoich: Stoichiometry) -> tuple[Part, ...]:
 
 
 def tell_dead_ends(network: Network, dead_ends: Collection[DeadEnd]) -> tuple[Diagnostic, ...]:
-    """A warning for each dead end, with the reactions that can carry no flux because of it."""
+    """A warning for each dead end, with the reactions that can carry no flux because of it.
+
+    Carriers are told by :func:`fluxnet.checks.carriers.tell_one_way_carriers`.
+    """
     told: list[Diagnostic] = []
     for end in dead_ends:
         species = network.find_species(end.species)
-        if species is None:
+        if species is None or species.role is Role.CARRIER:
             continue
-        is_carrier = species.role is Role.CARRIER
         if set(end.makers) == set(end.users):
             message = f"{end.species} takes part in {end.makers[0]} alone: no flux can pass"
             mend = f"add the other reaction of {end.species}"
@@ -125,9 +127,8 @@ def tell_dead_ends(network: Network, dead_ends: Collection[DeadEnd]) -> tuple[Di
         else:
             message = f"{end.species} is used by {and_list(end.users)}, but nothing makes it"
             mend = f"add the reaction that makes {end.species}"
-        if not is_carrier:
-            role = "product" if end.makers else "substrate"
-            mend += f", or declare it as a {role}"
+        role = "product" if end.makers else "substrate"
+        mend += f", or declare it as a {role}"
         told.append(
             Diagnostic(
                 Name.DEAD_END,
