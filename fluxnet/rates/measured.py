@@ -9,7 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.source import NOWHERE, Span
-from fluxnet.network.model import Basis, Quantity
+from fluxnet.network.model import Basis, Quantity, Species
 
 __all__ = ["MeasuredRate", "RatesTable", "Run", "SdSource"]
 
@@ -28,8 +28,10 @@ class MeasuredRate:
 
     ``value`` is None where the quantity was exchanged but not measured; then ``sd`` is None.
     ``sd`` is absolute; 0 is exact. ``relative`` is the fraction where the sd was given in %
-    (it is then taken of the reconciled value in one more pass). ``written`` and ``unit`` are
-    the cell as it stood.
+    (it is then taken of the reconciled value in one more pass:
+    :func:`fluxnet.rates.covariance.covariance_at`). ``own_sd`` is given where the rate has a
+    part in the run's shared error: its sd without that part, so that ``sd**2 == own_sd**2 +
+    (shared_error * value)**2``. ``written`` and ``unit`` are the cell as it stood.
     """
 
     quantity: Quantity
@@ -40,6 +42,7 @@ class MeasuredRate:
     written: str = ""
     unit: str = ""
     span: Span = NOWHERE
+    own_sd: float | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,7 +52,13 @@ class Run:
     ``rates`` keep the table's order. ``covariance`` is square over those of ``rates`` that
     have a value, in their order, in units of the basis squared; its diagonal is ``sd**2``;
     None is a diagonal covariance. ``extras`` are the columns carried through.
-    ``basis`` AMOUNT has no time. ``unit`` is the text shown behind every rate (``mmol/g/h``).
+    ``shared_error`` is the relative error of the biomass by which all specific rates were
+    divided; it is in the covariance already.
+
+    Rates count moles: mmol/g/h, mmol/L/h, or an amount in ``unit`` (``mmol``, ``mmol/L``,
+    ``mol/100 mol``, ``mol/C-mol``). In the basis CARBON they count C-mol where the species
+    holds carbon, and moles elsewhere. mu is in 1/h, a ratio counts moles in every basis.
+    ``basis`` AMOUNT has no time. ``unit`` is the text shown behind every rate.
     """
 
     name: str
@@ -73,7 +82,19 @@ class Run:
 
 @dataclass(frozen=True, slots=True)
 class RatesTable:
-    """All runs of one table, and the formulas of species that only the table declares."""
+    """All runs of one table.
+
+    ``species`` are those that the rates name, each once, with formulas: the model's own, then
+    what the table declares, then what the catalogue knows (``entry``), as typed. With a
+    growth rate the biomass species are among them. ``nitrogen`` is the nitrogen source that
+    the table names. ``understood`` tells how the table was read.
+    """
 
     runs: tuple[Run, ...]
     understood: tuple[str, ...] = field(default=())
+    species: tuple[Species, ...] = field(default=())
+    nitrogen: str | None = None
+
+    def find_species(self, name: str) -> Species | None:
+        """The species of that name, or None."""
+        return next((s for s in self.species if s.name == name), None)

@@ -1,0 +1,102 @@
+"""Where the header of a table is, what stood above it, and which of the two forms it has."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field, replace
+from enum import Enum
+
+from fluxnet.network.model import Network
+from fluxnet.tables.grid import Grid, Row
+from fluxnet.tables.quantities import is_quantity_name
+from fluxnet.tables.statements import Statements, joined, read_statement
+from fluxnet.tables.titles import Key, Title, is_header_part, read_title
+from fluxnet.tables.vocabulary import Vocabulary
+
+__all__ = ["Form", "Layout", "find_layout"]
+
+_DEEPEST = 60
+"""Rows in which a header is looked for; notes above a table are not longer."""
+
+
+class Form(Enum):
+    """A long table has a row a quantity, a wide one a row a run."""
+
+    LONG = "long"
+    WIDE = "wide"
+
+
+@dataclass(frozen=True, slots=True)
+class Layout:
+    """How a grid is to be read; ``form`` is None where no header was found.
+
+    ``titles`` are one a column; ``body`` are the rows below the header; ``score`` counts the
+    columns that were understood.
+    """
+
+    form: Form | None
+    titles: tuple[Title, ...]
+    body: tuple[Row, ...]
+    header_rows: int
+    vocabulary: Vocabulary
+    statements: Statements = field(default=Statements())
+    score: int = 0
+    header: Row | None = None
+
+
+def find_layout(grid: Grid, network: Network | None) -> Layout:
+    """Read the lines above the table, then find its header.
+
+    Where no row is a header, the row that comes nearest stands in ``header``.
+    """
+    statements = Statements()
+    vocabulary = Vocabulary(network)
+    nearest: tuple[int, Row | None] = (0, None)
+    for index, row in enumerate(grid.rows[:_DEEPEST]):
+        statement = read_statement(row)
+        if statement is not None:
+            statements = joined(statements, statement)
+            vocabulary = replace(vocabulary, declared=statements.species)
+            continue
+        titles, depth = _titles(grid.rows, index)
+        form, score = _form(titles, vocabulary)
+        if form is not None:
+            body = grid.rows[index + depth :]
+            return Layout(form, titles, body, depth, vocabulary, statements, score, row)
+        if score > nearest[0]:
+            nearest = (score, row)
+        text = " ".join(c.text for c in row.cells if c.text)
+        statements = joined(statements, Statements(notes=(text,)))
+    return Layout(None, (), (), 0, vocabulary, statements, nearest[0], nearest[1])
+
+
+def _titles(rows: tuple[Row, ...], index: int) -> tuple[tuple[Title, ...], int]:
+    """The titles of the header that starts at a row, and how many rows it takes."""
+    depth = 1
+    while depth < 3 and index + depth < len(rows) and _continues(rows[index + depth]):
+        depth += 1
+    width = max(len(r.cells) for r in rows[index : index + depth])
+    below = rows[index + 1 : index + depth]
+    return tuple(
+        read_title(rows[index].cell(j), tuple(r.cell(j).text for r in below)) for j in range(width)
+    ), depth
+
+
+def _continues(row: Row) -> bool:
+    return not row.is_blank and all(
+        c.number is None and c.fault is None and is_header_part(c.text) for c in row.cells
+    )
+
+
+def _form(titles: tuple[Title, ...], vocabulary: Vocabulary) -> tuple[Form | None, int]:
+    """The form that titles tell, and how many of them are understood."""
+    keys = {t.key for t in titles if t.key is not None}
+    if Key.SPECIES in keys and Key.RATE in keys:
+        return Form.LONG, len(keys)
+    plain = [t for t in titles if t.key is None and t.name and not t.is_sd]
+    known = [t for t in plain if is_quantity_name(t.name, vocabulary)]
+    marked = [t for t in plain if t.bracketed or (t.direction and t.name)]
+    sure = [t for t in known if t.bracketed or t.direction]
+    score = len(keys) + len({t.cell.column for t in (*known, *sure)})
+    if sure or len(known) >= 2 or (len(marked) >= 2 and Key.SPECIES not in keys):
+        return Form.WIDE, score + len(marked)
+    return None, score

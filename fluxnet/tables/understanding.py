@@ -1,0 +1,173 @@
+"""From a grid to runs: layout, decimal sign, names, numbers, one basis a run."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Name
+from fluxnet.ground.source import Span
+from fluxnet.network.model import Network, QuantityKind, Role, Species
+from fluxnet.rates.measured import RatesTable
+from fluxnet.tables.biomass_numbers import read_biomass_numbers
+from fluxnet.tables.correlations import Correlation
+from fluxnet.tables.entries import Entries, collect_entries
+from fluxnet.tables.errors_assumed import SdRule
+from fluxnet.tables.grid import Grid
+from fluxnet.tables.layout import Layout, find_layout
+from fluxnet.tables.numerals import Decimal, DecimalChoice, decide_decimal
+from fluxnet.tables.runs import BuiltRun, build_run
+from fluxnet.tables.telling import assumption_notes, tell_understood
+from fluxnet.tables.values import Reading, Readings, cell_fault, read_entries
+from fluxnet.tables.vocabulary import Vocabulary, assumed_biomass, biomass_species
+
+__all__ = ["Understood", "understand"]
+
+
+@dataclass(frozen=True, slots=True)
+class Understood:
+    """A table with everything that was said about it; ``table`` may be None."""
+
+    table: RatesTable | None
+    notes: tuple[str, ...]
+    diagnostics: tuple[Diagnostic, ...] = field(default=())
+
+
+def understand(
+    grid: Grid,
+    network: Network | None,
+    asked: Decimal | None,
+    rule: SdRule,
+    correlations: Sequence[Correlation] = (),
+) -> Understood:
+    """Read the runs of a grid."""
+    layout = find_layout(grid, network)
+    notes = layout.statements.notes + grid.comments
+    faults = list(layout.statements.diagnostics)
+    if layout.form is None:
+        return Understood(None, notes, (*faults, _no_header(grid, layout)))
+    entries = collect_entries(layout)
+    faults.extend(entries.diagnostics)
+    choice = _decimal(entries, grid, asked)
+    faults.extend(_decimal_faults(choice))
+    if choice.doubtful:
+        return Understood(None, notes, tuple(faults))
+    contrary = {c.span for c in choice.contrary}
+    readings = read_entries(
+        [e for e in entries.entries if not {e.value.span, e.sd.span} & contrary],
+        choice.decimal,
+        layout.vocabulary,
+    )
+    faults.extend(readings.diagnostics)
+    if not entries.entries and not entries.diagnostics:
+        faults.append(_no_rows(grid, layout))
+    biomass, assumed = _biomass(readings, layout.vocabulary)
+    runs: list[BuiltRun] = []
+    for head in entries.heads:
+        numbers = read_biomass_numbers(head, layout.statements, choice.decimal)
+        built = build_run(
+            head,
+            [r for r in readings.readings if r.entry.run == head.name],
+            biomass=biomass,
+            model_basis=None if network is None else network.basis,
+            concentration=numbers.concentration,
+            shared_error=numbers.shared_error,
+            correlations=[c for c in correlations if c.run in ("", head.name)],
+            rule=rule,
+            complete=head.name not in readings.failed and not contrary,
+        )
+        faults.extend((*numbers.diagnostics, *built.diagnostics))
+        runs.append(built)
+    told = tell_understood(grid, layout, entries, choice, asked)
+    faults.append(told.note)
+    faults.extend(assumption_notes(grid, runs, rule, assumed))
+    table = RatesTable(
+        tuple(b.run for b in runs if b.run is not None),
+        told.parts,
+        _species(readings, biomass),
+        layout.statements.nitrogen,
+    )
+    return Understood(table, notes, tuple(faults))
+
+
+def _decimal(entries: Entries, grid: Grid, asked: Decimal | None) -> DecimalChoice:
+    if asked is not None:
+        return DecimalChoice(asked, said=True)
+    cells = [c for e in entries.entries for c in (e.value, e.sd)]
+    cells += [c for h in entries.heads for c in (h.shared, h.concentration, h.concentration_sd)]
+    return decide_decimal(cells, grid.separator)
+
+
+def _decimal_faults(choice: DecimalChoice) -> list[Diagnostic]:
+    """One fault a cell that can be read in two ways, or is not written as the others are."""
+    faults = [
+        cell_fault(
+            Name.AMBIGUOUS_NUMBER,
+            cell,
+            "",
+            f"`{cell.text}` can be read with a decimal point or with a decimal comma, and no "
+            "other number of the table tells which",
+            "say --decimal comma or --decimal point",
+        )
+        for cell in choice.doubtful
+    ]
+    sign = choice.decimal.name.lower()
+    faults += [
+        cell_fault(
+            Name.AMBIGUOUS_NUMBER,
+            cell,
+            "",
+            f"`{cell.text}` is not written with a decimal {sign} as the other numbers are",
+            "write all numbers in one way",
+        )
+        for cell in choice.contrary
+    ]
+    return faults
+
+
+def _biomass(readings: Readings, vocabulary: Vocabulary) -> tuple[Species | None, tuple[str, ...]]:
+    """The biomass that specific rates refer to, and the rows that had to assume its formula."""
+    known = biomass_species(vocabulary)
+    if known or vocabulary.network is not None:
+        return (known[0] if len(known) == 1 else None), ()
+    named = [s for s in readings.species if s.role is Role.BIOMASS]
+    rows = [str(r.quantity) for r in readings.readings if _needs_biomass(r)]
+    return (named[0] if named else assumed_biomass()), tuple(dict.fromkeys(rows))
+
+
+def _needs_biomass(reading: Reading) -> bool:
+    if reading.quantity.kind is QuantityKind.MU:
+        return True
+    return any(s.role is Role.BIOMASS for s in reading.species)
+
+
+def _species(readings: Readings, biomass: Species | None) -> tuple[Species, ...]:
+    """The species that the rates name, and the biomass where there is a growth rate."""
+    species = list(readings.species)
+    grows = any(r.quantity.kind is QuantityKind.MU for r in readings.readings)
+    if grows and biomass is not None and all(s.name != biomass.name for s in species):
+        species.append(biomass)
+    return tuple(species)
+
+
+def _no_header(grid: Grid, layout: Layout) -> Diagnostic:
+    row = layout.header or (grid.rows[0] if grid.rows else None)
+    file = grid.source.file
+    if row is None:
+        return Diagnostic(Name.EMPTY_FILE, f"{file} holds no table", Span(file, 0, 0, 0))
+    titles = ", ".join(c.text for c in row.cells if c.text)
+    return Diagnostic(
+        Name.MISSING_COLUMN,
+        f"row {row.span.line} ({titles}) is no header of a rates table, and no row below is",
+        row.span,
+        because="a long table has at least the columns species and rate; "
+        "a wide one names quantities with their units",
+        mend="write: run, species, direction, rate, sd, unit; or glucose in [mmol/g/h]",
+    )
+
+
+def _no_rows(grid: Grid, layout: Layout) -> Diagnostic:
+    row = layout.header
+    span = row.span if row is not None else Span(grid.source.file, 0, 0, 0)
+    return Diagnostic(Name.NO_MEASURED_RATE, "the table has a header and no row below it", span)

@@ -1,0 +1,301 @@
+"""Entries become readings: quantities, numbers and units, each fault with its cell."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass, field, replace
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Name
+from fluxnet.network.model import Quantity, QuantityKind, Species
+from fluxnet.tables.entries import Entry
+from fluxnet.tables.grid import Cell
+from fluxnet.tables.numerals import Decimal, is_infinite, read_number, split_numeral
+from fluxnet.tables.quantities import QuantityReading, read_quantity
+from fluxnet.tables.rate_units import BadUnit, RateUnit, read_rate_unit
+from fluxnet.tables.vocabulary import Vocabulary
+
+__all__ = ["Number", "Reading", "Readings", "cell_fault", "read_cell", "read_entries"]
+
+
+@dataclass(frozen=True, slots=True)
+class Number:
+    """A cell's number with the error written beside it; ``fault`` where there is none."""
+
+    value: float | None = None
+    sd: float | None = None
+    relative: float | None = None
+    percent: bool = False
+    fault: Diagnostic | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Reading:
+    """An entry understood: numbers still in the units as written.
+
+    ``relative`` is the sd as a fraction of the value. ``unit`` is None only where there is
+    no value.
+    """
+
+    entry: Entry
+    quantity: Quantity
+    species: tuple[Species, ...]
+    unit: RateUnit | None
+    value: float | None
+    sd: float | None = None
+    relative: float | None = None
+    sd_unit: RateUnit | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Readings:
+    """All readings; ``species`` each once, by the name first typed for it.
+
+    ``failed`` names the runs that lost an entry to a fault. ``assumed`` are the entries that
+    named biomass of which nothing says the formula.
+    """
+
+    readings: tuple[Reading, ...]
+    species: tuple[Species, ...]
+    failed: frozenset[str] = frozenset()
+    assumed: tuple[Entry, ...] = ()
+    diagnostics: tuple[Diagnostic, ...] = field(default=())
+
+
+def cell_fault(
+    name: Name, cell: Cell, title: str, words: str, mend: str | None = None
+) -> Diagnostic:
+    """A diagnostic that names row and column of a cell, and the column's title."""
+    where = f"{cell.place} ({title})" if title else cell.place
+    return Diagnostic(name, f"{where}: {words}", cell.span, mend=mend)
+
+
+def read_cell(cell: Cell, decimal: Decimal, title: str) -> Number:
+    """The number in a cell that is not blank."""
+    if cell.fault is not None:
+        words = f"`{cell.text}` {cell.fault}" if cell.text else cell.fault
+        return Number(fault=cell_fault(Name.UNREADABLE_CELL, cell, title, words))
+    if cell.number is not None:
+        return Number(cell.number)
+    if is_infinite(cell.text):
+        words = f"`{cell.text}` is no measured value"
+        return Number(
+            fault=cell_fault(
+                Name.NOT_A_NUMBER, cell, title, words, "leave the cell blank: not measured"
+            )
+        )
+    parts = split_numeral(cell.text)
+    value = read_number(parts.value, decimal)
+    error = read_number(parts.error, decimal) if parts.error else 0.0
+    if value is None or error is None:
+        words = f"`{cell.text}` is no number"
+        mend = "correct it, or leave the cell blank: not measured"
+        return Number(fault=cell_fault(Name.UNREADABLE_CELL, cell, title, words, mend))
+    if not parts.error:
+        return Number(value, percent=parts.percent)
+    if parts.error_percent:
+        return Number(value, relative=error / 100, percent=parts.percent)
+    return Number(value, sd=error, percent=parts.percent)
+
+
+def read_entries(entries: Iterable[Entry], decimal: Decimal, vocabulary: Vocabulary) -> Readings:
+    """Read every entry; one with a fault is left out, and its run is named as failed."""
+    known: dict[tuple[str, str], QuantityReading] = {}
+    units: dict[str, RateUnit | BadUnit] = {}
+    typed: dict[str, Species] = {}
+    readings: list[Reading] = []
+    faults: list[Diagnostic] = []
+    failed: set[str] = set()
+    assumed: list[Entry] = []
+    for entry in entries:
+        key = (entry.name, entry.direction)
+        if key not in known:
+            known[key] = _once(read_quantity(*key, vocabulary), typed)
+        told = known[key]
+        if told.assumed:
+            assumed.append(entry)
+        for text in (entry.unit, entry.sd_unit):
+            if text not in units:
+                units[text] = read_rate_unit(text)
+        found = _read(entry, told, decimal, units)
+        if isinstance(found, Reading):
+            readings.append(found)
+        else:
+            faults.extend(found)
+            failed.add(entry.run)
+    return Readings(
+        tuple(readings), tuple(typed.values()), frozenset(failed), tuple(assumed), tuple(faults)
+    )
+
+
+def _once(told: QuantityReading, typed: dict[str, Species]) -> QuantityReading:
+    """One name for one species: the name first typed stands for all its synonyms."""
+    renamed = {s.name: typed.setdefault(s.entry or s.name, s) for s in told.species}
+    if told.quantity is None or not renamed:
+        return told
+    return replace(told, quantity=_renamed(told.quantity, renamed), species=tuple(renamed.values()))
+
+
+def _renamed(quantity: Quantity, renamed: dict[str, Species]) -> Quantity:
+    if quantity.kind is QuantityKind.RATIO:
+        return replace(
+            quantity,
+            numerator=quantity.numerator and _renamed(quantity.numerator, renamed),
+            denominator=quantity.denominator and _renamed(quantity.denominator, renamed),
+        )
+    if quantity.kind is QuantityKind.RATE and quantity.name in renamed:
+        return replace(quantity, name=renamed[quantity.name].name)
+    return quantity
+
+
+def _read(
+    entry: Entry, told: QuantityReading, decimal: Decimal, units: dict[str, RateUnit | BadUnit]
+) -> Reading | list[Diagnostic]:
+    faults: list[Diagnostic] = []
+    if told.fault is not None:
+        faults.append(
+            cell_fault(told.fault.name, entry.name_cell, "", told.fault.message, told.fault.mend)
+        )
+    value, sd = Number(), Number()
+    if not entry.value.is_blank:
+        value = read_cell(entry.value, decimal, entry.title)
+    if not entry.sd.is_blank:
+        sd = read_cell(entry.sd, decimal, f"sd of {entry.name}")
+    faults += [n.fault for n in (value, sd) if n.fault is not None]
+    faults += _unit_faults(entry, told.quantity, units)
+    if not faults:
+        faults += _sense(entry, told.quantity, value, sd)
+    if faults or told.quantity is None:
+        return faults
+    own, relative = value.sd, value.relative
+    if sd.value is not None:
+        if sd.percent or entry.sd_unit == "%":
+            relative = sd.value / 100
+        else:
+            own = sd.value
+    measured = value.value
+    if measured is not None and value.percent:
+        measured, own = measured / 100, None if own is None else own / 100
+    unit, sd_unit = units[entry.unit], units[entry.sd_unit]
+    return Reading(
+        entry,
+        told.quantity,
+        told.species,
+        unit if isinstance(unit, RateUnit) and (entry.unit or measured is not None) else None,
+        measured,
+        own,
+        relative,
+        sd_unit if isinstance(sd_unit, RateUnit) and entry.sd_unit not in ("", "%") else None,
+    )
+
+
+def _unit_faults(
+    entry: Entry, quantity: Quantity | None, units: dict[str, RateUnit | BadUnit]
+) -> list[Diagnostic]:
+    faults: list[Diagnostic] = []
+    is_ratio = quantity is not None and quantity.kind is QuantityKind.RATIO
+    if not entry.unit and not entry.value.is_blank and not is_ratio:
+        faults.append(
+            cell_fault(
+                Name.UNKNOWN_UNIT,
+                entry.unit_cell if entry.unit_cell.span.line else entry.name_cell,
+                "",
+                f"{entry.name} has no unit",
+                _unit_mend(quantity),
+            )
+        )
+    written = units[entry.unit]
+    if entry.unit and isinstance(written, BadUnit):
+        faults.append(
+            cell_fault(
+                written.name,
+                entry.unit_cell,
+                "",
+                f"{entry.name}: {written.words}",
+                written.mend or _unit_mend(quantity),
+            )
+        )
+    own = units[entry.sd_unit]
+    if entry.sd_unit not in ("", "%") and isinstance(own, BadUnit):
+        faults.append(
+            cell_fault(
+                own.name,
+                entry.name_cell,
+                "",
+                f"sd of {entry.name}: {own.words}",
+                "write the unit of the rate, or %",
+            )
+        )
+    return faults
+
+
+def _unit_mend(quantity: Quantity | None) -> str:
+    if quantity is not None and quantity.kind is QuantityKind.MU:
+        return "write 1/h"
+    return "write a unit of a rate or an amount, such as mmol/g/h, g/L/h or mmol"
+
+
+def _sense(entry: Entry, quantity: Quantity | None, value: Number, sd: Number) -> list[Diagnostic]:
+    """Faults of numbers that can be read but make no sense."""
+    signed = quantity is not None and quantity.kind is QuantityKind.FLUX
+    faults: list[Diagnostic] = []
+    if value.percent and not (quantity is not None and quantity.kind is QuantityKind.RATIO):
+        faults.append(
+            cell_fault(
+                Name.UNREADABLE_CELL,
+                entry.value,
+                entry.title,
+                f"`{entry.value.text}` is in per cent, not in {entry.unit or 'a unit'}",
+            )
+        )
+    if value.value is not None and value.value < 0 and not signed:
+        other = {"in": "out", "out": "in"}.get(
+            quantity.direction.value
+            if quantity is not None and quantity.direction is not None
+            else ""
+        )
+        faults.append(
+            cell_fault(
+                Name.NEGATIVE_RATE,
+                entry.value,
+                entry.title,
+                f"`{entry.value.text}` is negative",
+                f"write {value.value * -1:g} with the direction {other}" if other else None,
+            )
+        )
+    if (value.sd is not None or value.relative is not None) and sd.value is not None:
+        faults.append(
+            cell_fault(
+                Name.UNREADABLE_CELL,
+                entry.sd,
+                f"sd of {entry.name}",
+                f"`{entry.sd.text}` is a second sd beside `{entry.value.text}`",
+                "keep one of them",
+            )
+        )
+    for number, cell in (
+        (sd.value, entry.sd),
+        (value.sd, entry.value),
+        (value.relative, entry.value),
+    ):
+        if number is not None and number < 0:
+            faults.append(
+                cell_fault(
+                    Name.NEGATIVE_SD,
+                    cell,
+                    f"sd of {entry.name}",
+                    f"`{cell.text}` is a negative standard deviation",
+                    "0 means exact",
+                )
+            )
+    if value.value is None and sd.value is not None:
+        faults.append(
+            cell_fault(
+                Name.UNREADABLE_CELL,
+                entry.sd,
+                f"sd of {entry.name}",
+                f"`{entry.sd.text}` is the sd of a rate that is blank",
+                "fill in the rate, or leave both blank",
+            )
+        )
+    return faults
