@@ -66,7 +66,7 @@ def read_quantity(name: str, direction: str, vocabulary: Vocabulary) -> Quantity
             return _faulty(
                 Name.BAD_DIRECTION, f"mu has no direction `{direction}`", "leave it blank"
             )
-        return QuantityReading(Quantity(QuantityKind.MU, "mu"))
+        return QuantityReading(Quantity(QuantityKind.MU))
     reaction = _reaction(name, vocabulary)
     if reaction is not None or name.lower().startswith("flux "):
         return _flux(name, reaction, direction, vocabulary)
