@@ -14,6 +14,8 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
 from fluxnet.solving.problem import Problem
+from fluxnet.solving.residuals import Pair, is_ray, violation_of, worst_violation
+from fluxnet.solving.scaling import find_scales
 
 __all__ = ["LinearSolution", "Outcome", "Programme", "worst_violation"]
 
@@ -21,6 +23,8 @@ Vector = NDArray[np.float64]
 
 TOLERANCE = 1e-9
 """How far the solver may leave a bound or a price, in the units of the problem."""
+
+_CHOOSE, _DUAL = 0, 1  # numbers of HiGHS for its simplex strategies
 
 
 class Outcome(Enum):
@@ -52,24 +56,6 @@ class LinearSolution:
     residual: float
 
 
-def worst_violation(problem: Problem, fluxes: Vector) -> float:
-    """How far fluxes leave the bounds of a problem, relative to what is added up.
-
-    The violation of each row is divided by the larger of 1 and the sum of the absolute values
-    of its terms (never by their signed sum), that of a column by the larger of 1 and the
-    flux itself.
-
-    Returns
-    -------
-    float
-        0 where nothing is violated.
-    """
-    return _violation(
-        problem.matrix, np.abs(problem.matrix), fluxes,
-        (problem.row_low, problem.row_high), (problem.column_low, problem.column_high),
-    )
-
-
 class Programme:
     """A warm linear programme: the one mutable object of the package.
 
@@ -97,7 +83,8 @@ class Programme:
         self._column_high = problem.column_high.copy()
         self._sizes = np.abs(problem.matrix)
         self._costs = np.zeros(len(problem.columns))
-        self._row_scale, self._column_scale = _scales(self._sizes)
+        self._cost_scale = 1.0
+        self._row_scale, self._column_scale = find_scales(problem, self._sizes)
         self._highs, self._meanings = self._load()
 
     # --- changes ---------------------------------------------------------------------
@@ -122,10 +109,14 @@ class Programme:
         if costs.shape != self._costs.shape:
             raise MisuseError("one cost is needed for each column")
         self._refuse_nan(costs)
-        changed = np.flatnonzero(costs != self._costs)
-        self._costs[changed] = costs[changed]
-        scaled = costs[changed] * self._column_scale[changed]
-        self._highs.changeColsCost(len(changed), changed.astype(np.int32), scaled)
+        scaled = costs * self._column_scale
+        largest = float(np.abs(scaled).max(initial=0.0))
+        # The largest cost the solver sees is about 1, as its tolerances suppose.
+        self._cost_scale = 2.0 ** -int(np.frexp(largest)[1] - 1) if largest else 1.0
+        scaled *= self._cost_scale
+        changed = np.flatnonzero(scaled != self._costs)
+        self._costs[changed] = scaled[changed]
+        self._highs.changeColsCost(len(changed), changed.astype(np.int32), scaled[changed])
 
     # --- questions -------------------------------------------------------------------
 
@@ -154,18 +145,24 @@ class Programme:
     def run(self) -> Outcome:
         """Solve as it stands, from the last basis; :attr:`outcome` keeps the answer.
 
-        "Infeasible" and a failure are confirmed from a cold start before they are believed.
+        "Infeasible" and a failure are confirmed from a cold start before they are believed, and
+        "unbounded" by a direction that keeps all bounds.
         """
         outcome = self._attempt()
-        if outcome in (Outcome.INFEASIBLE, Outcome.FAILED):
+        doubtful = outcome is Outcome.UNBOUNDED and not self._has_no_end()
+        if doubtful or outcome in (Outcome.INFEASIBLE, Outcome.FAILED):
             self._highs.clearSolver()
+            self._highs.setOptionValue("simplex_strategy", _DUAL)
             outcome = self._attempt()
+            self._highs.setOptionValue("simplex_strategy", _CHOOSE)
+            if outcome is Outcome.UNBOUNDED and not self._has_no_end():
+                outcome = Outcome.FAILED
         self.outcome = outcome
         return outcome
 
     def value(self) -> float:
         """The cost of the last optimum."""
-        return float(self._highs.getInfo().objective_function_value)
+        return float(self._highs.getInfo().objective_function_value) / self._cost_scale
 
     def fluxes(self) -> Vector:
         """The fluxes of the last optimum."""
@@ -173,10 +170,7 @@ class Programme:
 
     def violation(self, fluxes: Vector) -> float:
         """:func:`worst_violation` by the bounds as they stand now."""
-        return _violation(
-            self.problem.matrix, self._sizes, fluxes,
-            (self._row_low, self._row_high), (self._column_low, self._column_high),
-        )
+        return violation_of(self.problem.matrix, self._sizes, fluxes, *self._bounds())
 
     def dual_ray(self) -> Vector | None:
         """After INFEASIBLE: weights of the rows whose sum no fluxes can meet (Farkas)."""
@@ -207,10 +201,21 @@ class Programme:
             outcome,
             float(cost @ fluxes),
             fluxes,
-            sign * np.array(solution.row_dual) * self._row_scale,
-            sign * np.array(solution.col_dual) / self._column_scale,
+            sign * np.array(solution.row_dual) * self._row_scale / self._cost_scale,
+            sign * np.array(solution.col_dual) / self._column_scale / self._cost_scale,
             self.violation(fluxes),
         )
+
+    def _has_no_end(self) -> bool:
+        """Whether the solver's ray keeps every bound and gains (it has no ray without rows)."""
+        ray = self.primal_ray()
+        if ray is None:
+            return not self.problem.rows
+        gain = self._costs @ (ray / self._column_scale)
+        return bool(gain < 0) and is_ray(self.problem.matrix, ray, *self._bounds())
+
+    def _bounds(self) -> tuple[Pair, Pair]:
+        return (self._row_low, self._row_high), (self._column_low, self._column_high)
 
     def _attempt(self) -> Outcome:
         self._highs.run()
@@ -235,7 +240,7 @@ class Programme:
             ("output_flag", False),
             ("presolve", "off"),
             ("solver", "simplex"),
-            ("simplex_strategy", 0),
+            ("simplex_strategy", _CHOOSE),
             ("threads", 1),
             ("primal_feasibility_tolerance", TOLERANCE),
             ("dual_feasibility_tolerance", TOLERANCE),
@@ -263,36 +268,3 @@ class Programme:
     def _refuse_nan(*values: float | Vector) -> None:
         if any(np.isnan(value).any() for value in values):
             raise MisuseError("NaN is no bound and no cost")
-
-
-def _scales(sizes: Vector) -> tuple[Vector, Vector]:
-    """Powers of two for rows and columns that bring a badly spread matrix together.
-
-    Powers of two change no digit. A matrix of ordinary coefficients is left alone.
-    """
-    rows, columns = np.ones(sizes.shape[0]), np.ones(sizes.shape[1])
-    used = sizes > 0
-    if not used.any() or sizes[used].max() / sizes[used].min() < 1e4:
-        return rows, columns
-    logs = np.where(used, np.log2(np.where(used, sizes, 1.0)), 0.0)
-    in_row, in_column = np.maximum(used.sum(1), 1), np.maximum(used.sum(0), 1)
-    r, c = np.zeros(len(rows)), np.zeros(len(columns))
-    for _ in range(10):
-        r = -((logs + c * used).sum(1)) / in_row
-        c = -((logs + r[:, None] * used).sum(0)) / in_column
-    return np.exp2(np.round(r)), np.exp2(np.round(c))
-
-
-def _violation(
-    matrix: Vector,
-    sizes: Vector,
-    fluxes: Vector,
-    rows: tuple[Vector, Vector],
-    columns: tuple[Vector, Vector],
-) -> float:
-    values = matrix @ fluxes
-    magnitude = np.maximum(1.0, sizes @ np.abs(fluxes))
-    row = np.maximum(rows[0] - values, values - rows[1]) / magnitude
-    column = np.maximum(columns[0] - fluxes, fluxes - columns[1])
-    column = column / np.maximum(1.0, np.abs(fluxes))
-    return float(max(0.0, row.max(initial=0.0), column.max(initial=0.0)))

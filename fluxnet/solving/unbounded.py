@@ -116,13 +116,13 @@ def _missing(
 ) -> tuple[str, ...]:
     """An irreducible set of uptakes whose limits would end the aim; none where none would.
 
-    Those that the loop does not take up are spared first, then those declared last: what a
-    model declares first is its source of carbon as a rule.
+    Those declared last are spared first: what a model declares first is its source of carbon
+    as a rule.
     """
     needed = tuple(uptakes)
     if not taken or not _ends(cone, cost, uptakes, needed):
         return ()
-    for name in (*(n for n in uptakes if n not in taken), *taken[::-1]):
+    for name in reversed(uptakes):
         fewer = tuple(n for n in needed if n != name)
         if _ends(cone, cost, uptakes, fewer):
             needed = fewer

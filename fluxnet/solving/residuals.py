@@ -1,0 +1,62 @@
+"""How far an answer leaves its bounds, reckoned by ourselves after every solve."""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.solving.problem import Problem
+
+__all__ = ["Pair", "is_ray", "violation_of", "worst_violation"]
+
+Vector = NDArray[np.float64]
+Pair = tuple[Vector, Vector]
+
+
+def worst_violation(problem: Problem, fluxes: Vector) -> float:
+    """How far fluxes leave the bounds of a problem, relative to what is added up.
+
+    The violation of each row is divided by the larger of 1 and the sum of the absolute values
+    of its terms (never by their signed sum), that of a column by the larger of 1 and the
+    flux itself.
+
+    Returns
+    -------
+    float
+        0 where nothing is violated.
+    """
+    rows, columns = (problem.row_low, problem.row_high), (problem.column_low, problem.column_high)
+    return violation_of(problem.matrix, np.abs(problem.matrix), fluxes, rows, columns)
+
+
+def violation_of(
+    matrix: Vector, sizes: Vector, fluxes: Vector, rows: Pair, columns: Pair
+) -> float:
+    """:func:`worst_violation` by parts; ``sizes`` are the absolute values of the matrix."""
+    values = matrix @ fluxes
+    magnitude = np.maximum(1.0, sizes @ np.abs(fluxes))
+    row = np.maximum(rows[0] - values, values - rows[1]) / magnitude
+    column = np.maximum(columns[0] - fluxes, fluxes - columns[1])
+    column = column / np.maximum(1.0, np.abs(fluxes))
+    return float(max(0.0, row.max(initial=0.0), column.max(initial=0.0)))
+
+
+def is_ray(matrix: Vector, ray: Vector, rows: Pair, columns: Pair) -> bool:
+    """Whether a direction can be followed for ever: it approaches no finite bound.
+
+    Bounds of rows are judged relative to the sum of the absolute values of the terms, those
+    of columns relative to the largest entry.
+    """
+    largest = float(np.abs(ray).max(initial=0.0))
+    if largest == 0:
+        return False
+    slack = 1e-7 * (np.abs(matrix) @ np.abs(ray))
+    for values, (low, high), room in (
+        (matrix @ ray, rows, slack),
+        (ray, columns, np.full(len(ray), 1e-9 * largest)),
+    ):
+        if (np.isfinite(low) & (values < -room)).any():
+            return False
+        if (np.isfinite(high) & (values > room)).any():
+            return False
+    return True
