@@ -43,8 +43,8 @@ ROOMS = {
 }
 
 
-def modules() -> Iterator[Path]:
-    return (p for p in sorted(ROOT.rglob("*.py")) if "_packed" not in p.parts)
+def modules() -> list[Path]:
+    return [p for p in sorted(ROOT.rglob("*.py")) if "_packed" not in p.parts]
 
 
 def imports(path: Path) -> Iterator[tuple[str, int]]:

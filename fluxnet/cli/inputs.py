@@ -5,18 +5,25 @@ from __future__ import annotations
 import argparse
 import sys
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from fluxnet.cli.main import Exit
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
 from fluxnet.ground.names import Name
+from fluxnet.ground.source import Source, Span
 from fluxnet.network.model import Network
 from fluxnet.network.variant import apply_variant
 from fluxnet.presenting.records import Input, hash_bytes, hash_file
 from fluxnet.reading.model import ModelReading, read_model, read_model_text
 
-__all__ = ["ReadModel", "exit_of", "load_model", "read_inputs"]
+if TYPE_CHECKING:
+    from fluxnet.rates.measured import RatesTable
+
+__all__ = ["ReadModel", "ReadRates", "exit_of", "load_model", "load_rates", "read_inputs"]
+
+_SEPARATORS = {"comma": ",", "semicolon": ";", "tab": "\t"}
 
 # With one of these the input cannot even be looked at: the command was wrongly used.
 _UNREADABLE = frozenset(
@@ -34,11 +41,12 @@ _UNREADABLE = frozenset(
 
 @dataclass(frozen=True, slots=True)
 class ReadModel:
-    """A model with its variant applied, all findings, and its hash."""
+    """A model with its variant applied, all findings, its text, and its hash."""
 
     network: Network | None
     diagnostics: tuple[Diagnostic, ...]
     inputs: tuple[Input, ...]
+    sources: tuple[Source, ...]
 
 
 def exit_of(diagnostics: tuple[Diagnostic, ...]) -> int:
@@ -55,7 +63,7 @@ def load_model(arguments: argparse.Namespace, variant: str = "base") -> ReadMode
     if network is not None and variant != "base":
         network, told = apply_variant(network, variant)
         diagnostics = (*diagnostics, *(d for d in told if d not in diagnostics))
-    return ReadModel(network, diagnostics, inputs)
+    return ReadModel(network, diagnostics, inputs, reading.sources)
 
 
 def _read(arguments: argparse.Namespace) -> tuple[ModelReading, tuple[Input, ...]]:
@@ -73,3 +81,62 @@ def read_inputs(files: Iterable[str]) -> tuple[Input, ...]:
     """The hashes of files that were read."""
     paths = dict.fromkeys(file.split("!")[0] for file in files)
     return tuple(hash_file(Path(p), p) for p in paths if Path(p).is_file())
+
+
+@dataclass(frozen=True, slots=True)
+class ReadRates:
+    """The runs that a command asks for, all findings, and the table's hash."""
+
+    table: RatesTable | None
+    diagnostics: tuple[Diagnostic, ...]
+    inputs: tuple[Input, ...]
+
+
+def load_rates(arguments: argparse.Namespace, network: Network | None) -> ReadRates:
+    """Read the rates table that a command names, and keep the runs that it asks for."""
+    # Imported here, so that `check` does not wait for the tables.
+    from fluxnet.tables.numerals import Decimal
+    from fluxnet.tables.rates_table import read_rates, read_rates_text
+
+    decimal = Decimal[arguments.decimal.upper()] if arguments.decimal else None
+    separator = _SEPARATORS.get(arguments.separator)
+    sd, floor = arguments.sd / 100, arguments.sd_floor / 100
+    inputs: tuple[Input, ...]
+    if arguments.rates == "-":
+        data = sys.stdin.buffer.read()
+        reading = read_rates_text(
+            data.decode("utf-8", errors="replace"), file="standard input", network=network,
+            decimal=decimal, separator=separator, sd=sd, sd_floor=floor,
+        )  # fmt: skip
+        inputs = (hash_bytes(data, "standard input"),)
+    else:
+        reading = read_rates(
+            Path(arguments.rates), network=network, sheet=arguments.sheet, decimal=decimal,
+            separator=separator, sd=sd, sd_floor=floor,
+        )  # fmt: skip
+        inputs = read_inputs(source.file for source in reading.sources)
+    table, diagnostics = reading.table, reading.diagnostics
+    if table is not None and arguments.run:
+        table, told = _choose_runs(table, arguments)
+        diagnostics = (*told, *diagnostics)
+    return ReadRates(table, diagnostics, inputs)
+
+
+def _choose_runs(
+    table: RatesTable, arguments: argparse.Namespace
+) -> tuple[RatesTable | None, tuple[Diagnostic, ...]]:
+    names = [run.name for run in table.runs]
+    told = tuple(
+        Diagnostic(
+            Name.UNKNOWN_RUN,
+            f"the table has no run {name}",
+            Span(str(arguments.rates), 0),
+            mend=f"its runs are {', '.join(names)}",
+        )
+        for name in arguments.run
+        if name not in names
+    )
+    if told:
+        return None, told
+    chosen = tuple(run for run in table.runs if run.name in arguments.run)
+    return replace(table, runs=chosen), ()

@@ -63,5 +63,5 @@ def unbounded_blocks(run: FluxSolution) -> tuple[Block, ...]:
         Column("reaction", "reaction"),
         Column("runs per unit", "coefficient", align=Align.RIGHT),
     )
-    rows = tuple((step.reaction, step.coefficient) for step in run.unbounded.steps)
+    rows = tuple((step.reaction, step.coefficient) for step in run.unbounded.loop)
     return (Table("unbounded", "What can grow without end", columns, rows),)

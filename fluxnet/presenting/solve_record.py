@@ -134,8 +134,9 @@ def _run(run: FluxSolution) -> Record:
         if run.unbounded is None
         else {
             "words": run.unbounded.words,
-            "steps": [
-                {"reaction": s.reaction, "coefficient": s.coefficient} for s in run.unbounded.steps
+            "missing_limit": run.unbounded.missing_limit,
+            "loop": [
+                {"reaction": s.reaction, "coefficient": s.coefficient} for s in run.unbounded.loop
             ],
         },
         "violated_limits": list(run.violated_limits),

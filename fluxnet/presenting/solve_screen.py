@@ -51,7 +51,7 @@ def _run_blocks(run: FluxSolution) -> tuple[Block, ...]:
             blocks.append(_limits(run))
         blocks.append(
             Sentence(
-                f"Largest imbalance left by the numerics: {run.residual:.1g} (relative; recomputed).",
+                f"Largest imbalance left by the solver: {run.residual:.1g} (relative).",
                 Mood.QUIET,
             )
         )
@@ -160,7 +160,7 @@ def _fluxes(run: FluxSolution) -> Table:
     )
     notes = ()
     if any(flux.kind is FluxKind.UNDETERMINED for flux in run.fluxes):
-        notes = ("undetermined: any value in the range fits; the one shown has the least total flux",)
+        notes = ("undetermined: any value in the range fits; shown is that of least total flux",)
     return Table("fluxes", f"Fluxes [{run.unit}]", columns, rows, notes)
 
 

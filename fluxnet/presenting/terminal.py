@@ -104,11 +104,15 @@ class Terminal:
         )
 
     def _print(self, console: Console, text: str, style: str) -> None:
+        from textwrap import wrap
+
         from rich.text import Text
 
         # In a pipe sentences are broken for 80 columns; only tables may be wider.
-        width = None if self.width is None else min(self.width, 80)
-        console.print(Text(self._plain(text), style=style if self.colour else ""), width=width)
+        width = console.width if self.width is None else min(self.width, 80)
+        for line in text.split("\n"):
+            for part in wrap(self._plain(line), width, break_on_hyphens=False) or [""]:
+                console.print(Text(part, style=style if self.colour else ""), soft_wrap=True)
 
     def _print_whole(self, console: Console, line: str) -> None:
         """A line that must not be broken, because the next points into it."""
@@ -147,7 +151,8 @@ class Terminal:
             console.print()
             console.print(grid)
         # rich fills every line to the table's width; a pipe has no use for that.
-        print("\n".join(line.rstrip() for line in capture.get().split("\n")), file=self.stream, end="")
+        lines = (line.rstrip() for line in capture.get().split("\n"))
+        print("\n".join(lines), file=self.stream, end="")
         for note in table.notes:
             self._print(console, "  " + note, "dim")
 

@@ -20,7 +20,11 @@ from fluxnet.solving.unbounded import explain_unbounded
 from fluxnet.studies.aims import Aim, Sense
 from fluxnet.studies.settling import settle
 from fluxnet.studies.solution import (
-    BindingLimit, FluxEstimate, FluxKind, FluxSolution, SolveStatus,
+    BindingLimit,
+    FluxEstimate,
+    FluxKind,
+    FluxSolution,
+    SolveStatus,
 )
 from fluxnet.studies.telling import tell_infeasible, tell_optimum, tell_unbounded
 
@@ -50,11 +54,7 @@ def optimise(
     """
     built = build_problem(network, run, within=within)
     problem = _open_carriers(built, aim)
-    cost = sum(
-        (float(weight) * quantity_row(network, built.stoichiometry, q, built.values, basis=built.basis)
-         for weight, q in aim.terms),
-        np.zeros(len(problem.columns)),
-    )  # fmt: skip
+    cost = _cost(built, aim)
     programme = Programme(problem)
     best = programme.maximise(cost) if aim.sense is Sense.MAXIMISE else programme.minimise(cost)
     frame = FluxSolution(
@@ -125,6 +125,16 @@ def _at_optimum(
     )
     settled = settle(solution, built, fluxes, lambda rows: find_ranges(at_best, rows))
     return replace(settled, words=tell_optimum(settled))
+
+
+def _cost(built: Built, aim: Aim) -> Array:
+    cost = np.zeros(len(built.problem.columns))
+    for weight, quantity in aim.terms:
+        row = quantity_row(
+            built.network, built.stoichiometry, quantity, built.values, basis=built.basis
+        )
+        cost += float(weight) * row
+    return cost
 
 
 def _open_carriers(built: Built, aim: Aim) -> Problem:

@@ -8,6 +8,7 @@ from enum import Enum
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.network.model import Limit, Network, Quantity
 from fluxnet.solving.conflict import Conflict, LeastChange
+from fluxnet.solving.flux_fit import FluxKind, RateKind
 from fluxnet.solving.unbounded import Unbounded
 from fluxnet.studies.aims import Aim
 from fluxnet.studies.equations import NetEquation
@@ -39,22 +40,6 @@ class SolveStatus(Enum):
     def is_sound(self) -> bool:
         """Whether nothing is wrong with data and model."""
         return self in (SolveStatus.SOLVED, SolveStatus.OPTIMAL)
-
-
-class FluxKind(Enum):
-    """Whether what is known leaves a flux one value."""
-
-    DETERMINED = "determined"
-    UNDETERMINED = "undetermined"
-
-
-class RateKind(Enum):
-    """What the balances say of a rate: tested by the others, or not; calculable, or not."""
-
-    BALANCEABLE = "balanceable"
-    NOT_BALANCEABLE = "not_balanceable"
-    CALCULABLE = "calculable"
-    NOT_CALCULABLE = "not_calculable"
 
 
 @dataclass(frozen=True, slots=True)

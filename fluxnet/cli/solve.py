@@ -1,0 +1,90 @@
+"""``fluxnet solve``: what the cell did, or could do at best."""
+
+from __future__ import annotations
+
+import argparse
+
+from fluxnet.cli.inputs import exit_of, load_model, load_rates
+from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
+from fluxnet.cli.output import give_findings, give_screen
+from fluxnet.ground.diagnostic import Diagnostic, in_order
+from fluxnet.ground.errors import MisuseError
+from fluxnet.presenting.records import Document, Input
+from fluxnet.presenting.solve_record import solve_record
+from fluxnet.presenting.solve_screen import solve_screen
+
+__all__ = ["EXAMPLES", "add_arguments", "run"]
+
+EXAMPLES = """What did the cell do; who made and who spent the ATP and the NADH?
+
+  fluxnet solve model.flux rates.csv                      fluxes nearest to the rates
+  fluxnet solve model.flux rates.csv --run A              one run of the table
+  fluxnet solve model.flux --maximise ethanol             the best that the model allows
+  fluxnet solve model.flux --variant anaerobic --maximise mu
+  fluxnet solve model.flux rates.csv --maximise ATP --within 1
+"""
+
+
+def add_arguments(parser: argparse.ArgumentParser) -> None:
+    """Options of the command."""
+    add_model_argument(parser)
+    parser.add_argument("rates", metavar="RATES", nargs="?", help="a rates table, or -")
+    parser.add_argument("--variant", metavar="V", default="base", help='such as "lean * fast"')
+    aim = parser.add_mutually_exclusive_group()
+    words = "a boundary species, `in SPECIES`, a reaction, mu, a carrier, or `2 A + B`"
+    aim.add_argument("--maximise", metavar="X", help=f"make X as large as possible: {words}")
+    aim.add_argument("--minimise", metavar="X", help="make X as small as possible")
+    parser.add_argument(
+        "--within", metavar="K", type=float, default=2.0,
+        help="with an aim, hold each measured rate within K sd (2)",
+    )  # fmt: skip
+    parser.add_argument(
+        "--fraction", metavar="F", type=float, default=1.0,
+        help="with an aim, give ranges at this fraction of the optimum (1)",
+    )  # fmt: skip
+    add_table_options(parser)
+    add_output_options(parser)
+
+
+def run(arguments: argparse.Namespace) -> int:
+    """Solve each run that was asked for, and show it."""
+    from fluxnet.studies.solve import solve_network
+
+    if arguments.model == "-" and arguments.rates == "-":
+        raise MisuseError("standard input can be the model or the rates, not both")
+    model = load_model(arguments, arguments.variant)
+    if model.network is None:
+        return _faulty(arguments, model.inputs, model.diagnostics)
+    table = None
+    inputs, diagnostics = model.inputs, model.diagnostics
+    if arguments.rates is not None:
+        rates = load_rates(arguments, model.network)
+        inputs, diagnostics = (*inputs, *rates.inputs), (*diagnostics, *rates.diagnostics)
+        if rates.table is None:
+            return _faulty(arguments, inputs, diagnostics)
+        table = rates.table
+    solution = solve_network(
+        model.network,
+        table,
+        maximise=arguments.maximise,
+        minimise=arguments.minimise,
+        within=arguments.within,
+        fraction=arguments.fraction,
+    )
+    give_findings(arguments, in_order(diagnostics))
+    return give_screen(
+        arguments, Document.SOLVE, inputs, diagnostics, solve_record(solution),
+        solve_screen(solution), sound=solution.is_sound,
+    )  # fmt: skip
+
+
+def _faulty(
+    arguments: argparse.Namespace, inputs: tuple[Input, ...], diagnostics: tuple[Diagnostic, ...]
+) -> int:
+    """Tell the faults of an input of which nothing can be made."""
+    give_findings(arguments, in_order(diagnostics))
+    if arguments.json:
+        give_screen(arguments, Document.SOLVE, inputs, in_order(diagnostics), {"runs": []}, ())
+    return exit_of(diagnostics)
+
+

@@ -1,0 +1,252 @@
+"""Closure of many runs with the same measured species, as one batch of array operations.
+
+With y the measured values, V their covariance and R y = 0 the redundancy:
+
+    e = R y,  P = R V R',  h = e' P^-1 e,
+    reconciled y^ = y - V R' P^-1 e,  its covariance V - V R' P^-1 R V
+
+(Wang & Stephanopoulos 1983; van der Heijden et al. 1994; formulas from memory). h is
+chi-squared with as many degrees of freedom as R has rows.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.ground.errors import MisuseError
+from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tails
+
+__all__ = ["ClosureArrays", "ClosureMatrices", "close_many"]
+
+Array = NDArray[np.float64]
+SIGNIFICANCE = 0.05
+
+
+@dataclass(frozen=True, slots=True)
+class ClosureMatrices:
+    """The rows that a closure needs, over the measured values of a run.
+
+    ``redundancy`` (dof x values) is R; ``calculated`` (unmeasured x values) gives unmeasured
+    rates; ``contents`` (balances x values) holds what one unit of each value releases of each
+    balance that is shown, negative for uptake. ``balanceable`` and ``exact`` are one a value.
+    """
+
+    redundancy: Array
+    calculated: Array
+    contents: Array
+    balanceable: NDArray[np.bool_]
+    exact: NDArray[np.bool_]
+
+    def __post_init__(self) -> None:
+        width = len(self.exact)
+        for name in ("redundancy", "calculated", "contents"):
+            array = getattr(self, name)
+            if array.ndim != 2 or array.shape[1] != width or not np.isfinite(array).all():
+                raise MisuseError(f"{name} must be finite, with {width} columns")
+            array.setflags(write=False)
+
+
+@dataclass(frozen=True, slots=True)
+class ClosureArrays:
+    """The closure of many runs: arrays of runs x what they tell, all in the unit of the run.
+
+    ``h``, ``p``, ``closes``, ``residual`` are one a run; ``reconciled``, ``reconciled_sd`` and
+    ``z`` (measured less reconciled, over its sd) runs x values; ``calculated`` and its sd runs
+    x unmeasured; ``taken``, ``released``, ``gap``, ``gap_sd``, ``recovery`` (a fraction) and
+    ``recovery_sd`` runs x balances. NaN stands where a number is not defined: h without
+    redundancy, z of a value that no balance tests, recovery where nothing is taken up.
+    ``residual`` is the largest |R y^| over the sum of its terms' magnitudes.
+    """
+
+    dof: int
+    limit: float
+    h: Array
+    p: Array
+    closes: NDArray[np.bool_]
+    reconciled: Array
+    reconciled_sd: Array
+    z: Array
+    calculated: Array
+    calculated_sd: Array
+    taken: Array
+    released: Array
+    gap: Array
+    gap_sd: Array
+    recovery: Array
+    recovery_sd: Array
+    residual: Array = field(repr=False)
+
+
+def close_many(
+    matrices: ClosureMatrices,
+    values: Array,
+    sds: Array | None = None,
+    covariances: Array | None = None,
+) -> ClosureArrays:
+    """Close many runs at once.
+
+    Parameters
+    ----------
+    matrices
+        The balances; see :func:`fluxnet.studies.closure_plan.plan_closure`.
+    values
+        Runs x values: magnitudes in their directions, in one unit.
+    sds
+        Runs x values, where the errors are independent; 0 where ``matrices.exact``.
+    covariances
+        Runs x values x values, instead of ``sds``.
+
+    Raises
+    ------
+    MisuseError
+        For NaN, wrong shapes, negative sds, zero sds of values that are not exact.
+
+    Examples
+    --------
+    >>> rows = np.array([[-2.0, 1, 0], [-2, 0, 1]])
+    >>> matrices = ClosureMatrices(
+    ...     rows, np.zeros((0, 3)), np.zeros((0, 3)), np.full(3, True), np.full(3, False))
+    >>> runs = close_many(matrices, np.array([[10.0, 18.6, 19.6]]), np.array([[0.2, 0.4, 0.4]]))
+    >>> runs.h.round(6).tolist(), runs.reconciled.round(6).tolist()
+    ([6.5], [[9.7, 19.4, 19.4]])
+    """
+    y = np.asarray(values, dtype=np.float64)
+    errors = _errors(sds, covariances)
+    _check(matrices, y, errors)
+    R, W = matrices.redundancy, matrices.calculated
+    RV = errors.times(R)
+    e = y @ R.T
+    K, h = _gain(RV @ R.T, RV, e)
+    reconciled = y - (e[:, None, :] @ K)[:, 0, :]
+    variance = errors.variances
+    reduction = (RV * K).sum(axis=1)
+    left = np.where(matrices.exact, 0.0, np.maximum(variance - reduction, 0.0))
+    tested = matrices.balanceable & ~matrices.exact
+    with np.errstate(divide="ignore", invalid="ignore"):
+        z = np.where(tested, (y - reconciled) / np.sqrt(reduction), np.nan)
+    terms = np.abs(reconciled) @ np.abs(R).T
+    off = np.abs(reconciled @ R.T) / np.where(terms > 0, terms, 1.0)
+    dof = len(R)
+    limit = chi_squared_quantile(1 - SIGNIFICANCE, dof) if dof else np.nan
+    undefined = np.full(len(y), np.nan)
+    return ClosureArrays(
+        dof=dof,
+        limit=limit,
+        h=h if dof else undefined,
+        p=chi_squared_tails(h, dof) if dof else undefined,
+        closes=h <= limit if dof else np.full(len(y), False),
+        reconciled=reconciled,
+        reconciled_sd=np.sqrt(left),
+        z=z,
+        calculated=reconciled @ W.T,
+        calculated_sd=_sd_of_rows(W, R, K, errors),
+        residual=off.max(axis=1) if dof else np.zeros(len(y)),
+        **_balances(matrices.contents, y, errors),
+    )
+
+
+@dataclass(frozen=True, slots=True)
+class _Independent:
+    """Errors that know nothing of one another: sds, runs x values."""
+
+    variances: Array
+
+    def times(self, rows: Array) -> Array:
+        """Rows times the covariance: runs x rows x values."""
+        return np.asarray(rows * self.variances[:, None, :])
+
+    def between(self, left: Array, right: Array) -> Array:
+        """The covariance of row i of one matrix with row i of another: runs x rows."""
+        return np.asarray(self.variances @ (left * right).T)
+
+
+@dataclass(frozen=True, slots=True)
+class _Joint:
+    """Errors with a covariance: runs x values x values."""
+
+    matrix: Array
+
+    @property
+    def variances(self) -> Array:
+        return np.asarray(np.einsum("nii->ni", self.matrix))
+
+    def times(self, rows: Array) -> Array:
+        """Rows times the covariance: runs x rows x values."""
+        return np.asarray(rows @ self.matrix)
+
+    def between(self, left: Array, right: Array) -> Array:
+        """The covariance of row i of one matrix with row i of another: runs x rows."""
+        return np.asarray((self.times(left) * right).sum(axis=2))
+
+
+_Errors = _Independent | _Joint
+
+
+def _errors(sds: Array | None, covariances: Array | None) -> _Errors:
+    if sds is not None and covariances is None:
+        if not (np.asarray(sds) >= 0).all():
+            raise MisuseError("a standard deviation is negative or no number")
+        return _Independent(np.square(np.asarray(sds, dtype=np.float64)))
+    if covariances is not None and sds is None:
+        return _Joint(np.asarray(covariances, dtype=np.float64))
+    raise MisuseError("give either sds or covariances")
+
+
+def _check(matrices: ClosureMatrices, y: Array, errors: _Errors) -> None:
+    width = len(matrices.exact)
+    if y.ndim != 2 or y.shape[1] != width:
+        raise MisuseError(f"values must be runs x {width}, not {y.shape}")
+    if isinstance(errors, _Joint) and errors.matrix.shape != (*y.shape, width):
+        raise MisuseError(f"the covariances must have the shape {(*y.shape, width)}")
+    variances = errors.variances
+    if variances.shape != y.shape:
+        raise MisuseError(f"the errors of {y.shape} values have the shape {variances.shape}")
+    if not (np.isfinite(y).all() and np.isfinite(errors.times(np.eye(width))).all()):
+        raise MisuseError("values and errors must be finite numbers")
+    if not ((variances == 0) == matrices.exact).all():
+        raise MisuseError("an sd is zero exactly where the balances take the value as exact")
+
+
+def _gain(P: Array, RV: Array, e: Array) -> tuple[Array, Array]:
+    """P^-1 R V of each run, and h; P is scaled first so that units do not matter."""
+    if not P.shape[1]:
+        return np.zeros_like(RV), np.zeros(len(P))
+    scale = 1 / np.sqrt(np.einsum("nii->ni", P))
+    scaled = P * scale[:, :, None] * scale[:, None, :]
+    right = np.concatenate([RV * scale[:, :, None], (e * scale)[:, :, None]], axis=2)
+    try:
+        solved = np.linalg.solve(scaled, right)
+    except np.linalg.LinAlgError:
+        raise MisuseError("the covariance leaves a tested relation without any error") from None
+    h = np.maximum((e * scale * solved[:, :, -1]).sum(axis=1), 0.0)
+    return solved[:, :, :-1], h
+
+
+def _sd_of_rows(rows: Array, R: Array, K: Array, errors: _Errors) -> Array:
+    """The sd of rows over the reconciled values: runs x rows."""
+    if not len(rows):
+        return np.zeros((len(K), 0))
+    shared = errors.times(rows) @ R.T  # runs x rows x dof
+    taken_off = (shared * np.swapaxes(K @ rows.T, 1, 2)).sum(axis=2)
+    return np.asarray(np.sqrt(np.maximum(errors.between(rows, rows) - taken_off, 0.0)))
+
+
+def _balances(contents: Array, y: Array, errors: _Errors) -> dict[str, Array]:
+    """What is taken up and released of each balance, the gap, the recovery, and their sds."""
+    # a value is a magnitude in its direction, so the sign of its content tells the side
+    up, out = np.minimum(contents, 0.0), np.maximum(contents, 0.0)
+    taken, released = -(y @ up.T), y @ out.T
+    above, below = errors.between(out, out), errors.between(up, up)
+    across = errors.between(out, up)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        recovery = np.where(taken > 0, released / taken, np.nan)
+        spread = above + 2 * recovery * across + np.square(recovery) * below
+        recovery_sd = np.sqrt(np.maximum(spread, 0.0)) / np.where(taken > 0, taken, np.nan)
+    return {
+        "taken": taken, "released": released, "gap": released - taken,
+        "gap_sd": np.sqrt(np.maximum(above + 2 * across + below, 0.0)),
+        "recovery": recovery, "recovery_sd": recovery_sd,
+    }  # fmt: skip

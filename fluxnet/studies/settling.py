@@ -1,0 +1,66 @@
+"""From fluxes to what people read: the ledger, net equations, yields."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.solving.build import Built
+from fluxnet.studies.equations import NetEquation, add_implied, find_equations
+from fluxnet.studies.ledger import LedgerLine, keep_ledger, ledger_places, ledger_rows
+from fluxnet.studies.yields import Yield, find_yields
+
+__all__ = ["Account", "Span", "keep_account"]
+
+Array = NDArray[np.float64]
+
+
+@dataclass(frozen=True, slots=True)
+class Span:
+    """What is known of functionals of the fluxes, one number each.
+
+    ``sd`` is NaN where a functional is not determined; ``low`` and ``high`` may be infinite.
+    """
+
+    sd: Array
+    low: Array
+    high: Array
+
+
+@dataclass(frozen=True, slots=True)
+class Account:
+    """What a flux vector amounts to."""
+
+    ledger: tuple[LedgerLine, ...]
+    equations: tuple[NetEquation, ...]
+    yields: tuple[Yield, ...]
+
+
+def keep_account(built: Built, fluxes: Array, spans: Callable[[Array], Span]) -> Account:
+    """The ledger, the net equations and the yields at given fluxes.
+
+    Parameters
+    ----------
+    built
+        The problem at the parameters' values that the fluxes belong to.
+    fluxes
+        One a reaction, in the unit of the rates.
+    spans
+        Gives what is known of functionals, each a row over the reactions.
+    """
+    network, matrix = built.network, built.stoichiometry
+    coefficients = matrix.floats(built.values)
+    places = ledger_places(network, matrix)
+    rows = ledger_rows(network, matrix, coefficients, places)
+    span = spans(rows)
+    equations = find_equations(network, matrix, coefficients, fluxes)
+    whole = add_implied(equations[-1], network)
+    releases = {t.species: t.coefficient for t in whole.terms if not t.implied}
+    return Account(
+        keep_ledger(places, rows, fluxes, span.sd, span.low, span.high),
+        (*equations[:-1], whole),
+        find_yields(network, releases),
+    )
