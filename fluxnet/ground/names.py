@@ -343,6 +343,13 @@ class Name(Enum):
         "no-substrate", _W, "nothing with carbon can be taken up",
         "No flux can run.", "Declare a substrate.")
 
+    PACKAGE_MISSING = (
+        "package-missing", _E, "an optional package that is needed is not installed",
+        "A workbook is read by a package of its own.", "pip install \"fluxnet[sheets]\".")
+    UNKNOWN_SHEET = (
+        "unknown-sheet", _E, "a sheet is asked for that the workbook does not have",
+        "There is nothing to read.", "Name one of the sheets shown.")
+
     # --- rates tables ------------------------------------------------------------------
     UNREADABLE_CELL = (
         "unreadable-cell", _E, "a cell does not hold what its column should",
