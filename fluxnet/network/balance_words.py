@@ -120,7 +120,7 @@ def mend_words(mends: Sequence[Mend]) -> str:
     """The likeliest repair, and one that is as likely, if there is."""
     first = mends[0]
     text = _one_mend(first)
-    others = [m for m in mends[1:] if m.kind is first.kind and m.species != first.species]
+    others = [m for m in mends[1:] if m.species != first.species]
     return f"{text}; so does {_short(others[0])}" if others else text
 
 

@@ -101,7 +101,7 @@ def contradiction(
         f"{each} ? {join(names)} balances {reaction.name}",
         unknowns[0][1].span if len(unknowns) == 1 else reaction.span,
         because=asked or because_of(line),
-        mend=_mend(reaction, unknowns, line, contents),
+        mend=_mend(line, contents),
         also=tuple(t.span for _, t in unknowns) if len(unknowns) > 1 else (),
     )
 
@@ -125,22 +125,20 @@ def _asked(line: LineBalance, sign: int, term: Term) -> str | None:
     return ", ".join(parts)
 
 
-def _mend(
-    reaction: Reaction, unknowns: Sequence[_Signed], line: LineBalance, contents: Contents
-) -> str:
+def _mend(line: LineBalance, contents: Contents) -> str:
+    ways: list[str] = []
     terms = terms_to_solve(line)
     if terms:
-        return f"? {join([t.species for t in terms])} as well closes every balance"
-    added = _missing(reaction, unknowns, line, contents)
+        ways.append(f"? {join([t.species for t in terms])} as well")
+    added = _missing(line, contents)
     if added is not None:
-        sign, name = added
-        return f"? {name} more on the {'left' if sign < 0 else 'right'} closes every balance"
-    return "a species is missing or wrong, or a number is"
+        ways.append(f"? {added[1]} more on the {'left' if added[0] < 0 else 'right'}")
+    if not ways:
+        return "a species is missing or wrong, or a number is"
+    return f"{ways[0]} closes every balance" + (f"; so does {ways[1]}" if ways[1:] else "")
 
 
-def _missing(
-    reaction: Reaction, unknowns: Sequence[_Signed], line: LineBalance, contents: Contents
-) -> tuple[int, str] | None:
+def _missing(line: LineBalance, contents: Contents) -> tuple[int, str] | None:
     """A species that the line lacks, with its side: carriers are tried first."""
     candidates = sorted(contents.network.species, key=lambda s: s.role is not Role.CARRIER)
     solved = [(s, t) for s, t in line.reaction.terms if t.solved]

@@ -81,15 +81,15 @@ def make_coefficient(written: str) -> tuple[Expression | None, Fraction]:
         return None, Fraction(0)
     if not written:
         return constant(1), Fraction(0)
-    if written[0].isdigit():
-        decimals = len(written.partition(".")[2])
-        half = Fraction(1, 2 * 10**decimals) if decimals else Fraction(0)
-        return constant(Fraction(written)), half
     if written.startswith("("):  # (1-a)
         return constant(1) - parameter(written[3:-1]), Fraction(0)
     if "*" in written:
         factor, name = written.split("*")
         return parameter(name).scaled(Fraction(factor)), Fraction(0)
+    if written[0].isdigit():
+        decimals = len(written.partition(".")[2])
+        half = Fraction(1, 2 * 10**decimals) if decimals else Fraction(0)
+        return constant(Fraction(written)), half
     return parameter(written), Fraction(0)
 
 
