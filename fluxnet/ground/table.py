@@ -39,13 +39,17 @@ class Column:
 
 @dataclass(frozen=True, slots=True)
 class Table:
-    """One table of a result; missing values are None, never NaN."""
+    """One table of a result; missing values are None, never NaN.
+
+    ``run`` names the run that it belongs to, where a result has one such table a run.
+    """
 
     key: str
     title: str
     columns: tuple[Column, ...]
     rows: tuple[tuple[Cell, ...], ...]
     notes: tuple[str, ...] = ()
+    run: str | None = None
 
     def __post_init__(self) -> None:
         for row in self.rows:

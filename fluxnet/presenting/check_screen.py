@@ -16,13 +16,13 @@ from fluxnet.studies.check import CheckResult
 __all__ = ["check_record", "check_screen", "findings_record"]
 
 
-def check_screen(result: CheckResult, file: str) -> tuple[Block, ...]:
-    """Everything below the findings themselves."""
+def check_screen(result: CheckResult, file: str = "") -> tuple[Block, ...]:
+    """Everything below the findings themselves; ``file`` is shown before the title."""
     counts = result.counts
     variant = result.network.variant
     blocks: list[Block] = [
-        Heading(f"{file}{'' if variant == 'base' else f', variant {variant}'}: "
-                f"{result.network.title}"),
+        Heading(f"{file}{': ' if file else ''}{result.network.title}"
+                f"{'' if variant == 'base' else f', variant {variant}'}"),
         Sentence(
             f"{_some(counts.reactions, 'reaction')} in "
             f"{_some(counts.compartments, 'compartment')}, {counts.species} species, of which "

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Iterable
+from dataclasses import dataclass, replace
 from enum import Enum
 
-from fluxnet.ground.table import Table
+from fluxnet.ground.table import Column, Table
 
-__all__ = ["Block", "Heading", "Mood", "Sentence", "screen_tables"]
+__all__ = ["Block", "Heading", "Mood", "Sentence", "blocks_of_run", "screen_tables"]
 
 
 class Mood(Enum):
@@ -39,6 +40,23 @@ class Sentence:
 Block = Heading | Sentence | Table
 
 
+def blocks_of_run(blocks: Iterable[Block], run: str | None) -> tuple[Block, ...]:
+    """The blocks with their tables marked as those of one run."""
+    return tuple(replace(b, run=run) if isinstance(b, Table) else b for b in blocks)
+
+
 def screen_tables(screen: tuple[Block, ...]) -> tuple[Table, ...]:
-    """The tables of a screen, in order."""
-    return tuple(block for block in screen if isinstance(block, Table))
+    """The tables of a screen as data: those of several runs as one, with a column ``run``."""
+    groups: dict[str, list[Table]] = {}
+    for block in screen:
+        if isinstance(block, Table):
+            groups.setdefault(block.key, []).append(block)
+    return tuple(_joined(tables) for tables in groups.values())
+
+
+def _joined(tables: list[Table]) -> Table:
+    first = tables[0]
+    if all(table.run is None for table in tables):
+        return replace(first, rows=tuple(row for table in tables for row in table.rows))
+    rows = tuple((table.run, *row) for table in tables for row in table.rows)
+    return Table(first.key, first.title, (Column("run", "run"), *first.columns), rows)

@@ -7,7 +7,7 @@ from fluxnet.network.model import QuantityKind
 from fluxnet.presenting.conflict_blocks import conflict_blocks, unbounded_blocks
 from fluxnet.presenting.equation_text import equation_lines
 from fluxnet.presenting.numbers import format_number, format_p, format_range
-from fluxnet.presenting.screen import Block, Heading, Mood, Sentence
+from fluxnet.presenting.screen import Block, Heading, Mood, Sentence, blocks_of_run
 from fluxnet.studies.ledger import LedgerLine
 from fluxnet.studies.solution import FluxKind, FluxSolution, Solution, SolveStatus
 
@@ -24,7 +24,9 @@ _MOODS = {
 
 def solve_screen(solution: Solution) -> tuple[Block, ...]:
     """Everything that is shown of a solve, run by run."""
-    return tuple(block for run in solution.runs for block in _run_blocks(run))
+    return tuple(
+        block for run in solution.runs for block in blocks_of_run(_run_blocks(run), run.run)
+    )
 
 
 def _run_blocks(run: FluxSolution) -> tuple[Block, ...]:

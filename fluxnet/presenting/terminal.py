@@ -33,6 +33,9 @@ _ASCII = str.maketrans(
      "–": "-", "≤": "<=", "≥": ">=", "µ": "u", "γ": "gamma", "×": "x"}
 )  # fmt: skip
 
+# A rule under the header and nothing else, in rich's notation of eight lines.
+_ASCII_RULE = "\n".join(["    ", "    ", " -- ", "    ", "    ", "    ", "    ", "    ", ""])
+
 
 @dataclass(frozen=True, slots=True)
 class Terminal:
@@ -63,6 +66,11 @@ class Terminal:
         except (UnicodeEncodeError, LookupError):
             ascii_only = True
         return cls(stream, colour, None if is_terminal else _pipe_width(), ascii_only)
+
+    @classmethod
+    def text(cls, stream: TextIO) -> Terminal:
+        """A terminal that writes plain text with all its signs into a stream."""
+        return cls(stream, colour=False, width=_pipe_width(), ascii_only=False)
 
     def show(self, screen: tuple[Block, ...], *, quiet: bool = False) -> None:
         """Show a screen; quiet keeps only the verdicts."""
@@ -131,7 +139,7 @@ class Terminal:
         grid = Grid(
             title=Text(self._plain(table.title), style="bold" if self.colour else ""),
             title_justify="left",
-            box=box.ASCII2 if self.ascii_only else box.SIMPLE_HEAD,
+            box=box.Box(_ASCII_RULE, ascii=True) if self.ascii_only else box.SIMPLE_HEAD,
             pad_edge=False,
             show_edge=False,
             collapse_padding=True,
