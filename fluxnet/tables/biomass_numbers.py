@@ -11,9 +11,9 @@ from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.tables.entries import RunHead
 from fluxnet.tables.grid import Cell
+from fluxnet.tables.numbers import Number, cell_fault, read_cell
 from fluxnet.tables.numerals import Decimal
 from fluxnet.tables.statements import Statements
-from fluxnet.tables.values import Number, cell_fault, read_cell
 
 __all__ = ["BiomassNumbers", "read_biomass_numbers"]
 

@@ -1,18 +1,4 @@
-"""The covariance table that may lie beside a rates table.
-
-``NAME.covariance.csv`` beside ``NAME.csv``, or a sheet ``covariance``, tells which errors move
-together beyond the shared error of the biomass (oxygen and CO2 from one gas analyser). One row
-a pair::
-
-    run, first,     second,  correlation
-    A,   oxygen in, CO2 out, 0.6
-
-``first`` and ``second`` are quantities as in the rates table; the direction may be left out. A
-blank run, or a table without that column, holds for every run. ``correlation`` is that of the
-errors as given (without the shared error), from -1 to 1. Instead a column ``covariance`` may
-stand, in the product of the units that the rates table uses. Pairs that are not listed are
-independent.
-"""
+"""Pairs of errors that move together, and the matrix of correlations that they make."""
 
 from __future__ import annotations
 

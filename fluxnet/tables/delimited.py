@@ -22,7 +22,7 @@ _LINE_END = re.compile(r"\r\n|\r|\n")
 
 def split_lines(text: str) -> tuple[str, ...]:
     """The lines of a text, whatever ends them; an end at the very end opens no new line."""
-    lines = _LINE_END.split(text)
+    lines = _LINE_END.split(text.removeprefix("\ufeff"))
     return tuple(lines[:-1] if lines and not lines[-1] else lines)
 
 

@@ -16,9 +16,10 @@ from fluxnet.tables.bases import Target, carbon_weight, factor_to
 from fluxnet.tables.correlations import Correlation, correlation_matrix
 from fluxnet.tables.entries import RunHead
 from fluxnet.tables.errors_assumed import SdRule, assume_sds
+from fluxnet.tables.numbers import cell_fault
 from fluxnet.tables.rate_units import BadUnit
 from fluxnet.tables.targets import choose_target
-from fluxnet.tables.values import Reading, cell_fault
+from fluxnet.tables.values import Reading
 
 __all__ = ["BuiltRun", "build_run"]
 

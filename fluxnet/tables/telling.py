@@ -12,7 +12,7 @@ from fluxnet.tables.entries import Entries
 from fluxnet.tables.errors_assumed import SdRule
 from fluxnet.tables.grid import Grid
 from fluxnet.tables.layout import Layout
-from fluxnet.tables.numerals import Decimal, DecimalChoice
+from fluxnet.tables.numerals import DecimalChoice
 from fluxnet.tables.runs import BuiltRun
 
 __all__ = ["Told", "assumption_notes", "tell_understood"]
@@ -29,7 +29,11 @@ class Told:
 
 
 def tell_understood(
-    grid: Grid, layout: Layout, entries: Entries, choice: DecimalChoice, asked: Decimal | None
+    grid: Grid,
+    layout: Layout,
+    entries: Entries,
+    choice: DecimalChoice,
+    covariance: Grid | None,
 ) -> Told:
     """How the table was read: form, separator, decimal sign, header, what was carried through."""
     parts = [f"{layout.form.value if layout.form else 'no'} table"]
@@ -38,15 +42,17 @@ def tell_understood(
     if grid.separator is not None:
         sign = grid.separator
         parts.append(_SEPARATORS.get(sign, f"separated by {sign}"))
-    if choice.said and (choice.decimal is Decimal.COMMA or asked is not None):
+    if choice.said:
         parts.append(f"decimal {choice.decimal.name.lower()}")
-    elif choice.said:
-        parts.append("decimal point")
     rows = layout.header_rows
     parts.append("one header row" if rows == 1 else f"{rows} header rows")
     parts.append(_count(len(entries.heads), "run"))
     if entries.carried:
         parts.append(f"carried through: {', '.join(entries.carried)}")
+    if entries.continued:
+        parts.append("a blank run cell continues the run above")
+    if covariance is not None:
+        parts.append(f"correlations from {covariance.source.file}")
     if layout.statements.notes:
         parts.append(f"{_count(len(layout.statements.notes), 'line')} above it taken as notes")
     file = grid.source.file

@@ -2,8 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
@@ -11,16 +10,20 @@ from fluxnet.ground.source import Span
 from fluxnet.network.model import Network, QuantityKind, Role, Species
 from fluxnet.rates.measured import RatesTable
 from fluxnet.tables.biomass_numbers import read_biomass_numbers
-from fluxnet.tables.correlations import Correlation
-from fluxnet.tables.entries import Entries, collect_entries
+from fluxnet.tables.correlations import Correlations
+from fluxnet.tables.covariance_table import read_covariance
+from fluxnet.tables.entries import Entries
 from fluxnet.tables.errors_assumed import SdRule
 from fluxnet.tables.grid import Grid
-from fluxnet.tables.layout import Layout, find_layout
+from fluxnet.tables.layout import Form, Layout, find_layout
+from fluxnet.tables.long_form import collect_long
+from fluxnet.tables.numbers import cell_fault
 from fluxnet.tables.numerals import Decimal, DecimalChoice, decide_decimal
 from fluxnet.tables.runs import BuiltRun, build_run
 from fluxnet.tables.telling import assumption_notes, tell_understood
-from fluxnet.tables.values import Reading, Readings, cell_fault, read_entries
+from fluxnet.tables.values import Reading, Readings, read_entries
 from fluxnet.tables.vocabulary import Vocabulary, assumed_biomass, biomass_species
+from fluxnet.tables.wide_form import collect_wide
 
 __all__ = ["Understood", "understand"]
 
@@ -39,47 +42,33 @@ def understand(
     network: Network | None,
     asked: Decimal | None,
     rule: SdRule,
-    correlations: Sequence[Correlation] = (),
+    covariance: Grid | None = None,
 ) -> Understood:
-    """Read the runs of a grid."""
+    """Read the runs of a grid, and the correlations of their errors in another."""
     layout = find_layout(grid, network)
     notes = layout.statements.notes + grid.comments
     faults = list(layout.statements.diagnostics)
     if layout.form is None:
         return Understood(None, notes, (*faults, _no_header(grid, layout)))
-    entries = collect_entries(layout)
+    entries = collect_long(layout) if layout.form is Form.LONG else collect_wide(layout)
     faults.extend(entries.diagnostics)
-    choice = _decimal(entries, grid, asked)
-    faults.extend(_decimal_faults(choice))
-    if choice.doubtful:
-        return Understood(None, notes, tuple(faults))
-    contrary = {c.span for c in choice.contrary}
-    readings = read_entries(
-        [e for e in entries.entries if not {e.value.span, e.sd.span} & contrary],
-        choice.decimal,
-        layout.vocabulary,
-    )
-    faults.extend(readings.diagnostics)
     if not entries.entries and not entries.diagnostics:
         faults.append(_no_rows(grid, layout))
+    choice = _decimal(entries, grid, asked)
+    faults.extend(_decimal_faults(choice))
+    flagged = frozenset(c.span for c in (*choice.doubtful, *choice.contrary))
+    readings = read_entries(entries.entries, choice.decimal, layout.vocabulary, flagged)
+    faults.extend(readings.diagnostics)
+    pairs = Correlations()
+    if covariance is not None:
+        names = [h.name for h in entries.heads]
+        pairs = read_covariance(covariance, readings, names, layout.vocabulary, asked)
+        faults.extend(pairs.diagnostics)
     biomass, assumed = _biomass(readings, layout.vocabulary)
-    runs: list[BuiltRun] = []
-    for head in entries.heads:
-        numbers = read_biomass_numbers(head, layout.statements, choice.decimal)
-        built = build_run(
-            head,
-            [r for r in readings.readings if r.entry.run == head.name],
-            biomass=biomass,
-            model_basis=None if network is None else network.basis,
-            concentration=numbers.concentration,
-            shared_error=numbers.shared_error,
-            correlations=[c for c in correlations if c.run in ("", head.name)],
-            rule=rule,
-            complete=head.name not in readings.failed and not contrary,
-        )
-        faults.extend((*numbers.diagnostics, *built.diagnostics))
-        runs.append(built)
-    told = tell_understood(grid, layout, entries, choice, asked)
+    runs = _build_runs(entries, readings, layout, choice.decimal, biomass, pairs, rule)
+    for built in runs:
+        faults.extend(built.diagnostics)
+    told = tell_understood(grid, layout, entries, choice, covariance)
     faults.append(told.note)
     faults.extend(assumption_notes(grid, runs, rule, assumed))
     table = RatesTable(
@@ -89,6 +78,37 @@ def understand(
         layout.statements.nitrogen,
     )
     return Understood(table, notes, tuple(faults))
+
+
+def _build_runs(
+    entries: Entries,
+    readings: Readings,
+    layout: Layout,
+    decimal: Decimal,
+    biomass: Species | None,
+    pairs: Correlations,
+    rule: SdRule,
+) -> list[BuiltRun]:
+    mine: dict[str, list[Reading]] = {head.name: [] for head in entries.heads}
+    for reading in readings.readings:
+        mine[reading.entry.run].append(reading)
+    network = layout.vocabulary.network
+    runs: list[BuiltRun] = []
+    for head in entries.heads:
+        numbers = read_biomass_numbers(head, layout.statements, decimal)
+        built = build_run(
+            head,
+            mine[head.name],
+            biomass=biomass,
+            model_basis=None if network is None else network.basis,
+            concentration=numbers.concentration,
+            shared_error=numbers.shared_error,
+            correlations=[c for c in pairs.pairs if c.run in ("", head.name)],
+            rule=rule,
+            complete=head.name not in readings.failed,
+        )
+        runs.append(replace(built, diagnostics=(*numbers.diagnostics, *built.diagnostics)))
+    return runs
 
 
 def _decimal(entries: Entries, grid: Grid, asked: Decimal | None) -> DecimalChoice:

@@ -2,31 +2,21 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Collection, Iterable
 from dataclasses import dataclass, field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.source import Span
 from fluxnet.network.model import Quantity, QuantityKind, Species
 from fluxnet.tables.entries import Entry
-from fluxnet.tables.grid import Cell
-from fluxnet.tables.numerals import Decimal, is_infinite, read_number, split_numeral
+from fluxnet.tables.numbers import Number, cell_fault, read_cell
+from fluxnet.tables.numerals import Decimal
 from fluxnet.tables.quantities import QuantityReading, read_quantity
 from fluxnet.tables.rate_units import BadUnit, RateUnit, read_rate_unit
 from fluxnet.tables.vocabulary import Vocabulary
 
-__all__ = ["Number", "Reading", "Readings", "cell_fault", "read_cell", "read_entries"]
-
-
-@dataclass(frozen=True, slots=True)
-class Number:
-    """A cell's number with the error written beside it; ``fault`` where there is none."""
-
-    value: float | None = None
-    sd: float | None = None
-    relative: float | None = None
-    percent: bool = False
-    fault: Diagnostic | None = None
+__all__ = ["Reading", "Readings", "read_entries"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -62,44 +52,16 @@ class Readings:
     diagnostics: tuple[Diagnostic, ...] = field(default=())
 
 
-def cell_fault(
-    name: Name, cell: Cell, title: str, words: str, mend: str | None = None
-) -> Diagnostic:
-    """A diagnostic that names row and column of a cell, and the column's title."""
-    where = f"{cell.place} ({title})" if title else cell.place
-    return Diagnostic(name, f"{where}: {words}", cell.span, mend=mend)
+def read_entries(
+    entries: Iterable[Entry],
+    decimal: Decimal,
+    vocabulary: Vocabulary,
+    flagged: Collection[Span] = (),
+) -> Readings:
+    """Read every entry; one with a fault is left out, and its run is named as failed.
 
-
-def read_cell(cell: Cell, decimal: Decimal, title: str) -> Number:
-    """The number in a cell that is not blank."""
-    if cell.fault is not None:
-        words = f"`{cell.text}` {cell.fault}" if cell.text else cell.fault
-        return Number(fault=cell_fault(Name.UNREADABLE_CELL, cell, title, words))
-    if cell.number is not None:
-        return Number(cell.number)
-    if is_infinite(cell.text):
-        words = f"`{cell.text}` is no measured value"
-        return Number(
-            fault=cell_fault(
-                Name.NOT_A_NUMBER, cell, title, words, "leave the cell blank: not measured"
-            )
-        )
-    parts = split_numeral(cell.text)
-    value = read_number(parts.value, decimal)
-    error = read_number(parts.error, decimal) if parts.error else 0.0
-    if value is None or error is None:
-        words = f"`{cell.text}` is no number"
-        mend = "correct it, or leave the cell blank: not measured"
-        return Number(fault=cell_fault(Name.UNREADABLE_CELL, cell, title, words, mend))
-    if not parts.error:
-        return Number(value, percent=parts.percent)
-    if parts.error_percent:
-        return Number(value, relative=error / 100, percent=parts.percent)
-    return Number(value, sd=error, percent=parts.percent)
-
-
-def read_entries(entries: Iterable[Entry], decimal: Decimal, vocabulary: Vocabulary) -> Readings:
-    """Read every entry; one with a fault is left out, and its run is named as failed."""
+    ``flagged`` are the places of cells whose number was refused before.
+    """
     known: dict[tuple[str, str], QuantityReading] = {}
     units: dict[str, RateUnit | BadUnit] = {}
     typed: dict[str, Species] = {}
@@ -117,7 +79,8 @@ def read_entries(entries: Iterable[Entry], decimal: Decimal, vocabulary: Vocabul
         for text in (entry.unit, entry.sd_unit):
             if text not in units:
                 units[text] = read_rate_unit(text)
-        found = _read(entry, told, decimal, units)
+        bad = {entry.value.span, entry.sd.span} & set(flagged) if flagged else ()
+        found = _read(entry, told, decimal, units, skip=bool(bad))
         if isinstance(found, Reading):
             readings.append(found)
         else:
@@ -149,7 +112,12 @@ def _renamed(quantity: Quantity, renamed: dict[str, Species]) -> Quantity:
 
 
 def _read(
-    entry: Entry, told: QuantityReading, decimal: Decimal, units: dict[str, RateUnit | BadUnit]
+    entry: Entry,
+    told: QuantityReading,
+    decimal: Decimal,
+    units: dict[str, RateUnit | BadUnit],
+    *,
+    skip: bool,
 ) -> Reading | list[Diagnostic]:
     faults: list[Diagnostic] = []
     if told.fault is not None:
@@ -157,15 +125,15 @@ def _read(
             cell_fault(told.fault.name, entry.name_cell, "", told.fault.message, told.fault.mend)
         )
     value, sd = Number(), Number()
-    if not entry.value.is_blank:
+    if not entry.value.is_blank and not skip:
         value = read_cell(entry.value, decimal, entry.title)
-    if not entry.sd.is_blank:
+    if not entry.sd.is_blank and not skip:
         sd = read_cell(entry.sd, decimal, f"sd of {entry.name}")
     faults += [n.fault for n in (value, sd) if n.fault is not None]
     faults += _unit_faults(entry, told.quantity, units)
     if not faults:
         faults += _sense(entry, told.quantity, value, sd)
-    if faults or told.quantity is None:
+    if faults or told.quantity is None or skip:
         return faults
     own, relative = value.sd, value.relative
     if sd.value is not None:

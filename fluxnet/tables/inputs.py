@@ -1,0 +1,71 @@
+"""Bytes of a file as lines of text or as the sheets of a workbook."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+from pathlib import Path
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Name
+from fluxnet.ground.source import Span
+from fluxnet.tables.decoding import decode
+from fluxnet.tables.delimited import split_lines
+from fluxnet.tables.grid import Grid
+from fluxnet.tables.workbook import is_workbook, read_workbook
+
+__all__ = ["Input", "read_input"]
+
+
+@dataclass(frozen=True, slots=True)
+class Input:
+    """One file: lines of text, or sheets; neither where ``diagnostics`` hold the reason."""
+
+    file: str
+    lines: tuple[str, ...] = ()
+    sheets: tuple[Grid, ...] = ()
+    diagnostics: tuple[Diagnostic, ...] = field(default=())
+
+
+def read_input(data: bytes | Path, file: str) -> Input:
+    """Read a file, or bytes that were read already; ``file`` is its name in messages."""
+    if isinstance(data, Path):
+        found = _bytes_of(data, file)
+        if isinstance(found, Diagnostic):
+            return Input(file, diagnostics=(found,))
+        data = found
+    span = Span(file, 0, 0, 0)
+    if not data:
+        return Input(file, diagnostics=(Diagnostic(Name.EMPTY_FILE, f"{file} is empty", span),))
+    if is_workbook(data):
+        book = read_workbook(data, file)
+        return Input(file, (), book.sheets, book.diagnostics)
+    decoded = decode(data)
+    if decoded.text is None:
+        words = f"{file} is neither text nor a workbook"
+        return Input(file, diagnostics=(
+            Diagnostic(Name.BINARY_FILE, words, span, mend="save it as CSV or XLSX"),
+        ))  # fmt: skip
+    lines = split_lines(decoded.text)
+    if not any(line.strip() for line in lines):
+        words = f"{file} holds only blank lines"
+        return Input(file, diagnostics=(Diagnostic(Name.EMPTY_FILE, words, span),))
+    if not decoded.guessed:
+        return Input(file, lines)
+    words = f"{file} is not UTF-8 and was read as Latin-1"
+    note = Diagnostic(Name.WRONG_ENCODING, words, span, mend="save the file as UTF-8")
+    return Input(file, lines, diagnostics=(note,))
+
+
+def _bytes_of(path: Path, file: str) -> bytes | Diagnostic:
+    span = Span(file, 0, 0, 0)
+    try:
+        if path.is_dir():
+            return Diagnostic(
+                Name.NOT_A_FILE, f"{file} is a folder", span, mend="name the file inside it"
+            )
+        return path.read_bytes()
+    except (FileNotFoundError, NotADirectoryError):
+        return Diagnostic(Name.FILE_MISSING, f"there is no file {file}", span)
+    except (OSError, ValueError) as fault:
+        words = getattr(fault, "strerror", None) or str(fault)
+        return Diagnostic(Name.FILE_MISSING, f"{file} cannot be opened: {words}", span)

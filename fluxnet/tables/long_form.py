@@ -1,0 +1,98 @@
+"""Long tables, a row a quantity: ``run, species, direction, rate, sd, unit``."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Name
+from fluxnet.tables.entries import (
+    BiomassColumns,
+    Entries,
+    Entry,
+    RunHead,
+    column_twice,
+    extend_head,
+)
+from fluxnet.tables.grid import Cell, Row
+from fluxnet.tables.layout import Layout
+from fluxnet.tables.quantities import is_quantity_name
+from fluxnet.tables.titles import Key, Title
+from fluxnet.tables.vocabulary import Vocabulary, split_direction
+
+__all__ = ["collect_long"]
+
+_ROW_KEYS = (Key.RATE, Key.SD, Key.DIRECTION, Key.UNIT)
+
+
+def collect_long(layout: Layout) -> Entries:
+    """The entries of a long table; a blank run cell continues the run above."""
+    places: dict[Key, Title] = {}
+    faults: list[Diagnostic] = []
+    for title in layout.titles:
+        if title.key is None or (title.is_sd and title.key is not Key.SD):
+            continue
+        if title.key in places:
+            faults.append(column_twice(title))
+        places.setdefault(title.key, title)
+    biomass = BiomassColumns.among(layout.titles)
+    used = {t.cell.column for t in (*places.values(), *biomass.titles)}
+    extras = [t for t in layout.titles if t.cell.column not in used and t.cell.text]
+    entries: list[Entry] = []
+    heads: dict[str, RunHead] = {}
+    run, continued = "", False
+    for row in layout.body:
+        named = _cell(row, places, Key.RUN).text
+        continued = continued or bool(run and not named and Key.RUN in places)
+        run = named or run or "run 1"
+        head = heads.get(run, RunHead(run, row.span))
+        heads[run] = extend_head(head, row, extras, biomass)
+        entry = _entry(row, run, places, layout.vocabulary)
+        if entry is not None:
+            entries.append(entry)
+        elif any(not _cell(row, places, k).is_blank for k in _ROW_KEYS):
+            faults.append(_nameless(row, _cell(row, places, Key.SPECIES)))
+    carried = tuple(t.cell.text for t in extras)
+    return Entries(tuple(entries), tuple(heads.values()), carried, continued, tuple(faults))
+
+
+def _entry(row: Row, run: str, places: Mapping[Key, Title], vocabulary: Vocabulary) -> Entry | None:
+    """The entry of a row; None where it names no species."""
+    species = _cell(row, places, Key.SPECIES)
+    if species.is_blank:
+        return None
+    direction = _cell(row, places, Key.DIRECTION).text
+    name, word = split_direction(species.text)
+    if direction or is_quantity_name(species.text, vocabulary):
+        name, word = species.text, ""
+    rate, sd = places[Key.RATE], places.get(Key.SD)
+    unit = _cell(row, places, Key.UNIT)
+    if not unit.text and rate.unit:
+        unit_text, unit = rate.unit, rate.cell
+    else:
+        unit_text = unit.text
+    return Entry(
+        run=run,
+        name=name,
+        name_cell=species,
+        direction=direction or word,
+        value=_cell(row, places, Key.RATE),
+        sd=_cell(row, places, Key.SD),
+        unit=unit_text,
+        unit_cell=unit,
+        sd_unit=sd.unit if sd else "",
+        title=rate.cell.text,
+    )
+
+
+def _cell(row: Row, places: Mapping[Key, Title], key: Key) -> Cell:
+    return row.cell(places[key].cell.column) if key in places else Cell("")
+
+
+def _nameless(row: Row, cell: Cell) -> Diagnostic:
+    return Diagnostic(
+        Name.UNREADABLE_CELL,
+        f"row {row.span.line} names no species",
+        cell.span,
+        mend="write the species, or start the line with # if it is a remark",
+    )
