@@ -35,8 +35,8 @@ def number_text(value: Fraction) -> str:
     --------
     >>> number_text(Fraction(7, 4)), number_text(Fraction(-1, 3)), number_text(Fraction(2))
     ('1.75', '-1/3', '2')
-    >>> number_text(Fraction(22222222, 33333333) / 7919)
-    'about 8.41857e-05'
+    >>> number_text(Fraction(1, 98765432101))
+    'about 1.0125e-11'
     """
     decimals = decimals_of(value)
     if decimals is not None and decimals <= _MOST_DECIMALS:

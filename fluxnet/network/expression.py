@@ -226,9 +226,14 @@ def parameter(name: str) -> Expression:
 
 
 def _text(polynomial: _Polynomial) -> str:
-    """The polynomial as text of the language, which its reader takes back."""
+    """The polynomial as text of the language, which its reader takes back.
+
+    A positive term stands first where there is one.
+    """
     parts: list[str] = []
-    for power, coefficient in polynomial.terms:
+    lead = next((t for t in polynomial.terms if t[1] > 0), None)
+    others = [t for t in polynomial.terms if t is not lead]
+    for power, coefficient in others if lead is None else [lead, *others]:
         factors = [name for name, exponent in power for _ in range(exponent)]
         size = abs(coefficient)
         if size != 1 or not factors:

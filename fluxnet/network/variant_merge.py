@@ -161,9 +161,7 @@ def _settle(
     work: _Merging, key: Key, members: Iterable[str]
 ) -> tuple[Thing | None] | None:
     """What the members set in the end, in a tuple of one; None where they do not set it."""
-    setters = [name for name in members if key in work.changes[name]]
-    hidden = {parent for name in setters for parent in work.above[name]}
-    last = [name for name in setters if name not in hidden]
+    last = _last_setters(work, key, members)
     if not last:
         return None
     values = [_value(work, key, name) for name in last]
@@ -174,23 +172,36 @@ def _settle(
     return (values[0],)
 
 
+def _last_setters(work: _Merging, key: Key, members: Iterable[str]) -> list[str]:
+    """The members that set a key and that no other setter builds on."""
+    setters = [name for name in members if key in work.changes[name]]
+    hidden = {parent for name in setters for parent in work.above[name]}
+    return [name for name in setters if name not in hidden]
+
+
 def _value(work: _Merging, key: Key, name: str) -> Thing | None:
     """What a variant sets; a parameter's sd and range are kept unless given."""
     value = work.changes[name][key].value
     if not isinstance(value, Parameter):
         return value
-    before: Thing | None = None
-    if value.sd is None or value.low is None or value.high is None:
-        settled = _settle(work, key, [n for n in work.changes if n in work.above[name]])
-        before = settled[0] if settled else base_thing(key, work.network)
-    if not isinstance(before, Parameter):
+    parents = _last_setters(work, key, [n for n in work.changes if n in work.above[name]])
+    kept = [_value(work, key, parent) for parent in parents] or [base_thing(key, work.network)]
+    before = [p for p in kept if isinstance(p, Parameter)]
+    if not before:
         return value
+    spread = value.sd is not None
     ranged = value.low is not None or value.high is not None
+    for parent, other in zip(parents[1:], before[1:], strict=False):
+        differ = (not spread and other.sd != before[0].sd) or (
+            not ranged and (other.low, other.high) != (before[0].low, before[0].high)
+        )
+        if differ:
+            work.found.append(_clash(work, key, (parents[0], parent), (before[0], other)))
     return replace(
         value,
-        sd=before.sd if value.sd is None else value.sd,
-        low=value.low if ranged else before.low,
-        high=value.high if ranged else before.high,
+        sd=value.sd if spread else before[0].sd,
+        low=value.low if ranged else before[0].low,
+        high=value.high if ranged else before[0].high,
     )
 
 

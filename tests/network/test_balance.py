@@ -33,7 +33,8 @@ def test_a_wrong_coefficient_is_named_with_its_gap_its_counts_its_place_and_its_
     finding = one_finding(network)
     assert finding.name is Name.UNBALANCED_LINE
     assert finding.message == "reaction pdh makes 1 C more than it uses"
-    assert finding.because == "left C 3 (pyruvate), right C 4 (acetyl-CoA 2, CO2 2); electrons close"
+    counts = "left C 3 (pyruvate), right C 4 (acetyl-CoA 2, CO2 2)"
+    assert finding.because == f"{counts}; electrons close"
     assert finding.mend == "1 CO2 closes every balance"
     assert (finding.span.column, finding.span.end_column) == (31, 36)
 

@@ -4,9 +4,9 @@ from fractions import Fraction
 
 from fluxnet.ground.names import Name
 from fluxnet.network.coefficients import check_coefficients
+from fluxnet.network.expression import constant, parameter
 from fluxnet.network.model import Parameter
 from fluxnet.network.unknown_signs import changes_sign
-from fluxnet.network.expression import constant, parameter
 
 SPECIES = {"A": "CH2O", "B": "CH2O"}
 
