@@ -19,6 +19,7 @@ import re
 from dataclasses import dataclass, field
 from fractions import Fraction
 
+from fluxnet.chemistry.catalogue import find_compound
 from fluxnet.chemistry.reader import FormulaError, FormulaFault, read_formula
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
@@ -120,7 +121,9 @@ def _declared(found: re.Match[str], text: str, span: Span) -> Statements:
         message = f"an ash content of {found['ash']} % leaves no organic mass"
         faults.append(Diagnostic(Name.UNREADABLE_CELL, message, span, source_line=text))
         ash = Fraction(0)
-    species = Species(found["name"], role, formula, ash=ash, ash_sd=ash_sd, span=span)
+    compound = None if role is Role.BIOMASS else find_compound(found["name"])
+    entry = compound.name if compound is not None else None
+    species = Species(found["name"], role, formula, entry=entry, ash=ash, ash_sd=ash_sd, span=span)
     return Statements(species=(species,), diagnostics=tuple(faults))
 
 

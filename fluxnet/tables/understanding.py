@@ -12,6 +12,7 @@ from fluxnet.rates.measured import RatesTable
 from fluxnet.tables.biomass_numbers import read_biomass_numbers
 from fluxnet.tables.correlations import Correlations
 from fluxnet.tables.covariance_table import read_covariance
+from fluxnet.tables.declarations import check_declarations
 from fluxnet.tables.entries import Entries
 from fluxnet.tables.errors_assumed import SdRule
 from fluxnet.tables.grid import Grid
@@ -48,6 +49,7 @@ def understand(
     layout = find_layout(grid, network)
     notes = layout.statements.notes + grid.comments
     faults = list(layout.statements.diagnostics)
+    faults.extend(check_declarations(layout.statements.species, network))
     if layout.form is None:
         return Understood(None, notes, (*faults, _no_header(grid, layout)))
     entries = collect_long(layout) if layout.form is Form.LONG else collect_wide(layout)

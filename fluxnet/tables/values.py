@@ -73,6 +73,7 @@ def read_entries(
         key = (entry.name, entry.direction)
         if key not in known:
             known[key] = _once(read_quantity(*key, vocabulary), typed)
+            faults.extend(_outside(entry, known[key], vocabulary))
         told = known[key]
         if told.assumed:
             assumed.append(entry)
@@ -89,6 +90,22 @@ def read_entries(
     return Readings(
         tuple(readings), tuple(typed.values()), frozenset(failed), tuple(assumed), tuple(faults)
     )
+
+
+def _outside(entry: Entry, told: QuantityReading, vocabulary: Vocabulary) -> list[Diagnostic]:
+    """A warning for each species that is measured and not in the model."""
+    network = vocabulary.network
+    return [
+        cell_fault(
+            Name.NOT_IN_MODEL,
+            entry.name_cell,
+            "",
+            f"{species.name} is measured, and the model does not exchange it",
+            f"declare it in the model, or leave {species.name} out",
+        )
+        for species in told.species
+        if network is not None and network.find_species(species.name) is None
+    ]
 
 
 def _once(told: QuantityReading, typed: dict[str, Species]) -> QuantityReading:
