@@ -85,11 +85,14 @@ def apply_variant(
 
 
 def check_variants(network: Network) -> tuple[Diagnostic, ...]:
-    """What is wrong with each variant of a model, applied by itself."""
+    """What is wrong with each variant of a model, applied by itself.
+
+    Notes on balances that cannot be checked are left out: they are no matter of the variant.
+    """
     found: list[Diagnostic] = []
     for variant in network.variants:
         found.extend(apply_variant(network, variant.name)[1])
-    return in_order(found)
+    return in_order(d for d in found if d.name is not Name.BALANCE_NOT_CHECKED)
 
 
 def _unknown(asked: Mapping[str, None], variants: Mapping[str, Variant]) -> Iterator[Diagnostic]:
