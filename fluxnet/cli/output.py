@@ -7,14 +7,15 @@ import sys
 from collections.abc import Mapping, Sequence
 from typing import Any
 
+from fluxnet.cli.inputs import exit_of
 from fluxnet.cli.main import Exit
-from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.presenting.files import write_csv, write_workbook
 from fluxnet.presenting.records import Input, document_text
 from fluxnet.presenting.screen import Block, screen_tables
 from fluxnet.presenting.terminal import Terminal
 
-__all__ = ["give_findings", "give_screen"]
+__all__ = ["give_faults", "give_findings", "give_screen"]
 
 
 def give_screen(
@@ -52,3 +53,17 @@ def give_findings(arguments: argparse.Namespace, diagnostics: Sequence[Diagnosti
         Terminal.on(sys.stderr, no_color=arguments.no_color).show_diagnostics(
             tuple(diagnostics), most=most
         )
+
+
+def give_faults(
+    arguments: argparse.Namespace,
+    document: str,
+    inputs: Sequence[Input],
+    diagnostics: Sequence[Diagnostic],
+) -> int:
+    """Tell the faults of an input of which nothing can be made; the exit status they ask for."""
+    told = in_order(diagnostics)
+    give_findings(arguments, told)
+    if arguments.json:
+        give_screen(arguments, document, inputs, told, {"runs": []}, ())
+    return exit_of(told)

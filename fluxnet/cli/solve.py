@@ -4,12 +4,12 @@ from __future__ import annotations
 
 import argparse
 
-from fluxnet.cli.inputs import exit_of, load_model, load_rates
+from fluxnet.cli.inputs import load_model, load_rates
 from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
-from fluxnet.cli.output import give_findings, give_screen
-from fluxnet.ground.diagnostic import Diagnostic, in_order
+from fluxnet.cli.output import give_faults, give_findings, give_screen
+from fluxnet.ground.diagnostic import in_order
 from fluxnet.ground.errors import MisuseError
-from fluxnet.presenting.records import Document, Input
+from fluxnet.presenting.records import Document
 from fluxnet.presenting.solve_record import solve_record
 from fluxnet.presenting.solve_screen import solve_screen
 
@@ -54,14 +54,14 @@ def run(arguments: argparse.Namespace) -> int:
         raise MisuseError("standard input can be the model or the rates, not both")
     model = load_model(arguments, arguments.variant)
     if model.network is None:
-        return _faulty(arguments, model.inputs, model.diagnostics)
+        return give_faults(arguments, Document.SOLVE, model.inputs, model.diagnostics)
     table = None
     inputs, diagnostics = model.inputs, model.diagnostics
     if arguments.rates is not None:
         rates = load_rates(arguments, model.network)
         inputs, diagnostics = (*inputs, *rates.inputs), (*diagnostics, *rates.diagnostics)
         if rates.table is None:
-            return _faulty(arguments, inputs, diagnostics)
+            return give_faults(arguments, Document.SOLVE, inputs, diagnostics)
         table = rates.table
     solution = solve_network(
         model.network,
@@ -76,15 +76,3 @@ def run(arguments: argparse.Namespace) -> int:
         arguments, Document.SOLVE, inputs, diagnostics, solve_record(solution),
         solve_screen(solution), sound=solution.is_sound,
     )  # fmt: skip
-
-
-def _faulty(
-    arguments: argparse.Namespace, inputs: tuple[Input, ...], diagnostics: tuple[Diagnostic, ...]
-) -> int:
-    """Tell the faults of an input of which nothing can be made."""
-    give_findings(arguments, in_order(diagnostics))
-    if arguments.json:
-        give_screen(arguments, Document.SOLVE, inputs, in_order(diagnostics), {"runs": []}, ())
-    return exit_of(diagnostics)
-
-

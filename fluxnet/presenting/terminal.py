@@ -75,9 +75,13 @@ class Terminal:
     def show(self, screen: tuple[Block, ...], *, quiet: bool = False) -> None:
         """Show a screen; quiet keeps only the verdicts."""
         console = self._console()
+        after_table = False
         for place, block in enumerate(screen):
             if quiet and not (isinstance(block, Sentence) and block.verdict):
                 continue
+            if after_table and isinstance(block, Sentence):
+                console.print()
+            after_table = isinstance(block, Table)
             if isinstance(block, Heading):
                 self._print(console, ("\n" if place else "") + block.text, "bold")
             elif isinstance(block, Sentence):

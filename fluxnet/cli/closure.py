@@ -1,0 +1,65 @@
+"""``fluxnet closure``: do carbon, nitrogen and electrons close?"""
+
+from __future__ import annotations
+
+import argparse
+
+from fluxnet.cli.inputs import load_model, load_rates
+from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
+from fluxnet.cli.output import give_faults, give_findings, give_screen
+from fluxnet.ground.diagnostic import Diagnostic, in_order
+from fluxnet.network.model import Network
+from fluxnet.presenting.records import Document, Input
+
+__all__ = ["EXAMPLES", "add_arguments", "run"]
+
+EXAMPLES = """Do carbon, nitrogen and electrons close?
+
+  fluxnet closure rates.csv                          formulas from the catalogue
+  fluxnet closure rates.csv --model model.flux       formulas from the model
+  fluxnet closure rates.csv --run A --without CO2    as if CO2 had no row
+  fluxnet closure rates.csv --nitrogen nitrate       another nitrogen source
+"""
+
+
+def add_arguments(parser: argparse.ArgumentParser) -> None:
+    """Options of the command."""
+    parser.add_argument("rates", metavar="RATES", help="a rates table (CSV, TSV, XLSX), or -")
+    add_model_argument(parser, optional=True)
+    parser.add_argument(
+        "--without", metavar="NAME", action="append", default=[], help="leave a row out"
+    )
+    parser.add_argument("--nitrogen", metavar="NAME", help="the nitrogen source (ammonia)")
+    add_table_options(parser)
+    add_output_options(parser)
+
+
+def run(arguments: argparse.Namespace) -> int:
+    """Close the runs that were asked for, and show them."""
+    from fluxnet.presenting.closure_screen import closure_record, closure_screen
+    from fluxnet.studies.closure import close_rates
+
+    network: Network | None = None
+    inputs: tuple[Input, ...] = ()
+    diagnostics: tuple[Diagnostic, ...] = ()
+    if arguments.model is not None:
+        model = load_model(arguments)
+        network, inputs, diagnostics = model.network, model.inputs, model.diagnostics
+        if network is None:
+            return give_faults(arguments, Document.CLOSURE, inputs, diagnostics)
+    rates = load_rates(arguments, network)
+    inputs, diagnostics = (*inputs, *rates.inputs), (*diagnostics, *rates.diagnostics)
+    if rates.table is None:
+        return give_faults(arguments, Document.CLOSURE, inputs, diagnostics)
+    closure = close_rates(
+        rates.table,
+        network=network,
+        nitrogen=arguments.nitrogen or rates.table.nitrogen or "ammonia",
+        without=tuple(arguments.without),
+    )
+    diagnostics = in_order((*diagnostics, *closure.diagnostics))
+    give_findings(arguments, diagnostics)
+    return give_screen(
+        arguments, Document.CLOSURE, inputs, diagnostics, closure_record(closure),
+        closure_screen(closure), sound=closure.is_sound,
+    )  # fmt: skip
