@@ -96,7 +96,7 @@ def load_rates(arguments: argparse.Namespace, network: Network | None) -> ReadRa
     """Read the rates table that a command names, and keep the runs that it asks for."""
     # Imported here, so that `check` does not wait for the tables.
     from fluxnet.tables.numerals import Decimal
-    from fluxnet.tables.rates_table import read_rates, read_rates_text
+    from fluxnet.tables.rates_table import read_rates, read_rates_bytes
 
     decimal = Decimal[arguments.decimal.upper()] if arguments.decimal else None
     separator = _SEPARATORS.get(arguments.separator)
@@ -104,9 +104,9 @@ def load_rates(arguments: argparse.Namespace, network: Network | None) -> ReadRa
     inputs: tuple[Input, ...]
     if arguments.rates == "-":
         data = sys.stdin.buffer.read()
-        reading = read_rates_text(
-            data.decode("utf-8", errors="replace"), file="standard input", network=network,
-            decimal=decimal, separator=separator, sd=sd, sd_floor=floor,
+        reading = read_rates_bytes(
+            data, network=network, sheet=arguments.sheet, decimal=decimal, separator=separator,
+            sd=sd, sd_floor=floor,
         )  # fmt: skip
         inputs = (hash_bytes(data, "standard input"),)
     else:
