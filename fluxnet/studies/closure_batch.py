@@ -19,10 +19,15 @@ from numpy.typing import NDArray
 from fluxnet.ground.errors import MisuseError
 from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tails
 
-__all__ = ["ClosureArrays", "ClosureMatrices", "close_many"]
+__all__ = ["ClosureArrays", "ClosureMatrices", "NoVarianceError", "close_many"]
 
 Array = NDArray[np.float64]
 SIGNIFICANCE = 0.05
+_NO_ERROR = 1e-13
+
+
+class NoVarianceError(MisuseError):
+    """A covariance gives a relation among rates no variance, though each rate has one."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -103,6 +108,8 @@ def close_many(
     ------
     MisuseError
         For NaN, wrong shapes, negative sds, zero sds of values that are not exact.
+    NoVarianceError
+        Where a covariance is singular in a direction that is tested.
 
     Examples
     --------
@@ -117,16 +124,15 @@ def close_many(
     errors = _errors(sds, covariances)
     _check(matrices, y, errors)
     R, W = matrices.redundancy, matrices.calculated
-    RV = errors.times(R)
-    e = y @ R.T
-    K, h = _gain(RV @ R.T, RV, e)
-    reconciled = y - (e[:, None, :] @ K)[:, 0, :]
-    variance = errors.variances
-    reduction = (RV * K).sum(axis=1)
-    left = np.where(matrices.exact, 0.0, np.maximum(variance - reduction, 0.0))
+    Z, f = _whiten(R, y @ R.T, errors)
+    h = np.square(f).sum(axis=0)
+    correction = (f[:, :, None] * Z).sum(axis=0)
+    reduction = np.square(Z).sum(axis=0)
+    reconciled = y - correction
+    left = np.where(matrices.exact, 0.0, np.maximum(errors.variances - reduction, 0.0))
     tested = matrices.balanceable & ~matrices.exact
     with np.errstate(divide="ignore", invalid="ignore"):
-        z = np.where(tested, (y - reconciled) / np.sqrt(reduction), np.nan)
+        z = np.where(tested, correction / np.sqrt(reduction), np.nan)
     terms = np.abs(reconciled) @ np.abs(R).T
     off = np.abs(reconciled @ R.T) / np.where(terms > 0, terms, 1.0)
     dof = len(R)
@@ -142,7 +148,7 @@ def close_many(
         reconciled_sd=np.sqrt(left),
         z=z,
         calculated=reconciled @ W.T,
-        calculated_sd=_sd_of_rows(W, R, K, errors),
+        calculated_sd=_sd_of_rows(W, Z, errors),
         residual=off.max(axis=1) if dof else np.zeros(len(y)),
         **_balances(matrices.contents, y, errors),
     )
@@ -155,12 +161,15 @@ class _Independent:
     variances: Array
 
     def times(self, rows: Array) -> Array:
-        """Rows times the covariance: runs x rows x values."""
-        return np.asarray(rows * self.variances[:, None, :])
+        """Rows times the covariance: rows x runs x values."""
+        return np.asarray(rows[:, None, :] * self.variances)
 
     def between(self, left: Array, right: Array) -> Array:
         """The covariance of row i of one matrix with row i of another: runs x rows."""
-        return np.asarray(self.variances @ (left * right).T)
+        squares = left * right
+        if not squares.any():
+            return np.zeros((len(self.variances), len(left)))
+        return np.asarray(self.variances @ squares.T)
 
 
 @dataclass(frozen=True, slots=True)
@@ -174,12 +183,12 @@ class _Joint:
         return np.asarray(np.einsum("nii->ni", self.matrix))
 
     def times(self, rows: Array) -> Array:
-        """Rows times the covariance: runs x rows x values."""
-        return np.asarray(rows @ self.matrix)
+        """Rows times the covariance: rows x runs x values."""
+        return np.asarray(np.moveaxis(rows @ self.matrix, 1, 0))
 
     def between(self, left: Array, right: Array) -> Array:
         """The covariance of row i of one matrix with row i of another: runs x rows."""
-        return np.asarray((self.times(left) * right).sum(axis=2))
+        return np.asarray((self.times(left) * right[:, None, :]).sum(axis=2).T)
 
 
 _Errors = _Independent | _Joint
@@ -204,33 +213,39 @@ def _check(matrices: ClosureMatrices, y: Array, errors: _Errors) -> None:
     variances = errors.variances
     if variances.shape != y.shape:
         raise MisuseError(f"the errors of {y.shape} values have the shape {variances.shape}")
-    if not (np.isfinite(y).all() and np.isfinite(errors.times(np.eye(width))).all()):
+    given = errors.matrix if isinstance(errors, _Joint) else variances
+    if not (np.isfinite(y).all() and np.isfinite(given).all()):
         raise MisuseError("values and errors must be finite numbers")
     if not ((variances == 0) == matrices.exact).all():
         raise MisuseError("an sd is zero exactly where the balances take the value as exact")
 
 
-def _gain(P: Array, RV: Array, e: Array) -> tuple[Array, Array]:
-    """P^-1 R V of each run, and h; P is scaled first so that units do not matter."""
-    if not P.shape[1]:
-        return np.zeros_like(RV), np.zeros(len(P))
-    scale = 1 / np.sqrt(np.einsum("nii->ni", P))
-    scaled = P * scale[:, :, None] * scale[:, None, :]
-    right = np.concatenate([RV * scale[:, :, None], (e * scale)[:, :, None]], axis=2)
-    try:
-        solved = np.linalg.solve(scaled, right)
-    except np.linalg.LinAlgError:
-        raise MisuseError("the covariance leaves a tested relation without any error") from None
-    h = np.maximum((e * scale * solved[:, :, -1]).sum(axis=1), 0.0)
-    return solved[:, :, :-1], h
+def _whiten(R: Array, e: Array, errors: _Errors) -> tuple[Array, Array]:
+    """R V and R y divided by the Cholesky factor of P = R V R', for all runs at once.
+
+    Z (dof x runs x values) and f (dof x runs): h is the sum of f^2, the correction that of
+    f Z, the reduction of the variances that of Z^2, so neither can come out negative.
+    """
+    Z = errors.times(R)
+    f = np.ascontiguousarray(e.T)
+    for i in range(len(R)):
+        for k in range(i):
+            # Z[k] R[i] is the entry i, k of the factor: P_ik less what earlier rows took
+            factor = Z[k] @ R[i]
+            Z[i] -= factor[:, None] * Z[k]
+            f[i] -= factor * f[k]
+        pivot = Z[i] @ R[i]
+        if not (pivot > _NO_ERROR * (errors.between(R[i : i + 1], R[i : i + 1])[:, 0])).all():
+            raise NoVarianceError("the errors leave a relation that they should test without any")
+        root = np.sqrt(pivot)
+        Z[i] /= root[:, None]
+        f[i] /= root
+    return Z, f
 
 
-def _sd_of_rows(rows: Array, R: Array, K: Array, errors: _Errors) -> Array:
+def _sd_of_rows(rows: Array, Z: Array, errors: _Errors) -> Array:
     """The sd of rows over the reconciled values: runs x rows."""
-    if not len(rows):
-        return np.zeros((len(K), 0))
-    shared = errors.times(rows) @ R.T  # runs x rows x dof
-    taken_off = (shared * np.swapaxes(K @ rows.T, 1, 2)).sum(axis=2)
+    taken_off = np.square(Z @ rows.T).sum(axis=0)
     return np.asarray(np.sqrt(np.maximum(errors.between(rows, rows) - taken_off, 0.0)))
 
 
@@ -238,7 +253,7 @@ def _balances(contents: Array, y: Array, errors: _Errors) -> dict[str, Array]:
     """What is taken up and released of each balance, the gap, the recovery, and their sds."""
     # a value is a magnitude in its direction, so the sign of its content tells the side
     up, out = np.minimum(contents, 0.0), np.maximum(contents, 0.0)
-    taken, released = -(y @ up.T), y @ out.T
+    taken, released = y @ np.abs(up).T, y @ out.T
     above, below = errors.between(out, out), errors.between(up, up)
     across = errors.between(out, up)
     with np.errstate(divide="ignore", invalid="ignore"):

@@ -1,0 +1,184 @@
+"""One run's closure made of the arrays of its batch."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from fractions import Fraction
+from math import isnan
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.chemistry.formula import degree_of_reduction
+from fluxnet.network.model import Direction, Species
+from fluxnet.rates.kinds import RateKind
+from fluxnet.rates.measured import Run
+from fluxnet.studies.closure_batch import ClosureArrays
+from fluxnet.studies.closure_plan import ClosurePlan
+from fluxnet.studies.closure_result import Balance, ClosedRate, ClosureTest, RunClosure
+from fluxnet.studies.closure_rows import ClosureRow, ClosureRows
+from fluxnet.studies.closure_words import verdict
+
+__all__ = ["make_closure"]
+
+Array = NDArray[np.float64]
+_SLACK = 1e-9
+
+
+def make_closure(
+    plan: ClosurePlan,
+    run: Run,
+    rows: ClosureRows,
+    values: Array,
+    sds: Array,
+    arrays: ClosureArrays,
+    place: int,
+) -> RunClosure:
+    """The closure of run ``place`` of a batch."""
+    contradictions = _contradictions(plan, values)
+    test = _test(arrays, place, contradicts=bool(contradictions))
+    balances = tuple(_balance(plan, arrays, place, k) for k in range(len(plan.balances)))
+    return RunClosure(
+        run=run.name,
+        unit=run.unit,
+        balances=balances,
+        or_index=_or_index(rows, values),
+        test=test,
+        world=plan.world,
+        rates=_rates(plan, values, sds, arrays, place),
+        reference=plan.reference,
+        words=verdict(balances, test, contradictions),
+        contradictions=contradictions,
+        left_out=rows.left_out,
+        notes=plan.notes,
+        residual=float(arrays.residual[place]),
+        extras=run.extras,
+    )
+
+
+def _test(arrays: ClosureArrays, place: int, *, contradicts: bool) -> ClosureTest:
+    if contradicts:
+        return ClosureTest(None, arrays.dof, None, None, False)
+    if not arrays.dof:
+        return ClosureTest(None, 0, None, None, None)
+    return ClosureTest(
+        float(arrays.h[place]), arrays.dof, float(arrays.p[place]), arrays.limit,
+        bool(arrays.closes[place]),
+    )  # fmt: skip
+
+
+def _balance(plan: ClosurePlan, arrays: ClosureArrays, place: int, k: int) -> Balance:
+    planned = plan.balances[k]
+    gap, sd = float(arrays.gap[place, k]), float(arrays.gap_sd[place, k])
+    return Balance(
+        name=planned.name,
+        unit=planned.unit,
+        taken=float(arrays.taken[place, k]),
+        released=float(arrays.released[place, k]),
+        gap=gap,
+        sd=sd,
+        z=gap / sd if sd > 0 and not planned.missing else None,
+        recovery=_per_cent(arrays.recovery[place, k]),
+        recovery_sd=_per_cent(arrays.recovery_sd[place, k]),
+        missing=planned.missing,
+    )
+
+
+def _per_cent(fraction: float) -> float | None:
+    return None if isnan(fraction) else 100 * float(fraction)
+
+
+def _rates(
+    plan: ClosurePlan, values: Array, sds: Array, arrays: ClosureArrays, place: int
+) -> tuple[ClosedRate, ...]:
+    """All rates with a row, in the order of the table."""
+    found: list[tuple[int, ClosedRate]] = []
+    for j, row in enumerate(plan.measured):
+        z = float(arrays.z[place, j])
+        tested = plan.redundancy.balanceable[j]
+        found.append((row.order, ClosedRate(
+            row.name, row.direction, row.unit, float(values[j]), float(sds[j]),
+            float(arrays.reconciled[place, j]), float(arrays.reconciled_sd[place, j]),
+            None if isnan(z) else z,
+            RateKind.BALANCEABLE if tested else RateKind.NOT_BALANCEABLE,
+        )))  # fmt: skip
+    for j, (row, weights) in enumerate(
+        zip(plan.unmeasured, plan.redundancy.weights, strict=True)
+    ):
+        fixed = weights is not None
+        found.append((row.order, ClosedRate(
+            row.name, row.direction, row.unit, None, None,
+            float(arrays.calculated[place, j]) if fixed else None,
+            float(arrays.calculated_sd[place, j]) if fixed else None,
+            None,
+            RateKind.CALCULABLE if fixed else RateKind.NOT_CALCULABLE,
+        )))  # fmt: skip
+    return tuple(rate for _, rate in sorted(found, key=lambda pair: pair[0]))
+
+
+def _contradictions(plan: ClosurePlan, values: Array) -> tuple[tuple[str, ...], ...]:
+    """The relations among exact values that these values break, by the rows in them.
+
+    The relations are exact, the values decimals that went through units: a broken one is off
+    by more than rounding of its terms.
+    """
+    broken: list[tuple[str, ...]] = []
+    for relation in plan.redundancy.contradictions:
+        terms = np.array([float(w) for w in relation]) * values
+        if abs(terms.sum()) > _SLACK * np.abs(terms).sum():
+            broken.append(tuple(
+                _shown(row) for row, w in zip(plan.measured, relation, strict=True) if w
+            ))  # fmt: skip
+    return tuple(broken)
+
+
+def _shown(row: ClosureRow) -> str:
+    return row.name if row.direction is None else f"{row.name} {row.direction.value}"
+
+
+def _or_index(rows: ClosureRows, values: Array) -> float | None:
+    """The sum of positive over that of negative oxidation values (4 C - gamma)/2 of products.
+
+    None where oxygen or another acceptor has a row, a product is not measured, an element has
+    no reference, or no product is more reduced than carbohydrate.
+    """
+    species = {s.name: s for s in rows.species}
+    above, below = 0.0, 0.0
+    for row in (*rows.measured, *rows.unmeasured):
+        if row.species is not None and _is_acceptor(species[row.species], row.direction):
+            return None
+    if any(row.direction is not Direction.IN for row in rows.unmeasured):
+        return None
+    counted: set[str] = set()
+    for row, value in zip(rows.measured, values, strict=True):
+        if row.direction is Direction.IN or row.species is None or row.species in counted:
+            continue
+        counted.add(row.species)
+        oxidation = _oxidation_value(species[row.species])
+        if oxidation is None:
+            return None
+        amount = float(row.released * oxidation) * float(value)
+        above, below = above + max(amount, 0.0), below - min(amount, 0.0)
+    return above / below if below else None
+
+
+def _oxidation_value(species: Species) -> Fraction | None:
+    gamma = None if species.formula is None else degree_of_reduction(species.formula)
+    if gamma is None or species.formula is None:
+        return None
+    return (4 * species.formula.count("C") - gamma) / 2
+
+
+def _is_acceptor(species: Species, direction: Direction | None) -> bool:
+    """Whether it is taken up to take electrons: without carbon, with oxygen, gamma 0 or less.
+
+    Oxygen, nitrate, nitrite, nitrous oxide, sulfate; not phosphate or water, which take none.
+    """
+    formula = species.formula
+    if direction is not Direction.IN or formula is None or formula.count("C"):
+        return False
+    if not formula.count("O") or formula.count("P"):
+        return False
+    others: Sequence[str] = [e for e in formula.elements if e not in ("H", "O")]
+    gamma = degree_of_reduction(formula)
+    return gamma is not None and (gamma < 0 or (bool(others) and gamma == 0))

@@ -1,0 +1,190 @@
+"""What one closure computes, for all runs with the same rows: balances, redundancy, names."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
+from fractions import Fraction
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.chemistry.formula import degree_of_reduction
+from fluxnet.network.contents import (
+    CHARGE,
+    ELECTRONS,
+    Content,
+    content_of_formula,
+    in_order_of_balances,
+    without_free,
+)
+from fluxnet.network.model import Network
+from fluxnet.studies.closure_batch import ClosureMatrices
+from fluxnet.studies.closure_result import World
+from fluxnet.studies.closure_rows import ClosureRow, ClosureRows, balance_unit
+from fluxnet.studies.closure_structure import Redundancy, find_redundancy
+from fluxnet.studies.closure_world import NitrogenSource, describe_world, free_formulas
+
+__all__ = ["ClosurePlan", "PlannedBalance", "plan_closure"]
+
+_NAMES = {"C": "carbon", "N": "nitrogen", "P": "phosphorus", "S": "sulfur"}
+_SEEN_NOT = ("H", "O", CHARGE)
+Amounts = Mapping[str, Fraction]
+
+
+@dataclass(frozen=True, slots=True)
+class PlannedBalance:
+    """A balance that is shown: its name, unit, and the unmeasured species that take part."""
+
+    name: str
+    unit: str
+    missing: tuple[str, ...]
+
+
+@dataclass(frozen=True, slots=True)
+class ClosurePlan:
+    """The exact structure of a closure and the matrices made of it.
+
+    Values are in the order of ``measured``, calculated ones in that of ``unmeasured``.
+    """
+
+    measured: tuple[ClosureRow, ...]
+    unmeasured: tuple[ClosureRow, ...]
+    balances: tuple[PlannedBalance, ...]
+    redundancy: Redundancy
+    matrices: ClosureMatrices
+    world: World
+    reference: str
+    notes: tuple[str, ...]
+
+
+def plan_closure(
+    rows: ClosureRows,
+    exact: Sequence[bool],
+    unit: str,
+    source: NitrogenSource,
+    network: Network | None = None,
+) -> ClosurePlan:
+    """Plan the closure of runs that have these rows.
+
+    Parameters
+    ----------
+    rows
+        The rows of a run; see :func:`fluxnet.studies.closure_rows.collect_rows`.
+    exact
+        For each measured row whether its value is exact.
+    unit
+        The unit of the run.
+    source
+        The nitrogen source: free where it has no row, and the reference of the electrons.
+    """
+    species = rows.species
+    free = free_formulas(species, source)
+    contents = [_content(s.formula and content_of_formula(s.formula)) for s in species]
+    free_contents = [_content(content_of_formula(f)) for f in free.values()]
+    unseen = sorted({e for c in contents for e in c.without_reference})
+    amounts = _amounts(contents + free_contents, counts_electrons=not unseen)
+    shift, reference = _reference(source, source.name in free)
+    functionals = without_free(amounts, free_contents)
+    names = [_NAMES.get(f.name, f.name) for f in functionals]
+    by_name = {s.name: c for s, c in zip(species, contents, strict=True)}
+    measured_rows: list[tuple[Fraction, ...]] = []
+    unmeasured_rows: list[tuple[Fraction, ...]] = []
+    for functional in functionals:
+        extra = shift if functional.name == ELECTRONS and "N" in amounts else Fraction(0)
+        value = {
+            name: functional.of(c) + extra * c.amounts.get("N", Fraction(0))
+            for name, c in by_name.items()
+        }
+        measured_rows.append(_over(rows.measured, value))
+        unmeasured_rows.append(_over(rows.unmeasured, value))
+    shown = _in_order_shown(names)
+    tied_measured = [tie.measured for tie in rows.ties]
+    tied_unmeasured = [tie.unmeasured for tie in rows.ties]
+    redundancy = find_redundancy(
+        [*measured_rows, *tied_measured], [*unmeasured_rows, *tied_unmeasured], exact
+    )
+    width = len(rows.measured)
+    matrices = ClosureMatrices(
+        redundancy=_floats(redundancy.rows, width, scaled=True),
+        calculated=_floats([w or (Fraction(0),) * width for w in redundancy.weights], width),
+        contents=_floats([measured_rows[i] for i in shown], width),
+        balanceable=np.array(redundancy.balanceable, dtype=np.bool_),
+        exact=np.array(exact, dtype=np.bool_),
+    )
+    balances = tuple(
+        PlannedBalance(
+            names[i],
+            balance_unit(unit, names[i]),
+            tuple(
+                row.name
+                for row, content in zip(rows.unmeasured, unmeasured_rows[i], strict=True)
+                if content
+            ),
+        )
+        for i in shown
+    )
+    notes = [
+        f"electrons are not balanced: {element} has no reference state" for element in unseen
+    ]
+    if source.name in free and source.formula.count("C"):
+        notes.append(
+            f"{source.name} brings carbon with its nitrogen: the carbon balance is made without it"
+        )
+    return ClosurePlan(
+        rows.measured, rows.unmeasured, balances, redundancy, matrices,
+        describe_world(species, free, network), reference, tuple(notes),
+    )  # fmt: skip
+
+
+def _content(content: Content | None) -> Content:
+    return content if content is not None else Content({}, {})
+
+
+def _amounts(contents: Sequence[Content], *, counts_electrons: bool) -> list[str]:
+    """The amounts that are balanced: water and protons are free, so H, O and charge are not."""
+    found = {a for content in contents for a in content.amounts if a not in _SEEN_NOT}
+    if not counts_electrons:
+        found.discard(ELECTRONS)
+    return in_order_of_balances(found)
+
+
+def _reference(source: NitrogenSource, free: bool) -> tuple[Fraction, str]:
+    """The electrons per nitrogen to add so that the source holds none, and its name.
+
+    A source that holds carbon is its own reference only where it is free (its carbon then
+    goes with its nitrogen); with a row electrons are counted against ammonia.
+    """
+    electrons = degree_of_reduction(source.formula)
+    if free:
+        return Fraction(0), source.name  # the balances are made without it
+    if source.formula.count("C") or electrons is None:
+        return Fraction(0), "ammonia"
+    return -electrons / source.formula.count("N"), source.name
+
+
+def _over(rows: Sequence[ClosureRow], value: Mapping[str, Fraction]) -> tuple[Fraction, ...]:
+    """The content that one unit of each row releases."""
+    return tuple(
+        row.released * value[row.species] if row.species is not None else Fraction(0)
+        for row in rows
+    )
+
+
+def _in_order_shown(names: Sequence[str]) -> list[int]:
+    """Carbon, nitrogen, electrons, then the others in their order."""
+    first = ("carbon", "nitrogen", ELECTRONS)
+    order = [names.index(n) for n in first if n in names]
+    return order + [i for i, n in enumerate(names) if n not in first]
+
+
+def _floats(
+    rows: Sequence[Sequence[Fraction]], width: int, *, scaled: bool = False
+) -> NDArray[np.float64]:
+    """Rows as floats; scaled to a largest entry of 1 where only their space matters."""
+    array = np.zeros((len(rows), width))
+    for i, row in enumerate(rows):
+        largest = max((abs(x) for x in row), default=Fraction(1)) if scaled else Fraction(1)
+        array[i] = [float(x / (largest or 1)) for x in row]
+    return array
+
