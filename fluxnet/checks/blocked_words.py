@@ -66,8 +66,8 @@ def _reason(network: Network, obstacle: Obstacle, plural: bool) -> str:
         way = "taken up" if species is not None and species.role is Role.SUBSTRATE else "released"
         return f"{name} can only be {way}"
     if obstacle.piles_up:
-        return f"nothing that can run uses the {name} that would be made"
-    return f"nothing that can run makes the {name} that {'they need' if plural else 'it needs'}"
+        return f"the {name} that would be made has nowhere to go"
+    return f"no {name} can be spared for {'them' if plural else 'it'}"
 
 
 def _mend(network: Network, obstacle: Obstacle) -> str:
