@@ -245,9 +245,15 @@ def solve(model: Model, rates: Rates | None = None, **options: Any) -> Answer[So
     """
     from fluxnet.presenting.solve_record import solve_record
     from fluxnet.presenting.solve_screen import solve_screen
+    from fluxnet.rates.aligning import align_table
     from fluxnet.studies.solve import solve_network
 
-    table = None if rates is None else rates.table
+    table = None
+    if rates is not None:
+        aligned = align_table(rates.table, model.network)
+        if aligned.table is None:
+            raise InputError(aligned.diagnostics)
+        table = aligned.table
     result = solve_network(model.network, table, **options)
     return Answer(result, Document.SOLVE, solve_screen(result), solve_record(result), "fluxes")
 

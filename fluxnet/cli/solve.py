@@ -9,6 +9,7 @@ from fluxnet.cli.options import add_model_argument, add_output_options, add_tabl
 from fluxnet.cli.output import give_faults, give_findings, give_screen
 from fluxnet.ground.diagnostic import in_order
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.names import Name
 from fluxnet.presenting.records import Document
 from fluxnet.presenting.solve_record import solve_record
 from fluxnet.presenting.solve_screen import solve_screen
@@ -48,6 +49,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 
 def run(arguments: argparse.Namespace) -> int:
     """Solve each run that was asked for, and show it."""
+    from fluxnet.rates.aligning import align_table
     from fluxnet.studies.solve import solve_network
 
     if arguments.model == "-" and arguments.rates == "-":
@@ -62,7 +64,13 @@ def run(arguments: argparse.Namespace) -> int:
         inputs, diagnostics = (*inputs, *rates.inputs), (*diagnostics, *rates.diagnostics)
         if rates.table is None:
             return give_faults(arguments, Document.SOLVE, inputs, diagnostics)
-        table = rates.table
+        # What the model does not exchange is a warning to closure, and an error here.
+        aligned = align_table(rates.table, model.network)
+        if aligned.table is None:
+            kept = (d for d in diagnostics if d.name is not Name.NOT_IN_MODEL)
+            told = (*kept, *aligned.diagnostics)
+            return give_faults(arguments, Document.SOLVE, inputs, told)
+        table = aligned.table
     solution = solve_network(
         model.network,
         table,
