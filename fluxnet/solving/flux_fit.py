@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import Quantity
+from fluxnet.rates.kinds import RateKind
 from fluxnet.solving.build import Built
 
 __all__ = [
@@ -38,15 +39,6 @@ class FluxKind(Enum):
 
     DETERMINED = "determined"
     UNDETERMINED = "undetermined"
-
-
-class RateKind(Enum):
-    """What the network's balances can do with a rate, measured or not."""
-
-    BALANCEABLE = "balanceable"
-    NOT_BALANCEABLE = "not_balanceable"
-    CALCULABLE = "calculable"
-    NOT_CALCULABLE = "not_calculable"
 
 
 class BoundKind(Enum):
