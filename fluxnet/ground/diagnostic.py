@@ -48,11 +48,15 @@ class Diagnostic:
 
 @dataclass(frozen=True, slots=True)
 class Acceptance:
-    """``accept NAME: REASON`` at the end of a line."""
+    """``accept NAME: REASON`` at the end of a line.
+
+    ``first_line`` is the line where its statement starts, where it goes over several.
+    """
 
     name: Name
     reason: str
     span: Span
+    first_line: int | None = None
 
 
 def has_errors(diagnostics: Iterable[Diagnostic]) -> bool:
@@ -75,18 +79,23 @@ def silence(
 
     Errors cannot be accepted away.
     """
-    waiting = {(a.span.file, a.span.line, a.name): a for a in acceptances}
-    used: set[tuple[str, int, Name]] = set()
+    listed = tuple(acceptances)
+    waiting = {
+        (a.span.file, line, a.name): a
+        for a in listed
+        for line in range(a.first_line or a.span.line, a.span.line + 1)
+    }
+    used: set[Acceptance] = set()
     marked: list[Diagnostic] = []
     for diagnostic in diagnostics:
         key = (diagnostic.span.file, diagnostic.span.line, diagnostic.name)
         if key in waiting and diagnostic.severity is not Severity.ERROR:
-            used.add(key)
+            used.add(waiting[key])
             marked.append(replace(diagnostic, accepted=waiting[key].reason))
         else:
             marked.append(diagnostic)
-    for key, acceptance in waiting.items():
-        if key not in used:
+    for acceptance in listed:
+        if acceptance not in used:
             marked.append(
                 Diagnostic(
                     Name.ACCEPT_UNUSED,

@@ -9,8 +9,9 @@ from fluxnet.ground.names import Name
 from fluxnet.reading import syntax as s
 from fluxnet.reading.findings import Findings
 from fluxnet.reading.lines import LogicalLine
+from fluxnet.reading.parsing import Unparsed
 
-__all__ = ["Placed", "place_statements"]
+__all__ = ["Placed", "Rejected", "place_statements"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -24,6 +25,14 @@ class Placed:
     statement: s.Statement
     compartment: s.Word | None = None
     variant: s.Word | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Rejected:
+    """A line that could not be read, and the compartment that it stands in."""
+
+    line: LogicalLine
+    compartment: str | None
 
 
 @dataclass(slots=True)
@@ -40,24 +49,27 @@ _ONLY_IN_VARIANT = (s.SettingLine, s.DropLine, s.AdditionLine)
 
 
 def place_statements(
-    lines: Iterable[tuple[LogicalLine, s.Statement | None]], findings: Findings
-) -> tuple[Placed, ...]:
-    """Put every readable statement into its block; None stands for a rejected line."""
+    lines: Iterable[tuple[LogicalLine, s.Statement | Unparsed]], findings: Findings
+) -> tuple[tuple[Placed, ...], tuple[Rejected, ...]]:
+    """Put every statement into its block, and say which lines were rejected."""
     listed = list(lines)
     base = min((line.indentation for line, _ in listed), default=0)
     blocks: list[_Block] = []
     placed: list[Placed] = []
+    rejected: list[Rejected] = []
     for line, statement in listed:
         while blocks and line.indentation <= blocks[-1].indentation:
             blocks.pop()
-        if statement is None:
+        if isinstance(statement, Unparsed):
             _settle(line, blocks)
+            compartment, _ = _names_of(blocks)
+            rejected.append(Rejected(line, compartment.text if compartment else None))
             blocks.append(_Block(line.indentation, None))
             continue
         placed.append(_place(line, statement, blocks, base, findings))
         if isinstance(statement.line, (s.CompartmentLine, s.VariantLine, s.AdditionLine)):
             blocks.append(_Block(line.indentation, statement.line))
-    return tuple(placed)
+    return tuple(placed), tuple(rejected)
 
 
 def _settle(line: LogicalLine, blocks: list[_Block]) -> bool:
@@ -77,14 +89,7 @@ def _place(
     findings: Findings,
 ) -> Placed:
     in_step = _settle(line, blocks)
-    compartment = variant = None
-    for block in blocks:
-        if isinstance(block.head, s.VariantLine):
-            variant = block.head.name
-        elif isinstance(block.head, s.CompartmentLine):
-            compartment = block.head.name
-        elif isinstance(block.head, s.AdditionLine):
-            compartment = block.head.compartment
+    compartment, variant = _names_of(blocks)
     if not any(block.head is None for block in blocks):
         if not in_step:
             _out_of_step(line, blocks[-1], findings)
@@ -93,13 +98,26 @@ def _place(
     return Placed(line, statement, compartment, variant)
 
 
+def _names_of(blocks: Iterable[_Block]) -> tuple[s.Word | None, s.Word | None]:
+    """The compartment and the variant of the innermost open block."""
+    compartment = variant = None
+    for block in blocks:
+        if isinstance(block.head, s.VariantLine):
+            variant = block.head.name
+        elif isinstance(block.head, s.CompartmentLine):
+            compartment = block.head.name
+        elif isinstance(block.head, s.AdditionLine):
+            compartment = block.head.compartment
+    return compartment, variant
+
+
 def _out_of_step(line: LogicalLine, block: _Block, findings: Findings) -> None:
     wanted = block.inner or 0
     findings.add(
         Name.BAD_INDENTATION,
         f"this line is indented by {line.indentation} columns, the block's first line by {wanted}",
         line, mend=f"indent it by {wanted}",
-    )  # fmt: skip
+    )
 
 
 def _check_block(
@@ -121,19 +139,19 @@ def _check_block(
             Name.BAD_INDENTATION,
             f"`{word}` stands inside {kind}, where it has no meaning",
             line, mend=f"begin the line with `{word}`, not indented",
-        )  # fmt: skip
+        )
     elif line.indentation > base:
         findings.add(
             Name.BAD_INDENTATION,
             "this line is indented, but the line above opens no block",
             line, mend="begin it as far left as the other statements",
-        )  # fmt: skip
+        )
     elif isinstance(said, _ONLY_IN_VARIANT):
         findings.add(
             Name.BAD_INDENTATION,
             f"`{word}` changes a variant, but it stands in none",
             line, mend="indent it under its `variant NAME` line",
-        )  # fmt: skip
+        )
 
 
 def _outside(
@@ -144,10 +162,10 @@ def _outside(
             Name.REACTION_OUTSIDE,
             f"reaction {said.name.text} stands in a variant, but in no compartment",
             line, said.name, mend="put it under `add to COMPARTMENT`, indented",
-        )  # fmt: skip
+        )
         return
     findings.add(
         Name.REACTION_OUTSIDE,
         f"reaction {said.name.text} stands in no compartment",
         line, said.name, mend="put it under a `compartment NAME` line and indent it",
-    )  # fmt: skip
+    )

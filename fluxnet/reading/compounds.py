@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+from fractions import Fraction
+
 from fluxnet.chemistry.catalogue import Compound, load_catalogue
-from fluxnet.chemistry.formula import EMPTY, Formula, degree_of_reduction
+from fluxnet.chemistry.formula import Formula, degree_of_reduction
 from fluxnet.chemistry.reader import FormulaError, FormulaFault, read_formula
 from fluxnet.ground.names import Name
 from fluxnet.network.model import Cargo, CargoKind, Role
@@ -31,7 +33,7 @@ def formula_of(
                 line, entry.name,
                 mend="write its formula behind the name"
                 + (f", or one of these names: {', '.join(near)}" if near else ""),
-            )  # fmt: skip
+            )
         return None, None
     if compound is not None and _is_second_name(entry, compound, line, scope):
         return compound.formula, compound.name
@@ -43,7 +45,7 @@ def formula_of(
             Name.BIOMASS_WITHOUT_CARBON,
             f"the formula of {entry.name.text} holds no carbon", line, entry.formula,
             mend="write one C-mol of biomass, for example CH1.8O0.5N0.2",
-        )  # fmt: skip
+        )
     if compound is None:
         return formula, None
     if not _agree(formula, compound.formula):
@@ -55,7 +57,7 @@ def formula_of(
             because="the two differ by more than water and protons",
             mend=f"leave the formula out ({compound.formula.written} is then taken), or give "
             "the species another name",
-        )  # fmt: skip
+        )
     return formula, compound.name
 
 
@@ -78,8 +80,8 @@ def _is_second_name(entry: s.Entry, compound: Compound, line: LogicalLine, scope
         "missing between two names",
         line, s.Word("", entry.name.start, entry.formula.end),
         mend=f"write `{entry.name.text}, {entry.formula.text}`", certain=[(gap, ",")],
-    )  # fmt: skip
-    scope.lost = scope.lost | {entry.formula.text}
+    )
+    scope.lost.add(entry.formula.text)
     return True
 
 
@@ -112,39 +114,33 @@ def _read(word: s.Word, line: LogicalLine, scope: Scope) -> Formula | None:
             line, s.Word("", word.start + error.position, word.start + error.end),
             mend="check upper and lower case: Co is cobalt, CO carbon and oxygen"
             if unknown else "write elements with counts, for example C6H12O6",
-        )  # fmt: skip
+        )
         return None
 
 
 def cargo_of(
-    entry: s.Entry, line: LogicalLine, scope: Scope
+    entry: s.Entry, line: LogicalLine, scope: Scope, *, phosphate: bool = False
 ) -> tuple[Cargo | None, str | None]:
-    """What a carrier carries, and the catalogue entry it matches."""
+    """What a carrier carries, and the catalogue entry it matches.
+
+    Where the model balances phosphate the catalogue's energy carriers carry HPO3.
+    """
     compound = _compound(entry.name.text)
     if compound is not None and not compound.kind.is_carrier:
         compound = None
     matched = compound.name if compound else None
     said = entry.cargo
     if said is None:
-        if compound is None:
-            scope.findings.add(
-                Name.BAD_CARGO, f"it is not said what {entry.name.text} carries", line,
-                entry.name,
-                mend="write `carries energy`, `carries 2 electrons` or `carries` and a formula",
-            )  # fmt: skip
-            return None, None
-        if not compound.formula.counts:
-            return Cargo(CargoKind.ENERGY), matched
-        return _group(compound.formula, known=True), matched
+        return _cargo_of_catalogue(entry, compound, line, scope, phosphate), matched
     if said.electrons is not None:
-        if said.electrons.value <= 0:
-            scope.findings.add(
-                Name.BAD_CARGO, f"{entry.name.text} carries no electrons", line, said,
-                mend="write `carries energy` if it carries none",
-            )  # fmt: skip
-            return None, None
-        return Cargo(CargoKind.ELECTRONS, said.electrons.value), matched
+        return _electrons(entry, said, said.electrons, compound, line, scope), matched
     if said.formula is None:
+        if phosphate and compound is not None and not compound.formula.counts:
+            scope.findings.add(
+                Name.BAD_CARGO,
+                f"the model balances phosphate, so {entry.name.text} carries HPO3", line, said,
+                mend="write `carries HPO3`", certain=[(said, "HPO3")],
+            )
         return Cargo(CargoKind.ENERGY), matched
     formula = _read(said.formula, line, scope)
     if formula is None:
@@ -152,7 +148,40 @@ def cargo_of(
     return _group(formula, known="charge" in said.formula.text or formula.charge != 0), matched
 
 
+def _cargo_of_catalogue(
+    entry: s.Entry, compound: Compound | None, line: LogicalLine, scope: Scope, phosphate: bool
+) -> Cargo | None:
+    if compound is None:
+        scope.findings.add(
+            Name.BAD_CARGO, f"it is not said what {entry.name.text} carries", line, entry.name,
+            mend="write `carries energy`, `carries 2 electrons` or `carries` and a formula",
+        )
+        return None
+    if compound.formula.counts:
+        return _group(compound.formula, known=True)
+    return _group(read_formula("HPO3"), known=False) if phosphate else Cargo(CargoKind.ENERGY)
+
+
+def _electrons(
+    entry: s.Entry, said: s.CargoText, number: s.NumberText, compound: Compound | None,
+    line: LogicalLine, scope: Scope,
+) -> Cargo | None:
+    if number.value <= 0:
+        scope.findings.add(
+            Name.BAD_CARGO, f"{entry.name.text} carries no electrons", line, said,
+            mend="write `carries energy` if it carries none",
+        )
+        return None
+    known = degree_of_reduction(compound.formula) if compound is not None else None
+    if compound is not None and known and known != number.value:
+        scope.findings.add(
+            Name.FORMULA_DIFFERS,
+            f"{compound.name} carries {known} electrons in the catalogue, not {number.text}",
+            line, said, mend=f"write `carries {known} electrons`, or give the carrier another name",
+        )
+    return Cargo(CargoKind.ELECTRONS, number.value)
+
+
 def _group(formula: Formula, *, known: bool) -> Cargo:
     electrons = degree_of_reduction(formula)
-    return Cargo(CargoKind.GROUP, electrons if electrons is not None else EMPTY.charge,
-                 formula, known)  # fmt: skip
+    return Cargo(CargoKind.GROUP, electrons or Fraction(0), formula, known)

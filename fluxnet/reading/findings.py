@@ -56,6 +56,12 @@ class Findings:
             Diagnostic(name, message, span, because, mend, None, tuple(also), None, edits)
         )
 
+    def add_at(
+        self, name: Name, message: str, span: Span, *, mend: str | None = None
+    ) -> None:
+        """Note a fault at a place that is known already."""
+        self.found.append(Diagnostic(name, message, span, None, mend))
+
 
 def nearest_names(name: str, candidates: Iterable[str], most: int = 3) -> tuple[str, ...]:
     """The candidates that are spelt nearly so, the nearest first.

@@ -21,7 +21,7 @@ TAB = 4
 _CLOSED_QUOTE = re.compile(r'"[^"]*"')
 _MINUS = dict.fromkeys(map(ord, "\u2010\u2011\u2012\u2013\u2212"), "-")
 _ALIKE = {**_MINUS, ord("\u201c"): '"', ord("\u201d"): '"', ord("\u201e"): '"',
-          ord("\u200b"): "", ord("\ufeff"): "", ord("\u2060"): ""}  # fmt: skip
+          ord("\u200b"): "", ord("\ufeff"): "", ord("\u2060"): ""}
 _FREE_TEXT = re.compile(r"\s*model\b(?!\s*:)|.*\baccept\s+[\w-]+\s*:")
 _GOES_ON = re.compile(r"(?:(?:^|\s)\+|,|->|→|⇌|[-=<>]+>)$")
 _STARTS = re.compile(

@@ -2,21 +2,18 @@
 
 from __future__ import annotations
 
+from collections.abc import Iterable
 from dataclasses import dataclass, replace
 from pathlib import Path
 
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order
-from fluxnet.ground.names import Name
 from fluxnet.ground.source import Source
-from fluxnet.network.balance import check_balances
 from fluxnet.network.model import Network
-from fluxnet.network.unknown import solve_unknowns
-from fluxnet.reading.blocks import place_statements
+from fluxnet.reading.balancing import balance_reading
 from fluxnet.reading.findings import Findings
-from fluxnet.reading.lines import logical_lines
-from fluxnet.reading.parsing import parse_statement
+from fluxnet.reading.loading import Place, load_statements
 from fluxnet.reading.resolve import resolve_network
-from fluxnet.reading.scope import Scope
+from fluxnet.reading.scope import Scope, words_of
 from fluxnet.reading.source import read_source, source_of_text
 
 __all__ = ["ModelReading", "read_model", "read_model_text"]
@@ -24,7 +21,11 @@ __all__ = ["ModelReading", "read_model", "read_model_text"]
 
 @dataclass(frozen=True, slots=True)
 class ModelReading:
-    """What became of a text: the network (None where errors forbid it), and all findings."""
+    """What became of a text: the network (None where errors forbid it), and all findings.
+
+    Findings come errors first. ``sources`` are the texts that were read, the model's own
+    first.
+    """
 
     network: Network | None
     diagnostics: tuple[Diagnostic, ...]
@@ -34,41 +35,72 @@ class ModelReading:
 def read_model(
     path: str | Path, *, large: bool = False, allow_use: tuple[Path, ...] = ()
 ) -> ModelReading:
-    """Read a ``*.flux`` file."""
+    """Read a ``*.flux`` file.
+
+    Parameters
+    ----------
+    path
+        The model; files that it uses lie in its folder or below.
+    large
+        Whether more than 20,000 lines are meant.
+    allow_use
+        Files and folders outside the model's folder that ``use`` may read.
+
+    Returns
+    -------
+    ModelReading
+        The network with its ``?`` solved and its lines balanced, and everything found. Faults
+        of the input are returned, never raised.
+    """
     path = Path(path)
     source, told = read_source(path, large=large)
     if source is None:
         return ModelReading(None, told)
-    return _read(source, told)
+    return _read(source, told, path, Place(path.parent, tuple(allow_use), large))
 
 
 def read_model_text(
-    text: str, *, file: str = "model.flux", folder: Path | None = None, large: bool = False
+    text: str, *, file: str = "model.flux", folder: Path | None = None, large: bool = False,
+    allow_use: tuple[Path, ...] = (),
 ) -> ModelReading:
-    """Read a model given as text; ``folder`` is where its ``use`` lines look."""
+    r"""Read a model given as text; ``folder`` is where its ``use`` lines look.
+
+    Examples
+    --------
+    >>> reading = read_model_text(
+    ...     "substrate glucose\nproduct ethanol, CO2\n"
+    ...     "compartment catabolism\n    ferment : glucose -> 2 ethanol + 2 CO2\n")
+    >>> reading.diagnostics, reading.network.reactions[0].name
+    ((), 'ferment')
+    """
     source, told = source_of_text(text, file, large=large)
     if source is None:
         return ModelReading(None, told)
-    return _read(source, told)
+    return _read(source, told, None, Place(folder, tuple(allow_use), large))
 
 
-def _read(source: Source, told: tuple[Diagnostic, ...]) -> ModelReading:
+def _read(
+    source: Source, told: tuple[Diagnostic, ...], path: Path | None, place: Place
+) -> ModelReading:
     findings = Findings(list(told))
-    parsed = []
-    for line in logical_lines(source):
-        statement = parse_statement(line.text)
-        if statement is None:
-            findings.add(Name.UNREADABLE_LINE, "this line is no statement of the language", line)
-        parsed.append((line, statement))
-    placed = place_statements(parsed, findings)
-    network = resolve_network(placed, Scope(findings))
-    if not has_errors(findings.found):
-        network, unsolved = solve_unknowns(network)
-        findings.found.extend((*unsolved, *check_balances(network)))
-    diagnostics = in_order(
-        replace(d, source_line=source.line(d.span.line)) if d.span.line else d
-        for d in findings.found
-    )
+    loaded = load_statements(source, path, place, findings)
+    scope = Scope(findings, lost=words_of(r.line.text for r in loaded.rejected))
+    network = resolve_network(loaded, scope)
+    network = balance_reading(network, scope)
+    diagnostics = in_order(_with_lines(findings.found, loaded.sources))
     return ModelReading(
-        None if has_errors(diagnostics) else network, diagnostics, (source,)
+        None if has_errors(diagnostics) else network, diagnostics, tuple(loaded.sources)
     )
+
+
+def _with_lines(
+    found: Iterable[Diagnostic], sources: Iterable[Source]
+) -> Iterable[Diagnostic]:
+    """The findings, each with the user's own line."""
+    by_file = {source.file: source for source in sources}
+    for one in found:
+        source = by_file.get(one.span.file)
+        if source is None or not one.span.line or one.source_line is not None:
+            yield one
+        else:
+            yield replace(one, source_line=source.line(one.span.line))

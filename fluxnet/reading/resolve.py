@@ -3,114 +3,112 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import dataclass, field
 
-from fluxnet.ground.diagnostic import Acceptance
 from fluxnet.ground.names import Name
-from fluxnet.network.model import (
-    Basis,
-    Compartment,
-    Limit,
-    Network,
-    Parameter,
-    Reaction,
-    Species,
-)  # fmt: skip
+from fluxnet.ground.source import Span
+from fluxnet.network.model import Limit, Network, Parameter, Reaction, Species
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
-from fluxnet.reading.declare import claim, declare_parameter, declare_species
-from fluxnet.reading.findings import nearest_names
+from fluxnet.reading.declare import declare_parameter, declare_species
+from fluxnet.reading.heads import resolve_acceptances, resolve_compartments, resolve_head
+from fluxnet.reading.limit_pairs import compare_limits
 from fluxnet.reading.limits import resolve_limit
+from fluxnet.reading.loading import Loaded
 from fluxnet.reading.reactions import resolve_reaction
-from fluxnet.reading.scope import Kind, Scope
+from fluxnet.reading.scope import Kind, Scope, claim
+from fluxnet.reading.unknown_names import report_unknown, resolve_free
 from fluxnet.reading.variants import resolve_variants
 
 __all__ = ["resolve_network"]
 
 
-def resolve_network(placed: Sequence[Placed], scope: Scope) -> Network:
-    """The network that the statements describe; the scope's findings tell what is wrong."""
-    base = [p for p in placed if p.variant is None]
-    species: list[Species] = []
-    parameters: list[Parameter] = []
-    compartments: dict[str, Compartment] = {}
-    title, basis = "", Basis.SPECIFIC
-    free: list[str] = []
-    phosphate = False
+@dataclass(slots=True)
+class _Parts:
+    """What the statements of the unchanged model add up to."""
+
+    species: list[Species] = field(default_factory=list)
+    parameters: list[Parameter] = field(default_factory=list)
+    reactions: list[Reaction] = field(default_factory=list)
+    limits: list[Limit] = field(default_factory=list)
+
+
+def resolve_network(loaded: Loaded, scope: Scope) -> Network:
+    """The network that the statements describe; the scope's findings tell what is wrong.
+
+    Reactions with a fault are left out of it.
+    """
+    base = [p for p in loaded.placed if p.variant is None]
+    head = resolve_head(loaded, scope.findings)
+    balance_lines = [p for p in base if isinstance(p.statement.line, s.BalanceLine)]
+    phosphate = bool(balance_lines)
+    parts = _Parts()
     for one in base:
         said = one.statement.line
         if isinstance(said, s.SpeciesLine):
-            species.extend(declare_species(one, said, scope))
+            parts.species.extend(declare_species(one, said, scope, phosphate=phosphate))
         elif isinstance(said, s.ParameterLine):
             parameter = declare_parameter(one, said, scope)
             if parameter is not None:
-                parameters.append(parameter)
-        elif isinstance(said, s.CompartmentLine):
-            name = said.name
-            span = one.line.span(name.start, name.end)
-            compartments.setdefault(name.text, Compartment(name.text, span))
-        elif isinstance(said, s.TitleLine):
-            title = said.words.text if said.words else ""
-        elif isinstance(said, s.BasisLine):
-            basis = Basis(said.unit.text)
-        elif isinstance(said, s.FreeLine):
-            free.extend(name.text for name in said.names)
-        elif isinstance(said, s.BalanceLine):
-            phosphate = True
-    reactions = _reactions(base, scope)
-    limits: list[Limit] = []
+                parts.parameters.append(parameter)
+    compartments = resolve_compartments(loaded, scope)
+    _resolve_reactions(base, scope, parts)
     for one in base:
         if isinstance(one.statement.line, s.LimitLine):
             limit = resolve_limit(one.line, one.statement.line, scope)
             if limit is not None:
-                limits.append(limit)
-    variants = resolve_variants(placed, scope)
-    _report_unknown(scope)
+                parts.limits.append(limit)
+    scope.findings.found.extend(compare_limits(parts.limits))
+    free = resolve_free(base, scope)
+    variants = resolve_variants(loaded.placed, scope, phosphate=phosphate)
+    report_unknown(scope)
+    _unused_parameters(parts.parameters, scope)
+    _nothing_there(loaded, base, scope)
     return Network(
-        title, basis, tuple(species), tuple(parameters), tuple(compartments.values()),
-        reactions, tuple(limits), variants, tuple(free), _acceptances(placed, scope),
-        balance_phosphate=phosphate,
-    )  # fmt: skip
+        head.title, head.basis, tuple(parts.species), tuple(parts.parameters),
+        tuple(compartments), tuple(parts.reactions), tuple(parts.limits), variants, free,
+        resolve_acceptances(loaded.placed, scope.findings), balance_phosphate=phosphate,
+    )
 
 
-def _reactions(base: Sequence[Placed], scope: Scope) -> tuple[Reaction, ...]:
-    found: list[Reaction] = []
+def _resolve_reactions(base: Sequence[Placed], scope: Scope, parts: _Parts) -> None:
     for one in base:
         said = one.statement.line
-        if isinstance(said, s.ReactionLine) and claim(scope, Kind.REACTION, one.line, said.name):
-            reaction = resolve_reaction(one, said, scope)
+        if not isinstance(said, s.ReactionLine):
+            continue
+        if not claim(scope, Kind.REACTION, one.line, said.name):
+            continue
+        reaction = resolve_reaction(one, said, scope)
+        if reaction is None:
+            scope.lost.add(said.name.text)
+        else:
             scope.reactions[reaction.name] = reaction
-            found.append(reaction)
-    return tuple(found)
+            parts.reactions.append(reaction)
 
 
-def _report_unknown(scope: Scope) -> None:
-    for name, mentions in scope.unknown.items():
-        first = mentions[0]
-        more = f" (and {len(mentions) - 1} more)" if len(mentions) > 1 else ""
-        near = nearest_names(name, scope.species)
-        scope.findings.add(
-            Name.UNKNOWN_SPECIES, f"no species is called {name}{more}", first.line, first.word,
-            mend=f"a similar name is declared: {', '.join(near)}" if near
-            else f"declare it, for example: inside {name}",
-        )  # fmt: skip
+def _unused_parameters(parameters: Sequence[Parameter], scope: Scope) -> None:
+    for parameter in parameters:
+        if parameter.name in scope.used_parameters or parameter.name in scope.lost:
+            continue
+        scope.findings.add_at(
+            Name.UNUSED_PARAMETER, f"no coefficient uses the parameter {parameter.name}",
+            parameter.span, mend="use it, or take it away",
+        )
 
 
-def _acceptances(placed: Sequence[Placed], scope: Scope) -> tuple[Acceptance, ...]:
-    found: list[Acceptance] = []
-    names = {n.value: n for n in Name}
-    for one in placed:
-        for said in one.statement.acceptances:
-            if said.name.text in names:
-                found.append(
-                    Acceptance(
-                        names[said.name.text], said.reason.text,
-                        one.line.span(said.name.start, said.name.end),
-                    )
-                )  # fmt: skip
-                continue
-            near = nearest_names(said.name.text, names)
-            scope.findings.add(
-                Name.ACCEPT_UNKNOWN, f"no diagnostic is called {said.name.text}", one.line,
-                said.name, mend=f"write {near[0]}" if near else None,
-            )  # fmt: skip
-    return tuple(found)
+def _nothing_there(loaded: Loaded, base: Sequence[Placed], scope: Scope) -> None:
+    """A model without a statement, or without a reaction."""
+    file = loaded.sources[0].file
+    if not loaded.placed and not loaded.rejected:
+        if not scope.findings.found:
+            scope.findings.add_at(
+                Name.EMPTY_FILE, f"{file} holds no statement", Span(file, 0),
+                mend="start from `fluxnet new NAME`",
+            )
+        return
+    has_reaction = any(isinstance(p.statement.line, s.ReactionLine) for p in base)
+    if not has_reaction and not loaded.rejected:
+        scope.findings.add_at(
+            Name.NO_REACTION, "the model has no reaction", Span(file, 0),
+            mend="add a compartment with reactions",
+        )

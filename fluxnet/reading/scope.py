@@ -2,16 +2,22 @@
 
 from __future__ import annotations
 
+import re
+from collections.abc import Iterable
 from dataclasses import dataclass, field
 from enum import Enum
 
+from fluxnet.ground.names import Name
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Parameter, Reaction, Species
-from fluxnet.reading.findings import Findings, Stretch
+from fluxnet.reading.fault_record import NAME
+from fluxnet.reading.findings import Findings
 from fluxnet.reading.lines import LogicalLine
 from fluxnet.reading.syntax import Word
 
-__all__ = ["Kind", "Mention", "Scope"]
+__all__ = ["Kind", "Mention", "Scope", "claim", "place_words", "words_of"]
+
+RESERVED = {"nothing": "the empty side of a reaction", "mu": "the specific growth rate"}
 
 
 class Kind(Enum):
@@ -24,11 +30,10 @@ class Kind(Enum):
 
 @dataclass(frozen=True, slots=True)
 class Mention:
-    """A name that was used but is not declared, for one report at its first use."""
+    """A use of a species that is not declared."""
 
     line: LogicalLine
     word: Word
-    stretch: Stretch
 
 
 @dataclass(slots=True)
@@ -36,7 +41,9 @@ class Scope:
     """The names that a statement sees.
 
     ``lost`` are words of rejected lines: they may have been declared there, so that no second
-    error is made of them. A variant's scope starts as a copy of its parents'.
+    error is made of them. ``broken`` are species whose declaration has a fault, ``tainted``
+    reactions (with their variant, None in the unchanged model) that have one; both are left
+    out of the balances. ``variants`` are the scopes of the variants.
     """
 
     findings: Findings
@@ -45,20 +52,66 @@ class Scope:
     reactions: dict[str, Reaction] = field(default_factory=dict)
     places: dict[str, tuple[Kind, Span]] = field(default_factory=dict)
     folded: dict[str, str] = field(default_factory=dict)
-    lost: frozenset[str] = frozenset()
+    variant: str | None = None
+    lost: set[str] = field(default_factory=set)
     unknown: dict[str, list[Mention]] = field(default_factory=dict)
     used_parameters: set[str] = field(default_factory=set)
+    broken: set[str] = field(default_factory=set)
+    tainted: set[tuple[str | None, str]] = field(default_factory=set)
+    variants: dict[str, Scope] = field(default_factory=dict)
 
-    def inner(self) -> Scope:
-        """A scope inside this one: it sees all, and adds names of its own."""
+    def inner(self, variant: str) -> Scope:
+        """The scope of a variant: it sees all names of this one, and adds its own."""
         return Scope(
             self.findings, dict(self.species), dict(self.parameters), dict(self.reactions),
-            dict(self.places), dict(self.folded), self.lost, self.unknown,
-            self.used_parameters,
-        )  # fmt: skip
+            dict(self.places), dict(self.folded), variant, self.lost, self.unknown,
+            self.used_parameters, self.broken, self.tainted, self.variants,
+        )
 
-    def mention(self, line: LogicalLine, word: Word, stretch: Stretch | None = None) -> None:
+    def mention(self, line: LogicalLine, word: Word) -> None:
         """Note the use of a species that is not declared."""
         if word.text not in self.lost:
-            mentions = self.unknown.setdefault(word.text, [])
-            mentions.append(Mention(line, word, stretch or word))
+            self.unknown.setdefault(word.text, []).append(Mention(line, word))
+
+
+_NAMES = re.compile(NAME)
+
+
+def words_of(texts: Iterable[str]) -> set[str]:
+    """All words of some lines."""
+    return {match[0] for text in texts for match in _NAMES.finditer(text)}
+
+
+def claim(scope: Scope, kind: Kind, line: LogicalLine, word: Word) -> bool:
+    """Whether a name is free to be declared; else say why not."""
+    name = word.text
+    if name in RESERVED:
+        scope.findings.add(
+            Name.RESERVED_NAME, f"`{name}` cannot be a name: it is {RESERVED[name]}",
+            line, word, mend="choose another name",
+        )
+        return False
+    if name in scope.places:
+        before, where = scope.places[name]
+        what = "is declared twice" if before is kind else f"is the name of a {before.value} already"
+        scope.findings.add(
+            Name.DECLARED_TWICE, f"{name} {what} (first in {place_words(where, line)})", line, word,
+            mend="take one of the two away, or rename it", also=[where],
+        )
+        return False
+    twin = scope.folded.get(name.casefold())
+    if twin is not None:
+        where = scope.places[twin][1]
+        scope.findings.add(
+            Name.CASE_DIFFERS,
+            f"{name} differs only in case from {twin} ({place_words(where, line)})",
+            line, word, mend=f"rename one of the two, or write {twin}", also=[where],
+        )
+    scope.places[name] = (kind, line.span(word.start, word.end))
+    scope.folded.setdefault(name.casefold(), name)
+    return True
+
+
+def place_words(where: Span, line: LogicalLine) -> str:
+    """``line 3``, with the file where it is another one."""
+    return f"line {where.line}" if where.file == line.file else f"{where.file}, line {where.line}"

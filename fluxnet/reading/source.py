@@ -26,11 +26,11 @@ def read_source(
     try:
         if path.is_dir():
             return None, (Diagnostic(Name.NOT_A_FILE, f"{name} is a folder", span,
-                                     mend="name the file inside it"),)  # fmt: skip
+                                     mend="name the file inside it"),)
         data = path.read_bytes()
     except (FileNotFoundError, NotADirectoryError):
         return None, (Diagnostic(Name.FILE_MISSING, f"there is no file {name}", span,
-                                 mend=_beside(path)),)  # fmt: skip
+                                 mend=_beside(path)),)
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         return None, (Diagnostic(Name.FILE_MISSING, f"{name} cannot be opened: {reason}", span),)
@@ -57,7 +57,7 @@ def _decoded(
         text = data.decode("utf-16", errors="replace")
     elif b"\x00" in data[:65536] or data.startswith((b"PK\x03\x04", b"%PDF")):
         return None, (Diagnostic(Name.BINARY_FILE, f"{name} is not a text file", span,
-                                 mend="save it as plain text (UTF-8)"),)  # fmt: skip
+                                 mend="save it as plain text (UTF-8)"),)
     else:
         try:
             text = data.decode("utf-8-sig")
@@ -88,8 +88,8 @@ def source_of_text(
                 "expected",
                 span, mend="if it is meant, repeat the command with --large",
             ),
-        )  # fmt: skip
+        )
     if "\x00" in text:
         return None, (Diagnostic(Name.BINARY_FILE, f"{name} is not a text file", span,
-                                 mend="save it as plain text (UTF-8)"),)  # fmt: skip
+                                 mend="save it as plain text (UTF-8)"),)
     return Source(name, tuple(lines)), ()

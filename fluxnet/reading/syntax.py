@@ -14,7 +14,7 @@ __all__ = [
     "LimitLine", "NameNode", "NumberNode", "NumberText", "OperationNode", "ParameterLine",
     "QuantityText", "ReactionLine", "SettingLine", "SingleText", "SpeciesLine", "Statement",
     "SumNode", "TermText", "TitleLine", "UnknownText", "UseLine", "VariantLine", "Word",
-]  # fmt: skip
+]
 
 
 class Word(NamedTuple):
@@ -297,7 +297,7 @@ Line = (
     TitleLine | BasisLine | SpeciesLine | ParameterLine | SettingLine | CompartmentLine
     | ReactionLine | LimitLine | VariantLine | AdditionLine | DropLine | UseLine | FreeLine
     | BalanceLine
-)  # fmt: skip
+)
 
 
 @dataclass(frozen=True, slots=True)

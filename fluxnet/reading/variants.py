@@ -2,18 +2,19 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-from dataclasses import dataclass, field
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field, replace
 
 from fluxnet.ground.names import Name
 from fluxnet.network.model import Drop, Limit, Parameter, Reaction, Species, Variant
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
-from fluxnet.reading.declare import claim, declare_species, read_assignment
-from fluxnet.reading.findings import nearest_names
+from fluxnet.reading.declare import declare_species, read_assignment
+from fluxnet.reading.findings import nearest_names, only_case_differs
+from fluxnet.reading.limit_pairs import compare_limits
 from fluxnet.reading.limits import resolve_limit, resolve_quantity
 from fluxnet.reading.reactions import resolve_reaction
-from fluxnet.reading.scope import Kind, Scope
+from fluxnet.reading.scope import Kind, Scope, claim, place_words
 
 __all__ = ["resolve_variants"]
 
@@ -26,71 +27,227 @@ class _Block:
     said: s.VariantLine
     inner: list[Placed] = field(default_factory=list)
 
+    @property
+    def name(self) -> str:
+        return self.said.name.text
 
-def resolve_variants(placed: Sequence[Placed], scope: Scope) -> tuple[Variant, ...]:
+    @property
+    def dropped(self) -> set[str]:
+        """The names that its `drop` lines take away."""
+        lines = [p.statement.line for p in self.inner]
+        return {
+            item.text for line in lines if isinstance(line, s.DropLine)
+            for item in line.items if isinstance(item, s.Word)
+        }
+
+
+def resolve_variants(
+    placed: Sequence[Placed], scope: Scope, *, phosphate: bool
+) -> tuple[Variant, ...]:
     """All variants of a model, in the order of the file."""
+    blocks = _blocks(placed, scope)
+    _check_parents(blocks, scope)
+    found: dict[str, Variant] = {}
+    for name in _parents_first(blocks):
+        block = blocks[name]
+        inner = scope.inner(name)
+        inherited: set[str] = set()
+        for parent in block.said.parents:
+            _inherit(inner, scope.variants.get(parent.text), inherited)
+        _let_go(inner, block.dropped | inherited)
+        scope.variants[name] = inner
+        found[name] = _resolve(block, inner, phosphate)
+    return tuple(found[name] for name in blocks)
+
+
+def _blocks(placed: Sequence[Placed], scope: Scope) -> dict[str, _Block]:
     blocks: dict[str, _Block] = {}
     for one in placed:
         said = one.statement.line
         if isinstance(said, s.VariantLine):
-            blocks.setdefault(said.name.text, _Block(one, said))
+            name = said.name.text
+            if name == "base":
+                scope.findings.add(
+                    Name.RESERVED_NAME, "`base` cannot be a variant: it is the unchanged model",
+                    one.line, said.name, mend="choose another name",
+                )
+            elif name in blocks:
+                first = blocks[name]
+                where = first.head.line.span(first.said.name.start, first.said.name.end)
+                scope.findings.add(
+                    Name.DECLARED_TWICE,
+                    f"variant {name} is declared twice (first in {place_words(where, one.line)})",
+                    one.line, said.name, mend="rename one of the two, or make one of them",
+                    also=[where],
+                )
+            else:
+                blocks[name] = _Block(one, said)
         elif one.variant is not None and one.variant.text in blocks:
             blocks[one.variant.text].inner.append(one)
-    return tuple(_resolve(block, scope.inner()) for block in blocks.values())
+    return blocks
 
 
-def _resolve(block: _Block, scope: Scope) -> Variant:
+def _check_parents(blocks: Mapping[str, _Block], scope: Scope) -> None:
+    for block in blocks.values():
+        for parent in block.said.parents:
+            if parent.text in blocks or parent.text in scope.lost or parent.text == "base":
+                continue
+            near = nearest_names(parent.text, blocks)
+            twin = only_case_differs(parent.text, blocks)
+            scope.findings.add(
+                Name.UNKNOWN_VARIANT,
+                f"variant {block.name} builds on {parent.text}, which does not exist",
+                block.head.line, parent,
+                mend=f"write {' or '.join(near)}" if near else None,
+                certain=[(parent, twin)] if twin else [],
+            )
+    told: set[str] = set()
+    for name in blocks:
+        circle = _circle(name, blocks)
+        if circle and not told.intersection(circle):
+            told.update(circle)
+            block = blocks[name]
+            parent = next(p for p in block.said.parents if p.text == circle[1])
+            scope.findings.add(
+                Name.VARIANT_CIRCLE,
+                f"variants build on one another in a circle: {' from '.join(circle)}",
+                block.head.line, parent, mend=f"take `from {parent.text}` away",
+            )
+
+
+def _circle(name: str, blocks: Mapping[str, _Block]) -> list[str]:
+    """The shortest way from a variant back to itself, or an empty list."""
+    ways, seen = [[name]], {name}
+    for way in ways:
+        for parent in blocks[way[-1]].said.parents:
+            if parent.text == name:
+                return [*way, name]
+            if parent.text in blocks and parent.text not in seen:
+                seen.add(parent.text)
+                ways.append([*way, parent.text])
+    return []
+
+
+def _parents_first(blocks: Mapping[str, _Block]) -> list[str]:
+    order: dict[str, None] = {}
+    waiting = list(blocks)[::-1]
+    opened: set[str] = set()
+    while waiting:
+        name = waiting.pop()
+        parents = [p.text for p in blocks[name].said.parents if p.text in blocks]
+        missing = [p for p in parents if p not in order and p not in opened]
+        if name in opened or not missing:
+            order.setdefault(name)
+            continue
+        opened.add(name)
+        waiting.append(name)
+        waiting.extend(reversed(missing))
+    return list(order)
+
+
+def _inherit(scope: Scope, parent: Scope | None, inherited: set[str]) -> None:
+    """Let a variant see what its parent adds; it may declare the same names anew."""
+    if parent is None:
+        return
+    inherited.update(n for n in parent.places if n not in scope.places)
+    for name, place in parent.places.items():
+        scope.places.setdefault(name, place)
+    for folded, name in parent.folded.items():
+        scope.folded.setdefault(folded, name)
+    scope.species.update(parent.species)
+    scope.reactions.update(parent.reactions)
+    scope.parameters.update(parent.parameters)
+
+
+def _let_go(scope: Scope, names: set[str]) -> None:
+    """Names that may be declared anew: those dropped, and those of the parents."""
+    for name in names:
+        scope.places.pop(name, None)
+        if scope.folded.get(name.casefold()) == name:
+            del scope.folded[name.casefold()]
+
+
+def _resolve(block: _Block, scope: Scope, phosphate: bool) -> Variant:
     species: list[Species] = []
     settings: list[Parameter] = []
     limits: list[Limit] = []
     drops: list[Drop] = []
-    reactions: list[Reaction] = []
-    for one in block.inner:
-        said = one.statement.line
-        if isinstance(said, s.SpeciesLine):
-            species.extend(declare_species(one, said, scope))
-    for one in block.inner:
-        said = one.statement.line
-        if isinstance(said, s.ReactionLine) and claim(
-            scope, Kind.REACTION, one.line, said.name
-        ):
-            reaction = resolve_reaction(one, said, scope)
-            scope.reactions[reaction.name] = reaction
-            reactions.append(reaction)
-    for one in block.inner:
-        said = one.statement.line
-        if isinstance(said, s.SettingLine):
-            setting = _setting(one, said, scope)
-            if setting is not None:
-                settings.append(setting)
-        elif isinstance(said, s.LimitLine):
-            limit = resolve_limit(one.line, said, scope)
-            if limit is not None:
-                limits.append(limit)
-        elif isinstance(said, s.DropLine):
-            drops.extend(_drops(one, said, scope))
+    said = [(one, one.statement.line) for one in block.inner]
+    for one, line in said:
+        if isinstance(line, s.SpeciesLine):
+            species.extend(declare_species(one, line, scope, phosphate=phosphate))
+        elif isinstance(line, s.SettingLine):
+            settings.extend(_setting(one, line, settings, scope))
+    dropped_from = dict(scope.reactions)
+    reactions = _reactions(block, scope)
+    for one, line in said:
+        if isinstance(line, s.LimitLine):
+            limit = resolve_limit(one.line, line, scope)
+            limits.extend([limit] if limit is not None else [])
+        elif isinstance(line, s.DropLine):
+            drops.extend(_drops(one, line, scope, dropped_from))
+    scope.findings.found.extend(compare_limits(limits))
     head = block.said
     return Variant(
         head.name.text, head.words.text if head.words else "",
-        tuple(p.text for p in head.parents), tuple(species), tuple(settings), tuple(reactions),
+        tuple(p.text for p in head.parents), tuple(species), tuple(settings), reactions,
         tuple(limits), tuple(drops), block.head.line.span(head.name.start, head.name.end),
-    )  # fmt: skip
+    )
 
 
-def _setting(placed: Placed, said: s.SettingLine, scope: Scope) -> Parameter | None:
-    name = said.assignment.name.text
-    if name not in scope.parameters and name not in scope.lost:
-        near = nearest_names(name, scope.parameters)
+def _reactions(block: _Block, scope: Scope) -> tuple[Reaction, ...]:
+    found: list[Reaction] = []
+    for one in block.inner:
+        said = one.statement.line
+        if isinstance(said, s.ReactionLine) and claim(scope, Kind.REACTION, one.line, said.name):
+            reaction = resolve_reaction(one, said, scope)
+            if reaction is None:
+                scope.lost.add(said.name.text)
+                continue
+            scope.reactions[reaction.name] = reaction
+            found.append(reaction)
+    return tuple(found)
+
+
+def _setting(
+    placed: Placed, said: s.SettingLine, before: Sequence[Parameter], scope: Scope
+) -> list[Parameter]:
+    """The parameter that a `set` line changes, in a list; empty where there is none (told)."""
+    word = said.assignment.name
+    if word.text in scope.lost:
+        return []
+    if word.text not in scope.parameters:
+        near = nearest_names(word.text, scope.parameters)
+        twin = only_case_differs(word.text, scope.parameters)
         scope.findings.add(
-            Name.VARIANT_TARGET, f"`set` names {name}, but no parameter is called so",
-            placed.line, said.assignment.name,
+            Name.VARIANT_TARGET, f"`set` names {word.text}, but no parameter is called so",
+            placed.line, word,
             mend=f"a similar name is declared: {', '.join(near)}" if near else None,
-        )  # fmt: skip
-        return None
-    return read_assignment(placed.line, said.assignment, scope.findings)
+            certain=[(word, twin)] if twin else [],
+        )
+        return []
+    twice = next((p for p in before if p.name == word.text), None)
+    if twice is not None:
+        scope.findings.add(
+            Name.DECLARED_TWICE,
+            f"{word.text} is set twice (first in {place_words(twice.span, placed.line)})",
+            placed.line, word, mend="keep one of the two", also=[twice.span],
+        )
+        return []
+    setting = read_assignment(placed.line, said.assignment, scope.findings, scope.parameters)
+    scope.parameters[word.text] = _merged(scope.parameters[word.text], setting)
+    return [setting]
 
 
-def _drops(placed: Placed, said: s.DropLine, scope: Scope) -> list[Drop]:
+def _merged(old: Parameter, new: Parameter) -> Parameter:
+    sd = old.sd if new.sd is None else new.sd or None
+    low, high = (old.low, old.high) if new.low is None else (new.low, new.high)
+    return replace(old, value=new.value, sd=sd, low=low, high=high)
+
+
+def _drops(
+    placed: Placed, said: s.DropLine, scope: Scope, reactions: Mapping[str, Reaction]
+) -> list[Drop]:
     found: list[Drop] = []
     for item in said.items:
         span = placed.line.span(item.start, item.end)
@@ -98,13 +255,16 @@ def _drops(placed: Placed, said: s.DropLine, scope: Scope) -> list[Drop]:
             quantity = resolve_quantity(placed.line, item, scope)
             if quantity is not None:
                 found.append(Drop("", quantity, span))
-        elif item.text in scope.reactions or item.text in scope.species:
+        elif item.text in reactions or item.text in scope.species:
             found.append(Drop(item.text, None, span))
         elif item.text not in scope.lost:
-            near = nearest_names(item.text, [*scope.reactions, *scope.species])
+            candidates = [*reactions, *scope.species]
+            near = nearest_names(item.text, candidates)
+            twin = only_case_differs(item.text, candidates)
             scope.findings.add(
                 Name.VARIANT_TARGET, f"`drop` names {item.text}, which the model does not have",
                 placed.line, item,
                 mend=f"a similar name is there: {', '.join(near)}" if near else None,
-            )  # fmt: skip
+                certain=[(item, twin)] if twin else [],
+            )
     return found

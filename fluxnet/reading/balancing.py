@@ -1,0 +1,67 @@
+"""A reading's last step: ``?`` solved and lines balanced, by the network's own functions."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+from fluxnet.ground.diagnostic import Diagnostic, has_errors
+from fluxnet.ground.names import Severity
+from fluxnet.network.balance import check_balances
+from fluxnet.network.coefficients import check_coefficients
+from fluxnet.network.model import Network
+from fluxnet.network.unknown import solve_unknowns
+from fluxnet.network.variant import check_variants
+from fluxnet.reading.scope import Scope
+
+__all__ = ["balance_reading"]
+
+
+def balance_reading(network: Network, scope: Scope) -> Network:
+    """The network with its ``?`` solved; what is wrong goes to the scope's findings.
+
+    Where lines have faults of their own the others are looked at all the same, the lines that
+    variants add among them; only then are variants not applied, and no notes made.
+    """
+    findings = scope.findings.found
+    if has_errors(findings):
+        told = _checked(network, scope)
+        findings.extend(d for d in told if d.severity is not Severity.NOTE)
+        for variant in network.variants:
+            _balance_added(variant.name, network, scope)
+        return network
+    settled, unsolved = solve_unknowns(network)
+    findings.extend((*unsolved, *check_coefficients(settled), *check_balances(settled)))
+    if not has_errors(findings):
+        findings.extend(check_variants(settled))
+    return settled
+
+
+def _checked(network: Network, scope: Scope) -> list[Diagnostic]:
+    """Findings on the reactions whose species all have a sound declaration."""
+    declared = set(scope.species) - scope.broken
+    sound = tuple(
+        r for r in network.reactions if all(t.species in declared for _, t in r.terms)
+    )
+    alone, unsolved = solve_unknowns(replace(network, reactions=sound))
+    return [*unsolved, *check_coefficients(alone), *check_balances(alone)]
+
+
+def _balance_added(name: str, network: Network, scope: Scope) -> None:
+    """Balance the reactions that a variant adds, by themselves."""
+    inner = scope.variants[name]
+    variant = next(v for v in network.variants if v.name == name)
+    added = tuple(
+        r for r in variant.reactions
+        if all(t.species in inner.species and t.species not in scope.broken for _, t in r.terms)
+    )
+    if not added:
+        return
+    alone, more = solve_unknowns(
+        replace(
+            network, species=tuple(inner.species.values()),
+            parameters=tuple(inner.parameters.values()), reactions=added, limits=(),
+            variants=(),
+        )
+    )
+    told = (*more, *check_balances(alone))
+    scope.findings.found.extend(d for d in told if d.severity is Severity.ERROR)

@@ -1,0 +1,169 @@
+"""All statements of a model, those of the files that it uses among them."""
+
+from __future__ import annotations
+
+import re
+from collections.abc import Iterable
+from dataclasses import dataclass, field
+from pathlib import Path
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Name
+from fluxnet.ground.source import Source, Span
+from fluxnet.reading import syntax as s
+from fluxnet.reading.blocks import Placed, Rejected, place_statements
+from fluxnet.reading.fault_record import Known
+from fluxnet.reading.faults import explain_line
+from fluxnet.reading.findings import Findings, nearest_names
+from fluxnet.reading.lines import LogicalLine, logical_lines
+from fluxnet.reading.parsing import Unparsed, parse_statement
+from fluxnet.reading.source import read_source
+
+__all__ = ["Loaded", "Place", "load_statements"]
+
+
+@dataclass(frozen=True, slots=True)
+class Place:
+    """Where ``use`` looks and may look.
+
+    ``folder`` is the folder of the model named by the user (None where it came as a text
+    without one); files outside it must lie in or be one of ``allowed``.
+    """
+
+    folder: Path | None
+    allowed: tuple[Path, ...] = ()
+    large: bool = False
+
+
+@dataclass(slots=True)
+class Loaded:
+    """Statements in order, the texts they come from, and the lines that were refused."""
+
+    placed: list[Placed] = field(default_factory=list)
+    sources: list[Source] = field(default_factory=list)
+    rejected: list[Rejected] = field(default_factory=list)
+    files: set[Path] = field(default_factory=set)
+
+
+def load_statements(source: Source, path: Path | None, place: Place, findings: Findings) -> Loaded:
+    """The statements of a text and of all files that it uses, each file once."""
+    loaded = Loaded()
+    chain: tuple[Path, ...] = ()
+    if path is not None:
+        chain = (path.resolve(),)
+        loaded.files.update(chain)
+    folder = path.parent if path is not None else place.folder
+    _load(source, folder, chain, place, findings, loaded)
+    return loaded
+
+
+def _load(
+    source: Source, folder: Path | None, chain: tuple[Path, ...], place: Place,
+    findings: Findings, loaded: Loaded,
+) -> None:
+    loaded.sources.append(source)
+    parsed = [(line, parse_statement(line.text)) for line in logical_lines(source)]
+    known = _known(said for _, said in parsed)
+    for line, said in parsed:
+        if isinstance(said, Unparsed):
+            explain_line(line, said, known, findings)
+    placed, rejected = place_statements(parsed, findings)
+    loaded.rejected.extend(rejected)
+    for one in placed:
+        use = one.statement.line
+        if isinstance(use, s.UseLine):
+            _use(one.line, use, folder, chain, place, findings, loaded)
+        else:
+            loaded.placed.append(one)
+
+
+def _known(said: Iterable[s.Statement | Unparsed]) -> Known:
+    species: set[str] = set()
+    parameters: set[str] = set()
+    for statement in said:
+        if isinstance(statement, Unparsed):
+            continue
+        if isinstance(statement.line, s.SpeciesLine):
+            species.update(entry.name.text for entry in statement.line.entries)
+        elif isinstance(statement.line, s.ParameterLine):
+            parameters.add(statement.line.assignment.name.text)
+    return Known(frozenset(species), frozenset(parameters))
+
+
+def _use(
+    line: LogicalLine, said: s.UseLine, folder: Path | None, chain: tuple[Path, ...],
+    place: Place, findings: Findings, loaded: Loaded,
+) -> None:
+    written = said.path.text.strip()
+    if folder is None:
+        findings.add(
+            Name.USE_MISSING, f"{written} cannot be found: the model is a text without a folder",
+            line, said.path, mend="save the model in a file, beside the file that it uses",
+        )
+        return
+    path = _found(line, said, written, folder, place, findings)
+    if path is None or path in loaded.files:
+        if path is not None and path in chain:
+            files = " uses ".join(p.name for p in (*chain[chain.index(path) :], path))
+            findings.add(
+                Name.USE_CIRCLE, f"files use one another in a circle: {files}", line, said.path,
+                mend="take one of these `use` lines away",
+            )
+        return
+    loaded.files.add(path)
+    shown = str(Path(line.file).parent / written)
+    source, told = read_source(path, shown=shown, large=place.large)
+    for one in told:
+        _pass_on(one, line, said, findings)
+    if source is not None:
+        _load(source, path.parent, (*chain, path), place, findings, loaded)
+
+
+def _found(
+    line: LogicalLine, said: s.UseLine, written: str, folder: Path, place: Place,
+    findings: Findings,
+) -> Path | None:
+    """The file that a ``use`` names, where it may be read."""
+    try:
+        path = (folder / written).resolve()
+        absolute = Path(written).is_absolute() or bool(re.match(r"[A-Za-z]:[\\/]", written))
+        root = (place.folder or folder).resolve()
+        allowed = any(path.is_relative_to(p.resolve()) for p in place.allowed)
+        inside = not absolute and path.is_relative_to(root)
+        exists = path.exists()
+    except (OSError, ValueError, RuntimeError):
+        path, allowed, inside, exists = folder, True, True, False
+    if not written or (not exists and (inside or allowed)):
+        near = _names_beside(path, written)
+        findings.add(
+            Name.USE_MISSING, f"there is no file {written or 'without a name'}", line, said.path,
+            because="the path is relative to the folder of the file that uses it",
+            mend=f"a file with a similar name is there: {', '.join(near)}" if near else None,
+        )
+        return None
+    if not (inside or allowed):
+        what = "is an absolute path" if absolute else "leaves the model's folder"
+        findings.add(
+            Name.USE_OUTSIDE, f"{written} {what}", line, said.path,
+            mend="copy the file beside the model, or allow it with --allow-use",
+        )
+        return None
+    return path
+
+
+def _names_beside(path: Path, written: str) -> tuple[str, ...]:
+    try:
+        return nearest_names(Path(written).name, (p.name for p in path.parent.iterdir()))
+    except (OSError, ValueError):
+        return ()
+
+
+def _pass_on(
+    told: Diagnostic, line: LogicalLine, said: s.UseLine, findings: Findings
+) -> None:
+    """A finding about a used file as a whole, told at the line that uses it."""
+    if told.span.line:
+        findings.found.append(told)
+        return
+    also: tuple[Span, ...] = (told.span,)
+    findings.add(told.name, told.message, line, said.path, mend=told.mend, also=also)

@@ -1,0 +1,134 @@
+"""Species that are used but not declared: each told once, at its first use."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from fluxnet.chemistry.catalogue import load_catalogue
+from fluxnet.ground.names import Name
+from fluxnet.reading import syntax as s
+from fluxnet.reading.blocks import Placed
+from fluxnet.reading.findings import nearest_names, only_case_differs
+from fluxnet.reading.lines import LogicalLine
+from fluxnet.reading.scope import Mention, Scope
+
+__all__ = ["report_unknown", "resolve_free"]
+
+_MOST_SEARCHED = 40
+
+
+def report_unknown(scope: Scope) -> None:
+    """Tell every species that is used but not declared."""
+    files = list(dict.fromkeys(s.span.file for s in scope.species.values()))
+
+    def place(mention: Mention) -> tuple[int, int, int]:
+        span = mention.line.span(mention.word.start, mention.word.end)
+        at = files.index(span.file) if span.file in files else len(files)
+        return at, span.line, span.column
+
+    listed = [(name, sorted(mentions, key=place)) for name, mentions in scope.unknown.items()]
+    for searched, (name, mentions) in enumerate(sorted(listed, key=lambda m: place(m[1][0]))):
+        _report(name, mentions, scope, search=searched < _MOST_SEARCHED)
+
+
+def _report(name: str, mentions: list[Mention], scope: Scope, *, search: bool) -> None:
+    first = mentions[0]
+    more = f" (and {len(mentions) - 1} more)" if len(mentions) > 1 else ""
+    twin = only_case_differs(name, scope.species)
+    if twin is not None:
+        scope.findings.add(
+            Name.CASE_DIFFERS, f"{twin} is written {name} here{more}: case counts",
+            first.line, first.word, mend=f"write {twin}", also=[scope.species[twin].span],
+            certain=[],
+        )
+        _certain(scope, mentions, twin)
+        return
+    if name in scope.parameters or name in scope.reactions:
+        what = "parameter" if name in scope.parameters else "reaction"
+        scope.findings.add(
+            Name.UNKNOWN_SPECIES, f"{name} is a {what}, not a species{more}", first.line,
+            first.word, mend="write the species behind the parameter: PO ATP"
+            if what == "parameter" else None,
+        )
+        return
+    synonym = _synonym(name, scope)
+    near = nearest_names(name, scope.species) if search else ()
+    if synonym is not None:
+        mend = f"{name} is another name of {synonym}: write {synonym}"
+    elif near:
+        mend = f"a similar name is declared: {', '.join(near)}"
+    else:
+        mend = _advice(name, first, scope)
+    scope.findings.add(
+        Name.UNKNOWN_SPECIES, f"no species is called {name}{more}", first.line, first.word,
+        mend=mend,
+    )
+
+
+def _certain(scope: Scope, mentions: list[Mention], twin: str) -> None:
+    """Attach the replacement of every use to the finding made last."""
+    from dataclasses import replace
+
+    from fluxnet.ground.diagnostic import Edit
+
+    edits = tuple(Edit(m.line.span(m.word.start, m.word.end), twin) for m in mentions)
+    scope.findings.found[-1] = replace(scope.findings.found[-1], edits=edits)
+
+
+def _synonym(name: str, scope: Scope) -> str | None:
+    """The declared species that the catalogue knows by this name as well."""
+    compound = load_catalogue().find(name)
+    if compound is None:
+        return None
+    return next((s.name for s in scope.species.values() if s.entry == compound.name), None)
+
+
+def _advice(name: str, first: Mention, scope: Scope) -> str:
+    for variant, inner in scope.variants.items():
+        if name in inner.species:
+            return f"it is declared only in variant {variant}: declare it above the compartments"
+    before, behind = _neighbours(first)
+    if before == "+" and name.endswith("+") and name[:-1] in scope.species:
+        return f"put a blank before the +: {name[:-1]} +"
+    if name.endswith("+") and name[:-1] in scope.species and behind == "":
+        return f"put a blank before the +: {name[:-1]} +"
+    return f"declare it, for example: inside {name}"
+
+
+def _neighbours(mention: Mention) -> tuple[str, str]:
+    line: LogicalLine = mention.line
+    before = line.text[: mention.word.start].rstrip()[-1:]
+    behind = line.text[mention.word.end :].lstrip()[:1]
+    return before, behind
+
+
+def resolve_free(base: Sequence[Placed], scope: Scope) -> tuple[str, ...]:
+    """The species that ``free`` names; ``balance`` is checked beside them."""
+    free: list[str] = []
+    for one in base:
+        said = one.statement.line
+        if isinstance(said, s.FreeLine):
+            for word in said.names:
+                if word.text in scope.species or load_catalogue().find(word.text) is not None:
+                    free.append(word.text)
+                else:
+                    scope.mention(one.line, word)
+        elif isinstance(said, s.BalanceLine):
+            for word in said.names:
+                _check_balance(one, word, scope)
+    return tuple(dict.fromkeys(free))
+
+
+def _check_balance(one: Placed, word: s.Word, scope: Scope) -> None:
+    if word.text != "phosphate":
+        scope.findings.add(
+            Name.UNREADABLE_LINE,
+            f"only phosphate can be asked to balance; {word.text} is balanced anyway, or free "
+            "because the model says so",
+            one.line, word, mend="write `balance phosphate`, or take the line away",
+        )
+    elif not any(s.entry == "phosphate" for s in scope.species.values()):
+        scope.findings.add(
+            Name.UNKNOWN_SPECIES, "the model balances phosphate, but does not declare it",
+            one.line, word, mend="declare it, for example: exchange phosphate",
+        )
