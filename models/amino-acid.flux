@@ -2,14 +2,14 @@
 # Sources      General biochemistry, from memory.
 # Units        Rates in mmol per gram of dry weight and hour (ash included), mu in 1/h. One mole of X
 #              is one C-mol.
-# Assumptions  NADH and NADPH are two carriers that nothing exchanges (variants open a way). Isocitrate
-#              dehydrogenase makes NADPH, and the first dehydrogenase of respiration takes NADPH as
-#              well as NADH, without pumping protons: one P/O ratio serves all. The last steps of lysine go by the dehydrogenase; the
-#              succinylase is a variant. Carbon for oxaloacetate is fixed on pyruvate. Glucose enters
-#              by the phosphotransferase system, which pays with PEP.
-#              Ru5P stands for all pentose phosphates. mesoDAP is diaminopimelate, THDP its cyclic
-#              precursor, ASA aspartate semialdehyde; lysine-in and succinate-in are lysine and
-#              succinate inside the cell. The export of lysine costs nothing.
+# Assumptions  NADH and NADPH are two carriers that nothing exchanges (variants open a way).
+#              Isocitrate dehydrogenase makes NADPH. The first dehydrogenase of respiration takes
+#              NADH and NADPH and pumps no protons: one P/O ratio serves all. The last steps of
+#              lysine go by the dehydrogenase; the succinylase is a variant. Carbon for oxaloacetate
+#              is fixed on pyruvate. Glucose enters by the phosphotransferase system, which pays
+#              with PEP. Ru5P stands for all pentose phosphates. mesoDAP is diaminopimelate, THDP its
+#              cyclic precursor, ASA aspartate semialdehyde; lysine-in and succinate-in are lysine
+#              and succinate inside the cell. The export of lysine costs nothing.
 # Fitted       Nothing. The NADPH need of growth, 0.4 mol per C-mol (about 16 mmol/g), the PO and the
 #              K_X are usual values, from memory; PO and K_X have wide errors.
 

@@ -65,5 +65,5 @@ variant aerated "an NADH oxidase that saves no energy: oxygen as the electron si
         nox : 2 NADH + oxygen -> nothing
 
 variant no-sinks "neither alcohols nor polyols"
-    drop   adh, mtd, eryt, gpd
-    drop   ethanol, mannitol, erythritol, glycerol
+    drop   adh, mtd, eryt, gpd, fpk
+    drop   ethanol, mannitol, erythritol, glycerol, tetrose-P

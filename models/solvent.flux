@@ -1,12 +1,14 @@
-# Organism     A solvent-forming anaerobe (as Clostridium acetobutylicum); with the variant acids a
-#              butyrate former that makes no solvents.
+# Organism     A solvent-forming anaerobe (as Clostridium acetobutylicum); with the variant
+#              no-solvents a butyrate former.
 # Sources      General biochemistry, from memory.
 # Units        Rates in mmol per gram of dry weight and hour (ash included), mu in 1/h. One mole of X
 #              is one C-mol.
-# Assumptions  Fd is a pair of reduced ferredoxins: two electrons. Ferredoxin and NADH exchange
-#              electrons freely both ways; the bifurcating reduction of crotonyl-CoA is written with
-#              its net effect, one NADH, and no energy is saved at the membrane. Acids go either
-#              way: solvent formers take acetate and butyrate up again. Glucose enters by the
+# Assumptions  Fd is a pair of reduced ferredoxins: two electrons. They pass to NADH, but not back:
+#              NADH gives hydrogen only together with Fd, and crotonyl-CoA takes two NADH of which
+#              one comes out as Fd. No energy is saved at the membrane. The acids are released, and
+#              acetone takes its acetate from those made at the same time; with the variant
+#              acids-fed they are taken up from the medium too. Lactate is oxidised with the help of
+#              Fd, since NAD alone would not take its electrons. Glucose enters by the
 #              phosphotransferase system, which pays with PEP. NADPH counts as NADH.
 # Fitted       Nothing. K_X is rounded down from the classical mean of 10.5 g of cells per mol ATP,
 #              2.55 mol per C-mol, which counts upkeep as well; its error is wide.
@@ -35,17 +37,18 @@ compartment sugar
     pyk      : PEP -> pyruvate + ATP
     pfor     : pyruvate -> acetyl-CoA + CO2 + Fd
     pfl      : pyruvate -> acetyl-CoA + formate
-    ldh      : pyruvate + NADH <-> lactate
+    ldh      : pyruvate + NADH -> lactate
 
 compartment electrons
     hyd      : Fd -> hydrogen
-    fnr      : Fd <-> NADH
+    hyn      : Fd + NADH -> 2 hydrogen
+    fnr      : Fd -> NADH
 
 compartment acids
     ack      : acetyl-CoA <-> acetate + ATP
     thl      : 2 acetyl-CoA -> acetoacetyl-CoA
     hbd      : acetoacetyl-CoA + NADH -> crotonyl-CoA
-    bcd      : crotonyl-CoA + NADH -> butyryl-CoA
+    bcd      : crotonyl-CoA + 2 NADH -> butyryl-CoA + Fd
     buk      : butyryl-CoA <-> butyrate + ATP
 
 compartment solvents
@@ -62,18 +65,21 @@ compartment maintenance
     upkeep   : ATP -> nothing
 
 limit  upkeep = 2 ± 1
+limit  acetate in <= 0
+limit  butyrate in <= 0
+limit  lactate in <= 0
 
-variant acids "no solvents, no lactate released"
+variant acids-fed "acids are taken up as well as released"
+    drop   limit acetate in
+    drop   limit butyrate in
+    drop   limit lactate in
+    add to electrons
+        lox  : lactate + Fd -> pyruvate + 2 NADH
+
+variant no-solvents "a butyrate former"
     limit  butanol <= 0
     limit  acetone <= 0
     limit  ethanol <= 0
-    limit  lactate out <= 0
 
-variant no-hydrogen "hydrogenase lost or blocked by carbon monoxide"
+variant no-hydrogen "hydrogenase lost, or blocked by carbon monoxide"
     limit  hydrogen <= 0
-
-variant glucose-only "no acids taken up: for asking what glucose alone can give"
-    limit  acetate in <= 0
-    limit  butyrate in <= 0
-    limit  lactate in <= 0
-    limit  CO2 in <= 0

@@ -1,0 +1,52 @@
+"""Entries 10.3 and 10.4: the most ATP per glucose. Sources stand in most-atp.flux."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import pytest
+
+MODEL = Path(__file__).parent / "most-atp.flux"
+
+
+@pytest.mark.parametrize(
+    ("variant", "atp"),
+    [("base", 38), ("usual", 32), ("low", 16)],  # 38 and 32 from memory (99 %), 16 computed
+)
+def test_most_atp_with_oxygen(ask, variant, atp):
+    run = ask(MODEL, variant=variant, maximise="ATP")
+    assert run.optimum == pytest.approx(atp, abs=1e-9)
+    assert run.rate("oxygen") == pytest.approx(6, abs=1e-9)
+
+
+@pytest.mark.parametrize(
+    ("oxygen", "atp"), [(0, 4), (1, 10), (2, 16), (3, 21.5), (4, 27), (5, 32.5), (6, 38)]
+)
+def test_most_atp_when_oxygen_is_scarce(ask, oxygen, atp):
+    # computed; at 3 and 2 ATP per oxygen atom
+    run = ask(MODEL, {"glucose in": 1, "oxygen in": oxygen}, maximise="ATP")
+    assert run.optimum == pytest.approx(atp, abs=1e-8)
+
+
+@pytest.mark.parametrize(
+    ("variant", "atp"),
+    [
+        ("lactate-only", 2),
+        ("ethanol-only", 2),
+        ("butyrate-only", 3),
+        ("no-oxygen", 4),  # two acetate and four hydrogen
+        ("no-oxygen * no-hydrogen", 3),
+    ],
+)
+def test_most_atp_without_oxygen(ask, variant, atp):
+    run = ask(MODEL, variant=variant, maximise="ATP")
+    assert run.optimum == pytest.approx(atp, abs=1e-9)
+
+
+def test_most_hydrogen_is_four_beside_two_acetate(ask):
+    # "4 mol H2/mol glucose" was read in Bielen et al. 2013, Life 3:52, abstract
+    run = ask(MODEL, variant="no-oxygen", maximise="hydrogen")
+    assert run.optimum == pytest.approx(4, abs=1e-9)
+    run = ask(MODEL, variant="no-oxygen", maximise="ATP")
+    assert run.rate("hydrogen") == pytest.approx(4, abs=1e-9)
+    assert run.rate("acetate") == pytest.approx(2, abs=1e-9)
