@@ -7,7 +7,6 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from enum import IntEnum
 from importlib import import_module
-from types import ModuleType
 
 import fluxnet
 
@@ -72,24 +71,25 @@ def run(arguments: Sequence[str] | None = None) -> int:
         return Exit.SOUND
     if words[0] not in _MODULES:
         return _unknown(words[0])
-    return _guarded(import_module(f"fluxnet.cli.{_MODULES[words[0]]}"), words[0], words[1:])
+    return _guarded(words[0], words[1:])
 
 
-def _guarded(module: ModuleType, name: str, words: list[str]) -> int:
+def _guarded(name: str, words: list[str]) -> int:
     """Run a command's module; what goes wrong becomes an exit status with one sentence."""
     import argparse
 
     from fluxnet.cli.faults import report_fault
     from fluxnet.ground.errors import MisuseError
 
-    parser = argparse.ArgumentParser(
-        prog=f"fluxnet {name}",
-        description=module.EXAMPLES,
-        formatter_class=argparse.RawDescriptionHelpFormatter,
-        allow_abbrev=False,
-    )
-    module.add_arguments(parser)
     try:
+        module = import_module(f"fluxnet.cli.{_MODULES[name]}")
+        parser = argparse.ArgumentParser(
+            prog=f"fluxnet {name}",
+            description=module.EXAMPLES,
+            formatter_class=argparse.RawDescriptionHelpFormatter,
+            allow_abbrev=False,
+        )
+        module.add_arguments(parser)
         status: int = module.run(parser.parse_args(words))
         sys.stdout.flush()
         return status

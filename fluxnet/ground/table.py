@@ -26,7 +26,8 @@ class Column:
     """A column: its title on screen, its key in data, its unit.
 
     ``sd_of`` names the column whose standard deviation this one holds: on screen the two are
-    shown together, rounded to what the error allows. ``digits`` rounds otherwise.
+    shown together, rounded to what the error allows. Otherwise ``digits`` significant ones are
+    shown, or ``decimals`` behind the point.
     """
 
     title: str
@@ -35,6 +36,7 @@ class Column:
     align: Align = Align.LEFT
     sd_of: str | None = None
     digits: int = 4
+    decimals: int | None = None
 
 
 @dataclass(frozen=True, slots=True)

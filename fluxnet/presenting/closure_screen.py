@@ -95,7 +95,7 @@ def _balances(run: RunClosure) -> Table:
         Column("out", "out", align=Align.RIGHT),
         Column("gap, out - in", "gap", align=Align.RIGHT),
         Column("", "sd", sd_of="gap"),
-        Column("z", "z", align=Align.RIGHT, digits=2),
+        Column("z", "z", align=Align.RIGHT, decimals=1),
         Column("recovery", "recovery", "%", Align.RIGHT),
         Column("", "recovery_sd", sd_of="recovery"),
     )
@@ -120,7 +120,7 @@ def _rates(run: RunClosure) -> Table:
         Column("", "measured_sd", sd_of="measured"),
         Column("reconciled", "reconciled", align=Align.RIGHT),
         Column("", "reconciled_sd", sd_of="reconciled"),
-        Column("z", "z", align=Align.RIGHT, digits=2),
+        Column("z", "z", align=Align.RIGHT, decimals=1),
         Column("kind", "kind"),
     )
     rows: list[tuple[Cell, ...]] = []

@@ -32,7 +32,7 @@ def conflict_blocks(run: FluxSolution) -> tuple[Block, ...]:
             Column("measured value", "name"),
             Column("measured", "measured", align=Align.RIGHT),
             Column("would be", "changed", align=Align.RIGHT),
-            Column("by [sd]", "in_sd", align=Align.RIGHT, digits=2),
+            Column("by [sd]", "in_sd", align=Align.RIGHT, decimals=1),
         )
         moved = [c for c in change.changes if abs(c.in_sd) >= 0.005]
         changes = tuple((str(c.quantity), c.measured, c.changed, c.in_sd) for c in moved)

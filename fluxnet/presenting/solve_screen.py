@@ -100,7 +100,7 @@ def _rates(run: FluxSolution) -> Table:
         Column("solved", "reconciled", align=Align.RIGHT),
         Column("", "reconciled_sd", sd_of="reconciled"),
         Column("95 % range", "range", align=Align.RIGHT),
-        Column("z", "z", align=Align.RIGHT, digits=2),
+        Column("z", "z", align=Align.RIGHT, decimals=1),
         Column("kind", "kind"),
     )
     rows: list[tuple[Cell, ...]] = []

@@ -192,6 +192,8 @@ def _cell(value: Cell, sd: Cell, column: Column) -> str:
         return value
     if isinstance(sd, (int, float)):
         return format_measured(float(value), float(sd))
+    if column.decimals is not None:
+        return f"{round(value, column.decimals) + 0.0:.{column.decimals}f}"
     return format_number(float(value), column.digits)
 
 
