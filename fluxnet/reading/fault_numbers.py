@@ -53,7 +53,7 @@ def _range_commas(text: str, start: int, end: int) -> list[Fault]:
     bracket = text.find("[", start, end)
     found = decimal_commas(text, start, end if bracket < 0 else bracket)
     if bracket >= 0 and text.count(",", bracket, end) > 1:
-        found += decimal_commas(text, bracket, end)
+        found += decimal_commas(text, bracket, end, re.compile(r"\d+,\d+(?=\s*[,;\]])"))
     return found
 
 

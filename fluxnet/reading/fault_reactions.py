@@ -18,7 +18,7 @@ from fluxnet.reading.fault_terms import split_terms, term_faults, tokens_of
 
 __all__ = ["has_arrow", "reaction_faults"]
 
-_ARROW = re.compile(r"<?\s?[-=~]+\s?>+|<[-=~]+|[→⇌↔⇄⇆⟶⟷⇒⇔]|={1,2}|(?<!\S)>(?!\S)")
+_ARROW = re.compile(r"(?:<\s?)?[-=~]+\s?>+|<[-=~]+|[→⇌↔⇄⇆⟶⟷⇒⇔]|={1,2}|(?<!\S)>(?!\S)")
 _GOOD = {"->", "<->", "→", "⇌"}
 _LABEL = re.compile(rf"\s*({NAME})\s*:")
 
@@ -124,8 +124,7 @@ def _wrong_arrow(arrow: re.Match[str]) -> Fault:
 
 
 def _arrow_for(arrow: re.Match[str], sign: str) -> Change:
-    lead = " " if arrow[0][:1].isspace() else ""
-    return replace_by(arrow, lead + sign)
+    return replace_by(arrow, sign)
 
 
 def _side_faults(text: str, start: int, end: int, side: str, known: Known) -> list[Fault]:

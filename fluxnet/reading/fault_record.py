@@ -61,10 +61,12 @@ def unreadable(
     return Fault(Name.UNREADABLE_LINE, message, start, end, mend, changes)
 
 
-def decimal_commas(text: str, start: int, end: int) -> list[Fault]:
+def decimal_commas(
+    text: str, start: int, end: int, pattern: re.Pattern[str] = DECIMAL_COMMA
+) -> list[Fault]:
     """Numbers with a decimal comma in a stretch of a text."""
     found: list[Fault] = []
-    for match in DECIMAL_COMMA.finditer(text, start, end):
+    for match in pattern.finditer(text, start, end):
         comma = match.start() + match[0].index(",")
         found.append(
             Fault(

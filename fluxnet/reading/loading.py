@@ -10,16 +10,20 @@ from pathlib import Path
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Source, Span
+from fluxnet.network.model import Role
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed, Rejected, place_statements
-from fluxnet.reading.fault_record import Known
+from fluxnet.reading.fault_record import NAME, Known
 from fluxnet.reading.faults import explain_line
 from fluxnet.reading.findings import Findings, nearest_names
 from fluxnet.reading.lines import LogicalLine, logical_lines
 from fluxnet.reading.parsing import Unparsed, parse_statement
+from fluxnet.reading.scope import words_of
 from fluxnet.reading.source import read_source
 
 __all__ = ["Loaded", "Place", "load_statements"]
+
+_ROLES = {role.value for role in Role}
 
 
 @dataclass(frozen=True, slots=True)
@@ -63,7 +67,7 @@ def _load(
 ) -> None:
     loaded.sources.append(source)
     parsed = [(line, parse_statement(line.text)) for line in logical_lines(source)]
-    known = _known(said for _, said in parsed)
+    known = _known(parsed)
     for line, said in parsed:
         if isinstance(said, Unparsed):
             explain_line(line, said, known, findings)
@@ -77,17 +81,28 @@ def _load(
             loaded.placed.append(one)
 
 
-def _known(said: Iterable[s.Statement | Unparsed]) -> Known:
+def _known(parsed: Iterable[tuple[LogicalLine, s.Statement | Unparsed]]) -> Known:
+    """The names that are declared, those that a rejected line means to declare among them."""
     species: set[str] = set()
     parameters: set[str] = set()
-    for statement in said:
+    for line, statement in parsed:
         if isinstance(statement, Unparsed):
+            first, _, rest = line.text.partition(" ")
+            if first == "parameter":
+                parameters.update(_first_name(rest))
+            elif first in _ROLES:
+                species.update(words_of([rest]))
             continue
         if isinstance(statement.line, s.SpeciesLine):
             species.update(entry.name.text for entry in statement.line.entries)
         elif isinstance(statement.line, s.ParameterLine):
             parameters.add(statement.line.assignment.name.text)
     return Known(frozenset(species), frozenset(parameters))
+
+
+def _first_name(text: str) -> list[str]:
+    found = re.match(rf"\s*({NAME})", text)
+    return [found[1]] if found else []
 
 
 def _use(
