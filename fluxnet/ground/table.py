@@ -27,7 +27,7 @@ class Column:
 
     ``sd_of`` names the column whose standard deviation this one holds: on screen the two are
     shown together, rounded to what the error allows. Otherwise ``digits`` significant ones are
-    shown, or ``decimals`` behind the point.
+    shown, or ``decimals`` behind the point. Text longer than ``wrap`` letters is broken.
     """
 
     title: str
@@ -37,6 +37,7 @@ class Column:
     sd_of: str | None = None
     digits: int = 4
     decimals: int | None = None
+    wrap: int | None = None
 
 
 @dataclass(frozen=True, slots=True)

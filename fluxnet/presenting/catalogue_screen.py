@@ -65,7 +65,7 @@ def compound_screen(compound: Compound) -> tuple[Block, ...]:
     table = Table(
         "compound",
         "",
-        (Column("what", "what"), Column("value", "value")),
+        (Column("what", "what"), Column("value", "value", wrap=64)),
         tuple(lines),
     )
     return (Heading(compound.name), table)

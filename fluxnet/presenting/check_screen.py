@@ -59,7 +59,7 @@ def _most_atp(result: CheckResult) -> Table:
         Column("substrate", "substrate"),
         Column("carrier", "carrier"),
         Column("most, mol/mol", "amount", align=Align.RIGHT),
-        Column("by", "conversion"),
+        Column("by", "conversion", wrap=44),
     )
     rows = tuple(
         (

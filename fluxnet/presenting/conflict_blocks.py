@@ -15,7 +15,7 @@ def conflict_blocks(run: FluxSolution) -> tuple[Block, ...]:
     blocks: list[Block] = []
     conflict, change = run.conflict, run.least_change
     if conflict is not None and conflict.members:
-        columns = (Column("cannot hold together", "words"), Column("kind", "kind"))
+        columns = (Column("cannot hold together", "words", wrap=56), Column("kind", "kind"))
         rows = tuple((m.words, m.kind.value) for m in conflict.members)
         checked = "each was tried" if conflict.verified else "not verified"
         blocks.append(

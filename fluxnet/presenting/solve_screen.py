@@ -92,15 +92,16 @@ def _assumptions(run: FluxSolution) -> list[Block]:
 
 
 def _rates(run: FluxSolution) -> Table:
+    at_best = run.aim is not None
     columns = (
         Column("rate", "species"),
         Column("way", "direction"),
         Column("measured", "measured", align=Align.RIGHT),
         Column("", "measured_sd", sd_of="measured"),
-        Column("solved", "reconciled", align=Align.RIGHT),
+        Column("at the optimum" if at_best else "solved", "reconciled", align=Align.RIGHT),
         Column("", "reconciled_sd", sd_of="reconciled"),
-        Column("95 % range", "range", align=Align.RIGHT),
-        Column("z", "z", align=Align.RIGHT, decimals=1),
+        Column("range there" if at_best else "95 % range", "range", align=Align.RIGHT),
+        Column("" if at_best else "z", "z", align=Align.RIGHT, decimals=1),
         Column("kind", "kind"),
     )
     rows: list[tuple[Cell, ...]] = []
@@ -111,7 +112,7 @@ def _rates(run: FluxSolution) -> Table:
         way = quantity.direction.value if is_rate and quantity.direction else ""
         if rate.reversed_:
             way += ", reversed"
-        determined = rate.reconciled_sd is not None
+        known = rate.reconciled_sd is not None or rate.low == rate.high
         unit = "" if rate.unit == run.unit or not rate.unit else f" [{rate.unit}]"
         rows.append(
             (
@@ -121,7 +122,7 @@ def _rates(run: FluxSolution) -> Table:
                 rate.sd,
                 rate.reconciled,
                 rate.reconciled_sd,
-                None if determined else format_range(rate.low, rate.high),
+                "" if known else format_range(rate.low, rate.high),
                 rate.z,
                 rate.kind.value.replace("_", " "),
             )
@@ -151,7 +152,7 @@ def _fluxes(run: FluxSolution) -> Table:
             flux.compartment,
             flux.value,
             flux.sd,
-            format_range(flux.low, flux.high),
+            "" if flux.low == flux.high else format_range(flux.low, flux.high),
             flux.kind.value,
             flux.low,
             flux.high,
@@ -196,6 +197,7 @@ def _ledger(run: FluxSolution) -> Table:
         by_carrier.setdefault(line.carrier, []).append(line)
     for carrier, lines in by_carrier.items():
         for place, line in enumerate(lines):
+            known = line.sd is not None or line.low == line.high
             rows.append(
                 (
                     carrier if place == 0 else "",
@@ -204,14 +206,14 @@ def _ledger(run: FluxSolution) -> Table:
                     line.spent,
                     line.net,
                     line.sd,
-                    None if line.sd is not None else format_range(line.low, line.high),
+                    "" if known else format_range(line.low, line.high),
                 )
             )
         made, spent = (sum(getattr(line, side) for line in lines) for side in ("made", "spent"))
         balance = made - spent
         if abs(balance) <= 1e-6 * max(made, spent):
             balance = 0.0
-        rows.append(("", "together", made, spent, balance, None, None))
+        rows.append(("", "together", made, spent, balance, None, ""))
     return Table(
         "ledger",
         f"Carrier ledger [{run.unit}]: who made and who spent",
@@ -224,9 +226,20 @@ def _ledger(run: FluxSolution) -> Table:
 def _equations(run: FluxSolution) -> list[Block]:
     if not run.equations:
         return []
-    rows = tuple(line for equation in run.equations for line in equation_lines(equation, run.unit))
-    columns = (Column("compartment", "compartment"), Column("", "per"), Column("equation", "text"))
-    return [Table("equations", "Net equations", columns, rows)]
+    rows = tuple(
+        line
+        for equation in run.equations
+        if equation.terms
+        for line in equation_lines(equation, run.unit)
+    )
+    columns = (
+        Column("compartment", "compartment"),
+        Column("", "per"),
+        Column("equation", "text", wrap=60),
+    )
+    per = next((e.per for e in run.equations if e.per), None)
+    title = f"Net equations, per mol {per} and in {run.unit}" if per else "Net equations"
+    return [Table("equations", title, columns, rows)]
 
 
 def _yields(run: FluxSolution) -> Table:

@@ -156,6 +156,7 @@ class Terminal:
                 self._plain(title),
                 justify="right" if column.align is Align.RIGHT else "left",
                 overflow="fold",
+                max_width=column.wrap,
             )
         for row in rows:
             grid.add_row(*(Text(self._plain(cell)) for cell in row))

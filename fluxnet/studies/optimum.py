@@ -2,39 +2,42 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable, Mapping
 from dataclasses import replace
 
 import numpy as np
-from numpy.typing import NDArray
 
-from fluxnet.network.model import Network, QuantityKind
+from fluxnet.network.model import Network, Quantity, QuantityKind
+from fluxnet.rates.kinds import RateKind
 from fluxnet.rates.measured import Run
+from fluxnet.solving.alter import with_row
 from fluxnet.solving.build import Built, build_problem
+from fluxnet.solving.classify import classify
 from fluxnet.solving.conflict import find_conflict, least_change
+from fluxnet.solving.equalities import find_equalities
+from fluxnet.solving.flux_fit import FluxKind
 from fluxnet.solving.least_flux import least_total_flux
-from fluxnet.solving.linear import LinearSolution, Outcome, Programme
+from fluxnet.solving.linear import LinearSolution, Outcome, Programme, worst_violation
 from fluxnet.solving.problem import Problem, Row, RowKind
-from fluxnet.solving.quantities import quantity_row
+from fluxnet.solving.quantities import default_direction, quantity_row
 from fluxnet.solving.ranges import find_ranges
 from fluxnet.solving.unbounded import explain_unbounded
 from fluxnet.studies.aims import Aim, Sense
-from fluxnet.studies.settling import settle
+from fluxnet.studies.settling import Array, Span, keep_account
 from fluxnet.studies.solution import (
     BindingLimit,
     FluxEstimate,
-    FluxKind,
     FluxSolution,
+    RateEstimate,
     SolveStatus,
 )
 from fluxnet.studies.telling import tell_infeasible, tell_optimum, tell_unbounded
+from fluxnet.studies.units import rate_unit
 
 __all__ = ["optimise"]
 
-Array = NDArray[np.float64]
-
-# How far the aim may fall short of its optimum while ranges are searched, relative to it:
-# as much as the solver itself leaves open.
-_SLACK = 1e-9
+# A price below this is the solver's own tolerance.
+_PRICE = 1e-8
 
 
 def optimise(
@@ -76,8 +79,8 @@ def optimise(
             frame, status=SolveStatus.UNBOUNDED, unbounded=reason, words=tell_unbounded(aim, reason)
         )
     if best.outcome is not Outcome.OPTIMAL:
-        conflict = find_conflict(problem)
-        change = least_change(build_problem(network, run))
+        conflict = find_conflict(problem, unit=frame.unit)
+        change = least_change(problem)
         return replace(
             frame,
             status=SolveStatus.INFEASIBLE,
@@ -96,10 +99,9 @@ def _at_optimum(
     best: LinearSolution,
     fraction: float,
 ) -> FluxSolution:
-    at_best = _hold(problem, cost, best.objective, fraction)
+    at_best = _hold(problem, cost, best, fraction)
     fluxes = least_total_flux(at_best)
     ranges = find_ranges(at_best)
-    width = np.maximum(1.0, np.abs(fluxes)) * 1e-7
     estimates = tuple(
         FluxEstimate(
             reaction=reaction.name,
@@ -111,20 +113,101 @@ def _at_optimum(
             best_low=float(ranges.low[j]),
             best_high=float(ranges.high[j]),
             kind=FluxKind.DETERMINED
-            if ranges.high[j] - ranges.low[j] <= width[j]
+            if _is_point(ranges.low[j], ranges.high[j])
             else FluxKind.UNDETERMINED,
         )
         for j, reaction in enumerate(built.network.reactions)
     )
+
+    def spans(rows: Array) -> Span:
+        found = find_ranges(at_best, rows)
+        return Span(np.full(len(rows), np.nan), found.low, found.high)
+
+    account = keep_account(built, fluxes, spans)
     solution = replace(
         frame,
-        optimum=best.objective,
+        optimum=best.objective + 0.0,
         fluxes=estimates,
-        limits=_binding(problem, best),
-        residual=max(best.residual, ranges.residual),
+        rates=_rates(built, fluxes, spans, frame.unit),
+        ledger=account.ledger,
+        equations=account.equations,
+        yields=account.yields,
+        limits=_binding(problem, best, frame.within),
+        residual=max(best.residual, ranges.residual, worst_violation(at_best, fluxes)),
     )
-    settled = settle(solution, built, fluxes, lambda rows: find_ranges(at_best, rows))
-    return replace(settled, words=tell_optimum(settled))
+    return replace(solution, words=tell_optimum(solution))
+
+
+def _is_point(low: float, high: float) -> bool:
+    """Whether a range is as narrow as the solver's own tolerance leaves it."""
+    return high - low <= 1e-6 * max(1.0, abs(low), abs(high))
+
+
+def _rates(
+    built: Built, fluxes: Array, spans: Callable[[Array], Span], unit: str
+) -> tuple[RateEstimate, ...]:
+    """The measured quantities, then the boundary rates that were not measured."""
+    measured = {row.quantity: row for row in built.problem.rows if row.value is not None}
+    boundary = [
+        Quantity(QuantityKind.RATE, s.name, default_direction(s.role))
+        for s in built.network.boundary
+    ]
+    asked = [
+        *(q for q in measured if q is not None and q.kind is not QuantityKind.RATIO),
+        *(q for q in boundary if not _is_measured(q, measured)),
+    ]
+    rows = np.array(
+        [
+            quantity_row(built.network, built.stoichiometry, q, built.values, basis=built.basis)
+            for q in asked
+        ]
+    ).reshape(len(asked), len(fluxes))
+    span = spans(rows)
+    values = rows @ fluxes
+    tested = _tested(built)
+    estimates: list[RateEstimate] = []
+    for k, quantity in enumerate(asked):
+        row = measured.get(quantity)
+        point = _is_point(span.low[k], span.high[k])
+        if row is not None:
+            kind = RateKind.BALANCEABLE if quantity in tested else RateKind.NOT_BALANCEABLE
+        else:
+            kind = RateKind.CALCULABLE if point else RateKind.NOT_CALCULABLE
+        estimates.append(
+            RateEstimate(
+                quantity=quantity,
+                unit=rate_unit(quantity, unit),
+                measured=row.value if row is not None else None,
+                sd=row.sd if row is not None else None,
+                reconciled=float(values[k]) + 0.0,
+                reconciled_sd=None,
+                low=float(span.low[k]),
+                high=float(span.high[k]),
+                z=None,
+                kind=kind,
+                reversed_=bool(values[k] < -1e-9) and quantity.direction is not None,
+            )
+        )
+    return tuple(estimates)
+
+
+def _is_measured(quantity: Quantity, measured: Mapping[Quantity | None, Row]) -> bool:
+    return any(q is not None and q.name == quantity.name for q in measured)
+
+
+def _tested(built: Built) -> set[Quantity]:
+    """The measured quantities that the others test."""
+    structure = classify(find_equalities(built))
+    places = (
+        *structure.exact.soft,
+        *(e.place for e in structure.exact.equalities if e.is_measured),
+    )
+    rows = built.problem.rows
+    return {
+        quantity
+        for place, balanceable in zip(places, structure.balanceable, strict=False)
+        if balanceable and (quantity := rows[place].quantity) is not None
+    }
 
 
 def _cost(built: Built, aim: Aim) -> Array:
@@ -170,26 +253,45 @@ def _least_of(problem: Problem, j: int) -> float:
     return least
 
 
-def _hold(problem: Problem, cost: Array, optimum: float, fraction: float) -> Problem:
-    """The problem with the aim held at its optimum, or at a fraction of it."""
-    slack = _SLACK * max(1.0, abs(optimum))
-    ends = sorted((optimum * fraction, optimum))
+def _hold(problem: Problem, cost: Array, best: LinearSolution, fraction: float) -> Problem:
+    """The problem with the aim held at its optimum, or between that and a fraction of it.
+
+    All optima, and nothing else, meet the bounds of the rows and columns with a price exactly
+    (complementary slackness): holding these asks for no tolerance.
+    """
+    if fraction < 1:
+        low, high = sorted((best.objective * fraction, best.objective))
+        return with_row(problem, Row(RowKind.LIMIT, "the aim near its optimum"), cost, low, high)
+    values = problem.matrix @ best.fluxes
+    rows = _pressed(problem.row_low, problem.row_high, values, best.row_prices)
+    columns = _pressed(
+        problem.column_low, problem.column_high, best.fluxes, best.column_prices
+    )
     return replace(
-        problem,
-        rows=(*problem.rows, Row(RowKind.LIMIT, "the aim at its optimum")),
-        matrix=np.vstack([problem.matrix, cost]),
-        row_low=np.append(problem.row_low, ends[0] - slack),
-        row_high=np.append(problem.row_high, ends[1] + slack),
+        problem, row_low=rows[0], row_high=rows[1], column_low=columns[0], column_high=columns[1]
     )
 
 
-def _binding(problem: Problem, best: LinearSolution) -> tuple[BindingLimit, ...]:
+def _pressed(low: Array, high: Array, values: Array, prices: Array) -> tuple[Array, Array]:
+    """Bounds that hold what has a price at the bound where it stands."""
+    low, high = low.copy(), high.copy()
+    for i in np.flatnonzero(np.abs(prices) > _PRICE):
+        if abs(values[i] - low[i]) <= abs(high[i] - values[i]):
+            high[i] = low[i]
+        else:
+            low[i] = high[i]
+    return low, high
+
+
+def _binding(
+    problem: Problem, best: LinearSolution, within: float | None
+) -> tuple[BindingLimit, ...]:
     """The limits and measured values with a price, the most worth first."""
-    found = [
-        BindingLimit(row.name, float(problem.matrix[i] @ best.fluxes), float(best.row_prices[i]))
-        for i, row in enumerate(problem.rows)
-        if row.kind is not RowKind.BALANCE
-        and row.kind is not RowKind.ROLE
-        and abs(best.row_prices[i]) > 1e-9
-    ]
+    found: list[BindingLimit] = []
+    for i, row in enumerate(problem.rows):
+        price = float(best.row_prices[i])
+        if row.kind in (RowKind.BALANCE, RowKind.ROLE) or abs(price) <= _PRICE:
+            continue
+        name = f"{row.name} (within {within:g} sd)" if row.sd else row.name
+        found.append(BindingLimit(name, float(problem.matrix[i] @ best.fluxes), price))
     return tuple(sorted(found, key=lambda limit: -abs(limit.worth * limit.value)))

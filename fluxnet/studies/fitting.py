@@ -1,0 +1,165 @@
+"""The fluxes nearest to a run's measured rates, and all that follows from them."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+import numpy as np
+
+from fluxnet.network.model import Network
+from fluxnet.rates.measured import Run
+from fluxnet.solving.build import build_problem
+from fluxnet.solving.conflict import find_conflict, least_change
+from fluxnet.solving.flux_fit import FitStatus, FittedRow, FluxFit, PressingBound
+from fluxnet.solving.least_change import Violation, find_violations
+from fluxnet.solving.least_squares import fit_fluxes, spans_of
+from fluxnet.studies.settling import Array, Span, keep_account
+from fluxnet.studies.solution import (
+    FluxEstimate,
+    FluxSolution,
+    FluxTest,
+    MovedParameter,
+    RateEstimate,
+    SolveStatus,
+)
+from fluxnet.studies.telling import tell_fit, tell_infeasible
+from fluxnet.studies.units import rate_unit
+
+__all__ = ["fit_run"]
+
+# Within so many sds measured rates are asked to hold together when the fit is rejected.
+_WITHIN = 2.0
+
+
+def fit_run(network: Network, run: Run | None) -> FluxSolution:
+    """Fit fluxes to one run (None: to the measured limits of the model alone).
+
+    A run that the balances accept but whose fit a limit holds back beyond chance
+    (p below 5 %) is inconsistent as well.
+    """
+    fit = fit_fluxes(network, run)
+    frame = FluxSolution(
+        run=run.name if run else None,
+        variant=network.variant,
+        status=SolveStatus.SOLVED,
+        unit=run.unit if run else network.basis.value,
+        words="",
+        left_free=fit.built.left_free,
+        left_out=fit.built.left_out,
+        replaced=fit.built.replaced,
+        notes=fit.built.notes,
+        violated_limits=tuple(_tell_violation(v) for v in find_violations(fit.built.problem)),
+    )
+    if fit.status is FitStatus.INFEASIBLE:
+        conflict = find_conflict(fit.built.problem, unit=frame.unit)
+        change = least_change(fit.built.problem)
+        return replace(
+            frame,
+            status=SolveStatus.INFEASIBLE,
+            conflict=conflict,
+            least_change=change,
+            words=tell_infeasible(conflict, change),
+        )
+    test = _test(fit)
+    solution = replace(
+        _account(frame, fit), test=test, status=_status(fit, test), residual=fit.residual
+    )
+    solution = replace(solution, words=tell_fit(solution, test))
+    if solution.status is SolveStatus.INCONSISTENT:
+        problem = build_problem(network, run, within=_WITHIN).problem
+        conflict = find_conflict(problem, unit=frame.unit)
+        if conflict.members:
+            solution = replace(
+                solution, conflict=conflict, within=_WITHIN, least_change=least_change(problem)
+            )
+    return solution
+
+
+def _status(fit: FluxFit, test: FluxTest) -> SolveStatus:
+    held_back = test.bound_p is not None and test.bound_p < 0.05
+    if fit.status is FitStatus.INCONSISTENT or held_back:
+        return SolveStatus.INCONSISTENT
+    return SolveStatus.SOLVED
+
+
+def _test(fit: FluxFit) -> FluxTest:
+    return FluxTest(
+        h=fit.h,
+        dof=fit.dof,
+        p=fit.p_value,
+        limit=fit.limit,
+        closes=fit.closes,
+        bound_h=fit.bound_h,
+        bound_p=fit.bound_p,
+        active=tuple(_tell_bound(bound) for bound in fit.bounds),
+        pulling=tuple(
+            f"{_tell_bound(bound)} pulls {bound.pulled} by {abs(bound.pull or 0):.1f} sd"
+            for bound in fit.bounds
+            if bound.is_strong
+        ),
+    )
+
+
+def _tell_bound(bound: PressingBound) -> str:
+    kind = bound.kind.value
+    return bound.name if kind in bound.name else f"{kind} of {bound.name}"
+
+
+def _tell_violation(violation: Violation) -> str:
+    measured = violation.measured
+    return (
+        f"{violation.limit.name} is passed by {measured.name}, measured {measured.value:.4g}, "
+        f"by {violation.in_sd:.1f} sd"
+    )
+
+
+def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
+    network = fit.built.network
+    fluxes = tuple(
+        FluxEstimate(
+            reaction=reaction.name,
+            compartment=reaction.compartment,
+            value=float(fit.fluxes[j]),
+            sd=None if np.isnan(fit.flux_sd[j]) else float(fit.flux_sd[j]),
+            low=float(fit.low[j]),
+            high=float(fit.high[j]),
+            best_low=float(fit.best_low[j]),
+            best_high=float(fit.best_high[j]),
+            kind=fit.kinds[j],
+        )
+        for j, reaction in enumerate(network.reactions)
+    )
+    measured = {row.quantity for row in fit.rows}
+    rates = (*fit.rows, *(row for row in fit.rates if row.quantity not in measured))
+
+    def spans(rows: Array) -> Span:
+        intervals = spans_of(fit, rows)
+        return Span(intervals.sd, intervals.low, intervals.high)
+
+    account = keep_account(fit.built, fit.fluxes, spans)
+    return replace(
+        frame,
+        fluxes=fluxes,
+        rates=tuple(_rate(row, frame.unit) for row in rates),
+        relations=tuple(f"{r.words} = {r.value:.4g} ± {r.sd:.2g}" for r in fit.relations),
+        moved=tuple(MovedParameter(m.name, m.value, m.sd, m.moved, m.moved_sd) for m in fit.moved),
+        ledger=account.ledger,
+        equations=account.equations,
+        yields=account.yields,
+    )
+
+
+def _rate(row: FittedRow, unit: str) -> RateEstimate:
+    return RateEstimate(
+        quantity=row.quantity,
+        unit=rate_unit(row.quantity, unit),
+        measured=row.measured,
+        sd=row.sd,
+        reconciled=row.value,
+        reconciled_sd=row.value_sd,
+        low=row.low,
+        high=row.high,
+        z=row.z,
+        kind=row.kind,
+        reversed_=row.value < 0 and row.quantity.direction is not None,
+    )
