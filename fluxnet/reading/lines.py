@@ -14,7 +14,9 @@ from dataclasses import dataclass
 
 from fluxnet.ground.source import Source, Span
 
-__all__ = ["LogicalLine", "logical_lines", "without_comment"]
+__all__ = [
+    "LogicalLine", "indentation_of", "logical_lines", "starts_statement", "without_comment",
+]
 
 TAB = 4
 
@@ -116,7 +118,7 @@ def _take(source: Source, number: int) -> tuple[LogicalLine, int] | None:
         pieces.append(_Piece(len(text) + 1, len(addition), behind, inner + 1, columns))
         text = f"{text} {addition}"
         behind += 1
-    return LogicalLine(source.file, text, _indentation(raw[:lead]), tuple(pieces)), behind
+    return LogicalLine(source.file, text, indentation_of(raw), tuple(pieces)), behind
 
 
 def _following(source: Source, number: int) -> tuple[int, str] | None:
@@ -129,15 +131,21 @@ def _following(source: Source, number: int) -> tuple[int, str] | None:
         raw = source.line(number)
         body = without_comment(raw)
         if body.strip():
-            return None if _STARTS.match(body) else (number, body)
+            return None if starts_statement(body) else (number, body)
         if not raw.strip():
             return None
         number += 1
     return None
 
 
-def _indentation(blanks: str) -> int:
-    return sum(TAB if letter == "\t" else 1 for letter in blanks)
+def indentation_of(raw: str) -> int:
+    """The columns of blanks with which a line begins; a tab counts as four."""
+    return sum(TAB if letter == "\t" else 1 for letter in raw[: len(raw) - len(raw.lstrip())])
+
+
+def starts_statement(text: str) -> bool:
+    """Whether a text plainly starts a statement, so that it carries no other line on."""
+    return _STARTS.match(text) is not None
 
 
 def without_comment(raw: str) -> str:

@@ -9,7 +9,7 @@ from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Source, Span
 
-__all__ = ["MOST_LINES", "read_source", "source_of_text"]
+__all__ = ["MOST_LINES", "read_source", "source_of_text", "split_lines"]
 
 MOST_LINES = 20_000
 """More lines than this are refused unless they are asked for."""
@@ -76,9 +76,7 @@ def source_of_text(
     text: str, name: str, *, large: bool = False
 ) -> tuple[Source | None, tuple[Diagnostic, ...]]:
     """A text cut into lines, and what is wrong with it as a whole."""
-    lines = _LINE_END.split(text.removeprefix("\ufeff"))
-    if len(lines) > 1 and not lines[-1]:
-        lines.pop()
+    lines = split_lines(text)
     span = Span(name, 0)
     if len(lines) > MOST_LINES and not large:
         return None, (
@@ -92,4 +90,12 @@ def source_of_text(
     if "\x00" in text:
         return None, (Diagnostic(Name.BINARY_FILE, f"{name} is not a text file", span,
                                  mend="save it as plain text (UTF-8)"),)
-    return Source(name, tuple(lines)), ()
+    return Source(name, lines), ()
+
+
+def split_lines(text: str) -> tuple[str, ...]:
+    """The lines of a text, as an editor counts them."""
+    lines = _LINE_END.split(text.removeprefix("\ufeff"))
+    if len(lines) > 1 and not lines[-1]:
+        lines.pop()
+    return tuple(lines)
