@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-import re
 from dataclasses import dataclass, field
 
 from fluxnet.chemistry.unit_words import Dimension
-from fluxnet.chemistry.units import UnitError, parse_unit
+from fluxnet.chemistry.units import UnitError, UnitFault, parse_unit
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.tables.entries import RunHead
@@ -16,9 +15,6 @@ from fluxnet.tables.numerals import Decimal
 from fluxnet.tables.statements import Statements
 
 __all__ = ["BiomassNumbers", "read_biomass_numbers"]
-
-_AMOUNT = re.compile(r"(?P<number>[^A-Za-zµμ]+?)\s*(?P<unit>[A-Za-zµμ].*)")
-
 
 @dataclass(frozen=True, slots=True)
 class BiomassNumbers:
@@ -46,11 +42,9 @@ def read_biomass_numbers(head: RunHead, statements: Statements, decimal: Decimal
         )
     elif statements.concentration is not None:
         cell = statements.concentration
-        found = _AMOUNT.fullmatch(cell.text)
-        text = found["number"].strip() if found else cell.text
-        number = read_cell(Cell(text, cell.column, cell.span), decimal, "")
+        number = read_cell(cell, decimal, "biomass concentration")
         concentration = _concentration(
-            number, Number(), found["unit"] if found else "", cell, faults
+            number, Number(), statements.concentration_unit, cell, faults
         )
     return BiomassNumbers(shared, concentration, tuple(faults))
 
@@ -93,7 +87,8 @@ def _concentration(
     try:
         read = parse_unit(unit)
     except UnitError as fault:
-        faults.append(cell_fault(Name.UNKNOWN_UNIT, cell, title, str(fault), "write g/L"))
+        name = Name.UNKNOWN_UNIT if fault.kind is UnitFault.UNKNOWN else Name.WRONG_UNIT
+        faults.append(cell_fault(name, cell, title, str(fault), "write g/L"))
         return None
     if read.amount is not Dimension.MASS or read.per != (Dimension.VOLUME,):
         words = f"`{unit}` is no unit of a biomass concentration"

@@ -55,13 +55,15 @@ class Entries:
     """All entries of a table, the runs in the order in which they appear.
 
     ``carried`` are the titles of the columns that are carried through; ``continued`` says
-    that blank run cells were taken to continue the run above.
+    that blank run cells were taken to continue the run above; ``failed`` names the runs of
+    which a row could not be taken apart.
     """
 
     entries: tuple[Entry, ...]
     heads: tuple[RunHead, ...]
     carried: tuple[str, ...] = ()
     continued: bool = False
+    failed: frozenset[str] = frozenset()
     diagnostics: tuple[Diagnostic, ...] = field(default=())
 
 

@@ -40,6 +40,7 @@ def collect_long(layout: Layout) -> Entries:
     extras = [t for t in layout.titles if t.cell.column not in used and t.cell.text]
     entries: list[Entry] = []
     heads: dict[str, RunHead] = {}
+    failed: set[str] = set()
     run, continued = "", False
     for row in layout.body:
         named = _cell(row, places, Key.RUN).text
@@ -52,8 +53,16 @@ def collect_long(layout: Layout) -> Entries:
             entries.append(entry)
         elif any(not _cell(row, places, k).is_blank for k in _ROW_KEYS):
             faults.append(_nameless(row, _cell(row, places, Key.SPECIES)))
+            failed.add(run)
     carried = tuple(t.cell.text for t in extras)
-    return Entries(tuple(entries), tuple(heads.values()), carried, continued, tuple(faults))
+    return Entries(
+        tuple(entries),
+        tuple(heads.values()),
+        carried,
+        continued,
+        frozenset(failed),
+        tuple(faults),
+    )
 
 
 def _entry(row: Row, run: str, places: Mapping[Key, Title], vocabulary: Vocabulary) -> Entry | None:

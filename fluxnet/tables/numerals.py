@@ -39,7 +39,8 @@ _BLANKS = " \u00a0\u2009\u202f'\u2019"
 _PATTERNS = {
     d: re.compile(
         rf"[+-]?(?:(?P<whole>\d+)|(?P<grouped>[1-9]\d{{0,2}}(?:(?P<sign>[{re.escape(d.thousands)}{_BLANKS}])\d{{3}})"
-        rf"(?:(?P=sign)\d{{3}})*))?(?:{re.escape(d.value)}(?P<fraction>\d*))?(?:[eE][+-]?\d+)?"
+        rf"(?:(?P=sign)\d{{3}})*))?(?:{re.escape(d.value)}(?P<fraction>\d*))?(?:[eE][+-]?\d+)?",
+        re.ASCII,
     )
     for d in Decimal
 }

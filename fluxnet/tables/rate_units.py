@@ -8,7 +8,7 @@ from enum import Enum
 from fractions import Fraction
 
 from fluxnet.chemistry.unit_words import MARKS, WORDS, Dimension
-from fluxnet.chemistry.units import Unit, UnitError, parse_unit
+from fluxnet.chemistry.units import Unit, UnitError, UnitFault, parse_unit
 from fluxnet.ground.names import Name
 
 __all__ = ["BadUnit", "RateUnit", "UnitKind", "is_rate_unit", "is_unit", "read_rate_unit"]
@@ -86,7 +86,7 @@ def read_rate_unit(text: str) -> RateUnit | BadUnit:
     try:
         unit = parse_unit(text)
     except UnitError as fault:
-        name = Name.UNKNOWN_UNIT if fault.kind.value == "unknown" else Name.WRONG_UNIT
+        name = Name.UNKNOWN_UNIT if fault.kind is UnitFault.UNKNOWN else Name.WRONG_UNIT
         return BadUnit(name, str(fault))
     if unit.is_growth:
         return RateUnit(unit, UnitKind.GROWTH, "1/h")

@@ -31,7 +31,7 @@ __all__ = ["Statements", "joined", "read_statement"]
 
 _ROLES = {r.value: r for r in (Role.SUBSTRATE, Role.PRODUCT, Role.EXCHANGE, Role.BIOMASS)}
 _ROLES["species"] = Role.EXCHANGE
-_NUMBER = r"\d+(?:[.,]\d+)?|[.,]\d+"
+_NUMBER = r"\d+(?:[.,]\d+)?|\.\d+"
 _DECLARATION = re.compile(
     rf"(?P<role>{'|'.join(_ROLES)})\s+(?P<name>\S+)\s+(?P<formula>[A-Z(]\S*(?:\s+charge\s+\S+)?)"
     rf"(?:\s+ash\s+(?P<ash>{_NUMBER})(?:\s*(?:±|\+-)\s*(?P<ash_sd>{_NUMBER}))?\s*%)?"
@@ -40,7 +40,10 @@ _SHARED = re.compile(r"shared\s+errors?\b(?P<rest>.*)", re.IGNORECASE)
 _SHARED_REST = re.compile(
     rf"\s*(?:of\s+)?(?P<what>[A-Za-z]*)\s*[:=]?\s*(?P<number>{_NUMBER})\s*%", re.IGNORECASE
 )
-_CONCENTRATION = re.compile(r"biomass\s+concentration\s*[:=]?\s*(?P<rest>.+)", re.IGNORECASE)
+_CONCENTRATION = re.compile(
+    r"biomass\s+concentration\s*[:=]?\s*(?P<number>[^A-Za-zµμ]*?)\s*(?P<unit>[A-Za-zµμ].*)?",
+    re.IGNORECASE,
+)
 _NITROGEN = re.compile(r"nitrogen\s+source\s*[:=]?\s*(?P<name>.+)", re.IGNORECASE)
 
 
@@ -48,13 +51,14 @@ _NITROGEN = re.compile(r"nitrogen\s+source\s*[:=]?\s*(?P<name>.+)", re.IGNORECAS
 class Statements:
     """What stood above a table.
 
-    ``shared_error`` is a fraction. ``concentration`` is the text behind ``biomass
+    ``shared_error`` is a fraction. ``concentration`` is the number behind ``biomass
     concentration`` with its place, read once the decimal sign is known.
     """
 
     species: tuple[Species, ...] = ()
     shared_error: float | None = None
     concentration: Cell | None = None
+    concentration_unit: str = ""
     nitrogen: str | None = None
     notes: tuple[str, ...] = ()
     diagnostics: tuple[Diagnostic, ...] = field(default=())
@@ -81,7 +85,8 @@ def _statement(text: str, span: Span) -> Statements | None:
         return Statements(shared_error=_number(rest["number"]) / 100)
     concentration = _CONCENTRATION.fullmatch(text)
     if concentration is not None:
-        return Statements(concentration=Cell(concentration["rest"].strip(), 0, span))
+        number = Cell(concentration["number"], 0, span)
+        return Statements(concentration=number, concentration_unit=concentration["unit"] or "")
     nitrogen = _NITROGEN.fullmatch(text)
     if nitrogen is not None:
         return Statements(nitrogen=nitrogen["name"].strip())
@@ -95,6 +100,7 @@ def joined(first: Statements, second: Statements) -> Statements:
         first.species + second.species,
         first.shared_error if second.shared_error is None else second.shared_error,
         second.concentration or first.concentration,
+        second.concentration_unit or first.concentration_unit,
         second.nitrogen or first.nitrogen,
         first.notes + second.notes,
         first.diagnostics + second.diagnostics,

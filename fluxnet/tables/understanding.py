@@ -56,7 +56,7 @@ def understand(
     faults.extend(entries.diagnostics)
     if not entries.entries and not entries.diagnostics:
         faults.append(_no_rows(grid, layout))
-    choice = _decimal(entries, grid, asked)
+    choice = _decimal(entries, layout, grid, asked)
     faults.extend(_decimal_faults(choice))
     flagged = frozenset(c.span for c in (*choice.doubtful, *choice.contrary))
     readings = read_entries(entries.entries, choice.decimal, layout.vocabulary, flagged)
@@ -107,17 +107,21 @@ def _build_runs(
             shared_error=numbers.shared_error,
             correlations=[c for c in pairs.pairs if c.run in ("", head.name)],
             rule=rule,
-            complete=head.name not in readings.failed,
+            complete=head.name not in readings.failed | entries.failed,
         )
         runs.append(replace(built, diagnostics=(*numbers.diagnostics, *built.diagnostics)))
     return runs
 
 
-def _decimal(entries: Entries, grid: Grid, asked: Decimal | None) -> DecimalChoice:
+def _decimal(
+    entries: Entries, layout: Layout, grid: Grid, asked: Decimal | None
+) -> DecimalChoice:
     if asked is not None:
         return DecimalChoice(asked, said=True)
     cells = [c for e in entries.entries for c in (e.value, e.sd)]
     cells += [c for h in entries.heads for c in (h.shared, h.concentration, h.concentration_sd)]
+    if layout.statements.concentration is not None:
+        cells.append(layout.statements.concentration)
     return decide_decimal(cells, grid.separator)
 
 
