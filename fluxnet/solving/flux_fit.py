@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from enum import Enum
 
 import numpy as np
@@ -12,6 +12,8 @@ from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import Quantity
 from fluxnet.rates.kinds import RateKind
 from fluxnet.solving.build import Built
+from fluxnet.solving.region import Region
+from fluxnet.solving.task import Task
 
 __all__ = [
     "BoundKind", "FitStatus", "FittedRow", "FluxFit", "FluxKind", "FluxRelation",
@@ -57,10 +59,11 @@ class FittedRow:
     ``measured`` and ``sd`` are None where it was not measured; ``sd`` is the one that the fit
     used (a relative sd is taken of the reconciled value). ``value`` stands in the direction of
     ``quantity``: below zero it is reversed. ``value_sd`` is None where nothing determines the
-    value: then ``value`` is a representative, and the ranges tell what is known. ``z`` is the
-    adjustment in units of its own sd, None where none is possible. ``low`` and ``high`` hold
-    all values with h - h_min <= 3.84, ``best_low`` and ``best_high`` those at h_min; infinite
-    where nothing bounds them. ``of_model`` marks a measured limit of the model.
+    value: then ``value`` is a representative, and the ranges tell what is known. ``z`` is
+    measured less fitted over the sd of that difference, None where none is possible. ``low``
+    and ``high`` hold all values with h - h_min <= 3.84, ``best_low`` and ``best_high`` those
+    at h_min; infinite where nothing bounds them. ``of_model`` marks a measured limit of the
+    model.
     """
 
     quantity: Quantity
@@ -162,8 +165,9 @@ class FluxFit:
     first, then uncertain numbers: rows add up to 1, NaN where a flux is not determined.
     ``residual`` is the largest imbalance relative to the sum of its absolute terms.
 
-    Where ``status`` is INFEASIBLE arrays hold NaN and ``contradiction`` names exact values
-    that contradict one another, if it is they.
+    Where ``status`` is INFEASIBLE arrays hold NaN, and ``contradictions`` are the names of
+    exact values and limits that contradict one another, where that was seen at once. ``task``
+    and ``region`` are what :func:`fluxnet.solving.least_squares.spans_of` asks.
     """
 
     status: FitStatus
@@ -194,7 +198,9 @@ class FluxFit:
     sources: tuple[str, ...]
     shares: Vector
     residual: float
-    contradiction: tuple[str, ...] = ()
+    contradictions: tuple[tuple[str, ...], ...] = ()
+    task: Task | None = field(default=None, repr=False)
+    region: Region | None = field(default=None, repr=False)
 
     @property
     def numbers(self) -> dict[str, float]:

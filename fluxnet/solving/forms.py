@@ -90,15 +90,34 @@ def form_of_row(built: Built, row: Row) -> Form:
     return form_of(built, row.quantity, ratio)
 
 
-def form_of(built: Built, quantity: Quantity, ratio: Fraction | None = None) -> Form:
+def form_of(
+    built: Built,
+    quantity: Quantity,
+    ratio: Fraction | None = None,
+    *,
+    told_with: Quantity | None = None,
+) -> Form:
     """What a quantity is made of, in the unit of the problem's basis; A - ratio B for A / B.
+
+    Parameters
+    ----------
+    told_with
+        The other part of a ratio that this quantity is a part of: ratios count moles.
 
     Raises
     ------
     MisuseError
         Where a ratio comes without its value.
     """
-    return _form(built.network, built.stoichiometry, built.basis, quantity, ratio)
+    basis = built.basis
+    if told_with is not None:
+        basis = _ratio_basis(basis, quantity, told_with)
+    return _form(built.network, built.stoichiometry, basis, quantity, ratio)
+
+
+def _ratio_basis(basis: Basis, over: Quantity, below: Quantity) -> Basis:
+    """The basis that the parts of a ratio are told in: moles, unless one of them is mu."""
+    return basis if QuantityKind.MU in (over.kind, below.kind) else Basis.SPECIFIC
 
 
 def _form(
@@ -120,7 +139,7 @@ def _form(
             over, below = quantity.numerator, quantity.denominator
             if ratio is None or over is None or below is None:
                 raise MisuseError("a ratio is a row only at a given value")
-            told = basis if QuantityKind.MU in (over.kind, below.kind) else Basis.SPECIFIC
+            told = _ratio_basis(basis, over, below)
             first = _form(network, stoich, told, over, None)
             return first.minus(ratio, _form(network, stoich, told, below, None))
 

@@ -1,0 +1,84 @@
+"""Functionals of a fit: rows of its task, ratios of two of them, and any other rows."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.solving.task import Point
+
+__all__ = ["Drifting", "Functionals", "Placed", "Ratios"]
+
+Vector = NDArray[np.float64]
+Places = NDArray[np.intp]
+
+
+@dataclass(frozen=True, slots=True)
+class Placed:
+    """The values of rows of the task, by their places."""
+
+    places: Places
+
+    def values(self, point: Point) -> Vector:
+        """One value a row."""
+        return point.values[self.places]
+
+    def slopes(self, point: Point) -> Vector:
+        """Their derivatives by the point's coordinates."""
+        return point.slopes[self.places]
+
+
+@dataclass(frozen=True, slots=True)
+class Ratios:
+    """Quotients of rows of the task."""
+
+    over: Places
+    below: Places
+
+    def values(self, point: Point) -> Vector:
+        """One quotient a pair; NaN where the lower one is zero."""
+        below = point.values[self.below]
+        quotients: Vector = point.values[self.over] / np.where(below == 0, np.nan, below)
+        return quotients
+
+    def slopes(self, point: Point) -> Vector:
+        """Their derivatives by the point's coordinates."""
+        values, below = self.values(point), point.values[self.below]
+        top = point.slopes[self.over] - values[:, None] * point.slopes[self.below]
+        slopes: Vector = top / np.where(below == 0, np.nan, below)[:, None]
+        return slopes
+
+
+@dataclass(frozen=True, slots=True)
+class Drifting:
+    """Rows over the fluxes that change in proportion to the uncertain numbers.
+
+    ``rows`` (functionals x fluxes) are those at ``origin``, ``drift`` (numbers x functionals
+    x fluxes) their derivatives.
+    """
+
+    rows: Vector
+    drift: Vector
+    origin: Vector
+
+    def _rows(self, point: Point) -> Vector:
+        moved = point.numbers - self.origin
+        rows: Vector = self.rows + np.einsum("k,kij->ij", moved, self.drift)
+        return rows
+
+    def values(self, point: Point) -> Vector:
+        """One value a row."""
+        values: Vector = self._rows(point) @ point.fluxes
+        return values
+
+    def slopes(self, point: Point) -> Vector:
+        """Their derivatives by the point's coordinates."""
+        slopes: Vector = self._rows(point) @ point.tangent
+        if len(self.origin):
+            slopes[:, len(point.z) :] += (self.drift @ point.fluxes).T
+        return slopes
+
+
+Functionals = Placed | Ratios | Drifting

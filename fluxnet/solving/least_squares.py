@@ -1,0 +1,259 @@
+"""Fluxes from measured rates by weighted least squares, with their errors and ranges.
+
+min (y - M v)' V^-1 (y - M v) + sum ((p - p0) / sd)^2 subject to S(p) v = 0, exact values and
+limits with ``=``, directions, roles and limits. The test value h is that of the equalities
+alone; what the bounds add is told apart from it. Sources: van der Heijden et al. 1994 and
+Wang & Stephanopoulos 1983 for the test of measured rates (from memory).
+"""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.ground.errors import MisuseError
+from fluxnet.network.model import Network, Quantity, QuantityKind
+from fluxnet.rates.measured import Run
+from fluxnet.solving.bound_test import chance_of_bounds
+from fluxnet.solving.build import Built, build_problem, rebuild
+from fluxnet.solving.classify import Structure, classify, find_relations
+from fluxnet.solving.descent import fit_bounded
+from fluxnet.solving.equalities import find_equalities
+from fluxnet.solving.fit_rows import fitted_rows, unmeasured_rates
+from fluxnet.solving.flux_fit import FitStatus, FluxFit, FluxKind, FluxRelation
+from fluxnet.solving.forms import form_of
+from fluxnet.solving.functionals import Drifting
+from fluxnet.solving.intervals import Intervals, find_intervals
+from fluxnet.solving.pulls import pressing_bounds
+from fluxnet.solving.quantities import has_mu
+from fluxnet.solving.region import Region
+from fluxnet.solving.representative import take_least_flux
+from fluxnet.solving.spread import find_spread
+from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tail
+from fluxnet.solving.task import Task
+from fluxnet.solving.weighing import Weighed, fit_weighed
+
+__all__ = ["fit_fluxes", "spans_of"]
+
+Vector = NDArray[np.float64]
+
+_PRESSES = 1e-9
+"""What bounds add to h below this part of it is rounding."""
+
+
+def fit_fluxes(network: Network, run: Run | None = None, *, built: Built | None = None) -> FluxFit:
+    """Fit the fluxes of a network to the measured rates of a run.
+
+    Parameters
+    ----------
+    network
+        With its ``?`` solved.
+    run
+        Its measured rates; without one the measured limits of the model alone.
+    built
+        The problem, where it was built already (without bounds on measured values).
+
+    Returns
+    -------
+    FluxFit
+
+    Raises
+    ------
+    MisuseError
+        Where the run measures what the network does not have, or errors are impossible.
+
+    Examples
+    --------
+    >>> from fractions import Fraction
+    >>> from fluxnet.network.expression import ONE, constant
+    >>> from fluxnet.network.model import (
+    ...     Basis, Compartment, Direction, Reaction, Role, Species, Term)
+    >>> from fluxnet.rates.measured import MeasuredRate
+    >>> network = Network("ferment", Basis.SPECIFIC,
+    ...     (Species("glucose", Role.SUBSTRATE), Species("ethanol", Role.PRODUCT),
+    ...      Species("CO2", Role.EXCHANGE)), (), (Compartment("all"),),
+    ...     (Reaction("ferment", "all", (Term("glucose", ONE),),
+    ...      (Term("ethanol", constant(2)), Term("CO2", constant(2)))),))
+    >>> def rate(name, way, value, sd):
+    ...     return MeasuredRate(Quantity(QuantityKind.RATE, name, Direction(way)), value, sd)
+    >>> run = Run("a", Basis.SPECIFIC, (rate("glucose", "in", 10.0, 0.2),
+    ...     rate("ethanol", "out", 18.6, 0.4), rate("CO2", "out", 19.6, 0.4)))
+    >>> fit = fit_fluxes(network, run)
+    >>> fit.fluxes.round(6).tolist(), round(fit.h, 6), fit.dof, round(fit.p_value, 5)
+    ([9.7], 6.5, 2, 0.03877)
+    """
+    built = build_problem(network, run) if built is None else built
+    exact = find_equalities(built)
+    if exact.contradictions:
+        return _nothing(built, exact.contradictions)
+    structure = classify(exact)
+    mu = Quantity(QuantityKind.MU)
+    extra = (form_of(built, mu),) if has_mu(network, built.basis) else ()
+    weighed = fit_weighed(built, structure, extra)
+    bounded = fit_bounded(weighed.task, weighed.best)
+    if bounded is None:
+        return _nothing(weighed.built, ())
+    region = take_least_flux(weighed.task, bounded[1])
+    return _told(weighed, structure, region, mu_place=len(built.problem.rows) if extra else None)
+
+
+def spans_of(
+    fit: FluxFit, rows: Vector, drift: dict[str, Vector] | None = None
+) -> Intervals:
+    """Values, sds and ranges of any rows over the fluxes, as those of the fluxes themselves.
+
+    Parameters
+    ----------
+    fit
+        A fit that is not infeasible.
+    rows
+        Functionals x fluxes, at the fitted values of parameters and ash.
+    drift
+        The derivatives of ``rows`` by each uncertain number, by its name; those that are not
+        named have none. Their rows must be proportional to the number.
+
+    Returns
+    -------
+    Intervals
+        sd is NaN where a functional is not determined.
+
+    Raises
+    ------
+    MisuseError
+        Where the fit is infeasible, or the shapes do not fit.
+    """
+    task, region = fit.task, fit.region
+    if task is None or region is None:
+        raise MisuseError("an infeasible fit has no values to ask for")
+    rows = np.atleast_2d(np.asarray(rows, dtype=np.float64))
+    if rows.shape[1] != len(fit.reactions) or np.isnan(rows).any():
+        raise MisuseError("each functional needs one number for every flux")
+    slopes = np.zeros((task.numbers, *rows.shape))
+    for k, name in enumerate(task.rows.names):
+        if drift is not None and name in drift:
+            slopes[k] = drift[name]
+    return find_intervals(task, region, Drifting(rows, slopes, region.point.numbers))
+
+
+def _told(
+    weighed: Weighed, structure: Structure, region: Region, mu_place: int | None
+) -> FluxFit:
+    """All that a fit tells."""
+    task, best, point = weighed.task, weighed.best, region.point
+    numbers = dict(zip(task.rows.names, point.numbers.tolist(), strict=True))
+    built = rebuild(weighed.built, numbers)
+    count = task.rows.count
+    flux_ranges = _flux_ranges(task, region, structure)
+    spread = find_spread(weighed.built, task, region, structure.determined)
+    dof = structure.dof
+    added = max(0.0, point.h - best.h)
+    presses = added > _PRESSES * (1 + best.h)
+    p_value = chi_squared_tail(best.h, dof) if dof else None
+    limit = chi_squared_quantile(0.95, dof) if dof else None
+    closes = None if limit is None else best.h <= limit
+    return FluxFit(
+        status=FitStatus.INCONSISTENT if closes is False else FitStatus.SOLVED,
+        built=built,
+        reactions=built.problem.columns,
+        fluxes=_read_only(_rounded(point.fluxes)),
+        flux_sd=_read_only(flux_ranges.sd[:count]),
+        low=_read_only(flux_ranges.low[:count]),
+        high=_read_only(flux_ranges.high[:count]),
+        best_low=_read_only(flux_ranges.best_low[:count]),
+        best_high=_read_only(flux_ranges.best_high[:count]),
+        kinds=tuple(
+            FluxKind.DETERMINED if fixed else FluxKind.UNDETERMINED
+            for fixed in structure.determined
+        ),
+        is_unique=not structure.unseen.dimension,
+        h=best.h if dof else None,
+        dof=dof,
+        p_value=p_value,
+        limit=limit,
+        closes=closes,
+        bound_h=added if presses else 0.0,
+        bound_p=chance_of_bounds(region, added) if presses else None,
+        bounds=pressing_bounds(built, task, region, structure) if presses else (),
+        moved=spread.moves,
+        rows=fitted_rows(weighed, structure, region, spread),
+        rates=unmeasured_rates(built, task, structure, region, mu_place),
+        relations=_relations(built.problem.columns, task, structure, region),
+        covariance=_read_only(spread.covariance),
+        free=_read_only(spread.free),
+        sources=spread.sources,
+        shares=_read_only(spread.shares),
+        residual=_imbalance(built, point.fluxes),
+        task=task,
+        region=region,
+    )
+
+
+def _flux_ranges(task: Task, region: Region, structure: Structure) -> Intervals:
+    drift = np.zeros((task.numbers, task.rows.count, task.rows.count))
+    functionals = Drifting(np.eye(task.rows.count), drift, region.point.numbers)
+    return find_intervals(task, region, functionals, np.array(structure.determined))
+
+
+def _relations(
+    names: tuple[str, ...], task: Task, structure: Structure, region: Region
+) -> tuple[FluxRelation, ...]:
+    found = find_relations(structure)
+    if not found:
+        return ()
+    rows = np.zeros((len(found), task.rows.count))
+    for k, relation in enumerate(found):
+        for j, factor in relation.terms:
+            rows[k, j] = float(factor)
+    drift = np.zeros((task.numbers, *rows.shape))
+    functionals = Drifting(rows, drift, region.point.numbers)
+    told = find_intervals(task, region, functionals, np.ones(len(found), dtype=bool))
+    return tuple(
+        FluxRelation(
+            tuple((names[j], float(factor)) for j, factor in relation.terms),
+            float(told.values[k]), float(told.sd[k]), float(told.low[k]), float(told.high[k]),
+        )
+        for k, relation in enumerate(found)
+    )
+
+
+def _imbalance(built: Built, fluxes: Vector) -> float:
+    """The largest |S v| of a balanced species over the sum of its absolute terms."""
+    stoich = built.stoichiometry
+    matrix = stoich.floats(built.values)[list(stoich.balanced)]
+    turnover = np.abs(matrix) @ np.abs(fluxes)
+    least = 1e-6 * float(turnover.max(initial=0.0)) or 1.0
+    return float((np.abs(matrix @ fluxes) / np.maximum(turnover, least)).max(initial=0.0))
+
+
+def _nothing(built: Built, contradictions: tuple[tuple[str, ...], ...]) -> FluxFit:
+    """The answer where the hard part has no solution."""
+    count = len(built.problem.columns)
+    none = _read_only(np.full(count, np.nan))
+    size = count + len(built.uncertain)
+    return FluxFit(
+        status=FitStatus.INFEASIBLE,
+        built=built,
+        reactions=built.problem.columns,
+        fluxes=none, flux_sd=none, low=none, high=none, best_low=none, best_high=none,
+        kinds=(FluxKind.UNDETERMINED,) * count,
+        is_unique=False,
+        h=None, dof=0, p_value=None, limit=None, closes=None,
+        bound_h=0.0, bound_p=None, bounds=(), moved=(), rows=(), rates=(), relations=(),
+        covariance=_read_only(np.full((size, size), np.nan)),
+        free=_read_only(np.zeros((count, 0))),
+        sources=(),
+        shares=_read_only(np.zeros((count, 0))),
+        residual=0.0,
+        contradictions=contradictions,
+    )
+
+
+def _read_only(array: Vector) -> Vector:
+    array.setflags(write=False)
+    return array
+
+
+def _rounded(fluxes: Vector) -> Vector:
+    """Fluxes without the dust that is left where they are zero."""
+    dust = 1e-13 * float(np.abs(fluxes).max(initial=0.0))
+    return np.where(np.abs(fluxes) <= dust, 0.0, fluxes)

@@ -1,0 +1,172 @@
+"""How far a functional can go within the bounds while h stays below a level.
+
+max c x over x = (u, t) with ||u - centre|| <= radius and the bounds. For a weight w the
+quadratic programme min ||u - centre||^2 / 2 - w c x has its optimum on the way; as w grows,
+its distance from the centre does. The w at which that is the radius is found with the exact
+slope of the piece (the same bounds pressing), so a few programmes suffice.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.solving.quadratic import QuadraticSolution, solve_quadratic, solve_scaled
+from fluxnet.solving.region import Region
+from fluxnet.solving.small_programme import SmallProgramme
+
+__all__ = ["Reach", "reach_far", "reach_flat"]
+
+Vector = NDArray[np.float64]
+
+_CLOSE = 1e-7
+_TRIES = 60
+
+
+@dataclass(frozen=True, slots=True)
+class Reach:
+    """The largest value of a functional (less its value at the point), and where it is taken.
+
+    ``place`` is None where nothing bounds the functional, or no solver could tell: then
+    ``value`` is infinite, which claims nothing. ``pressed``: whether any bound holds it back.
+    """
+
+    value: float
+    place: Vector | None
+    pressed: bool
+
+
+def reach_far(region: Region, gradient: Vector, radius: float, start: Vector) -> Reach:
+    """Maximise c x while the u of x stays within a radius of the centre, bounds kept.
+
+    Parameters
+    ----------
+    gradient
+        c over (u, t): see :meth:`Region.gradients`.
+    radius
+        The largest distance of u from the centre, above 0.
+    start
+        A place within the bounds and the radius.
+
+    Returns
+    -------
+    Reach
+    """
+    seen = region.dimension
+    size = float(np.linalg.norm(gradient))
+    if size == 0:
+        return Reach(0.0, start, False)
+    straight = _straight(region, gradient, radius, start)
+    if straight is not None:
+        return Reach(float(gradient @ straight), straight, False)
+    unit = gradient / size
+    along = float(np.linalg.norm(unit[:seen]))
+    weight = radius / along if along > 1e-9 else radius
+    low, high = 0.0, np.inf
+    best = start
+    for _ in range(_TRIES):
+        found = _programme(region, weight * unit)
+        if found.x is None:
+            return Reach(np.inf, None, False)
+        away = found.x[:seen] - region.centre
+        distance = float(away @ away)
+        left = radius**2 - distance
+        if left >= -_CLOSE * radius**2:
+            best, low = found.x, max(low, weight)
+        else:
+            high = min(high, weight)
+        if abs(left) <= _CLOSE * radius**2:
+            # The optimum's value falls short by left / (2 w), to first order exactly.
+            gain = size * left / (2 * weight)
+            return Reach(float(gradient @ found.x) + gain, found.x, bool(found.active))
+        following = _next_weight(region, found, unit, weight, radius)
+        if following is None and low > 0 and np.isinf(high):
+            # The place no longer moves with the weight: a corner of the bounds.
+            return Reach(float(gradient @ found.x), found.x, True)
+        if following is None or not low < following < high:
+            following = 4 * weight if np.isinf(high) else (low + high) / 2
+        weight = following
+    return Reach(float(gradient @ best), best, True)
+
+
+def _straight(
+    region: Region, gradient: Vector, radius: float, start: Vector
+) -> Vector | None:
+    """The answer where no bound presses on the way, by the linear formula."""
+    seen = region.dimension
+    if np.abs(gradient[seen:]).max(initial=0.0) > 1e-11 * np.linalg.norm(gradient):
+        return None
+    place = start.copy()
+    norm = float(np.linalg.norm(gradient[:seen]))
+    if norm == 0:
+        return place
+    place[:seen] = region.centre + radius / norm * gradient[:seen]
+    reach = region.bounds.rows @ place
+    inside = (reach >= region.bounds.low) & (reach <= region.bounds.high)
+    return place if inside.all() else None
+
+
+def _programme(region: Region, pull: Vector) -> QuadraticSolution:
+    seen, hidden = region.dimension, region.unseen.shape[1]
+    hessian = np.diag(np.concatenate([np.ones(seen), np.zeros(hidden)]))
+    gradient = -pull
+    gradient[:seen] -= region.centre
+    bounds = region.bounds
+    programme = SmallProgramme(hessian, gradient, bounds.rows, bounds.low, bounds.high)
+    return solve_scaled(programme, enough=0.5)
+
+
+def _next_weight(
+    region: Region, found: QuadraticSolution, unit: Vector, weight: float, radius: float
+) -> float | None:
+    """The weight at which the place reaches the radius if the same bounds go on pressing."""
+    seen, count = region.dimension, len(unit)
+    active = region.bounds.rows[list(found.active)]
+    system = np.zeros((count + len(active), count + len(active)))
+    system[:seen, :seen] = np.eye(seen)
+    system[count:, :count] = active
+    system[:count, count:] = active.T
+    right = np.concatenate([unit, np.zeros(len(active))])
+    moved = np.linalg.lstsq(system, right, rcond=1e-11)[0]
+    if np.linalg.norm(system @ moved - right) > 1e-7:
+        return None
+    slope = moved[:seen]
+    if found.x is None or float(slope @ slope) < 1e-18:
+        return None
+    away = found.x[:seen] - region.centre
+    a, b = float(slope @ slope), float(slope @ away)
+    c = float(away @ away) - radius**2
+    root = b * b - a * c
+    if root < 0:
+        return None
+    ahead = (-b + np.sqrt(root)) / a
+    return weight + ahead if weight + ahead > 0 else None
+
+
+def reach_flat(region: Region, gradient: Vector, place: Vector) -> Reach:
+    """Maximise c x over the places with the same u, bounds kept: the range at h_min.
+
+    Parameters
+    ----------
+    place
+        A place within the bounds; its u is kept.
+    """
+    seen = region.dimension
+    hidden = gradient[seen:]
+    if np.abs(hidden).max(initial=0.0) <= 1e-11 * float(np.linalg.norm(gradient)):
+        return Reach(float(gradient @ place), place, False)
+    bounds = region.bounds
+    shift = bounds.rows[:, :seen] @ place[:seen]
+    rows = bounds.rows[:, seen:]
+    moving = np.abs(rows).max(axis=1, initial=0.0) > 1e-11
+    rows, low, high = rows[moving], (bounds.low - shift)[moving], (bounds.high - shift)[moving]
+    reach = rows @ place[seen:]
+    # The place is inside up to rounding: a bound may not cut it off.
+    low, high = np.minimum(low, reach), np.maximum(high, reach)
+    found = solve_quadratic(None, -hidden, rows, low, high)
+    if found.x is None:
+        return Reach(np.inf, None, False)
+    there = np.concatenate([place[:seen], found.x])
+    return Reach(float(gradient @ there), there, bool(found.active))
