@@ -36,12 +36,14 @@ class ClosureMatrices:
 
     ``redundancy`` (dof x values) is R; ``calculated`` (unmeasured x values) gives unmeasured
     rates; ``contents`` (balances x values) holds what one unit of each value releases of each
-    balance that is shown, negative for uptake. ``balanceable`` and ``exact`` are one a value.
+    balance that is shown, negative for uptake. ``inward`` (values that are uptakes),
+    ``balanceable`` and ``exact`` are one a value.
     """
 
     redundancy: Array
     calculated: Array
     contents: Array
+    inward: NDArray[np.bool_]
     balanceable: NDArray[np.bool_]
     exact: NDArray[np.bool_]
 
@@ -115,7 +117,8 @@ def close_many(
     --------
     >>> rows = np.array([[-2.0, 1, 0], [-2, 0, 1]])
     >>> matrices = ClosureMatrices(
-    ...     rows, np.zeros((0, 3)), np.zeros((0, 3)), np.full(3, True), np.full(3, False))
+    ...     rows, np.zeros((0, 3)), np.zeros((0, 3)), np.array([True, False, False]),
+    ...     np.full(3, True), np.full(3, False))
     >>> runs = close_many(matrices, np.array([[10.0, 18.6, 19.6]]), np.array([[0.2, 0.4, 0.4]]))
     >>> runs.h.round(6).tolist(), runs.reconciled.round(6).tolist()
     ([6.5], [[9.7, 19.4, 19.4]])
@@ -124,17 +127,17 @@ def close_many(
     errors = _errors(sds, covariances)
     _check(matrices, y, errors)
     R, W = matrices.redundancy, matrices.calculated
-    Z, f = _whiten(R, y @ R.T, errors)
+    Z, f = _whiten(R, _along(R, y), errors)
     h = np.square(f).sum(axis=0)
-    correction = (f[:, :, None] * Z).sum(axis=0)
-    reduction = np.square(Z).sum(axis=0)
+    correction = np.einsum("rn,rnp->np", f, Z)
+    reduction = np.einsum("rnp,rnp->np", Z, Z)
     reconciled = y - correction
     left = np.where(matrices.exact, 0.0, np.maximum(errors.variances - reduction, 0.0))
     tested = matrices.balanceable & ~matrices.exact
     with np.errstate(divide="ignore", invalid="ignore"):
         z = np.where(tested, correction / np.sqrt(reduction), np.nan)
-    terms = np.abs(reconciled) @ np.abs(R).T
-    off = np.abs(reconciled @ R.T) / np.where(terms > 0, terms, 1.0)
+    terms = _along(np.abs(R), np.abs(reconciled))
+    off = np.abs(_along(R, reconciled)) / np.where(terms > 0, terms, 1.0)
     dof = len(R)
     limit = chi_squared_quantile(1 - SIGNIFICANCE, dof) if dof else np.nan
     undefined = np.full(len(y), np.nan)
@@ -147,10 +150,10 @@ def close_many(
         reconciled=reconciled,
         reconciled_sd=np.sqrt(left),
         z=z,
-        calculated=reconciled @ W.T,
+        calculated=_along(W, reconciled),
         calculated_sd=_sd_of_rows(W, Z, errors),
         residual=off.max(axis=1) if dof else np.zeros(len(y)),
-        **_balances(matrices.contents, y, errors),
+        **_balances(matrices, y, errors),
     )
 
 
@@ -169,7 +172,7 @@ class _Independent:
         squares = left * right
         if not squares.any():
             return np.zeros((len(self.variances), len(left)))
-        return np.asarray(self.variances @ squares.T)
+        return _along(squares, self.variances)
 
 
 @dataclass(frozen=True, slots=True)
@@ -220,6 +223,14 @@ def _check(matrices: ClosureMatrices, y: Array, errors: _Errors) -> None:
         raise MisuseError("an sd is zero exactly where the balances take the value as exact")
 
 
+def _along(rows: Array, values: Array) -> Array:
+    """Rows times the values of each run: runs x rows.
+
+    Not ``values @ rows.T``: matrices this thin cost the library's threads more than they save.
+    """
+    return np.asarray(np.einsum("rp,np->nr", rows, values))
+
+
 def _whiten(R: Array, e: Array, errors: _Errors) -> tuple[Array, Array]:
     """R V and R y divided by the Cholesky factor of P = R V R', for all runs at once.
 
@@ -231,10 +242,10 @@ def _whiten(R: Array, e: Array, errors: _Errors) -> tuple[Array, Array]:
     for i in range(len(R)):
         for k in range(i):
             # Z[k] R[i] is the entry i, k of the factor: P_ik less what earlier rows took
-            factor = Z[k] @ R[i]
+            factor = np.einsum("np,p->n", Z[k], R[i])
             Z[i] -= factor[:, None] * Z[k]
             f[i] -= factor * f[k]
-        pivot = Z[i] @ R[i]
+        pivot = np.einsum("np,p->n", Z[i], R[i])
         if not (pivot > _NO_ERROR * (errors.between(R[i : i + 1], R[i : i + 1])[:, 0])).all():
             raise NoVarianceError("the errors leave a relation that they should test without any")
         root = np.sqrt(pivot)
@@ -249,11 +260,16 @@ def _sd_of_rows(rows: Array, Z: Array, errors: _Errors) -> Array:
     return np.asarray(np.sqrt(np.maximum(errors.between(rows, rows) - taken_off, 0.0)))
 
 
-def _balances(contents: Array, y: Array, errors: _Errors) -> dict[str, Array]:
-    """What is taken up and released of each balance, the gap, the recovery, and their sds."""
-    # a value is a magnitude in its direction, so the sign of its content tells the side
-    up, out = np.minimum(contents, 0.0), np.maximum(contents, 0.0)
-    taken, released = y @ np.abs(up).T, y @ out.T
+def _balances(matrices: ClosureMatrices, y: Array, errors: _Errors) -> dict[str, Array]:
+    """What is taken up and released of each balance, the gap, the recovery, and their sds.
+
+    Taken is what substrates bring; acceptors (which are taken up but hold less than nothing)
+    stand with the products, as oxygen does in the electrons.
+    """
+    contents = matrices.contents
+    up = np.where(matrices.inward, np.minimum(contents, 0.0), 0.0)
+    out = contents - up
+    taken, released = _along(np.abs(up), y), _along(out, y)
     above, below = errors.between(out, out), errors.between(up, up)
     across = errors.between(out, up)
     with np.errstate(divide="ignore", invalid="ignore"):

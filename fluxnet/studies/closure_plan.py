@@ -18,7 +18,7 @@ from fluxnet.network.contents import (
     in_order_of_balances,
     without_free,
 )
-from fluxnet.network.model import Network
+from fluxnet.network.model import Direction, Network
 from fluxnet.studies.closure_batch import ClosureMatrices
 from fluxnet.studies.closure_result import World
 from fluxnet.studies.closure_rows import ClosureRow, ClosureRows, balance_unit
@@ -109,6 +109,7 @@ def plan_closure(
         redundancy=_floats(redundancy.rows, width, scaled=True),
         calculated=_floats([w or (Fraction(0),) * width for w in redundancy.weights], width),
         contents=_floats([measured_rows[i] for i in shown], width),
+        inward=np.array([row.direction is Direction.IN for row in rows.measured], dtype=np.bool_),
         balanceable=np.array(redundancy.balanceable, dtype=np.bool_),
         exact=np.array(exact, dtype=np.bool_),
     )
