@@ -16,6 +16,7 @@ from fluxnet.tables.statements import Statements
 
 __all__ = ["BiomassNumbers", "read_biomass_numbers"]
 
+
 @dataclass(frozen=True, slots=True)
 class BiomassNumbers:
     """The shared error as a fraction; the concentration [g/L] with its relative error."""

@@ -115,9 +115,10 @@ def _side(
             if same and told in (None, quantity.direction):
                 return quantity
     elif cell.text:
-        quantity_read = read_quantity(cell.text, "", vocabulary).quantity
-        if quantity_read in known and quantity_read is not None:
-            return quantity_read
+        named = read_quantity(cell.text, "", vocabulary).quantity
+        for quantity in known:
+            if named is not None and _is_same(named, quantity):
+                return quantity
     near = difflib.get_close_matches(cell.text, [str(q) for q in known], 3, 0.5)
     return cell_fault(
         Name.UNKNOWN_QUANTITY,
@@ -125,6 +126,20 @@ def _side(
         "",
         f"the rates table has no quantity `{cell.text}`",
         f"did you mean {' or '.join(near)}?" if near else None,
+    )
+
+
+def _is_same(named: Quantity, quantity: Quantity) -> bool:
+    """Whether a name means a quantity; the sides of a ratio may leave their direction open."""
+    if named.kind is not QuantityKind.RATIO or quantity.kind is not QuantityKind.RATIO:
+        return named == quantity
+    sides = ((named.numerator, quantity.numerator), (named.denominator, quantity.denominator))
+    return all(
+        a is not None
+        and b is not None
+        and (a.kind, a.name) == (b.kind, b.name)
+        and a.direction in (None, b.direction)
+        for a, b in sides
     )
 
 

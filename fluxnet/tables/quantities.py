@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import difflib
-from dataclasses import dataclass, field
+from collections.abc import Mapping
+from dataclasses import dataclass, field, replace
 
 from fluxnet.ground.names import Name
 from fluxnet.network.model import Direction, Quantity, QuantityKind, Role, Species
@@ -18,7 +19,7 @@ from fluxnet.tables.vocabulary import (
     split_direction,
 )
 
-__all__ = ["QuantityFault", "QuantityReading", "is_quantity_name", "read_quantity"]
+__all__ = ["QuantityFault", "QuantityReading", "is_quantity_name", "read_quantity", "settle_ratio"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -139,7 +140,8 @@ def _ratio(name: str, direction: str, vocabulary: Vocabulary) -> QuantityReading
     assumed = False
     for side in sides:
         bare, word = split_direction(side)
-        reading = read_quantity(bare, word or _usual_direction(bare, vocabulary), vocabulary)
+        reading = _open_side(bare, vocabulary) if not word else None
+        reading = reading or read_quantity(bare, word, vocabulary)
         if reading.quantity is None:
             return reading
         parts.append(reading.quantity)
@@ -149,17 +151,43 @@ def _ratio(name: str, direction: str, vocabulary: Vocabulary) -> QuantityReading
     return QuantityReading(quantity, tuple(species), assumed=assumed)
 
 
-def _usual_direction(name: str, vocabulary: Vocabulary) -> str:
-    """The direction that a ratio takes where none is written and the role leaves it open.
+def _open_side(name: str, vocabulary: Vocabulary) -> QuantityReading | None:
+    """A side of a ratio whose direction neither a word nor a role tells; None where one does.
 
-    As in a model: in for a substrate, else out; without a model oxygen goes in, so that
-    CO2 / oxygen is the respiratory quotient.
+    With a model it is out, as in the model's own ratios; without one it stays open until the
+    other rows of the table are known (:func:`settle_ratio`).
     """
-    found = None if is_growth_rate(name) else find_species(name, vocabulary)
+    is_rate = not is_growth_rate(name) and _reaction(name, vocabulary) is None
+    found = find_species(name, vocabulary) if is_rate else None
     if found is None or direction_of_role(found.species.role) is not None:
-        return ""
-    bare = vocabulary.network is None and found.species.entry == "oxygen"
-    return "in" if bare else "out"
+        return None
+    direction = None if vocabulary.network is None else Direction.OUT
+    quantity = Quantity(QuantityKind.RATE, found.species.name, direction)
+    return QuantityReading(quantity, (found.species,), assumed=found.assumed)
+
+
+def settle_ratio(
+    quantity: Quantity, told: Mapping[str, Direction], species: Mapping[str, Species]
+) -> Quantity:
+    """A ratio whose open sides go the way that the table's own rows tell.
+
+    Where no row tells, oxygen goes in and everything else out: CO2 / oxygen is the
+    respiratory quotient.
+    """
+
+    def settled(side: Quantity | None) -> Quantity | None:
+        if side is None or side.kind is not QuantityKind.RATE or side.direction is not None:
+            return side
+        known = species.get(side.name)
+        is_oxygen = known is not None and known.entry == "oxygen"
+        usual = Direction.IN if is_oxygen else Direction.OUT
+        return replace(side, direction=told.get(side.name, usual))
+
+    return replace(
+        quantity,
+        numerator=settled(quantity.numerator),
+        denominator=settled(quantity.denominator),
+    )
 
 
 def _reaction(name: str, vocabulary: Vocabulary) -> str | None:

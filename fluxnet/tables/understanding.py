@@ -113,9 +113,7 @@ def _build_runs(
     return runs
 
 
-def _decimal(
-    entries: Entries, layout: Layout, grid: Grid, asked: Decimal | None
-) -> DecimalChoice:
+def _decimal(entries: Entries, layout: Layout, grid: Grid, asked: Decimal | None) -> DecimalChoice:
     if asked is not None:
         return DecimalChoice(asked, said=True)
     cells = [c for e in entries.entries for c in (e.value, e.sd)]

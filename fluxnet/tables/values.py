@@ -12,7 +12,7 @@ from fluxnet.network.model import Quantity, QuantityKind, Species
 from fluxnet.tables.entries import Entry
 from fluxnet.tables.numbers import Number, cell_fault, read_cell
 from fluxnet.tables.numerals import Decimal
-from fluxnet.tables.quantities import QuantityReading, read_quantity
+from fluxnet.tables.quantities import QuantityReading, read_quantity, settle_ratio
 from fluxnet.tables.rate_units import BadUnit, RateUnit, read_rate_unit
 from fluxnet.tables.vocabulary import Vocabulary
 
@@ -87,9 +87,26 @@ def read_entries(
         else:
             faults.extend(found)
             failed.add(entry.run)
+    readings = _settled(readings, typed)
     return Readings(
         tuple(readings), tuple(typed.values()), frozenset(failed), tuple(assumed), tuple(faults)
     )
+
+
+def _settled(readings: list[Reading], typed: dict[str, Species]) -> list[Reading]:
+    """The readings with the open directions of ratios taken from the other rows."""
+    told = {
+        r.quantity.name: r.quantity.direction
+        for r in readings
+        if r.quantity.kind is QuantityKind.RATE and r.quantity.direction is not None
+    }
+    species = {s.name: s for s in typed.values()}
+    return [
+        replace(r, quantity=settle_ratio(r.quantity, told, species))
+        if r.quantity.kind is QuantityKind.RATIO
+        else r
+        for r in readings
+    ]
 
 
 def _outside(entry: Entry, told: QuantityReading, vocabulary: Vocabulary) -> list[Diagnostic]:
@@ -178,7 +195,7 @@ def _unit_faults(
     entry: Entry, quantity: Quantity | None, units: dict[str, RateUnit | BadUnit]
 ) -> list[Diagnostic]:
     faults: list[Diagnostic] = []
-    is_ratio = quantity is not None and quantity.kind is QuantityKind.RATIO
+    is_ratio = "/" in entry.name if quantity is None else quantity.kind is QuantityKind.RATIO
     if not entry.unit and not entry.value.is_blank and not is_ratio:
         faults.append(
             cell_fault(

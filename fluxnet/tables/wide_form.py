@@ -60,9 +60,7 @@ def collect_wide(layout: Layout) -> Entries:
             for title, sd in columns.quantities
         )
     carried = tuple(t.cell.text for t in columns.extras)
-    return Entries(
-        tuple(entries), tuple(heads.values()), carried, diagnostics=columns.faults
-    )
+    return Entries(tuple(entries), tuple(heads.values()), carried, diagnostics=columns.faults)
 
 
 def _columns(layout: Layout) -> _Columns:
