@@ -50,7 +50,7 @@ def make_closure(
         words=verdict(balances, test, contradictions),
         contradictions=contradictions,
         left_out=rows.left_out,
-        notes=plan.notes,
+        notes=(*plan.notes, *(_not_used(name) for name in rows.left_out)),
         residual=float(arrays.residual[place]),
         extras=run.extras,
     )
@@ -130,6 +130,12 @@ def _contradictions(plan: ClosurePlan, values: Array) -> tuple[tuple[str, ...], 
                 _shown(row) for row, w in zip(plan.measured, relation, strict=True) if w
             ))  # fmt: skip
     return tuple(broken)
+
+
+def _not_used(name: str) -> str:
+    if name == "mu":
+        return "mu is not used: in this unit, or without a biomass, it is no rate of a species"
+    return f"{name} is not used: a closure balances rates of species only"
 
 
 def _shown(row: ClosureRow) -> str:

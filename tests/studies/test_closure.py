@@ -350,6 +350,7 @@ def test_a_ratio_cannot_be_used_and_is_told() -> None:
     more = replace(one.runs[0], rates=(*one.runs[0].rates, MeasuredRate(ratio, 1.05, 0.03)))
     run = close_rates(replace(one, runs=(more,))).runs[0]
     assert run.left_out == (str(ratio),)
+    assert any(str(ratio) in note for note in run.notes)
     assert run.test.h == pytest.approx(6.5)
 
 
