@@ -14,6 +14,7 @@ from fluxnet.tables.numbers import Number, cell_fault, read_cell
 from fluxnet.tables.numerals import Decimal
 from fluxnet.tables.quantities import QuantityReading, read_quantity, settle_ratio
 from fluxnet.tables.rate_units import BadUnit, RateUnit, read_rate_unit
+from fluxnet.tables.sense import sense_faults, unit_faults
 from fluxnet.tables.vocabulary import Vocabulary
 
 __all__ = ["Reading", "Readings", "read_entries"]
@@ -164,9 +165,9 @@ def _read(
     if not entry.sd.is_blank and not skip:
         sd = read_cell(entry.sd, decimal, f"sd of {entry.name}")
     faults += [n.fault for n in (value, sd) if n.fault is not None]
-    faults += _unit_faults(entry, told.quantity, units)
+    faults += unit_faults(entry, told.quantity, units)
     if not faults:
-        faults += _sense(entry, told.quantity, value, sd)
+        faults += sense_faults(entry, told.quantity, value, sd)
     if faults or told.quantity is None or skip:
         return faults
     own, relative = value.sd, value.relative
@@ -189,115 +190,3 @@ def _read(
         relative,
         sd_unit if isinstance(sd_unit, RateUnit) and entry.sd_unit not in ("", "%") else None,
     )
-
-
-def _unit_faults(
-    entry: Entry, quantity: Quantity | None, units: dict[str, RateUnit | BadUnit]
-) -> list[Diagnostic]:
-    faults: list[Diagnostic] = []
-    is_ratio = "/" in entry.name if quantity is None else quantity.kind is QuantityKind.RATIO
-    if not entry.unit and not entry.value.is_blank and not is_ratio:
-        faults.append(
-            cell_fault(
-                Name.UNKNOWN_UNIT,
-                entry.unit_cell if entry.unit_cell.span.line else entry.name_cell,
-                "",
-                f"{entry.name} has no unit",
-                _unit_mend(quantity),
-            )
-        )
-    written = units[entry.unit]
-    if entry.unit and isinstance(written, BadUnit):
-        faults.append(
-            cell_fault(
-                written.name,
-                entry.unit_cell,
-                "",
-                f"{entry.name}: {written.words}",
-                written.mend or _unit_mend(quantity),
-            )
-        )
-    own = units[entry.sd_unit]
-    if entry.sd_unit not in ("", "%") and isinstance(own, BadUnit):
-        faults.append(
-            cell_fault(
-                own.name,
-                entry.name_cell,
-                "",
-                f"sd of {entry.name}: {own.words}",
-                "write the unit of the rate, or %",
-            )
-        )
-    return faults
-
-
-def _unit_mend(quantity: Quantity | None) -> str:
-    if quantity is not None and quantity.kind is QuantityKind.MU:
-        return "write 1/h"
-    return "write a unit of a rate or an amount, such as mmol/g/h, g/L/h or mmol"
-
-
-def _sense(entry: Entry, quantity: Quantity | None, value: Number, sd: Number) -> list[Diagnostic]:
-    """Faults of numbers that can be read but make no sense."""
-    signed = quantity is not None and quantity.kind is QuantityKind.FLUX
-    faults: list[Diagnostic] = []
-    if value.percent and not (quantity is not None and quantity.kind is QuantityKind.RATIO):
-        faults.append(
-            cell_fault(
-                Name.UNREADABLE_CELL,
-                entry.value,
-                entry.title,
-                f"`{entry.value.text}` is in per cent, not in {entry.unit or 'a unit'}",
-            )
-        )
-    if value.value is not None and value.value < 0 and not signed:
-        other = {"in": "out", "out": "in"}.get(
-            quantity.direction.value
-            if quantity is not None and quantity.direction is not None
-            else ""
-        )
-        faults.append(
-            cell_fault(
-                Name.NEGATIVE_RATE,
-                entry.value,
-                entry.title,
-                f"`{entry.value.text}` is negative",
-                f"write {value.value * -1:g} with the direction {other}" if other else None,
-            )
-        )
-    if (value.sd is not None or value.relative is not None) and sd.value is not None:
-        faults.append(
-            cell_fault(
-                Name.UNREADABLE_CELL,
-                entry.sd,
-                f"sd of {entry.name}",
-                f"`{entry.sd.text}` is a second sd beside `{entry.value.text}`",
-                "keep one of them",
-            )
-        )
-    for number, cell in (
-        (sd.value, entry.sd),
-        (value.sd, entry.value),
-        (value.relative, entry.value),
-    ):
-        if number is not None and number < 0:
-            faults.append(
-                cell_fault(
-                    Name.NEGATIVE_SD,
-                    cell,
-                    f"sd of {entry.name}",
-                    f"`{cell.text}` is a negative standard deviation",
-                    "0 means exact",
-                )
-            )
-    if value.value is None and sd.value is not None:
-        faults.append(
-            cell_fault(
-                Name.UNREADABLE_CELL,
-                entry.sd,
-                f"sd of {entry.name}",
-                f"`{entry.sd.text}` is the sd of a rate that is blank",
-                "fill in the rate, or leave both blank",
-            )
-        )
-    return faults

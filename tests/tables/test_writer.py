@@ -13,7 +13,8 @@ TABLES = {
     "specific rates with a shared error": "shared error biomass 4 %\n" + LONG
     + "A,glucose,in,2,0.1,mmol/g/h\nA,acetic acid,out,1,7 %,mmol/g/h\nA,mu,,0.1,1 %,1/h\n"
     + "B,glucose,in,0.3333333333333333,,g/g/h\nB,CO2,out,,,mmol/g/h\n",
-    "amounts per 100 mol": LONG + "A,glucose,in,100,0,mol/100 mol\nA,ethanol,out,150,3,mol/100 mol\n",
+    "amounts per 100 mol": LONG
+    + "A,glucose,in,100,0,mol/100 mol\nA,ethanol,out,150,3,mol/100 mol\n",
     "per C-mol of substrate": LONG + "A,glucose,in,1,0,C-mol/C-mol\nA,oxygen,in,.1,5 %,mol/C-mol\n",
     "per C-mol of biomass": LONG
     + "A,glucose,in,2.87,1 %,C-mol/C-mol/h\nA,oxygen,in,0.313,1 %,mol/C-mol/h\n",
@@ -56,8 +57,10 @@ def test_writing_twice_gives_the_same_text(name):
 
 
 def test_correlations_are_written_beside_the_rates():
-    rates = "shared error biomass 4 %\n" + LONG + (
-        "A,glucose,in,2,0.1,mmol/g/h\nA,oxygen,in,3,0.2,mmol/g/h\nA,CO2,out,4,0.1,mmol/g/h\n"
+    rates = (
+        "shared error biomass 4 %\n"
+        + LONG
+        + ("A,glucose,in,2,0.1,mmol/g/h\nA,oxygen,in,3,0.2,mmol/g/h\nA,CO2,out,4,0.1,mmol/g/h\n")
     )
     first = read_rates_text(rates, covariance="first,second,correlation\noxygen,CO2,0.6\n").table
     pairs = write_covariance_text(first)

@@ -1,0 +1,101 @@
+"""Entries whose units or numbers can be read and make no sense."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Name
+from fluxnet.network.model import Direction, Quantity, QuantityKind
+from fluxnet.tables.entries import Entry
+from fluxnet.tables.grid import Cell
+from fluxnet.tables.numbers import Number, cell_fault
+from fluxnet.tables.rate_units import BadUnit, RateUnit
+
+__all__ = ["sense_faults", "unit_faults"]
+
+
+def unit_faults(
+    entry: Entry, quantity: Quantity | None, units: Mapping[str, RateUnit | BadUnit]
+) -> list[Diagnostic]:
+    """Faults of an entry's units; ``units`` are those of all texts, as they were read."""
+    faults: list[Diagnostic] = []
+    is_ratio = "/" in entry.name if quantity is None else quantity.kind is QuantityKind.RATIO
+    if not entry.unit and not entry.value.is_blank and not is_ratio:
+        faults.append(
+            cell_fault(
+                Name.UNKNOWN_UNIT,
+                entry.unit_cell if entry.unit_cell.span.line else entry.name_cell,
+                "",
+                f"{entry.name} has no unit",
+                _unit_mend(quantity),
+            )
+        )
+    written = units[entry.unit]
+    if entry.unit and isinstance(written, BadUnit):
+        faults.append(
+            cell_fault(
+                written.name,
+                entry.unit_cell,
+                "",
+                f"{entry.name}: {written.words}",
+                written.mend or _unit_mend(quantity),
+            )
+        )
+    own = units[entry.sd_unit]
+    if entry.sd_unit not in ("", "%") and isinstance(own, BadUnit):
+        faults.append(
+            cell_fault(
+                own.name,
+                entry.name_cell,
+                "",
+                f"sd of {entry.name}: {own.words}",
+                "write the unit of the rate, or %",
+            )
+        )
+    return faults
+
+
+def _unit_mend(quantity: Quantity | None) -> str:
+    if quantity is not None and quantity.kind is QuantityKind.MU:
+        return "write 1/h"
+    return "write a unit of a rate or an amount, such as mmol/g/h, g/L/h or mmol"
+
+
+def sense_faults(
+    entry: Entry, quantity: Quantity | None, value: Number, sd: Number
+) -> list[Diagnostic]:
+    """Faults of numbers that can be read but make no sense."""
+    kind = quantity.kind if quantity is not None else None
+    sd_title = f"sd of {entry.name}"
+    faults: list[Diagnostic] = []
+
+    def add(name: Name, cell: Cell, title: str, words: str, mend: str | None = None) -> None:
+        faults.append(cell_fault(name, cell, title, f"`{cell.text}` {words}", mend))
+
+    if value.percent and kind is not QuantityKind.RATIO:
+        words = f"is in per cent, not in {entry.unit or 'a unit'}"
+        add(Name.UNREADABLE_CELL, entry.value, entry.title, words)
+    if value.value is not None and value.value < 0 and kind is not QuantityKind.FLUX:
+        mend = _other_direction(quantity, -value.value)
+        add(Name.NEGATIVE_RATE, entry.value, entry.title, "is negative", mend)
+    if (value.sd is not None or value.relative is not None) and sd.value is not None:
+        words = f"is a second sd beside `{entry.value.text}`"
+        add(Name.UNREADABLE_CELL, entry.sd, sd_title, words, "keep one of them")
+    errors = ((sd.value, entry.sd), (value.sd, entry.value), (value.relative, entry.value))
+    for number, cell in errors:
+        if number is not None and number < 0:
+            words = "is a negative standard deviation"
+            add(Name.NEGATIVE_SD, cell, sd_title, words, "0 means exact")
+    if value.value is None and sd.value is not None:
+        mend = "fill in the rate, or leave both blank"
+        add(Name.UNREADABLE_CELL, entry.sd, sd_title, "is the sd of a rate that is blank", mend)
+    return faults
+
+
+def _other_direction(quantity: Quantity | None, size: float) -> str | None:
+    """How to write a negative rate."""
+    if quantity is None or quantity.direction is None:
+        return None
+    other = Direction.OUT if quantity.direction is Direction.IN else Direction.IN
+    return f"write {size:g} with the direction {other.value}"
