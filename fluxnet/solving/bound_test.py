@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from hashlib import sha256
 
 import numpy as np
@@ -10,7 +10,6 @@ from numpy.typing import NDArray
 
 from fluxnet.solving.quadratic import solve_scaled
 from fluxnet.solving.region import Region, nearest
-from fluxnet.solving.small_programme import SmallProgramme
 
 __all__ = ["Pressure", "chance_of_bounds", "find_pressures"]
 
@@ -66,19 +65,25 @@ def chance_of_bounds(region: Region, added: float) -> float:
     float
         (1 + how many of the samples) / (1 + samples).
     """
-    seen, hidden = region.dimension, region.unseen.shape[1]
+    seen = region.dimension
     samples = np.random.default_rng(SEED).standard_normal((SAMPLES, seen))
     bounds = region.bounds
     # The truth itself is inside; rounding must not put it outside.
     low, high = np.minimum(bounds.low, 0.0), np.maximum(bounds.high, 0.0)
     reach = samples @ bounds.rows[:, :seen].T
     inside = ((reach >= low) & (reach <= high)).all(axis=1)
-    hessian = np.diag(np.concatenate([np.ones(seen), np.zeros(hidden)]))
-    count = 0
-    for sample in samples[~inside]:
-        gradient = np.concatenate([-sample, np.zeros(hidden)])
-        found = solve_scaled(SmallProgramme(hessian, gradient, bounds.rows, low, high), 0.5)
-        if found.x is not None:
-            away = found.x[:seen] - sample
-            count += float(away @ away) >= added
-    return (1 + count) / (1 + SAMPLES)
+    outside = samples[~inside]
+    ends = np.array([_end(region, sample, low, high) for sample in outside])
+    if not len(ends):
+        return 1 / (1 + SAMPLES)
+    distances = ((ends[:, :seen] - outside) ** 2).sum(axis=1)
+    return (1 + int((distances >= added).sum())) / (1 + SAMPLES)
+
+
+def _end(region: Region, sample: Vector, low: Vector, high: Vector) -> Vector:
+    """The place within the bounds that is nearest to a sample."""
+    gradient = np.concatenate([-sample, np.zeros(region.unseen.shape[1])])
+    programme = replace(region.programme(gradient), low=low, high=high)
+    found = solve_scaled(programme, enough=1.0)
+    # Without an answer the sample counts as one that the bounds do not move: p comes out low.
+    return gradient * -1.0 if found.x is None else found.x

@@ -27,8 +27,9 @@ def is_unbounded(programme: SmallProgramme) -> bool:
     parts.append(np.eye(count))
     lows.append(-np.ones(count))
     highs.append(np.ones(count))
+    rows = np.vstack(parts)
     cone = SmallProgramme(
-        None, programme.gradient, np.vstack(parts), np.concatenate(lows), np.concatenate(highs)
+        None, programme.gradient, rows, np.concatenate(lows), np.concatenate(highs), np.abs(rows)
     )
     flag, x, _ = ask(cone, {})
     scale = float(np.abs(programme.gradient).max(initial=0.0))

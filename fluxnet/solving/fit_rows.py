@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
+from dataclasses import dataclass, replace
 
 import numpy as np
+from numpy.typing import NDArray
 
-from fluxnet.network.model import Direction, Quantity, QuantityKind, Role
+from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role, Species
 from fluxnet.rates.kinds import RateKind
 from fluxnet.solving.applying import is_same
 from fluxnet.solving.build import Built
@@ -14,57 +15,78 @@ from fluxnet.solving.classify import Structure
 from fluxnet.solving.flux_fit import FittedRow
 from fluxnet.solving.forms import exact_numbers, exact_row, exact_species, form_of
 from fluxnet.solving.functionals import Placed, Ratios
-from fluxnet.solving.intervals import Intervals, find_intervals
+from fluxnet.solving.intervals import Intervals
 from fluxnet.solving.problem import RowKind
-from fluxnet.solving.region import Region
-from fluxnet.solving.spread import Spread
-from fluxnet.solving.task import Task
 from fluxnet.solving.weighing import Weighed
 
-__all__ = ["fitted_rows", "unmeasured_rates"]
+__all__ = [
+    "MeasuredPlaces", "UnmeasuredRates", "calculated_rates", "fitted_rows", "measured_places",
+    "unmeasured_rates",
+]
+
+Vector = NDArray[np.float64]
 
 _MEASURED = (RowKind.MEASUREMENT, RowKind.MEASURED_LIMIT)
 
 
-def fitted_rows(
-    weighed: Weighed, structure: Structure, region: Region, spread: Spread
-) -> tuple[FittedRow, ...]:
-    """Every measured row, exact ones too, in the order of the problem."""
-    built, task = weighed.built, weighed.task
-    rows = built.problem.rows
-    places = [i for i, row in enumerate(rows) if row.kind in _MEASURED]
-    plain = [i for i in places if i not in weighed.ratios]
-    quotients = [i for i in places if i in weighed.ratios]
-    told: dict[int, tuple[Intervals, int]] = {}
-    ranges = find_intervals(
-        task, region, Placed(np.array(plain, dtype=np.intp)), np.ones(len(plain), dtype=bool)
+@dataclass(frozen=True, slots=True)
+class MeasuredPlaces:
+    """The places of measured rows among the task's: plain values, then quotients."""
+
+    plain: tuple[int, ...]
+    ratios: tuple[tuple[int, int, int], ...]
+
+    @property
+    def functionals(self) -> tuple[Placed, Ratios]:
+        """Their values, plain ones first."""
+        pairs = np.array([pair[1:] for pair in self.ratios], dtype=np.intp).reshape(-1, 2)
+        return Placed(np.array(self.plain, dtype=np.intp)), Ratios(pairs[:, 0], pairs[:, 1])
+
+
+def measured_places(weighed: Weighed) -> MeasuredPlaces:
+    """Where the measured rows stand, exact ones too."""
+    places = [i for i, r in enumerate(weighed.built.problem.rows) if r.kind in _MEASURED]
+    return MeasuredPlaces(
+        tuple(i for i in places if i not in weighed.ratios),
+        tuple((i, *weighed.ratios[i]) for i in places if i in weighed.ratios),
     )
-    told |= {place: (ranges, k) for k, place in enumerate(plain)}
-    if quotients:
-        pairs = np.array([weighed.ratios[i] for i in quotients], dtype=np.intp)
-        ranges = find_intervals(task, region, Ratios(pairs[:, 0], pairs[:, 1]))
-        told |= {place: (ranges, k) for k, place in enumerate(quotients)}
+
+
+def fitted_rows(
+    weighed: Weighed, structure: Structure, places: MeasuredPlaces, ranges: Intervals,
+    adjustments: Vector,
+) -> tuple[FittedRow, ...]:
+    """Every measured row, in the order of the problem.
+
+    Parameters
+    ----------
+    ranges
+        Those of ``places``, plain values first.
+    adjustments
+        The sd of measured less fitted, one a soft row, in the unit of the row.
+    """
+    rows = weighed.built.problem.rows
+    order = [*places.plain, *(place for place, _, _ in places.ratios)]
     sharp = [e.place for e in structure.exact.equalities if e.is_measured]
     tested = dict(zip((*structure.exact.soft, *sharp), structure.balanceable, strict=True))
-    adjusted = dict(zip(structure.exact.soft, spread.adjustment_sd.tolist(), strict=True))
+    adjusted = dict(zip(structure.exact.soft, adjustments.tolist(), strict=True))
     found: list[FittedRow] = []
-    for place in places:
+    for k, place in sorted(enumerate(order), key=lambda pair: pair[1]):
         row = rows[place]
         if row.quantity is None or row.value is None or row.sd is None:
             continue
-        ranges, k = told[place]
-        measured, sd, scale = row.value, row.sd, 1.0
+        measured, sd = row.value, row.sd
         if row.ratio is not None:
-            measured, scale = row.ratio, row.denominator or 1.0
-            sd = row.sd / scale
-        value = float(ranges.values[k])
-        adjustment = adjusted.get(place, 0.0) / scale
+            measured, sd = row.ratio, row.sd / (row.denominator or 1.0)
+        sure = adjusted.get(place, 0.0)
+        # As the balances alone adjust it: a bound's push is no error of the measurement.
+        gap = row.value - float(weighed.best.values[place])
         found.append(
             FittedRow(
                 quantity=row.quantity,
                 name=row.name,
                 kind=RateKind.BALANCEABLE if tested[place] else RateKind.NOT_BALANCEABLE,
-                value=value,
+                value=float(ranges.values[k]) + 0.0,
                 value_sd=_known(ranges.sd[k]),
                 low=float(ranges.low[k]),
                 high=float(ranges.high[k]),
@@ -72,7 +94,7 @@ def fitted_rows(
                 best_high=float(ranges.best_high[k]),
                 measured=measured,
                 sd=sd,
-                z=(measured - value) / adjustment if adjustment > 0 and tested[place] else None,
+                z=gap / sure if sure > 0 and tested[place] else None,
                 of_model=row.kind is RowKind.MEASURED_LIMIT,
                 span=row.span,
             )
@@ -80,13 +102,19 @@ def fitted_rows(
     return tuple(found)
 
 
-def unmeasured_rates(
-    built: Built, task: Task, structure: Structure, region: Region, mu_place: int | None
-) -> tuple[FittedRow, ...]:
-    """Every boundary rate that was not measured, and mu, in the order of declaration.
+@dataclass(frozen=True, slots=True)
+class UnmeasuredRates:
+    """Boundary rates that nothing measures, and mu: their places, and whether each is fixed."""
 
-    The rate of an exchange species is told in the direction that it takes.
-    """
+    quantities: tuple[Quantity, ...]
+    places: NDArray[np.intp]
+    fixed: NDArray[np.bool_]
+
+
+def unmeasured_rates(
+    built: Built, structure: Structure, mu_place: int | None
+) -> UnmeasuredRates:
+    """Every boundary rate that was not measured, and mu, in the order of declaration."""
     network, rows = built.network, built.problem.rows
     known = [r.quantity for r in rows if r.kind in _MEASURED and r.quantity is not None]
     asked: list[tuple[Quantity, int]] = [
@@ -101,24 +129,32 @@ def unmeasured_rates(
         for quantity, place in asked
         if not any(is_same(quantity, other, network) for other in known)
     ]
-    if not asked:
-        return ()
     numbers = exact_numbers(built)
     species = exact_species(built.stoichiometry, numbers)
-    fixed = np.array(
-        [
-            structure.is_determined(exact_row(built, form_of(built, q), species, numbers))
-            for q, _ in asked
-        ]
+    fixed = [
+        structure.is_determined(exact_row(built, form_of(built, q), species, numbers))
+        for q, _ in asked
+    ]
+    return UnmeasuredRates(
+        tuple(q for q, _ in asked),
+        np.array([place for _, place in asked], dtype=np.intp),
+        np.array(fixed, dtype=bool),
     )
-    places = np.array([place for _, place in asked], dtype=np.intp)
-    ranges = find_intervals(task, region, Placed(places), fixed)
+
+
+def calculated_rates(
+    network: Network, rates: UnmeasuredRates, ranges: Intervals
+) -> tuple[FittedRow, ...]:
+    """The unmeasured rates with their values.
+
+    The rate of an exchange species is told in the direction that it takes.
+    """
     return tuple(
         _turned(
             FittedRow(
                 quantity=quantity,
                 name=str(quantity),
-                kind=RateKind.CALCULABLE if fixed[k] else RateKind.NOT_CALCULABLE,
+                kind=RateKind.CALCULABLE if rates.fixed[k] else RateKind.NOT_CALCULABLE,
                 value=float(ranges.values[k]) + 0.0,
                 value_sd=_known(ranges.sd[k]),
                 low=float(ranges.low[k]),
@@ -128,14 +164,13 @@ def unmeasured_rates(
             ),
             network.find_species(quantity.name),
         )
-        for k, (quantity, _) in enumerate(asked)
+        for k, quantity in enumerate(rates.quantities)
     )
 
 
-def _turned(row: FittedRow, species: object) -> FittedRow:
+def _turned(row: FittedRow, species: Species | None) -> FittedRow:
     """An exchange species' rate in the direction in which it is positive."""
-    role = getattr(species, "role", None)
-    if role is not Role.EXCHANGE or row.value >= 0:
+    if species is None or species.role is not Role.EXCHANGE or row.value >= 0:
         return row
     quantity = replace(row.quantity, direction=Direction.IN)
     return replace(

@@ -9,7 +9,7 @@ from numpy.typing import NDArray
 
 from fluxnet.solving.task import Point
 
-__all__ = ["Drifting", "Functionals", "Placed", "Ratios"]
+__all__ = ["Drifting", "Functionals", "Joined", "Placed", "Ratios"]
 
 Vector = NDArray[np.float64]
 Places = NDArray[np.intp]
@@ -28,6 +28,11 @@ class Placed:
     def slopes(self, point: Point) -> Vector:
         """Their derivatives by the point's coordinates."""
         return point.slopes[self.places]
+
+    @property
+    def curved(self) -> NDArray[np.bool_]:
+        """Whether each bends where no uncertain number moves."""
+        return np.zeros(len(self.places), dtype=bool)
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,6 +54,11 @@ class Ratios:
         top = point.slopes[self.over] - values[:, None] * point.slopes[self.below]
         slopes: Vector = top / np.where(below == 0, np.nan, below)[:, None]
         return slopes
+
+    @property
+    def curved(self) -> NDArray[np.bool_]:
+        """Whether each bends where no uncertain number moves."""
+        return np.ones(len(self.over), dtype=bool)
 
 
 @dataclass(frozen=True, slots=True)
@@ -80,5 +90,30 @@ class Drifting:
             slopes[:, len(point.z) :] += (self.drift @ point.fluxes).T
         return slopes
 
+    @property
+    def curved(self) -> NDArray[np.bool_]:
+        """Whether each bends where no uncertain number moves."""
+        return np.zeros(len(self.rows), dtype=bool)
 
-Functionals = Placed | Ratios | Drifting
+
+@dataclass(frozen=True, slots=True)
+class Joined:
+    """Several functionals, one behind the other."""
+
+    parts: tuple[Placed | Ratios | Drifting, ...]
+
+    def values(self, point: Point) -> Vector:
+        """One value a functional."""
+        return np.concatenate([part.values(point) for part in self.parts])
+
+    def slopes(self, point: Point) -> Vector:
+        """Their derivatives by the point's coordinates."""
+        return np.vstack([part.slopes(point) for part in self.parts])
+
+    @property
+    def curved(self) -> NDArray[np.bool_]:
+        """Whether each bends where no uncertain number moves."""
+        return np.concatenate([part.curved for part in self.parts])
+
+
+Functionals = Placed | Ratios | Drifting | Joined

@@ -13,7 +13,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from fluxnet.solving.functionals import Functionals, Ratios
+from fluxnet.solving.functionals import Functionals
 from fluxnet.solving.reach import Reach, reach_far, reach_flat
 from fluxnet.solving.region import Region, region_at
 from fluxnet.solving.statistics import chi_squared_quantile
@@ -41,6 +41,14 @@ class Intervals:
     best_low: Vector
     best_high: Vector
 
+    def part(self, start: int, stop: int) -> Intervals:
+        """The entries from ``start`` up to ``stop``."""
+        cut = slice(start, stop)
+        return Intervals(
+            self.values[cut], self.sd[cut], self.low[cut], self.high[cut],
+            self.best_low[cut], self.best_high[cut],
+        )
+
 
 @dataclass(frozen=True, slots=True)
 class _Search:
@@ -52,6 +60,9 @@ class _Search:
     level: float
     gradients: Vector
     values: Vector
+    hidden: NDArray[np.bool_]
+    curved: NDArray[np.bool_]
+    ends: Vector
 
 
 def find_intervals(
@@ -71,7 +82,6 @@ def find_intervals(
         the slopes.
     """
     point = region.point
-    level = point.h + chi_squared_quantile(0.95, 1)
     values = functionals.values(point)
     gradients = region.gradients(functionals.slopes(point))
     seen = region.dimension
@@ -81,133 +91,134 @@ def find_intervals(
         hidden = ~determined
     gradients[~hidden, seen:] = 0.0
     sd = np.where(hidden, np.nan, np.linalg.norm(gradients[:, :seen], axis=1))
-    search = _Search(task, region, functionals, level, gradients, values)
-    ends = np.tile(values[:, None], (1, 4))
-    constant = sizes <= 1e-12 * np.maximum(np.abs(values), 1e-3 * _scale(point))
+    scale = float(np.abs(point.fluxes).max(initial=0.0)) or 1.0
+    constant = sizes <= 1e-12 * np.maximum(np.abs(values), 1e-3 * scale)
     sd[constant] = 0.0
-    for members in _alike(gradients, ~constant & np.isfinite(values)):
-        _fill(search, members, ends, hidden)
+    search = _Search(
+        task=task,
+        region=region,
+        functionals=functionals,
+        level=point.h + chi_squared_quantile(0.95, 1),
+        gradients=gradients,
+        values=values,
+        hidden=hidden,
+        curved=functionals.curved | (task.numbers > 0),
+        ends=np.tile(values[:, None], (1, 4)),
+    )
+    for members in _alike(search, ~constant & np.isfinite(values)):
+        _fill(search, members)
+    ends = search.ends
     return Intervals(values, sd, ends[:, 0], ends[:, 1], ends[:, 2], ends[:, 3])
 
 
-def _scale(point: Point) -> float:
-    return float(np.abs(point.fluxes).max(initial=0.0)) or 1.0
+def _alike(search: _Search, wanted: NDArray[np.bool_]) -> list[list[tuple[int, float]]]:
+    """Groups of functionals with the same gradient up to a factor, with the factors.
 
-
-def _alike(gradients: Vector, wanted: NDArray[np.bool_]) -> list[list[tuple[int, float]]]:
-    """Groups of functionals with the same gradient up to a factor, with the factors."""
+    Those that bend by themselves are in groups of one.
+    """
     groups: dict[bytes, list[tuple[int, float]]] = {}
+    bent = search.functionals.curved
     for i in np.flatnonzero(wanted).tolist():
-        lead = gradients[i, int(np.argmax(np.abs(gradients[i]) > 0.3 * np.abs(gradients[i]).max()))]
-        key = (np.round(gradients[i] / lead, 8) + 0.0).tobytes()
+        gradient = search.gradients[i]
+        sizes = np.abs(gradient)
+        lead = gradient[int(np.argmax(sizes > 0.3 * sizes.max()))]
+        key = (np.round(gradient / lead, 8) + 0.0).tobytes()
+        if bent[i]:
+            key += f"{i}".encode()
         groups.setdefault(key, []).append((i, float(lead)))
     return list(groups.values())
 
 
-def _fill(
-    search: _Search, members: list[tuple[int, float]], ends: Vector, hidden: NDArray[np.bool_]
-) -> None:
+def _fill(search: _Search, members: list[tuple[int, float]]) -> None:
     """The ends of the intervals of functionals that go up and down together."""
     first, lead = members[0]
     origin = np.zeros(search.gradients.shape[1])
     for sign in (-1.0, 1.0):
         best = origin
-        if hidden[first]:
+        if search.hidden[first]:
             flat = _flat_end(search, first, sign)
-            _note(search, members, ends, 2, sign, flat.value)
+            _note(search, members, 2, sign, flat.value)
             if flat.place is None:
-                _note(search, members, ends, 0, sign, np.inf)
+                _note(search, members, 0, sign, np.inf)
                 continue
             best = flat.place
         reach, there = _end(search, first, sign, best)
-        _note(search, members, ends, 0, sign, reach)
-        if there is None or not _is_curved(search):
+        _note(search, members, 0, sign, reach)
+        if there is None or len(members) == 1:
             continue
-        values, slopes = search.functionals.values(there), search.functionals.slopes(there)
+        values = search.functionals.values(there) - search.values
+        slopes = search.functionals.slopes(there)
         for i, other in members[1:]:
             factor = other / lead
-            moved = factor * (values[first] - search.values[first])
-            parallel = np.allclose(
-                slopes[i], factor * slopes[first], rtol=0,
-                atol=1e-6 * float(np.abs(slopes[i]).max(initial=0.0)),
-            )
-            if not parallel or abs(values[i] - search.values[i] - moved) > 1e-6 * abs(moved):
+            size = float(np.abs(slopes[i]).max(initial=0.0))
+            differs = np.abs(slopes[i] - factor * slopes[first]).max() > 1e-6 * size
+            if differs or abs(values[i] - factor * values[first]) > 1e-6 * abs(values[i]):
                 turn = sign if factor > 0 else -sign
                 own, _ = _end(search, i, turn, best)
-                ends[i, 1 if turn > 0 else 0] = search.values[i] + turn * own
+                _note(search, [(i, 1.0)], 0, turn, own)
 
 
 def _note(
-    search: _Search,
-    members: list[tuple[int, float]],
-    ends: Vector,
-    column: int,
-    sign: float,
-    reach: float,
+    search: _Search, members: list[tuple[int, float]], column: int, sign: float, reach: float
 ) -> None:
     """Write down an end for all functionals of a group."""
     lead = members[0][1]
     for i, other in members:
         factor = other / lead
         turn = sign if factor > 0 else -sign
-        ends[i, column + (1 if turn > 0 else 0)] = search.values[i] + turn * abs(factor) * reach
-
-
-def _is_curved(search: _Search) -> bool:
-    return search.task.numbers > 0 or isinstance(search.functionals, Ratios)
+        place = column + (1 if turn > 0 else 0)
+        search.ends[i, place] = search.values[i] + turn * abs(factor) * reach
 
 
 def _flat_end(search: _Search, i: int, sign: float) -> Reach:
     """How far a functional goes at the best fit."""
+    region, point = search.region, search.region.point
     origin = np.zeros(search.gradients.shape[1])
-    flat = reach_flat(search.region, sign * search.gradients[i], origin)
-    if flat.place is None or not isinstance(search.functionals, Ratios):
+    flat = reach_flat(region, sign * search.gradients[i], origin)
+    if flat.place is None or not search.functionals.curved[i]:
         return flat
-    point = search.region.point
-    step = search.region.step(flat.place)[: len(point.z)]
+    step = region.step(flat.place)[: len(point.z)]
     there = point_at(search.task, point.chart, point.z + step, point.numbers)
     value = float(search.functionals.values(there)[i])
-    return Reach(sign * (value - search.values[i]), flat.place, flat.pressed)
+    return Reach(sign * (value - search.values[i]), flat.place)
 
 
-def _end(
-    search: _Search, i: int, sign: float, start: Vector
-) -> tuple[float, Point | None]:
+def _end(search: _Search, i: int, sign: float, start: Vector) -> tuple[float, Point | None]:
     """How far a functional goes at 95 %, and the point where it ends."""
     task, region = search.task, search.region
-    radius = np.sqrt(max(search.level - region.floor, 1e-12))
-    reach = reach_far(region, sign * search.gradients[i], float(radius), start)
-    if reach.place is None or not _is_curved(search):
+    radius = float(np.sqrt(max(search.level - region.floor, 1e-12)))
+    reach = reach_far(region, sign * search.gradients[i], radius, start)
+    if reach.place is None or not search.curved[i]:
         return reach.value, None
     origin = region.point
     best: tuple[float, Point] = (0.0, origin)
-    centre, step = origin, region.step(reach.place)
+    centre, step, weight = origin, region.step(reach.place), reach.weight
+    room = search.level - origin.h
     factor = 1.0
     for _ in range(_STEPS):
         point = _moved(task, centre, factor * step)
-        if point is None or point.h > search.level + 0.5 * (search.level - origin.h) / factor:
+        if point is None or point.h > search.level + room:
+            # The slopes mislead so far away: half the step.
             factor /= 2
             if factor < 1e-4:
                 break
             continue
         value = sign * float(search.functionals.values(point)[i] - search.values[i])
         here = region_at(task, point)
-        room = search.level - here.floor
-        if not np.isfinite(value) or room <= 0 or here.broken:
+        left = search.level - here.floor
+        if not np.isfinite(value) or left <= 0 or here.broken:
             factor /= 2
             continue
-        slope = sign * search.functionals.slopes(point)[i]
-        gradient = here.gradients(slope[None, :])[0]
-        onward = reach_far(here, gradient, float(np.sqrt(room)), np.zeros(len(gradient)))
+        gradient = here.gradients(sign * search.functionals.slopes(point)[i][None, :])[0]
+        onward = reach_far(here, gradient, float(np.sqrt(left)), np.zeros(len(gradient)), weight)
         if onward.place is None:
             return np.inf, None
-        if point.h <= search.level * (1 + 1e-9) + 1e-9 and value > best[0]:
+        if value > best[0] and point.h <= search.level + _NEAR * room:
             best = (value, point)
-        width = max(abs(value), abs(onward.value), 1e-12)
-        if abs(onward.value) <= _NEAR * width:
+        if abs(onward.value) <= _NEAR * max(abs(value), abs(onward.value), 1e-12):
             # What is left is added by the slope: the error is of the order of its square.
             return value + onward.value, point
-        centre, step, factor = point, here.step(onward.place), 1.0
+        centre, step, weight, factor = point, here.step(onward.place), onward.weight, 1.0
     return best
 
 
@@ -219,4 +230,3 @@ def _moved(task: Task, point: Point, step: Vector) -> Point | None:
         return point_at(task, point.chart, point.z + step[:free], numbers)
     except (ZeroDivisionError, np.linalg.LinAlgError):
         return None
-

@@ -16,19 +16,26 @@ from fluxnet.network.model import Network, Quantity, QuantityKind
 from fluxnet.rates.measured import Run
 from fluxnet.solving.bound_test import chance_of_bounds
 from fluxnet.solving.build import Built, build_problem, rebuild
-from fluxnet.solving.classify import Structure, classify, find_relations
+from fluxnet.solving.classify import Relation, Structure, classify, find_relations
 from fluxnet.solving.descent import fit_bounded
 from fluxnet.solving.equalities import find_equalities
-from fluxnet.solving.fit_rows import fitted_rows, unmeasured_rates
+from fluxnet.solving.fit_rows import (
+    MeasuredPlaces,
+    UnmeasuredRates,
+    calculated_rates,
+    fitted_rows,
+    measured_places,
+    unmeasured_rates,
+)
 from fluxnet.solving.flux_fit import FitStatus, FluxFit, FluxKind, FluxRelation
 from fluxnet.solving.forms import form_of
-from fluxnet.solving.functionals import Drifting
+from fluxnet.solving.functionals import Drifting, Joined, Placed
 from fluxnet.solving.intervals import Intervals, find_intervals
 from fluxnet.solving.pulls import pressing_bounds
 from fluxnet.solving.quantities import has_mu
 from fluxnet.solving.region import Region
 from fluxnet.solving.representative import take_least_flux
-from fluxnet.solving.spread import find_spread
+from fluxnet.solving.spread import find_adjustments, find_spread, parameter_moves
 from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tail
 from fluxnet.solving.task import Task
 from fluxnet.solving.weighing import Weighed, fit_weighed
@@ -142,25 +149,30 @@ def _told(
     task, best, point = weighed.task, weighed.best, region.point
     numbers = dict(zip(task.rows.names, point.numbers.tolist(), strict=True))
     built = rebuild(weighed.built, numbers)
-    count = task.rows.count
-    flux_ranges = _flux_ranges(task, region, structure)
-    spread = find_spread(weighed.built, task, region, structure.determined)
     dof = structure.dof
-    added = max(0.0, point.h - best.h)
-    presses = added > _PRESSES * (1 + best.h)
-    p_value = chi_squared_tail(best.h, dof) if dof else None
     limit = chi_squared_quantile(0.95, dof) if dof else None
     closes = None if limit is None else best.h <= limit
+    added = max(0.0, point.h - best.h)
+    presses = added > _PRESSES * (1 + best.h)
+    places = measured_places(weighed)
+    rates = unmeasured_rates(built, structure, mu_place)
+    relations = find_relations(structure)
+    fluxes, measured, unmeasured, sums = _all_ranges(
+        task, region, structure, places, rates, relations
+    )
+    spread = find_spread(weighed.built, task, region, structure.determined)
+    adjustments = find_adjustments(task, best)
+    names = built.problem.columns
     return FluxFit(
         status=FitStatus.INCONSISTENT if closes is False else FitStatus.SOLVED,
         built=built,
-        reactions=built.problem.columns,
+        reactions=names,
         fluxes=_read_only(_rounded(point.fluxes)),
-        flux_sd=_read_only(flux_ranges.sd[:count]),
-        low=_read_only(flux_ranges.low[:count]),
-        high=_read_only(flux_ranges.high[:count]),
-        best_low=_read_only(flux_ranges.best_low[:count]),
-        best_high=_read_only(flux_ranges.best_high[:count]),
+        flux_sd=_read_only(fluxes.sd),
+        low=_read_only(fluxes.low),
+        high=_read_only(fluxes.high),
+        best_low=_read_only(fluxes.best_low),
+        best_high=_read_only(fluxes.best_high),
         kinds=tuple(
             FluxKind.DETERMINED if fixed else FluxKind.UNDETERMINED
             for fixed in structure.determined
@@ -168,16 +180,24 @@ def _told(
         is_unique=not structure.unseen.dimension,
         h=best.h if dof else None,
         dof=dof,
-        p_value=p_value,
+        p_value=chi_squared_tail(best.h, dof) if dof else None,
         limit=limit,
         closes=closes,
         bound_h=added if presses else 0.0,
         bound_p=chance_of_bounds(region, added) if presses else None,
         bounds=pressing_bounds(built, task, region, structure) if presses else (),
-        moved=spread.moves,
-        rows=fitted_rows(weighed, structure, region, spread),
-        rates=unmeasured_rates(built, task, structure, region, mu_place),
-        relations=_relations(built.problem.columns, task, structure, region),
+        moved=parameter_moves(task, best, point, adjustments, spread.covariance),
+        rows=fitted_rows(
+            weighed, structure, places, measured, adjustments[: len(task.soft)]
+        ),
+        rates=calculated_rates(built.network, rates, unmeasured),
+        relations=tuple(
+            FluxRelation(
+                tuple((names[j], float(factor)) for j, factor in relation.terms),
+                float(sums.values[k]), float(sums.sd[k]), float(sums.low[k]), float(sums.high[k]),
+            )
+            for k, relation in enumerate(relations)
+        ),
         covariance=_read_only(spread.covariance),
         free=_read_only(spread.free),
         sources=spread.sources,
@@ -188,31 +208,38 @@ def _told(
     )
 
 
-def _flux_ranges(task: Task, region: Region, structure: Structure) -> Intervals:
-    drift = np.zeros((task.numbers, task.rows.count, task.rows.count))
-    functionals = Drifting(np.eye(task.rows.count), drift, region.point.numbers)
-    return find_intervals(task, region, functionals, np.array(structure.determined))
-
-
-def _relations(
-    names: tuple[str, ...], task: Task, structure: Structure, region: Region
-) -> tuple[FluxRelation, ...]:
-    found = find_relations(structure)
-    if not found:
-        return ()
-    rows = np.zeros((len(found), task.rows.count))
-    for k, relation in enumerate(found):
+def _all_ranges(
+    task: Task,
+    region: Region,
+    structure: Structure,
+    places: MeasuredPlaces,
+    rates: UnmeasuredRates,
+    relations: tuple[Relation, ...],
+) -> tuple[Intervals, Intervals, Intervals, Intervals]:
+    """The ranges of fluxes, measured rows, other rates and relations: what is alike once."""
+    count = task.rows.count
+    rows = np.vstack([np.eye(count), np.zeros((len(relations), count))])
+    for k, relation in enumerate(relations):
         for j, factor in relation.terms:
-            rows[k, j] = float(factor)
+            rows[count + k, j] = float(factor)
     drift = np.zeros((task.numbers, *rows.shape))
-    functionals = Drifting(rows, drift, region.point.numbers)
-    told = find_intervals(task, region, functionals, np.ones(len(found), dtype=bool))
-    return tuple(
-        FluxRelation(
-            tuple((names[j], float(factor)) for j, factor in relation.terms),
-            float(told.values[k]), float(told.sd[k]), float(told.low[k]), float(told.high[k]),
-        )
-        for k, relation in enumerate(found)
+    plain, ratios = places.functionals
+    parts = (
+        Drifting(rows, drift, region.point.numbers), plain, ratios, Placed(rates.places)
+    )
+    determined = np.concatenate(
+        [
+            np.array(structure.determined, dtype=bool),
+            np.ones(len(relations) + len(places.plain) + len(places.ratios), dtype=bool),
+            rates.fixed,
+        ]
+    )
+    found = find_intervals(task, region, Joined(parts), determined)
+    measured = count + len(relations)
+    others = measured + len(places.plain) + len(places.ratios)
+    return (
+        found.part(0, count), found.part(measured, others),
+        found.part(others, len(found.values)), found.part(count, measured),
     )
 
 

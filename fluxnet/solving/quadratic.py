@@ -93,7 +93,9 @@ def solve_quadratic(
     norms = np.where(empty, 1.0, np.sqrt(np.einsum("ij,ij->i", inner, inner)))
     inner /= norms[:, None]
     bent = None if hessian is None else hessian * np.outer(units, units)
-    programme = SmallProgramme(bent, gradient * units, inner, low / norms, high / norms)
+    programme = SmallProgramme(
+        bent, gradient * units, inner, low / norms, high / norms, np.abs(inner)
+    )
     found = solve_scaled(programme)
     if found.x is None:
         return replace(found, prices=found.prices / norms)
@@ -108,14 +110,13 @@ def solve_scaled(programme: SmallProgramme, enough: float = 1e-2) -> QuadraticSo
     enough
         An answer is polished unless its residual is this part of what is accepted.
     """
-    outcome, x, prices = _solve(programme, enough)
+    outcome, x, prices, residual = _solve(programme, enough)
     if x is None:
         return QuadraticSolution(outcome, None, np.nan, prices, np.nan)
-    residual = programme.residual(x, prices) * FEASIBLE
     bent = programme.hessian
     half = 0.0 if bent is None else 0.5 * float(x @ bent @ x)
     value = half + float(programme.gradient @ x)
-    return QuadraticSolution(Outcome.OPTIMAL, x, value, prices, residual)
+    return QuadraticSolution(Outcome.OPTIMAL, x, value, prices, residual * FEASIBLE)
 
 
 def _units(rows: Vector) -> Vector:
@@ -149,33 +150,34 @@ def _units(rows: Vector) -> Vector:
 
 def _solve(
     programme: SmallProgramme, enough: float
-) -> tuple[Outcome, Vector | None, Vector]:
+) -> tuple[Outcome, Vector | None, Vector, float]:
     """Solve, check, and try again until a way passes the check."""
     none = np.zeros(len(programme.low))
-    verdict = Outcome.FAILED
     ways: tuple[dict[str, float], ...] = ({}, {"eps_prox": 1e-2, "primal_tol": 1e-9})
     for settings in ways:
         flag, x, prices = ask(programme, settings)
         if flag == -3 and is_unbounded(programme):
-            return Outcome.UNBOUNDED, None, none
+            return Outcome.UNBOUNDED, None, none, np.nan
         if flag <= 0 or not np.isfinite(x).all():
             continue
-        if programme.residual(x, prices) <= enough:
-            return Outcome.OPTIMAL, x, prices
+        residual = programme.residual(x, prices)
+        if residual <= enough:
+            return Outcome.OPTIMAL, x, prices, residual
         better, sharper = polish(programme, x, prices)
-        if programme.residual(better, sharper) <= 1.0:
-            return Outcome.OPTIMAL, better, sharper
-        if programme.residual(x, prices) <= 1.0:
-            return Outcome.OPTIMAL, x, prices
+        after = programme.residual(better, sharper)
+        if after <= 1.0:
+            return Outcome.OPTIMAL, better, sharper, after
+        if residual <= 1.0:
+            return Outcome.OPTIMAL, x, prices, residual
     point = nearest_to(programme, np.zeros(len(programme.gradient)), 1.0)
     if point[0] is None:
-        return Outcome.INFEASIBLE, None, point[1]
+        return Outcome.INFEASIBLE, None, point[1], np.nan
     if is_unbounded(programme):
-        return Outcome.UNBOUNDED, None, none
+        return Outcome.UNBOUNDED, None, none, np.nan
     slow = approach(programme)
     if slow is not None:
-        return Outcome.OPTIMAL, *slow
-    return verdict, None, none
+        return Outcome.OPTIMAL, *slow, programme.residual(*slow)
+    return Outcome.FAILED, None, none, np.nan
 
 
 def _refuse(

@@ -13,7 +13,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from fluxnet.solving.quadratic import QuadraticSolution, solve_quadratic, solve_scaled
+from fluxnet.solving.quadratic import QuadraticSolution, solve_scaled
 from fluxnet.solving.region import Region
 from fluxnet.solving.small_programme import SmallProgramme
 
@@ -21,7 +21,8 @@ __all__ = ["Reach", "reach_far", "reach_flat"]
 
 Vector = NDArray[np.float64]
 
-_CLOSE = 1e-7
+_CLOSE = 1e-5
+"""How near the radius is near enough: what is left is added, right to first order."""
 _TRIES = 60
 
 
@@ -30,15 +31,18 @@ class Reach:
     """The largest value of a functional (less its value at the point), and where it is taken.
 
     ``place`` is None where nothing bounds the functional, or no solver could tell: then
-    ``value`` is infinite, which claims nothing. ``pressed``: whether any bound holds it back.
+    ``value`` is infinite, which claims nothing. ``weight`` is the pull that led there,
+    0 where none had to be found.
     """
 
     value: float
     place: Vector | None
-    pressed: bool
+    weight: float = 0.0
 
 
-def reach_far(region: Region, gradient: Vector, radius: float, start: Vector) -> Reach:
+def reach_far(
+    region: Region, gradient: Vector, radius: float, start: Vector, guess: float = 0.0
+) -> Reach:
     """Maximise c x while the u of x stays within a radius of the centre, bounds kept.
 
     Parameters
@@ -49,6 +53,8 @@ def reach_far(region: Region, gradient: Vector, radius: float, start: Vector) ->
         The largest distance of u from the centre, above 0.
     start
         A place within the bounds and the radius.
+    guess
+        The weight that led to the end of a similar search, or 0.
 
     Returns
     -------
@@ -57,19 +63,19 @@ def reach_far(region: Region, gradient: Vector, radius: float, start: Vector) ->
     seen = region.dimension
     size = float(np.linalg.norm(gradient))
     if size == 0:
-        return Reach(0.0, start, False)
+        return Reach(0.0, start)
     straight = _straight(region, gradient, radius, start)
     if straight is not None:
-        return Reach(float(gradient @ straight), straight, False)
+        return Reach(float(gradient @ straight), straight)
     unit = gradient / size
     along = float(np.linalg.norm(unit[:seen]))
-    weight = radius / along if along > 1e-9 else radius
+    weight = guess or (radius / along if along > 1e-9 else radius)
     low, high = 0.0, np.inf
     best = start
     for _ in range(_TRIES):
-        found = _programme(region, weight * unit)
+        found = _pull(region, weight * unit)
         if found.x is None:
-            return Reach(np.inf, None, False)
+            return Reach(np.inf, None)
         away = found.x[:seen] - region.centre
         distance = float(away @ away)
         left = radius**2 - distance
@@ -80,15 +86,15 @@ def reach_far(region: Region, gradient: Vector, radius: float, start: Vector) ->
         if abs(left) <= _CLOSE * radius**2:
             # The optimum's value falls short by left / (2 w), to first order exactly.
             gain = size * left / (2 * weight)
-            return Reach(float(gradient @ found.x) + gain, found.x, bool(found.active))
+            return Reach(float(gradient @ found.x) + gain, found.x, weight)
         following = _next_weight(region, found, unit, weight, radius)
         if following is None and low > 0 and np.isinf(high):
             # The place no longer moves with the weight: a corner of the bounds.
-            return Reach(float(gradient @ found.x), found.x, True)
+            return Reach(float(gradient @ found.x), found.x, weight)
         if following is None or not low < following < high:
             following = 4 * weight if np.isinf(high) else (low + high) / 2
         weight = following
-    return Reach(float(gradient @ best), best, True)
+    return Reach(float(gradient @ best), best, weight)
 
 
 def _straight(
@@ -108,14 +114,11 @@ def _straight(
     return place if inside.all() else None
 
 
-def _programme(region: Region, pull: Vector) -> QuadraticSolution:
-    seen, hidden = region.dimension, region.unseen.shape[1]
-    hessian = np.diag(np.concatenate([np.ones(seen), np.zeros(hidden)]))
+def _pull(region: Region, pull: Vector) -> QuadraticSolution:
+    """The place where a pull and the distance from the centre balance, bounds kept."""
     gradient = -pull
-    gradient[:seen] -= region.centre
-    bounds = region.bounds
-    programme = SmallProgramme(hessian, gradient, bounds.rows, bounds.low, bounds.high)
-    return solve_scaled(programme, enough=0.5)
+    gradient[: region.dimension] -= region.centre
+    return solve_scaled(region.programme(gradient), enough=0.5)
 
 
 def _next_weight(
@@ -125,12 +128,12 @@ def _next_weight(
     seen, count = region.dimension, len(unit)
     active = region.bounds.rows[list(found.active)]
     system = np.zeros((count + len(active), count + len(active)))
-    system[:seen, :seen] = np.eye(seen)
+    system[:count, :count] = region.hessian
     system[count:, :count] = active
     system[:count, count:] = active.T
     right = np.concatenate([unit, np.zeros(len(active))])
-    moved = np.linalg.lstsq(system, right, rcond=1e-11)[0]
-    if np.linalg.norm(system @ moved - right) > 1e-7:
+    moved = _solved(system, right)
+    if moved is None:
         return None
     slope = moved[:seen]
     if found.x is None or float(slope @ slope) < 1e-18:
@@ -145,6 +148,18 @@ def _next_weight(
     return weight + ahead if weight + ahead > 0 else None
 
 
+def _solved(system: Vector, right: Vector) -> Vector | None:
+    """The solution of equations that may be singular, or None where they have none."""
+    try:
+        moved = np.asarray(np.linalg.solve(system, right), dtype=np.float64)
+        if np.linalg.norm(system @ moved - right) < 1e-9:
+            return moved
+    except np.linalg.LinAlgError:
+        pass
+    moved = np.asarray(np.linalg.lstsq(system, right, rcond=1e-11)[0], dtype=np.float64)
+    return moved if np.linalg.norm(system @ moved - right) < 1e-7 else None
+
+
 def reach_flat(region: Region, gradient: Vector, place: Vector) -> Reach:
     """Maximise c x over the places with the same u, bounds kept: the range at h_min.
 
@@ -156,7 +171,7 @@ def reach_flat(region: Region, gradient: Vector, place: Vector) -> Reach:
     seen = region.dimension
     hidden = gradient[seen:]
     if np.abs(hidden).max(initial=0.0) <= 1e-11 * float(np.linalg.norm(gradient)):
-        return Reach(float(gradient @ place), place, False)
+        return Reach(float(gradient @ place), place)
     bounds = region.bounds
     shift = bounds.rows[:, :seen] @ place[:seen]
     rows = bounds.rows[:, seen:]
@@ -165,8 +180,11 @@ def reach_flat(region: Region, gradient: Vector, place: Vector) -> Reach:
     reach = rows @ place[seen:]
     # The place is inside up to rounding: a bound may not cut it off.
     low, high = np.minimum(low, reach), np.maximum(high, reach)
-    found = solve_quadratic(None, -hidden, rows, low, high)
+    norms = np.sqrt(np.einsum("ij,ij->i", rows, rows))
+    rows = rows / norms[:, None]
+    programme = SmallProgramme(None, -hidden, rows, low / norms, high / norms, np.abs(rows))
+    found = solve_scaled(programme)
     if found.x is None:
-        return Reach(np.inf, None, False)
+        return Reach(np.inf, None)
     there = np.concatenate([place[:seen], found.x])
-    return Reach(float(gradient @ there), there, bool(found.active))
+    return Reach(float(gradient @ there), there)

@@ -13,7 +13,8 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from fluxnet.solving.quadratic import Outcome, QuadraticSolution, solve_quadratic
+from fluxnet.solving.quadratic import Outcome, QuadraticSolution, solve_scaled
+from fluxnet.solving.small_programme import SmallProgramme
 from fluxnet.solving.task import Point, Task
 
 __all__ = ["Bounds", "Region", "nearest", "region_at"]
@@ -30,13 +31,15 @@ _CONSTANT = 1e-7
 class Bounds:
     """Rows over (u, t) with bounds; ``sources`` are their places in the task.
 
-    Places count the task's bounded rows first, then the ranges of its uncertain numbers.
+    Places count the task's bounded rows first, then the ranges of its uncertain numbers. Rows
+    have norm 1; ``sizes`` are their absolute values.
     """
 
     rows: Vector
     low: Vector
     high: Vector
     sources: NDArray[np.intp]
+    sizes: Vector
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,6 +48,7 @@ class Region:
 
     ``seen`` (coordinates x u) is P, ``unseen`` (coordinates x t) is N, ``centre`` the u of
     least h, ``floor`` that h. ``broken`` are the sources of bounds that no step can meet.
+    ``hessian`` is that of half the square of u, over (u, t).
     """
 
     point: Point
@@ -54,6 +58,7 @@ class Region:
     floor: float
     bounds: Bounds
     broken: tuple[int, ...]
+    hessian: Vector
 
     @property
     def dimension(self) -> int:
@@ -68,6 +73,13 @@ class Region:
     def gradients(self, slopes: Vector) -> Vector:
         """Slopes in the point's coordinates (functionals x coordinates) turned to (u, t)."""
         return np.hstack([slopes @ self.seen, slopes @ self.unseen])
+
+    def programme(self, gradient: Vector) -> SmallProgramme:
+        """Minimise half the square of u plus a linear form of (u, t), bounds kept."""
+        bounds = self.bounds
+        return SmallProgramme(
+            self.hessian, gradient, bounds.rows, bounds.low, bounds.high, bounds.sizes
+        )
 
 
 def region_at(task: Task, point: Point, *, moving: bool = True) -> Region:
@@ -92,7 +104,9 @@ def region_at(task: Task, point: Point, *, moving: bool = True) -> Region:
     centre = left[:, :rank].T @ point.residuals
     floor = max(0.0, point.h - float(centre @ centre))
     bounds, broken = _bounds(task, point, seen, unseen, width)
-    return Region(point, seen, unseen, centre, floor, bounds, broken)
+    hessian = np.zeros((width, width))
+    hessian[:rank, :rank] = np.eye(rank)
+    return Region(point, seen, unseen, centre, floor, bounds, broken, hessian)
 
 
 def _bounds(
@@ -120,7 +134,7 @@ def _bounds(
     norms = sizes[kept]
     rows = rows[kept] / norms[:, None]
     rows[np.abs(rows) < 1e-13] = 0.0
-    bounds = Bounds(rows, low[kept] / norms, high[kept] / norms, kept)
+    bounds = Bounds(rows, low[kept] / norms, high[kept] / norms, kept, np.abs(rows))
     return bounds, tuple(broken.tolist())
 
 
@@ -134,7 +148,4 @@ def nearest(region: Region, target: Vector | None = None) -> QuadraticSolution:
         return QuadraticSolution(Outcome.INFEASIBLE, None, np.nan, nothing, np.nan)
     centre = region.centre if target is None else target
     hidden = region.unseen.shape[1]
-    bounds = region.bounds
-    hessian = np.diag(np.concatenate([np.ones(len(centre)), np.zeros(hidden)]))
-    gradient = np.concatenate([-centre, np.zeros(hidden)])
-    return solve_quadratic(hessian, gradient, bounds.rows, bounds.low, bounds.high)
+    return solve_scaled(region.programme(np.concatenate([-centre, np.zeros(hidden)])))

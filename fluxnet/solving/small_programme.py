@@ -21,13 +21,17 @@ NO_BOUND = 1e30
 
 @dataclass(frozen=True, slots=True)
 class SmallProgramme:
-    """One programme, its rows of norm 1: minimise x'Hx/2 + f'x, low <= A x <= high."""
+    """One programme, its rows of norm 1: minimise x'Hx/2 + f'x, low <= A x <= high.
+
+    ``sizes`` are the absolute values of ``rows``: given where many programmes share them.
+    """
 
     hessian: Vector | None
     gradient: Vector
     rows: Vector
     low: Vector
     high: Vector
+    sizes: Vector
 
     def slope(self, x: Vector) -> Vector:
         """The gradient of the objective at x."""
@@ -36,16 +40,21 @@ class SmallProgramme:
     def residual(self, x: Vector, prices: Vector) -> float:
         """The worst violation of a bound or gradient left; up to 1 is accepted."""
         reach = self.rows @ x
-        size = np.abs(self.rows) @ np.abs(x) + 1e-6 * float(np.abs(x).max(initial=0.0)) + 1e-30
-        bound = np.where(prices > 0, self.high, np.where(prices < 0, self.low, reach))
-        size = size + np.where(np.abs(bound) < NO_BOUND, np.abs(bound), 0.0)
-        gap = np.maximum(np.maximum(self.low - reach, reach - self.high), 0.0)
-        slack = np.where(prices == 0, 0.0, np.abs(reach - bound))
-        violation = float((np.maximum(gap, slack) / np.maximum(size, 1.0)).max(initial=0.0))
-        left = self.slope(x) + self.rows.T @ prices
-        terms = np.abs(self.gradient) + np.abs(self.rows).T @ np.abs(prices)
+        size = np.maximum(self.sizes @ np.abs(x), 1.0)
+        gap = np.maximum(self.low - reach, reach - self.high) / size
+        violation = float(gap.max(initial=0.0))
+        on = np.flatnonzero(prices)
+        left = self.slope(x)
+        terms = np.abs(self.gradient)
         if self.hessian is not None:
-            terms = terms + np.abs(self.hessian) @ np.abs(x)
+            terms = np.maximum(terms, np.abs(left - self.gradient))
+        if len(on):
+            weights = prices[on]
+            bound = np.where(weights > 0, self.high[on], self.low[on])
+            off = np.abs(reach[on] - bound) / np.maximum(size[on], np.abs(bound))
+            violation = max(violation, float(off.max()))
+            left = left + weights @ self.rows[on]
+            terms = terms + np.abs(weights) @ self.sizes[on]
         scale = float(terms.max(initial=0.0)) or 1.0
         return max(violation / FEASIBLE, float(np.abs(left).max(initial=0.0)) / scale / OPTIMAL)
 

@@ -10,9 +10,9 @@ from numpy.typing import NDArray
 from fluxnet.solving.build import Built
 from fluxnet.solving.flux_fit import ParameterMove
 from fluxnet.solving.region import Region
-from fluxnet.solving.task import Task
+from fluxnet.solving.task import Point, Task
 
-__all__ = ["Spread", "find_spread"]
+__all__ = ["Spread", "find_adjustments", "find_spread", "parameter_moves"]
 
 Vector = NDArray[np.float64]
 
@@ -26,16 +26,13 @@ class Spread:
 
     ``covariance`` is square over fluxes, then uncertain numbers; ``free`` (fluxes x
     directions) spans what no measurement sees; ``shares`` (fluxes x sources) says which part
-    of a flux's variance each source brings. ``adjustment_sd`` has one entry a soft measured
-    row: the sd of measured less fitted, in the row's unit.
+    of a flux's variance each source brings.
     """
 
     covariance: Vector
     free: Vector
     sources: tuple[str, ...]
     shares: Vector
-    adjustment_sd: Vector
-    moves: tuple[ParameterMove, ...]
 
 
 def find_spread(
@@ -54,38 +51,71 @@ def find_spread(
     by_seen = whole @ region.seen
     basis = point.design @ region.seen
     covariance = by_seen @ by_seen.T
-    soft = len(task.soft)
-    inverse = np.zeros((soft + moved, soft + moved))
-    inverse[:soft, :soft] = task.whitening
-    inverse[soft:, soft:] = np.diag(1 / task.sd)
-    factor = np.linalg.inv(inverse) if len(inverse) else inverse
+    whitening, factor = _errors(task)
     by_source = by_seen[:count] @ basis.T
-    parts = (by_source @ inverse) * (by_source @ factor.T)
+    parts = (by_source @ whitening) * (by_source @ factor.T)
     variance = np.diag(covariance)[:count]
     known = np.array(determined, dtype=bool) & (variance > 0)
-    shares = np.full((count, soft + moved), np.nan)
+    shares = np.full((count, len(factor)), np.nan)
     shares[known] = parts[known] / variance[known, None]
-    hat = np.eye(soft + moved) - basis @ basis.T
+    directions = np.linalg.qr(point.tangent @ region.unseen)[0]
+    names = tuple(built.problem.rows[i].name for i in built.measured)
+    return Spread(covariance, directions, (*names, *task.rows.names), shares)
+
+
+def find_adjustments(task: Task, best: Point) -> Vector:
+    """The sd of measured less fitted, one a soft row, then one an uncertain number.
+
+    In their own units; 0 where the fit cannot differ from the value. With W the whitening and
+    Q an orthonormal basis of the seen part of the whitened design the covariance of the
+    adjustments is W^-1 (1 - Q Q') W^-1'.
+
+    Parameters
+    ----------
+    best
+        The fit under the equalities alone.
+    """
+    rank = task.seen + task.numbers
+    basis = np.linalg.svd(best.design, full_matrices=False)[0][:, :rank]
+    factor = _errors(task)[1]
+    hat = np.eye(len(factor)) - basis @ basis.T
     left = np.maximum(np.diag(factor @ hat @ factor.T), 0.0)
     given = np.diag(factor @ factor.T)
-    adjustment = np.sqrt(np.where(left > _NONE * given, left, 0.0))
-    numbers_sd = np.sqrt(np.diag(covariance)[count:])
-    moves = tuple(
+    return np.sqrt(np.where(left > _NONE * given, left, 0.0))
+
+
+def parameter_moves(
+    task: Task, best: Point, point: Point, adjustments: Vector, covariance: Vector
+) -> tuple[ParameterMove, ...]:
+    """The uncertain numbers, given and fitted.
+
+    Parameters
+    ----------
+    best, point
+        The fits without and with bounds.
+    """
+    soft, count = len(task.soft), task.rows.count
+    sds = np.sqrt(np.diag(covariance)[count:])
+    return tuple(
         ParameterMove(
             name=name,
             value=float(task.rows.start[k]),
             sd=float(task.sd[k]),
             moved=float(point.numbers[k]),
-            moved_sd=float(numbers_sd[k]),
-            z=_over(float(task.rows.start[k] - point.numbers[k]), float(adjustment[soft + k])),
+            moved_sd=float(sds[k]),
+            z=_over(float(task.rows.start[k] - best.numbers[k]), float(adjustments[soft + k])),
         )
         for k, name in enumerate(task.rows.names)
     )
-    directions = np.linalg.qr(point.tangent @ region.unseen)[0]
-    names = tuple(built.problem.rows[i].name for i in built.measured)
-    return Spread(
-        covariance, directions, (*names, *task.rows.names), shares, adjustment[:soft], moves
-    )
+
+
+def _errors(task: Task) -> tuple[Vector, Vector]:
+    """The whitening of measured rows and uncertain numbers together, and its inverse."""
+    soft = len(task.soft)
+    whole = np.zeros((soft + task.numbers, soft + task.numbers))
+    whole[:soft, :soft] = task.whitening
+    whole[soft:, soft:] = np.diag(1 / task.sd)
+    return whole, np.asarray(np.linalg.inv(whole), dtype=np.float64)
 
 
 def _over(difference: float, sd: float) -> float | None:

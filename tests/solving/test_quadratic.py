@@ -130,7 +130,7 @@ def test_an_objective_that_falls_for_ever_is_unbounded():
 @pytest.mark.parametrize("lie", ["outside the bounds", "not the optimum", "infeasible"])
 def test_a_wrong_answer_of_the_fast_solver_is_noticed_and_replaced(monkeypatch, lie):
     rng = np.random.default_rng(3)
-    honest = quadratic._ask
+    honest = quadratic.ask
 
     def lying(programme, settings):
         flag, x, prices = honest(programme, settings)
@@ -143,9 +143,9 @@ def test_a_wrong_answer_of_the_fast_solver_is_noticed_and_replaced(monkeypatch, 
     for _ in range(6):
         programme = random_programme(rng, flat=2)
         expected = solve_quadratic(*programme)
-        monkeypatch.setattr(quadratic, "_ask", lying)
+        monkeypatch.setattr(quadratic, "ask", lying)
         found = solve_quadratic(*programme)
-        monkeypatch.setattr(quadratic, "_ask", honest)
+        monkeypatch.setattr(quadratic, "ask", honest)
         assert found.outcome is Outcome.OPTIMAL
         assert found.value == pytest.approx(expected.value, rel=1e-7, abs=1e-7)
         assert found.residual <= 1e-9
