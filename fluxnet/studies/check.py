@@ -9,6 +9,8 @@ from fractions import Fraction
 from fluxnet.checks.blocked import Blocked, find_blocked
 from fluxnet.checks.blocked_words import tell_blocked
 from fluxnet.checks.carriers import tell_one_way_carriers
+from fluxnet.checks.composition import CompositionResult, find_compositions
+from fluxnet.checks.composition_words import tell_compositions, without_settled
 from fluxnet.checks.cone import flux_cone
 from fluxnet.checks.energy import MostEnergy, find_most_energy, tell_too_much_energy
 from fluxnet.checks.freedom import Freedom, Known, measure_freedom
@@ -59,8 +61,8 @@ class CheckResult:
     marked. ``freedom`` tells the degrees of freedom, what is determined, and what to measure;
     ``most_atp`` the most ATP per mole of each substrate; ``blocked`` the reactions without
     flux by cause; ``loops`` what makes something out of nothing; ``dead_ends`` and ``parts``
-    what the drawing shows. ``verified``: what can run and what cannot was proven in exact
-    arithmetic throughout.
+    what the drawing shows; ``compositions`` those that the lines imply or rule out.
+    ``verified``: what can run and what cannot was proven in exact arithmetic throughout.
     """
 
     network: Network
@@ -72,6 +74,7 @@ class CheckResult:
     loops: tuple[Loop, ...]
     dead_ends: tuple[DeadEnd, ...]
     parts: tuple[Part, ...]
+    compositions: CompositionResult
     verified: bool
 
     @property
@@ -150,6 +153,11 @@ def check_network(
     step(5)
     freedom = measure_freedom(network, stoich, interior.space, _known(rates))
     step(6)
+    compositions = find_compositions(network)
+    told = [
+        *without_settled(told, network, compositions),
+        *tell_compositions(network, compositions),
+    ]
     step(7)
     return CheckResult(
         network=network,
@@ -168,6 +176,7 @@ def check_network(
         loops=nothing.loops,
         dead_ends=dead_ends,
         parts=parts,
+        compositions=compositions,
         verified=interior.verified and nothing.verified and all(m.verified for m in most),
     )
 
