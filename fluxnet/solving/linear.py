@@ -14,7 +14,7 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
 from fluxnet.solving.problem import Problem
-from fluxnet.solving.residuals import Pair, is_ray, violation_of, worst_violation
+from fluxnet.solving.residuals import Pair, is_contradiction, is_ray, violation_of, worst_violation
 from fluxnet.solving.scaling import find_scales
 
 __all__ = ["LinearSolution", "Outcome", "Programme", "worst_violation"]
@@ -24,7 +24,14 @@ Vector = NDArray[np.float64]
 TOLERANCE = 1e-9
 """How far the solver may leave a bound or a price, in the units of the problem."""
 
-_CHOOSE, _DUAL = 0, 1  # numbers of HiGHS for its simplex strategies
+_CHOOSE, _DUAL, _PRIMAL = 0, 1, 4  # numbers of HiGHS for its simplex methods
+_ATTEMPTS = (
+    (_CHOOSE, TOLERANCE),
+    (_DUAL, TOLERANCE),
+    (_PRIMAL, TOLERANCE),
+    (_DUAL, 1e-7),
+    (_PRIMAL, 1e-7),
+)
 
 
 class Outcome(Enum):
@@ -78,6 +85,8 @@ class Programme:
     def __init__(self, problem: Problem) -> None:
         self.problem = problem
         self.outcome = Outcome.FAILED
+        self.residual = 0.0
+        self._fluxes = np.zeros(len(problem.columns))
         self._row_low, self._row_high = problem.row_low.copy(), problem.row_high.copy()
         self._column_low = problem.column_low.copy()
         self._column_high = problem.column_high.copy()
@@ -86,6 +95,7 @@ class Programme:
         self._cost_scale = 1.0
         self._row_scale, self._column_scale = find_scales(problem, self._sizes)
         self._highs, self._meanings = self._load()
+        self._set_method(*_ATTEMPTS[0])
 
     # --- changes ---------------------------------------------------------------------
 
@@ -145,18 +155,25 @@ class Programme:
     def run(self) -> Outcome:
         """Solve as it stands, from the last basis; :attr:`outcome` keeps the answer.
 
-        "Infeasible" and a failure are confirmed from a cold start before they are believed, and
-        "unbounded" by a direction that keeps all bounds.
+        "Infeasible" is believed when the solver's weights prove it (or, where it has none, when
+        two cold starts say so), "unbounded" when its direction keeps all bounds. Otherwise the
+        programme is solved again from a cold start, by another simplex method; so it is where an
+        optimum does not meet its bounds.
         """
-        outcome = self._attempt()
-        doubtful = outcome is Outcome.UNBOUNDED and not self._has_no_end()
-        if doubtful or outcome in (Outcome.INFEASIBLE, Outcome.FAILED):
-            self._highs.clearSolver()
-            self._highs.setOptionValue("simplex_strategy", _DUAL)
-            outcome = self._attempt()
-            self._highs.setOptionValue("simplex_strategy", _CHOOSE)
-            if outcome is Outcome.UNBOUNDED and not self._has_no_end():
-                outcome = Outcome.FAILED
+        verdicts: list[Outcome] = []
+        for strategy, tolerance in _ATTEMPTS:
+            if verdicts:
+                self._highs.clearSolver()
+                self._set_method(strategy, tolerance)
+            outcome, sure = self._attempt()
+            verdicts.append(outcome)
+            if sure:
+                break
+        else:
+            twice = verdicts[1:].count(Outcome.INFEASIBLE) > 1
+            outcome = Outcome.INFEASIBLE if twice else Outcome.FAILED
+        if len(verdicts) > 1:
+            self._set_method(*_ATTEMPTS[0])
         self.outcome = outcome
         return outcome
 
@@ -165,12 +182,8 @@ class Programme:
         return float(self._highs.getInfo().objective_function_value) / self._cost_scale
 
     def fluxes(self) -> Vector:
-        """The fluxes of the last optimum."""
-        return np.array(self._highs.getSolution().col_value) * self._column_scale
-
-    def violation(self, fluxes: Vector) -> float:
-        """:func:`worst_violation` by the bounds as they stand now."""
-        return violation_of(self.problem.matrix, self._sizes, fluxes, *self._bounds())
+        """The fluxes of the last optimum; :attr:`residual` is their worst violation."""
+        return self._fluxes
 
     def dual_ray(self) -> Vector | None:
         """After INFEASIBLE: weights of the rows whose sum no fluxes can meet (Farkas)."""
@@ -196,30 +209,44 @@ class Programme:
                 outcome, sign * worth, nothing, np.zeros(rows), np.zeros(columns), 0.0
             )
         solution = self._highs.getSolution()
-        fluxes = np.array(solution.col_value) * self._column_scale
         return LinearSolution(
             outcome,
-            float(cost @ fluxes),
-            fluxes,
+            float(cost @ self._fluxes),
+            self._fluxes,
             sign * np.array(solution.row_dual) * self._row_scale / self._cost_scale,
             sign * np.array(solution.col_dual) / self._column_scale / self._cost_scale,
-            self.violation(fluxes),
+            self.residual,
         )
-
-    def _has_no_end(self) -> bool:
-        """Whether the solver's ray keeps every bound and gains (it has no ray without rows)."""
-        ray = self.primal_ray()
-        if ray is None:
-            return not self.problem.rows
-        gain = self._costs @ (ray / self._column_scale)
-        return bool(gain < 0) and is_ray(self.problem.matrix, ray, *self._bounds())
 
     def _bounds(self) -> tuple[Pair, Pair]:
         return (self._row_low, self._row_high), (self._column_low, self._column_high)
 
-    def _attempt(self) -> Outcome:
+    def _set_method(self, strategy: int, tolerance: float) -> None:
+        self._highs.setOptionValue("simplex_strategy", strategy)
+        self._highs.setOptionValue("primal_feasibility_tolerance", tolerance)
+        self._highs.setOptionValue("dual_feasibility_tolerance", tolerance)
+
+    def _attempt(self) -> tuple[Outcome, bool]:
+        """What the solver says, and whether that is sure."""
         self._highs.run()
-        return self._meanings.get(self._highs.getModelStatus(), Outcome.FAILED)
+        outcome = self._meanings.get(self._highs.getModelStatus(), Outcome.FAILED)
+        problem, bounds = self.problem, self._bounds()
+        if outcome is Outcome.INFEASIBLE:
+            weights = self.dual_ray()
+            return outcome, weights is not None and is_contradiction(
+                problem.matrix, self._sizes, weights, *bounds
+            )
+        if outcome is Outcome.UNBOUNDED:
+            ray = self.primal_ray()
+            if ray is None:  # it has none for a problem without rows
+                return outcome, not problem.rows
+            gain = float(self._costs @ (ray / self._column_scale))
+            return outcome, gain < 0 and is_ray(problem.matrix, ray, *bounds)
+        if outcome is Outcome.OPTIMAL:
+            self._fluxes = np.array(self._highs.getSolution().col_value) * self._column_scale
+            self.residual = violation_of(problem.matrix, self._sizes, self._fluxes, *bounds)
+            return outcome, self.residual < 1e-7
+        return outcome, False
 
     def _load(self) -> tuple[Any, dict[Any, Outcome]]:
         """The solver's model, and what its statuses mean (highspy has no types to lean on)."""
@@ -240,10 +267,8 @@ class Programme:
             ("output_flag", False),
             ("presolve", "off"),
             ("solver", "simplex"),
-            ("simplex_strategy", _CHOOSE),
             ("threads", 1),
-            ("primal_feasibility_tolerance", TOLERANCE),
-            ("dual_feasibility_tolerance", TOLERANCE),
+            ("simplex_scale_strategy", 0),  # scaled here; its own leaves some problems "unknown"
             ("small_matrix_value", 1e-12),
         ):
             highs.setOptionValue(option, value)

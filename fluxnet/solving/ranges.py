@@ -99,7 +99,7 @@ def find_ranges(
                 ends[k] = -sign * np.inf
                 continue
             fluxes = programme.fluxes()
-            worst = max(worst, programme.violation(fluxes))
+            worst = max(worst, programme.residual)
             values = fluxes if rows is None else targets @ fluxes
             np.minimum(lowest, values, out=lowest)
             np.maximum(highest, values, out=highest)

@@ -7,7 +7,7 @@ from numpy.typing import NDArray
 
 from fluxnet.solving.problem import Problem
 
-__all__ = ["Pair", "is_ray", "violation_of", "worst_violation"]
+__all__ = ["Pair", "is_contradiction", "is_ray", "violation_of", "worst_violation"]
 
 Vector = NDArray[np.float64]
 Pair = tuple[Vector, Vector]
@@ -60,3 +60,32 @@ def is_ray(matrix: Vector, ray: Vector, rows: Pair, columns: Pair) -> bool:
         if (np.isfinite(high) & (values > room)).any():
             return False
     return True
+
+
+def is_contradiction(
+    matrix: Vector, sizes: Vector, weights: Vector, rows: Pair, columns: Pair
+) -> bool:
+    """Whether weights of the rows prove that no fluxes meet all bounds (Farkas).
+
+    The weighted sum of the rows, y' A v, must lie between the ends that the bounds of the rows
+    allow it, and between those that the bounds of the fluxes allow: a proof has the two apart.
+    """
+    largest = float(np.abs(weights).max(initial=0.0))
+    if largest == 0:
+        return False
+    kept = np.where(np.abs(weights) > 1e-11 * largest, weights, 0.0)
+    pull = kept @ matrix
+    pull = np.where(np.abs(pull) > 1e-11 * (np.abs(kept) @ sizes), pull, 0.0)
+    row_low, row_high, row_size = _reach(kept, *rows)
+    low, high, size = _reach(pull, *columns)
+    room = 1e-9 * (row_size + size)
+    return row_low - high > room or low - row_high > room
+
+
+def _reach(weights: Vector, low: Vector, high: Vector) -> tuple[float, float, float]:
+    """The ends of the weighted sum of values between low and high, and the terms' sizes added."""
+    used = weights != 0
+    w = weights[used]
+    ends = np.sort(np.vstack([w * low[used], w * high[used]]), axis=0)
+    sizes = np.where(np.isfinite(ends), np.abs(ends), 0.0).max(axis=0)
+    return float(ends[0].sum()), float(ends[1].sum()), float(sizes.sum())

@@ -20,20 +20,33 @@ def find_scales(problem: Problem, sizes: Vector) -> tuple[Vector, Vector]:
     """
     rows, columns = np.zeros(sizes.shape[0]), np.zeros(sizes.shape[1])
     used = sizes > 0
-    if used.any() and sizes[used].max() / sizes[used].min() >= 1e4:
+    if used.any() and sizes[used].max() / sizes[used].min() >= 1e3:
         logs = np.where(used, np.log2(np.where(used, sizes, 1.0)), 0.0)
         in_row, in_column = np.maximum(used.sum(1), 1), np.maximum(used.sum(0), 1)
         for _ in range(10):
             rows = -((logs + columns * used).sum(1)) / in_row
             columns = -((logs + rows[:, None] * used).sum(0)) / in_column
         rows, columns = np.round(rows), np.round(columns)
-    bounds = [np.ldexp(b, rows.astype(int)) for b in (problem.row_low, problem.row_high)]
-    bounds += [
-        np.ldexp(b, -columns.astype(int)) for b in (problem.column_low, problem.column_high)
-    ]
-    ends = np.abs(np.concatenate(bounds))
-    largest = ends[np.isfinite(ends)].max(initial=0.0)
-    if largest and not 1e-2 < largest < 1e4:
-        shift = np.round(np.log2(largest))
+    widest = np.maximum(_size(problem.column_low), _size(problem.column_high))
+    alone = ~used.any(0) & (widest > 0)
+    columns[alone] = np.round(np.log2(widest[alone]))
+    ends = np.concatenate(
+        [
+            np.exp2(rows) * _size(problem.row_low),
+            np.exp2(rows) * _size(problem.row_high),
+            _size(problem.column_low) / np.exp2(columns),
+            _size(problem.column_high) / np.exp2(columns),
+        ]
+    )
+    ends = ends[ends > 0]
+    middle = float(np.median(np.log2(ends))) if ends.size else 0.0
+    if not -7 < middle < 13:
+        shift = np.round(middle)
         rows, columns = rows - shift, columns + shift
     return np.exp2(rows), np.exp2(columns)
+
+
+def _size(bounds: Vector) -> Vector:
+    """The size of each bound, 0 where there is none."""
+    size: Vector = np.where(np.isfinite(bounds), np.abs(bounds), 0.0)
+    return size
