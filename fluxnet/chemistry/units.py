@@ -149,9 +149,14 @@ def _read_factors(body: str) -> tuple[Fraction, list[_Factor]]:
         elif match["close"]:
             inside, sign = False, 1
         elif match["number"]:
-            scale *= Fraction(match["number"]) ** sign
+            number = Fraction(match["number"])
+            if not number:
+                raise UnitError(UnitFault.WRONG, "a unit holds the number 0", match["number"])
+            scale *= number**sign
         elif match["word"]:
-            power = int((match["power"] or "1").lstrip("^"))
+            power = int((match["power"] or "1").lstrip("^")[:4])
+            if not 0 < abs(power) < 10:
+                raise UnitError(UnitFault.WRONG, f"`{match[0]}` is no amount or rate", match[0])
             if factors and match["word"].lower() in MARKS and factors[-1].power < 0:
                 continue  # "g DW": tells what the grams are of
             if match["word"] in CONCENTRATIONS:
