@@ -131,7 +131,10 @@ class Builder(Transformer[Token, Any]):
         return s.NameNode(_word(parts[0]))
 
     def bracket(self, parts: list[Any]) -> s.SumNode:
-        return cast("s.SumNode", parts[1])
+        content = cast("s.SumNode", parts[1])
+        if isinstance(content, s.OperationNode):
+            return content._replace(start=_start(parts[0]), end=_end(parts[2]))
+        return content
 
     def negative(self, parts: list[Any]) -> s.OperationNode:
         return s.OperationNode("-", None, parts[1], _start(parts[0]), _node_end(parts[1]))

@@ -90,6 +90,7 @@ def declare_parameter(placed: Placed, said: s.ParameterLine, scope: Scope) -> Pa
             placed.line, name,
             mend=f"write {plain}" if _PARAMETER.fullmatch(plain) else None,
         )
+        scope.lost.add(name.text)
     parameter = read_assignment(placed.line, said.assignment, scope.findings)
     scope.parameters[parameter.name] = parameter
     return parameter

@@ -101,7 +101,9 @@ def _no_arrow(text: str, start: int, end: int) -> Fault:
         return Fault(Name.WRONG_ARROW, f"`{lone[1]}` is no arrow", lone.start(1), lone.end(1),
                      "write -> (one way) or <-> (both ways)")
     stripped = len(text[:end].rstrip())
-    return unreadable("the reaction has no arrow", max(start, 0), max(stripped, start + 1),
+    first = start + len(text[start:end]) - len(text[start:end].lstrip())
+    first = first if first < stripped else 0
+    return unreadable("the reaction has no arrow", first, max(stripped, first + 1),
                       "write -> (one way) or <-> (both ways) between its sides")
 
 

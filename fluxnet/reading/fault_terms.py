@@ -163,7 +163,8 @@ def _product(text: str, run: list[Token], kinds: str) -> Fault:
     coefficient = _plain(text[start:cut].strip())
     rest = text[cut:end].lstrip(" *·×")
     whole = f"({coefficient}) {rest}"
-    return Fault(name, said, start, cut, f"write {whole}", (Change(start, end, whole),))
+    stop = start + len(text[start:cut].rstrip())
+    return Fault(name, said, start, stop, f"write {whole}", (Change(start, end, whole),))
 
 
 def _plain(text: str) -> str:

@@ -60,7 +60,9 @@ def _error_is_sound(line: LogicalLine, bound: s.BoundText, scope: Scope) -> bool
     """Whether the ± of a limit makes sense; else say why not."""
     if bound.error is None:
         return True
-    error = s.Word("", bound.value.end, bound.end)
+    behind = s.Word("", bound.value.end, bound.end)
+    said = line.text[bound.value.end : bound.end]
+    error = s.Word("", bound.end - len(said.lstrip()), bound.end)
     if bound.relation is not Relation.EQUAL:
         scope.findings.add(
             Name.BAD_LIMIT, "a bound has no error; a measured value is written with =",
@@ -70,7 +72,7 @@ def _error_is_sound(line: LogicalLine, bound: s.BoundText, scope: Scope) -> bool
     if _sd(bound) == 0:
         scope.findings.add(
             Name.BAD_LIMIT, "a measured value has an sd above zero", line, error,
-            mend="leave the ± out: the value is then exact", certain=[(error, "")],
+            mend="leave the ± out: the value is then exact", certain=[(behind, "")],
         )
         return False
     return True
@@ -168,7 +170,8 @@ def _direction(
 
 def _unknown(line: LogicalLine, said: s.SingleText, scope: Scope) -> None:
     name = said.name.text
-    candidates = [*scope.species, *scope.reactions, "mu"]
+    parameters = scope.parameters
+    candidates = [*(n for n in scope.places if n not in parameters), "mu"]
     twin = only_case_differs(name, candidates)
     if twin is not None:
         scope.findings.add(

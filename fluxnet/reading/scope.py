@@ -75,11 +75,14 @@ class Scope:
 
 
 _NAMES = re.compile(NAME)
+_LETTERS = re.compile(r"[^\W\d]\w*")
 
 
 def words_of(texts: Iterable[str]) -> set[str]:
-    """All words of some lines."""
-    return {match[0] for text in texts for match in _NAMES.finditer(text)}
+    """All words of some lines, also those that digits touch."""
+    listed = tuple(texts)
+    names = {match[0] for text in listed for match in _NAMES.finditer(text)}
+    return names | {match[0] for text in listed for match in _LETTERS.finditer(text)}
 
 
 def claim(scope: Scope, kind: Kind, line: LogicalLine, word: Word) -> bool:

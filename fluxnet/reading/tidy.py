@@ -1,7 +1,7 @@
 """A file laid out in one way: columns, blanks, signs. Comments stay, and so does the meaning.
 
-A line that cannot be read stays as it is. What is laid out once does not change when it is
-laid out again.
+A line that cannot be read stays as it is, but for its indentation. What is laid out once does
+not change when it is laid out again.
 """
 
 from __future__ import annotations
@@ -103,12 +103,11 @@ def _statement_row(
     raws = tuple(source.line(n).rstrip() for n in range(line.number, last + 1))
     comments = [raw[len(without_comment(raw)) :].rstrip() for raw in raws]
     statement = parse_statement(line.text)
+    shown = (" " * (_STEP * depth) + raws[0].lstrip(), *raws[1:])
     if isinstance(statement, Unparsed):
-        return _Row(line.indentation, depth, None, "", raws), True
+        return _Row(line.indentation, depth, None, "", shown), True
     opens = isinstance(statement.line, (s.CompartmentLine, s.VariantLine, s.AdditionLine))
     if any(comments[:-1]):
-        lead = " " * (_STEP * depth)
-        shown = (lead + raws[0].lstrip(), *raws[1:])
         return _Row(line.indentation, depth, None, "", shown), opens
     cells = lay_out(statement, line.text)
     return _Row(line.indentation, depth, cells, comments[-1]), opens

@@ -62,10 +62,11 @@ def resolve_variants(
 
 def _blocks(placed: Sequence[Placed], scope: Scope) -> dict[str, _Block]:
     blocks: dict[str, _Block] = {}
+    current: _Block | None = None
     for one in placed:
         said = one.statement.line
         if isinstance(said, s.VariantLine):
-            name = said.name.text
+            name, current = said.name.text, None
             if name == "base":
                 scope.findings.add(
                     Name.RESERVED_NAME, "`base` cannot be a variant: it is the unchanged model",
@@ -81,9 +82,9 @@ def _blocks(placed: Sequence[Placed], scope: Scope) -> dict[str, _Block]:
                     also=[where],
                 )
             else:
-                blocks[name] = _Block(one, said)
-        elif one.variant is not None and one.variant.text in blocks:
-            blocks[one.variant.text].inner.append(one)
+                current = blocks[name] = _Block(one, said)
+        elif one.variant is not None and current is not None:
+            current.inner.append(one)
     return blocks
 
 

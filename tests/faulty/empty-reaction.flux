@@ -1,0 +1,6 @@
+substrate glucose
+product   ethanol, CO2
+compartment catabolism
+    ferment : glucose -> 2 ethanol + 2 CO2
+    # expect: empty-reaction "idle : nothing -> nothing"
+    idle : nothing -> nothing

@@ -1,0 +1,2 @@
+# expect: no-reaction file
+substrate glucose

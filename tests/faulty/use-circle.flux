@@ -1,0 +1,5 @@
+use "used/circle-a.flux"
+substrate glucose
+product   ethanol, CO2
+compartment catabolism
+    ferment : glucose -> 2 ethanol + 2 CO2

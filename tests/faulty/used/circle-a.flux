@@ -1,0 +1,1 @@
+use "circle-b.flux"

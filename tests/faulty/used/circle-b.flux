@@ -1,0 +1,2 @@
+# expect: use-circle "circle-a.flux"
+use "circle-a.flux"

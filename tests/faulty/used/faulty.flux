@@ -1,0 +1,3 @@
+product ethanol
+# expect: unknown-statement "prodct" certain
+prodct CO2
