@@ -88,8 +88,8 @@ def reach_far(
             gain = size * left / (2 * weight)
             return Reach(float(gradient @ found.x) + gain, found.x, weight)
         following = _next_weight(region, found, unit, weight, radius)
-        if following is None and low > 0 and np.isinf(high):
-            # The place no longer moves with the weight: a corner of the bounds.
+        if following == np.inf and np.isinf(high):
+            # The place stays where it is under any greater pull: a corner of the bounds.
             return Reach(float(gradient @ found.x), found.x, weight)
         if following is None or not low < following < high:
             following = 4 * weight if np.isinf(high) else (low + high) / 2
@@ -124,20 +124,28 @@ def _pull(region: Region, pull: Vector) -> QuadraticSolution:
 def _next_weight(
     region: Region, found: QuadraticSolution, unit: Vector, weight: float, radius: float
 ) -> float | None:
-    """The weight at which the place reaches the radius if the same bounds go on pressing."""
+    """The weight at which the place reaches the radius if the same bounds go on pressing.
+
+    Where the place does not move with the weight, the one at which a bound stops pressing;
+    infinite where none ever does. None where the equations tell nothing.
+    """
     seen, count = region.dimension, len(unit)
-    active = region.bounds.rows[list(found.active)]
+    on = list(found.active)
+    active = region.bounds.rows[on]
     system = np.zeros((count + len(active), count + len(active)))
     system[:count, :count] = region.hessian
     system[count:, :count] = active
     system[:count, count:] = active.T
-    right = np.concatenate([unit, np.zeros(len(active))])
-    moved = _solved(system, right)
-    if moved is None:
+    moved = _solved(system, np.concatenate([unit, np.zeros(len(active))]))
+    if moved is None or found.x is None:
         return None
     slope = moved[:seen]
-    if found.x is None or float(slope @ slope) < 1e-18:
-        return None
+    if float(slope @ slope) < 1e-18:
+        prices, rises = found.prices[on], moved[count:]
+        falling = (prices * rises < 0) & (np.abs(rises) > 1e-7)
+        if not falling.any():
+            return np.inf
+        return weight + 1.001 * float((-prices[falling] / rises[falling]).min())
     away = found.x[:seen] - region.centre
     a, b = float(slope @ slope), float(slope @ away)
     c = float(away @ away) - radius**2
