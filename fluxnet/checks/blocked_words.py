@@ -65,6 +65,9 @@ def _reason(network: Network, obstacle: Obstacle, plural: bool) -> str:
         species = network.find_species(name)
         way = "taken up" if species is not None and species.role is Role.SUBSTRATE else "released"
         return f"{name} can only be {way}"
+    if obstacle.by is BlockedBy.DIRECTION:
+        subject = "they would" if plural else "it would"
+        return f"{subject} if {name} ran the other way"
     if obstacle.piles_up:
         return f"the {name} that would be made has nowhere to go"
     return f"no {name} can be spared for {'them' if plural else 'it'}"
@@ -75,6 +78,8 @@ def _mend(network: Network, obstacle: Obstacle) -> str:
         return f"open `{obstacle.name}`, if that is not meant"
     if obstacle.by is BlockedBy.ROLE:
         return f"declare {obstacle.name} as exchange, or turn the reaction"
+    if obstacle.by is BlockedBy.DIRECTION:
+        return f"turn {obstacle.name}, or write <-> in it, if that is meant"
     verb = "uses" if obstacle.piles_up else "makes"
     return f"add a reaction that {verb} {obstacle.name}, or let one run both ways"
 
@@ -84,8 +89,8 @@ def _also(network: Network, obstacle: Obstacle) -> tuple[Span, ...]:
         return tuple(
             limit.span for limit in network.limits if limit_words(limit, network) == obstacle.name
         )
-    species = network.find_species(obstacle.name)
-    return (species.span,) if species is not None else ()
+    place = network.find_species(obstacle.name) or network.find_reaction(obstacle.name)
+    return (place.span,) if place is not None else ()
 
 
 def _is_meant(network: Network, group: Blocked) -> bool:

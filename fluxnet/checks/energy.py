@@ -9,10 +9,11 @@ from dataclasses import dataclass, replace
 from fractions import Fraction
 
 import numpy as np
+from numpy.typing import NDArray
 
 from fluxnet.checks.cone import Cone, Form, FormKind, exact_rows, flux_cone
 from fluxnet.checks.gibbs import conversion_energy
-from fluxnet.checks.interior import cone_rows, exact_weights
+from fluxnet.checks.interior import ConeRows, cone_rows, exact_weights, without_noise
 from fluxnet.checks.loops import exact_vertex
 from fluxnet.checks.words import equation
 from fluxnet.chemistry.formula import degree_of_reduction
@@ -148,10 +149,11 @@ def _most(
         equal=tuple(f for f in cone.equal if f is not aim),
         sides=(*(f for f in cone.sides if f.row != taken.row), aim, taken),
     )
-    fluxes, weights, price = _optimum(cone)
-    if fluxes is None:
+    rows_of_cone = cone_rows(cone)
+    optimum = _optimum(cone, rows_of_cone)
+    if optimum is None:
         return replace(nothing, amount=None)
-    exact = exact_vertex(cone, taken, fluxes)
+    exact = exact_vertex(cone, taken, rows_of_cone, optimum.scaled)
     if exact is None:
         return nothing
     amount = product(aim.row, exact)
@@ -164,13 +166,21 @@ def _most(
         amount,
         conversion if amount else (),
         conversion_energy(network, conversion) if amount else None,
-        _bound(cone, weights, price) == amount,
+        _bound(cone, optimum) == amount,
     )
 
 
-def _optimum(cone: Cone) -> tuple[list[float] | None, list[float], float]:
-    """Fluxes of the optimum of the last side but one at 1 of the last, weights, and the price."""
-    rows = cone_rows(cone)
+@dataclass(frozen=True, slots=True)
+class _Optimum:
+    """Scaled fluxes of the thriftiest optimum, and prices of the sides and of the substrate."""
+
+    scaled: NDArray[np.float64]
+    weights: list[float]
+    price: float
+
+
+def _optimum(cone: Cone, rows: ConeRows) -> _Optimum | None:
+    """The most of the last side but one for 1 of the last; None where there is no end to it."""
     both = [j for j in range(len(cone.reactions)) if rows.low[j] < 0]
     taken, aim = rows.row_of[len(cone.sides) - 1], rows.row_of[len(cone.sides) - 2]
     high = rows.high.copy()
@@ -183,33 +193,32 @@ def _optimum(cone: Cone) -> tuple[list[float] | None, list[float], float]:
             names, rows.labels, matrix, np.zeros(len(high)), high,
             np.zeros(len(names)), np.full(len(names), np.inf),
         )
-    )
+    )  # fmt: skip
     best = programme.maximise(matrix[aim])
     if best.outcome is Outcome.UNBOUNDED:
-        return None, [], 0.0
+        return None
     thrifty = programme.maximise(matrix[aim] - _THRIFT)
     if Outcome.OPTIMAL is not best.outcome or Outcome.OPTIMAL is not thrifty.outcome:
         raise ArithmeticError("the solver could not tell the most energy per substrate")
-    fluxes = thrifty.fluxes[:count].copy()
-    fluxes[both] -= thrifty.fluxes[count:]
-    weights = np.zeros(len(cone.sides))
-    for k, i in rows.row_of.items():
-        weights[k] = -best.row_prices[i]
-    for k, j in rows.column_of.items():
-        weights[k] = -best.column_prices[j]
-    return [float(v) for v in fluxes], weights[:-2].tolist(), float(best.row_prices[taken])
+    scaled = thrifty.fluxes[:count].copy()
+    scaled[both] -= thrifty.fluxes[count:]
+    weights = rows.weights(len(cone.sides), best.row_prices, best.column_prices[:count])
+    unit = rows.row_scale[aim]
+    price = without_noise(best.row_prices[taken]) * rows.row_scale[taken] / unit
+    return _Optimum(scaled, (weights[:-2] / unit).tolist(), float(price))
 
 
-def _bound(cone: Cone, weights: list[float], price: float) -> Fraction | None:
+def _bound(cone: Cone, optimum: _Optimum) -> Fraction | None:
     """The optimum that exact prices prove, or None where they cannot be made exact."""
     *sides, aim, taken = cone.sides
-    held = [k for k, w in enumerate(weights) if w > 1e-9]
+    weights, price = optimum.weights, optimum.price
+    held = [k for k, w in enumerate(weights) if w > 0]
     forms, guess = [aim, *(sides[k] for k in held)], [1.0, *(weights[k] for k in held)]
-    if price > 1e-9:
+    if price > 0:
         forms.append(replace(taken, row={j: -v for j, v in taken.row.items()}))
         guess.append(price)
     space = null_space([f.row for f in cone.equal], len(cone.reactions))
     proof = exact_weights(space, forms, guess)
     if proof is None:
         return None
-    return proof[-1] / proof[0] if price > 1e-9 else Fraction(0)
+    return proof[-1] / proof[0] if price > 0 else Fraction(0)

@@ -20,32 +20,48 @@ from fluxnet.checks.cone import Cone, Form, FormKind
 from fluxnet.exact.sparse import NullSpace, null_space, point_near, product
 from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.problem import Problem, Row, RowKind
+from fluxnet.solving.scaling import find_scales
 
 __all__ = [
     "ConeRows", "Interior", "Opening", "cone_rows", "exact_weights", "find_interior", "open_most",
+    "without_noise",
 ]
 
 Vector = NDArray[np.float64]
 
 # Far below 1, the least value of an open side, and far above what the solver leaves behind.
 _OPEN = 1e-6
+_NOISE = 1e-9
 
 
 @dataclass(frozen=True, slots=True)
 class ConeRows:
     """A cone in floats: rows x reactions, the equal forms first, then all sides but directions.
 
-    ``high`` is 0 for an equal form, infinity for a side; the lower bound is 0 throughout.
-    ``row_of`` gives the row of a side by its place in the cone, ``column_of`` the reaction of
-    a direction. ``low`` are the lower bounds of the fluxes: 0, or minus infinity.
+    A cone has no sizes, so rows and columns are scaled (by powers of two) until coefficients
+    are near 1: ``matrix`` is form x ``row_scale`` x ``scale``, its unknowns are fluxes over
+    ``scale``. ``high`` is 0 for an equal form, infinity for a side; the lower bound is 0
+    throughout. ``row_of`` gives the row of a side by its place in the cone, ``column_of`` the
+    reaction of a direction. ``low`` are the lower bounds of the unknowns: 0 or minus infinity.
     """
 
     labels: tuple[Row, ...]
     matrix: Vector
     high: Vector
     low: Vector
+    row_scale: Vector
+    scale: Vector
     row_of: dict[int, int]
     column_of: dict[int, int]
+
+    def weights(self, sides: int, row_prices: Vector, column_prices: Vector) -> Vector:
+        """By side of the cone: what holding it costs a maximum, from a solution's prices."""
+        found = np.zeros(sides)
+        for k, i in self.row_of.items():
+            found[k] = without_noise(-row_prices[i]) * self.row_scale[i]
+        for k, j in self.column_of.items():
+            found[k] = without_noise(-column_prices[j]) / self.scale[j]
+        return found
 
 
 @dataclass(frozen=True, slots=True)
@@ -75,6 +91,11 @@ class Interior:
     verified: bool
 
 
+def without_noise(price: float) -> float:
+    """The price of a scaled row or column, zero where the solver only nearly left it there."""
+    return float(price) if abs(price) > _NOISE else 0.0
+
+
 def cone_rows(cone: Cone) -> ConeRows:
     """The cone's forms in floats, ready for a linear programme."""
     labels: list[Row] = []
@@ -98,7 +119,13 @@ def cone_rows(cone: Cone) -> ConeRows:
         for j, value in form.row.items():
             matrix[i, j] = float(value)
     high = np.array([0.0] * len(cone.equal) + [np.inf] * len(row_of))
-    return ConeRows(tuple(labels), matrix, high, low, row_of, column_of)
+    unscaled = Problem(
+        cone.reactions, tuple(labels), matrix.copy(), np.zeros(len(high)), high.copy(),
+        low.copy(), np.full(len(low), np.inf),
+    )  # fmt: skip
+    row_scale, scale = find_scales(unscaled, np.abs(matrix))
+    scaled = matrix * row_scale[:, None] * scale
+    return ConeRows(tuple(labels), scaled, high, low, row_scale, scale, row_of, column_of)
 
 
 def open_most(cone: Cone, wanted: Sequence[int] | None = None) -> Opening:
@@ -136,16 +163,12 @@ def open_most(cone: Cone, wanted: Sequence[int] | None = None) -> Opening:
     if solution.outcome is not Outcome.OPTIMAL:
         raise ArithmeticError(f"the solver could not tell what can run: {solution.outcome.value}")
     fluxes, amounts = solution.fluxes[:count].copy(), solution.fluxes[count:]
-    weights = np.zeros(len(cone.sides))
-    for k, i in rows.row_of.items():
-        weights[k] = -solution.row_prices[i]
-    for k, j in rows.column_of.items():
-        weights[k] = -solution.column_prices[j]
     for place, k in enumerate(asked):
         if k in rows.column_of:
             fluxes[rows.column_of[k]] += amounts[place]
     opened = frozenset(k for place, k in enumerate(asked) if amounts[place] > _OPEN)
-    return Opening(opened, fluxes, weights)
+    weights = rows.weights(len(cone.sides), solution.row_prices, solution.column_prices)
+    return Opening(opened, fluxes * rows.scale, weights)
 
 
 def find_interior(cone: Cone) -> Interior:

@@ -7,14 +7,17 @@ from fractions import Fraction
 from math import gcd, lcm
 
 import numpy as np
+from numpy.typing import NDArray
 
 from fluxnet.checks.cone import Cone, Form, FormKind
-from fluxnet.checks.interior import cone_rows
+from fluxnet.checks.interior import ConeRows, cone_rows
 from fluxnet.exact.sparse import null_space, point_near, product
 from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.problem import Problem
 
 __all__ = ["exact_vertex", "find_loop", "whole_numbers"]
+
+Vector = NDArray[np.float64]
 
 # Fluxes below this share of the largest are what the solver leaves of zero.
 _NOTHING = 1e-8
@@ -38,39 +41,50 @@ def find_loop(cone: Cone, aim: Form) -> tuple[Fraction, ...] | None:
         One flux a reaction, in whole numbers where these are not huge; None where no vector
         was found that meets the cone exactly.
     """
-    programme = _Search(cone, aim)
-    fluxes = programme.least(range(len(cone.reactions)))
-    if fluxes is None:
+    rows = cone_rows(cone)
+    programme = _Search(cone, aim, rows)
+    scaled = programme.least(range(len(cone.reactions)))
+    if scaled is None:
         return None
-    needed = _support(fluxes)
+    needed = _support(scaled)
     for j in tuple(needed):
         rest = [k for k in needed if k != j]
         if j in needed and rest and (shorter := programme.least(rest)) is not None:
-            fluxes, needed = shorter, _support(shorter)
-    found = exact_vertex(cone, aim, fluxes)
+            scaled, needed = shorter, _support(shorter)
+    found = exact_vertex(cone, aim, rows, scaled)
     return None if found is None else whole_numbers(found)
 
 
 def exact_vertex(
-    cone: Cone, aim: Form, fluxes: Sequence[float]
+    cone: Cone, aim: Form, rows: ConeRows, scaled: Vector
 ) -> tuple[Fraction, ...] | None:
-    """The exact vector of a cone beside a vertex in floats, scaled so that the aim is 1.
+    """The exact vector of a cone beside a vertex in floats, times what makes the aim 1.
 
-    None where it would leave the cone, or where the aim vanishes.
+    Parameters
+    ----------
+    rows, scaled
+        The cone in floats, and its unknowns (fluxes over ``rows.scale``) at the vertex.
+
+    Returns
+    -------
+    tuple of Fraction or None
+        None where it would leave the cone, or where the aim vanishes.
     """
-    support = _support(fluxes)
+    support = _support(scaled)
     place = {j: k for k, j in enumerate(support)}
-    size = max((abs(v) for v in fluxes), default=0.0)
+    size = float(np.abs(scaled).max(initial=0.0))
+    values = rows.matrix @ scaled
+    magnitudes = np.abs(rows.matrix) @ np.abs(scaled)
     held = list(cone.equal)
-    for side in cone.sides:
-        terms = [float(a) * fluxes[j] for j, a in side.row.items()]
-        if side is not aim and abs(sum(terms)) <= _NOTHING * max(size, sum(map(abs, terms))):
-            held.append(side)
-    rows = [{place[j]: a for j, a in form.row.items() if j in place} for form in held]
-    space = null_space(rows, len(support))
-    point = point_near(space, [fluxes[j] for j in support])
-    values = dict(zip(support, point, strict=True))
-    exact = tuple(values.get(j, Fraction(0)) for j in range(len(cone.reactions)))
+    for k, i in rows.row_of.items():
+        near_zero = abs(values[i]) <= _NOTHING * max(size, magnitudes[i])
+        if cone.sides[k] is not aim and near_zero:
+            held.append(cone.sides[k])
+    forms = [{place[j]: a for j, a in form.row.items() if j in place} for form in held]
+    fluxes = (scaled * rows.scale).tolist()
+    point = point_near(null_space(forms, len(support)), [fluxes[j] for j in support])
+    found = dict(zip(support, point, strict=True))
+    exact = tuple(found.get(j, Fraction(0)) for j in range(len(cone.reactions)))
     amount = product(aim.row, exact)
     if amount <= 0 or any(product(side.row, exact) < 0 for side in cone.sides):
         return None
@@ -90,8 +104,7 @@ def whole_numbers(values: Sequence[Fraction]) -> tuple[Fraction, ...]:
 class _Search:
     """The least total flux that brings the aim to 1 with some of the reactions."""
 
-    def __init__(self, cone: Cone, aim: Form) -> None:
-        rows = cone_rows(cone)
+    def __init__(self, cone: Cone, aim: Form, rows: ConeRows) -> None:
         self.both = [j for j in range(len(cone.reactions)) if rows.low[j] < 0]
         self.count = len(cone.reactions)
         names = (*cone.reactions, *(f"{cone.reactions[j]} backwards" for j in self.both))
@@ -112,8 +125,8 @@ class _Search:
             )
         )
 
-    def least(self, reactions: Collection[int]) -> list[float] | None:
-        """The fluxes, or None where these reactions cannot do it."""
+    def least(self, reactions: Collection[int]) -> Vector | None:
+        """The scaled fluxes, or None where these reactions cannot do it."""
         allowed = set(reactions)
         for j in range(self.count):
             self.programme.set_column_bounds(j, 0.0, np.inf if j in allowed else 0.0)
@@ -126,9 +139,9 @@ class _Search:
             return None
         fluxes = solution.fluxes[: self.count].copy()
         fluxes[self.both] -= solution.fluxes[self.count :]
-        return [float(v) for v in fluxes]
+        return fluxes
 
 
-def _support(fluxes: Sequence[float]) -> list[int]:
-    size = max((abs(v) for v in fluxes), default=0.0)
-    return [j for j, v in enumerate(fluxes) if abs(v) > _NOTHING * size]
+def _support(scaled: Vector) -> list[int]:
+    sizes = np.abs(scaled)
+    return [int(j) for j in np.flatnonzero(sizes > _NOTHING * sizes.max(initial=0.0))]

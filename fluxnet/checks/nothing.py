@@ -82,7 +82,7 @@ def find_from_nothing(network: Network, stoich: Stoichiometry) -> FromNothing:
     if not opening.open:
         weights = opening.weights.tolist()
         asked = set(wanted)
-        held = [k for k, w in enumerate(weights) if w > 1e-9 or k in asked]
+        held = [k for k, w in enumerate(weights) if w > 0 or k in asked]
         space = null_space([f.row for f in cone.equal], len(cone.reactions))
         proof = exact_weights(space, [cone.sides[k] for k in held], [weights[k] for k in held])
         return FromNothing((), proof is not None or not wanted)
