@@ -93,18 +93,15 @@ def null_space(rows: Sequence[SparseRow], columns: int) -> NullSpace:
     return NullSpace(free, tuple(found))
 
 
-def point_near(space: NullSpace, guess: Sequence[float], digits: int = 30) -> tuple[Fraction, ...]:
-    """An exact point of the space whose free coordinates are those of a floating-point one.
+def point_near(space: NullSpace, guess: Sequence[float]) -> tuple[Fraction, ...]:
+    """The exact point of the space whose free coordinates are those of a floating-point one.
 
     Parameters
     ----------
     guess
         One number a column, nearly in the space.
-    digits
-        Binary digits kept behind the point.
     """
-    scale = 1 << digits
-    return space.point([Fraction(round(guess[j] * scale), scale) for j in space.free])
+    return space.point([Fraction(guess[j]) for j in space.free])
 
 
 def independent_forms(rows: Sequence[SparseRow]) -> tuple[int, ...]:

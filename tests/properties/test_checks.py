@@ -164,7 +164,7 @@ def test_every_blocked_reaction_has_one_cause(network: Network) -> None:
     interior = find_interior(cone)
 
     groups = find_blocked(
-        network, stoich, cone, interior,
+        network, cone, interior,
         find_dead_ends(network, stoich), find_parts(network, stoich),
     )
 
