@@ -8,9 +8,11 @@ from fractions import Fraction
 
 from fluxnet.chemistry.formula import Formula
 from fluxnet.network.contents import CHARGE, PHOSPHATE, Content, content_of_formula
-from fluxnet.network.model import CargoKind, Species
+from fluxnet.network.model import CargoKind, Network, Species
 
-__all__ = ["Water", "at_ph_seven", "form_at_ph_seven", "is_proton", "is_water", "water_of"]
+__all__ = [
+    "Water", "at_ph_seven", "form_at_ph_seven", "free_forms", "is_proton", "is_water", "water_of",
+]  # fmt: skip
 
 
 @dataclass(frozen=True, slots=True)
@@ -85,6 +87,22 @@ def at_ph_seven(
         if form is not None and one.cargo is None:
             ionised[one.name] = content_of_formula(form)
     return ionised, tuple(_phosphate_ion() if f is PHOSPHATE else f for f in free)
+
+
+def free_forms(network: Network) -> tuple[tuple[str, Content], ...]:
+    """The free species of a network by name, in their forms at pH 7."""
+    from fluxnet.chemistry.catalogue import load_catalogue
+
+    found = [] if network.balance_phosphate else [("phosphate", _phosphate_ion())]
+    for name in network.free:
+        species = network.find_species(name)
+        form = None if species is None else form_at_ph_seven(species)
+        compound = load_catalogue().find(name) if species is None else None
+        if compound is not None:
+            form = compound.formula_ph7
+        if form is not None and name not in dict(found):
+            found.append((name, content_of_formula(form)))
+    return tuple(found)
 
 
 def _phosphate_ion() -> Content:

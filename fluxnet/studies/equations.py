@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.matrices.stoichiometry import Stoichiometry
+from fluxnet.network.implied import find_implied
 from fluxnet.network.model import Network
 
-__all__ = ["EquationTerm", "NetEquation", "find_equations", "reference_substrate"]
+__all__ = [
+    "EquationTerm", "NetEquation", "add_implied", "find_equations", "reference_substrate",
+]  # fmt: skip
 
 Array = NDArray[np.float64]
 
@@ -90,6 +93,27 @@ def find_equations(
     ]
     equations.append(_equation(None, matrix, parts, matrix.boundary, per, amount))
     return tuple(equations)
+
+
+def add_implied(whole: NetEquation, network: Network) -> NetEquation:
+    """The whole cell's equation with the water, protons and free species that it implies.
+
+    The base is what neutralises the protons; the ammonium that the cell takes up leaves one
+    each, so that ammonia fed as base is counted in it (:mod:`fluxnet.network.implied`).
+    """
+    releases = {t.species: t.coefficient for t in whole.terms if not t.implied}
+    if not releases:
+        return whole
+    implied = find_implied(network, releases)
+    size = max(map(abs, releases.values()))
+    found = [*implied.free, ("H2O", implied.water), ("H+", implied.protons)]
+    terms = tuple(
+        EquationTerm(name, amount, implied=True)
+        for name, amount in found
+        if abs(amount) > _ROUNDING * size
+    )
+    base = implied.base if implied.base > _ROUNDING * size else 0.0
+    return replace(whole, terms=(*whole.terms, *terms), base=base)
 
 
 def _equation(
