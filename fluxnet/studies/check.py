@@ -145,7 +145,7 @@ def check_network(
     step(3)
     blocked: tuple[Blocked, ...] = ()
     if not starved:
-        blocked = find_blocked(network, stoich, cone, interior, dead_ends, parts)
+        blocked = find_blocked(network, cone, interior, dead_ends, parts)
         told.extend(tell_blocked(network, blocked))
     step(4)
     most = find_most_energy(network, stoich)
