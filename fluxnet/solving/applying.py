@@ -10,7 +10,7 @@ from fluxnet.ground.names import Name
 from fluxnet.network.model import Limit, Network, Quantity, QuantityKind, Role
 from fluxnet.rates.measured import Run
 from fluxnet.solving.problem import Row
-from fluxnet.solving.quantities import default_direction, has_mu, units_per_mole
+from fluxnet.solving.quantities import default_direction, has_mu
 from fluxnet.solving.words import limit_words
 
 __all__ = ["applies", "free_species", "is_same", "is_zero", "limit_notes", "may_reverse"]
@@ -26,12 +26,7 @@ def applies(limit: Limit, network: Network, run: Run | None) -> bool:
     parts = (limit.quantity, limit.quantity.numerator, limit.quantity.denominator)
     mu = any(q is not None and q.kind is QuantityKind.MU for q in parts)
     if limit.quantity.kind is QuantityKind.RATIO:
-        factors = [
-            units_per_mole(species, run.basis) / units_per_mole(species, network.basis)
-            for part in parts
-            if part is not None and (species := network.find_species(part.name)) is not None
-        ]
-        return not mu and len(set(factors)) < 2
+        return not mu
     return mu and has_mu(network, run.basis)
 
 

@@ -103,7 +103,7 @@ def build_problem(
     within
         Hold each measured value within so many of its sd; None leaves it to least squares.
     denominators
-        The sizes of measured ratios' denominators, where they are known from a fit.
+        The sizes of measured ratios' denominators in moles, where they are known from a fit.
 
     Returns
     -------
@@ -168,7 +168,7 @@ def rebuild(
     values
         New values of some parameters or ash; the others stay.
     denominators
-        The sizes of measured ratios' denominators, by the denominator's quantity.
+        The sizes of measured ratios' denominators in moles, by the denominator's quantity.
     sds
         New sds of measured quantities (of a ratio: the ratio's own); correlations stay.
     """

@@ -63,7 +63,7 @@ def least_change(problem: Problem) -> LeastChange:
 
     min sum ((A v - y) / sd)^2 over the measured rows, subject to all other bounds; limits and
     exact values do not give way. Bounds on measured rows (within K sd) are lifted. A measured
-    ratio's sd goes with its denominator, which is found in a few passes.
+    ratio counts as the ratio it is, found in a few passes (Gauss-Newton).
 
     Returns
     -------
@@ -122,20 +122,20 @@ def _least_squares(hard: Problem, soft: _Soft) -> tuple[float, Vector]:
     rows = np.vstack([matrix[bounded], np.eye(count)])
     low = np.append(hard.row_low[bounded], hard.column_low)
     high = np.append(hard.row_high[bounded], hard.column_high)
-    sds = soft.sds
+    pieces = (soft.rows, soft.values, soft.sds)
+    total = np.inf
     for _ in range(_PASSES):
-        weighted = soft.rows / sds[:, None]
-        target = soft.values / sds
+        weighted, target = pieces[0] / pieces[2][:, None], pieces[1] / pieces[2]
         answer = solve_quadratic(
             weighted.T @ weighted, -weighted.T @ target, rows, low, high
         )
         if answer.x is None:
             raise ArithmeticError(f"the least change could not be found: {answer.outcome.value}")
-        fluxes = answer.x
-        before, sds = sds, soft.sds_at(fluxes)
-        if np.allclose(sds, before, rtol=1e-10, atol=0.0):
-            break
-    return float((((soft.rows @ fluxes - soft.values) / sds) ** 2).sum()), fluxes
+        before, total = total, float((soft.in_sds(answer.x) ** 2).sum())
+        if not soft.below or abs(before - total) <= 1e-12 * total:
+            return total, answer.x
+        pieces = soft.linearised(answer.x)
+    raise ArithmeticError("the least change of a measured ratio could not be found")
 
 
 def _common_k(hard: Problem, soft: _Soft, enough: float) -> float:
@@ -184,21 +184,51 @@ def _common_k(hard: Problem, soft: _Soft, enough: float) -> float:
 
 @dataclass(frozen=True, slots=True)
 class _Soft:
-    """The measured rows. ``below`` holds the row of each ratio's denominator, by place."""
+    """The measured rows.
+
+    ``own`` are the sds of the quantities themselves, ``ratios`` the ratios as measured (NaN for
+    other quantities); ``below`` holds the row of each ratio's denominator, by place.
+    """
 
     rows: Vector
     values: Vector
     sds: Vector
     own: Vector
+    ratios: Vector
     below: dict[int, Vector]
 
-    def sds_at(self, fluxes: Vector) -> Vector:
-        """The sds of the rows, those of ratios at the denominators that fluxes give."""
-        sds = self.sds.copy()
+    def values_at(self, fluxes: Vector) -> Vector:
+        """The quantities' own values: of a ratio A / B, not of its row A - r B."""
+        values: Vector = self.rows @ fluxes
         for k, row in self.below.items():
-            size = abs(float(row @ fluxes))
-            sds[k] = self.own[k] * size if size else sds[k]
-        return sds
+            under = float(row @ fluxes)
+            values[k] = self.ratios[k] + (values[k] / under if under else 0.0)
+        return values
+
+    def in_sds(self, fluxes: Vector) -> Vector:
+        """The change of each measured value in its own sds."""
+        changes: Vector = (self.values_at(fluxes) - self.measured) / self.own
+        return changes
+
+    @property
+    def measured(self) -> Vector:
+        """The quantities' measured values."""
+        return np.where(np.isnan(self.ratios), self.values, self.ratios)
+
+    def linearised(self, fluxes: Vector) -> tuple[Vector, Vector, Vector]:
+        """Rows, values and sds that stand for the quantities around some fluxes.
+
+        A / B is about (A - R B) / B0 + R with R = A0 / B0.
+        """
+        rows, values, sds = self.rows.copy(), self.values.copy(), self.sds.copy()
+        now = self.values_at(fluxes)
+        for k, row in self.below.items():
+            under = float(row @ fluxes)
+            if under:
+                rows[k] = rows[k] + (self.ratios[k] - now[k]) * row
+                values[k] = (self.ratios[k] - now[k]) * under
+                sds[k] = self.own[k] * abs(under)
+        return rows, values, sds
 
     def holds_within(self, hard: Problem, k: float) -> bool:
         """Whether all can hold within k sd; a ratio's bounds are exact, not linearised."""
@@ -231,12 +261,16 @@ def _soft_rows(problem: Problem) -> _Soft:
         if quantity is not None and quantity.denominator is not None:
             row = _row_of(problem, quantity.denominator)
             if row is not None:
-                below[k] = row
+                below[k] = row / problem.rows[i].per_mole
     rows = [problem.rows[i] for i in places]
     sds = np.array([row.sd for row in rows], dtype=np.float64)
     sizes = np.array([row.denominator or 1.0 for row in rows])
     values = np.array([row.value for row in rows], dtype=np.float64)
-    return _Soft(problem.matrix[places], values, sds, sds / sizes, below)
+    ratios = np.array(
+        [np.nan if row.ratio is None or k not in below else row.ratio for k, row in enumerate(rows)]
+    )
+    own = np.where(np.isnan(ratios), sds, sds / sizes)
+    return _Soft(problem.matrix[places], values, sds, own, ratios, below)
 
 
 def _row_of(problem: Problem, quantity: Quantity) -> Vector | None:
@@ -255,13 +289,9 @@ def _row_of(problem: Problem, quantity: Quantity) -> Vector | None:
 
 def _changes(problem: Problem, soft: _Soft, fluxes: Vector) -> tuple[Change, ...]:
     labels = [row for row in problem.rows if row.sd is not None and row.sd > 0]
-    gaps, sds = soft.rows @ fluxes - soft.values, soft.sds_at(fluxes)
-    changes = []
-    for k, label in enumerate(labels):
-        measured, moved = float(soft.values[k]), float(gaps[k])
-        if label.ratio is not None:
-            measured, moved = label.ratio, moved * float(soft.own[k] / sds[k])
-        in_sd = float(gaps[k] / sds[k])
-        if label.quantity is not None:
-            changes.append(Change(label.name, label.quantity, measured, measured + moved, in_sd))
-    return tuple(changes)
+    now, in_sds = soft.values_at(fluxes), soft.in_sds(fluxes)
+    return tuple(
+        Change(label.name, label.quantity, float(was), float(new), float(sds))
+        for label, was, new, sds in zip(labels, soft.measured, now, in_sds, strict=True)
+        if label.quantity is not None
+    )

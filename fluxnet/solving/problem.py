@@ -37,7 +37,8 @@ class Row:
     (None for a balance). ``value`` and ``sd`` are those of a measured row.
 
     A ratio A / B at ``ratio`` is the row A - ratio B. Where it is measured, ``value`` is 0 and
-    ``sd`` is the ratio's own sd times ``denominator``, the size taken for B.
+    ``sd`` is the ratio's own sd times ``denominator``, the size taken for B. Ratios count
+    moles: ``per_mole`` is how many units of the basis are in one mole of B.
     """
 
     kind: RowKind
@@ -48,6 +49,7 @@ class Row:
     span: Span = NOWHERE
     ratio: float | None = None
     denominator: float | None = None
+    per_mole: float = 1.0
 
 
 @dataclass(frozen=True, slots=True)

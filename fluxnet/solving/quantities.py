@@ -15,8 +15,8 @@ from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.model import Basis, Direction, Network, Quantity, QuantityKind, Role, Species
 
 __all__ = [
-    "Frame", "ash_key", "default_direction", "derivative_frame", "frame_at", "has_mu",
-    "number_values", "quantity_row", "units_per_mole",
+    "Frame", "ash_key", "counts_moles", "default_direction", "derivative_frame", "frame_at",
+    "has_mu", "number_values", "quantity_row", "units_per_mole",
 ]
 
 Vector = NDArray[np.float64]
@@ -47,7 +47,7 @@ class Frame:
     def row(self, quantity: Quantity, ratio: float | None = None) -> Vector:
         """The row whose product with the fluxes is the quantity's value.
 
-        A ratio A / B gives the row A - ratio B, both in the unit of the basis.
+        A ratio A / B gives the row A - ratio B, told in moles (:func:`counts_moles`).
 
         Raises
         ------
@@ -68,7 +68,11 @@ class Frame:
             case QuantityKind.RATIO:
                 if ratio is None or quantity.numerator is None or quantity.denominator is None:
                     raise MisuseError("a ratio is a row only at a given value")
-                return self.row(quantity.numerator) - ratio * self.row(quantity.denominator)
+                parts = (quantity.numerator, quantity.denominator)
+                frame = self
+                if counts_moles(quantity):
+                    frame = replace(self, per_mole=np.ones_like(self.per_mole))
+                return frame.row(parts[0]) - ratio * frame.row(parts[1])
 
     def _rate(self, quantity: Quantity) -> Vector:
         try:
@@ -119,6 +123,12 @@ def units_per_mole(species: Species, basis: Basis) -> float:
     return float(carbon) if counted else 1.0
 
 
+def counts_moles(quantity: Quantity) -> bool:
+    """Whether a ratio is one of moles in every basis: it is, unless one of its parts is mu."""
+    parts = (quantity.numerator, quantity.denominator)
+    return all(part is not None and part.kind is not QuantityKind.MU for part in parts)
+
+
 def has_mu(network: Network, basis: Basis) -> bool:
     """Whether a specific growth rate has a meaning: biomass, and rates per biomass."""
     return bool(_biomass(network)) and basis in (Basis.SPECIFIC, Basis.CARBON)
@@ -161,7 +171,7 @@ def quantity_row(
     Rates in the unit of the basis (C-mol where the basis counts C-mol and the species holds
     carbon), mu in 1/h: mu = sum over biomass of q_X [mmol/g/h] M_X [g/mol] / 1000 with
     M_X = (organic mass of the formula) / (1 - ash). A carrier's surplus is what is made of it
-    less what is spent. A ratio A / B gives A - ``ratio`` B.
+    less what is spent. A ratio A / B gives A - ``ratio`` B in moles.
 
     Parameters
     ----------

@@ -31,7 +31,7 @@ from fluxnet.solving.applying import (
     may_reverse,
 )
 from fluxnet.solving.problem import Row, RowKind
-from fluxnet.solving.quantities import default_direction
+from fluxnet.solving.quantities import counts_moles, default_direction, units_per_mole
 from fluxnet.solving.words import limit_words
 
 __all__ = ["Sheet", "lay_rows"]
@@ -125,9 +125,19 @@ def lay_rows(
     for limit in hard:
         if limit.is_measured:
             readings.append(_limit_reading(limit, network))
-    known = {r.quantity: abs(r.value) for r in readings} | denominators
+    known = {r.quantity: abs(r.value) for r in readings}
     for reading in readings:
-        _add_reading(draft, reading, within, known)
+        per_mole = _per_mole(reading.quantity, network, run)
+        below = reading.quantity.denominator
+        size = denominators.get(below) if below is not None else None
+        if below is not None and not size:
+            size = known.get(below, 0.0) / per_mole
+            if not size:
+                # No size is known before a solution is: the caller sees which rows rest on this.
+                size = max((v for q, v in known.items() if q.denominator is None), default=0.0)
+                size = size or 1.0
+                draft.guessed.add(len(draft.rows))
+        _add_reading(draft, reading, within, size, per_mole)
     return Sheet(
         rows=tuple(draft.rows),
         low=np.array(draft.low, dtype=np.float64),
@@ -170,28 +180,34 @@ def _limit_reading(limit: Limit, network: Network) -> _Reading:
     )
 
 
+def _per_mole(quantity: Quantity, network: Network, run: Run | None) -> float:
+    """Units of the basis in a mole of a ratio's denominator."""
+    below = quantity.denominator
+    species = network.find_species(below.name) if below is not None else None
+    if species is None or not counts_moles(quantity):
+        return 1.0
+    return units_per_mole(species, run.basis if run is not None else network.basis)
+
+
 def _add_reading(
-    draft: _Draft, reading: _Reading, within: float | None, known: dict[Quantity, float]
+    draft: _Draft,
+    reading: _Reading,
+    within: float | None,
+    size: float | None,
+    per_mole: float,
 ) -> None:
     """A measured value as a row: free, within K sd, or an equality where it is exact."""
     value, sd, ratio = reading.value, reading.sd, None
-    size: float | None = None
-    below = reading.quantity.denominator
-    if below is not None:
-        size = known.get(below, 0.0)
-        if not size:
-            # No size is known before a solution is: the caller sees which rows rest on this.
-            size = max((abs(v) for q, v in known.items() if q.denominator is None), default=0.0)
-            size = size or 1.0
-            draft.guessed.add(len(draft.rows))
-        ratio, value, sd = reading.value, 0.0, reading.sd * size
+    if size is not None:
+        ratio, value, sd = reading.value, 0.0, reading.sd * abs(size)
     row = Row(
-        reading.kind, reading.name, reading.quantity, value, sd, reading.span, ratio, size
+        reading.kind, reading.name, reading.quantity, value, sd, reading.span, ratio, size,
+        per_mole,
     )
     low, high = -inf, inf
     if reading.sd == 0:
         low = high = value
-    elif within is not None and below is None:
+    elif within is not None and ratio is None:
         low, high = value - within * sd, value + within * sd
     draft.add(row, low, high, reading.source, size or 1.0)
     if ratio is not None and within is not None and reading.sd > 0:

@@ -258,3 +258,14 @@ def test_what_the_model_does_not_have_cannot_be_asked_for(make_network, make_run
         build_problem(network, make_run(network, "glucose in nan ± 0.1"))
     with pytest.raises(MisuseError, match="within"):
         build_problem(network, within=float("nan"))
+
+
+def test_ratios_count_moles_also_where_rates_count_carbon(make_network, make_run):
+    network = make_network(YEAST, ("ethanol / glucose = 1.8 ± 0.1",), basis=Basis.CARBON)
+    built = build_problem(network, make_run(network, "glucose in 3 ± 0.2"))
+    i = named(built, "limit ethanol / glucose = 1.8 ± 0.1")
+    # One ethanol a pass of adh, one glucose a pass of glycolysis, whatever carbon they hold.
+    assert built.problem.matrix[i].tolist() == pytest.approx([-1.8, 1, 0, -0.36, 0])
+    row = built.problem.rows[i]
+    assert row.denominator == pytest.approx(0.5)  # 3 C-mol of glucose
+    assert row.sd == pytest.approx(0.05)

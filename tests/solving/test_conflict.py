@@ -7,6 +7,7 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
+from fluxnet.network.model import Basis
 from fluxnet.solving.alter import hard_part
 from fluxnet.solving.build import build_problem
 from fluxnet.solving.conflict import find_conflict, least_change
@@ -192,6 +193,7 @@ def test_a_changed_ratio_is_told_as_a_ratio_at_the_denominator_found(make_networ
     ratio = change.changes[0]
     assert (ratio.measured, ratio.changed) == pytest.approx((2.5, 2.0))
     assert ratio.in_sd == pytest.approx(-5)
+    assert change.total == pytest.approx(25)  # glucose itself need not move
     assert change.common_k == pytest.approx(5, rel=1e-6)
 
 
@@ -216,3 +218,18 @@ def test_the_hard_part_keeps_exact_values_only(make_network, make_run):
         if row.value is not None and np.isfinite(low)
     ]
     assert bounded == ["oxygen in"]
+
+
+def test_a_ratio_changes_by_as_much_where_rates_count_carbon(make_network, make_run):
+    limits = ("oxygen <= 0", "growth <= 0", "lactate <= 0")
+    answers = []
+    for basis, rate in (
+        (Basis.SPECIFIC, "glucose in 3 ± 0.2"),
+        (Basis.CARBON, "glucose in 18 ± 1.2"),
+    ):
+        network = make_network(CELL, limits, basis=basis)
+        run = make_run(network, "ethanol out / glucose in 2.5 ± 0.1", rate)
+        change = least_change(build_problem(network, run).problem)
+        answers.append((change.total, change.common_k, change.changes[0].changed))
+    assert answers[0] == pytest.approx(answers[1], rel=1e-6)
+    assert answers[0] == pytest.approx((25.0, 5.0, 2.0), rel=1e-6)
