@@ -24,7 +24,7 @@ __all__ = ["Intervals", "find_intervals"]
 Vector = NDArray[np.float64]
 
 _STEPS = 25
-_NEAR = 1e-3
+_NEAR = 1e-4
 
 
 @dataclass(frozen=True, slots=True)

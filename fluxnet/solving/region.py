@@ -141,11 +141,20 @@ def _bounds(
 def nearest(region: Region, target: Vector | None = None) -> QuadraticSolution:
     """The place within the bounds whose u is nearest to the centre (or another target).
 
-    The value of the answer is half the squared distance, less half of ``target`` squared.
+    The value of the answer is half the squared distance, less half of ``target`` squared. The
+    outcome is OPTIMAL or INFEASIBLE.
+
+    Raises
+    ------
+    ArithmeticError
+        Where no solver's answer passes its check: then nothing may be concluded.
     """
     if region.broken:
         nothing = np.zeros(len(region.bounds.low))
         return QuadraticSolution(Outcome.INFEASIBLE, None, np.nan, nothing, np.nan)
     centre = region.centre if target is None else target
     hidden = region.unseen.shape[1]
-    return solve_scaled(region.programme(np.concatenate([-centre, np.zeros(hidden)])))
+    found = solve_scaled(region.programme(np.concatenate([-centre, np.zeros(hidden)])))
+    if found.outcome not in (Outcome.OPTIMAL, Outcome.INFEASIBLE):
+        raise ArithmeticError("the nearest fluxes within the bounds could not be found")
+    return found
