@@ -48,12 +48,13 @@ class Loop:
 
     ``fluxes`` are exact, whole numbers where these are not huge, each with its reaction;
     negative for one that runs backwards. ``made`` is all that comes of them, ``species``
-    first. ``through`` are the other species that can be made out of nothing by this loop and
-    further reactions.
+    first. ``maker`` is the reaction of the loop that makes most of it. ``through`` are the
+    other species that can be made out of nothing by this loop and further reactions.
     """
 
     kind: Made
     species: str
+    maker: str
     fluxes: tuple[tuple[str, Fraction], ...]
     made: tuple[tuple[str, Fraction], ...]
     through: tuple[str, ...] = ()
@@ -98,10 +99,11 @@ def find_from_nothing(network: Network, stoich: Stoichiometry) -> FromNothing:
 
 
 def tell_from_nothing(network: Network, loops: Sequence[Loop]) -> tuple[Diagnostic, ...]:
-    """An error for each loop, at its first reaction; the others stand beside it."""
+    """An error for each loop, at the reaction that makes it; the others stand beside that."""
     told: list[Diagnostic] = []
     for loop in loops:
-        places = [r.span for r in network.reactions if r.name in loop.reactions]
+        members = [r for r in network.reactions if r.name in loop.reactions]
+        places = [r.span for r in sorted(members, key=lambda r: r.name != loop.maker)]
         names = and_list(loop.reactions)
         plural = len(loop.reactions) > 1
         subject = f"reactions {names} together make" if plural else f"reaction {names} makes"
@@ -156,6 +158,7 @@ def _loop(network: Network, cone: Cone, aim: Form, fluxes: tuple[Fraction, ...])
     return Loop(
         _kind(species),
         aim.name,
+        cone.reactions[max(aim.row, key=lambda j: aim.row[j] * fluxes[j])],
         tuple((name, v) for name, v in zip(cone.reactions, fluxes, strict=True) if v),
         (first, *amounts.items()),
     )

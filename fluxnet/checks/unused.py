@@ -12,17 +12,16 @@ __all__ = ["check_substrates", "check_unused"]
 
 
 def check_unused(network: Network) -> tuple[Diagnostic, ...]:
-    """Species and parameters that no reaction uses, of the base model or of any variant.
+    """Species that no reaction uses, of the base model or of any variant.
 
-    Where a variant is applied nothing is told: what it leaves out is meant to be.
+    Where a variant is applied nothing is told: what it leaves out is meant to be. Parameters
+    without use are told where the file is read.
     """
     if network.variant != "base":
         return ()
     reactions = [*network.reactions, *(r for v in network.variants for r in v.reactions)]
-    terms = [term for reaction in reactions for _, term in reaction.terms]
-    species = {t.species for t in terms}
-    parameters = {n for t in terms if t.coefficient for n in t.coefficient.parameters}
-    told = [
+    used = {term.species for reaction in reactions for _, term in reaction.terms}
+    return tuple(
         Diagnostic(
             Name.UNUSED_SPECIES,
             f"{s.name} is declared, but no reaction uses it",
@@ -30,19 +29,8 @@ def check_unused(network: Network) -> tuple[Diagnostic, ...]:
             mend="use it in a reaction, or take the declaration away",
         )
         for s in network.species
-        if s.name not in species and s.name not in network.free
-    ]
-    told += [
-        Diagnostic(
-            Name.UNUSED_PARAMETER,
-            f"parameter {p.name} stands in no coefficient",
-            p.span,
-            mend="use it in a coefficient, or take the line away",
-        )
-        for p in network.parameters
-        if p.name not in parameters
-    ]
-    return tuple(told)
+        if s.name not in used and s.name not in network.free
+    )
 
 
 def check_substrates(network: Network) -> tuple[Diagnostic, ...]:

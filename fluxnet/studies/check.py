@@ -23,7 +23,7 @@ from fluxnet.checks.graph import (
     tell_parts,
 )
 from fluxnet.checks.interior import find_interior
-from fluxnet.checks.nothing import Loop, find_from_nothing, tell_from_nothing
+from fluxnet.checks.nothing import Loop, Made, find_from_nothing, tell_from_nothing
 from fluxnet.checks.twins import check_twins
 from fluxnet.checks.unused import check_substrates, check_unused
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order, silence
@@ -156,7 +156,7 @@ def check_network(
     compositions = find_compositions(network)
     told = [
         *without_settled(told, network, compositions),
-        *tell_compositions(network, compositions),
+        *tell_compositions(network, _without_causes(compositions, nothing.loops)),
     ]
     step(7)
     return CheckResult(
@@ -178,6 +178,22 @@ def check_network(
         parts=parts,
         compositions=compositions,
         verified=interior.verified and nothing.verified and all(m.verified for m in most),
+    )
+
+
+def _without_causes(compositions: CompositionResult, loops: Sequence[Loop]) -> CompositionResult:
+    """Without the contradictions that a loop shows already.
+
+    Matter or electrons from nothing rule out every composition of the species on the way, so
+    that both name the same reactions; the loop says it more plainly.
+    """
+    shown = {name for loop in loops if loop.kind is not Made.ENERGY for name in loop.reactions}
+    return replace(
+        compositions,
+        contradictions=tuple(
+            c for c in compositions.contradictions
+            if shown.isdisjoint(r.name for r in c.reactions)
+        ),
     )
 
 

@@ -57,7 +57,7 @@ def test_a_pair_that_gains_energy_is_shown_with_whole_fluxes(read: Read) -> None
     assert told.message == "reactions up and down together make ATP out of nothing"
     assert told.because == "2 up + down: nothing -> ATP"
     assert told.mend == "correct a coefficient of ATP or a direction in one of these reactions"
-    assert [told.span.line, *(s.line for s in told.also)] == [21, 22]
+    assert [told.span.line, *(s.line for s in told.also)] == [22, 21]
 
 
 def test_a_reaction_that_must_run_backwards_is_counted_negative(read: Read) -> None:

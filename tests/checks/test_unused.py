@@ -35,14 +35,6 @@ def test_only_what_neither_the_model_nor_a_variant_uses_is_told(read: Read) -> N
     assert names(read(BASE)) == [(Name.UNUSED_SPECIES, "stray")]
 
 
-def test_a_parameter_in_no_coefficient_is_told(read: Read) -> None:
-    (species, parameter) = check_unused(read(BASE + "parameter idle = 1\n"))
-
-    assert species.name is Name.UNUSED_SPECIES
-    assert parameter.name is Name.UNUSED_PARAMETER
-    assert parameter.message == "parameter idle stands in no coefficient"
-
-
 def test_what_a_variant_leaves_without_use_is_meant(read: Read) -> None:
     variant, _ = apply_variant(read(BASE + "variant less\n    drop r2\n"), "less")
 
