@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable
 from dataclasses import dataclass
+from typing import NamedTuple
 
 from fluxnet.ground.names import Name
 from fluxnet.reading import syntax as s
@@ -14,8 +15,7 @@ from fluxnet.reading.parsing import Unparsed
 __all__ = ["Placed", "Rejected", "place_statements"]
 
 
-@dataclass(frozen=True, slots=True)
-class Placed:
+class Placed(NamedTuple):
     """A statement with its line and the block that it stands in.
 
     ``compartment`` is the compartment's name for a reaction in one; ``variant`` the variant's.
@@ -27,8 +27,7 @@ class Placed:
     variant: s.Word | None = None
 
 
-@dataclass(frozen=True, slots=True)
-class Rejected:
+class Rejected(NamedTuple):
     """A line that could not be read, and the compartment that it stands in."""
 
     line: LogicalLine

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from typing import NamedTuple
 
 from fluxnet.ground.diagnostic import Acceptance
 from fluxnet.ground.names import Name, Severity
@@ -24,8 +24,7 @@ _SPELLINGS = {
 }
 
 
-@dataclass(frozen=True, slots=True)
-class Head:
+class Head(NamedTuple):
     """Title and basis of the model that was named; those of used files do not count."""
 
     title: str

@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from typing import NamedTuple
 
 from fluxnet.reading import syntax as s
 
 __all__ = ["Cells", "lay_out"]
 
 
-@dataclass(frozen=True, slots=True)
-class Cells:
+class Cells(NamedTuple):
     """The first word, a name that stands in a column of its own (empty: none), the rest.
 
     ``word`` of a reaction is empty, its ``name`` the reaction's and ``rest`` starts with the

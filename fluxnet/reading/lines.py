@@ -10,7 +10,7 @@ import re
 import unicodedata
 from bisect import bisect_right
 from collections.abc import Sequence
-from dataclasses import dataclass
+from typing import NamedTuple
 
 from fluxnet.ground.source import Source, Span
 
@@ -33,8 +33,7 @@ _STARTS = re.compile(
 )
 
 
-@dataclass(frozen=True, slots=True)
-class _Piece:
+class _Piece(NamedTuple):
     """A part of a logical line that comes from one line of the file.
 
     ``start`` is its first offset in the logical text. ``columns`` are the columns of its
@@ -48,8 +47,7 @@ class _Piece:
     columns: tuple[int, ...] | None
 
 
-@dataclass(frozen=True, slots=True)
-class LogicalLine:
+class LogicalLine(NamedTuple):
     """One statement's text, its indentation in columns, and where it comes from."""
 
     file: str

@@ -6,6 +6,7 @@ import re
 from collections.abc import Iterable
 from dataclasses import dataclass, field
 from pathlib import Path
+from typing import NamedTuple
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
@@ -14,7 +15,6 @@ from fluxnet.network.model import Role
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed, Rejected, place_statements
 from fluxnet.reading.fault_record import NAME, Known
-from fluxnet.reading.faults import explain_line
 from fluxnet.reading.findings import Findings, nearest_names
 from fluxnet.reading.lines import LogicalLine, logical_lines
 from fluxnet.reading.parsing import Unparsed, parse_statement
@@ -26,8 +26,7 @@ __all__ = ["Loaded", "Place", "load_statements"]
 _ROLES = {role.value for role in Role}
 
 
-@dataclass(frozen=True, slots=True)
-class Place:
+class Place(NamedTuple):
     """Where ``use`` looks and may look.
 
     ``folder`` is the folder of the model named by the user (None where it came as a text
@@ -70,6 +69,8 @@ def _load(
     known = _known(parsed)
     for line, said in parsed:
         if isinstance(said, Unparsed):
+            from fluxnet.reading.faults import explain_line  # only faulty files need it
+
             explain_line(line, said, known, findings)
     placed, rejected = place_statements(parsed, findings)
     loaded.rejected.extend(rejected)

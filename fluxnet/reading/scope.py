@@ -6,6 +6,7 @@ import re
 from collections.abc import Iterable
 from dataclasses import dataclass, field
 from enum import Enum
+from typing import NamedTuple
 
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Span
@@ -28,8 +29,7 @@ class Kind(Enum):
     REACTION = "reaction"
 
 
-@dataclass(frozen=True, slots=True)
-class Mention:
+class Mention(NamedTuple):
     """A use of a species that is not declared."""
 
     line: LogicalLine

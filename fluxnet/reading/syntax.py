@@ -1,8 +1,10 @@
-"""What one statement says, before any name is looked up. Places are offsets in its line."""
+"""What one statement says, before any name is looked up. Places are offsets in its line.
+
+Named tuples, not dataclasses: there are many of them, and a check should start at once.
+"""
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from fractions import Fraction
 from typing import NamedTuple
 
@@ -85,8 +87,7 @@ class UnknownText(NamedTuple):
 CoefficientText = NumberText | Word | BracketText | UnknownText | None
 
 
-@dataclass(frozen=True, slots=True)
-class TermText:
+class TermText(NamedTuple):
     """A species on one side of a reaction with its coefficient (None where there is none)."""
 
     coefficient: CoefficientText
@@ -98,22 +99,19 @@ class TermText:
         return self.species.start if self.coefficient is None else self.coefficient.start
 
 
-@dataclass(frozen=True, slots=True)
-class TitleLine:
+class TitleLine(NamedTuple):
     """``model TITLE``."""
 
     words: Word | None
 
 
-@dataclass(frozen=True, slots=True)
-class BasisLine:
+class BasisLine(NamedTuple):
     """``basis UNIT``."""
 
     unit: Word
 
 
-@dataclass(frozen=True, slots=True)
-class CargoText:
+class CargoText(NamedTuple):
     """What stands behind ``carries``: nothing given for energy, a number or a formula else."""
 
     electrons: NumberText | None
@@ -122,8 +120,7 @@ class CargoText:
     end: int
 
 
-@dataclass(frozen=True, slots=True)
-class Entry:
+class Entry(NamedTuple):
     """One species of a declaration."""
 
     name: Word
@@ -134,16 +131,14 @@ class Entry:
     cargo: CargoText | None = None
 
 
-@dataclass(frozen=True, slots=True)
-class SpeciesLine:
+class SpeciesLine(NamedTuple):
     """``substrate``, ``product``, ``exchange``, ``biomass``, ``carrier``, ``inside``."""
 
     role: Role
     entries: tuple[Entry, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class Assignment:
+class Assignment(NamedTuple):
     """``NAME = VALUE ± SD in [LOW, HIGH]``."""
 
     name: Word
@@ -153,29 +148,25 @@ class Assignment:
     high: NumberText | None
 
 
-@dataclass(frozen=True, slots=True)
-class ParameterLine:
+class ParameterLine(NamedTuple):
     """``parameter`` and its assignment."""
 
     assignment: Assignment
 
 
-@dataclass(frozen=True, slots=True)
-class SettingLine:
+class SettingLine(NamedTuple):
     """``set`` and its assignment, in a variant."""
 
     assignment: Assignment
 
 
-@dataclass(frozen=True, slots=True)
-class CompartmentLine:
+class CompartmentLine(NamedTuple):
     """``compartment NAME``."""
 
     name: Word
 
 
-@dataclass(frozen=True, slots=True)
-class ReactionLine:
+class ReactionLine(NamedTuple):
     """``NAME : LEFT -> RIGHT``; a side of ``nothing`` has no terms."""
 
     name: Word
@@ -185,8 +176,7 @@ class ReactionLine:
     reversible: bool
 
 
-@dataclass(frozen=True, slots=True)
-class SingleText:
+class SingleText(NamedTuple):
     """A species, reaction or ``mu`` of a limit."""
 
     name: Word
@@ -201,8 +191,7 @@ class SingleText:
         return self.name.start
 
 
-@dataclass(frozen=True, slots=True)
-class QuantityText:
+class QuantityText(NamedTuple):
     """A single thing, or the ratio of two."""
 
     top: SingleText
@@ -219,8 +208,7 @@ class QuantityText:
         return self.top.end if self.bottom is None else self.bottom.end
 
 
-@dataclass(frozen=True, slots=True)
-class BoundText:
+class BoundText(NamedTuple):
     """What stands behind the quantity of a limit; ``other`` is the far end of ``between``."""
 
     relation: Relation
@@ -233,16 +221,14 @@ class BoundText:
     end: int
 
 
-@dataclass(frozen=True, slots=True)
-class LimitLine:
+class LimitLine(NamedTuple):
     """``limit QUANTITY BOUND``."""
 
     quantity: QuantityText
     bound: BoundText
 
 
-@dataclass(frozen=True, slots=True)
-class VariantLine:
+class VariantLine(NamedTuple):
     """``variant NAME "WORDS" from PARENTS``."""
 
     name: Word
@@ -250,43 +236,37 @@ class VariantLine:
     parents: tuple[Word, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class AdditionLine:
+class AdditionLine(NamedTuple):
     """``add to COMPARTMENT``."""
 
     compartment: Word
 
 
-@dataclass(frozen=True, slots=True)
-class DropLine:
+class DropLine(NamedTuple):
     """``drop`` and what it takes away."""
 
     items: tuple[Word | QuantityText, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class UseLine:
+class UseLine(NamedTuple):
     """``use "FILE"``."""
 
     path: Word
 
 
-@dataclass(frozen=True, slots=True)
-class FreeLine:
+class FreeLine(NamedTuple):
     """``free NAMES``."""
 
     names: tuple[Word, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class BalanceLine:
+class BalanceLine(NamedTuple):
     """``balance NAMES``."""
 
     names: tuple[Word, ...]
 
 
-@dataclass(frozen=True, slots=True)
-class AcceptText:
+class AcceptText(NamedTuple):
     """``accept NAME: REASON``."""
 
     name: Word
@@ -300,8 +280,7 @@ Line = (
 )
 
 
-@dataclass(frozen=True, slots=True)
-class Statement:
+class Statement(NamedTuple):
     """What one line says, and the warnings that it accepts."""
 
     line: Line
