@@ -72,8 +72,9 @@ compartment maintenance
 
 limit  upkeep = 3 ± 1.5
 
-variant anaerobic
+variant anaerobic "no air; without it the cells do not make 2-oxoglutarate dehydrogenase"
     limit  oxygen <= 0
+    drop   kgd
 
 variant glucokinase "glucose is paid with ATP in place of PEP"
     drop   pts

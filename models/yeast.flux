@@ -10,8 +10,10 @@
 #              pumps protons, so one P/O ratio serves both. NADPH comes from the pentose phosphate
 #              way and from the oxidation of acetaldehyde. Without air the mitochondrial NADH leaves
 #              by the shuttle of ethanol and acetaldehyde, and glycerol takes up what growth leaves.
-#              pyruvate-in and succinate-in are pyruvate and succinate inside the cell. Transport
-#              costs nothing but what is written.
+#              Succinate could do the same and save ATP; that cells make little of it is regulation,
+#              which a list of reactions does not know: measure it, or limit it. pyruvate-in and
+#              succinate-in are pyruvate and succinate inside the cell. Transport costs nothing but
+#              what is written.
 # Fitted       The NADPH need and the share of the precursors, so that growth without air leaves
 #              0.19 mol NADH per C-mol (a glycerol of 0.077 C-mol per 0.137 C-mol of biomass);
 #              K_X, so that the same yields hold with an upkeep of 1 mmol/g/h at 0.3 1/h.

@@ -43,7 +43,7 @@ def test_propionic_fermentation_of_other_proportions_is_impossible(ask):
 def _water(run) -> float:
     """The water made, by the net equation of the whole cell."""
     whole = next(e for e in run.equations if e.compartment is None)
-    return next(t.coefficient for t in whole.terms if t.species == "water")
+    return next(t.coefficient for t in whole.terms if t.species == "H2O")
 
 
 # O2, NH3, X, H2O, CO2 per mol of substrate; g X per g substrate; g X per g O2.
@@ -62,8 +62,8 @@ def test_growth_with_two_thirds_of_the_carbon_in_cells(ask, substrate):
     for name, value in (
         ("oxygen", oxygen), ("ammonia", ammonia), ("X", cells), ("CO2", carbon_dioxide),
     ):  # fmt: skip
-        assert run.rate(name) == pytest.approx(value, rel=1e-4)
-    assert _water(run) == pytest.approx(water, rel=1e-4)
+        assert run.rate(name) == pytest.approx(value, rel=2e-4)
+    assert _water(run) == pytest.approx(water, rel=2e-4)
     found = next(y for y in run.yields if y.product == "X" and y.substrate == substrate)
     assert found.per_mass == pytest.approx(on_substrate, rel=0.005)
     mass_of_cells = found.per_mass * {"glucose": 180.156, "hexadecane": 226.45}[substrate]
