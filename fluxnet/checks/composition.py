@@ -86,7 +86,10 @@ def find_compositions(network: Network) -> CompositionResult:
     lines = {e.reaction.name: e.reaction for b in balances for e in b.equations}
     used = {t.species for r in lines.values() for _, t in r.terms}
     contradictions = find_contradictions(balances, unknown)
-    spoilt = {n for c in contradictions for n in c.species}
+    spoilt = {t.species for c in contradictions for r in c.reactions for _, t in r.terms}
+    for balance in balances:
+        for k in set().union(*balance.found.clashes):
+            spoilt.update(balance.equations[k].factors)
     rounded = {b.equations[k].reaction.name for b in balances for k in b.found.rounded}
     return CompositionResult(
         tuple(_implied(n, balances) for n in unknown if n in used - spoilt),

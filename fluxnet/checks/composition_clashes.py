@@ -85,8 +85,7 @@ def find_contradictions(
     Each cause is so told once: one wrong coefficient breaks several balances.
     """
     found = [c for b in balances for c in (*_failing(b), *_negative(b))]
-    if not found:
-        found = list(_empty(balances, unknown))
+    found = [_emptied(c, balances) for c in found] or list(_empty(balances, unknown))
     kept: list[Contradiction] = []
     taken: set[str] = set()
     for one in sorted(found, key=lambda c: len(c.reactions)):
@@ -107,6 +106,26 @@ def _failing(balance: Balance) -> Iterator[Contradiction]:
             Reason.FAILS, tuple(e.reaction for e in chosen), _names(chosen),
             balance.functional.name, weights, gap,
         )  # fmt: skip
+
+
+def _emptied(found: Contradiction, balances: Sequence[Balance]) -> Contradiction:
+    """A smaller cause inside a contradiction: lines that let a species hold nothing at all.
+
+    Only lines in which everything known cancels can do that by themselves.
+    """
+    names = {r.name for r in found.reactions}
+    filled = {e.reaction.name for b in balances for e in b.equations if e.gap}
+    hollow = [r for r in found.reactions if r.name in names - filled]
+
+    for name in found.species:
+
+        def impossible(members: Iterable[int], name: str = name) -> bool:
+            return _is_empty(balances, name, {hollow[k].name for k in members})
+
+        if hollow and impossible(range(len(hollow))):
+            kept = shrink(range(len(hollow)), impossible)
+            return Contradiction(Reason.EMPTY, tuple(hollow[k] for k in kept), (name,))
+    return found
 
 
 def _names(equations: Iterable[Equation], first: str = "") -> tuple[str, ...]:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from fractions import Fraction
 
 from fluxnet.checks.composition import CompositionResult, Contradiction, Implied, Reason
@@ -17,10 +17,22 @@ from fluxnet.network.model import Network
 __all__ = ["tell_compositions", "without_settled"]
 
 
-def tell_compositions(network: Network, result: CompositionResult) -> tuple[Diagnostic, ...]:
-    """A note for each implied composition, an error for each contradiction."""
+def tell_compositions(
+    network: Network, result: CompositionResult, told: Iterable[frozenset[str]] = ()
+) -> tuple[Diagnostic, ...]:
+    """A note for each implied composition, an error for each contradiction.
+
+    ``told`` are sets of reactions of which something worse is said already, that they make
+    something out of nothing: a contradiction inside one of them has the same cause and is
+    not told once more.
+    """
     spans = {s.name: s.span for s in network.species}
-    found = [_contradiction(c) for c in result.contradictions]
+    known = tuple(told)
+    found = [
+        _contradiction(c)
+        for c in result.contradictions
+        if not any(t.issuperset(r.name for r in c.reactions) for t in known)
+    ]
     found.extend(_implied(i, spans, at_values=result.at_values) for i in result.implied)
     found.extend(
         Diagnostic(

@@ -187,6 +187,17 @@ def test_a_species_that_could_only_hold_nothing_is_an_error():
     assert [r.name for r in found.reactions] == ["a"]
 
 
+def test_a_loop_that_lets_species_hold_nothing_is_the_cause_of_a_contradiction_around_it():
+    net = network("feed: glucose -> 6 pool", "keep: pool -> 2 store", "give: store -> pool")
+    result = find_compositions(net)
+    (found,) = result.contradictions
+    assert found.reason is Reason.EMPTY
+    assert [r.name for r in found.reactions] == ["keep", "give"]
+    told = [frozenset({"keep", "give", "other"})]
+    assert tell_compositions(net, result, told) == ()
+    assert len(tell_compositions(net, result, [frozenset({"keep"})])) == 1
+
+
 def test_what_is_not_determined_is_said():
     net = network("a: glucose -> u + v + 2 NADH")
     result = find_compositions(net)
