@@ -33,7 +33,7 @@ ROOMS = {
     "highspy": {"solving"},
     "daqp": {"solving"},
     "networkx": {"checks/graph.py"},
-    "pandas": {"tables", "ground/table.py"},
+    "pandas": {"tables", "ground/table.py", "api"},
     "python_calamine": {"tables"},
     "pint": {"chemistry/units.py", "chemistry"},
     "rich": {"presenting/terminal.py", "cli"},

@@ -15,18 +15,17 @@ def conflict_blocks(run: FluxSolution) -> tuple[Block, ...]:
     blocks: list[Block] = []
     conflict, change = run.conflict, run.least_change
     if conflict is not None and conflict.members:
+        within = f", each within {run.within:g} sd" if run.within is not None else ""
         columns = (Column("cannot hold together", "words", wrap=56), Column("kind", "kind"))
-        rows = tuple((m.words, m.kind.value) for m in conflict.members)
-        checked = "each was tried" if conflict.verified else "not verified"
-        blocks.append(
-            Table(
-                "conflict",
-                "These cannot hold together; without any one of them the others can "
-                f"({checked})",
-                columns,
-                rows,
-            )
-        )
+        given = conflict.given or conflict.members
+        rows = tuple((m.words, m.kind.value) for m in given)
+        blocks.append(Table("conflict", f"These cannot hold together{within}", columns, rows))
+        making = [m.words for m in conflict.members if m not in given]
+        beside = f" It rests on {'; '.join(making)}." if making else ""
+        checked = "without any one of them the others can (each was tried)."
+        if not conflict.verified:
+            checked = "whether each of them is needed could not be verified."
+        blocks.append(Sentence(f"{checked[0].upper()}{checked[1:]}{beside}"))
     if change is not None and change.possible and change.changes:
         columns = (
             Column("measured value", "name"),
@@ -34,9 +33,9 @@ def conflict_blocks(run: FluxSolution) -> tuple[Block, ...]:
             Column("would be", "changed", align=Align.RIGHT),
             Column("by [sd]", "in_sd", align=Align.RIGHT, decimals=1),
         )
-        moved = [c for c in change.changes if abs(c.in_sd) >= 0.005]
+        moved = [c for c in change.changes if abs(c.in_sd) >= 0.05]
         changes = tuple((str(c.quantity), c.measured, c.changed, c.in_sd) for c in moved)
-        notes = []
+        notes = ["parameters stand at their values, limits and exact values do not give way"]
         if change.common_k is not None:
             notes.append(
                 "all measured values can hold together within "

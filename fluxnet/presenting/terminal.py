@@ -140,9 +140,10 @@ class Terminal:
         from rich.table import Table as Grid
         from rich.text import Text
 
+        console.print()
+        if table.title:
+            self._print(console, table.title, "bold")
         grid = Grid(
-            title=Text(self._plain(table.title), style="bold" if self.colour else ""),
-            title_justify="left",
             box=box.Box(_ASCII_RULE, ascii=True) if self.ascii_only else box.SIMPLE_HEAD,
             pad_edge=False,
             show_edge=False,
@@ -161,7 +162,6 @@ class Terminal:
         for row in rows:
             grid.add_row(*(Text(self._plain(cell)) for cell in row))
         with console.capture() as capture:
-            console.print()
             console.print(grid)
         # rich fills every line to the table's width; a pipe has no use for that.
         lines = (line.rstrip() for line in capture.get().split("\n"))

@@ -94,7 +94,7 @@ def measured_words(quantity: Quantity, value: float, sd: float, unit: str = "") 
         unit = "1/h"
     elif quantity.kind is QuantityKind.RATIO:
         unit = ""
-    told = f"measured {number_words(value)} ± {number_words(sd)}" if sd else (
+    told = f"measured {number_words(value)} ± {sd:.2g}" if sd else (
         f"exactly {number_words(value)}"
     )
     return f"{quantity}, {told} {unit}".rstrip()

@@ -146,7 +146,7 @@ def check_network(
     blocked: tuple[Blocked, ...] = ()
     if not starved:
         blocked = find_blocked(network, cone, interior, dead_ends, parts)
-        told.extend(tell_blocked(network, blocked))
+        told.extend(tell_blocked(network, blocked, proven=interior.verified))
     step(4)
     most = find_most_energy(network, stoich)
     told.extend(tell_too_much_energy(network, most))

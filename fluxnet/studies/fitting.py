@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import replace
 
 import numpy as np
@@ -132,8 +133,8 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
     measured = {row.quantity for row in fit.rows}
     rates = (*fit.rows, *(row for row in fit.rates if row.quantity not in measured))
 
-    def spans(rows: Array) -> Span:
-        intervals = spans_of(fit, rows)
+    def spans(rows: Array, drift: Mapping[str, Array]) -> Span:
+        intervals = spans_of(fit, rows, dict(drift))
         return Span(intervals.sd, intervals.low, intervals.high)
 
     account = keep_account(fit.built, fit.fluxes, spans)

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from dataclasses import replace
 
 import numpy as np
@@ -23,7 +23,7 @@ from fluxnet.solving.quantities import default_direction, quantity_row
 from fluxnet.solving.ranges import find_ranges
 from fluxnet.solving.unbounded import explain_unbounded
 from fluxnet.studies.aims import Aim, Sense
-from fluxnet.studies.settling import Array, Span, keep_account
+from fluxnet.studies.settling import Array, Span, Spans, keep_account
 from fluxnet.studies.solution import (
     BindingLimit,
     FluxEstimate,
@@ -119,7 +119,7 @@ def _at_optimum(
         for j, reaction in enumerate(built.network.reactions)
     )
 
-    def spans(rows: Array) -> Span:
+    def spans(rows: Array, drift: Mapping[str, Array]) -> Span:
         found = find_ranges(at_best, rows)
         return Span(np.full(len(rows), np.nan), found.low, found.high)
 
@@ -144,7 +144,7 @@ def _is_point(low: float, high: float) -> bool:
 
 
 def _rates(
-    built: Built, fluxes: Array, spans: Callable[[Array], Span], unit: str
+    built: Built, fluxes: Array, spans: Spans, unit: str
 ) -> tuple[RateEstimate, ...]:
     """The measured quantities, then the boundary rates that were not measured."""
     measured = {row.quantity: row for row in built.problem.rows if row.value is not None}
@@ -162,7 +162,7 @@ def _rates(
             for q in asked
         ]
     ).reshape(len(asked), len(fluxes))
-    span = spans(rows)
+    span = spans(rows, {})
     values = rows @ fluxes
     tested = _tested(built)
     estimates: list[RateEstimate] = []

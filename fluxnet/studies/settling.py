@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 
 import numpy as np
@@ -13,7 +13,7 @@ from fluxnet.studies.equations import NetEquation, add_implied, find_equations
 from fluxnet.studies.ledger import LedgerLine, keep_ledger, ledger_places, ledger_rows
 from fluxnet.studies.yields import Yield, find_yields
 
-__all__ = ["Account", "Span", "keep_account"]
+__all__ = ["Account", "Array", "Span", "Spans", "keep_account"]
 
 Array = NDArray[np.float64]
 
@@ -30,6 +30,9 @@ class Span:
     high: Array
 
 
+Spans = Callable[[Array, Mapping[str, Array]], Span]
+
+
 @dataclass(frozen=True, slots=True)
 class Account:
     """What a flux vector amounts to."""
@@ -39,7 +42,7 @@ class Account:
     yields: tuple[Yield, ...]
 
 
-def keep_account(built: Built, fluxes: Array, spans: Callable[[Array], Span]) -> Account:
+def keep_account(built: Built, fluxes: Array, spans: Spans) -> Account:
     """The ledger, the net equations and the yields at given fluxes.
 
     Parameters
@@ -49,13 +52,20 @@ def keep_account(built: Built, fluxes: Array, spans: Callable[[Array], Span]) ->
     fluxes
         One a reaction, in the unit of the rates.
     spans
-        Gives what is known of functionals, each a row over the reactions.
+        Gives what is known of functionals, each a row over the reactions; beside the rows it
+        is given their derivatives by each uncertain parameter.
     """
     network, matrix = built.network, built.stoichiometry
     coefficients = matrix.floats(built.values)
     places = ledger_places(network, matrix)
     rows = ledger_rows(network, matrix, coefficients, places)
-    span = spans(rows)
+    drift = {
+        number.name: ledger_rows(
+            network, matrix, matrix.derivative(number.name, built.values), places
+        )
+        for number in built.uncertain
+    }
+    span = spans(rows, drift)
     equations = find_equations(network, matrix, coefficients, fluxes)
     whole = add_implied(equations[-1], network)
     releases = {t.species: t.coefficient for t in whole.terms if not t.implied}

@@ -33,11 +33,17 @@ def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
 
 
 def _worst(solution: FluxSolution) -> str:
-    moved = [r for r in solution.rates if r.z is not None and r.kind is RateKind.BALANCEABLE]
-    if not moved:
+    """The rates that were moved most, as many as are nearly alike."""
+    tested = [r for r in solution.rates if r.z is not None and r.kind is RateKind.BALANCEABLE]
+    ranked = sorted(tested, key=lambda rate: -abs(rate.z or 0.0))
+    if not ranked:
         return "no single rate can be named"
-    worst = max(moved, key=lambda rate: abs(rate.z or 0.0))
-    return f"the largest adjustment is that of {worst.quantity} (z = {worst.z:.1f})"
+    most = abs(ranked[0].z or 0.0)
+    alike = [rate for rate in ranked[:4] if abs(rate.z or 0.0) > most - 0.5]
+    names = _listed([f"{rate.quantity} (z = {rate.z:.1f})" for rate in alike])
+    if len(alike) == 1:
+        return f"the largest adjustment is that of {names}"
+    return f"the largest adjustments, nearly alike, are those of {names}"
 
 
 def _largest_spender(solution: FluxSolution) -> str:
@@ -90,7 +96,7 @@ def tell_infeasible(
     conflict: Conflict, change: LeastChange | None, within: float | None = None
 ) -> str:
     """What cannot hold together, and how much would have to give way."""
-    given = [member.words for member in conflict.given]
+    given = [member.name for member in conflict.given]
     names = _listed(given) if given else "what the model demands"
     held = f" within {within:g} sd" if within is not None else ""
     words = f"No fluxes meet everything{held}: {names} cannot hold together"
