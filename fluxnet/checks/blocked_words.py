@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 
 from fluxnet.checks.blocked import Blocked, BlockedBy, Obstacle
 from fluxnet.checks.words import and_list, names_list
@@ -15,11 +16,14 @@ from fluxnet.solving.words import limit_words
 __all__ = ["tell_blocked"]
 
 
-def tell_blocked(network: Network, groups: Sequence[Blocked]) -> tuple[Diagnostic, ...]:
+def tell_blocked(
+    network: Network, groups: Sequence[Blocked], *, proven: bool = True
+) -> tuple[Diagnostic, ...]:
     """A warning for each cause that is told nowhere else.
 
     Dead ends and parts cut off have diagnostics of their own. A limit at zero is meant to
-    close the reactions that touch what it limits: only what else it closes is told.
+    close the reactions that touch what it limits: only what else it closes is told. What was
+    not ``proven`` in exact arithmetic says so.
     """
     told: list[Diagnostic] = []
     for group in groups:
@@ -28,7 +32,11 @@ def tell_blocked(network: Network, groups: Sequence[Blocked]) -> tuple[Diagnosti
             continue
         if kinds == {BlockedBy.LIMIT} and _is_meant(network, group):
             continue
-        told.append(_tell(network, group))
+        one = _tell(network, group)
+        if not proven:
+            doubt = "found in floating-point numbers, and not proven exactly"
+            one = replace(one, because=f"{one.because}; {doubt}" if one.because else doubt)
+        told.append(one)
     return tuple(told)
 
 

@@ -154,8 +154,10 @@ def _most(
     if optimum is None:
         return replace(nothing, amount=None)
     exact = exact_vertex(cone, taken, rows_of_cone, optimum.scaled)
+    bound = _bound(cone, optimum)
     if exact is None:
-        return nothing
+        roughly = Fraction(optimum.amount).limit_denominator(10**6)
+        return replace(nothing, amount=roughly, verified=not roughly and bound == 0)
     amount = product(aim.row, exact)
     conversion = tuple(
         (s.name, n) for s in network.boundary if (n := product(rows[s.name], exact))
@@ -166,14 +168,15 @@ def _most(
         amount,
         conversion if amount else (),
         conversion_energy(network, conversion) if amount else None,
-        _bound(cone, optimum) == amount,
+        bound == amount,
     )
 
 
 @dataclass(frozen=True, slots=True)
 class _Optimum:
-    """Scaled fluxes of the thriftiest optimum, and prices of the sides and of the substrate."""
+    """The most per mole, scaled fluxes that make it, prices of the sides and the substrate."""
 
+    amount: float
     scaled: NDArray[np.float64]
     weights: list[float]
     price: float
@@ -204,8 +207,9 @@ def _optimum(cone: Cone, rows: ConeRows) -> _Optimum | None:
     scaled[both] -= thrifty.fluxes[count:]
     weights = rows.weights(len(cone.sides), best.row_prices, best.column_prices[:count])
     unit = rows.row_scale[aim]
-    price = without_noise(best.row_prices[taken]) * rows.row_scale[taken] / unit
-    return _Optimum(scaled, (weights[:-2] / unit).tolist(), float(price))
+    mole = float(rows.row_scale[taken] / unit)
+    price = without_noise(best.row_prices[taken]) * mole
+    return _Optimum(best.objective * mole, scaled, (weights[:-2] / unit).tolist(), price)
 
 
 def _bound(cone: Cone, optimum: _Optimum) -> Fraction | None:

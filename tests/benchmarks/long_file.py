@@ -123,9 +123,13 @@ def _step(dice: random.Random, at: Compound, name: str, reaction: str) -> tuple[
 
 
 def _timed(work: Callable[[], Result]) -> tuple[Result, float]:
-    start = time.perf_counter()
-    result = work()
-    return result, time.perf_counter() - start
+    """What some work gives, and the least of three times it takes [s]."""
+    least = float("inf")
+    for _ in range(3):
+        start = time.perf_counter()
+        result = work()
+        least = min(least, time.perf_counter() - start)
+    return result, least
 
 
 def measure(count: int) -> tuple[float, float, float]:

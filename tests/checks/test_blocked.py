@@ -174,3 +174,11 @@ def test_two_causes_are_two_groups(read: Read) -> None:
         ("r1",): [(BlockedBy.ROLE, "acetate")],
         ("r2",): [(BlockedBy.ROLE, "xylose")],
     }
+
+
+def test_what_was_not_proven_says_so(read: Read) -> None:
+    network = read("substrate xylose\n" + BASE + "    r1 : 5 hub + 5 NADH -> 3 xylose\n")
+
+    (told,) = tell_blocked(network, blocked(network), proven=False)
+
+    assert told.because == "found in floating-point numbers, and not proven exactly"

@@ -79,6 +79,12 @@ def test_a_substrate_that_makes_none_says_zero(read: Read) -> None:
     assert (none["glycerol"].amount, none["glycerol"].equation) == (0, "")
 
 
+def test_a_substrate_that_a_limit_closes_makes_none(read: Read) -> None:
+    closed = most(read(BASE + "limit glucose = 0\n"))["glucose"]
+
+    assert (closed.amount, closed.conversion, closed.verified) == (0, (), True)
+
+
 def test_energy_from_nothing_has_no_end(read: Read) -> None:
     text = BASE.replace("inside    hub", "inside    A, B, hub")
     found = most(read(text + "    up : A + ATP -> B\n    down : B -> A + 2 ATP\n"))
