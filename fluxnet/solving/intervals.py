@@ -17,7 +17,7 @@ from fluxnet.solving.functionals import Functionals
 from fluxnet.solving.reach import Reach, reach_far, reach_flat
 from fluxnet.solving.region import Region, region_at
 from fluxnet.solving.statistics import chi_squared_quantile
-from fluxnet.solving.task import Point, Task, point_at
+from fluxnet.solving.task import Point, Task, flux_scale, point_at
 
 __all__ = ["Intervals", "find_intervals"]
 
@@ -91,7 +91,7 @@ def find_intervals(
         hidden = ~determined
     gradients[~hidden, seen:] = 0.0
     sd = np.where(hidden, np.nan, np.linalg.norm(gradients[:, :seen], axis=1))
-    scale = float(np.abs(point.fluxes).max(initial=0.0)) or 1.0
+    scale = flux_scale(task, point)
     constant = sizes <= 1e-12 * np.maximum(np.abs(values), 1e-3 * scale)
     sd[constant] = 0.0
     search = _Search(

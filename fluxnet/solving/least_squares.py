@@ -37,7 +37,7 @@ from fluxnet.solving.region import Region
 from fluxnet.solving.representative import take_least_flux
 from fluxnet.solving.spread import find_adjustments, find_spread, parameter_moves
 from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tail
-from fluxnet.solving.task import Task
+from fluxnet.solving.task import Point, Task, flux_scale
 from fluxnet.solving.weighing import Weighed, fit_weighed
 
 __all__ = ["fit_fluxes", "spans_of"]
@@ -167,7 +167,7 @@ def _told(
         status=FitStatus.INCONSISTENT if closes is False else FitStatus.SOLVED,
         built=built,
         reactions=names,
-        fluxes=_read_only(_rounded(point.fluxes)),
+        fluxes=_read_only(_rounded(task, point)),
         flux_sd=_read_only(fluxes.sd),
         low=_read_only(fluxes.low),
         high=_read_only(fluxes.high),
@@ -280,7 +280,7 @@ def _read_only(array: Vector) -> Vector:
     return array
 
 
-def _rounded(fluxes: Vector) -> Vector:
+def _rounded(task: Task, point: Point) -> Vector:
     """Fluxes without the dust that is left where they are zero."""
-    dust = 1e-13 * float(np.abs(fluxes).max(initial=0.0))
-    return np.where(np.abs(fluxes) <= dust, 0.0, fluxes)
+    dust = 1e-13 * flux_scale(task, point)
+    return np.where(np.abs(point.fluxes) <= dust, 0.0, point.fluxes)

@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 
 from fluxnet.solving.quadratic import Outcome, QuadraticSolution, solve_scaled
 from fluxnet.solving.small_programme import SmallProgramme
-from fluxnet.solving.task import Point, Task
+from fluxnet.solving.task import Point, Task, flux_scale
 
 __all__ = ["Bounds", "Region", "nearest", "region_at"]
 
@@ -98,7 +98,7 @@ def region_at(task: Task, point: Point, *, moving: bool = True) -> Region:
     left, sizes, right = np.linalg.svd(design, full_matrices=True)
     seen = right[:rank].T / sizes[:rank]
     unseen = right[rank:].T
-    scale = float(np.abs(point.fluxes).max(initial=0.0)) or 1.0
+    scale = flux_scale(task, point)
     reach = np.abs(point.tangent[:, :width] @ unseen).max(axis=0, initial=0.0)
     unseen = unseen * np.where(reach > 0, scale / np.where(reach > 0, reach, 1.0), 1.0)
     centre = left[:, :rank].T @ point.residuals
@@ -126,7 +126,7 @@ def _bounds(
         terms = np.concatenate([terms, np.abs(point.numbers) + task.sd])
     rows = np.hstack([slopes @ seen, slopes @ unseen])
     sizes = np.sqrt(np.einsum("ij,ij->i", rows, rows))
-    scale = float(np.abs(point.fluxes).max(initial=0.0)) or 1.0
+    scale = flux_scale(task, point)
     flat = sizes <= _FLAT * np.maximum(terms, 1e-3 * scale)
     missed = np.maximum(np.maximum(low, -high), 0.0)
     broken = np.flatnonzero(flat & (missed > _CONSTANT * np.maximum(terms, 1e-3 * scale)))

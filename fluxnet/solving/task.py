@@ -18,7 +18,10 @@ from fluxnet.solving.classify import Structure
 from fluxnet.solving.forms import Form
 from fluxnet.solving.moving import MovingRows, moving_rows
 
-__all__ = ["Chart", "Point", "Task", "chart_at", "least_squares_step", "point_at", "task_of"]
+__all__ = [
+    "Chart", "Point", "Task", "chart_at", "flux_scale", "least_squares_step", "point_at", "task_of",
+    "whitening",
+]
 
 Vector = NDArray[np.float64]
 Places = NDArray[np.intp]
@@ -33,6 +36,7 @@ class Task:
     inverse of the Cholesky factor of their covariance; ``bounded`` those of rows with bounds
     ``low`` and ``high``. The uncertain numbers have ``sd`` and a range. ``rank`` of the
     equalities, and how many directions the soft rows have ``seen``, are known exactly.
+    ``scale`` is the size of a usual flux, as values and bounds tell it.
     """
 
     rows: MovingRows
@@ -49,6 +53,7 @@ class Task:
     range_high: Vector
     rank: int
     seen: int
+    scale: float
 
     @property
     def numbers(self) -> int:
@@ -82,10 +87,21 @@ def task_of(built: Built, structure: Structure, extra: tuple[Form, ...] = ()) ->
             [i if i < len(problem.rows) else i + shift for i in places], dtype=np.intp
         )
 
+    equal_values = np.array([e.value for e in exact.equalities])
+    sizes = np.abs(rows.base).max(axis=1, initial=0.0)
+    sizes[sizes == 0] = 1.0
+    told = [
+        np.abs(equal_values) / sizes[stacked(equal)],
+        np.abs(built.measured_values) / sizes[list(built.measured)],
+        np.abs(low[bounded]) / sizes[stacked(bounded)],
+        np.abs(high[bounded]) / sizes[stacked(bounded)],
+    ]
+    known = np.concatenate(told)
+    known = known[np.isfinite(known) & (known > 0)]
     return Task(
         rows=rows,
         equal=stacked(equal),
-        equal_values=np.array([e.value for e in exact.equalities]),
+        equal_values=equal_values,
         soft=np.array(built.measured, dtype=np.intp),
         measured=built.measured_values,
         whitening=whitening(built.covariance),
@@ -97,6 +113,7 @@ def task_of(built: Built, structure: Structure, extra: tuple[Form, ...] = ()) ->
         range_high=np.array([u.high for u in built.uncertain]),
         rank=structure.rank,
         seen=structure.seen,
+        scale=float(np.median(known)) if len(known) else 1.0,
     )
 
 
@@ -218,6 +235,12 @@ def point_at(task: Task, chart: Chart, z: Vector, numbers: Vector) -> Point:
     return Point(
         chart, z, numbers, fluxes, values, tangent, slopes, residuals, design
     )
+
+
+def flux_scale(task: Task, point: Point) -> float:
+    """The size of the largest flux of a point; of a usual one where all are zero."""
+    largest = float(np.abs(point.fluxes).max(initial=0.0))
+    return largest if largest > 1e-9 * task.scale else task.scale
 
 
 def least_squares_step(design: Vector, residuals: Vector, rank: int) -> Vector:
