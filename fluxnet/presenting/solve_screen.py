@@ -60,17 +60,22 @@ def _run_blocks(run: FluxSolution) -> tuple[Block, ...]:
     return tuple(blocks)
 
 
+def _chance(p: float | None) -> str:
+    shown = format_p(p)
+    return f"p {shown}" if shown.startswith("<") else f"p = {shown}"
+
+
 def _assumptions(run: FluxSolution) -> list[Block]:
     lines: list[Block] = []
     test = run.test
     if test is not None and test.h is not None:
         closing = (
             f"Test: h = {format_number(test.h, 3)} on {test.dof} degrees of freedom "
-            f"(5 % limit {format_number(test.limit, 3)}), p = {format_p(test.p)}"
+            f"(5 % limit {format_number(test.limit, 3)}), {_chance(test.p)}"
         )
         if test.active:
             closing += (
-                f"; bounds add {format_number(test.bound_h, 3)} (p = {format_p(test.bound_p)}): "
+                f"; bounds add {format_number(test.bound_h, 3)} ({_chance(test.bound_p)}): "
                 + ", ".join(test.active)
             )
         lines.append(Sentence(closing + "."))

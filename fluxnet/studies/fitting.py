@@ -138,10 +138,11 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
         return Span(intervals.sd, intervals.low, intervals.high)
 
     account = keep_account(fit.built, fit.fluxes, spans)
+    rounding = 1e-9 * max((abs(row.value) for row in rates), default=0.0)
     return replace(
         frame,
         fluxes=fluxes,
-        rates=tuple(_rate(row, frame.unit) for row in rates),
+        rates=tuple(_rate(row, frame.unit, rounding) for row in rates),
         relations=tuple(f"{r.words} = {r.value:.4g} ± {r.sd:.2g}" for r in fit.relations),
         moved=tuple(MovedParameter(m.name, m.value, m.sd, m.moved, m.moved_sd) for m in fit.moved),
         ledger=account.ledger,
@@ -150,7 +151,7 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
     )
 
 
-def _rate(row: FittedRow, unit: str) -> RateEstimate:
+def _rate(row: FittedRow, unit: str, rounding: float) -> RateEstimate:
     return RateEstimate(
         quantity=row.quantity,
         unit=rate_unit(row.quantity, unit),
@@ -162,5 +163,5 @@ def _rate(row: FittedRow, unit: str) -> RateEstimate:
         high=row.high,
         z=row.z,
         kind=row.kind,
-        reversed_=row.value < 0 and row.quantity.direction is not None,
+        reversed_=row.value < -rounding and row.quantity.direction is not None,
     )

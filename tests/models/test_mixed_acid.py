@@ -79,3 +79,10 @@ def test_most_biomass_without_air(ask):
     assert run.optimum == pytest.approx(1 / 0.91, abs=1e-9)
     assert run.rate("ethanol") == pytest.approx(0.74 / 0.91, abs=1e-9)
     assert run.rate("acetate") == pytest.approx(0.72 / 0.91, abs=1e-9)
+
+
+def test_a_rate_that_is_zero_is_not_told_as_reversed(ask):
+    # the solver leaves some -1e-15 of succinate, which is no uptake
+    rates = {"glucose in": 100, "lactate out": 150, "acetate out": 20, "ethanol out": 21}
+    run = ask("mixed-acid", rates, variant="anaerobic", sd="5 %")
+    assert not any(r.reversed_ for r in run.rates)
