@@ -22,8 +22,9 @@ def tell_blocked(
     """A warning for each cause that is told nowhere else.
 
     Dead ends and parts cut off have diagnostics of their own. A limit at zero is meant to
-    close the reactions that touch what it limits: only what else it closes is told. What was
-    not ``proven`` in exact arithmetic says so.
+    close the reactions that touch what it limits: only what else it closes is told, and of a
+    variant's limit nothing, for its effects are what one looks at in a variant. What was not
+    ``proven`` in exact arithmetic says so.
     """
     told: list[Diagnostic] = []
     for group in groups:
@@ -102,12 +103,13 @@ def _also(network: Network, obstacle: Obstacle) -> tuple[Span, ...]:
 
 
 def _is_meant(network: Network, group: Blocked) -> bool:
-    """Whether every reaction touches what the limits are set on."""
+    """Whether a variant set the limits, or every reaction touches what they are set on."""
     names = {o.name for o in group.obstacles}
-    quantities = [
-        limit.quantity for limit in network.limits if limit_words(limit, network) in names
-    ]
-    touched = {name for q in quantities for name in _names(network, q)}
+    limits = [limit for limit in network.limits if limit_words(limit, network) in names]
+    of_variants = {limit.span for variant in network.variants for limit in variant.limits}
+    if all(limit.span in of_variants for limit in limits):
+        return True
+    touched = {name for limit in limits for name in _names(network, limit.quantity)}
     for name in group.reactions:
         reaction = network.find_reaction(name)
         if reaction is None:

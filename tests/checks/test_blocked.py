@@ -12,6 +12,7 @@ from fluxnet.checks.interior import find_interior
 from fluxnet.ground.names import Name
 from fluxnet.matrices.stoichiometry import stoichiometry
 from fluxnet.network.model import Network
+from fluxnet.network.variant import apply_variant
 
 Read = Callable[[str], Network]
 
@@ -120,6 +121,17 @@ def test_what_a_limit_closes_farther_away_is_told(read: Read) -> None:
     assert told.message == "burn and breathe can carry no flux: `limit oxygen <= 0` forbids it"
     assert told.mend == "open `limit oxygen <= 0`, if that is not meant"
     assert [s.line for s in told.also] == [18]
+
+
+def test_what_a_variants_limit_closes_is_listed_but_is_no_warning(read: Read) -> None:
+    network = read(BASE + "variant closed\n    limit oxygen <= 0\n")
+    variant, _ = apply_variant(network, "closed")
+    assert variant is not None
+
+    groups = blocked(variant)
+
+    assert [group.reactions for group in groups] == [("burn", "breathe")]
+    assert tell_blocked(variant, groups) == ()
 
 
 def test_limits_that_only_together_close_a_reaction_are_named_together(read: Read) -> None:
