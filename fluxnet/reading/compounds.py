@@ -25,7 +25,7 @@ def formula_of(
         if compound is not None and not compound.kind.is_carrier:
             return compound.formula, compound.name
         if role.is_boundary:
-            near = load_catalogue().nearest(entry.name.text)
+            near = scope.findings.nearest_in_catalogue(entry.name.text)
             scope.findings.add(
                 Name.FORMULA_NEEDED,
                 f"{entry.name.text} crosses the boundary, but has no formula and is not in the "

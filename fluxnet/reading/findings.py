@@ -6,6 +6,7 @@ from collections.abc import Iterable
 from dataclasses import dataclass, field
 from typing import Protocol
 
+from fluxnet.chemistry.catalogue import load_catalogue
 from fluxnet.ground.diagnostic import Diagnostic, Edit
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Span
@@ -30,9 +31,28 @@ class Stretch(Protocol):
 
 @dataclass(slots=True)
 class Findings:
-    """The list of faults of one reading."""
+    """The list of faults of one reading.
+
+    ``searches`` are the searches for near names that are left: a text with thousands of
+    unknown names is another kind of fault.
+    """
 
     found: list[Diagnostic] = field(default_factory=list)
+    searches: int = 60
+
+    def nearest(self, name: str, candidates: Iterable[str], most: int = 3) -> tuple[str, ...]:
+        """Near names, as long as searches are left."""
+        if self.searches <= 0:
+            return ()
+        self.searches -= 1
+        return nearest_names(name, candidates, most)
+
+    def nearest_in_catalogue(self, name: str) -> tuple[str, ...]:
+        """Near names of the catalogue, as long as searches are left."""
+        if self.searches <= 0:
+            return ()
+        self.searches -= 1
+        return load_catalogue().nearest(name)
 
     def add(
         self,

@@ -10,7 +10,7 @@ from fluxnet.ground.names import Name, Severity
 from fluxnet.network.model import Basis, Compartment
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
-from fluxnet.reading.findings import Findings, nearest_names, only_case_differs
+from fluxnet.reading.findings import Findings, only_case_differs
 from fluxnet.reading.loading import Loaded
 from fluxnet.reading.scope import Scope, place_words
 
@@ -72,7 +72,7 @@ def _basis(one: Placed, said: s.BasisLine, findings: Findings) -> Basis | None:
     basis = read_basis(said.unit.text)
     if basis is None:
         names = [b.value for b in Basis]
-        near = nearest_names(said.unit.text, names, 1)
+        near = findings.nearest(said.unit.text, names, 1)
         findings.add(
             Name.UNKNOWN_BASIS, f"{said.unit.text} is no basis", one.line, said.unit,
             mend=f"write {near[0]}" if near else f"write one of: {', '.join(names)}",
@@ -145,7 +145,7 @@ def _check_additions(loaded: Loaded, found: dict[str, Compartment], scope: Scope
         name = said.compartment
         if name.text in scope.lost:
             continue
-        near = nearest_names(name.text, found)
+        near = scope.findings.nearest(name.text, found)
         twin = only_case_differs(name.text, found)
         scope.findings.add(
             Name.UNKNOWN_COMPARTMENT, f"no compartment is called {name.text}", one.line, name,
@@ -165,7 +165,7 @@ def resolve_acceptances(
         for said in one.statement.acceptances:
             name = names.get(said.name.text)
             if name is None:
-                near = nearest_names(said.name.text, names)
+                near = findings.nearest(said.name.text, names)
                 findings.add(
                     Name.ACCEPT_UNKNOWN, f"no diagnostic is called {said.name.text}", one.line,
                     said.name, mend=f"write {' or '.join(near)}" if near

@@ -8,9 +8,8 @@ from fluxnet.ground.names import Name
 from fluxnet.network.model import Direction, Limit, Quantity, QuantityKind, Relation, Role, Species
 from fluxnet.reading import syntax as s
 from fluxnet.reading.declare import in_reach
-from fluxnet.reading.findings import nearest_names, only_case_differs
 from fluxnet.reading.lines import LogicalLine
-from fluxnet.reading.scope import Scope
+from fluxnet.reading.scope import Kind, Scope
 
 __all__ = ["resolve_limit", "resolve_quantity"]
 
@@ -170,16 +169,14 @@ def _direction(
 
 def _unknown(line: LogicalLine, said: s.SingleText, scope: Scope) -> None:
     name = said.name.text
-    parameters = scope.parameters
-    candidates = [*(n for n in scope.places if n not in parameters), "mu"]
-    twin = only_case_differs(name, candidates)
+    twin = "mu" if name.casefold() == "mu" else scope.twin(name, Kind.SPECIES, Kind.REACTION)
     if twin is not None:
         scope.findings.add(
             Name.CASE_DIFFERS, f"{twin} is written {name} here: case counts", line, said.name,
             mend=f"write {twin}", certain=[(said.name, twin)],
         )
         return
-    near = nearest_names(name, candidates)
+    near = scope.findings.nearest(name, [*scope.species, *scope.reactions, "mu"])
     scope.findings.add(
         Name.UNKNOWN_LIMIT, f"the model has nothing called {name} that could be limited", line,
         said.name,

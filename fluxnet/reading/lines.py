@@ -15,16 +15,20 @@ from typing import NamedTuple
 from fluxnet.ground.source import Source, Span
 
 __all__ = [
-    "LogicalLine", "indentation_of", "logical_lines", "starts_statement", "without_comment",
+    "LONGEST", "LogicalLine", "indentation_of", "logical_lines", "starts_statement",
+    "without_comment",
 ]
 
 TAB = 4
+LONGEST = 5_000
+"""A longer line is no statement, and is not looked into."""
 
 _CLOSED_QUOTE = re.compile(r'"[^"]*"')
 _MINUS = dict.fromkeys(map(ord, "\u2010\u2011\u2012\u2013\u2212"), "-")
 _ALIKE = {**_MINUS, ord("\u201c"): '"', ord("\u201d"): '"', ord("\u201e"): '"',
           ord("\u200b"): "", ord("\ufeff"): "", ord("\u2060"): ""}
-_FREE_TEXT = re.compile(r"\s*model\b(?!\s*:)|.*\baccept\s+[\w-]+\s*:")
+_TITLE = re.compile(r"\s*model\b(?!\s*:)")
+_REASON = re.compile(r"\baccept\s+[\w-]+\s*:")
 _GOES_ON = re.compile(r"(?:(?:^|\s)\+|,|->|→|⇌|[-=<>]+>)$")
 _STARTS = re.compile(
     r"\s*(?:[\w,'-]+\+?\s*:"
@@ -106,7 +110,8 @@ def _take(source: Source, number: int) -> tuple[LogicalLine, int] | None:
     text, columns = _normalised(body[lead:].rstrip(), lead)
     pieces = [_Piece(0, len(text), number, lead + 1, columns)]
     behind = number + 1
-    while _GOES_ON.search(text) and not _FREE_TEXT.match(text):
+    free = _TITLE.match(text) or _REASON.search(text)
+    while not free and _GOES_ON.search(text[-4:]) and len(text) < LONGEST:
         following = _following(source, behind)
         if following is None:
             break
@@ -115,6 +120,7 @@ def _take(source: Source, number: int) -> tuple[LogicalLine, int] | None:
         addition, columns = _normalised(more[inner:].rstrip(), inner)
         pieces.append(_Piece(len(text) + 1, len(addition), behind, inner + 1, columns))
         text = f"{text} {addition}"
+        free = _REASON.search(addition)
         behind += 1
     return LogicalLine(source.file, text, indentation_of(raw), tuple(pieces)), behind
 

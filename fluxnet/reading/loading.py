@@ -16,7 +16,7 @@ from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed, Rejected, place_statements
 from fluxnet.reading.fault_record import NAME, Known
 from fluxnet.reading.findings import Findings, nearest_names
-from fluxnet.reading.lines import LogicalLine, logical_lines
+from fluxnet.reading.lines import LONGEST, LogicalLine, logical_lines
 from fluxnet.reading.parsing import Unparsed, parse_statement
 from fluxnet.reading.scope import words_of
 from fluxnet.reading.source import read_source
@@ -65,10 +65,10 @@ def _load(
     findings: Findings, loaded: Loaded,
 ) -> None:
     loaded.sources.append(source)
-    parsed = [(line, parse_statement(line.text)) for line in logical_lines(source)]
+    parsed = [(line, _parse(line, findings)) for line in logical_lines(source)]
     known = _known(parsed)
     for line, said in parsed:
-        if isinstance(said, Unparsed):
+        if isinstance(said, Unparsed) and len(line.text) <= LONGEST:
             from fluxnet.reading.faults import explain_line  # only faulty files need it
 
             explain_line(line, said, known, findings)
@@ -82,12 +82,24 @@ def _load(
             loaded.placed.append(one)
 
 
+def _parse(line: LogicalLine, findings: Findings) -> s.Statement | Unparsed:
+    if len(line.text) <= LONGEST:
+        return parse_statement(line.text)
+    findings.add(
+        Name.UNREADABLE_LINE, f"this line has {len(line.text)} characters, more than {LONGEST}",
+        line, mend="a model has one statement a line: is this the file that is meant?",
+    )
+    return Unparsed(0)
+
+
 def _known(parsed: Iterable[tuple[LogicalLine, s.Statement | Unparsed]]) -> Known:
     """The names that are declared, those that a rejected line means to declare among them."""
     species: set[str] = set()
     parameters: set[str] = set()
     for line, statement in parsed:
         if isinstance(statement, Unparsed):
+            if len(line.text) > LONGEST:
+                continue
             first, _, rest = line.text.partition(" ")
             if first == "parameter":
                 parameters.update(_first_name(rest))

@@ -11,6 +11,7 @@ from fluxnet.ground.source import Source
 from fluxnet.network.model import Network
 from fluxnet.reading.balancing import balance_reading
 from fluxnet.reading.findings import Findings
+from fluxnet.reading.lines import LONGEST
 from fluxnet.reading.loading import Place, load_statements
 from fluxnet.reading.resolve import resolve_network
 from fluxnet.reading.scope import Scope, words_of
@@ -84,7 +85,8 @@ def _read(
 ) -> ModelReading:
     findings = Findings(list(told))
     loaded = load_statements(source, path, place, findings)
-    scope = Scope(findings, lost=words_of(r.line.text for r in loaded.rejected))
+    refused = [r.line.text for r in loaded.rejected]
+    scope = Scope(findings, lost=words_of(text for text in refused if len(text) <= LONGEST))
     network = resolve_network(loaded, scope)
     network = balance_reading(network, scope)
     diagnostics = in_order(_with_lines(findings.found, loaded.sources))

@@ -11,9 +11,8 @@ from fluxnet.network.model import Reaction, Term
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
 from fluxnet.reading.declare import in_reach
-from fluxnet.reading.findings import nearest_names
 from fluxnet.reading.lines import LogicalLine
-from fluxnet.reading.scope import RESERVED, Scope
+from fluxnet.reading.scope import RESERVED, Kind, Scope
 
 __all__ = ["resolve_reaction"]
 
@@ -98,7 +97,7 @@ def _is_parameter(line: LogicalLine, said: s.TermText, scope: Scope) -> bool:
     assert isinstance(word, s.Word)
     if word.text in scope.parameters:
         return True
-    near = nearest_names(word.text, [*scope.species, *scope.parameters], 1)
+    near = scope.findings.nearest(word.text, [*scope.species, *scope.parameters], 1)
     if word.text in scope.species or (near and near[0] in scope.species):
         gap = s.Word("", word.end, word.end)
         scope.findings.add(
@@ -192,8 +191,8 @@ def _parameter(line: LogicalLine, word: s.Word, scope: Scope) -> Expression | No
             mend="brackets hold numbers, parameters and + - * / only",
         )
         return None
-    near = nearest_names(name, scope.parameters)
-    twin = next((p for p in scope.parameters if p.casefold() == name.casefold()), None)
+    near = scope.findings.nearest(name, scope.parameters)
+    twin = scope.twin(name, Kind.PARAMETER)
     if twin is not None:
         scope.findings.add(
             Name.CASE_DIFFERS, f"the parameter is called {twin}, not {name}", line, word,

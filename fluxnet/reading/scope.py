@@ -68,6 +68,11 @@ class Scope:
             self.used_parameters, self.broken, self.tainted, self.variants,
         )
 
+    def twin(self, name: str, *kinds: Kind) -> str | None:
+        """The declared name, of one of these kinds, that differs from this one only in case."""
+        twin = self.folded.get(name.casefold())
+        return twin if twin not in (None, name) and self.places[twin][0] in kinds else None
+
     def mention(self, line: LogicalLine, word: Word) -> None:
         """Note the use of a species that is not declared."""
         if word.text not in self.lost:

@@ -14,6 +14,9 @@ __all__ = ["MOST_LINES", "read_source", "source_of_text", "split_lines"]
 MOST_LINES = 20_000
 """More lines than this are refused unless they are asked for."""
 
+MOST_BYTES = 50_000_000
+"""No more of a file is read: it may have no end."""
+
 _LINE_END = re.compile("\r\n|\r|\n")
 
 
@@ -27,13 +30,18 @@ def read_source(
         if path.is_dir():
             return None, (Diagnostic(Name.NOT_A_FILE, f"{name} is a folder", span,
                                      mend="name the file inside it"),)
-        data = path.read_bytes()
+        with path.open("rb") as file:
+            data = file.read(MOST_BYTES + 1)
     except (FileNotFoundError, NotADirectoryError):
         return None, (Diagnostic(Name.FILE_MISSING, f"there is no file {name}", span,
                                  mend=_beside(path)),)
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         return None, (Diagnostic(Name.FILE_MISSING, f"{name} cannot be opened: {reason}", span),)
+    if len(data) > MOST_BYTES:
+        size = MOST_BYTES // 1_000_000
+        return None, (Diagnostic(Name.FILE_TOO_LONG, f"{name} has more than {size} million bytes",
+                                 span, mend="is this the file that is meant?"),)
     return _decoded(data, name, large)
 
 

@@ -14,6 +14,7 @@ from fluxnet.ground.source import Source
 from fluxnet.reading import syntax as s
 from fluxnet.reading.layout import Cells, lay_out
 from fluxnet.reading.lines import (
+    LONGEST,
     LogicalLine,
     indentation_of,
     logical_lines,
@@ -102,7 +103,7 @@ def _statement_row(
     """A statement's row, and whether it opens a block."""
     raws = tuple(source.line(n).rstrip() for n in range(line.number, last + 1))
     comments = [raw[len(without_comment(raw)) :].rstrip() for raw in raws]
-    statement = parse_statement(line.text)
+    statement = parse_statement(line.text) if len(line.text) <= LONGEST else Unparsed(0)
     shown = (" " * (_STEP * depth) + raws[0].lstrip(), *raws[1:])
     if isinstance(statement, Unparsed):
         return _Row(line.indentation, depth, None, "", shown), True

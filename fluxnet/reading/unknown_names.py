@@ -8,13 +8,10 @@ from fluxnet.chemistry.catalogue import load_catalogue
 from fluxnet.ground.names import Name
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
-from fluxnet.reading.findings import nearest_names, only_case_differs
 from fluxnet.reading.lines import LogicalLine
-from fluxnet.reading.scope import Mention, Scope
+from fluxnet.reading.scope import Kind, Mention, Scope
 
 __all__ = ["report_unknown", "resolve_free"]
-
-_MOST_SEARCHED = 40
 
 
 def report_unknown(scope: Scope) -> None:
@@ -27,14 +24,14 @@ def report_unknown(scope: Scope) -> None:
         return at, span.line, span.column
 
     listed = [(name, sorted(mentions, key=place)) for name, mentions in scope.unknown.items()]
-    for searched, (name, mentions) in enumerate(sorted(listed, key=lambda m: place(m[1][0]))):
-        _report(name, mentions, scope, search=searched < _MOST_SEARCHED)
+    for name, mentions in sorted(listed, key=lambda m: place(m[1][0])):
+        _report(name, mentions, scope)
 
 
-def _report(name: str, mentions: list[Mention], scope: Scope, *, search: bool) -> None:
+def _report(name: str, mentions: list[Mention], scope: Scope) -> None:
     first = mentions[0]
     more = f" (and {len(mentions) - 1} more)" if len(mentions) > 1 else ""
-    twin = only_case_differs(name, scope.species)
+    twin = scope.twin(name, Kind.SPECIES)
     if twin is not None:
         scope.findings.add(
             Name.CASE_DIFFERS, f"{twin} is written {name} here{more}: case counts",
@@ -52,7 +49,7 @@ def _report(name: str, mentions: list[Mention], scope: Scope, *, search: bool) -
         )
         return
     synonym = _synonym(name, scope)
-    near = nearest_names(name, scope.species) if search else ()
+    near = scope.findings.nearest(name, scope.species)
     if synonym is not None:
         mend = f"{name} is another name of {synonym}: write {synonym}"
     elif near:

@@ -10,7 +10,7 @@ from fluxnet.network.model import Drop, Limit, Parameter, Reaction, Species, Var
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
 from fluxnet.reading.declare import declare_species, read_assignment
-from fluxnet.reading.findings import nearest_names, only_case_differs
+from fluxnet.reading.findings import only_case_differs
 from fluxnet.reading.limit_pairs import compare_limits
 from fluxnet.reading.limits import resolve_limit, resolve_quantity
 from fluxnet.reading.reactions import resolve_reaction
@@ -93,7 +93,7 @@ def _check_parents(blocks: Mapping[str, _Block], scope: Scope) -> None:
         for parent in block.said.parents:
             if parent.text in blocks or parent.text in scope.lost or parent.text == "base":
                 continue
-            near = nearest_names(parent.text, blocks)
+            near = scope.findings.nearest(parent.text, blocks)
             twin = only_case_differs(parent.text, blocks)
             scope.findings.add(
                 Name.UNKNOWN_VARIANT,
@@ -218,8 +218,8 @@ def _setting(
     if word.text in scope.lost:
         return []
     if word.text not in scope.parameters:
-        near = nearest_names(word.text, scope.parameters)
-        twin = only_case_differs(word.text, scope.parameters)
+        near = scope.findings.nearest(word.text, scope.parameters)
+        twin = scope.twin(word.text, Kind.PARAMETER)
         scope.findings.add(
             Name.VARIANT_TARGET, f"`set` names {word.text}, but no parameter is called so",
             placed.line, word,
@@ -260,8 +260,8 @@ def _drops(
             found.append(Drop(item.text, None, span))
         elif item.text not in scope.lost:
             candidates = [*reactions, *scope.species]
-            near = nearest_names(item.text, candidates)
-            twin = only_case_differs(item.text, candidates)
+            near = scope.findings.nearest(item.text, candidates)
+            twin = scope.twin(item.text, Kind.REACTION, Kind.SPECIES)
             scope.findings.add(
                 Name.VARIANT_TARGET, f"`drop` names {item.text}, which the model does not have",
                 placed.line, item,
