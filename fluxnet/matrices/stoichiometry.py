@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 from fluxnet.network.expression import Expression
 from fluxnet.network.model import Network
 
-__all__ = ["Stoichiometry", "stoichiometry"]
+__all__ = ["Stoichiometry", "parameter_values", "stoichiometry"]
 
 
 @dataclass(frozen=True, slots=True)

@@ -9,9 +9,9 @@ from fractions import Fraction
 import numpy as np
 from numpy.typing import NDArray
 
-from fluxnet.chemistry.formula import molar_mass
 from fluxnet.ground.errors import MisuseError
 from fluxnet.matrices.stoichiometry import Stoichiometry
+from fluxnet.network.biomass import biomass_mass, biomasses
 from fluxnet.network.model import Basis, Direction, Network, Quantity, QuantityKind, Role, Species
 
 __all__ = [
@@ -109,7 +109,7 @@ def number_values(network: Network, values: Mapping[str, float] | None = None) -
         Where ``values`` names something else.
     """
     numbers = {p.name: float(p.value) for p in network.parameters}
-    numbers |= {ash_key(s.name): float(s.ash) for s in _biomass(network)}
+    numbers |= {ash_key(s.name): float(s.ash) for s in biomasses(network)}
     for name in values or {}:
         if name not in numbers:
             raise MisuseError(f"the model has no parameter {name}")
@@ -130,8 +130,9 @@ def counts_moles(quantity: Quantity) -> bool:
 
 
 def has_mu(network: Network, basis: Basis) -> bool:
-    """Whether a specific growth rate has a meaning: biomass, and rates per biomass."""
-    return bool(_biomass(network)) and basis in (Basis.SPECIFIC, Basis.CARBON)
+    """Whether a specific growth rate has a meaning: biomass with formulas, rates per biomass."""
+    known = [species.formula is not None for species in biomasses(network)]
+    return bool(known) and all(known) and basis in (Basis.SPECIFIC, Basis.CARBON)
 
 
 def frame_at(
@@ -145,7 +146,7 @@ def derivative_frame(
     network: Network, stoich: Stoichiometry, values: Mapping[str, float], basis: Basis, name: str
 ) -> Frame:
     """The derivative of every row by one parameter, or by one ash (:func:`ash_key`)."""
-    for species in _biomass(network):
+    for species in biomasses(network):
         if name == ash_key(species.name):
             frame = frame_at(network, stoich, values, basis)
             growth = None
@@ -206,7 +207,7 @@ def _frame(
     growth = None
     if has_mu(network, basis):
         growth = np.zeros(matrix.shape[1])
-        for species in _biomass(network):
+        for species in biomasses(network):
             i = stoich.row(species.name)
             weight = per_mole[i] if basis is Basis.CARBON else _mass(species, values) / 1000
             growth += weight * matrix[i]
@@ -214,11 +215,6 @@ def _frame(
     return Frame(stoich, matrix, growth, per_mole, flux, roles, basis)
 
 
-def _biomass(network: Network) -> tuple[Species, ...]:
-    return tuple(s for s in network.species if s.role is Role.BIOMASS)
-
-
 def _mass(species: Species, values: Mapping[str, float]) -> float:
-    """Dry weight of one mole [g/mol], ash included."""
-    organic = molar_mass(species.formula) if species.formula else 0.0
-    return organic / (1 - values[ash_key(species.name)])
+    """Dry weight of one mole [g/mol], at the ash that the values give."""
+    return biomass_mass(replace(species, ash=Fraction(0))) / (1 - values[ash_key(species.name)])
