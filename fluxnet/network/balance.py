@@ -27,7 +27,8 @@ def balance_of(reaction: Reaction, network: Network) -> LineBalance:
 
     C, N, S and every other element but H and O, and electrons; P only where the model
     balances phosphate; O and charge only where water and protons are written and can be
-    checked. Carriers count their cargo.
+    checked, acids then counting as their formulas stand or all as their ions at pH 7, in
+    whichever form the line closes. Carriers count their cargo.
 
     Parameters
     ----------
@@ -42,15 +43,15 @@ def balance_of(reaction: Reaction, network: Network) -> LineBalance:
         Left, right and gap of each balance in moles per mole of reaction, as expressions in
         the parameters, and the verdict.
     """
-    return balance_line(reaction, contents_of_network(network))
+    return balance_line(reaction, contents_of_network(network, (reaction,)))
 
 
 def balances_of(
     network: Network, reactions: Iterable[Reaction] | None = None
 ) -> tuple[LineBalance, ...]:
     """The balances of all reactions of a network, or of some of them."""
-    contents = contents_of_network(network)
-    chosen = network.reactions if reactions is None else reactions
+    chosen = network.reactions if reactions is None else tuple(reactions)
+    contents = contents_of_network(network, chosen)
     return tuple(balance_line(r, contents) for r in chosen)
 
 
@@ -72,13 +73,16 @@ def check_balances(
         ``unbalanced-line`` for a gap, ``rounding-gap`` for one that the rounding of the written
         numbers explains, ``balance-not-checked`` for each cause that forbids a check.
     """
-    contents = contents_of_network(network)
     chosen = network.reactions if reactions is None else tuple(reactions)
+    contents = contents_of_network(network, chosen)
     lines = tuple(balance_line(r, contents) for r in chosen)
     found: list[Diagnostic] = []
+    every = contents
+    if any(line.verdict is Verdict.OPEN for line in lines):
+        every = contents_of_network(network)
     for line in lines:
         if line.verdict is Verdict.OPEN:
-            found.append(_unbalanced(line, contents))
+            found.append(_unbalanced(line, every))
         elif line.verdict is Verdict.ROUNDING:
             found.append(_rounded(line))
     found.extend(notes_on(lines, network))

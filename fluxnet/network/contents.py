@@ -84,7 +84,7 @@ class Functional:
     def of(self, content: Content) -> Fraction:
         """Its value for one mole of a content."""
         if len(self.weights) == 1:
-            return content.amounts.get(self.name, _ZERO) * self.weights[0][1]
+            return content.amounts.get(self.name, _ZERO)
         return sum((w * content.amounts.get(k, _ZERO) for k, w in self.weights), _ZERO)
 
     def half_unit(self, content: Content) -> Fraction:

@@ -19,13 +19,13 @@ from fluxnet.network.contents import (
     without_free,
 )  # fmt: skip
 from fluxnet.network.expression import ZERO, Expression, constant
-from fluxnet.network.model import Network, Reaction, Term
+from fluxnet.network.model import Network, Reaction, Species, Term
 from fluxnet.network.rounding import explains, reach_of
 from fluxnet.network.water import Water, at_ph_seven, water_of
 
 __all__ = [
     "Contents", "ElementBalance", "LineBalance", "Verdict", "balance_line", "contents_of_network",
-    "line_functionals",
+    "held_by", "line_functionals",
 ]  # fmt: skip
 
 _ZERO = Fraction(0)
@@ -94,15 +94,30 @@ class Contents:
     free: tuple[Content, ...]
 
 
-def contents_of_network(network: Network) -> Contents:
-    """Work out what each species of a network holds, and which are free."""
-    by_species = {s.name: content_of(s) for s in network.species}
+def contents_of_network(
+    network: Network, reactions: Iterable[Reaction] | None = None
+) -> Contents:
+    """Work out what each species of a network, or of some reactions, holds, and which are free."""
+    if reactions is None:
+        by_species = {s.name: content_of(s) for s in network.species}
+    else:
+        names = dict.fromkeys(t.species for r in reactions for _, t in r.terms)
+        found = (network.find_species(n) for n in names)
+        by_species = {s.name: content_of(s) for s in found if s is not None}
     free = [] if network.balance_phosphate else [PHOSPHATE]
     for name in network.free:
-        content = by_species.get(name) or _catalogue_content(name)
+        species = network.find_species(name)
+        content = _catalogue_content(name) if species is None else content_of(species)
         if content is not None:
             free.append(content)
     return Contents(network, by_species, tuple(free))
+
+
+def held_by(species: Species, contents: Contents) -> Content | None:
+    """What a species of the network holds, also one that stands in none of the reactions."""
+    if species.name in contents.by_species:
+        return contents.by_species[species.name]
+    return content_of(species)
 
 
 def _catalogue_content(name: str) -> Content | None:

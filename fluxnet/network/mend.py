@@ -10,7 +10,13 @@ from fractions import Fraction
 from fluxnet.network.amounts import decimals_of
 from fluxnet.network.contents import Content
 from fluxnet.network.expression import Expression, constant
-from fluxnet.network.line_balance import Contents, LineBalance, Verdict, balance_line
+from fluxnet.network.line_balance import (
+    Contents,
+    LineBalance,
+    Verdict,
+    balance_line,
+    held_by,
+)
 from fluxnet.network.model import Reaction, Role, Species, Term
 
 __all__ = ["Mend", "MendKind", "find_mends"]
@@ -89,6 +95,8 @@ def _step(line: LineBalance, content: Content, sign: int) -> Expression | None:
     step: Expression | None = None
     for balance in line.balances:
         amount = balance.functional.of(content) * sign
+        if bool(amount) is balance.gap.is_zero:
+            return None
         if amount and step is None:
             step = (-balance.gap).scaled(1 / amount)
     if step is None:
@@ -151,7 +159,7 @@ def _additions(
 ) -> Iterator[Mend]:
     """One more species on one side."""
     for species in contents.network.species:
-        content = contents.by_species.get(species.name)
+        content = held_by(species, contents)
         if content is None or species.name in line.contents or species.role is Role.BIOMASS:
             continue
         step = _step(line, content, 1)
@@ -163,7 +171,8 @@ def _additions(
             continue
         mend = Mend(MendKind.ADD, species.name, sign, step if sign > 0 else -step)
         added = _with_term(line.reaction, sign, Term(species.name, mend.coefficient))
-        if balance_line(added, contents).verdict is Verdict.CLOSES:
+        wider = replace(contents, by_species={**contents.by_species, species.name: content})
+        if balance_line(added, wider).verdict is Verdict.CLOSES:
             yield mend
 
 

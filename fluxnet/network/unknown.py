@@ -9,7 +9,7 @@ from fractions import Fraction
 from fluxnet.exact.linear import independent_rows, kernel, solve
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
 from fluxnet.network.contents import Content, Functional
-from fluxnet.network.expression import ZERO, Expression
+from fluxnet.network.expression import ZERO, Expression, constant
 from fluxnet.network.line_balance import (
     Contents,
     Verdict,
@@ -59,12 +59,13 @@ def solve_unknowns(
     tuple of Diagnostic
         ``coefficient-free``, ``-contradicts``, ``-negative``, ``-changes-sign``, ``-zero``.
     """
-    contents = contents_of_network(network)
-    chosen = None if reactions is None else {r.name for r in reactions}
+    wanted = network.reactions if reactions is None else tuple(reactions)
+    contents = contents_of_network(network, wanted)
+    chosen = {r.name for r in wanted}
     found: list[Diagnostic] = []
     solved: list[Reaction] = []
     for reaction in network.reactions:
-        if chosen is None or reaction.name in chosen:
+        if reaction.name in chosen:
             reaction, diagnostics = _solve_line(reaction, contents)
             found.extend(diagnostics)
         solved.append(reaction)
@@ -138,12 +139,16 @@ def _known(
     reaction: Reaction, functional: Functional, present: Mapping[str, Content]
 ) -> Expression:
     """What the written coefficients add up to in one balance, right less left."""
-    total = ZERO
+    number, rest = Fraction(0), ZERO
     for sign, term in reaction.terms:
         amount = sign * functional.of(present[term.species])
         if term.coefficient is not None and amount:
-            total = total + term.coefficient.scaled(amount)
-    return total
+            factor = term.coefficient.number
+            if factor is None:
+                rest = rest + term.coefficient.scaled(amount)
+            else:
+                number += factor * amount
+    return rest + constant(number)
 
 
 def _filled(

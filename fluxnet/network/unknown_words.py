@@ -12,7 +12,7 @@ from fluxnet.network.advice import terms_to_solve
 from fluxnet.network.amounts import number_text
 from fluxnet.network.balance_words import because_of, join
 from fluxnet.network.contents import Content, Functional
-from fluxnet.network.line_balance import Contents, LineBalance, line_functionals
+from fluxnet.network.line_balance import Contents, LineBalance, held_by, line_functionals
 from fluxnet.network.model import CargoKind, Network, Reaction, Role, Term
 
 __all__ = ["contradiction", "free_unknowns", "unseen_composition"]
@@ -143,7 +143,7 @@ def _missing(line: LineBalance, contents: Contents) -> tuple[int, str] | None:
     candidates = sorted(contents.network.species, key=lambda s: s.role is not Role.CARRIER)
     solved = [(s, t) for s, t in line.reaction.terms if t.solved]
     for species in candidates:
-        content = contents.by_species.get(species.name)
+        content = held_by(species, contents)
         if content is None or species.name in line.contents or species.role is Role.BIOMASS:
             continue
         widened = {**line.contents, species.name: content}

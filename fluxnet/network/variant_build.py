@@ -69,7 +69,9 @@ def _replaced(
     after: dict[str, _Named] = {}
     for thing in before:
         new = things.get(Key(kind, thing.name), thing)
-        if isinstance(new, typed):
+        if new is thing:
+            after[thing.name] = thing
+        elif isinstance(new, typed):
             after[thing.name] = thing if plain(new) == plain(thing) else new
     for key, new in things.items():
         if key.kind is kind and isinstance(new, typed) and key.name not in after:
@@ -177,8 +179,10 @@ def _still_used(network: Network, gone: frozenset[str]) -> Iterator[Diagnostic]:
 
 def same_network(one: Network, other: Network) -> bool:
     """Whether two networks hold the same, wherever it stands in the text."""
-    fields = ("species", "parameters", "reactions", "limits")
-    return all(
-        [plain(t) for t in getattr(one, f)] == [plain(t) for t in getattr(other, f)]
-        for f in fields
+    first: tuple[Thing, ...] = (*one.species, *one.parameters, *one.reactions, *one.limits)
+    second: tuple[Thing, ...] = (
+        *other.species, *other.parameters, *other.reactions, *other.limits,
+    )  # fmt: skip
+    return len(first) == len(second) and all(
+        a is b or plain(a) == plain(b) for a, b in zip(first, second, strict=True)
     )

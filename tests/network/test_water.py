@@ -4,6 +4,7 @@ import pytest
 
 from fluxnet.ground.names import Name
 from fluxnet.network.balance import check_balances
+from fluxnet.reading.model import read_model_text
 
 SPECIES = {
     "ethanol": "C2H6O",
@@ -65,3 +66,32 @@ def test_free_phosphate_takes_its_oxygen_along(build):
     species = {"G6P": "C6H13O9P", "glucose": "C6H12O6", "H2O": "H2O"}
     assert names(build(species, "r: G6P + H2O -> glucose")) == []
     assert names(build(species, "r: G6P + 2 H2O -> glucose")) == [Name.UNBALANCED_LINE]
+
+
+MODEL = """
+substrate glucose
+product   lactate
+exchange  H2O, H+, CO2
+carrier   NADH
+inside    pyruvate
+compartment all
+    {line}
+"""
+
+
+@pytest.mark.parametrize(
+    "line",
+    [
+        "ldh : pyruvate + NADH + H+ -> lactate",  # both acids, or both ions
+        "r : glucose -> 2 lactate + 2 H+",  # lactate as its ion at pH 7
+        "r : glucose -> 2 pyruvate + 2 NADH + 2 H+",  # pyruvate as the acid
+        "r : glucose -> 2 pyruvate + 2 NADH + 4 H+",  # pyruvate as its ion at pH 7
+    ],
+)
+def test_acids_may_be_counted_as_acids_or_as_their_ions_at_ph_seven_in_one_line(line):
+    assert read_model_text(MODEL.format(line=line)).diagnostics == ()
+
+
+def test_protons_that_close_in_neither_form_are_an_error():
+    reading = read_model_text(MODEL.format(line="r : glucose -> 2 pyruvate + 2 NADH + 3 H+"))
+    assert [d.name for d in reading.diagnostics] == [Name.UNBALANCED_LINE]
