@@ -56,8 +56,7 @@ def run(arguments: argparse.Namespace) -> int:
         result = check_network(
             model.network, model.diagnostics, sources=model.sources, progress=progress
         )
-    shown = tuple(d for d in result.diagnostics if not arguments.quiet or d.severity.rank == 0)
-    give_findings(arguments, shown)
+    give_findings(arguments, result.diagnostics)
     return give_screen(
         arguments, Document.CHECK, model.inputs, (), check_record(result),
         check_screen(result, arguments.model), sound=result.sound,

@@ -50,11 +50,11 @@ limit  upkeep = 1.0 ± 0.3              # a measured value, mmol ATP/g/h
 RATES = """\
 shared error biomass 4 %
 run,species,direction,rate,sd,unit
-1,glucose,in,2.00,3 %,mmol/g/h
-1,oxygen,in,5.10,5 %,mmol/g/h
-1,CO2,out,5.90,5 %,mmol/g/h
-1,ethanol,out,0.55,5 %,mmol/g/h
-1,mu,,0.155,3 %,1/h
+1,glucose,in,2.05,3 %,mmol/g/h
+1,oxygen,in,3.60,5 %,mmol/g/h
+1,CO2,out,4.40,5 %,mmol/g/h
+1,ethanol,out,0.58,5 %,mmol/g/h
+1,mu,,0.172,3 %,1/h
 """
 
 _HOW_TO = """\

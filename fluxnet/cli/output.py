@@ -47,12 +47,14 @@ def give_screen(
 
 
 def give_findings(arguments: argparse.Namespace, diagnostics: Sequence[Diagnostic]) -> None:
-    """Tell findings about the input, on standard error; JSON carries them itself."""
-    if diagnostics and not arguments.json:
-        most = len(diagnostics) if arguments.all else 20
-        Terminal.on(sys.stderr, no_color=arguments.no_color).show_diagnostics(
-            tuple(diagnostics), most=most
-        )
+    """Tell findings about the input, on standard error; JSON carries them itself.
+
+    Quiet leaves out what is no error.
+    """
+    told = tuple(d for d in diagnostics if not (arguments.quiet and d.severity.rank > 0))
+    if told and not arguments.json:
+        most = len(told) if arguments.all else 20
+        Terminal.on(sys.stderr, no_color=arguments.no_color).show_diagnostics(told, most=most)
 
 
 def give_faults(

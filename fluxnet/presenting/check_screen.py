@@ -171,5 +171,9 @@ def check_record(result: CheckResult) -> dict[str, Any]:
             {"makes": loop.species, "reactions": list(loop.reactions)}
             for loop in result.loops
         ],
+        "compositions": [
+            {"species": implied.species, "contents": dict(implied.contents)}
+            for implied in result.compositions.implied
+        ],
         "verified": result.verified,
     }

@@ -12,7 +12,7 @@ from pathlib import Path
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.table import Cell, Table
 
-__all__ = ["write_csv", "write_text", "write_workbook"]
+__all__ = ["write_bytes", "write_csv", "write_text", "write_workbook"]
 
 # A cell that begins like this would run as a formula in a spreadsheet.
 _FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r")
@@ -27,6 +27,11 @@ def write_text(path: Path, text: str, *, force: bool = False) -> None:
         Where the file exists and ``force`` is not given.
     """
     _write(path, text.encode("utf-8"), force)
+
+
+def write_bytes(path: Path, data: bytes, *, force: bool = False) -> None:
+    """Write a file, whole or not at all; as :func:`write_text`."""
+    _write(path, data, force)
 
 
 def write_csv(tables: Sequence[Table], folder: Path, *, force: bool = False) -> tuple[Path, ...]:

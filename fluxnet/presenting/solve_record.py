@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from typing import Any
 
-from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.network.model import Quantity, QuantityKind
 from fluxnet.presenting.records import diagnostic_record
 from fluxnet.solving.words import limit_words
@@ -15,12 +14,9 @@ __all__ = ["quantity_record", "solve_record"]
 Record = dict[str, Any]
 
 
-def solve_record(solution: Solution, accepted: tuple[Diagnostic, ...] = ()) -> Record:
+def solve_record(solution: Solution) -> Record:
     """The body of a ``solve/1`` document."""
-    return {
-        "runs": [_run(run) for run in solution.runs],
-        "accepted": [diagnostic_record(d) for d in accepted],
-    }
+    return {"runs": [_run(run) for run in solution.runs]}
 
 
 def quantity_record(quantity: Quantity) -> Record:

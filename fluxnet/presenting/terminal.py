@@ -76,9 +76,9 @@ class Terminal:
         """Show a screen; quiet keeps only the verdicts."""
         console = self._console()
         after_table = False
+        if quiet:
+            screen = _verdicts(screen)
         for place, block in enumerate(screen):
-            if quiet and not (isinstance(block, Sentence) and block.verdict):
-                continue
             if after_table and isinstance(block, Sentence):
                 console.print()
             after_table = isinstance(block, Table)
@@ -170,10 +170,30 @@ class Terminal:
             self._print(console, "  " + note, "dim")
 
 
+def _verdicts(screen: tuple[Block, ...]) -> tuple[Block, ...]:
+    """The verdicts alone; of several runs with their headings."""
+    several = sum(isinstance(block, Heading) for block in screen) > 1
+    return tuple(
+        block
+        for block in screen
+        if (isinstance(block, Sentence) and block.verdict)
+        or (several and isinstance(block, Heading))
+    )
+
+
 def table_cells(table: Table) -> tuple[tuple[Column, ...], tuple[tuple[str, ...], ...]]:
-    """The columns and cells of a table as shown: a value and its sd stand together."""
+    """The columns and cells of a table as shown: a value and its sd stand together.
+
+    A column without any cell is left out.
+    """
     partner = {c.sd_of: k for k, c in enumerate(table.columns) if c.sd_of is not None}
-    shown = [(k, c) for k, c in enumerate(table.columns) if c.sd_of is None and c.title]
+    shown = [
+        (k, c)
+        for k, c in enumerate(table.columns)
+        if c.sd_of is None
+        and c.title
+        and (not table.rows or any(row[k] not in (None, "") for row in table.rows))
+    ]
     rows: list[tuple[str, ...]] = []
     for row in table.rows:
         cells: list[str] = []

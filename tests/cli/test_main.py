@@ -61,10 +61,14 @@ def test_help_and_the_bare_command_import_no_third_party_package() -> None:
     code = (
         "import sys; from fluxnet.cli.main import run; run(['--help']); run([]);"
         "homes = {m.split('.')[0] for m in sys.modules} - set(sys.stdlib_module_names);"
-        "print(sorted(h for h in homes if not h.startswith('_') and h != 'fluxnet'), file=sys.stderr)"
+        "homes = sorted(h for h in homes if not h.startswith('_') and h != 'fluxnet');"
+        "print(homes, file=sys.stderr)"
     )
-    done = subprocess.run([sys.executable, "-S", "-c", code], capture_output=True, text=True,
-                          check=False, env={**os.environ, "PYTHONPATH": str(Path.cwd())})  # fmt: skip
+    root = Path(__file__).resolve().parents[2]
+    done = subprocess.run(
+        [sys.executable, "-S", "-c", code], capture_output=True, text=True, check=False,
+        env={**os.environ, "PYTHONPATH": str(root)},
+    )  # fmt: skip
 
     assert done.stderr.strip().splitlines()[-1] == "[]"
 
