@@ -21,49 +21,49 @@ product    lactate, ethanol, acetate, mannitol, erythritol, glycerol, acetoin
 exchange   CO2
 biomass    X            CH1.8O0.5N0.2  ash 8 %
 
-carrier    ATP          carries energy
-carrier    NADH         carries 2 electrons
-carrier    acetylP      carries C2H2O
+carrier    ATP        carries energy
+carrier    NADH       carries 2 electrons
+carrier    acetylP    carries C2H2O
 inside     pyruvate, T3P
-inside     hexose-P     C6H13O9P
-inside     pentose-P    C5H11O8P
-inside     tetrose-P    C4H9O7P
+inside     hexose-P   C6H13O9P
+inside     pentose-P  C5H11O8P
+inside     tetrose-P  C4H9O7P
 
-parameter  K_X = 2.3 ± 0.4  in [1, 4]           # mol ATP per C-mol of biomass
+parameter  K_X = 2.3 ± 0.4  in [1, 4]  # mol ATP per C-mol of biomass
 
 compartment sugar
-    glk      : glucose + ATP -> hexose-P
-    frk      : fructose + ATP -> hexose-P
-    xyk      : xylose + ATP -> pentose-P
-    zwf      : hexose-P -> pentose-P + CO2 + 2 NADH
-    xpk      : pentose-P -> T3P + acetylP
-    fpk      : hexose-P -> tetrose-P + acetylP
-    lower    : T3P -> pyruvate + 2 ATP + NADH
+    glk   : glucose + ATP -> hexose-P
+    frk   : fructose + ATP -> hexose-P
+    xyk   : xylose + ATP -> pentose-P
+    zwf   : hexose-P -> pentose-P + CO2 + 2 NADH
+    xpk   : pentose-P -> T3P + acetylP
+    fpk   : hexose-P -> tetrose-P + acetylP
+    lower : T3P -> pyruvate + 2 ATP + NADH
 
 compartment products
-    ldh      : pyruvate + NADH -> lactate
-    als      : 2 pyruvate -> acetoin + 2 CO2
-    ack      : acetylP -> acetate + ATP
+    ldh : pyruvate + NADH -> lactate
+    als : 2 pyruvate -> acetoin + 2 CO2
+    ack : acetylP -> acetate + ATP
 
 compartment sinks
-    adh      : acetylP + 2 NADH -> ethanol
-    mtd      : fructose + NADH -> mannitol
-    eryt     : tetrose-P + NADH -> erythritol
-    gpd      : T3P + NADH -> glycerol
+    adh  : acetylP + 2 NADH -> ethanol
+    mtd  : fructose + NADH -> mannitol
+    eryt : tetrose-P + NADH -> erythritol
+    gpd  : T3P + NADH -> glycerol
 
 compartment anabolism
-    growth   : ? hexose-P + ? amino-acids + ? NADH + K_X ATP -> X
+    growth : ? hexose-P + ? amino-acids + ? NADH + K_X ATP -> X
 
 compartment maintenance
-    upkeep   : ATP -> nothing
+    upkeep : ATP -> nothing
 
-limit  upkeep = 1.5 ± 0.7
+limit      upkeep = 1.5 ± 0.7
 
 variant aerated "an NADH oxidase that saves no energy: oxygen as the electron sink"
-    substrate oxygen
+    substrate  oxygen
     add to sinks
         nox : 2 NADH + oxygen -> nothing
 
 variant no-sinks "neither alcohols nor polyols"
-    drop   adh, mtd, eryt, gpd, fpk
-    drop   ethanol, mannitol, erythritol, glycerol, tetrose-P
+    drop  adh, mtd, eryt, gpd, fpk
+    drop  ethanol, mannitol, erythritol, glycerol, tetrose-P

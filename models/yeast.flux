@@ -26,59 +26,60 @@ substrate  glucose
 substrate  ammonia, oxygen
 product    ethanol, glycerol, acetate, pyruvate, succinate
 exchange   CO2
-biomass    X           CH1.8O0.5N0.2  ash 8 %
+biomass    X  CH1.8O0.5N0.2  ash 8 %
 
-carrier    ATP         carries energy
-carrier    NADH        carries 2 electrons      # cytosol
-carrier    NADH-mit    carries 2 electrons      # mitochondria
-carrier    NADPH       carries 2 electrons
-carrier    QH2         carries 2 electrons      # ubiquinol
+carrier    ATP           carries energy
+carrier    NADH          carries 2 electrons  # cytosol
+carrier    NADH-mit      carries 2 electrons  # mitochondria
+carrier    NADPH         carries 2 electrons
+carrier    QH2           carries 2 electrons  # ubiquinol
 inside     G6P, T3P, acetaldehyde, acetyl-CoA, citrate, 2-oxoglutarate, malate, oxaloacetate
-inside     pentose-P    C5H11O8P                # the pentose phosphates as one
-inside     pyruvate-in  C3H4O3
-inside     acetyl-cyt   C2H2O                   # acetyl-CoA of the cytosol
-inside     succinate-in C4H6O4
+inside     pentose-P     C5H11O8P             # the pentose phosphates as one
+inside     pyruvate-in   C3H4O3
+inside     acetyl-cyt    C2H2O                # acetyl-CoA of the cytosol
+inside     succinate-in  C4H6O4
 
-parameter  PO  = 1.0 ± 0.2  in [0.4, 1.6]       # mol ATP per atom of oxygen
-parameter  K_X = 1.45 ± 0.25  in [0.8, 2.5]     # mol ATP per C-mol of biomass, beside its precursors
+parameter  PO  = 1.0 ± 0.2  in [0.4, 1.6]    # mol ATP per atom of oxygen
+parameter  K_X = 1.45 ± 0.25  in [0.8, 2.5]  # mol ATP per C-mol of biomass, beside its precursors
 
 compartment sugar
-    hxk      : glucose + ATP -> G6P
-    pfk      : G6P + ATP -> 2 T3P
-    lower    : T3P -> pyruvate-in + 2 ATP + NADH
-    gpd      : T3P + NADH -> glycerol
-    zwf      : G6P -> pentose-P + CO2 + 2 NADPH
-    tkt      : 3 pentose-P <-> 2 G6P + T3P
+    hxk   : glucose + ATP -> G6P
+    pfk   : G6P + ATP -> 2 T3P
+    lower : T3P -> pyruvate-in + 2 ATP + NADH
+    gpd   : T3P + NADH -> glycerol
+    zwf   : G6P -> pentose-P + CO2 + 2 NADPH
+    tkt   : 3 pentose-P <-> 2 G6P + T3P
 
 compartment fermentation
-    pdc      : pyruvate-in -> acetaldehyde + CO2
-    adh      : acetaldehyde + NADH -> ethanol
-    ald      : acetaldehyde -> acetate + NADPH
-    pyr-out  : pyruvate-in -> pyruvate
+    pdc     : pyruvate-in -> acetaldehyde + CO2
+    adh     : acetaldehyde + NADH -> ethanol
+    ald     : acetaldehyde -> acetate + NADPH
+    pyr-out : pyruvate-in -> pyruvate
 
 compartment mitochondria
-    pdh      : pyruvate-in -> acetyl-CoA + CO2 + NADH-mit
-    cs       : acetyl-CoA + oxaloacetate -> citrate
-    idh      : citrate -> 2-oxoglutarate + CO2 + NADH-mit
-    kgd      : 2-oxoglutarate -> succinate-in + CO2 + NADH-mit + ATP
-    sdh      : succinate-in -> malate + QH2
-    mdh      : malate <-> oxaloacetate + NADH-mit
-    pyc      : pyruvate-in + CO2 + ATP -> oxaloacetate
-    suc-out  : succinate-in -> succinate
+    pdh     : pyruvate-in -> acetyl-CoA + CO2 + NADH-mit
+    cs      : acetyl-CoA + oxaloacetate -> citrate
+    idh     : citrate -> 2-oxoglutarate + CO2 + NADH-mit
+    kgd     : 2-oxoglutarate -> succinate-in + CO2 + NADH-mit + ATP
+    sdh     : succinate-in -> malate + QH2
+    mdh     : malate <-> oxaloacetate + NADH-mit
+    pyc     : pyruvate-in + CO2 + ATP -> oxaloacetate
+    suc-out : succinate-in -> succinate
 
 compartment respiration
-    nde      : NADH -> QH2                      # from the cytosol's side
-    ndi      : NADH-mit -> QH2                  # from the inner side
-    oxphos   : QH2 + 0.5 oxygen -> PO ATP
+    nde    : NADH -> QH2      # from the cytosol's side
+    ndi    : NADH-mit -> QH2  # from the inner side
+    oxphos : QH2 + 0.5 oxygen -> PO ATP
 
 compartment anabolism
-    acs      : acetaldehyde + 2 ATP -> acetyl-cyt + NADPH
-    growth   : ? G6P + 0.04 acetyl-cyt + 0.03 2-oxoglutarate + ? ammonia + 0.19 NADPH + K_X ATP -> X + ? NADH
+    acs    : acetaldehyde + 2 ATP -> acetyl-cyt + NADPH
+    growth : ? G6P + 0.04 acetyl-cyt + 0.03 2-oxoglutarate + ? ammonia + 0.19 NADPH + K_X ATP ->
+            X + ? NADH
 
 compartment maintenance
-    upkeep   : ATP -> nothing
+    upkeep : ATP -> nothing
 
-limit  upkeep = 1.0 ± 0.5
+limit      upkeep = 1.0 ± 0.5
 
 variant anaerobic "no air: the mitochondrial NADH leaves by a shuttle, succinate by its reductive branch"
     limit  oxygen <= 0
@@ -90,6 +91,6 @@ variant acetate-nadh "acetate beyond what NADPH is needed for, by the mitochondr
     add to fermentation
         ald-mit : acetaldehyde -> acetate + NADH-mit
 
-variant no-glycerol from anaerobic "without the redox valve growth stops: for trying out conflicts"
+variant no-glycerol "without the redox valve growth stops: for trying out conflicts" from anaerobic
     limit  glycerol <= 0
     limit  succinate <= 0

@@ -50,8 +50,8 @@ def test_the_truth_obeys_the_model_and_leaves_the_true_upkeep(script, place):
     text = (FOLDER / "tw4.flux").read_text(encoding="utf-8")
     for old, new in (
         ("PO  = 1.2 ± 0.15", f"PO  = {script.PO}"),
-        ("K_X = 2.1 ± 0.2 ", f"K_X = {script.K_X} "),
-        ("limit  upkeep = 4.0 ± 0.4", ""),
+        ("K_X = 2.1 ± 0.2", f"K_X = {script.K_X}"),
+        ("limit      upkeep = 4.0 ± 0.4", ""),
     ):
         assert old in text
         text = text.replace(old, new)

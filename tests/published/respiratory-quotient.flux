@@ -10,8 +10,8 @@ product    CO2
 biomass    X           CH1.66O0.27N0.20
 
 compartment growth
-    cells  : hexadecane + ? oxygen + ? ammonia -> ? X
-    burn   : hexadecane + ? oxygen -> ? CO2
+    cells : hexadecane + ? oxygen + ? ammonia -> ? X
+    burn  : hexadecane + ? oxygen -> ? CO2
 
-limit  hexadecane = 1
-limit  CO2 / oxygen = 0.43
+limit      hexadecane = 1
+limit      CO2 / oxygen = 0.43

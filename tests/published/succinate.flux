@@ -8,8 +8,8 @@ basis      mmol
 substrate  glucose
 product    succinate, acetate, ethanol, lactate, formate
 exchange   CO2
-carrier    ATP    carries energy
-carrier    NADH   carries 2 electrons
+carrier    ATP         carries energy
+carrier    NADH        carries 2 electrons
 inside     G6P, PEP, pyruvate, acetyl-CoA, oxaloacetate, malate
 inside     T3P
 inside     formate-in  CH2O2
@@ -33,16 +33,16 @@ compartment catabolism
     ldh     : pyruvate + NADH -> lactate
 
 compartment maintenance
-    upkeep  : ATP -> nothing
+    upkeep : ATP -> nothing
 
-limit  glucose = 1
+limit      glucose = 1
 
 variant dehydrogenase-only "acetyl-CoA comes only from pyruvate dehydrogenase"
-    drop pfl, fdh, for-out
-    drop formate-in, formate
-variant pts  from dehydrogenase-only
-    drop upt_glk
-variant glk  from dehydrogenase-only
-    drop upt_pts
+    drop  pfl, fdh, for-out
+    drop  formate-in, formate
+variant pts from dehydrogenase-only
+    drop  upt_glk
+variant glk from dehydrogenase-only
+    drop  upt_pts
 variant reductive "no glyoxylate way"
-    drop glx
+    drop  glx
