@@ -38,7 +38,7 @@ inside    hub C3H4O3, two C2H2O
 """
 
 CORE = """compartment core
-    uptake    : glucose + 2 ATP -> 2 hub + 4 ATP + 2 NADH
+    uptake    : glucose -> 2 hub + 2 ATP + 2 NADH
     cleave    : hub -> two + CO2 + NADH
     burn      : two -> 2 CO2 + 4 NADH + ATP
     breathe   : NADH + 0.5 oxygen -> 1.4 ATP

@@ -25,7 +25,7 @@ carrier   NADH  carries 2 electrons
 carrier   NADPH carries 2 electrons
 inside    A, B, hub C3H4O3
 compartment all
-    uptake  : glucose + 2 ATP -> 2 hub + 4 ATP + 2 NADH
+    uptake  : glucose -> 2 hub + 2 ATP + 2 NADH
     ferment : hub + NADH -> lactate
     pdc     : hub + NADH -> ethanol + CO2
     breathe : NADH + 0.5 oxygen -> 1.4 ATP
