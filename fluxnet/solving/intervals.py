@@ -2,8 +2,8 @@
 
 A value belongs to the 95 % interval when some fluxes within all bounds take it with
 h - h_min <= 3.84 (profile likelihood; for a determined value away from bounds that is
-value ± 1.96 sd). Where uncertain numbers move, or the functional is a quotient, the end of an
-interval is approached by steps that are linear each, until it no longer moves.
+value ± 1.96 sd). Where uncertain numbers move, or the functional is a quotient, the end is
+found by :mod:`fluxnet.solving.curve`.
 """
 
 from __future__ import annotations
@@ -13,9 +13,10 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.solving.curve import Curve, follow_curve, moved_by
 from fluxnet.solving.functionals import Functionals
 from fluxnet.solving.reach import Reach, reach_far, reach_flat
-from fluxnet.solving.region import Region, region_at
+from fluxnet.solving.region import Region
 from fluxnet.solving.statistics import chi_squared_quantile
 from fluxnet.solving.task import Point, Task, flux_scale, point_at
 
@@ -23,8 +24,6 @@ __all__ = ["Intervals", "find_intervals"]
 
 Vector = NDArray[np.float64]
 
-_STEPS = 25
-_NEAR = 1e-4
 
 
 @dataclass(frozen=True, slots=True)
@@ -134,15 +133,17 @@ def _fill(search: _Search, members: list[tuple[int, float]]) -> None:
     first, lead = members[0]
     origin = np.zeros(search.gradients.shape[1])
     for sign in (-1.0, 1.0):
-        best = origin
+        best, least = origin, 0.0
         if search.hidden[first]:
             flat = _flat_end(search, first, sign)
             _note(search, members, 2, sign, flat.value)
             if flat.place is None:
                 _note(search, members, 0, sign, np.inf)
                 continue
-            best = flat.place
+            best, least = flat.place, flat.value
         reach, there = _end(search, first, sign, best)
+        # What the best fit allows, 95 % allows too.
+        reach = max(reach, least)
         _note(search, members, 0, sign, reach)
         if there is None or len(members) == 1:
             continue
@@ -183,50 +184,21 @@ def _flat_end(search: _Search, i: int, sign: float) -> Reach:
     return Reach(sign * (value - search.values[i]), flat.place)
 
 
-def _end(search: _Search, i: int, sign: float, start: Vector) -> tuple[float, Point | None]:
-    """How far a functional goes at 95 %, and the point where it ends."""
-    task, region = search.task, search.region
-    radius = float(np.sqrt(max(search.level - region.floor, 1e-12)))
-    reach = reach_far(region, sign * search.gradients[i], radius, start)
-    if reach.place is None or not search.curved[i]:
+def _end(search: _Search, i: int, sign: float, flat: Vector) -> tuple[float, Point | None]:
+    """How far a functional goes at 95 %, and the point where it ends.
+
+    Parameters
+    ----------
+    flat
+        The place with the same fit where the functional is at its end.
+    """
+    region = search.region
+    if not search.curved[i]:
+        room = max(search.level - region.floor, 1e-12)
+        reach = reach_far(region, sign * search.gradients[i], float(np.sqrt(room)), flat)
         return reach.value, None
-    origin = region.point
-    best: tuple[float, Point] = (0.0, origin)
-    centre, step, weight = origin, region.step(reach.place), reach.weight
-    room = search.level - origin.h
-    factor = 1.0
-    for _ in range(_STEPS):
-        point = _moved(task, centre, factor * step)
-        if point is None or point.h > search.level + room:
-            # The slopes mislead so far away: half the step.
-            factor /= 2
-            if factor < 1e-4:
-                break
-            continue
-        value = sign * float(search.functionals.values(point)[i] - search.values[i])
-        here = region_at(task, point)
-        left = search.level - here.floor
-        if not np.isfinite(value) or left <= 0 or here.broken:
-            factor /= 2
-            continue
-        gradient = here.gradients(sign * search.functionals.slopes(point)[i][None, :])[0]
-        onward = reach_far(here, gradient, float(np.sqrt(left)), np.zeros(len(gradient)), weight)
-        if onward.place is None:
-            return np.inf, None
-        if value > best[0] and point.h <= search.level + _NEAR * room:
-            best = (value, point)
-        if abs(onward.value) <= _NEAR * max(abs(value), abs(onward.value), 1e-12):
-            # What is left is added by the slope: the error is of the order of its square.
-            return value + onward.value, point
-        centre, step, weight, factor = point, here.step(onward.place), onward.weight, 1.0
-    return best
-
-
-def _moved(task: Task, point: Point, step: Vector) -> Point | None:
-    """The point a step away, its numbers kept within their ranges."""
-    free = len(point.z)
-    numbers = np.clip(point.numbers + step[free:], task.range_low, task.range_high)
-    try:
-        return point_at(task, point.chart, point.z + step[:free], numbers)
-    except (ZeroDivisionError, np.linalg.LinAlgError):
-        return None
+    curve = Curve(search.task, search.functionals, i, sign, search.level, search.values[i])
+    start = moved_by(search.task, region.point, region.step(flat)) if flat.any() else region.point
+    if start is None:
+        return np.inf, None
+    return follow_curve(curve, start, region if start is region.point else None)

@@ -3,7 +3,8 @@
 max c x over x = (u, t) with ||u - centre|| <= radius and the bounds. For a weight w the
 quadratic programme min ||u - centre||^2 / 2 - w c x has its optimum on the way; as w grows,
 its distance from the centre does. The w at which that is the radius is found with the exact
-slope of the piece (the same bounds pressing), so a few programmes suffice.
+slope of the piece (the same bounds pressing), so a few programmes suffice. Every answer is
+an upper bound by duality: what the search leaves open makes a range wider, never narrower.
 """
 
 from __future__ import annotations
@@ -21,7 +22,7 @@ __all__ = ["Reach", "reach_far", "reach_flat"]
 
 Vector = NDArray[np.float64]
 
-_CLOSE = 1e-5
+_CLOSE = 1e-6
 """How near the radius is near enough: what is left is added, right to first order."""
 _TRIES = 60
 
@@ -71,30 +72,35 @@ def reach_far(
     along = float(np.linalg.norm(unit[:seen]))
     weight = guess or (radius / along if along > 1e-9 else radius)
     low, high = 0.0, np.inf
-    best = start
+    bound: Reach | None = None
     for _ in range(_TRIES):
         found = _pull(region, weight * unit)
         if found.x is None:
-            return Reach(np.inf, None)
+            if bound is None:
+                return Reach(np.inf, None)
+            high, weight = weight, (low + weight) / 2
+            continue
         away = found.x[:seen] - region.centre
-        distance = float(away @ away)
-        left = radius**2 - distance
-        if left >= -_CLOSE * radius**2:
-            best, low = found.x, max(low, weight)
+        left = radius**2 - float(away @ away)
+        # By duality no place within the radius goes beyond this.
+        gap = left / (2 * weight)
+        here = Reach(size * (float(unit @ found.x) + gap), found.x, weight)
+        if abs(left) <= _CLOSE * radius**2:
+            return here
+        if left > 0:
+            bound, low = here, max(low, weight)
+            if gap <= _CLOSE * max(abs(float(unit @ found.x)), 0.01):
+                return here
         else:
             high = min(high, weight)
-        if abs(left) <= _CLOSE * radius**2:
-            # The optimum's value falls short by left / (2 w), to first order exactly.
-            gain = size * left / (2 * weight)
-            return Reach(float(gradient @ found.x) + gain, found.x, weight)
         following = _next_weight(region, found, unit, weight, radius)
         if following == np.inf and np.isinf(high):
             # The place stays where it is under any greater pull: a corner of the bounds.
-            return Reach(float(gradient @ found.x), found.x, weight)
+            return Reach(size * float(unit @ found.x), found.x, weight)
         if following is None or not low < following < high:
             following = 4 * weight if np.isinf(high) else (low + high) / 2
         weight = following
-    return Reach(float(gradient @ best), best, weight)
+    return Reach(np.inf, None) if bound is None else bound
 
 
 def _straight(

@@ -78,7 +78,7 @@ class Region:
         """Minimise half the square of u plus a linear form of (u, t), bounds kept."""
         bounds = self.bounds
         return SmallProgramme(
-            self.hessian, gradient, bounds.rows, bounds.low, bounds.high, bounds.sizes
+            self.hessian, gradient, bounds.rows, bounds.low, bounds.high, bounds.sizes, 1.0
         )
 
 

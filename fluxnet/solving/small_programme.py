@@ -24,6 +24,8 @@ class SmallProgramme:
     """One programme, its rows of norm 1: minimise x'Hx/2 + f'x, low <= A x <= high.
 
     ``sizes`` are the absolute values of ``rows``: given where many programmes share them.
+    ``unit`` is the size of a usual gradient, beside which rounding is judged where all terms
+    happen to cancel.
     """
 
     hessian: Vector | None
@@ -32,6 +34,7 @@ class SmallProgramme:
     low: Vector
     high: Vector
     sizes: Vector
+    unit: float = 0.0
 
     def slope(self, x: Vector) -> Vector:
         """The gradient of the objective at x."""
@@ -55,7 +58,7 @@ class SmallProgramme:
             violation = max(violation, float(off.max()))
             left = left + weights @ self.rows[on]
             terms = terms + np.abs(weights) @ self.sizes[on]
-        scale = float(terms.max(initial=0.0)) or 1.0
+        scale = max(float(terms.max(initial=0.0)), self.unit) or 1.0
         return max(violation / FEASIBLE, float(np.abs(left).max(initial=0.0)) / scale / OPTIMAL)
 
 
