@@ -18,12 +18,15 @@ RUNS = ("W09", "W11", "W14", "W15")
 
 @pytest.fixture(scope="module")
 def script() -> ModuleType:
+    # no compiled copy is left in a folder that is packed as it stands
+    write, sys.dont_write_bytecode = sys.dont_write_bytecode, True
     spec = importlib.util.spec_from_file_location("make_rates", FOLDER / "make_rates.py")
     assert spec is not None
     assert spec.loader is not None
     module = importlib.util.module_from_spec(spec)
     sys.modules["make_rates"] = module
     spec.loader.exec_module(module)
+    sys.dont_write_bytecode = write
     return module
 
 
