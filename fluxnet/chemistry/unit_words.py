@@ -6,8 +6,12 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
+from functools import cache
 from types import MappingProxyType
-from typing import Final
+from typing import TYPE_CHECKING, Final
+
+if TYPE_CHECKING:
+    import pint
 
 __all__ = ["CONCENTRATIONS", "MARKS", "WORDS", "Dimension", "Word", "look_up"]
 
@@ -98,6 +102,14 @@ _PLACES = {
 }  # fmt: skip
 
 
+@cache
+def _registry() -> pint.UnitRegistry[float]:
+    """Loaded once: it takes a third of a second."""
+    import pint
+
+    return pint.UnitRegistry()
+
+
 def look_up(word: str) -> Word | None:
     """An unusual word, with pint: its dimension and size, None where pint has no such word.
 
@@ -108,9 +120,9 @@ def look_up(word: str) -> Word | None:
     >>> look_up("week").scale
     Fraction(168, 1)
     """
-    import pint
-
-    registry: pint.UnitRegistry[float] = pint.UnitRegistry()
+    if not word.isalpha():  # pint would take a sign for a sum
+        return None
+    registry = _registry()
     if word not in registry:
         return None
     quantity = registry.Quantity(1, word)
