@@ -118,6 +118,15 @@ def build_problem(
     -----
     A run whose basis is not the model's (amounts: no time) leaves out limits other than zero
     and measured values given in the model's basis; ratios hold in every basis.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> lines = ("substrate glucose", "product ethanol", "exchange CO2", "compartment all",
+    ...     "    ferment : glucose -> 2 ethanol + 2 CO2", "limit ethanol <= 3")
+    >>> built = build_problem(read_model_text(chr(10).join(lines)).network)
+    >>> [row.name for row in built.problem.rows], built.problem.row_high.tolist()
+    (['glucose', 'ethanol', 'CO2', 'limit ethanol <= 3'], [inf, inf, inf, 3.0])
     """
     if within is not None and not within >= 0:
         raise MisuseError("measured values can only be held within a positive number of sd")

@@ -66,6 +66,17 @@ def find_conflict(problem: Problem, *, unit: str = "") -> Conflict:
     ------
     ArithmeticError
         Where the solver could not tell.
+
+    Examples
+    --------
+    >>> from fluxnet.solving.problem import Row, RowKind
+    >>> rows = (Row(RowKind.LIMIT, "limit a <= 1"), Row(RowKind.LIMIT, "limit a + b >= 3"),
+    ...     Row(RowKind.LIMIT, "limit b <= 1"), Row(RowKind.LIMIT, "limit a >= 0.5"))
+    >>> problem = Problem(("a", "b"), rows, np.array([[1.0, 0], [1, 1], [0, 1], [1, 0]]),
+    ...     np.array([-np.inf, 3, -np.inf, 0.5]), np.array([1, np.inf, 1, np.inf]),
+    ...     np.zeros(2), np.full(2, np.inf))
+    >>> [member.words for member in find_conflict(problem).members]
+    ['limit a <= 1', 'limit a + b >= 3', 'limit b <= 1']
     """
     members = list_members(problem, unit)
     sieve = _Sieve(problem)

@@ -233,3 +233,11 @@ def test_a_ratio_changes_by_as_much_where_rates_count_carbon(make_network, make_
         answers.append((change.total, change.common_k, change.changes[0].changed))
     assert answers[0] == pytest.approx(answers[1], rel=1e-6)
     assert answers[0] == pytest.approx((25.0, 5.0, 2.0), rel=1e-6)
+
+
+def test_ratios_that_hold_need_no_change(make_network, make_run):
+    network = make_network(CELL, ("oxygen <= 5",))
+    run = make_run(network, "CO2 out / glucose in 0.7 ± 0.1", "glucose in 1 ± 0.1")
+    change = least_change(build_problem(network, run).problem)
+    assert change.total == pytest.approx(0, abs=1e-9)
+    assert change.common_k == pytest.approx(0, abs=1e-6)

@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from pathlib import Path
+
 import numpy as np
 import pytest
 from scipy.optimize import linprog
 
 from fluxnet.ground.errors import MisuseError
 from fluxnet.network.model import Direction, Quantity, QuantityKind
+from fluxnet.reading.model import read_model
 from fluxnet.solving.alter import with_row
 from fluxnet.solving.build import build_problem, quantity_row
 from fluxnet.solving.least_flux import least_total_flux
@@ -161,3 +164,19 @@ def test_there_is_no_least_total_where_nothing_is_feasible(make_network):
     problem = build_problem(make_network(TWO_WAYS, ("glucose <= 0", "upkeep >= 1"))).problem
     with pytest.raises(MisuseError):
         least_total_flux(problem)
+
+
+def test_the_ranges_of_sixty_reactions_are_those_of_another_solver():
+    folder = Path(__file__).resolve().parent.parent / "benchmarks"
+    network = read_model(folder / "sixty.flux").network
+    problem = build_problem(network).problem
+    ranges = find_ranges(problem)
+    assert len(problem.columns) == 60
+    assert ranges.residual < 1e-9
+    for j, unit in enumerate(np.eye(60)):
+        for mine, other in (
+            (ranges.low[j], by_linprog(problem, unit)),
+            (ranges.high[j], -by_linprog(problem, -unit)),
+        ):
+            assert mine == other or abs(mine - other) < 1e-8, problem.columns[j]
+    assert np.isinf(ranges.high[[problem.column("sdh"), problem.column("frd")]]).all()
