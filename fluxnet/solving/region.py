@@ -23,6 +23,8 @@ Vector = NDArray[np.float64]
 
 _FLAT = 1e-11
 """A row that a unit step changes by less than this part of its terms is a constant."""
+_DUST = 1e-11
+"""A coefficient below this part of its row's norm is what rounding left of none."""
 _CONSTANT = 1e-7
 """By how much of its terms a constant row may miss its bound and still be rounding."""
 
@@ -125,6 +127,9 @@ def _bounds(
         high = np.concatenate([high, task.range_high - point.numbers])
         terms = np.concatenate([terms, np.abs(point.numbers) + task.sd])
     rows = np.hstack([slopes @ seen, slopes @ unseen])
+    closed = np.ones(len(rows), dtype=bool)
+    closed[: len(task.bounded)] = ~task.open_bounds
+    rows[closed, seen.shape[1] :] = 0.0
     sizes = np.sqrt(np.einsum("ij,ij->i", rows, rows))
     scale = flux_scale(task, point)
     flat = sizes <= _FLAT * np.maximum(terms, 1e-3 * scale)
@@ -133,7 +138,7 @@ def _bounds(
     kept = np.flatnonzero(~flat & (np.isfinite(low) | np.isfinite(high)))
     norms = sizes[kept]
     rows = rows[kept] / norms[:, None]
-    rows[np.abs(rows) < 1e-13] = 0.0
+    rows[np.abs(rows) < _DUST] = 0.0
     bounds = Bounds(rows, low[kept] / norms, high[kept] / norms, kept, np.abs(rows))
     return bounds, tuple(broken.tolist())
 

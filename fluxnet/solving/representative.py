@@ -25,7 +25,8 @@ def take_least_flux(task: Task, region: Region) -> Region:
         return region
     point, bounds = region.point, region.bounds
     changes = point.tangent @ region.unseen[: point.tangent.shape[1]]
-    changes[np.abs(changes) < 1e-12 * np.abs(changes).max()] = 0.0
+    changes[~task.open_fluxes] = 0.0
+    changes[np.abs(changes) < 1e-11 * np.abs(changes).max()] = 0.0
     moving = np.flatnonzero(np.abs(changes).max(axis=1) > 0)
     low, high = _signs(task, moving)
     costs = changes[moving[low]].sum(axis=0) - changes[moving[high]].sum(axis=0)

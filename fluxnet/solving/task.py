@@ -36,7 +36,8 @@ class Task:
     inverse of the Cholesky factor of their covariance; ``bounded`` those of rows with bounds
     ``low`` and ``high``. The uncertain numbers have ``sd`` and a range. ``rank`` of the
     equalities, and how many directions the soft rows have ``seen``, are known exactly.
-    ``scale`` is the size of a usual flux, as values and bounds tell it.
+    ``scale`` is the size of a usual flux, as values and bounds tell it. ``open_bounds`` and
+    ``open_fluxes`` mark bounded rows and fluxes that are not determined, as decided exactly.
     """
 
     rows: MovingRows
@@ -54,6 +55,8 @@ class Task:
     rank: int
     seen: int
     scale: float
+    open_bounds: NDArray[np.bool_]
+    open_fluxes: NDArray[np.bool_]
 
     @property
     def numbers(self) -> int:
@@ -114,6 +117,10 @@ def task_of(built: Built, structure: Structure, extra: tuple[Form, ...] = ()) ->
         rank=structure.rank,
         seen=structure.seen,
         scale=float(np.median(known)) if len(known) else 1.0,
+        open_bounds=np.array(
+            [not structure.is_determined(exact.rows[i]) for i in bounded], dtype=bool
+        ),
+        open_fluxes=~np.array(structure.determined, dtype=bool),
     )
 
 
