@@ -139,8 +139,10 @@ def _second_word(
     if len(words) == 1 and not _NAME.fullmatch(formula[0]):
         return [Fault(Name.BAD_FORMULA, f"{formula[0]} is no formula", formula.start(),
                       formula.end(), "write elements with counts, for example C6H12O6")]
-    if _is_formula(formula[0]) and len(words) > 1:
+    if _is_formula(formula[0]):
         words = words[1:]
+        if not words:
+            return []
         if words[0][0] == "charge":
             return [Fault(Name.BAD_FORMULA, "the charge cannot be read", words[0].start(), end,
                           "write `charge -1`")]
