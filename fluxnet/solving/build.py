@@ -105,10 +105,6 @@ def build_problem(
     denominators
         The sizes of measured ratios' denominators in moles, where they are known from a fit.
 
-    Returns
-    -------
-    Built
-
     Raises
     ------
     MisuseError

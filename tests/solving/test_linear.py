@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+import subprocess
+import sys
+
 import numpy as np
 import pytest
 
@@ -106,6 +109,22 @@ def test_nothing_is_written_to_the_terminal(capfd):
     programme.minimise(np.zeros(3))
     Programme(problem_of([], [], [(0, INF)])).maximise(np.ones(1))
     assert capfd.readouterr() == ("", "")
+
+
+def test_the_first_programme_of_a_process_writes_nothing_either():
+    # Some releases of the solver greet on standard output when they are first called.
+    lines = (
+        "import numpy as np",
+        "from fluxnet.solving.linear import Programme",
+        "from fluxnet.solving.problem import Problem",
+        "e = np.empty(0)",
+        "p = Problem(('r',), (), np.empty((0, 1)), e, e, np.zeros(1), np.ones(1))",
+        "assert Programme(p).maximise(np.ones(1)).objective == 1",
+    )
+    done = subprocess.run(
+        [sys.executable, "-c", "\n".join(lines)], capture_output=True, text=True, check=True
+    )
+    assert (done.stdout, done.stderr) == ("", "")
 
 
 def test_bounds_that_change_give_what_a_fresh_programme_gives():
