@@ -43,5 +43,5 @@ def equation_lines(equation: NetEquation, unit: str) -> tuple[tuple[str, str, st
         if equation.per is not None and equation.per_amount:
             share = format_number(equation.base / equation.per_amount, 3)
             per = f", {share} mol per mol {equation.per}"
-        lines.append(("  base to hold the pH", "base", f"{amount} {unit}{per}"))
+        lines.append(("  base for the pH", "base", f"{amount} {unit}{per}"))
     return tuple(lines)

@@ -90,7 +90,7 @@ def _assumptions(run: FluxSolution) -> list[Block]:
               for words in run.violated_limits]  # fmt: skip
     if test is not None:
         lines += [Sentence(f"Pulled by a bound: {words}.", Mood.DOUBTFUL) for words in test.pulling]
-    if run.left_free:
+    if run.left_free and run.run is not None:
         lines.append(Sentence(f"Not measured, left free: {', '.join(run.left_free)}."))
     lines += [Sentence(f"Note: {note.message} ({note.name.value}).") for note in run.notes]
     return lines
@@ -240,7 +240,7 @@ def _equations(run: FluxSolution) -> list[Block]:
     columns = (
         Column("compartment", "compartment"),
         Column("", "per"),
-        Column("equation", "text", wrap=60),
+        Column("equation", "text", wrap=56),
     )
     per = next((e.per for e in run.equations if e.per), None)
     title = f"Net equations, per mol {per} and in {run.unit}" if per else "Net equations"

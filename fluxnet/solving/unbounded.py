@@ -143,7 +143,7 @@ def _words(
     names = ", ".join(step.reaction for step in loop)
     if missing:
         limits = " and ".join(f"{name} in" for name in missing)
-        return f"nothing limits {limits}: a limit there puts an end to it"
+        return f"nothing limits {limits}; a limit there puts an end to it"
     crosses = any(
         abs(float(cone.matrix[i] @ ray)) > 1e-9
         for i, row in enumerate(cone.rows)

@@ -31,6 +31,9 @@ __all__ = ["fit_run"]
 # Within so many sds measured rates are asked to hold together when the fit is rejected.
 _WITHIN = 2.0
 
+# A rate this small beside the largest flux is rounding, not a rate.
+_ROUNDING = 1e-12
+
 
 def fit_run(network: Network, run: Run | None) -> FluxSolution:
     """Fit fluxes to one run (None: to the measured limits of the model alone).
@@ -130,6 +133,7 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
         )
         for j, reaction in enumerate(network.reactions)
     )
+    rounding = _ROUNDING * float(np.abs(fit.fluxes).max(initial=0.0))
     measured = {row.quantity for row in fit.rows}
     rates = (*fit.rows, *(row for row in fit.rates if row.quantity not in measured))
 
@@ -138,7 +142,6 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
         return Span(intervals.sd, intervals.low, intervals.high)
 
     account = keep_account(fit.built, fit.fluxes, spans)
-    rounding = 1e-9 * max((abs(row.value) for row in rates), default=0.0)
     return replace(
         frame,
         fluxes=fluxes,
@@ -152,16 +155,17 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
 
 
 def _rate(row: FittedRow, unit: str, rounding: float) -> RateEstimate:
+    value = 0.0 if abs(row.value) <= rounding else row.value
     return RateEstimate(
         quantity=row.quantity,
         unit=rate_unit(row.quantity, unit),
         measured=row.measured,
         sd=row.sd,
-        reconciled=row.value,
+        reconciled=value,
         reconciled_sd=row.value_sd,
         low=row.low,
         high=row.high,
         z=row.z,
         kind=row.kind,
-        reversed_=row.value < -rounding and row.quantity.direction is not None,
+        reversed_=value < 0 and row.quantity.direction is not None,
     )

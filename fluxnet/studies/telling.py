@@ -115,7 +115,7 @@ def tell_infeasible(
 
 def tell_unbounded(aim: Aim, reason: Unbounded) -> str:
     """Why an aim has no best value."""
-    return f"To {aim} has no end: {reason.words}."
+    return f"{str(aim).capitalize()}: there is no end to it: {reason.words}."
 
 
 def _listed(words: list[str]) -> str:

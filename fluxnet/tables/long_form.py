@@ -45,7 +45,7 @@ def collect_long(layout: Layout) -> Entries:
     for row in layout.body:
         named = _cell(row, places, Key.RUN).text
         continued = continued or bool(run and not named and Key.RUN in places)
-        run = named or run or "run 1"
+        run = named or run or "1"
         head = heads.get(run, RunHead(run, row.span))
         heads[run] = extend_head(head, row, extras, biomass)
         entry = _entry(row, run, places, layout.vocabulary)

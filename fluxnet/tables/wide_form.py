@@ -41,7 +41,7 @@ def collect_wide(layout: Layout) -> Entries:
     heads: dict[str, RunHead] = {}
     for count, row in enumerate(layout.body, start=1):
         named = row.cell(columns.run.cell.column).text if columns.run else ""
-        run = named or f"run {count}"
+        run = named or str(count)
         head = heads.get(run, RunHead(run, row.span))
         heads[run] = extend_head(head, row, columns.extras, biomass)
         entries.extend(

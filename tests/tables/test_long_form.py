@@ -38,7 +38,7 @@ def test_a_blank_run_cell_continues_the_run_above_and_that_is_said():
 
 def test_without_a_run_column_there_is_one_run_with_a_name(read):
     run = read("species,direction,rate,sd,unit\nglucose,in,2,1,mmol\nethanol,out,1,1,mmol\n")
-    assert (run.name, len(run.rates)) == ("run 1", 2)
+    assert (run.name, len(run.rates)) == ("1", 2)
 
 
 def test_a_blank_value_is_exchanged_but_not_measured(read, rate):

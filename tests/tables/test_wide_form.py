@@ -106,4 +106,4 @@ def test_names_with_commas_are_quoted_or_separated_otherwise(read):
 
 def test_a_run_without_a_name_is_called_by_its_number():
     reading = read_rates_text("glucose in [mmol],note\n1,a\n2,b\n")
-    assert [r.name for r in reading.table.runs] == ["run 1", "run 2"]
+    assert [r.name for r in reading.table.runs] == ["1", "2"]

@@ -1,0 +1,66 @@
+"""The manual's examples are read, checked and solved as printed."""
+
+from __future__ import annotations
+
+import re
+from pathlib import Path
+
+import pytest
+
+import fluxnet
+from fluxnet.cli.main import Exit, run
+from fluxnet.cli.new import MODEL, RATES
+from fluxnet.ground.names import Name
+
+MANUAL = Path(fluxnet.__file__).parent / "manual"
+TOPICS = sorted(path.stem for path in MANUAL.glob("*.md"))
+
+
+def blocks(kind: str) -> list[object]:
+    """The examples of one kind, each known by its topic and place."""
+    found = []
+    for path in sorted(MANUAL.glob("*.md")):
+        texts = re.findall(rf"```{kind}\n(.*?)```", path.read_text(encoding="utf-8"), re.S)
+        found += [pytest.param(text, id=f"{path.stem}-{k}") for k, text in enumerate(texts)]
+    return found
+
+
+@pytest.mark.parametrize("topic", TOPICS)
+def test_each_topic_is_shown(topic: str, capsys: pytest.CaptureFixture[str]) -> None:
+    assert run(["manual", topic]) == Exit.SOUND
+    assert capsys.readouterr().out.startswith("# ")
+
+
+@pytest.mark.parametrize("text", blocks("flux"))
+def test_each_model_of_the_manual_is_sound(text: str, tmp_path: Path) -> None:
+    path = tmp_path / "model.flux"
+    path.write_text(text, encoding="utf-8")
+
+    assert run(["check", str(path)]) == Exit.SOUND
+
+
+@pytest.mark.parametrize("text", blocks("rates"))
+def test_each_table_of_the_manual_closes(text: str, tmp_path: Path) -> None:
+    model, table = tmp_path / "model.flux", tmp_path / "rates.csv"
+    model.write_text(MODEL, encoding="utf-8")
+    table.write_text(text, encoding="utf-8")
+
+    assert run(["closure", str(table), "--model", str(model)]) == Exit.SOUND
+    assert run(["solve", str(model), str(table)]) == Exit.SOUND
+
+
+def test_the_manual_has_examples_of_both_kinds() -> None:
+    assert blocks("flux")
+    assert len(blocks("rates")) >= 2
+    assert RATES
+
+
+@pytest.mark.parametrize("name", [name.value for name in Name])
+def test_each_diagnostic_name_is_explained(
+    name: str, capsys: pytest.CaptureFixture[str]
+) -> None:
+    assert run(["explain", name]) == Exit.SOUND
+    shown = capsys.readouterr().out
+
+    assert name in shown
+    assert "what to do" in shown
