@@ -9,6 +9,7 @@ from fluxnet.ground.names import Name
 from fluxnet.network.advice import terms_to_solve
 from fluxnet.network.balance_notes import notes_on
 from fluxnet.network.balance_words import because_of, gap_words, mend_words, rounding_words
+from fluxnet.network.directions import Directions
 from fluxnet.network.line_balance import (
     Contents,
     LineBalance,
@@ -77,20 +78,19 @@ def check_balances(
     contents = contents_of_network(network, chosen)
     lines = tuple(balance_line(r, contents) for r in chosen)
     found: list[Diagnostic] = []
-    every = contents
-    if any(line.verdict is Verdict.OPEN for line in lines):
-        every = contents_of_network(network)
+    directions: Directions | None = None
     for line in lines:
         if line.verdict is Verdict.OPEN:
-            found.append(_unbalanced(line, every))
+            directions = directions or Directions.of(contents)
+            found.append(_unbalanced(line, contents, directions))
         elif line.verdict is Verdict.ROUNDING:
             found.append(_rounded(line))
     found.extend(notes_on(lines, network))
     return tuple(found)
 
 
-def _unbalanced(line: LineBalance, contents: Contents) -> Diagnostic:
-    mends = find_mends(line, contents)
+def _unbalanced(line: LineBalance, contents: Contents, directions: Directions) -> Diagnostic:
+    mends = find_mends(line, contents, directions)
     term = mends[0].term if mends else None
     return Diagnostic(
         Name.UNBALANCED_LINE,

@@ -9,6 +9,7 @@ from fractions import Fraction
 
 from fluxnet.network.amounts import decimals_of
 from fluxnet.network.contents import Content
+from fluxnet.network.directions import Directions
 from fluxnet.network.expression import Expression, constant
 from fluxnet.network.line_balance import (
     Contents,
@@ -48,7 +49,9 @@ class Mend:
     exact: bool = True
 
 
-def find_mends(line: LineBalance, contents: Contents) -> tuple[Mend, ...]:
+def find_mends(
+    line: LineBalance, contents: Contents, directions: Directions | None = None
+) -> tuple[Mend, ...]:
     """All repairs of one term that close every balance of a line, the likeliest first.
 
     Parameters
@@ -57,6 +60,8 @@ def find_mends(line: LineBalance, contents: Contents) -> tuple[Mend, ...]:
         The balance of a line with a gap.
     contents
         What the network's species hold; terms to add are looked for among its species.
+    directions
+        The same by direction of content, where many lines are looked at.
 
     Returns
     -------
@@ -68,7 +73,7 @@ def find_mends(line: LineBalance, contents: Contents) -> tuple[Mend, ...]:
     values = {p.name: p.value for p in contents.network.parameters}
     found = [m for m in _changes(line, contents) if _is_written(m, values)]
     if not found:
-        found = list(_additions(line, contents, values))
+        found = list(_additions(line, contents, directions or Directions.of(contents), values))
     return tuple(sorted(found, key=lambda m: _rank(m, values, contents)))
 
 
@@ -155,10 +160,13 @@ def _swap(terms: Iterable[Term], old: Term, new: Term) -> tuple[Term, ...]:
 
 
 def _additions(
-    line: LineBalance, contents: Contents, values: dict[str, Fraction]
+    line: LineBalance,
+    contents: Contents,
+    directions: Directions,
+    values: dict[str, Fraction],
 ) -> Iterator[Mend]:
     """One more species on one side."""
-    for species in contents.network.species:
+    for species in directions.along(line):
         content = held_by(species, contents)
         if content is None or species.name in line.contents or species.role is Role.BIOMASS:
             continue

@@ -127,6 +127,9 @@ def _asked(line: LineBalance, sign: int, term: Term) -> str | None:
 
 def _mend(line: LineBalance, contents: Contents) -> str:
     ways: list[str] = []
+    needless = _needless(line)
+    if needless is not None:
+        ways.append(f"{needless} taken out")
     terms = terms_to_solve(line)
     if terms:
         ways.append(f"? {join([t.species for t in terms])} as well")
@@ -138,8 +141,26 @@ def _mend(line: LineBalance, contents: Contents) -> str:
     return f"{ways[0]} closes every balance" + (f"; so does {ways[1]}" if ways[1:] else "")
 
 
+def _needless(line: LineBalance) -> str | None:
+    """A species without which the line closes with positive ``?``."""
+    solved = [(s, t) for s, t in line.reaction.terms if t.solved]
+    functionals = [b.functional for b in line.balances]
+    for sign, term in line.reaction.terms:
+        number = None if term.coefficient is None else term.coefficient.constant_value
+        if term.solved or number is None:
+            continue
+        steps = _steps(line, solved, functionals, line.contents[term.species])
+        if steps is not None and steps[-1] == -sign * number:
+            return term.species
+    return None
+
+
 def _missing(line: LineBalance, contents: Contents) -> tuple[int, str] | None:
-    """A species that the line lacks, with its side: carriers are tried first."""
+    """A species that the line lacks, with its side: a carrier, or what holds but one thing.
+
+    Carriers are tried first. Others, that hold several things, could close most lines by
+    chance.
+    """
     candidates = sorted(contents.network.species, key=lambda s: s.role is not Role.CARRIER)
     solved = [(s, t) for s, t in line.reaction.terms if t.solved]
     for species in candidates:
@@ -148,6 +169,9 @@ def _missing(line: LineBalance, contents: Contents) -> tuple[int, str] | None:
             continue
         widened = {**line.contents, species.name: content}
         functionals = line_functionals(widened, contents.free)
+        held = [x for f in functionals if (x := f.of(content))]
+        if species.role is not Role.CARRIER and (len(held) != 1 or held[0] < 0):
+            continue
         steps = _steps(line, solved, functionals, content)
         if steps is not None:
             return (1 if steps[-1] > 0 else -1), species.name

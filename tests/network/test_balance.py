@@ -53,6 +53,12 @@ def test_a_missing_carrier_is_offered_on_the_side_where_it_closes_the_line(build
     assert "NADPH" in finding.mend
 
 
+def test_a_missing_species_that_holds_several_things_is_found_by_the_ratio_of_the_gaps(build):
+    species = {**COMMON, "alanine": "C3H7NO2", "glutamate": "C5H9NO4"}
+    finding = one_finding(build(species, "r: pyruvate + ammonia + 3 NADH -> 2 NADH"))
+    assert finding.mend == "1 alanine more on the right closes every balance"
+
+
 def test_a_species_on_the_wrong_side_is_told_to_move(build):
     finding = one_finding(build(COMMON, "pdh: pyruvate + NADH -> acetyl-CoA + CO2"))
     assert finding.mend == "1 NADH on the right instead closes every balance"

@@ -105,6 +105,13 @@ def test_the_mend_of_a_contradiction_names_what_to_solve_as_well_and_what_may_be
     )
 
 
+def test_the_mend_of_a_contradiction_names_a_term_that_is_too_much(build):
+    _, finding = only_finding(build(COMMON, "r: 2 acetyl-CoA -> ? ethanol + CO2 + 2 NADH"))
+    assert "as well" in finding.mend
+    _, finding = only_finding(build(COMMON, "r: acetyl-CoA + 2 NADH -> ? ethanol + CO2"))
+    assert finding.mend.startswith("CO2 taken out closes every balance")
+
+
 def test_what_rounding_explains_is_no_contradiction(build):
     species = {**COMMON, "sugar": "C6H12O6"}
     network = build(species, "r: 0.333 sugar -> ? pyruvate + 0.667 NADH")
