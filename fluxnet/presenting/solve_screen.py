@@ -117,7 +117,8 @@ def _rates(run: FluxSolution) -> Table:
         way = quantity.direction.value if is_rate and quantity.direction else ""
         if rate.reversed_:
             way += ", reversed"
-        known = rate.reconciled_sd is not None or rate.low == rate.high
+        sd = _shown_sd(rate.reconciled, rate.reconciled_sd, rate.low, rate.high)
+        known = sd is not None or rate.low == rate.high
         unit = "" if rate.unit == run.unit or not rate.unit else f" [{rate.unit}]"
         rows.append(
             (
@@ -126,7 +127,7 @@ def _rates(run: FluxSolution) -> Table:
                 rate.measured,
                 rate.sd,
                 rate.reconciled,
-                rate.reconciled_sd,
+                sd,
                 "" if known else format_range(rate.low, rate.high),
                 rate.z,
                 rate.kind.value.replace("_", " "),
@@ -156,7 +157,7 @@ def _fluxes(run: FluxSolution) -> Table:
             flux.reaction,
             flux.compartment,
             flux.value,
-            flux.sd,
+            _shown_sd(flux.value, flux.sd, flux.low, flux.high),
             "" if flux.low == flux.high else format_range(flux.low, flux.high),
             flux.kind.value,
             flux.low,
@@ -170,6 +171,13 @@ def _fluxes(run: FluxSolution) -> Table:
     if any(flux.kind is FluxKind.UNDETERMINED for flux in run.fluxes):
         notes = ("undetermined: any value in the range fits; shown is that of least total flux",)
     return Table("fluxes", f"Fluxes [{run.unit}]", columns, rows, notes)
+
+
+def _shown_sd(value: float, sd: float | None, low: float, high: float) -> float | None:
+    """The sd, unless a bound cuts the range far short of it: then the range alone tells."""
+    if sd is None or value - low < 1.5 * sd or high - value < 1.5 * sd:
+        return None if sd != 0 else sd
+    return sd
 
 
 def _moved(run: FluxSolution) -> list[Block]:

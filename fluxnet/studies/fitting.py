@@ -12,7 +12,6 @@ from fluxnet.rates.measured import Run
 from fluxnet.solving.build import build_problem
 from fluxnet.solving.conflict import find_conflict, least_change
 from fluxnet.solving.flux_fit import FitStatus, FittedRow, FluxFit, PressingBound
-from fluxnet.solving.least_change import Violation, find_violations
 from fluxnet.solving.least_squares import fit_fluxes, spans_of
 from fluxnet.studies.settling import Array, Span, keep_account
 from fluxnet.studies.solution import (
@@ -23,7 +22,7 @@ from fluxnet.studies.solution import (
     RateEstimate,
     SolveStatus,
 )
-from fluxnet.studies.telling import tell_fit, tell_infeasible
+from fluxnet.studies.telling import tell_fit, tell_infeasible, tell_violations
 from fluxnet.studies.units import rate_unit
 
 __all__ = ["fit_run"]
@@ -52,7 +51,7 @@ def fit_run(network: Network, run: Run | None) -> FluxSolution:
         left_out=fit.built.left_out,
         replaced=fit.built.replaced,
         notes=fit.built.notes,
-        violated_limits=tuple(_tell_violation(v) for v in find_violations(fit.built.problem)),
+        violated_limits=tell_violations(fit.built.problem),
     )
     if fit.status is FitStatus.INFEASIBLE:
         conflict = find_conflict(fit.built.problem, unit=frame.unit)
@@ -107,14 +106,6 @@ def _test(fit: FluxFit) -> FluxTest:
 def _tell_bound(bound: PressingBound) -> str:
     kind = bound.kind.value
     return bound.name if kind in bound.name else f"{kind} of {bound.name}"
-
-
-def _tell_violation(violation: Violation) -> str:
-    measured = violation.measured
-    return (
-        f"{violation.limit.name} is passed by {measured.name}, measured {measured.value:.4g}, "
-        f"by {violation.in_sd:.1f} sd"
-    )
 
 
 def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:

@@ -31,7 +31,12 @@ from fluxnet.studies.solution import (
     RateEstimate,
     SolveStatus,
 )
-from fluxnet.studies.telling import tell_infeasible, tell_optimum, tell_unbounded
+from fluxnet.studies.telling import (
+    tell_infeasible,
+    tell_optimum,
+    tell_unbounded,
+    tell_violations,
+)
 from fluxnet.studies.units import rate_unit
 
 __all__ = ["optimise"]
@@ -72,6 +77,7 @@ def optimise(
         left_out=built.left_out,
         replaced=built.replaced,
         notes=built.notes,
+        violated_limits=tell_violations(problem),
     )
     if best.outcome is Outcome.UNBOUNDED:
         reason = explain_unbounded(problem, cost if aim.sense is Sense.MAXIMISE else -cost)

@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 from fluxnet.solving.conflict import Conflict, LeastChange
+from fluxnet.solving.least_change import find_violations
+from fluxnet.solving.problem import Problem
 from fluxnet.solving.unbounded import Unbounded
 from fluxnet.studies.aims import Aim
 from fluxnet.studies.solution import FluxKind, FluxSolution, FluxTest, RateKind
 
-__all__ = ["tell_fit", "tell_infeasible", "tell_optimum", "tell_unbounded"]
+__all__ = ["tell_fit", "tell_infeasible", "tell_optimum", "tell_unbounded", "tell_violations"]
 
 
 def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
@@ -116,6 +118,15 @@ def tell_infeasible(
 def tell_unbounded(aim: Aim, reason: Unbounded) -> str:
     """Why an aim has no best value."""
     return f"{str(aim).capitalize()}: there is no end to it: {reason.words}."
+
+
+def tell_violations(problem: Problem) -> tuple[str, ...]:
+    """The limits that a measured value of the same quantity passes by more than two sds."""
+    return tuple(
+        f"{v.limit.name} is passed by {v.measured.name}, measured {v.measured.value:.4g}, "
+        f"by {v.in_sd:.1f} sd"
+        for v in find_violations(problem)
+    )
 
 
 def _listed(words: list[str]) -> str:
