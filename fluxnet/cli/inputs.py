@@ -51,7 +51,8 @@ class ReadModel:
 
 def exit_of(diagnostics: tuple[Diagnostic, ...]) -> int:
     """The exit status that findings alone ask for."""
-    if any(d.name in _UNREADABLE and d.severity.rank == 0 for d in diagnostics):
+    # told at a line they are faults of a file that could be read: a used file, a `from`
+    if any(d.name in _UNREADABLE and not d.span.line for d in diagnostics):
         return Exit.MISUSE
     return Exit.FINDING if has_errors(diagnostics) else Exit.SOUND
 
