@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from fractions import Fraction
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.network.amounts import number_text
+from fluxnet.network.balance_words import join
 from fluxnet.network.model import Network, Parameter, Reaction, Term
 from fluxnet.network.unknown_signs import changes_sign
 
@@ -39,9 +40,8 @@ def check_coefficients(
     found: list[Diagnostic] = []
     for reaction in network.reactions if reactions is None else reactions:
         sizes: list[Fraction] = []
-        for _, term in reaction.terms:
-            if term.coefficient is not None and not term.solved:
-                found.extend(_term_findings(reaction, term, parameters, sizes))
+        for terms in _alike(reaction):
+            found.extend(_term_findings(reaction, terms, parameters, sizes))
         if sizes and max(sizes) > _WIDEST * min(sizes):
             found.append(
                 Diagnostic(
@@ -55,9 +55,22 @@ def check_coefficients(
     return tuple(found)
 
 
+def _alike(reaction: Reaction) -> list[list[Term]]:
+    """The written terms of a reaction, those with the same expression together."""
+    groups: dict[str, list[Term]] = {}
+    for _, term in reaction.terms:
+        if term.coefficient is not None and not term.solved:
+            groups.setdefault(str(term.coefficient), []).append(term)
+    return list(groups.values())
+
+
 def _term_findings(
-    reaction: Reaction, term: Term, parameters: Mapping[str, Parameter], sizes: list[Fraction]
+    reaction: Reaction,
+    terms: Sequence[Term],
+    parameters: Mapping[str, Parameter],
+    sizes: list[Fraction],
 ) -> Iterator[Diagnostic]:
+    term, also = terms[0], tuple(t.span for t in terms[1:])
     coefficient = term.coefficient
     if coefficient is None:
         return
@@ -65,7 +78,8 @@ def _term_findings(
     if number is not None and number > 0:
         sizes.append(number)
         return
-    name = f"the coefficient of {term.species} in {reaction.name}"
+    species = join([t.species for t in terms])
+    name = f"the coefficient of {species} in {reaction.name}"
     at = {n: parameters[n].value for n in coefficient.parameters}
     try:
         value = coefficient.exact(at)
@@ -75,6 +89,7 @@ def _term_findings(
             f"{name}, {term.written}, divides by zero at the parameters' values",
             term.span,
             because=_values(at),
+            also=also,
         )
         return
     if value <= 0:
@@ -83,9 +98,8 @@ def _term_findings(
             f"{name} is {number_text(value)}",
             term.span,
             because=_values(at) or None,
-            mend=f"take {term.species} out"
-            if not value
-            else f"write {term.species} on the other side",
+            mend=f"take {species} out" if not value else f"write {species} on the other side",
+            also=also,
         )
         return
     sizes.append(value)
@@ -96,6 +110,7 @@ def _term_findings(
             Name.COEFFICIENT_CHANGES_SIGN,
             f"{name} is {number_text(value)}, but {number_text(lowest)} at {_values(place)}",
             term.span,
+            also=also,
         )
 
 

@@ -30,6 +30,14 @@ def test_an_expression_that_changes_sign_within_the_range_is_a_warning(build):
     assert "-1 at a = 2" in finding.message
 
 
+def test_one_expression_on_several_terms_of_a_line_is_told_once(build):
+    a = Parameter("a", Fraction(1, 2), None, Fraction(0), Fraction(2))
+    network = build(SPECIES, "r: (1-a) A -> (1-a) B", parameters=(a,))
+    (finding,) = check_coefficients(network)
+    assert finding.message.startswith("the coefficient of A and B in r")
+    assert finding.also == (network.reactions[0].right[0].span,)
+
+
 def test_a_written_zero_is_an_error(build):
     assert names(build(SPECIES, "r: 0 A -> B")) == [Name.COEFFICIENT_NOT_POSITIVE]
 
