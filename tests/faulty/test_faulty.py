@@ -5,6 +5,7 @@ The files beside this one say themselves what should be found in them: see ``exp
 
 from __future__ import annotations
 
+import re
 import sys
 from collections.abc import Iterable
 from pathlib import Path
@@ -122,3 +123,81 @@ def test_a_file_that_cannot_be_a_model_is_told_as_a_whole(name: Name, tmp_path: 
     assert len(found) == 1
     assert found[0].span.file.endswith("model.flux")
     assert found[0].span.line == (1 if name is Name.WRONG_ENCODING else 0)
+
+
+MODEL = """\
+substrate glucose
+product ethanol, CO2
+compartment catabolism
+    ferment : glucose -> 2 ethanol + 2 CO2
+limit ferment = 1.2 ± 0.1
+limit glucose <= 3
+"""
+TABLE = """\
+run,species,direction,rate,sd,unit
+A,glucose,in,1,0.1,{unit}
+A,flux ferment,,1.1,0.1,{unit}
+"""
+
+
+@pytest.mark.parametrize(
+    ("name", "unit", "line"),
+    [(Name.LIMIT_REPLACED, "mmol/g/h", 5), (Name.LIMIT_LEFT_OUT, "mmol", 6)],
+    ids=lambda v: v.value if isinstance(v, Name) else "",
+)
+def test_a_limit_that_a_run_sets_aside_is_told_at_its_line(
+    name: Name, unit: str, line: int
+) -> None:
+    from fluxnet.solving.build import build_problem
+    from fluxnet.tables.rates_table import read_rates_text
+
+    network = read_model_text(MODEL).network
+    assert network is not None
+    table = read_rates_text(TABLE.format(unit=unit), network=network).table
+    assert table is not None
+
+    notes = build_problem(network, table.runs[0]).notes
+
+    assert (name, line) in [(d.name, d.span.line) for d in notes]
+
+
+def test_a_run_that_the_table_does_not_have_is_told() -> None:
+    from fluxnet.studies.closure import close_rates
+    from fluxnet.tables.rates_table import read_rates_text
+
+    table = read_rates_text(TABLE.format(unit="mmol").replace("A,flux", "# A,flux")).table
+    assert table is not None
+
+    found = close_rates(table, runs=("B",)).diagnostics
+
+    assert [d.name for d in found] == [Name.UNKNOWN_RUN]
+
+
+# Shown by tests of workbooks, which need a file of another kind.
+OF_WORKBOOKS = {
+    Name.PACKAGE_MISSING: "tables/test_workbook.py",
+    Name.UNKNOWN_SHEET: "tables/test_workbook.py",
+}
+BY_CODE = {*OF_FILES, Name.LIMIT_REPLACED, Name.LIMIT_LEFT_OUT, Name.UNKNOWN_RUN}
+
+
+def names_in_files() -> set[str]:
+    """The names that the files of this folder expect."""
+    models = "".join(p.read_text("utf-8") for p in HERE.rglob("*.flux"))
+    tables = "".join(p.read_text("utf-8") for p in HERE.glob("*.csv"))
+    return set(re.findall(r"^\s*# expect: ([a-z-]+)", models, re.MULTILINE)) | set(
+        re.findall(r"^#! ([a-z-]+)", tables, re.MULTILINE)
+    )
+
+
+@pytest.mark.parametrize("name", list(Name), ids=lambda n: n.value)
+def test_every_diagnostic_has_a_faulty_input(name: Name) -> None:
+    if name in OF_WORKBOOKS:
+        text = (HERE.parent / OF_WORKBOOKS[name]).read_text("utf-8")
+        assert f"Name.{name.name}" in text
+    else:
+        assert name.value in names_in_files() or name in BY_CODE
+
+
+def test_no_file_expects_a_name_that_does_not_exist() -> None:
+    assert names_in_files() - {"model"} <= {name.value for name in Name}
