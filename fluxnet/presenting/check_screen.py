@@ -8,7 +8,7 @@ from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Severity
 from fluxnet.ground.table import Align, Column, Table
 from fluxnet.network.model import Quantity
-from fluxnet.presenting.numbers import format_coefficient
+from fluxnet.presenting.numbers import format_number
 from fluxnet.presenting.records import diagnostic_record
 from fluxnet.presenting.screen import Block, Heading, Mood, Sentence
 from fluxnet.studies.check import CheckResult
@@ -65,7 +65,7 @@ def _most_atp(result: CheckResult) -> Table:
         (
             most.substrate,
             most.carrier,
-            "no end" if most.amount is None else format_coefficient(most.amount),
+            "no end" if most.amount is None else format_number(float(most.amount)),
             most.equation,
         )
         for most in result.most_atp

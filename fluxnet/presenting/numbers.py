@@ -59,12 +59,12 @@ def format_measured(value: float | None, sd: float | None) -> str:
 
 
 def format_range(low: float | None, high: float | None) -> str:
-    """A range, its ends to the same decimals; three digits of the width are kept.
+    """A range, its ends to the same decimals; two digits of the width are kept.
 
     Examples
     --------
     >>> format_range(0.0, 1.23456), format_range(2.0, float("inf")), format_range(3.0, 3.0)
-    ('0 to 1.23', '2 or more', '3')
+    ('0 to 1.2', '2 or more', '3')
     """
     if low is None or high is None:
         return "–"
@@ -78,7 +78,7 @@ def format_range(low: float | None, high: float | None) -> str:
     scale = max(abs(low), abs(high))
     if width <= 1e-9 * max(scale, 1e-12):
         return format_number((low + high) / 2)
-    decimals = max(0, 2 - math.floor(math.log10(width)))
+    decimals = max(0, 1 - math.floor(math.log10(width)))
     if decimals > 8:
         return f"{low:.4g} to {high:.4g}"
     return f"{_trim(_fixed(low, decimals))} to {_trim(_fixed(high, decimals))}"

@@ -218,7 +218,7 @@ def _ledger(run: FluxSolution) -> Table:
                     line.made,
                     line.spent,
                     line.net,
-                    line.sd,
+                    line.sd or None,
                     "" if known else format_range(line.low, line.high),
                 )
             )
