@@ -12,16 +12,20 @@ from fluxnet.ground.names import Name
 from fluxnet.network.model import Basis, Quantity, QuantityKind, Species
 from fluxnet.rates.covariance import join_errors
 from fluxnet.rates.measured import MeasuredRate, Run, SdSource
-from fluxnet.tables.bases import Target, carbon_weight, factor_to
+from fluxnet.tables.bases import Factor, Target, carbon_weight, factor_to
 from fluxnet.tables.correlations import Correlation, correlation_matrix
 from fluxnet.tables.entries import RunHead
 from fluxnet.tables.errors_assumed import SdRule, assume_sds
 from fluxnet.tables.numbers import cell_fault
-from fluxnet.tables.rate_units import BadUnit
+from fluxnet.tables.rate_units import BadUnit, RateUnit
+from fluxnet.tables.repeats import find_repeats
 from fluxnet.tables.targets import choose_target
 from fluxnet.tables.values import Reading
 
-__all__ = ["BuiltRun", "build_run"]
+__all__ = ["BuiltRun", "KnownFactors", "build_run"]
+
+KnownFactors = dict[tuple[object, ...], Factor | BadUnit]
+"""Factors by unit, quantity and target."""
 
 _PER_BIOMASS = (Basis.SPECIFIC, Basis.CARBON)
 
@@ -66,6 +70,7 @@ def build_run(
     correlations: Sequence[Correlation],
     rule: SdRule,
     complete: bool,
+    known: KnownFactors,
 ) -> BuiltRun:
     """Bring a run's readings to one basis.
 
@@ -83,8 +88,10 @@ def build_run(
         Those of the covariance table that are this run's.
     complete
         Whether no entry of the run was lost to a fault before.
+    known
+        Factors found for other runs of the table; those found here are added.
     """
-    faults = list(_repeats(readings, biomass))
+    faults = list(find_repeats(readings, biomass))
     chosen = choose_target(readings, biomass, model_basis, concentration and concentration[0])
     if isinstance(chosen, BadUnit):
         faults.append(
@@ -94,7 +101,7 @@ def build_run(
     scaled: list[_Scaled] = []
     free_acids: list[str] = []
     for reading in readings:
-        found = _scale(reading, chosen)
+        found = _scale(reading, chosen, known)
         if isinstance(found, Diagnostic):
             faults.append(found)
         else:
@@ -131,11 +138,13 @@ def build_run(
     )
 
 
-def _scale(reading: Reading, target: Target) -> tuple[_Scaled, tuple[str, ...]] | Diagnostic:
+def _scale(
+    reading: Reading, target: Target, known: KnownFactors
+) -> tuple[_Scaled, tuple[str, ...]] | Diagnostic:
     if reading.value is None and reading.unit is None:
         return _Scaled(reading, None, None, None), ()
     entry = reading.entry
-    found = factor_to(reading.unit, reading.quantity, reading.species, target)
+    found = _factor(reading.unit, reading, target, known)
     if isinstance(found, BadUnit):
         return cell_fault(
             found.name, entry.unit_cell, "", f"{entry.name}: {found.words}", found.mend
@@ -144,13 +153,26 @@ def _scale(reading: Reading, target: Target) -> tuple[_Scaled, tuple[str, ...]] 
         return _Scaled(reading, None, None, None), ()
     sd_factor = found.value
     if reading.sd_unit is not None:
-        own = factor_to(reading.sd_unit, reading.quantity, reading.species, target)
+        own = _factor(reading.sd_unit, reading, target, known)
         if isinstance(own, BadUnit):
             return cell_fault(own.name, entry.sd, "", f"sd of {entry.name}: {own.words}", own.mend)
         sd_factor = own.value
     sd = None if reading.sd is None else reading.sd * sd_factor
     scaled = _Scaled(reading, reading.value * found.value, sd, reading.relative, found.value)
     return scaled, found.free_acids
+
+
+def _factor(
+    unit: RateUnit | None, reading: Reading, target: Target, known: KnownFactors
+) -> Factor | BadUnit:
+    """The factor of a unit; found once for all runs of a table that need the same."""
+    written = None if unit is None or unit.unit is None else unit.unit.text
+    kind = None if unit is None else unit.kind
+    into = (target.basis, target.shown, target.concentration)
+    key = (written, kind, reading.quantity, *into)
+    if key not in known:
+        known[key] = factor_to(unit, reading.quantity, reading.species, target)
+    return known[key]
 
 
 def _rates(
@@ -234,43 +256,6 @@ def _shares(quantity: Quantity, biomass: Species | None) -> bool:
     if quantity.kind is QuantityKind.FLUX:
         return True
     return quantity.kind is QuantityKind.RATE and (biomass is None or quantity.name != biomass.name)
-
-
-def _repeats(readings: Sequence[Reading], biomass: Species | None) -> list[Diagnostic]:
-    """One fault for each reading whose quantity stands already in the run."""
-    first: dict[object, Reading] = {}
-    faults: list[Diagnostic] = []
-    for reading in readings:
-        quantity = reading.quantity
-        key: object = quantity
-        if quantity.kind is QuantityKind.RATE:
-            key = quantity.name
-        elif quantity.kind is QuantityKind.MU and biomass is not None:
-            key = biomass.name
-        before = first.setdefault(key, reading)
-        if before is reading:
-            continue
-        cell = reading.entry.name_cell
-        words = f"{quantity} of run {reading.entry.run} stands already in {_where(before, reading)}"
-        if before.quantity.kind is not quantity.kind:
-            words += f" as {before.quantity}"
-        faults.append(
-            Diagnostic(
-                Name.ROW_REPEATED,
-                f"{cell.place}: {words}",
-                cell.span,
-                mend="keep one, average them, or give the second another run's name",
-                also=(before.entry.name_cell.span,),
-            )
-        )
-    return faults
-
-
-def _where(before: Reading, reading: Reading) -> str:
-    cell = before.entry.name_cell
-    if cell.span == reading.entry.name_cell.span:
-        return f"row {before.entry.value.span.line}"
-    return cell.place
 
 
 def _nothing_measured(head: RunHead) -> Diagnostic:

@@ -20,7 +20,7 @@ from fluxnet.tables.layout import Form, Layout, find_layout
 from fluxnet.tables.long_form import collect_long
 from fluxnet.tables.numbers import cell_fault
 from fluxnet.tables.numerals import Decimal, DecimalChoice, decide_decimal
-from fluxnet.tables.runs import BuiltRun, build_run
+from fluxnet.tables.runs import BuiltRun, KnownFactors, build_run
 from fluxnet.tables.telling import assumption_notes, tell_understood
 from fluxnet.tables.values import Reading, Readings, read_entries
 from fluxnet.tables.vocabulary import Vocabulary, assumed_biomass, biomass_species
@@ -96,6 +96,7 @@ def _build_runs(
         mine[reading.entry.run].append(reading)
     network = layout.vocabulary.network
     runs: list[BuiltRun] = []
+    known: KnownFactors = {}
     for head in entries.heads:
         numbers = read_biomass_numbers(head, layout.statements, decimal)
         built = build_run(
@@ -108,6 +109,7 @@ def _build_runs(
             correlations=[c for c in pairs.pairs if c.run in ("", head.name)],
             rule=rule,
             complete=head.name not in readings.failed | entries.failed,
+            known=known,
         )
         runs.append(replace(built, diagnostics=(*numbers.diagnostics, *built.diagnostics)))
     return runs

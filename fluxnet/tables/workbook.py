@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import datetime
 import zipfile
+import zlib
 from collections.abc import Sequence
 from dataclasses import dataclass, field
 from io import BytesIO
@@ -20,6 +21,19 @@ from fluxnet.tables.grid import Cell, Grid, Row
 from fluxnet.tables.sheet_marks import SheetMarks, read_marks
 
 __all__ = ["Workbook", "is_workbook", "read_workbook"]
+
+_DAMAGE = (
+    zipfile.BadZipFile,
+    zlib.error,
+    ElementTree.ParseError,
+    KeyError,
+    NotImplementedError,
+    RuntimeError,
+    EOFError,
+    ValueError,
+    OSError,
+)
+"""What unpacking a damaged archive raises."""
 
 _LARGEST = 400_000_000
 """Bytes that a workbook may unpack to; more is no table of rates."""
@@ -50,8 +64,7 @@ def read_workbook(data: bytes, file: str) -> Workbook:
             if sum(i.file_size for i in archive.infolist()) > _LARGEST:
                 return _refused(file, "unpacks to more than 400 MB", "keep only the table")
             return _read_sheets(data, archive, file)
-    except (zipfile.BadZipFile, ElementTree.ParseError, NotImplementedError, RuntimeError,
-            EOFError, ValueError, OSError) as fault:  # fmt: skip
+    except _DAMAGE as fault:
         return _refused(file, f"cannot be unpacked as a workbook ({fault})", "save it again")
 
 
