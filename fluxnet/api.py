@@ -23,7 +23,7 @@ if TYPE_CHECKING:
 
     from fluxnet.rates.measured import RatesTable, Run
     from fluxnet.studies.check import CheckResult
-    from fluxnet.studies.closure import Closure
+    from fluxnet.studies.closure_result import Closure
     from fluxnet.studies.solution import Solution
 
 __all__ = [

@@ -16,10 +16,15 @@ def conflict_blocks(run: FluxSolution) -> tuple[Block, ...]:
     conflict, change = run.conflict, run.least_change
     if conflict is not None and conflict.members:
         within = f", each within {run.within:g} sd" if run.within is not None else ""
-        columns = (Column("cannot hold together", "words", wrap=56), Column("kind", "kind"))
         given = conflict.given or conflict.members
-        rows = tuple((m.words, m.kind.value) for m in given)
-        blocks.append(Table("conflict", f"These cannot hold together{within}", columns, rows))
+        blocks.append(
+            Table(
+                "conflict",
+                f"These cannot hold together{within}",
+                (Column("cannot hold together", "words", wrap=56), Column("kind", "kind")),
+                tuple((m.words, m.kind.value) for m in given),
+            )
+        )
         making = [m.words for m in conflict.members if m not in given]
         beside = f" It rests on {'; '.join(making)}." if making else ""
         checked = "without any one of them the others can (each was tried)."

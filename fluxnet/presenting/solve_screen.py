@@ -167,7 +167,7 @@ def _fluxes(run: FluxSolution) -> Table:
         )
         for flux in run.fluxes
     )
-    notes = ()
+    notes: tuple[str, ...] = ()
     if any(flux.kind is FluxKind.UNDETERMINED for flux in run.fluxes):
         notes = ("undetermined: any value in the range fits; shown is that of least total flux",)
     return Table("fluxes", f"Fluxes [{run.unit}]", columns, rows, notes)
