@@ -79,6 +79,8 @@ def follow_curve(
             break
         gradient = curve.gradient(here)
         onward = reach_far(here, gradient, float(np.sqrt(left)), np.zeros(len(gradient)), weight)
+        if onward.value == -np.inf:
+            break
         if onward.place is None:
             return np.inf, None
         if abs(onward.value) <= _NEAR * max(abs(gain), abs(onward.value), 1e-12):
@@ -117,6 +119,8 @@ def _climb(curve: Curve, start: Point) -> tuple[float, Point | None]:
             break
         gradient = curve.gradient(here)
         onward = reach_far(here, gradient, float(np.sqrt(left)), np.zeros(len(gradient)))
+        if onward.value == -np.inf:
+            break
         if onward.place is None:
             return np.inf, None
         if onward.value <= _NEAR * max(abs(gain), 1e-12):

@@ -15,7 +15,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.solving.quadratic import QuadraticSolution, solve_scaled
-from fluxnet.solving.region import Region
+from fluxnet.solving.region import Region, nearest
 from fluxnet.solving.small_programme import SmallProgramme
 
 __all__ = ["Reach", "reach_far", "reach_flat"]
@@ -25,6 +25,7 @@ Vector = NDArray[np.float64]
 _CLOSE = 1e-6
 """How near the radius is near enough: what is left is added, right to first order."""
 _TRIES = 60
+_DOUBT = 4
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,8 +33,9 @@ class Reach:
     """The largest value of a functional (less its value at the point), and where it is taken.
 
     ``place`` is None where nothing bounds the functional, or no solver could tell: then
-    ``value`` is infinite, which claims nothing. ``weight`` is the pull that led there,
-    0 where none had to be found.
+    ``value`` is infinite, which claims nothing; and where no place within the bounds is within
+    the radius: then it is minus infinity. ``weight`` is the pull that led there, 0 where none
+    had to be found.
     """
 
     value: float
@@ -53,7 +55,7 @@ def reach_far(
     radius
         The largest distance of u from the centre, above 0.
     start
-        A place within the bounds and the radius.
+        A place near the bounds and the radius.
     guess
         The weight that led to the end of a similar search, or 0.
 
@@ -73,7 +75,10 @@ def reach_far(
     weight = guess or (radius / along if along > 1e-9 else radius)
     low, high = 0.0, np.inf
     bound: Reach | None = None
-    for _ in range(_TRIES):
+    before = np.inf
+    for attempt in range(_TRIES):
+        if attempt == _DOUBT and bound is None and _is_empty(region, radius):
+            return Reach(-np.inf, None)
         found = _pull(region, weight * unit)
         if found.x is None:
             if bound is None:
@@ -97,10 +102,22 @@ def reach_far(
         if following == np.inf and np.isinf(high):
             # The place stays where it is under any greater pull: a corner of the bounds.
             return Reach(size * float(unit @ found.x), found.x, weight)
-        if following is None or not low < following < high:
+        # Where bounds are degenerate the slope misleads: then the bracket is halved.
+        slow = np.isfinite(high) and abs(left) > 0.25 * before
+        before = abs(left)
+        if following is None or slow or not low < following < high:
             following = 4 * weight if np.isinf(high) else (low + high) / 2
         weight = following
     return Reach(np.inf, None) if bound is None else bound
+
+
+def _is_empty(region: Region, radius: float) -> bool:
+    """Whether no place within the bounds is within the radius."""
+    found = nearest(region)
+    if found.x is None:
+        return True
+    away = found.x[: region.dimension] - region.centre
+    return float(away @ away) > radius**2 * (1 + 1e-9)
 
 
 def _straight(

@@ -1,0 +1,126 @@
+"""Do the errors mean what they say? Data drawn around a known truth, fitted again and again.
+
+Parameters with ± are drawn too: what stands in the model is a measured value of them.
+The seed of each test is the hash of its name.
+"""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from fractions import Fraction
+from hashlib import sha256
+
+import numpy as np
+import pytest
+
+from fluxnet.solving.build import build_problem, rebuild
+from fluxnet.solving.least_squares import fit_fluxes
+
+YEAST = """
+substrate glucose, oxygen
+product ethanol, glycerol
+exchange CO2
+biomass X
+carrier ATP, NADH
+inside pyruvate
+parameter PO 1.4 0.15
+parameter K_X 2 0.2
+glycolysis : glucose -> 2 pyruvate + 2 ATP + 2 NADH
+reduce : glucose + 2 ATP + 2 NADH -> 2 glycerol
+adh : pyruvate + NADH -> ethanol + CO2
+burn : pyruvate -> 3 CO2 + 5 NADH + ATP
+oxphos : NADH + 0.5 oxygen -> PO ATP
+growth : 0.2 glucose + K_X ATP -> X + 0.2 CO2 + 0.1 NADH
+upkeep : ATP -> nothing
+"""
+RATES = ("glucose in 0 ± 0.3", "ethanol out 0 ± 0.3", "CO2 out 0 ± 0.5", "oxygen in 0 ± 0.3",
+         "X out 0 ± 0.3", "upkeep 0 ± 1.5")
+
+
+def seed_of(name: str) -> int:
+    return int.from_bytes(sha256(name.encode()).digest()[:8], "big")
+
+
+class World:
+    """A truth, and data drawn around it."""
+
+    def __init__(self, make_network, make_run, name, *, exact=False):
+        text = YEAST.replace(" 0.15", "").replace(" 0.2\n", "\n") if exact else YEAST
+        self.network = make_network(text)
+        self.run = make_run(self.network, *RATES)
+        built = build_problem(self.network, self.run)
+        balances = [i for i, row in enumerate(built.problem.rows) if row.kind.value == "balance"]
+        wish = np.array([10.0, 0.8, 12.0, 3.0, 11.0, 12.0, 10.0])
+        kernel = np.linalg.svd(built.problem.matrix[balances])[2][len(balances):].T
+        self.truth = kernel @ (kernel.T @ wish)
+        assert self.truth.min() > 0.5
+        self.means = built.problem.matrix[list(built.measured)] @ self.truth
+        self.rng = np.random.default_rng(seed_of(name))
+
+    def draw(self):
+        rates = tuple(
+            replace(rate, value=float(mean + rate.sd * self.rng.normal()))
+            for rate, mean in zip(self.run.rates, self.means, strict=True)
+        )
+        parameters = tuple(
+            p if p.sd is None
+            else replace(p, value=Fraction(float(p.value) + float(p.sd) * self.rng.normal()))
+            for p in self.network.parameters
+        )
+        network = replace(self.network, parameters=parameters)
+        return fit_fluxes(network, replace(self.run, rates=rates))
+
+
+def count(world, number):
+    """How often h rejects, and how often each flux's interval holds the truth."""
+    rejected, inside = 0, np.zeros(len(world.truth))
+    for _ in range(number):
+        fit = world.draw()
+        rejected += not fit.closes
+        inside += (fit.low <= world.truth) & (world.truth <= fit.high)
+    return rejected, inside
+
+
+@pytest.mark.parametrize("exact", [True, False])
+def test_a_few_dozen_fits_of_sound_data(make_network, make_run, exact):
+    """Wide: 60 fits reject in more than 10 with a chance of 0.0005, hold in fewer than 49 too."""
+    world = World(make_network, make_run, f"few dozen {exact}", exact=exact)
+    rejected, inside = count(world, 60)
+    assert rejected <= 10
+    assert (inside >= 49).all()
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("exact", [True, False])
+def test_h_rejects_one_in_twenty_of_sound_data(make_network, make_run, exact):
+    """Of 2,000 fits 5 %: within 3.3 sd of a binomial (3.4 to 6.6 %)."""
+    world = World(make_network, make_run, f"one in twenty {exact}", exact=exact)
+    rejected, inside = count(world, 2000)
+    assert 68 <= rejected <= 132
+    covered = inside / 2000
+    assert (covered >= 0.934).all()
+    assert (covered <= 0.966).all()
+
+
+@pytest.mark.slow
+def test_intervals_of_determined_fluxes_cover_with_fewer_rates(make_network, make_run):
+    """500 fits without oxygen: 95 % within 3.3 sd of a binomial (91.8 to 98.2 %)."""
+    world = World(make_network, make_run, "fewer rates")
+    world.run = replace(world.run, rates=tuple(
+        r for r in world.run.rates if r.quantity.name != "oxygen"))
+    world.means = np.delete(world.means, 3)
+    covered = count(world, 500)[1] / 500
+    assert (covered >= 0.918).all()
+    assert (covered <= 0.982).all()
+
+
+def test_the_truth_itself_fits_without_a_rest(make_network, make_run):
+    world = World(make_network, make_run, "the truth")
+    rates = tuple(
+        replace(rate, value=float(mean))
+        for rate, mean in zip(world.run.rates, world.means, strict=True)
+    )
+    fit = fit_fluxes(world.network, replace(world.run, rates=rates))
+    assert fit.h == pytest.approx(0, abs=1e-12)
+    assert fit.fluxes == pytest.approx(world.truth)
+    assert rebuild(fit.built).problem.matrix == pytest.approx(fit.built.problem.matrix)
