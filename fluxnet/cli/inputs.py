@@ -63,7 +63,9 @@ def load_model(arguments: argparse.Namespace, variant: str = "base") -> ReadMode
     network, diagnostics = reading.network, reading.diagnostics
     if network is not None and variant != "base":
         network, told = apply_variant(network, variant)
-        diagnostics = (*diagnostics, *(d for d in told if d not in diagnostics))
+        known = {(d.name, d.span, d.message) for d in diagnostics}
+        new = (d for d in told if (d.name, d.span, d.message) not in known)
+        diagnostics = (*diagnostics, *new)
     return ReadModel(network, diagnostics, inputs, reading.sources)
 
 

@@ -220,7 +220,10 @@ class Drop:
 
 @dataclass(frozen=True, slots=True)
 class Variant:
-    """A named set of changes, applied by :func:`fluxnet.network.variant.apply_variant`."""
+    """A named set of changes, applied by :func:`fluxnet.network.variant.apply_variant`.
+
+    ``acceptances`` are those of its own lines: they count only where it is applied.
+    """
 
     name: str
     words: str = ""
@@ -230,6 +233,7 @@ class Variant:
     reactions: tuple[Reaction, ...] = ()
     limits: tuple[Limit, ...] = ()
     drops: tuple[Drop, ...] = ()
+    acceptances: tuple[Acceptance, ...] = ()
     span: Span = NOWHERE
 
 

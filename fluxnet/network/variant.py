@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
+from dataclasses import replace
 
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order
 from fluxnet.ground.errors import MisuseError
@@ -71,6 +72,8 @@ def apply_variant(
     changed, faults = build_variant(network, merged.things, label)
     if has_errors(faults):
         return None, in_order(faults)
+    own = tuple(a for n in variants if n in taking_part for a in variants[n].acceptances)
+    changed = replace(changed, acceptances=(*network.acceptances, *own))
     touched = tuple(_touched(network, changed, merged.things))
     changed, unsolved = solve_unknowns(changed, touched)
     found = [*faults, *unsolved]

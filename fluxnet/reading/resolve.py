@@ -40,8 +40,10 @@ def resolve_network(loaded: Loaded, scope: Scope) -> Network:
     """
     base = [p for p in loaded.placed if p.variant is None]
     head = resolve_head(loaded, scope.findings)
-    balance_lines = [p for p in base if isinstance(p.statement.line, s.BalanceLine)]
-    phosphate = bool(balance_lines)
+    phosphate = any(
+        isinstance(said, s.BalanceLine) and any(n.text == "phosphate" for n in said.names)
+        for said in (p.statement.line for p in base)
+    )
     parts = _Parts()
     for one in base:
         said = one.statement.line
@@ -67,7 +69,7 @@ def resolve_network(loaded: Loaded, scope: Scope) -> Network:
     return Network(
         head.title, head.basis, tuple(parts.species), tuple(parts.parameters),
         tuple(compartments), tuple(parts.reactions), tuple(parts.limits), variants, free,
-        resolve_acceptances(loaded.placed, scope.findings), balance_phosphate=phosphate,
+        resolve_acceptances(base, scope.findings), balance_phosphate=phosphate,
     )
 
 
@@ -88,7 +90,7 @@ def _resolve_reactions(base: Sequence[Placed], scope: Scope, parts: _Parts) -> N
 
 def _unused_parameters(parameters: Sequence[Parameter], scope: Scope) -> None:
     for parameter in parameters:
-        if parameter.name in scope.used_parameters or parameter.name in scope.lost:
+        if parameter.name in scope.used_parameters | scope.lost | scope.named:
             continue
         scope.findings.add_at(
             Name.UNUSED_PARAMETER, f"no coefficient uses the parameter {parameter.name}",

@@ -12,6 +12,7 @@ from fluxnet.reading.blocks import Placed
 from fluxnet.reading.declare import declare_species, read_assignment
 from fluxnet.reading.findings import only_case_differs
 from fluxnet.reading.limit_pairs import compare_limits
+from fluxnet.reading.heads import resolve_acceptances
 from fluxnet.reading.limits import resolve_limit, resolve_quantity
 from fluxnet.reading.reactions import resolve_reaction
 from fluxnet.reading.scope import Kind, Scope, claim, place_words
@@ -192,7 +193,9 @@ def _resolve(block: _Block, scope: Scope, phosphate: bool) -> Variant:
     return Variant(
         head.name.text, head.words.text if head.words else "",
         tuple(p.text for p in head.parents), tuple(species), tuple(settings), reactions,
-        tuple(limits), tuple(drops), block.head.line.span(head.name.start, head.name.end),
+        tuple(limits), tuple(drops),
+        resolve_acceptances([block.head, *block.inner], scope.findings),
+        block.head.line.span(head.name.start, head.name.end),
     )
 
 

@@ -55,7 +55,9 @@ def write_model(network: Network) -> str:
 
 
 def _lines(network: Network) -> Iterator[str]:
-    accepts = _Accepts(network.acceptances)
+    accepts = _Accepts(
+        [*network.acceptances, *(a for v in network.variants for a in v.acceptances)]
+    )
     roles = {s.name: s.role for s in network.species}
     for variant in network.variants:
         roles.update((s.name, s.role) for s in variant.species)
