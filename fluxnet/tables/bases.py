@@ -130,6 +130,12 @@ def _rate_factor(
             Name.WRONG_UNIT, f"a flux is counted in moles, not in `{_text(unit)}`", "write mmol/g/h"
         )
     written = unit.unit
+    if written.amount is Dimension.CARBON and not substance.formula.count("C"):
+        return BadUnit(
+            Name.WRONG_UNIT,
+            f"{quantity.name} holds no carbon to count in `{written.text}`",
+            f"give it a unit of its own: {written.text.replace('C-', '', 1)}",
+        )
     factor = Fraction(1)
     if unit.kind is UnitKind.CARBON and Dimension.MOLES in written.per:
         # per mole of biomass: as many C-mol as its formula says

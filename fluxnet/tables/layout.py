@@ -43,13 +43,25 @@ class Layout:
     header: Row | None = None
 
 
+@dataclass(frozen=True, slots=True)
+class _Judgement:
+    """What a row is as a header."""
+
+    form: Form | None
+    score: int
+    is_sure: bool
+
+
 def find_layout(grid: Grid, network: Network | None) -> Layout:
     """Read the lines above the table, then find its header.
 
-    Where no row is a header, the row that comes nearest stands in ``header``.
+    A row that only names species (it may be a note) is the header only where no row below it
+    shows units or directions. Where no row is a header, the one that comes nearest stands in
+    ``header``.
     """
     statements = Statements()
     vocabulary = Vocabulary(network)
+    likely: Layout | None = None
     nearest: tuple[int, Row | None] = (0, None)
     for index, row in enumerate(grid.rows[:_DEEPEST]):
         statement = read_statement(row)
@@ -58,15 +70,20 @@ def find_layout(grid: Grid, network: Network | None) -> Layout:
             vocabulary = replace(vocabulary, declared=statements.species)
             continue
         titles, depth = _titles(grid.rows, index)
-        form, score = _form(titles, vocabulary)
-        if form is not None:
+        found = _judge(titles, vocabulary)
+        if found.form is not None:
             body = grid.rows[index + depth :]
-            return Layout(form, titles, body, depth, vocabulary, statements, score, row)
-        if score > nearest[0]:
-            nearest = (score, row)
+            layout = Layout(
+                found.form, titles, body, depth, vocabulary, statements, found.score, row
+            )
+            if found.is_sure:
+                return layout
+            likely = likely or layout
+        if found.score > nearest[0]:
+            nearest = (found.score, row)
         text = " ".join(c.text for c in row.cells if c.text)
         statements = joined(statements, Statements(notes=(text,)))
-    return Layout(None, (), (), 0, vocabulary, statements, nearest[0], nearest[1])
+    return likely or Layout(None, (), (), 0, vocabulary, statements, nearest[0], nearest[1])
 
 
 def _titles(rows: tuple[Row, ...], index: int) -> tuple[tuple[Title, ...], int]:
@@ -87,16 +104,16 @@ def _continues(row: Row) -> bool:
     )
 
 
-def _form(titles: tuple[Title, ...], vocabulary: Vocabulary) -> tuple[Form | None, int]:
+def _judge(titles: tuple[Title, ...], vocabulary: Vocabulary) -> _Judgement:
     """The form that titles tell, and how many of them are understood."""
     keys = {t.key for t in titles if t.key is not None}
     if Key.SPECIES in keys and Key.RATE in keys:
-        return Form.LONG, len(keys)
+        return _Judgement(Form.LONG, len(keys), True)
     plain = [t for t in titles if t.key is None and t.name and not t.is_sd]
     known = [t for t in plain if is_quantity_name(t.name, vocabulary)]
-    marked = [t for t in plain if t.bracketed or (t.direction and t.name)]
-    sure = [t for t in known if t.bracketed or t.direction]
-    score = len(keys) + len({t.cell.column for t in (*known, *sure)})
-    if sure or len(known) >= 2 or (len(marked) >= 2 and Key.SPECIES not in keys):
-        return Form.WIDE, score + len(marked)
-    return None, score
+    marked = [t for t in plain if t.bracketed or t.direction]
+    is_sure = any(t in marked for t in known)
+    score = len(keys) + len(known) + len(marked)
+    if is_sure or len(known) >= 2 or (len(marked) >= 2 and Key.SPECIES not in keys):
+        return _Judgement(Form.WIDE, score, is_sure)
+    return _Judgement(None, score, False)

@@ -141,25 +141,27 @@ def build_run(
 def _scale(
     reading: Reading, target: Target, known: KnownFactors
 ) -> tuple[_Scaled, tuple[str, ...]] | Diagnostic:
-    if reading.value is None and reading.unit is None:
+    if reading.value is None:
         return _Scaled(reading, None, None, None), ()
     entry = reading.entry
     found = _factor(reading.unit, reading, target, known)
     if isinstance(found, BadUnit):
-        return cell_fault(
-            found.name, entry.unit_cell, "", f"{entry.name}: {found.words}", found.mend
-        )
-    if reading.value is None:
-        return _Scaled(reading, None, None, None), ()
+        return cell_fault(found.name, entry.unit_cell, "", _of(entry.name, found), found.mend)
     sd_factor = found.value
     if reading.sd_unit is not None:
         own = _factor(reading.sd_unit, reading, target, known)
         if isinstance(own, BadUnit):
-            return cell_fault(own.name, entry.sd, "", f"sd of {entry.name}: {own.words}", own.mend)
+            words = _of(f"sd of {entry.name}", own)
+            return cell_fault(own.name, entry.sd, "", words, own.mend)
         sd_factor = own.value
     sd = None if reading.sd is None else reading.sd * sd_factor
     scaled = _Scaled(reading, reading.value * found.value, sd, reading.relative, found.value)
     return scaled, found.free_acids
+
+
+def _of(what: str, bad: BadUnit) -> str:
+    """Why a unit cannot be used, and of what, which is not said twice."""
+    return bad.words if bad.words.startswith(what) else f"{what}: {bad.words}"
 
 
 def _factor(

@@ -57,7 +57,7 @@ def tell_understood(
         parts.append(f"{_count(len(layout.statements.notes), 'line')} above it taken as notes")
     file = grid.source.file
     note = Diagnostic(
-        Name.TABLE_UNDERSTOOD, f"{file} was read as a {', '.join(parts)}", Span(file, 0, 0, 0)
+        Name.TABLE_UNDERSTOOD, f"the rates were read from a {', '.join(parts)}", Span(file, 0, 0, 0)
     )
     return Told(note, tuple(parts))
 

@@ -32,6 +32,7 @@ _WORDS = {
     "substance": Key.SPECIES,
     "direction": Key.DIRECTION,
     "rate": Key.RATE, "value": Key.RATE, "amount": Key.RATE, "measured": Key.RATE,
+    "specific rate": Key.RATE, "q": Key.RATE,
     "sd": Key.SD, "s.d.": Key.SD, "±": Key.SD, "+-": Key.SD, "stdev": Key.SD, "std": Key.SD,
     "standard deviation": Key.SD, "error": Key.SD,
     "unit": Key.UNIT, "units": Key.UNIT,

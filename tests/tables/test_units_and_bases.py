@@ -221,3 +221,12 @@ def test_an_unknown_biomass_gets_the_common_formula_and_that_is_said():
         Species("biomass", Role.BIOMASS, read_formula("CH1.8O0.5N0.2"), entry="biomass"),
     )
     assert Name.BIOMASS_ASSUMED in [d.name for d in reading.diagnostics]
+
+
+def test_a_column_in_c_mol_is_refused_for_what_holds_no_carbon_and_only_where_it_is_measured(fault):
+    head = "species,direction,rate [C-mol/C-mol],sd\nglucose,in,1,0\n"
+    assert read_rates_text(head + "oxygen,in,,\n").table is not None
+    found = fault(head + "oxygen,in,0.1,0.01\n")
+    assert found.name is Name.WRONG_UNIT
+    assert found.message.endswith("oxygen holds no carbon to count in `C-mol/C-mol`")
+    assert "mol/C-mol" in found.mend

@@ -107,3 +107,17 @@ def test_names_with_commas_are_quoted_or_separated_otherwise(read):
 def test_a_run_without_a_name_is_called_by_its_number():
     reading = read_rates_text("glucose in [mmol],note\n1,a\n2,b\n")
     assert [r.name for r in reading.table.runs] == ["1", "2"]
+
+
+def test_a_note_that_names_species_is_no_header():
+    reading = read_rates_text(
+        "Products: ethanol,acetate,lactate\nrun,glucose in [mmol],ethanol out [mmol]\nA,1,2\n"
+    )
+    assert reading.notes == ("Products: ethanol acetate lactate",)
+    assert [str(r.quantity) for r in reading.table.runs[0].rates] == ["glucose in", "ethanol out"]
+
+
+def test_a_header_of_names_alone_is_one_whose_units_are_missing():
+    reading = read_rates_text("run,glucose,ethanol\nA,1,2\n")
+    errors = [d.name for d in reading.diagnostics if d.severity.value == "error"]
+    assert set(errors) == {Name.UNKNOWN_UNIT, Name.BAD_DIRECTION}
