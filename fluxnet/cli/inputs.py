@@ -33,7 +33,9 @@ _UNREADABLE = frozenset(
         Name.BINARY_FILE,
         Name.EMPTY_FILE,
         Name.FILE_TOO_LONG,
+        Name.PACKAGE_MISSING,
         Name.UNKNOWN_RUN,
+        Name.UNKNOWN_SHEET,
         Name.UNKNOWN_VARIANT,
     }
 )
@@ -131,7 +133,9 @@ def _choose_runs(
     names = [run.name for run in table.runs]
     told = tuple(
         Diagnostic(
-            Name.UNKNOWN_RUN,
+            Name.PACKAGE_MISSING,
+        Name.UNKNOWN_RUN,
+        Name.UNKNOWN_SHEET,
             f"the table has no run {name}",
             Span(str(arguments.rates), 0),
             mend=f"its runs are {', '.join(names)}",
