@@ -6,15 +6,15 @@ import argparse
 import sys
 from pathlib import Path
 
-from fluxnet.cli.inputs import exit_of, load_model
+from fluxnet.cli.inputs import exit_of, load_model, load_rates
 from fluxnet.cli.main import Exit
-from fluxnet.cli.options import add_model_argument, add_output_options
-from fluxnet.cli.output import give_findings, give_screen
+from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
+from fluxnet.cli.output import give_faults, give_findings, give_screen
 from fluxnet.cli.progress import progress_on
-from fluxnet.ground.diagnostic import in_order
+from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.errors import MisuseError
 from fluxnet.presenting.check_screen import check_record, check_screen, findings_record
-from fluxnet.presenting.records import Document
+from fluxnet.presenting.records import Document, Input
 
 __all__ = ["EXAMPLES", "add_arguments", "run"]
 
@@ -22,6 +22,7 @@ EXAMPLES = """Is my reaction list sound? Nothing unbalanced, no dead end, no ATP
 
   fluxnet check model.flux
   fluxnet check model.flux --variant anaerobic
+  fluxnet check model.flux --rates rates.csv --run A     which fluxes do these determine?
   fluxnet check model.flux --tidy            lay the file out in one way, keeping comments
 """
 
@@ -31,6 +32,10 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     add_model_argument(parser)
     parser.add_argument("--variant", metavar="V", default="base", help='such as "lean * fast"')
     parser.add_argument("--tidy", action="store_true", help="lay the file out in one way")
+    parser.add_argument(
+        "--rates", metavar="RATES", help="tell which fluxes the first run of a table determines"
+    )
+    add_table_options(parser)
     add_output_options(parser)
 
 
@@ -39,28 +44,37 @@ def run(arguments: argparse.Namespace) -> int:
     if arguments.tidy:
         return _tidy(arguments)
     model = load_model(arguments, arguments.variant)
+    inputs, run_asked = model.inputs, None
     if model.network is None:
-        diagnostics = in_order(model.diagnostics)
-        give_findings(arguments, diagnostics)
-        if arguments.json:
-            give_screen(
-                arguments, Document.CHECK, model.inputs, (), findings_record(diagnostics), ()
-            )
-        elif not arguments.quiet:
-            errors = sum(d.severity.rank == 0 for d in diagnostics)
-            print(f"{arguments.model}: {errors} error{'s' if errors != 1 else ''}", file=sys.stderr)
-        return exit_of(diagnostics)
+        return _faulty(arguments, inputs, model.diagnostics)
+    if arguments.rates is not None:
+        rates = load_rates(arguments, model.network)
+        inputs = (*inputs, *rates.inputs)
+        if rates.table is None:
+            return _faulty(arguments, inputs, rates.diagnostics)
+        run_asked = rates.table.runs[0]
     from fluxnet.studies.check import check_network
 
     with progress_on(sys.stderr) as progress:
         result = check_network(
-            model.network, model.diagnostics, sources=model.sources, progress=progress
+            model.network,
+            model.diagnostics,
+            rates=run_asked,
+            sources=model.sources,
+            progress=progress,
         )
     give_findings(arguments, result.diagnostics)
     return give_screen(
-        arguments, Document.CHECK, model.inputs, (), check_record(result),
+        arguments, Document.CHECK, inputs, (), check_record(result),
         check_screen(result, arguments.model), sound=result.sound,
     )  # fmt: skip
+
+
+def _faulty(
+    arguments: argparse.Namespace, inputs: tuple[Input, ...], diagnostics: tuple[Diagnostic, ...]
+) -> int:
+    body = findings_record(in_order(diagnostics))
+    return give_faults(arguments, Document.CHECK, inputs, diagnostics, body)
 
 
 def _tidy(arguments: argparse.Namespace) -> int:

@@ -10,6 +10,7 @@ from typing import Any
 from fluxnet.cli.inputs import exit_of
 from fluxnet.cli.main import Exit
 from fluxnet.ground.diagnostic import Diagnostic, in_order
+from fluxnet.ground.names import Severity
 from fluxnet.presenting.files import write_csv, write_workbook
 from fluxnet.presenting.records import Input, document_text
 from fluxnet.presenting.screen import Block, screen_tables
@@ -62,10 +63,14 @@ def give_faults(
     document: str,
     inputs: Sequence[Input],
     diagnostics: Sequence[Diagnostic],
+    body: Mapping[str, Any] | None = None,
 ) -> int:
     """Tell the faults of an input of which nothing can be made; the exit status they ask for."""
     told = in_order(diagnostics)
     give_findings(arguments, told)
     if arguments.json:
-        give_screen(arguments, document, inputs, told, {"runs": []}, ())
+        give_screen(arguments, document, inputs, told, body or {"runs": []}, ())
+    elif not arguments.quiet:
+        errors = sum(d.severity is Severity.ERROR for d in told)
+        print(f"nothing was computed: {errors} error{'s' if errors != 1 else ''}", file=sys.stderr)
     return exit_of(told)
