@@ -88,7 +88,8 @@ def declare_parameter(placed: Placed, said: s.ParameterLine, scope: Scope) -> Pa
             Name.BAD_PARAMETER,
             f"{name.text} cannot be a parameter: a letter, then letters, digits and `_` make one",
             placed.line, name,
-            mend=f"write {plain}" if _PARAMETER.fullmatch(plain) else None,
+            mend=f"write {plain}" if _PARAMETER.fullmatch(plain)
+            else "write a name that begins with a letter",
         )
         scope.lost.add(name.text)
     parameter = read_assignment(placed.line, said.assignment, scope.findings)

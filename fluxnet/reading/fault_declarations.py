@@ -61,7 +61,7 @@ def declaration_faults(word: str, text: str, start: int, end: int) -> list[Fault
 def _formula_commas(text: str, start: int, end: int) -> list[Fault]:
     """Decimal commas inside a formula: ``CH1,8O0,5N0,2``."""
     found: list[Fault] = []
-    for word in re.compile(r"(?<!\S)[A-Z][A-Za-z]*\d+,\d\S*").finditer(text, start, end):
+    for word in re.compile(r"(?<!\S)[A-Z][A-Za-z0-9.]*\d,\d\S*").finditer(text, start, end):
         point = re.sub(r"(?<=\d),(?=\d)", ".", word[0])
         found.append(
             Fault(Name.DECIMAL_COMMA, f"{word[0]} holds a decimal comma", word.start(),
@@ -71,8 +71,9 @@ def _formula_commas(text: str, start: int, end: int) -> list[Fault]:
 
 
 def _no_sign(sign: re.Match[str], where: str) -> Fault:
-    return unreadable(f"no `{sign[1]}` stands {where}", sign.start(1), sign.end(1),
-                      f"take `{sign[1]}` out", replace_by(sign, "", 1))
+    said = sign[1].strip()
+    return unreadable(f"no `{said}` stands {where}", sign.start(1), sign.start(1) + len(said),
+                      f"take `{said}` out", replace_by(sign, "", 1))
 
 
 def _empty_entry(text: str, place: int, start: int, end: int) -> Fault:
@@ -95,7 +96,7 @@ def _entry_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
     rest = text[name.end() : end]
     if not rest:
         return []
-    if not rest[0].isspace():
+    if not rest[0].isspace() and rest[0] not in ":=":
         bad = name.end()
         return [unreadable(f"`{text[bad]}` cannot stand in a name", bad, bad + 1)]
     behind = name.end() + len(rest) - len(rest.lstrip())
@@ -103,7 +104,7 @@ def _entry_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
     if sign:
         return [unreadable(f"no `{sign[0].strip()}` stands between name and formula",
                            sign.start(), sign.start() + 1, "take it out",
-                           replace_by(sign, ""))]
+                           replace_by(sign, " "))]
     if word == "carrier":
         return _cargo_faults(text, name, behind, end)
     if _CARRIES.match(text, behind, end):
@@ -181,9 +182,10 @@ def _is_lower_formula(word: str) -> bool:
 
 def _ash_faults(text: str, ash: re.Match[str], end: int) -> list[Fault]:
     number = r"(?:\d+\.?\d*|\.\d+)"
-    good = re.compile(rf"\s*{number}\s*%?(?:\s*(?:±|\+/?-)\s*{number}\s*%?)?\s*")
-    if good.fullmatch(text, ash.end(), end):
-        return []
+    good = re.compile(rf"\s*([:=]\s*)?{number}\s*%?(?:\s*(?:±|\+/?-)\s*{number}\s*%?)?\s*")
+    fits = good.fullmatch(text, ash.end(), end)
+    if fits:
+        return [_no_sign(fits, "behind `ash`")] if fits[1] else []
     return [Fault(Name.BAD_ASH, "the ash content cannot be read", ash.start(), end,
                   "write `ash 8 %` or `ash 8 ± 1 %`")]
 
@@ -224,6 +226,10 @@ def list_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
     if not text[start:end].strip():
         return [unreadable(f"`{word}` names nothing", 0, start, f"write a name behind `{word}`")]
     names = list(re.compile(NAME).finditer(text, start, end))
+    if len(names) > 1 and names[0][0] in ("reaction", "species", "reactions"):
+        kind = names[0]
+        return [unreadable(f"`{word}` takes the name alone", kind.start(), kind.end(),
+                           f"take `{kind[0]}` out", Change(kind.start(), names[1].start(), ""))]
     found: list[Fault] = []
     for before, behind in pairwise(names):
         between = text[before.end() : behind.start()]

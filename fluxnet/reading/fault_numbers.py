@@ -31,7 +31,7 @@ def parameter_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
         return commas
     name = re.compile(rf"\s*({NAME})\s*").match(text, start, end)
     if name is None:
-        return [_bad("the parameter has no name", start, end, _FORM)]
+        return [_bad("the parameter has no name", 0, start, _FORM)]
     sign = re.compile(r":=|=:|==|[:=]").match(text, name.end(), end)
     if sign is None:
         number = re.compile(NUMBER).match(text, name.end(), end)
@@ -77,6 +77,13 @@ def _value_faults(name: str, text: str, start: int, end: int) -> list[Fault]:
     if negative:
         return [_bad("an sd is never negative", negative.start(1), negative.end(1),
                      "write it without the minus")]
+    shaped = _range_or_error(text, number.end(), end)
+    if shaped is not None:
+        return [shaped]
+    operator = re.compile(r"\s*[*/+]").match(text, number.end(), end)
+    if operator:
+        return [_bad(f"the value of {name} is one number", start, end,
+                     "write the number; products stand in brackets as coefficients")]
     bare = re.compile(r"(?<!in)(?<!in\s)\[").search(text, number.end(), end)
     if bare:
         return [_bad("no `in` stands before the range", bare.start(), end, "write in [low, high]",
@@ -89,6 +96,26 @@ def _value_faults(name: str, text: str, start: int, end: int) -> list[Fault]:
     rest = number.end() + len(text[number.end() : end]) - len(text[number.end() : end].lstrip())
     return [_bad(f"what stands behind the value of {name} cannot be read",
                  rest if rest < end else start, end, _FORM)]
+
+
+_END = r"(-?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?)"
+_RANGE = re.compile(
+    rf"\b(?:in|range|from|between)\s*[\[(]?\s*{_END}\s*(?:to|and|-|;|\.\.|,)\s*{_END}\s*[\])]?"
+)
+
+
+def _range_or_error(text: str, start: int, end: int) -> Fault | None:
+    """A range or an sd behind a value that is written in another way."""
+    error = re.compile(rf"\s*\(\s*({NUMBER})\s*\)").match(text, start, end)
+    if error:
+        return _bad("an sd stands behind ±", error.start(), error.end(), f"write ± {error[1]}",
+                    replace_by(error, f" ± {error[1]}"))
+    shaped = _RANGE.search(text, start, end)
+    if shaped is None:
+        return None
+    good = f"in [{shaped[1]}, {shaped[2]}]"
+    return _bad("a range is written with square brackets and a comma", shaped.start(),
+                shaped.end(), f"write {good}", replace_by(shaped, good))
 
 
 _SIGN = re.compile(r"=<|=>|==|≦|≧|<>|!=|≠|[<>]=?|[≤≥=]")
@@ -111,6 +138,10 @@ def limit_faults(text: str, start: int, end: int) -> list[Fault]:
     between = re.compile(r"\bbetween\b").search(text, start, end)
     if between:
         return _between_faults(text, between, end)
+    split = re.compile(r"([<>])\s+=").search(text, start, end)
+    if split:
+        return [_wrong(f"`{split[0]}` is one sign", split.start(), split.end(),
+                       f"write {split[1]}=", replace_by(split, f"{split[1]}="))]
     signs = list(_SIGN.finditer(text, start, end))
     if len(signs) == 2:
         return [_two_sided(text, start, end)]
@@ -192,7 +223,7 @@ def _no_sign(text: str, start: int, end: int) -> Fault:
 
 def _between_faults(text: str, between: re.Match[str], end: int) -> list[Fault]:
     joined = re.compile(
-        rf"\s*((?:in|out)\s+)?({NUMBER})\s*(,|to|-|–|\.\.|&|;)\s*((?:in|out)\s+)?({NUMBER})\s*"
+        rf"\s*((?:in|out)\s+)?{_END}\s*(,|to|-|\.\.|&|;)\s*((?:in|out)\s+)?{_END}\s*"
     ).fullmatch(text, between.end(), end)
     if joined:
         return [_wrong(f"`{joined[3]}` stands for `and`", joined.start(3), joined.end(3),

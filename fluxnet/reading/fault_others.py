@@ -28,6 +28,10 @@ def block_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
             return [unreadable("`to` is missing behind `add`", 0, start,
                                "write: add to COMPARTMENT", *change)]
         start = to.end()
+        colon = re.compile(r"\s*:").match(text, start, end)
+        if colon:
+            return [unreadable("no colon stands behind `add to`", colon.start(), colon.end(),
+                               "take the colon out", replace_by(colon, ""))]
     name = re.compile(rf"\s*({NAME})").match(text, start, end)
     if name is None:
         return [unreadable(f"`{text[:start].strip()}` has no name", 0, start,

@@ -81,7 +81,7 @@ def term_faults(text: str, run: list[Token], known: Known) -> list[Fault]:
     if "-" in kinds:
         return [_minus(run, kinds)]
     if "*" in kinds or "/" in kinds:
-        return [_product(text, run, kinds)]
+        return [_product(text, run, kinds, known)]
     return _side_by_side(run, kinds, known)
 
 
@@ -137,7 +137,7 @@ def _minus(run: list[Token], kinds: str) -> Fault:
     )
 
 
-def _product(text: str, run: list[Token], kinds: str) -> Fault:
+def _product(text: str, run: list[Token], kinds: str, known: Known) -> Fault:
     """A coefficient with ``*`` or ``/`` outside brackets."""
     starred = "*" in kinds
     name = Name.STARRED_COEFFICIENT if starred else Name.FRACTION_COEFFICIENT
@@ -150,10 +150,12 @@ def _product(text: str, run: list[Token], kinds: str) -> Fault:
     last_sign = max(kinds.rfind("*"), kinds.rfind("/"))
     lead = re.match(r"\d+(?=[^\W\d])", species.text)
     if last_sign == len(run) - 2 and kinds[last_sign] == "*" and len(run) == 3:
+        whole = f"{run[0].text} {species.text}"
+        if species.text in known.parameters and run[0].text not in known.parameters:
+            whole = f"{species.text} {run[0].text}"
         return Fault(
-            name, "a coefficient stands before its species without `*`",
-            start, end, f"write {run[0].text} {species.text}",
-            (Change(run[0].end, species.start, " "),),
+            name, "a coefficient stands before its species without `*`", start, end,
+            f"write {whole}", (Change(start, end, whole),),
         )
     cut = species.start
     if last_sign == len(run) - 2:
@@ -201,9 +203,14 @@ def _missing_plus(run: list[Token], known: Known) -> list[Fault]:
         if run[at].kind in "nub" or _is_coefficient(run, at, known):
             at += 1
         if at >= len(run) or run[at].kind != "w":
-            first = run[start]
-            return [unreadable("this cannot stand before a species", first.start, first.end)]
-        if before is not None:
+            return [_no_species(run, start)]
+        if before is not None and f"{before.text}-{run[at].text}" in known.species:
+            whole = f"{before.text}-{run[at].text}"
+            found.append(
+                unreadable("a name has no blanks", before.start, run[at].end, f"write {whole}",
+                           Change(before.start, run[at].end, whole))
+            )
+        elif before is not None:
             found.append(
                 Fault(Name.MISSING_PLUS,
                       f"no + stands between {before.text} and {run[at].text}",
@@ -213,6 +220,17 @@ def _missing_plus(run: list[Token], known: Known) -> list[Fault]:
         before = run[at]
         at += 1
     return found
+
+
+def _no_species(run: list[Token], start: int) -> Fault:
+    """What stands where a coefficient stands, but is followed by no species."""
+    first, behind = run[start], run[start + 1] if start + 1 < len(run) else run[start]
+    if first.kind == behind.kind == "n" and first is not behind:
+        what = f"{first.text}{behind.text} is no number"
+        if first.end < behind.start:
+            what = f"two numbers stand side by side: {first.text} and {behind.text}"
+        return unreadable(what, first.start, behind.end, "write one number before each species")
+    return unreadable("this cannot stand before a species", first.start, first.end)
 
 
 def _is_coefficient(run: list[Token], at: int, known: Known) -> bool:

@@ -23,7 +23,7 @@ from fluxnet.reading.fault_reactions import has_arrow, reaction_faults
 from fluxnet.reading.fault_record import NAME, Change, Fault, Known, unreadable
 from fluxnet.reading.findings import Findings, nearest_names
 from fluxnet.reading.lines import LogicalLine
-from fluxnet.reading.parsing import Unparsed, parse_statement
+from fluxnet.reading.parsing import Unparsed, expected_terminals, parse_statement
 from fluxnet.reading.syntax import Word
 
 __all__ = ["explain_line"]
@@ -46,6 +46,7 @@ _MEANT = {
 }
 _ACCEPT = re.compile(r"\s+accept\s+[\w-]+\s*:\s*\S")
 _FIRST = re.compile(r"\S+")
+_ARROW = re.compile(r"[-=]+>|→|⇌|<-")
 
 
 def explain_line(
@@ -79,7 +80,9 @@ def _faults(text: str, known: Known) -> list[Fault]:
     if first is None:
         return []
     word = first[0].rstrip(":,=")
-    named = re.compile(rf"{NAME}\s*:").match(text) and (word not in _WORDS or has_arrow(text))
+    named = re.compile(rf"{NAME}\s*:").match(text) and (
+        word not in _WORDS or _ARROW.search(text) is not None
+    )
     if word in _WORDS and not named:
         if unfinished is None or word not in _ROLES:
             return _statement_faults(word, text, len(word), end)
@@ -97,6 +100,10 @@ def _unfinished(sign: re.Match[str]) -> Fault:
 
 
 def _statement_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
+    colon = re.compile(r"\s*(:)").match(text, start)
+    if colon:
+        return [unreadable(f"no colon stands behind `{word}`", colon.start(1), colon.end(1),
+                           "take the colon out", Change(start, colon.end(1), " "))]
     if word in _ROLES:
         return declaration_faults(word, text, start, end)
     if word == "limit":
@@ -148,7 +155,8 @@ def _where_it_stopped(text: str, failure: Unparsed) -> Fault:
     place = min(failure.position, len(text))
     word = re.compile(r"\w[\w-]*|\S").match(text, place)
     stop = word.end() if word else place
-    words = dict.fromkeys(_PLAIN.get(t, f"`{t.lower()}`") for t in failure.expected)
+    expected = expected_terminals(text)
+    words = dict.fromkeys(_PLAIN.get(t, f"`{t.lower()}`") for t in expected)
     mend = f"here could stand {', '.join(words)}" if 0 < len(words) <= 8 else None
     if place >= len(text):
         return unreadable("the line ends too early", max(len(text) - 1, 0), len(text), mend)

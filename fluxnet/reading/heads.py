@@ -70,7 +70,13 @@ def _twice(one: Placed, first: Placed, what: str, findings: Findings) -> None:
 
 def _basis(one: Placed, said: s.BasisLine, findings: Findings) -> Basis | None:
     basis = read_basis(said.unit.text)
-    if basis is None:
+    bare = said.unit.text.lstrip("=: ")
+    if basis is None and read_basis(bare) is not None:
+        findings.add(
+            Name.UNKNOWN_BASIS, f"{said.unit.text} is no basis", one.line, said.unit,
+            mend=f"write {bare}", certain=[(said.unit, bare)],
+        )
+    elif basis is None:
         names = [b.value for b in Basis]
         near = findings.nearest(said.unit.text, names, 1)
         findings.add(

@@ -14,7 +14,7 @@ from fluxnet.reading.findings import Findings
 from fluxnet.reading.lines import LONGEST
 from fluxnet.reading.loading import Place, load_statements
 from fluxnet.reading.resolve import resolve_network
-from fluxnet.reading.scope import Scope, words_of
+from fluxnet.reading.scope import Scope, names_lost, words_of
 from fluxnet.reading.source import read_source, source_of_text
 
 __all__ = ["ModelReading", "read_model", "read_model_text"]
@@ -85,8 +85,8 @@ def _read(
 ) -> ModelReading:
     findings = Findings(list(told))
     loaded = load_statements(source, path, place, findings)
-    refused = [r.line.text for r in loaded.rejected]
-    scope = Scope(findings, lost=words_of(text for text in refused if len(text) <= LONGEST))
+    refused = [r.line.text for r in loaded.rejected if len(r.line.text) <= LONGEST]
+    scope = Scope(findings, lost=names_lost(refused), named=words_of(refused))
     network = resolve_network(loaded, scope)
     network = balance_reading(network, scope)
     diagnostics = in_order(_with_lines(findings.found, loaded.sources))

@@ -13,7 +13,7 @@ from fluxnet.ground.resources import resource_folder
 from fluxnet.reading import syntax as s
 from fluxnet.reading.building import Builder
 
-__all__ = ["Unparsed", "parse_statement", "statement_parser"]
+__all__ = ["Unparsed", "expected_terminals", "parse_statement", "statement_parser"]
 
 
 def statement_parser(*, strict: bool = False) -> Lark:
@@ -48,10 +48,9 @@ _parser = cache(statement_parser)
 
 
 class Unparsed(NamedTuple):
-    """Where a line could not be read on, and the terminals that could have stood there."""
+    """Where a line could not be read on."""
 
     position: int
-    expected: tuple[str, ...] = ()
 
 
 def parse_statement(text: str) -> s.Statement | Unparsed:
@@ -60,9 +59,21 @@ def parse_statement(text: str) -> s.Statement | Unparsed:
         return cast("s.Statement", _parser().parse(text))
     except lark.exceptions.UnexpectedToken as error:
         end = error.token.type == "$END"
-        position = len(text) if end else cast("int", error.token.start_pos)
-        return Unparsed(position, tuple(sorted(error.expected)))
+        return Unparsed(len(text) if end else cast("int", error.token.start_pos))
     except lark.exceptions.UnexpectedCharacters as error:
-        return Unparsed(error.pos_in_stream or 0, tuple(sorted(error.allowed or ())))
+        return Unparsed(error.pos_in_stream or 0)
     except ValueError:  # a number of thousands of digits
         return Unparsed(0)
+
+
+def expected_terminals(text: str) -> tuple[str, ...]:
+    """The names of the terminals that could stand where a line cannot be read on."""
+    try:
+        _parser().parse(text)
+    except lark.exceptions.UnexpectedToken as error:
+        return tuple(sorted(error.accepts or error.expected))
+    except lark.exceptions.UnexpectedCharacters as error:
+        return tuple(sorted(error.allowed or ()))
+    except ValueError:
+        pass
+    return ()

@@ -19,6 +19,7 @@ __all__ = ["resolve_reaction"]
 _ZERO = Fraction(0)
 _LONGEST = 300
 _MOST_MONOMIALS = 2000
+_POWER_OF_TEN = re.compile(r"\d+[eE]\d+")
 _GLUED = re.compile(r"(\d+)(?=[^\W\d])")
 
 
@@ -97,6 +98,14 @@ def _is_parameter(line: LogicalLine, said: s.TermText, scope: Scope) -> bool:
     assert isinstance(word, s.Word)
     if word.text in scope.parameters:
         return True
+    whole = f"{word.text}-{said.species.text}"
+    if whole in scope.species:
+        both = s.Word("", word.start, said.species.end)
+        scope.findings.add(
+            Name.UNREADABLE_LINE, "a name has no blanks", line, both, mend=f"write {whole}",
+            certain=[(both, whole)],
+        )
+        return False
     near = scope.findings.nearest(word.text, [*scope.species, *scope.parameters], 1)
     if word.text in scope.species or (near and near[0] in scope.species):
         gap = s.Word("", word.end, word.end)
@@ -184,6 +193,12 @@ def _parameter(line: LogicalLine, word: s.Word, scope: Scope) -> Expression | No
         scope.used_parameters.add(name)
         return parameter(name)
     if name in scope.lost:
+        return None
+    if _POWER_OF_TEN.fullmatch(name):
+        scope.findings.add(
+            Name.UNREADABLE_LINE, f"the number {name[:20]} is out of reach", line, word,
+            because="numbers lie between 1e-100 and 1e100",
+        )
         return None
     if name in scope.species:
         scope.findings.add(

@@ -89,8 +89,9 @@ def _resolve_reactions(base: Sequence[Placed], scope: Scope, parts: _Parts) -> N
 
 
 def _unused_parameters(parameters: Sequence[Parameter], scope: Scope) -> None:
+    accounted = scope.used_parameters | scope.lost | scope.named
     for parameter in parameters:
-        if parameter.name in scope.used_parameters | scope.lost | scope.named:
+        if parameter.name in accounted:
             continue
         scope.findings.add_at(
             Name.UNUSED_PARAMETER, f"no coefficient uses the parameter {parameter.name}",

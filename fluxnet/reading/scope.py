@@ -16,7 +16,7 @@ from fluxnet.reading.findings import Findings
 from fluxnet.reading.lines import LogicalLine
 from fluxnet.reading.syntax import Word
 
-__all__ = ["Kind", "Mention", "Scope", "claim", "place_words", "words_of"]
+__all__ = ["Kind", "Mention", "Scope", "claim", "names_lost", "place_words", "words_of"]
 
 RESERVED = {"nothing": "the empty side of a reaction", "mu": "the specific growth rate"}
 
@@ -40,10 +40,9 @@ class Mention(NamedTuple):
 class Scope:
     """The names that a statement sees.
 
-    ``lost`` are words of rejected lines: they may have been declared there, so that no second
-    error is made of them. ``broken`` are species whose declaration has a fault, ``tainted``
-    reactions (with their variant, None in the unchanged model) that have one; both are left
-    out of the balances. ``variants`` are the scopes of the variants.
+    ``lost`` are names that a rejected line may have declared, so that no second error is made
+    of them; ``named`` are all words of rejected lines. ``broken`` are species whose declaration
+    has a fault. ``variants`` are the scopes of the variants.
     """
 
     findings: Findings
@@ -54,18 +53,18 @@ class Scope:
     folded: dict[str, str] = field(default_factory=dict)
     variant: str | None = None
     lost: set[str] = field(default_factory=set)
+    named: set[str] = field(default_factory=set)
     unknown: dict[str, list[Mention]] = field(default_factory=dict)
     used_parameters: set[str] = field(default_factory=set)
     broken: set[str] = field(default_factory=set)
-    tainted: set[tuple[str | None, str]] = field(default_factory=set)
     variants: dict[str, Scope] = field(default_factory=dict)
 
     def inner(self, variant: str) -> Scope:
         """The scope of a variant: it sees all names of this one, and adds its own."""
         return Scope(
             self.findings, dict(self.species), dict(self.parameters), dict(self.reactions),
-            dict(self.places), dict(self.folded), variant, self.lost, self.unknown,
-            self.used_parameters, self.broken, self.tainted, self.variants,
+            dict(self.places), dict(self.folded), variant, self.lost, self.named, self.unknown,
+            self.used_parameters, self.broken, self.variants,
         )
 
     def twin(self, name: str, *kinds: Kind) -> str | None:
@@ -80,6 +79,8 @@ class Scope:
 
 
 _NAMES = re.compile(NAME)
+_LABEL = re.compile(rf"\s*({NAME})\s*:")
+_ARROW = re.compile(r"->|=>|→|⇌|<-")
 _LETTERS = re.compile(r"[^\W\d]\w*")
 
 
@@ -88,6 +89,18 @@ def words_of(texts: Iterable[str]) -> set[str]:
     listed = tuple(texts)
     names = {match[0] for text in listed for match in _NAMES.finditer(text)}
     return names | {match[0] for text in listed for match in _LETTERS.finditer(text)}
+
+
+def names_lost(texts: Iterable[str]) -> set[str]:
+    """The names that rejected lines may have declared: of a reaction only its own."""
+    found: set[str] = set()
+    for text in texts:
+        label = _LABEL.match(text)
+        if label or _ARROW.search(text):
+            found.update([label[1]] if label else [text.split()[0]])
+        else:
+            found |= words_of([text])
+    return found
 
 
 def claim(scope: Scope, kind: Kind, line: LogicalLine, word: Word) -> bool:

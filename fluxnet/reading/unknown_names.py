@@ -8,6 +8,7 @@ from fluxnet.chemistry.catalogue import load_catalogue
 from fluxnet.ground.names import Name
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
+from fluxnet.reading.findings import nearest_names
 from fluxnet.reading.lines import LogicalLine
 from fluxnet.reading.scope import Kind, Mention, Scope
 
@@ -49,9 +50,12 @@ def _report(name: str, mentions: list[Mention], scope: Scope) -> None:
         )
         return
     synonym = _synonym(name, scope)
+    unwritten = _unwritten(name)
     near = scope.findings.nearest(name, scope.species)
     if synonym is not None:
         mend = f"{name} is another name of {synonym}: write {synonym}"
+    elif unwritten is not None:
+        mend = unwritten
     elif near:
         mend = f"a similar name is declared: {', '.join(near)}"
     else:
@@ -78,6 +82,25 @@ def _synonym(name: str, scope: Scope) -> str | None:
     if compound is None:
         return None
     return next((s.name for s in scope.species.values() if s.entry == compound.name), None)
+
+
+_EMPTY_FORMS = {
+    "ADP": "ATP", "AMP": "ATP", "GDP": "GTP", "NAD": "NADH", "NAD+": "NADH", "NADP": "NADPH",
+    "NADP+": "NADPH", "FAD": "FADH2", "Q": "QH2", "UQ": "QH2", "MQ": "QH2",
+}
+_FREE = {"water": "water is", "proton": "protons are", "phosphate": "phosphate is"}
+
+
+def _unwritten(name: str) -> str | None:
+    """What to do with a species that the language does not ask for."""
+    if name in _EMPTY_FORMS:
+        return f"leave it out: a carrier's empty form is not written, only {_EMPTY_FORMS[name]}"
+    if name in ("CoA", "CoASH", "HSCoA"):
+        return "leave it out: a group that is bound to CoA counts as the acid less water"
+    compound = load_catalogue().find(name)
+    if compound is not None and compound.name in _FREE:
+        return f"leave it out: {_FREE[compound.name]} free; to write it declare it: exchange {name}"
+    return None
 
 
 def _advice(name: str, first: Mention, scope: Scope) -> str:
@@ -117,7 +140,12 @@ def resolve_free(base: Sequence[Placed], scope: Scope) -> tuple[str, ...]:
 
 
 def _check_balance(one: Placed, word: s.Word, scope: Scope) -> None:
-    if word.text != "phosphate":
+    if word.text != "phosphate" and nearest_names(word.text, ["phosphate"]):
+        scope.findings.add(
+            Name.UNREADABLE_LINE, f"{word.text} cannot be asked to balance: only phosphate can",
+            one.line, word, mend="write `balance phosphate`", certain=[(word, "phosphate")],
+        )
+    elif word.text != "phosphate":
         scope.findings.add(
             Name.UNREADABLE_LINE,
             f"only phosphate can be asked to balance; {word.text} is balanced anyway, or free "

@@ -11,8 +11,8 @@ from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
 from fluxnet.reading.declare import declare_species, read_assignment
 from fluxnet.reading.findings import only_case_differs
-from fluxnet.reading.limit_pairs import compare_limits
 from fluxnet.reading.heads import resolve_acceptances
+from fluxnet.reading.limit_pairs import compare_limits
 from fluxnet.reading.limits import resolve_limit, resolve_quantity
 from fluxnet.reading.reactions import resolve_reaction
 from fluxnet.reading.scope import Kind, Scope, claim, place_words
