@@ -19,6 +19,7 @@ __all__ = ["covariance_at", "is_possible", "join_errors", "run_covariance"]
 
 Vector = NDArray[np.float64]
 _SLACK = 1e-10
+_ROUNDING = 1e-14
 
 
 def join_errors(
@@ -104,7 +105,9 @@ def covariance_at(run: Run, values: Sequence[float] | Vector) -> Vector:
     share = run.shared_error or 0.0
     parts = np.array([r.own_sd is not None for r in rates])
     before = np.where(parts, share * np.array([r.value or 0.0 for r in rates]), 0.0)
-    own = covariance - np.outer(before, before)
+    together = np.outer(before, before)
+    own = covariance - together
+    own[np.abs(own) <= _ROUNDING * np.abs(together)] = 0.0  # what subtraction leaves of nothing
     old = np.array([(r.sd if r.own_sd is None else r.own_sd) or 0.0 for r in rates])
     new = np.array(
         [

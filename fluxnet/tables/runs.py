@@ -201,7 +201,8 @@ def _rates(
             sd, relative, source = guess or rule.floor, None, SdSource.ASSUMED
             assumed.append(str(quantity))
         own: float | None = None
-        if sd is not None and one.value is not None and shared_error and _shares(quantity, biomass):
+        if sd and one.value is not None and shared_error and _shares(quantity, biomass):
+            # a typed 0 stays exact: it has no part in the shared error either
             own, sd = sd, float(np.hypot(sd, shared_error * one.value))
         rates.append(
             MeasuredRate(

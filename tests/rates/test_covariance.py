@@ -65,6 +65,14 @@ def test_relative_and_shared_errors_follow_other_values(make_run):
     np.testing.assert_allclose(covariance_at(run, [3.0, 4.0]), expected, rtol=1e-12)
 
 
+def test_a_large_shared_error_leaves_small_own_errors_independent(make_run):
+    run = make_run([2.0, 5.0], [1e-7, 1e-7], None, 0.3)
+    moved = covariance_at(run, [2.0, 5.0])
+    smallest = np.linalg.eigvalsh(moved)[0]
+    assert moved[0, 1] == pytest.approx(0.09 * 10, rel=1e-15)
+    assert smallest > -1e-15
+
+
 def test_values_are_matched_in_number(make_run):
     with pytest.raises(MisuseError, match="2 measured rates"):
         covariance_at(make_run([1.0, 2.0], [0.1, 0.1]), [1.0])

@@ -96,6 +96,15 @@ def test_the_rate_of_biomass_itself_has_no_part_in_the_shared_error(read):
     assert run.covariance[1, 1] == pytest.approx(0.01, rel=1e-14)
 
 
+def test_an_exact_rate_stays_exact_beside_a_shared_error(read):
+    run = read(
+        "shared error biomass 4 %\n" + LONG
+        + "A,glucose,in,2,0,mmol/g/h\nA,CO2,out,5,0.1,mmol/g/h\n"
+    )  # fmt: skip
+    assert (run.rates[0].sd, run.rates[0].own_sd) == (0, None)
+    np.testing.assert_allclose(run.covariance, [[0, 0], [0, 0.01 + 0.04]], rtol=1e-13)
+
+
 def test_a_shared_error_may_be_a_column_of_its_own():
     reading = read_rates_text(
         "run,glucose in [mmol/g/h],glucose sd,CO2 out [mmol/g/h],CO2 sd,shared error biomass\n"
