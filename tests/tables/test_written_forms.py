@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+import subprocess
+import sys
+
 import pytest
 
 from fluxnet.ground.names import Name
@@ -151,3 +154,14 @@ def test_a_missing_file_and_a_folder_are_told_apart(tmp_path):
     (missing,) = read_rates(tmp_path / "none.csv").diagnostics
     (folder,) = read_rates(tmp_path).diagnostics
     assert (missing.name, folder.name) == (Name.FILE_MISSING, Name.NOT_A_FILE)
+
+
+def test_a_text_table_is_read_without_heavy_packages():
+    script = (
+        "import sys; from fluxnet.tables.rates_table import read_rates_text as read;"
+        "t = 'species,direction,rate,sd,unit\\nglucose,in,2,5 %,g/L/h\\n';"
+        "assert read(t).table;"
+        "print([m for m in ('pandas', 'pint', 'python_calamine', 'scipy') if m in sys.modules])"
+    )
+    found = subprocess.run([sys.executable, "-c", script], capture_output=True, text=True)
+    assert found.stdout.strip() == "[]", found.stderr
