@@ -24,6 +24,9 @@ __all__ = ["Intervals", "find_intervals"]
 
 Vector = NDArray[np.float64]
 
+_DUST = 1e-9
+"""A number below this part of what a functional changes by is what rounding left of zero."""
+
 
 
 @dataclass(frozen=True, slots=True)
@@ -107,6 +110,9 @@ def find_intervals(
     for members in _alike(search, ~constant & np.isfinite(values)):
         _fill(search, members)
     ends = search.ends
+    # What is left of a zero is told as zero.
+    ends[np.abs(ends) <= _DUST * sizes[:, None]] = 0.0
+    values = np.where(np.abs(values) <= _DUST * sizes, 0.0, values)
     return Intervals(values, sd, ends[:, 0], ends[:, 1], ends[:, 2], ends[:, 3])
 
 

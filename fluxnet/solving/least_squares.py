@@ -38,7 +38,7 @@ from fluxnet.solving.representative import take_least_flux
 from fluxnet.solving.spread import find_adjustments, find_spread, parameter_moves
 from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tail
 from fluxnet.solving.task import Point, Task, flux_scale
-from fluxnet.solving.weighing import Weighed, fit_weighed
+from fluxnet.solving.weighing import Weighed, fit_weighed, weigh_again
 
 __all__ = ["fit_fluxes", "spans_of"]
 
@@ -46,6 +46,7 @@ Vector = NDArray[np.float64]
 
 _PRESSES = 1e-9
 """What bounds add to h below this part of it is rounding."""
+_GUESSES = 3
 
 
 def fit_fluxes(network: Network, run: Run | None = None, *, built: Built | None = None) -> FluxFit:
@@ -97,11 +98,21 @@ def fit_fluxes(network: Network, run: Run | None = None, *, built: Built | None 
     mu = Quantity(QuantityKind.MU)
     extra = (form_of(built, mu),) if has_mu(network, built.basis) else ()
     weighed = fit_weighed(built, structure, extra)
-    bounded = fit_bounded(weighed.task, weighed.best)
-    if bounded is None:
+    region = _bounded(weighed)
+    for _ in range(_GUESSES if weighed.built.estimated else 0):
+        if region is None:
+            break
+        weighed = weigh_again(weighed, region.point)
+        region = _bounded(weighed) or region
+    if region is None:
         return _nothing(weighed.built, ())
-    region = take_least_flux(weighed.task, bounded[1])
     return _told(weighed, structure, region, mu_place=len(built.problem.rows) if extra else None)
+
+
+def _bounded(weighed: Weighed) -> Region | None:
+    """The region of the fit with bounds, or None where there is none."""
+    bounded = fit_bounded(weighed.task, weighed.best)
+    return None if bounded is None else take_least_flux(weighed.task, bounded[1])
 
 
 def spans_of(

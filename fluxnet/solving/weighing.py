@@ -21,7 +21,7 @@ from fluxnet.solving.forms import Form, exact_numbers, exact_row, exact_species,
 from fluxnet.solving.problem import Row, RowKind
 from fluxnet.solving.task import Point, Task, task_of, whitening
 
-__all__ = ["Weighed", "fit_weighed"]
+__all__ = ["Weighed", "fit_weighed", "weigh_again"]
 
 Vector = NDArray[np.float64]
 
@@ -74,6 +74,27 @@ def fit_weighed(built: Built, structure: Structure, extra: tuple[Form, ...] = ()
         best = fit_equalities(task, best.numbers)
         built, task, best = _settle(built, task, best, ratios, sure)
     return Weighed(built, task, best, ratios)
+
+
+def weigh_again(weighed: Weighed, point: Point) -> Weighed:
+    """Fit again with the denominators of another point, where they were mere guesses.
+
+    Of a measured ratio whose denominator nothing determines the weight cannot be settled; that
+    of the point which is shown is the one that its errors are to be read with.
+    """
+    built, sizes = weighed.built, {}
+    for place in built.estimated:
+        quantity = built.problem.rows[place].quantity
+        size = abs(float(point.values[weighed.ratios[place][1]]))
+        if quantity is not None and quantity.denominator is not None and size > 0:
+            sizes[quantity.denominator] = size
+    if not sizes:
+        return weighed
+    guessed = built.estimated
+    built = replace(rebuild(built, denominators=sizes), estimated=guessed)
+    task = replace(weighed.task, whitening=whitening(built.covariance))
+    best = fit_equalities(task, weighed.best.numbers)
+    return Weighed(built, task, best, weighed.ratios)
 
 
 def _has_relative(run: Run) -> bool:

@@ -411,6 +411,20 @@ def test_a_measured_ratio_weighs_with_its_denominator_as_fitted(make_network, ma
     assert fit.dof == 2
 
 
+def test_a_ratio_whose_denominator_nothing_fixes_weighs_with_the_one_shown(
+    make_network, make_run
+):
+    network = make_network(YEAST)
+    run = make_run(network, "glucose in 10 ± 0.5", "CO2 out / oxygen in 3 ± 0.1")
+    fit = fit_fluxes(network, run)
+    oxygen = row_of(fit, "oxygen in")
+    assert oxygen.kind is RateKind.NOT_CALCULABLE
+    told = next(r for r in fit.rows if "/" in str(r.quantity))
+    assert (told.value, told.value_sd) == pytest.approx((3.0, 0.1))
+    row = next(r for r in fit.built.problem.rows if r.ratio is not None)
+    assert row.sd == pytest.approx(0.1 * oxygen.value)
+
+
 def test_a_relative_sd_is_taken_of_the_reconciled_value(make_network):
     network = make_network(FERMENT)
     quantities = [r.quantity for r in fit_fluxes(network).rates][:2]
@@ -457,6 +471,9 @@ def test_a_bound_that_pulls_is_named_and_h_stays_that_of_the_equalities(make_net
     assert bound.pull == pytest.approx(0.5 / np.hypot(0.1, 0.1))
     assert bound.is_strong
     assert fit.status is FitStatus.SOLVED
+    # acetate a: h = (0.5 + a)^2 / 0.02 <= 12.5 + 3.84; the bound lets go only under a hard pull
+    assert fit.high[2] == pytest.approx(np.sqrt(0.02 * (12.5 + 3.841459)) - 0.5, rel=1e-5)
+    assert fit.low[2] == 0
 
 
 def test_a_bound_that_hardly_presses_is_no_surprise(make_network, make_run):

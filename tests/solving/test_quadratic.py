@@ -97,6 +97,17 @@ def test_the_units_of_the_unknowns_change_nothing(decades):
         assert scaled.value == pytest.approx(plain.value, rel=1e-6, abs=1e-6)
 
 
+def test_what_rounding_left_of_a_zero_coefficient_changes_nothing():
+    rng = np.random.default_rng(9)
+    for _ in range(20):
+        hessian, gradient, rows, low, high = random_programme(rng, flat=2)
+        dust = 1e-15 * rng.normal(size=rows.shape) * (rows == 0)
+        plain = solve_quadratic(hessian, gradient, rows, low, high)
+        dusty = solve_quadratic(hessian, gradient, rows + dust, low, high)
+        assert dusty.outcome is Outcome.OPTIMAL
+        assert dusty.value == pytest.approx(plain.value, rel=1e-9, abs=1e-9)
+
+
 def test_contradicting_bounds_are_proved_by_their_weights():
     rows = np.array([[1.0, 1.0], [1.0, 0.0], [0.0, 1.0]])
     low, high = np.array([4.0, -INF, -INF]), np.array([INF, 1.0, 2.0])
