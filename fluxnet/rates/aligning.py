@@ -52,7 +52,8 @@ def _aligned(run: Run, names: dict[str, str], network: Network, faults: list[Dia
     for rate in run.rates:
         words = [w for q in _parts(rate.quantity) for w in _lacks(q, names, network)]
         if words:
-            faults.append(Diagnostic(*words[0], rate.span))
+            mend = "declare it in the model, or take the row out"
+            faults.append(Diagnostic(*words[0], rate.span, mend=mend))
             continue
         quantity = _renamed(rate.quantity, names)
         key: object = quantity.name if quantity.kind is QuantityKind.RATE else quantity

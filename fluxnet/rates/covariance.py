@@ -15,7 +15,7 @@ from numpy.typing import NDArray
 from fluxnet.ground.errors import MisuseError
 from fluxnet.rates.measured import Run
 
-__all__ = ["covariance_at", "is_possible", "join_errors", "run_covariance"]
+__all__ = ["covariance_at", "is_possible", "join_errors", "own_correlations", "run_covariance"]
 
 Vector = NDArray[np.float64]
 _SLACK = 1e-10
@@ -101,22 +101,29 @@ def covariance_at(run: Run, values: Sequence[float] | Vector) -> Vector:
     rates = run.measured
     if len(values) != len(rates):
         raise MisuseError(f"run {run.name} has {len(rates)} measured rates, not {len(values)}")
-    covariance = run_covariance(run)
     share = run.shared_error or 0.0
     parts = np.array([r.own_sd is not None for r in rates])
-    before = np.where(parts, share * np.array([r.value or 0.0 for r in rates]), 0.0)
-    together = np.outer(before, before)
-    own = covariance - together
-    own[np.abs(own) <= _ROUNDING * np.abs(together)] = 0.0  # what subtraction leaves of nothing
-    old = np.array([(r.sd if r.own_sd is None else r.own_sd) or 0.0 for r in rates])
+    old = [(r.sd if r.own_sd is None else r.own_sd) or 0.0 for r in rates]
     new = np.array(
         [
             s if r.relative is None else r.relative * abs(v)
             for r, s, v in zip(rates, old, values, strict=True)
         ]
     )
-    divisor = np.where(old > 0, old, 1.0)
-    correlations = own / np.outer(divisor, divisor)
-    np.fill_diagonal(correlations, 1.0)
     after = np.where(parts, share * np.asarray(values, dtype=np.float64), 0.0)
-    return join_errors(new, after, correlations)
+    return join_errors(new, after, own_correlations(run))
+
+
+def own_correlations(run: Run) -> Vector:
+    """The correlations of a run's measured rates without what the shared error adds."""
+    rates = run.measured
+    share = run.shared_error or 0.0
+    before = np.array([share * (r.value or 0.0) if r.own_sd is not None else 0.0 for r in rates])
+    together = np.outer(before, before)
+    own = run_covariance(run) - together
+    own[np.abs(own) <= _ROUNDING * np.abs(together)] = 0.0  # what subtraction leaves of nothing
+    old = np.array([(r.sd if r.own_sd is None else r.own_sd) or 0.0 for r in rates])
+    divisor = np.where(old > 0, old, 1.0)
+    correlations = np.asarray(own / np.outer(divisor, divisor))
+    np.fill_diagonal(correlations, 1.0)
+    return correlations

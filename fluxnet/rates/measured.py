@@ -87,13 +87,15 @@ class RatesTable:
     ``species`` are those that the rates name, each once, with formulas: the model's own, then
     what the table declares, then what the catalogue knows (``entry``), as typed. With a
     growth rate the biomass species are among them. ``nitrogen`` is the nitrogen source that
-    the table names. ``understood`` tells how the table was read.
+    the table names. ``understood`` tells how the table was read. ``sd_rule`` is what an
+    assumed sd is: a fraction of the value, and at least a fraction of the run's largest rate.
     """
 
     runs: tuple[Run, ...]
     understood: tuple[str, ...] = field(default=())
     species: tuple[Species, ...] = field(default=())
     nitrogen: str | None = None
+    sd_rule: tuple[float, float] = (0.05, 0.005)
 
     def find_species(self, name: str) -> Species | None:
         """The species of that name, or None."""

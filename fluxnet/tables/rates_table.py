@@ -28,6 +28,15 @@ from fluxnet.tables.understanding import understand
 
 __all__ = ["RatesReading", "read_rates", "read_rates_bytes", "read_rates_text"]
 
+_OF_RATES = frozenset(
+    {
+        Name.SD_ASSUMED,
+        Name.SHARED_ERROR_ASSUMED,
+        Name.FREE_ACID_TAKEN,
+        Name.BIOMASS_ASSUMED,
+    }
+)
+
 
 @dataclass(frozen=True, slots=True)
 class RatesReading:
@@ -187,7 +196,11 @@ def _read(
         return RatesReading(None, (fault,), sources, grid.comments)
     understood = understand(grid, network, decimal, rule, pairs)
     diagnostics = in_order(_with_line(d, sources) for d in understood.diagnostics)
-    table = None if has_errors(diagnostics) else understood.table
+    table = understood.table
+    if has_errors(diagnostics):
+        # what was assumed of rates is no news where there are none
+        table = None
+        diagnostics = tuple(d for d in diagnostics if d.name not in _OF_RATES)
     return RatesReading(table, diagnostics, sources, understood.notes)
 
 

@@ -78,6 +78,7 @@ def understand(
         told.parts,
         _species(readings, biomass),
         layout.statements.nitrogen,
+        (rule.relative, rule.floor),
     )
     return Understood(table, notes, tuple(faults))
 
