@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from fractions import Fraction
 from math import gcd, lcm
 
-from fluxnet.exact.sparse import NullSpace, SparseRow, independent_forms, null_space
+from fluxnet.exact.sparse import NullSpace, SparseRow, null_space
 from fluxnet.solving.equalities import ExactRows
 
 __all__ = ["Relation", "Structure", "classify", "find_relations"]
@@ -36,13 +36,14 @@ class Structure:
     ``space`` holds the fluxes that meet all equalities; ``unseen``, in its coordinates, the
     directions that no soft measured row changes. ``balanceable`` has one entry a measured row
     (in the order of :attr:`ExactRows.soft`, behind them the exact ones): whether the other
-    rows test it.
+    rows test it. ``determined`` has one a flux.
     """
 
     exact: ExactRows
     space: NullSpace
     unseen: NullSpace
     balanceable: tuple[bool, ...]
+    determined: tuple[bool, ...]
 
     @property
     def rank(self) -> int:
@@ -69,10 +70,6 @@ class Structure:
         """
         return not self.unseen.image(self.space.image(row))
 
-    @property
-    def determined(self) -> tuple[bool, ...]:
-        """Whether each flux is determined, by column."""
-        return tuple(not self.unseen.image(form) for form in self.space.rows)
 
 
 def classify(exact: ExactRows) -> Structure:
@@ -90,7 +87,8 @@ def classify(exact: ExactRows) -> Structure:
     if sharp:
         wider = null_space(exact.equal_rows(measured=False), exact.columns)
         forms = [wider.image(exact.rows[i]) for i in (*exact.soft, *sharp)]
-    return Structure(exact, space, unseen, _tested(forms))
+    determined = tuple(not unseen.image(form) for form in space.rows)
+    return Structure(exact, space, unseen, _tested(forms), determined)
 
 
 def _tested(forms: Sequence[SparseRow]) -> tuple[bool, ...]:
@@ -126,12 +124,9 @@ def find_relations(structure: Structure) -> tuple[Relation, ...]:
     for members in together.values():
         found += _plainest_pairs(members, forms, plain)
     leaders = [members[0] for members in together.values()]
-    independent = [leaders[i] for i in independent_forms([forms[j] for j in leaders])]
-    for j in leaders:
-        if j not in independent:
-            terms = _combination(j, independent, forms)
-            if len(terms) <= _LONGEST and plain.image(terms):
-                found.append(_relation(terms))
+    for terms in _dependencies(leaders, forms):
+        if len(terms) <= _LONGEST and plain.image(terms):
+            found.append(_relation(terms))
     return tuple(sorted(found, key=_effort))
 
 
@@ -168,17 +163,19 @@ def _direction(form: SparseRow) -> _Key:
     return tuple((k, value / pairs[0][1]) for k, value in pairs)
 
 
-def _combination(
-    j: int, independent: Sequence[int], forms: dict[int, dict[int, Fraction]]
-) -> dict[int, Fraction]:
-    """The dependency of one form on independent ones, as {column: coefficient}."""
-    members = [*independent, j]
+def _dependencies(
+    members: Sequence[int], forms: dict[int, dict[int, Fraction]]
+) -> list[dict[int, Fraction]]:
+    """A basis of the combinations of forms that vanish, as {column: coefficient}."""
     turned: dict[int, dict[int, Fraction]] = {}
     for place, column in enumerate(members):
         for k, value in forms[column].items():
             turned.setdefault(k, {})[place] = value
     space = null_space(list(turned.values()), len(members))
-    return {members[p]: row[0] for p, row in enumerate(space.rows) if row}
+    return [
+        {members[p]: row[k] for p, row in enumerate(space.rows) if k in row}
+        for k in range(space.dimension)
+    ]
 
 
 def _relation(terms: dict[int, Fraction]) -> Relation:

@@ -128,7 +128,7 @@ def spans_of(
         Functionals x fluxes, at the fitted values of parameters and ash.
     drift
         The derivatives of ``rows`` by each uncertain number, by its name; those that are not
-        named have none. Their rows must be proportional to the number.
+        named have none. Rows are taken to change in proportion to the numbers.
 
     Returns
     -------
