@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from functools import cache
-from typing import NamedTuple, cast
+from typing import Any, NamedTuple, cast
 
 import lark
 import lark.lexer
@@ -12,6 +12,8 @@ from lark import Lark
 from fluxnet.ground.resources import resource_folder
 from fluxnet.reading import syntax as s
 from fluxnet.reading.building import Builder
+from fluxnet.reading.keeping import open_parser
+from fluxnet.reading.parser_cache import cache_file, keep_parser, kept_parser
 
 __all__ = ["Unparsed", "expected_terminals", "parse_statement", "statement_parser"]
 
@@ -44,7 +46,17 @@ def _build(*, strict: bool) -> Lark:
     )
 
 
-_parser = cache(statement_parser)
+@cache
+def _parser() -> Lark:
+    """The parser, kept from an earlier start where there is one."""
+    file = cache_file(resource_folder("grammar").glob("*.lark"))
+    kept = None if file is None else kept_parser(file, Builder())
+    if kept is not None:
+        return kept
+    made = statement_parser()
+    if file is not None:
+        keep_parser(made, file)
+    return made
 
 
 class Unparsed(NamedTuple):
