@@ -1,7 +1,7 @@
 """The parser kept between two starts: made once from the grammar, then loaded.
 
-It lies in the user's cache folder (``$XDG_CACHE_HOME/fluxnet``, else ``~/.cache/fluxnet``) under a
-name that depends on the grammar, on lark and on Python. A file that cannot be read, or is not
+It lies in the user's cache folder (``$XDG_CACHE_HOME/fluxnet``, else ``~/.cache/fluxnet``; on
+Windows ``%LOCALAPPDATA%\\fluxnet``) under a name that depends on the grammar, on lark and on Python. A file that cannot be read, or is not
 what it should be, is passed over: the parser is then made anew. Only plain data are read back,
 never code.
 """
@@ -40,7 +40,8 @@ def cache_file(grammar: Iterable[Path]) -> Path | None:
     try:
         for path in sorted(grammar):
             digest.update(path.read_bytes())
-        folder = os.environ.get("XDG_CACHE_HOME") or "~/.cache"
+        said = "LOCALAPPDATA" if os.name == "nt" else "XDG_CACHE_HOME"
+        folder = os.environ.get(said) or "~/.cache"
         root = Path(folder).expanduser()
     except (OSError, RuntimeError):
         return None

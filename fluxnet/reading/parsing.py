@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from functools import cache
-from typing import Any, NamedTuple, cast
+from typing import NamedTuple, cast
 
 import lark
 import lark.lexer
@@ -12,7 +12,6 @@ from lark import Lark
 from fluxnet.ground.resources import resource_folder
 from fluxnet.reading import syntax as s
 from fluxnet.reading.building import Builder
-from fluxnet.reading.keeping import open_parser
 from fluxnet.reading.parser_cache import cache_file, keep_parser, kept_parser
 
 __all__ = ["Unparsed", "expected_terminals", "parse_statement", "statement_parser"]
