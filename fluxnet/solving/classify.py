@@ -126,7 +126,7 @@ def find_relations(structure: Structure) -> tuple[Relation, ...]:
     leaders = [members[0] for members in together.values()]
     for terms in _dependencies(leaders, forms):
         if len(terms) <= _LONGEST and plain.image(terms):
-            found.append(_relation(terms))
+            found.append(_plainest(terms, together, forms, plain))
     return tuple(sorted(found, key=_effort))
 
 
@@ -149,6 +149,28 @@ def _plainest_pairs(
             chosen.append(pair)
             group = {j: a if g == b else g for j, g in group.items()}
     return chosen
+
+
+def _plainest(
+    terms: dict[int, Fraction],
+    together: dict[_Key, list[int]],
+    forms: dict[int, dict[int, Fraction]],
+    plain: NullSpace,
+) -> Relation:
+    """The relation with each flux replaced by the one moving with it that reads most plainly."""
+    best = _relation(terms)
+    for leader in list(terms):
+        k = min(forms[leader])
+        for other in together[_direction(forms[leader])][1:]:
+            trial = {j: c for j, c in best.terms if j != leader}
+            factor = dict(best.terms).get(leader)
+            if factor is None:
+                continue
+            trial[other] = factor * forms[leader][k] / forms[other][k]
+            if plain.image(trial) and _effort(_relation(trial)) < _effort(best):
+                best = _relation(trial)
+                break
+    return best
 
 
 def _effort(relation: Relation) -> tuple[int, bool, Fraction]:
