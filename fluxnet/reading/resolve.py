@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Span
-from fluxnet.network.model import Limit, Network, Parameter, Reaction, Species
+from fluxnet.network.model import Limit, Network, Parameter, Reaction, Species, Variant
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
 from fluxnet.reading.declare import declare_parameter, declare_species
@@ -18,7 +18,6 @@ from fluxnet.reading.loading import Loaded
 from fluxnet.reading.reactions import resolve_reaction
 from fluxnet.reading.scope import Kind, Scope, claim
 from fluxnet.reading.unknown_names import report_unknown, resolve_free
-from fluxnet.reading.variants import resolve_variants
 
 __all__ = ["resolve_network"]
 
@@ -62,7 +61,11 @@ def resolve_network(loaded: Loaded, scope: Scope) -> Network:
                 parts.limits.append(limit)
     scope.findings.found.extend(compare_limits(parts.limits))
     free = resolve_free(base, scope)
-    variants = resolve_variants(loaded.placed, scope, phosphate=phosphate)
+    variants: tuple[Variant, ...] = ()
+    if any(isinstance(p.statement.line, s.VariantLine) for p in base):
+        from fluxnet.reading.variants import resolve_variants  # many models have none
+
+        variants = resolve_variants(loaded.placed, scope, phosphate=phosphate)
     report_unknown(scope)
     _unused_parameters(parts.parameters, scope)
     _nothing_there(loaded, base, scope)
