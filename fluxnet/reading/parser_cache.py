@@ -1,9 +1,10 @@
 """The parser kept between two starts: made once from the grammar, then loaded.
 
 It lies in the user's cache folder (``$XDG_CACHE_HOME/fluxnet``, else ``~/.cache/fluxnet``; on
-Windows ``%LOCALAPPDATA%\\fluxnet``) under a name that depends on the grammar, on lark and on Python. A file that cannot be read, or is not
-what it should be, is passed over: the parser is then made anew. Only plain data are read back,
-never code.
+Windows ``%LOCALAPPDATA%/fluxnet``) under a name that depends on the grammar, on lark and on
+Python. A file that cannot be read, or is not what it should be, is passed over: the parser is
+then made anew. Only plain data are read back, never code. (A parser packed with the installation
+would spare the first start too, but holds for one version of lark, not known before.)
 """
 
 from __future__ import annotations
