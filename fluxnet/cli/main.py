@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 import sys
 from collections.abc import Sequence
 from dataclasses import dataclass
@@ -81,6 +82,8 @@ def _guarded(name: str, words: list[str]) -> int:
     from fluxnet.cli.faults import report_fault
     from fluxnet.ground.errors import MisuseError
 
+    # The matrices of a network are small: starting numpy's threads takes longer than they save.
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
     try:
         module = import_module(f"fluxnet.cli.{_MODULES[name]}")
         parser = argparse.ArgumentParser(
