@@ -133,9 +133,7 @@ def _choose_runs(
     names = [run.name for run in table.runs]
     told = tuple(
         Diagnostic(
-            Name.PACKAGE_MISSING,
-        Name.UNKNOWN_RUN,
-        Name.UNKNOWN_SHEET,
+            Name.UNKNOWN_RUN,
             f"the table has no run {name}",
             Span(str(arguments.rates), 0),
             mend=f"its runs are {', '.join(names)}",
