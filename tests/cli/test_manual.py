@@ -11,6 +11,7 @@ import fluxnet
 from fluxnet.cli.main import Exit, run
 from fluxnet.cli.new import MODEL, RATES
 from fluxnet.ground.names import Name
+from fluxnet.tables.rates_table import read_rates_text
 
 MANUAL = Path(fluxnet.__file__).parent / "manual"
 TOPICS = sorted(path.stem for path in MANUAL.glob("*.md"))
@@ -49,8 +50,16 @@ def test_each_table_of_the_manual_closes(text: str, tmp_path: Path) -> None:
     assert run(["solve", str(model), str(table)]) == Exit.SOUND
 
 
+@pytest.mark.parametrize("text", blocks("table"))
+def test_each_other_table_of_the_manual_is_read_without_an_error(text: str) -> None:
+    reading = read_rates_text(text)
+
+    assert reading.table is not None, reading.diagnostics
+
+
 def test_the_manual_has_examples_of_both_kinds() -> None:
     assert blocks("flux")
+    assert blocks("table")
     assert len(blocks("rates")) >= 2
     assert RATES
 
