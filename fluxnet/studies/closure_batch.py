@@ -18,16 +18,23 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
 from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tails
+from fluxnet.studies.closure_errors import (
+    Errors,
+    Joint,
+    NoVarianceError,
+    along,
+    errors_of,
+    sd_of_rows,
+    sds_left,
+    whiten,
+)
 
 __all__ = ["ClosureArrays", "ClosureMatrices", "NoVarianceError", "close_many"]
 
 Array = NDArray[np.float64]
 SIGNIFICANCE = 0.05
-_NO_ERROR = 1e-13
-
-
-class NoVarianceError(MisuseError):
-    """A covariance gives a relation among rates no variance, though each rate has one."""
+_ROUNDING = 1e-12
+"""What is left of a value below this part of it is rounding."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -37,7 +44,8 @@ class ClosureMatrices:
     ``redundancy`` (dof x values) is R; ``calculated`` (unmeasured x values) gives unmeasured
     rates; ``contents`` (balances x values) holds what one unit of each value releases of each
     balance that is shown, negative for uptake. ``inward`` (values that are uptakes),
-    ``balanceable`` and ``exact`` are one a value.
+    ``balanceable`` and ``exact`` are one a value. ``over`` and ``below`` (ratios x values) are
+    numerators and denominators of ratios to be told.
     """
 
     redundancy: Array
@@ -46,10 +54,14 @@ class ClosureMatrices:
     inward: NDArray[np.bool_]
     balanceable: NDArray[np.bool_]
     exact: NDArray[np.bool_]
+    over: Array | None = None
+    below: Array | None = None
 
     def __post_init__(self) -> None:
         width = len(self.exact)
-        for name in ("redundancy", "calculated", "contents"):
+        for name in ("redundancy", "calculated", "contents", "over", "below"):
+            if getattr(self, name) is None:
+                object.__setattr__(self, name, np.zeros((0, width)))
             array = getattr(self, name)
             if array.ndim != 2 or array.shape[1] != width or not np.isfinite(array).all():
                 raise MisuseError(f"{name} must be finite, with {width} columns")
@@ -62,9 +74,10 @@ class ClosureArrays:
 
     ``h``, ``p``, ``closes``, ``residual`` are one a run; ``reconciled``, ``reconciled_sd`` and
     ``z`` (measured less reconciled, over its sd) runs x values; ``calculated`` and its sd runs
-    x unmeasured; ``taken``, ``released``, ``gap``, ``gap_sd``, ``recovery`` (a fraction) and
-    ``recovery_sd`` runs x balances. NaN stands where a number is not defined: h without
-    redundancy, z of a value that no balance tests, recovery where nothing is taken up.
+    x unmeasured; ``ratio``, its sd and ``denominator`` runs x ratios; ``taken``, ``released``,
+    ``gap``, ``gap_sd``, ``recovery`` (a fraction) and ``recovery_sd`` runs x balances. NaN
+    stands where a number is not defined: h without redundancy, z of a value that no balance
+    tests, a ratio to nothing, recovery where nothing is taken up.
     ``residual`` is the largest |R y^| over the sum of its terms' magnitudes.
     """
 
@@ -78,6 +91,9 @@ class ClosureArrays:
     z: Array
     calculated: Array
     calculated_sd: Array
+    ratio: Array
+    ratio_sd: Array
+    denominator: Array
     taken: Array
     released: Array
     gap: Array
@@ -124,20 +140,22 @@ def close_many(
     ([6.5], [[9.7, 19.4, 19.4]])
     """
     y = np.asarray(values, dtype=np.float64)
-    errors = _errors(sds, covariances)
+    errors = errors_of(sds, covariances)
     _check(matrices, y, errors)
     R, W = matrices.redundancy, matrices.calculated
-    Z, f = _whiten(R, _along(R, y), errors)
+    Z, f = whiten(R, along(R, y), errors)
     h = np.square(f).sum(axis=0)
     correction = np.einsum("rn,rnp->np", f, Z)
     reduction = np.einsum("rnp,rnp->np", Z, Z)
-    reconciled = y - correction
-    left = np.where(matrices.exact, 0.0, np.maximum(errors.variances - reduction, 0.0))
+    reconciled = _settled(R, y, y - correction, errors)
     tested = matrices.balanceable & ~matrices.exact
     with np.errstate(divide="ignore", invalid="ignore"):
         z = np.where(tested, correction / np.sqrt(reduction), np.nan)
-    terms = _along(np.abs(R), np.abs(reconciled))
-    off = np.abs(_along(R, reconciled)) / np.where(terms > 0, terms, 1.0)
+    terms = along(np.abs(R), np.abs(reconciled))
+    off = np.abs(along(R, reconciled)) / np.where(terms > 0, terms, 1.0)
+    calculated = along(W, reconciled)
+    if len(W):
+        calculated[np.abs(calculated) <= _ROUNDING * along(np.abs(W), np.abs(y))] = 0.0
     dof = len(R)
     limit = chi_squared_quantile(1 - SIGNIFICANCE, dof) if dof else np.nan
     undefined = np.full(len(y), np.nan)
@@ -148,119 +166,65 @@ def close_many(
         p=chi_squared_tails(h, dof) if dof else undefined,
         closes=h <= limit if dof else np.full(len(y), False),
         reconciled=reconciled,
-        reconciled_sd=np.sqrt(left),
+        reconciled_sd=np.where(matrices.exact, 0.0, sds_left(errors.variances, reduction)),
         z=z,
-        calculated=_along(W, reconciled),
-        calculated_sd=_sd_of_rows(W, Z, errors),
+        calculated=calculated,
+        calculated_sd=sd_of_rows(W, Z, errors),
         residual=off.max(axis=1) if dof else np.zeros(len(y)),
+        **_ratios(matrices, reconciled, Z, errors),
         **_balances(matrices, y, errors),
     )
 
 
-@dataclass(frozen=True, slots=True)
-class _Independent:
-    """Errors that know nothing of one another: sds, runs x values."""
+def _settled(R: Array, y: Array, reconciled: Array, errors: Errors) -> Array:
+    """Reconciled values without rounding: corrected again where sds differ much in size.
 
-    variances: Array
-
-    def times(self, rows: Array) -> Array:
-        """Rows times the covariance: rows x runs x values."""
-        return np.asarray(rows[:, None, :] * self.variances)
-
-    def between(self, left: Array, right: Array) -> Array:
-        """The covariance of row i of one matrix with row i of another: runs x rows."""
-        squares = left * right
-        if not squares.any():
-            return np.zeros((len(self.variances), len(left)))
-        return _along(squares, self.variances)
+    A value of which rounding is left is nothing.
+    """
+    gap = along(R, reconciled)
+    off = np.abs(gap) > _ROUNDING * along(np.abs(R), np.abs(y))
+    again = np.asarray(off.any(axis=1))
+    if again.any():
+        Z, f = whiten(R, gap[again], errors.some(again))
+        reconciled[again] -= np.einsum("rn,rnp->np", f, Z)
+    reconciled[np.abs(reconciled) <= _ROUNDING * np.abs(y)] = 0.0
+    return reconciled
 
 
-@dataclass(frozen=True, slots=True)
-class _Joint:
-    """Errors with a covariance: runs x values x values."""
-
-    matrix: Array
-
-    @property
-    def variances(self) -> Array:
-        return np.asarray(np.einsum("nii->ni", self.matrix))
-
-    def times(self, rows: Array) -> Array:
-        """Rows times the covariance: rows x runs x values."""
-        return np.asarray(np.moveaxis(rows @ self.matrix, 1, 0))
-
-    def between(self, left: Array, right: Array) -> Array:
-        """The covariance of row i of one matrix with row i of another: runs x rows."""
-        return np.asarray((self.times(left) * right[:, None, :]).sum(axis=2).T)
+def _ratios(
+    matrices: ClosureMatrices, reconciled: Array, Z: Array, errors: Errors
+) -> dict[str, Array]:
+    """Ratios A / B of reconciled values, their sds those of (A - ratio B) / B, and B."""
+    if matrices.over is None or matrices.below is None or not len(matrices.over):
+        none = np.zeros((len(reconciled), 0))
+        return {"ratio": none, "ratio_sd": none, "denominator": none}
+    below = along(matrices.below, reconciled)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        ratio = np.where(below != 0, along(matrices.over, reconciled) / below, np.nan)
+    rows = matrices.over - ratio[:, :, None] * matrices.below
+    taken_off = np.square(np.einsum("rnp,nkp->rnk", Z, rows)).sum(axis=0)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        sd = sds_left(errors.of_rows(rows), taken_off) / np.abs(below)
+    return {"ratio": ratio, "ratio_sd": sd, "denominator": below}
 
 
-_Errors = _Independent | _Joint
-
-
-def _errors(sds: Array | None, covariances: Array | None) -> _Errors:
-    if sds is not None and covariances is None:
-        if not (np.asarray(sds) >= 0).all():
-            raise MisuseError("a standard deviation is negative or no number")
-        return _Independent(np.square(np.asarray(sds, dtype=np.float64)))
-    if covariances is not None and sds is None:
-        return _Joint(np.asarray(covariances, dtype=np.float64))
-    raise MisuseError("give either sds or covariances")
-
-
-def _check(matrices: ClosureMatrices, y: Array, errors: _Errors) -> None:
+def _check(matrices: ClosureMatrices, y: Array, errors: Errors) -> None:
     width = len(matrices.exact)
     if y.ndim != 2 or y.shape[1] != width:
         raise MisuseError(f"values must be runs x {width}, not {y.shape}")
-    if isinstance(errors, _Joint) and errors.matrix.shape != (*y.shape, width):
+    if isinstance(errors, Joint) and errors.matrix.shape != (*y.shape, width):
         raise MisuseError(f"the covariances must have the shape {(*y.shape, width)}")
     variances = errors.variances
     if variances.shape != y.shape:
         raise MisuseError(f"the errors of {y.shape} values have the shape {variances.shape}")
-    given = errors.matrix if isinstance(errors, _Joint) else variances
+    given = errors.matrix if isinstance(errors, Joint) else variances
     if not (np.isfinite(y).all() and np.isfinite(given).all()):
         raise MisuseError("values and errors must be finite numbers")
     if not ((variances == 0) == matrices.exact).all():
         raise MisuseError("an sd is zero exactly where the balances take the value as exact")
 
 
-def _along(rows: Array, values: Array) -> Array:
-    """Rows times the values of each run: runs x rows.
-
-    Not ``values @ rows.T``: matrices this thin cost the library's threads more than they save.
-    """
-    return np.asarray(np.einsum("rp,np->nr", rows, values))
-
-
-def _whiten(R: Array, e: Array, errors: _Errors) -> tuple[Array, Array]:
-    """R V and R y divided by the Cholesky factor of P = R V R', for all runs at once.
-
-    Z (dof x runs x values) and f (dof x runs): h is the sum of f^2, the correction that of
-    f Z, the reduction of the variances that of Z^2, so neither can come out negative.
-    """
-    Z = errors.times(R)
-    f = np.ascontiguousarray(e.T)
-    for i in range(len(R)):
-        for k in range(i):
-            # Z[k] R[i] is the entry i, k of the factor: P_ik less what earlier rows took
-            factor = np.einsum("np,p->n", Z[k], R[i])
-            Z[i] -= factor[:, None] * Z[k]
-            f[i] -= factor * f[k]
-        pivot = np.einsum("np,p->n", Z[i], R[i])
-        if not (pivot > _NO_ERROR * (errors.between(R[i : i + 1], R[i : i + 1])[:, 0])).all():
-            raise NoVarianceError("the errors leave a relation that they should test without any")
-        root = np.sqrt(pivot)
-        Z[i] /= root[:, None]
-        f[i] /= root
-    return Z, f
-
-
-def _sd_of_rows(rows: Array, Z: Array, errors: _Errors) -> Array:
-    """The sd of rows over the reconciled values: runs x rows."""
-    taken_off = np.square(Z @ rows.T).sum(axis=0)
-    return np.asarray(np.sqrt(np.maximum(errors.between(rows, rows) - taken_off, 0.0)))
-
-
-def _balances(matrices: ClosureMatrices, y: Array, errors: _Errors) -> dict[str, Array]:
+def _balances(matrices: ClosureMatrices, y: Array, errors: Errors) -> dict[str, Array]:
     """What is taken up and released of each balance, the gap, the recovery, and their sds.
 
     Taken is what substrates bring; acceptors (which are taken up but hold less than nothing)
@@ -269,7 +233,7 @@ def _balances(matrices: ClosureMatrices, y: Array, errors: _Errors) -> dict[str,
     contents = matrices.contents
     up = np.where(matrices.inward, np.minimum(contents, 0.0), 0.0)
     out = contents - up
-    taken, released = _along(np.abs(up), y), _along(out, y)
+    taken, released = along(np.abs(up), y), along(out, y)
     above, below = errors.between(out, out), errors.between(up, up)
     across = errors.between(out, up)
     with np.errstate(divide="ignore", invalid="ignore"):

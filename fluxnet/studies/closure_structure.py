@@ -12,7 +12,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from fractions import Fraction
 
-from fluxnet.exact.linear import independent_rows, kernel, solve
+from fluxnet.exact.linear import echelon, kernel, solve
 
 __all__ = ["Redundancy", "find_redundancy"]
 
@@ -25,7 +25,8 @@ class Redundancy:
 
     ``rows`` are the independent relations R y = 0 that a value with an error takes part in,
     over all measured values; their number is the degrees of freedom. ``contradictions`` are
-    relations among exact values alone: they hold or the input contradicts itself.
+    relations among exact values alone: they hold or the input contradicts itself (none of
+    them can be made with fewer values).
     ``balanceable`` tells for each measured value whether any relation tests it.
     ``weights`` gives for each unmeasured value the w of x = w y, None where nothing fixes it.
     """
@@ -69,12 +70,16 @@ def find_redundancy(
     width = len(exact)
     unseen = kernel(_turned(unmeasured), len(measured)) if measured else ()
     relations = [_combine(weights, measured, width) for weights in unseen]
-    free = [[row[j] for j in range(width) if not exact[j]] for row in relations]
-    chosen = independent_rows(free, width - sum(exact))
-    alone = [_combine(weights, relations, width) for weights in kernel(_turned(free), len(free))]
+    # Values with an error first: a row of the echelon form that begins behind them holds exact
+    # values alone, and no relation made of such rows holds fewer of them.
+    order = sorted(range(width), key=lambda j: exact[j])
+    found = echelon([[row[j] for j in order] for row in relations], width)
+    place = {j: k for k, j in enumerate(order)}
+    rows = [tuple(row[place[j]] for j in range(width)) for row in found.rows]
+    tested = sum(pivot < width - sum(exact) for pivot in found.pivots)
     return Redundancy(
-        rows=tuple(relations[i] for i in chosen),
-        contradictions=tuple(row for row in alone if any(row)),
+        rows=tuple(rows[:tested]),
+        contradictions=tuple(rows[tested:]),
         balanceable=tuple(any(row[j] for row in relations) for j in range(width)),
         weights=_weights(measured, unmeasured, width),
     )

@@ -124,3 +124,47 @@ def test_bad_numbers_and_shapes_are_refused(fault: str) -> None:
 def test_a_matrix_with_nan_is_refused() -> None:
     with pytest.raises(MisuseError):
         matrices(np.full((1, 5), np.nan))
+
+
+def test_errors_of_very_different_size_leave_no_rounding_in_what_is_told() -> None:
+    """Two relations that are nearly parallel in sds: the answer is (0, 0) exactly."""
+    rows = np.array([[-6.0, -5], [-24, -18]])
+    both = ClosureMatrices(
+        rows, np.zeros((0, 2)), rows.copy(), np.full(2, True), np.full(2, True), np.full(2, False)
+    )
+    found = close_many(both, np.array([[1.0, 10]]), np.array([[1e-4, 2.0]]))
+    assert found.h[0] == pytest.approx(1e8 + 25, rel=1e-12)
+    assert np.abs(found.reconciled).max() <= 1e-10
+    assert found.reconciled_sd.tolist() == [[0, 0]]
+
+
+def test_a_rate_that_must_be_nothing_is_nothing() -> None:
+    alone = ClosureMatrices(
+        np.array([[-0.7]]), np.array([[0.3]]), np.array([[-0.7]]), np.array([True]),
+        np.array([True]), np.array([False]),
+    )  # fmt: skip
+    found = close_many(alone, np.array([[0.3], [2.1]]), np.array([[0.1], [0.7]]))
+    assert found.reconciled.tolist() == [[0], [0]]
+    assert found.calculated.tolist() == [[0], [0]]
+    assert found.h == pytest.approx([9, 9])
+
+
+def test_ratios_of_correlated_runs_have_the_sd_of_repeated_measurements() -> None:
+    """A / B of reconciled values against the scatter over 40,000 repeats."""
+    random = np.random.default_rng(11)
+    spread = np.array([[1.0, 0.6, 0, 0, 0], [0, 1, 0, 0, 0], [0, 0.5, 1, 0, 0],
+                       [0, 0, 0, 1, 0], [0, 0, 0, 0, 1]]) * 0.05  # fmt: skip
+    true = np.array([10.0, 15.0, 24.0, 4.0, 1.0])
+    true[0] = (12 * 15 + 4.2 * 4 + 8) / 24
+    true[2] = 6 * true[0] - 2 * 15 - 4 - 2
+    values = true + random.standard_normal((40_000, 5)) @ spread.T
+    plain = matrices()
+    told = ClosureMatrices(
+        plain.redundancy, plain.calculated, plain.contents, plain.inward, plain.balanceable,
+        plain.exact, over=np.array([[0.0, 0, 1, 0, 0]]), below=np.array([[0.0, 1, 0, 0, 0]]),
+    )  # fmt: skip
+    covariances = np.broadcast_to(spread @ spread.T, (40_000, 5, 5))
+    found = close_many(told, values, covariances=covariances)
+    assert found.ratio.mean() == pytest.approx(true[2] / true[1], rel=1e-4)
+    assert found.ratio_sd.mean() == pytest.approx(found.ratio.std(), rel=0.02)
+    assert found.denominator[0, 0] == found.reconciled[0, 1]
