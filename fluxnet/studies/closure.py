@@ -3,49 +3,21 @@
 from __future__ import annotations
 
 from collections.abc import Collection, Sequence
-from dataclasses import dataclass
-
-import numpy as np
-from numpy.typing import NDArray
 
 from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.names import Name
 from fluxnet.network.model import Network
-from fluxnet.rates.covariance import covariance_at, run_covariance
 from fluxnet.rates.measured import RatesTable, Run
-from fluxnet.studies.closure_batch import ClosureArrays, NoVarianceError, close_many
+from fluxnet.studies.closure_batch import NoVarianceError
+from fluxnet.studies.closure_collect import collect_rows
 from fluxnet.studies.closure_make import make_closure
+from fluxnet.studies.closure_passes import PreparedRun, close_prepared, prepare_run
 from fluxnet.studies.closure_plan import ClosurePlan, plan_closure
 from fluxnet.studies.closure_result import Closure, RunClosure
-from fluxnet.studies.closure_rows import ClosureRows, collect_rows
-from fluxnet.studies.closure_world import NitrogenSource, find_source, identity
+from fluxnet.studies.closure_without import leave_rates_out
+from fluxnet.studies.closure_world import NitrogenSource, find_source
 
 __all__ = ["close_rates"]
-
-Array = NDArray[np.float64]
-
-
-@dataclass(frozen=True, slots=True)
-class _Prepared:
-    """A run with its rows, values and covariance over the measured rows."""
-
-    run: Run
-    rows: ClosureRows
-    values: Array
-    covariance: Array
-
-    @property
-    def exact(self) -> tuple[bool, ...]:
-        return tuple(bool(v == 0) for v in np.diag(self.covariance))
-
-    @property
-    def is_independent(self) -> bool:
-        return not np.any(self.covariance - np.diag(np.diag(self.covariance)))
-
-    @property
-    def signature(self) -> tuple[object, ...]:
-        """What runs of one batch have in common."""
-        return self.rows, self.exact, self.run.unit, self.is_independent
 
 
 def close_rates(
@@ -71,7 +43,8 @@ def close_rates(
     nitrogen
         The nitrogen source; None: the one that the table names, else ammonia.
     without
-        Species (or ``mu``) whose measured values are left aside, as if not measured.
+        Species, ``mu`` or ratios whose rows are left out, as if they were not in the table: what
+        has no row left counts as not exchanged. A species takes its ratios with it.
     runs
         Names of the runs to close; None: all.
 
@@ -90,12 +63,13 @@ def close_rates(
     faults: list[Diagnostic] = []
     source = _source(nitrogen or table.nitrogen or "ammonia", table, network, faults)
     chosen = _chosen(table, runs, faults)
-    faults.extend(_unknown_names(table, chosen, without))
+    kept, unknown = leave_rates_out(table, chosen, without, network)
+    faults.extend(unknown)
     if source is None or faults:
         return Closure((), in_order(faults))
-    prepared: list[_Prepared] = []
-    for run in chosen:
-        one = _prepare(run, collect_rows(run, table, network, without))
+    prepared: list[PreparedRun] = []
+    for run, aside in kept:
+        one = prepare_run(run, collect_rows(run, table, network, aside))
         if not len(one.values):
             faults.append(Diagnostic(
                 Name.NO_MEASURED_RATE, f"run {run.name} holds no measured rate to close", run.span
@@ -114,19 +88,7 @@ def close_rates(
     return Closure(tuple(closed[i] for i in sorted(closed)), in_order(faults))
 
 
-def _prepare(run: Run, rows: ClosureRows) -> _Prepared:
-    values = np.array([float(run.measured[r.place or 0].value or 0.0) for r in rows.measured])
-    return _Prepared(run, rows, values, _covariance(rows, values, run_covariance(run)))
-
-
-def _covariance(rows: ClosureRows, values: Array, whole: Array) -> Array:
-    """The covariance of the rows used, with what an uncertain ash content adds."""
-    places = [r.place or 0 for r in rows.measured]
-    spread = np.array([r.spread for r in rows.measured]) * values
-    return np.asarray(whole[np.ix_(places, places)] + np.outer(spread, spread))
-
-
-def _batches(prepared: Sequence[_Prepared]) -> list[list[int]]:
+def _batches(prepared: Sequence[PreparedRun]) -> list[list[int]]:
     """Indices of the runs that one batch can close together."""
     batches: dict[tuple[object, ...], list[int]] = {}
     for i, one in enumerate(prepared):
@@ -134,50 +96,16 @@ def _batches(prepared: Sequence[_Prepared]) -> list[list[int]]:
     return list(batches.values())
 
 
-def _close_batch(plan: ClosurePlan, batch: list[_Prepared]) -> list[RunClosure | Diagnostic]:
+def _close_batch(plan: ClosurePlan, batch: list[PreparedRun]) -> list[RunClosure | Diagnostic]:
     """Close runs with the same rows; where one of them cannot be, each by itself."""
     try:
-        covariances = np.array([one.covariance for one in batch])
-        arrays = _close(plan, batch, covariances)
-        if any(_is_relative(one.run) for one in batch):
-            covariances = np.array(
-                [_at_reconciled(one, arrays.reconciled[i]) for i, one in enumerate(batch)]
-            )
-            arrays = _close(plan, batch, covariances)
+        arrays, sds = close_prepared(plan, batch)
     except NoVarianceError as fault:
         if len(batch) > 1:
             return [answer for one in batch for answer in _close_batch(plan, [one])]
         run = batch[0].run
         return [Diagnostic(Name.BAD_COVARIANCE, f"run {run.name}: {fault}", run.span)]
-    sds = np.sqrt(np.einsum("nii->ni", covariances))
-    return [
-        make_closure(plan, one.run, one.rows, one.values, sds[i], arrays, i)
-        for i, one in enumerate(batch)
-    ]
-
-
-def _close(plan: ClosurePlan, batch: Sequence[_Prepared], covariances: Array) -> ClosureArrays:
-    values = np.array([one.values for one in batch])
-    if batch[0].is_independent:
-        return close_many(plan.matrices, values, np.sqrt(np.einsum("nii->ni", covariances)))
-    return close_many(plan.matrices, values, covariances=covariances)
-
-
-def _is_relative(run: Run) -> bool:
-    return bool(run.shared_error) or any(r.relative is not None for r in run.measured)
-
-
-def _at_reconciled(one: _Prepared, reconciled: Array) -> Array:
-    """The covariance with relative errors taken of the reconciled values.
-
-    A variance that would vanish with its value is kept: only a typed 0 is exact.
-    """
-    values = np.array([float(r.value or 0.0) for r in one.run.measured])
-    for row, value in zip(one.rows.measured, reconciled, strict=True):
-        values[row.place or 0] = value
-    moved = _covariance(one.rows, reconciled, covariance_at(one.run, values))
-    vanished = np.diag(moved) <= 1e-12 * np.diag(one.covariance)
-    return one.covariance if (vanished & (np.diag(one.covariance) > 0)).any() else moved
+    return [make_closure(plan, one, sds[i], arrays, i) for i, one in enumerate(batch)]
 
 
 def _source(
@@ -206,23 +134,3 @@ def _chosen(
                 mend=f"its runs are {', '.join(names)}",
             ))  # fmt: skip
     return tuple(run for run in table.runs if runs is None or run.name in runs)
-
-
-def _unknown_names(
-    table: RatesTable, runs: Sequence[Run], without: Collection[str]
-) -> list[Diagnostic]:
-    """A fault for each name to be left aside that no run has."""
-    known = {
-        identity(q.name) if q.name else str(q)
-        for run in runs
-        for q in (rate.quantity for rate in run.rates)
-    }
-    known |= {identity(s.name, s.entry) for s in table.species}
-    return [
-        Diagnostic(
-            Name.UNKNOWN_QUANTITY, f"no run has a rate of {name} to leave aside",
-            mend=f"rates are given of {', '.join(sorted(known))}",
-        )
-        for name in without
-        if identity(name) not in known and name not in known
-    ]  # fmt: skip

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from fractions import Fraction
-from math import isnan
+from math import isfinite, isnan
 
 import numpy as np
 from numpy.typing import NDArray
@@ -12,8 +12,8 @@ from numpy.typing import NDArray
 from fluxnet.chemistry.formula import degree_of_reduction
 from fluxnet.network.model import Direction, Species
 from fluxnet.rates.kinds import RateKind
-from fluxnet.rates.measured import Run
 from fluxnet.studies.closure_batch import ClosureArrays
+from fluxnet.studies.closure_passes import PreparedRun
 from fluxnet.studies.closure_plan import ClosurePlan
 from fluxnet.studies.closure_result import Balance, ClosedRate, ClosureTest, RunClosure
 from fluxnet.studies.closure_rows import ClosureRow, ClosureRows
@@ -26,15 +26,10 @@ _SLACK = 1e-9
 
 
 def make_closure(
-    plan: ClosurePlan,
-    run: Run,
-    rows: ClosureRows,
-    values: Array,
-    sds: Array,
-    arrays: ClosureArrays,
-    place: int,
+    plan: ClosurePlan, one: PreparedRun, sds: Array, arrays: ClosureArrays, place: int
 ) -> RunClosure:
-    """The closure of run ``place`` of a batch."""
+    """The closure of run ``place`` of a batch; ``sds`` are those that it was closed with."""
+    run, rows, values = one.run, one.rows, one.values
     contradictions = _contradictions(plan, values)
     test = _test(arrays, place, contradicts=bool(contradictions))
     balances = tuple(_balance(plan, arrays, place, k) for k in range(len(plan.balances)))
@@ -45,7 +40,7 @@ def make_closure(
         or_index=_or_index(rows, values),
         test=test,
         world=plan.world,
-        rates=_rates(plan, values, sds, arrays, place),
+        rates=_rates(plan, one, sds, arrays, place),
         reference=plan.reference,
         words=verdict(balances, test, contradictions),
         contradictions=contradictions,
@@ -89,18 +84,18 @@ def _per_cent(fraction: float) -> float | None:
 
 
 def _rates(
-    plan: ClosurePlan, values: Array, sds: Array, arrays: ClosureArrays, place: int
+    plan: ClosurePlan, one: PreparedRun, sds: Array, arrays: ClosureArrays, place: int
 ) -> tuple[ClosedRate, ...]:
     """All rates with a row, in the order of the table."""
     found: list[tuple[int, ClosedRate]] = []
+    ratios = {ratio.row for ratio in plan.ratios}
     for j, row in enumerate(plan.measured):
-        z = float(arrays.z[place, j])
-        tested = plan.redundancy.balanceable[j]
+        if j in ratios:
+            continue
         found.append((row.order, ClosedRate(
-            row.name, row.direction, row.unit, float(values[j]), float(sds[j]),
+            row.name, row.direction, row.unit, float(one.given[j]), float(sds[j]),
             float(arrays.reconciled[place, j]), float(arrays.reconciled_sd[place, j]),
-            None if isnan(z) else z,
-            RateKind.BALANCEABLE if tested else RateKind.NOT_BALANCEABLE,
+            _number(arrays.z[place, j]), _kind(plan, j),
         )))  # fmt: skip
     for j, (row, weights) in enumerate(
         zip(plan.unmeasured, plan.redundancy.weights, strict=True)
@@ -113,7 +108,40 @@ def _rates(
             None,
             RateKind.CALCULABLE if fixed else RateKind.NOT_CALCULABLE,
         )))  # fmt: skip
+    for k, ratio in enumerate(plan.ratios):
+        found.append((ratio.order, _ratio(plan, k, one, sds, arrays, place)))
     return tuple(rate for _, rate in sorted(found, key=lambda pair: pair[0]))
+
+
+def _ratio(
+    plan: ClosurePlan, k: int, one: PreparedRun, sds: Array, arrays: ClosureArrays, place: int
+) -> ClosedRate:
+    """A ratio: that of the reconciled rates where both are known, else as it was measured."""
+    ratio = plan.ratios[k]
+    value = _number(arrays.ratio[place, k]) if plan.known[k] else None
+    sd = _number(arrays.ratio_sd[place, k]) if value is not None else None
+    if ratio.row is None:
+        kind = RateKind.CALCULABLE if plan.known[k] else RateKind.NOT_CALCULABLE
+        return ClosedRate(ratio.name, None, ratio.unit, None, None, value, sd, None, kind)
+    measured, own_sd = float(one.given[ratio.row]), float(sds[ratio.row])
+    z = _number(arrays.z[place, ratio.row])
+    if z is not None and arrays.denominator[place, k] < 0:
+        z = -z  # what is left of A - r B has the sign of B
+    if value is None:
+        value, sd = measured, own_sd
+    return ClosedRate(
+        ratio.name, None, ratio.unit, measured, own_sd, value, 0.0 if own_sd == 0 else sd, z,
+        _kind(plan, ratio.row),
+    )  # fmt: skip
+
+
+def _kind(plan: ClosurePlan, j: int) -> RateKind:
+    tested = plan.redundancy.balanceable[j]
+    return RateKind.BALANCEABLE if tested else RateKind.NOT_BALANCEABLE
+
+
+def _number(value: float) -> float | None:
+    return float(value) if isfinite(value) else None
 
 
 def _contradictions(plan: ClosurePlan, values: Array) -> tuple[tuple[str, ...], ...]:
@@ -135,7 +163,7 @@ def _contradictions(plan: ClosurePlan, values: Array) -> tuple[tuple[str, ...], 
 def _not_used(name: str) -> str:
     if name == "mu":
         return "mu is not used: in this unit, or without a biomass, it is no rate of a species"
-    return f"{name} is not used: a closure balances rates of species only"
+    return f"{name} is not used: a closure knows rates and ratios of two rates, and no reactions"
 
 
 def _shown(row: ClosureRow) -> str:

@@ -9,7 +9,7 @@ from fractions import Fraction
 import numpy as np
 from numpy.typing import NDArray
 
-from fluxnet.chemistry.formula import degree_of_reduction
+from fluxnet.chemistry.formula import Formula, degree_of_reduction
 from fluxnet.network.contents import (
     CHARGE,
     ELECTRONS,
@@ -21,7 +21,13 @@ from fluxnet.network.contents import (
 from fluxnet.network.model import Direction, Network
 from fluxnet.studies.closure_batch import ClosureMatrices
 from fluxnet.studies.closure_result import World
-from fluxnet.studies.closure_rows import ClosureRow, ClosureRows, balance_unit
+from fluxnet.studies.closure_rows import (
+    ClosureRow,
+    ClosureRows,
+    RatioRow,
+    Weights,
+    balance_unit,
+)
 from fluxnet.studies.closure_structure import Redundancy, find_redundancy
 from fluxnet.studies.closure_world import NitrogenSource, describe_world, free_formulas
 
@@ -46,10 +52,13 @@ class ClosurePlan:
     """The exact structure of a closure and the matrices made of it.
 
     Values are in the order of ``measured``, calculated ones in that of ``unmeasured``.
+    ``known`` tells for each ratio whether both its rates are measured or calculable.
     """
 
     measured: tuple[ClosureRow, ...]
     unmeasured: tuple[ClosureRow, ...]
+    ratios: tuple[RatioRow, ...]
+    known: tuple[bool, ...]
     balances: tuple[PlannedBalance, ...]
     redundancy: Redundancy
     matrices: ClosureMatrices
@@ -70,7 +79,7 @@ def plan_closure(
     Parameters
     ----------
     rows
-        The rows of a run; see :func:`fluxnet.studies.closure_rows.collect_rows`.
+        The rows of a run; see :func:`fluxnet.studies.closure_collect.collect_rows`.
     exact
         For each measured row whether its value is exact.
     unit
@@ -80,8 +89,8 @@ def plan_closure(
     """
     species = rows.species
     free = free_formulas(species, source)
-    contents = [_content(s.formula and content_of_formula(s.formula)) for s in species]
-    free_contents = [_content(content_of_formula(f)) for f in free.values()]
+    contents = [_content(s.formula) for s in species]
+    free_contents = [_content(f) for f in free.values()]
     unseen = sorted({e for c in contents for e in c.without_reference})
     amounts = _amounts(contents + free_contents, counts_electrons=not unseen)
     shift, reference = _reference(source, source.name in free)
@@ -105,6 +114,8 @@ def plan_closure(
         [*measured_rows, *tied_measured], [*unmeasured_rows, *tied_unmeasured], exact
     )
     width = len(rows.measured)
+    over = [_by_measured(ratio.over, redundancy.weights) for ratio in rows.ratios]
+    below = [_by_measured(ratio.below, redundancy.weights) for ratio in rows.ratios]
     matrices = ClosureMatrices(
         redundancy=_floats(redundancy.rows, width, scaled=True),
         calculated=_floats([w or (Fraction(0),) * width for w in redundancy.weights], width),
@@ -112,6 +123,8 @@ def plan_closure(
         inward=np.array([row.direction is Direction.IN for row in rows.measured], dtype=np.bool_),
         balanceable=np.array(redundancy.balanceable, dtype=np.bool_),
         exact=np.array(exact, dtype=np.bool_),
+        over=_floats([row or (Fraction(0),) * width for row in over], width),
+        below=_floats([row or (Fraction(0),) * width for row in below], width),
     )
     balances = tuple(
         PlannedBalance(
@@ -133,13 +146,28 @@ def plan_closure(
             f"{source.name} brings carbon with its nitrogen: the carbon balance is made without it"
         )
     return ClosurePlan(
-        rows.measured, rows.unmeasured, balances, redundancy, matrices,
-        describe_world(species, free, network), reference, tuple(notes),
+        rows.measured, rows.unmeasured, rows.ratios,
+        tuple(a is not None and b is not None for a, b in zip(over, below, strict=True)),
+        balances, redundancy, matrices,
+        describe_world(species, free, source, network, rows.aside), reference, tuple(notes),
     )  # fmt: skip
 
 
-def _content(content: Content | None) -> Content:
-    return content if content is not None else Content({}, {})
+def _by_measured(
+    weights: Weights, unmeasured: Sequence[tuple[Fraction, ...] | None]
+) -> tuple[Fraction, ...] | None:
+    """A sum over the rows as one over measured values; None where these do not fix it."""
+    total = list(weights.measured)
+    for weight, known in zip(weights.unmeasured, unmeasured, strict=True):
+        if weight and known is None:
+            return None
+        if weight and known is not None:
+            total = [t + weight * k for t, k in zip(total, known, strict=True)]
+    return tuple(total)
+
+
+def _content(formula: Formula | None) -> Content:
+    return Content({}, {}) if formula is None else content_of_formula(formula)
 
 
 def _amounts(contents: Sequence[Content], *, counts_electrons: bool) -> list[str]:

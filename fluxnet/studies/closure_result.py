@@ -15,12 +15,14 @@ __all__ = ["Balance", "ClosedRate", "Closure", "ClosureTest", "RunClosure", "Wor
 class World:
     """What is taken to be exchanged beside the species that have a row.
 
-    ``free`` are exchanged in any amount; ``not_exchanged`` are those of O2, CO2, H2 and of the
-    model's products that are taken not to be exchanged at all, because they have no row.
+    ``free`` are exchanged in any amount; ``not_exchanged`` are those of O2, CO2, H2, of the
+    model's products and of the rows left out on request that are taken not to be exchanged at
+    all, because they have no row. ``nitrogen`` is the nitrogen source, free or with a row.
     """
 
     free: tuple[str, ...]
     not_exchanged: tuple[str, ...]
+    nitrogen: str = "ammonia"
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,9 +66,10 @@ class ClosureTest:
 
 @dataclass(frozen=True, slots=True)
 class ClosedRate:
-    """One rate with a row: as measured, and as the balances would have it.
+    """One rate with a row, or a ratio of two: as measured, and as the balances would have it.
 
-    A magnitude in ``direction`` (None for mu), in ``unit``; below zero it is reversed.
+    ``species`` is the species, ``mu`` or the ratio. A magnitude in ``direction`` (None for mu
+    and ratios), in ``unit``; below zero it is reversed.
     ``measured`` and ``sd`` are None where it was not measured; ``sd`` is the one that was
     used, a relative sd being taken of the reconciled value. ``reconciled`` and its sd are None
     where nothing determines the rate. ``z`` is measured less reconciled over its sd, None

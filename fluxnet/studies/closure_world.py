@@ -72,7 +72,11 @@ def free_formulas(rows: Iterable[Species], source: NitrogenSource) -> dict[str, 
 
 
 def describe_world(
-    rows: Sequence[Species], free: Iterable[str], network: Network | None
+    rows: Sequence[Species],
+    free: Iterable[str],
+    source: NitrogenSource,
+    network: Network | None,
+    aside: Iterable[str] = (),
 ) -> World:
     """The world in words: what is free, and what is taken not to be exchanged.
 
@@ -82,20 +86,24 @@ def describe_world(
         The species with a row; a biomass counts as one where mu has a row.
     free
         The free species.
+    aside
+        Species whose rows were left out on request.
     """
     free = tuple(free)
     taken = {identity(s.name, s.entry) for s in rows}
-    left: dict[str, None] = {}
-    for name, shown in _GASES.items():
-        if name not in taken:
-            own = (s.name for s in (network.boundary if network else ()) if is_same(s, name))
-            left[next(own, shown)] = None
+    own = {identity(s.name, s.entry): s.name for s in (network.boundary if network else ())}
+    left = {name: own.get(name, shown) for name, shown in _GASES.items()}
     for species in network.boundary if network else ():
-        told = identity(species.name, species.entry)
-        is_free = any(is_same(species, name) for name in free)
-        if species.role is not Role.SUBSTRATE and told not in taken and not is_free:
-            left[species.name] = None
-    return World(tuple(_SHOWN.get(name, name) for name in free), tuple(left))
+        if species.role is not Role.SUBSTRATE:
+            left.setdefault(identity(species.name, species.entry), species.name)
+    for name in aside:
+        left.setdefault(identity(name), name)
+    apart = taken | {source.entry if name == source.name else identity(name) for name in free}
+    return World(
+        free=tuple(_SHOWN.get(name, name) for name in free),
+        not_exchanged=tuple(shown for name, shown in left.items() if name not in apart),
+        nitrogen=source.name,
+    )
 
 
 def _formula(name: str) -> Formula:

@@ -7,7 +7,7 @@ from dataclasses import dataclass, field, replace
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Span
-from fluxnet.network.model import Network, QuantityKind, Role, Species
+from fluxnet.network.model import Network, Quantity, QuantityKind, Role, Species
 from fluxnet.rates.measured import RatesTable
 from fluxnet.tables.biomass_numbers import read_biomass_numbers
 from fluxnet.tables.correlations import Correlations
@@ -164,15 +164,23 @@ def _biomass(readings: Readings, vocabulary: Vocabulary) -> tuple[Species | None
 
 
 def _needs_biomass(reading: Reading) -> bool:
-    if reading.quantity.kind is QuantityKind.MU:
+    if _holds_growth(reading.quantity):
         return True
     return any(s.role is Role.BIOMASS for s in reading.species)
+
+
+def _holds_growth(quantity: Quantity | None) -> bool:
+    """Whether it is the growth rate, or a ratio that holds it."""
+    if quantity is None:
+        return False
+    parts = (quantity.numerator, quantity.denominator)
+    return quantity.kind is QuantityKind.MU or any(_holds_growth(part) for part in parts)
 
 
 def _species(readings: Readings, biomass: Species | None) -> tuple[Species, ...]:
     """The species that the rates name, and the biomass where there is a growth rate."""
     species = list(readings.species)
-    grows = any(r.quantity.kind is QuantityKind.MU for r in readings.readings)
+    grows = any(_holds_growth(r.quantity) for r in readings.readings)
     if grows and biomass is not None and all(s.name != biomass.name for s in species):
         species.append(biomass)
     return tuple(species)

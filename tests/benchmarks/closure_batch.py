@@ -15,8 +15,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.studies.closure_batch import ClosureArrays, ClosureMatrices, close_many
+from fluxnet.studies.closure_collect import collect_rows
 from fluxnet.studies.closure_plan import plan_closure
-from fluxnet.studies.closure_rows import collect_rows
 from fluxnet.studies.closure_world import NitrogenSource, find_source
 from fluxnet.tables.rates_table import read_rates_text
 
@@ -40,7 +40,7 @@ def make_matrices() -> ClosureMatrices:
     assert table is not None
     source = find_source("ammonia", table, None)
     assert isinstance(source, NitrogenSource)
-    collected = collect_rows(table.runs[0], table, None, ())
+    collected = collect_rows(table.runs[0], table, None)
     return plan_closure(collected, [False] * len(MEASURED), "mmol/g/h", source).matrices
 
 
