@@ -174,7 +174,7 @@ def read_model_text(text: str, *, file: str = "model.flux", folder: Path | None 
     --------
     >>> from fluxnet.cli.new import MODEL
     >>> read_model_text(MODEL).S.shape
-    (8, 6)
+    (9, 6)
     """
     from fluxnet.reading.model import read_model_text as read
 
@@ -240,8 +240,8 @@ def solve(model: Model, rates: Rates | None = None, **options: Any) -> Answer[So
     >>> from fluxnet.cli.new import MODEL
     >>> best = solve(read_model_text(MODEL + "limit glucose <= 1\n"),
     ...              maximise="ethanol")
-    >>> round(best.runs[0].optimum, 6)
-    2.0
+    >>> best.runs[0].optimum < 2  # the ATP beyond the upkeep must go into growth
+    True
     """
     from fluxnet.presenting.solve_record import solve_record
     from fluxnet.presenting.solve_screen import solve_screen
