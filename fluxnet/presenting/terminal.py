@@ -12,6 +12,7 @@ from fluxnet.ground.names import Severity
 from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.presenting.numbers import format_measured, format_number
 from fluxnet.presenting.screen import Block, Heading, Mood, Sentence
+from fluxnet.presenting.table_lines import cell_width, lay_out
 
 if TYPE_CHECKING:
     from rich.console import Console
@@ -126,23 +127,51 @@ class Terminal:
             for part in wrap(self._plain(line), width, break_on_hyphens=False) or [""]:
                 console.print(Text(part, style=style if self.colour else ""), soft_wrap=True)
 
-    def _print_whole(self, console: Console, line: str) -> None:
-        """A line that must not be broken, because the next points into it."""
+    def _print_whole(self, console: Console, line: str, style: str = "") -> None:
+        """A line that must not be broken, because the next belongs below it."""
         from rich.text import Text
 
-        console.print(Text(self._plain(line)), soft_wrap=True)
+        console.print(Text(self._plain(line), style if self.colour else ""), soft_wrap=True)
 
     def _plain(self, text: str) -> str:
         return text.translate(_ASCII) if self.ascii_only else text
 
     def _show_table(self, console: Console, table: Table) -> None:
+        console.print()
+        if table.title:
+            self._print(console, table.title, "bold")
+        columns, cells = table_cells(table)
+        titles = [self._plain(f"{c.title} [{c.unit}]" if c.unit else c.title) for c in columns]
+        rows = [[self._plain(cell) for cell in row] for row in cells]
+        laid = lay_out(
+            titles,
+            rows,
+            [column.align is Align.RIGHT for column in columns],
+            [column.wrap for column in columns],
+            console.width,
+            self._plain("─"),
+        )
+        if laid is None:
+            self._show_grid(console, columns, titles, rows)
+        else:
+            head, rule, lines = laid
+            self._print_whole(console, head, "bold")
+            print(rule, *lines, sep="\n", file=self.stream)
+        for note in table.notes:
+            self._print(console, "  " + note, "dim")
+
+    def _show_grid(
+        self,
+        console: Console,
+        columns: tuple[Column, ...],
+        titles: list[str],
+        rows: list[list[str]],
+    ) -> None:
+        """A table with texts that must be broken; for others this takes ten times as long."""
         from rich import box
         from rich.table import Table as Grid
         from rich.text import Text
 
-        console.print()
-        if table.title:
-            self._print(console, table.title, "bold")
         grid = Grid(
             box=box.Box(_ASCII_RULE, ascii=True) if self.ascii_only else box.SIMPLE_HEAD,
             pad_edge=False,
@@ -150,24 +179,20 @@ class Terminal:
             collapse_padding=True,
             header_style="bold" if self.colour else "",
         )
-        columns, rows = table_cells(table)
-        for column in columns:
-            title = f"{column.title} [{column.unit}]" if column.unit else column.title
+        for column, title in zip(columns, titles, strict=True):
             grid.add_column(
-                self._plain(title),
+                title,
                 justify="right" if column.align is Align.RIGHT else "left",
                 overflow="fold",
                 max_width=column.wrap,
             )
         for row in rows:
-            grid.add_row(*(Text(self._plain(cell)) for cell in row))
+            grid.add_row(*(Text(cell) for cell in row))
         with console.capture() as capture:
             console.print(grid)
         # rich fills every line to the table's width; a pipe has no use for that.
         lines = (line.rstrip() for line in capture.get().split("\n"))
         print("\n".join(lines), file=self.stream, end="")
-        for note in table.notes:
-            self._print(console, "  " + note, "dim")
 
 
 def _verdicts(screen: tuple[Block, ...]) -> tuple[Block, ...]:
@@ -236,7 +261,7 @@ def diagnostic_lines(diagnostic: Diagnostic) -> tuple[str, ...]:
         before = source[cut : span.column - 1]
         width = max(1, span.end_column - span.column)
         lines.append("    " + source[cut:].expandtabs(4))
-        lines.append("    " + " " * _width(before.expandtabs(4)) + "‾" * width)
+        lines.append("    " + " " * cell_width(before.expandtabs(4)) + "‾" * width)
     if diagnostic.because:
         lines.append(f"    because  {diagnostic.because}")
     if diagnostic.mend:
@@ -246,15 +271,6 @@ def diagnostic_lines(diagnostic: Diagnostic) -> tuple[str, ...]:
     if diagnostic.accepted is not None:
         lines.append(f"    accepted {diagnostic.accepted}")
     return tuple(lines)
-
-
-def _width(text: str) -> int:
-    """The number of terminal cells that a text takes."""
-    from unicodedata import combining, east_asian_width
-
-    return sum(
-        0 if combining(letter) else 2 if east_asian_width(letter) in "WF" else 1 for letter in text
-    )
 
 
 def _pipe_width() -> int:
