@@ -7,7 +7,7 @@ from numpy.typing import NDArray
 
 from fluxnet.solving.problem import Problem
 
-__all__ = ["find_scales"]
+__all__ = ["find_scales", "median_of"]
 
 Vector = NDArray[np.float64]
 
@@ -39,7 +39,7 @@ def find_scales(problem: Problem, sizes: Vector) -> tuple[Vector, Vector]:
         ]
     )
     ends = ends[ends > 0]
-    middle = float(np.median(np.log2(ends))) if ends.size else 0.0
+    middle = median_of(np.log2(ends)) if ends.size else 0.0
     if not -7 < middle < 13:
         shift = np.round(middle)
         rows, columns = rows - shift, columns + shift
@@ -50,3 +50,9 @@ def _size(bounds: Vector) -> Vector:
     """The size of each bound, 0 where there is none."""
     size: Vector = np.where(np.isfinite(bounds), np.abs(bounds), 0.0)
     return size
+
+
+def median_of(values: Vector) -> float:
+    """The median of at least one number; numpy's own would load its masked arrays first."""
+    ordered = np.sort(values)
+    return float(ordered[(len(ordered) - 1) // 2] + ordered[len(ordered) // 2]) / 2

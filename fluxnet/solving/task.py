@@ -17,6 +17,7 @@ from fluxnet.solving.build import Built
 from fluxnet.solving.classify import Structure
 from fluxnet.solving.forms import Form
 from fluxnet.solving.moving import MovingRows, moving_rows
+from fluxnet.solving.scaling import median_of
 
 __all__ = [
     "Chart", "Point", "Task", "chart_at", "flux_scale", "least_squares_step", "point_at", "task_of",
@@ -116,7 +117,7 @@ def task_of(built: Built, structure: Structure, extra: tuple[Form, ...] = ()) ->
         range_high=np.array([u.high for u in built.uncertain]),
         rank=structure.rank,
         seen=structure.seen,
-        scale=float(np.median(known)) if len(known) else 1.0,
+        scale=median_of(known) if len(known) else 1.0,
         open_bounds=np.array(
             [not structure.is_determined(exact.rows[i]) for i in bounded], dtype=bool
         ),
