@@ -10,7 +10,12 @@ import pytest
 from fluxnet.network.model import Basis, Quantity, QuantityKind
 from fluxnet.solving.build import build_problem, derive_rows, rebuild
 from fluxnet.solving.forms import (
-    as_fraction, exact_numbers, exact_row, exact_species, form_of, form_of_row,
+    as_fraction,
+    exact_numbers,
+    exact_row,
+    exact_species,
+    form_of,
+    form_of_row,
 )
 from fluxnet.solving.moving import moving_rows
 
