@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from fractions import Fraction
 
-from fluxnet.chemistry.catalogue import Compound, load_catalogue
+from fluxnet.chemistry.catalogue import Compound, CompoundKind, load_catalogue
 from fluxnet.chemistry.formula import Formula, degree_of_reduction
 from fluxnet.chemistry.reader import FormulaError, FormulaFault, read_formula
 from fluxnet.ground.names import Name
@@ -20,7 +20,9 @@ def formula_of(
     role: Role, entry: s.Entry, line: LogicalLine, scope: Scope
 ) -> tuple[Formula | None, str | None]:
     """The formula of a species that is no carrier, and the catalogue entry it matches."""
-    compound = None if role in (Role.CARRIER, Role.BIOMASS) else _compound(entry.name.text)
+    compound = _compound(entry.name.text)
+    if role is Role.BIOMASS:
+        return _biomass_formula(entry, compound, line, scope), None
     if entry.formula is None:
         if compound is not None and not compound.kind.is_carrier:
             return compound.formula, compound.name
@@ -40,12 +42,6 @@ def formula_of(
     formula = _read(entry.formula, line, scope)
     if formula is None:
         return None, None
-    if role is Role.BIOMASS and not formula.count("C"):
-        scope.findings.add(
-            Name.BIOMASS_WITHOUT_CARBON,
-            f"the formula of {entry.name.text} holds no carbon", line, entry.formula,
-            mend="write one C-mol of biomass, for example CH1.8O0.5N0.2",
-        )
     if compound is None:
         return formula, None
     if not _agree(formula, compound.formula):
@@ -59,6 +55,28 @@ def formula_of(
             "the species another name",
         )
     return formula, compound.name
+
+
+def _biomass_formula(
+    entry: s.Entry, compound: Compound | None, line: LogicalLine, scope: Scope
+) -> Formula | None:
+    """The formula of biomass: its own, or that of the catalogue's biomass."""
+    if entry.formula is not None:
+        formula = _read(entry.formula, line, scope)
+        if formula is not None and not formula.count("C"):
+            scope.findings.add(
+                Name.BIOMASS_WITHOUT_CARBON,
+                f"the formula of {entry.name.text} holds no carbon", line, entry.formula,
+                mend="write one C-mol of biomass, for example CH1.8O0.5N0.2",
+            )
+        return formula
+    if compound is not None and compound.kind is CompoundKind.BIOMASS:
+        return compound.formula
+    scope.findings.add(
+        Name.FORMULA_NEEDED, f"the biomass {entry.name.text} has no formula", line, entry.name,
+        mend="write it behind the name, for example CH1.8O0.5N0.2",
+    )
+    return None
 
 
 def _compound(name: str) -> Compound | None:

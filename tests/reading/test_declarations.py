@@ -180,3 +180,11 @@ def test_a_name_may_be_used_before_it_is_declared(read) -> None:
     network = read("limit a <= 3\nlimit glucose <= 4\n" + TAIL + HEAD)
 
     assert [str(limit.quantity) for limit in network.limits] == ["flux a", "glucose in"]
+
+
+def test_biomass_without_a_formula_takes_the_catalogues_only_under_its_name(read, fault) -> None:
+    network = read(HEAD + "biomass cells ash 8 %\n" + TAIL)
+    found = fault(HEAD + "biomass X ash 8 %\n" + TAIL)
+
+    assert network.find_species("cells").formula.written == "CH1.8O0.5N0.2"
+    assert (found.name.value, found.span.column) == ("formula-needed", 9)
