@@ -13,8 +13,6 @@ from fluxnet.reading.parsing import Unparsed, parse_statement, statement_parser
 
 
 def test_no_two_terminals_collide_and_no_rule_conflicts() -> None:
-    pytest.importorskip("interegular")
-
     statement_parser(strict=True)
 
 
