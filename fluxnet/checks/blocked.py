@@ -9,18 +9,18 @@ species inside. All reactions that the same lift frees share the cause.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 
 from fluxnet.checks.cone import Cone
 from fluxnet.checks.graph import DeadEnd, Part
 from fluxnet.checks.interior import Interior
 from fluxnet.checks.obstacles import BlockedBy, Lifting, Obstacle
+from fluxnet.ground.record import record
 from fluxnet.network.model import Network
 
 __all__ = ["Blocked", "BlockedBy", "Obstacle", "find_blocked"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Blocked:
     """Reactions without flux that share a cause; all obstacles would have to give way at once."""
 

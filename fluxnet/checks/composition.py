@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 from functools import partial
 
@@ -15,6 +14,7 @@ from fluxnet.checks.composition_rows import (
     within_rounding,
 )
 from fluxnet.checks.composition_search import determine
+from fluxnet.ground.record import record
 from fluxnet.network.contents import Functional
 from fluxnet.network.line_balance import Contents, contents_of_network
 from fluxnet.network.model import Network, Reaction
@@ -24,7 +24,7 @@ __all__ = [
 ]  # fmt: skip
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Implied:
     """What the reactions around a species say about its content [mol/mol].
 
@@ -37,7 +37,7 @@ class Implied:
     undetermined: tuple[str, ...] = ()
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class CompositionResult:
     """The compositions of all species without a formula.
 

@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Sequence
-from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
 
@@ -11,6 +10,7 @@ from fluxnet.checks.composition_rows import Equation
 from fluxnet.checks.composition_search import Determined, circuit, is_possible, shrink
 from fluxnet.exact.basic import find_nonnegative, largest
 from fluxnet.exact.linear import rank, solve
+from fluxnet.ground.record import record
 from fluxnet.network.contents import ELECTRONS, Functional
 from fluxnet.network.model import Reaction
 
@@ -27,7 +27,7 @@ class Reason(Enum):
     EMPTY = "a species would hold nothing"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Contradiction:
     """Reactions that together rule out every composition; none of them can be left out.
 
@@ -45,7 +45,7 @@ class Contradiction:
     gap: Fraction = _ZERO
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Balance:
     """One balance with its equations and what they determine."""
 

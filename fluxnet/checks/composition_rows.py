@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from fractions import Fraction
 
+from fluxnet.ground.record import record
 from fluxnet.network.contents import ELECTRONS, Content, Functional
 from fluxnet.network.expression import Expression, constant
 from fluxnet.network.line_balance import Contents, line_functionals
@@ -18,7 +18,7 @@ __all__ = ["Equation", "equations_of", "global_functionals", "within_rounding"]
 _ANYTHING = Content({"C": Fraction(1), ELECTRONS: Fraction(4)}, {})
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Equation:
     """One line in one balance: sum of ``factors`` times the unknown contents = -``gap``.
 

@@ -8,12 +8,13 @@ finite upper limits are taken away. What no vector of the cone does, the model c
 from __future__ import annotations
 
 from collections.abc import Collection
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from enum import Enum
 from fractions import Fraction
 
 from fluxnet.chemistry.formula import EMPTY, molar_mass
 from fluxnet.exact.sparse import SparseRow
+from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.matrices.stoichiometry import Stoichiometry, parameter_values
 from fluxnet.network.model import Limit, Network, Quantity, QuantityKind, Role
@@ -32,7 +33,7 @@ class FormKind(Enum):
     LIMIT = "limit"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Form:
     """A linear form of the fluxes that is held at zero, or at zero or above.
 
@@ -46,7 +47,7 @@ class Form:
     span: Span = NOWHERE
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Cone:
     """All v with form . v = 0 for the ``equal`` forms and form . v >= 0 for the ``sides``."""
 

@@ -5,7 +5,7 @@ A wrong ATP coefficient in one line is in no loop; but it shows here.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from fractions import Fraction
 
 import numpy as np
@@ -20,6 +20,7 @@ from fluxnet.chemistry.formula import degree_of_reduction
 from fluxnet.exact.sparse import null_space, product
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.model import CargoKind, Network, Role, Species
 from fluxnet.solving.linear import Outcome, Programme
@@ -35,7 +36,7 @@ ATP_PRICE = 45.0
 _THRIFT = 1e-6
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class MostEnergy:
     """The most of an energy carrier that one mole of a substrate can make.
 
@@ -172,7 +173,7 @@ def _most(
     )
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Optimum:
     """The most per mole, scaled fluxes that make it, prices of the sides and the substrate."""
 

@@ -6,18 +6,18 @@ All in exact arithmetic: the answers are ranks.
 from __future__ import annotations
 
 from collections.abc import Collection, Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 
 from fluxnet.checks.cone import exact_rows, quantity_form
 from fluxnet.exact.sparse import NullSpace, SparseRow, independent_forms, null_space
+from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role, Species
 
 __all__ = ["Freedom", "Known", "known_by_limits", "measure_freedom"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Known:
     """A quantity whose value is known; of a ratio the value itself counts."""
 
@@ -25,7 +25,7 @@ class Known:
     value: Fraction | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Freedom:
     """What a network leaves free.
 

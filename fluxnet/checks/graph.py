@@ -7,20 +7,20 @@ from __future__ import annotations
 
 from collections import deque
 from collections.abc import Collection, Mapping
-from dataclasses import dataclass
 
 import networkx as nx
 
 from fluxnet.checks.words import and_list, names_list
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.model import CargoKind, Network, Role, Species
 
 __all__ = ["DeadEnd", "Part", "find_dead_ends", "find_parts", "tell_dead_ends", "tell_parts"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class DeadEnd:
     """A balanced species through which no flux can pass.
 
@@ -35,7 +35,7 @@ class DeadEnd:
     blocked: tuple[str, ...] = ()
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Part:
     """A part of the network that hangs together with nothing that can be taken up."""
 

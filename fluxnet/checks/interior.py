@@ -10,7 +10,6 @@ they sum to nothing.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 
 import numpy as np
@@ -18,6 +17,7 @@ from numpy.typing import NDArray
 
 from fluxnet.checks.cone import Cone, Form, FormKind
 from fluxnet.exact.sparse import NullSpace, null_space, point_near, product
+from fluxnet.ground.record import record
 from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.problem import Problem, Row, RowKind
 from fluxnet.solving.scaling import find_scales
@@ -34,7 +34,7 @@ _OPEN = 1e-6
 _NOISE = 1e-9
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ConeRows:
     """A cone in floats: rows x reactions, the equal forms first, then all sides but directions.
 
@@ -64,7 +64,7 @@ class ConeRows:
         return found
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Opening:
     """Sides that can be above zero, fluxes that open them all, and weights that prove the rest.
 
@@ -76,7 +76,7 @@ class Opening:
     weights: Vector
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Interior:
     """The smallest space that holds a cone, and what is zero throughout.
 

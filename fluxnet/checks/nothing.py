@@ -8,7 +8,7 @@ can is shown with an irreducible set of reactions that makes it.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from enum import Enum
 from fractions import Fraction
 
@@ -19,6 +19,7 @@ from fluxnet.checks.words import and_list, equation, names_list
 from fluxnet.exact.sparse import null_space, product
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.model import CargoKind, Network, Role, Species
 
@@ -42,7 +43,7 @@ _NAMES = {
 }
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Loop:
     """An irreducible set of reactions that makes something out of nothing.
 
@@ -65,7 +66,7 @@ class Loop:
         return tuple(name for name, _ in self.fluxes)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class FromNothing:
     """The loops found, each cause once; ``verified`` says that the verdict was proven exactly."""
 

@@ -9,7 +9,6 @@ from __future__ import annotations
 
 import random
 from collections.abc import Collection, Sequence
-from dataclasses import dataclass
 from enum import Enum
 
 import numpy as np
@@ -17,6 +16,7 @@ from numpy.typing import NDArray
 
 from fluxnet.checks.cone import Cone, Form, FormKind
 from fluxnet.checks.interior import ConeRows, cone_rows
+from fluxnet.ground.record import record
 from fluxnet.network.model import Network, Role
 from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.problem import Problem
@@ -52,7 +52,7 @@ _PRICE = {
 _LAST_RESORT = 10 * _PRICE[BlockedBy.SPECIES]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Obstacle:
     """One thing that would have to give way.
 
@@ -66,7 +66,7 @@ class Obstacle:
     piles_up: bool | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Lift:
     """What gives way: rows of the cone in floats, and reactions that turn round."""
 

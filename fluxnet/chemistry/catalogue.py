@@ -10,7 +10,7 @@ from __future__ import annotations
 import csv
 import unicodedata
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass, field
+from dataclasses import field
 from enum import Enum
 from fractions import Fraction
 from functools import cache
@@ -18,6 +18,7 @@ from pathlib import Path
 
 from fluxnet.chemistry.formula import EMPTY, Formula, composition, molar_mass
 from fluxnet.chemistry.reader import read_formula
+from fluxnet.ground.record import record
 
 __all__ = [
     "Catalogue", "Compound", "CompoundKind", "Gibbs", "Plausibility", "find_compound",
@@ -68,7 +69,7 @@ class Plausibility(Enum):
     NO = "no"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Gibbs:
     """A Gibbs energy of formation [kJ/mol], 25 °C, aqueous at 1 mol/kg unless the source differs.
 
@@ -80,7 +81,7 @@ class Gibbs:
     source: str
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Compound:
     """One compound of the catalogue.
 
@@ -118,7 +119,7 @@ class Compound:
         return next((g.energy for g in self.gibbs if g.charge == self.charge), None)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Catalogue:
     """All compounds, found by any of their names.
 

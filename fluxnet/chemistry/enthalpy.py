@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from fluxnet.chemistry.catalogue import Compound
 from fluxnet.chemistry.formula import Formula, NitrogenReference, degree_of_reduction
+from fluxnet.ground.record import record
 
 __all__ = ["HEAT_PER_ELECTRON", "HeatOfCombustion", "heat_of_combustion"]
 
@@ -14,7 +13,7 @@ HEAT_PER_ELECTRON = 115.0
 compounds, sd 6 to 8 (Roels 1983; from memory)."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class HeatOfCombustion:
     """The heat given off on combustion to CO2(g), H2O(l) and N2(g) [kJ/mol], positive.
 

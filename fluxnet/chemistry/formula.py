@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
 
 from fluxnet.chemistry.elements import ATOMIC_WEIGHT, VALENCE
+from fluxnet.ground.record import record
 
 __all__ = ["EMPTY", "Formula", "NitrogenReference", "degree_of_reduction", "molar_mass"]
 
@@ -24,7 +24,7 @@ class NitrogenReference(Enum):
     NITRATE = 8
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Formula:
     """What one mole of a species holds.
 

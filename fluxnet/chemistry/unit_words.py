@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
 from functools import cache
 from types import MappingProxyType
 from typing import TYPE_CHECKING, Final
+
+from fluxnet.ground.record import record
 
 if TYPE_CHECKING:
     import pint
@@ -34,7 +35,7 @@ class Dimension(Enum):
         return self not in (Dimension.VOLUME, Dimension.TIME, Dimension.OTHER)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Word:
     """A word of a unit: how many base units of which dimension."""
 

@@ -9,12 +9,12 @@ from __future__ import annotations
 
 import re
 import unicodedata
-from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
 
 from fluxnet.chemistry.unit_words import CONCENTRATIONS, MARKS, WORDS, Dimension, Word, look_up
 from fluxnet.chemistry.weighed import FREE, WeighedForm, split_form
+from fluxnet.ground.record import record
 
 __all__ = ["Dimension", "Unit", "UnitError", "UnitFault", "parse_unit"]
 
@@ -38,7 +38,7 @@ class UnitError(ValueError):
         self.words = words
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Unit:
     """An amount over other amounts, volume and time.
 
@@ -71,7 +71,7 @@ _TOKEN = re.compile(
 )
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Factor:
     word: Word
     power: int

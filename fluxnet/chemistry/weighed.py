@@ -4,13 +4,13 @@ from __future__ import annotations
 
 import re
 from collections.abc import Mapping
-from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
 
 from fluxnet.chemistry.compare import free_form
 from fluxnet.chemistry.elements import ATOMIC_WEIGHT
 from fluxnet.chemistry.formula import Formula
+from fluxnet.ground.record import record
 
 __all__ = ["FREE", "Substance", "WeighedAs", "WeighedForm", "split_form", "weighed_mass"]
 
@@ -23,7 +23,7 @@ class WeighedAs(Enum):
     SALT = "salt"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class WeighedForm:
     """A form and its crystal water.
 
@@ -38,7 +38,7 @@ class WeighedForm:
     words: str = ""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Substance:
     """What a conversion needs to know of a species.
 

@@ -5,13 +5,14 @@ from __future__ import annotations
 import argparse
 import sys
 from collections.abc import Iterable
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from fluxnet.cli.main import Exit
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Source, Span
 from fluxnet.network.model import Network
 from fluxnet.network.variant import apply_variant
@@ -41,7 +42,7 @@ _UNREADABLE = frozenset(
 )
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ReadModel:
     """A model with its variant applied, all findings, its text, and its hash."""
 
@@ -88,7 +89,7 @@ def read_inputs(files: Iterable[str]) -> tuple[Input, ...]:
     return tuple(hash_file(Path(p), p) for p in paths if Path(p).is_file())
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ReadRates:
     """The runs that a command asks for, all findings, and the table's hash."""
 

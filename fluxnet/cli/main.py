@@ -5,11 +5,11 @@ from __future__ import annotations
 import os
 import sys
 from collections.abc import Sequence
-from dataclasses import dataclass
 from enum import IntEnum
 from importlib import import_module
 
 import fluxnet
+from fluxnet.ground.record import record
 
 __all__ = ["COMMANDS", "Command", "Exit", "run"]
 
@@ -24,7 +24,7 @@ class Exit(IntEnum):
     INTERRUPTED = 130
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Command:
     """A command, the module that runs it, the question that it answers, one example."""
 

@@ -9,12 +9,13 @@ python-flint.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 from math import lcm
 from typing import Any
 
 from flint import fmpz_mat
+
+from fluxnet.ground.record import record
 
 __all__ = ["Echelon", "echelon", "independent_rows", "kernel", "rank", "solve"]
 
@@ -22,7 +23,7 @@ Row = Sequence[Fraction | int]
 _ZERO = Fraction(0)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Echelon:
     """The reduced row echelon form: its non-zero rows and the column of each row's leading 1."""
 

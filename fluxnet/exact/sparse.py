@@ -8,10 +8,11 @@ elimination of :mod:`fluxnet.exact.linear`.
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 from heapq import heapify, heappop, heappush
 from math import gcd, lcm
+
+from fluxnet.ground.record import record
 
 __all__ = [
     "NullSpace", "SparseRow", "independent_forms", "null_space", "point_near", "product",
@@ -24,7 +25,7 @@ _Whole = dict[int, int]
 _LONG = 60
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class NullSpace:
     """All x with A x = 0, written in free coordinates t: x_j is the sum of ``rows[j][k] t_k``.
 

@@ -3,15 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass, field, replace
+from dataclasses import field, replace
 
 from fluxnet.ground.names import Name, Severity
+from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 
 __all__ = ["Acceptance", "Diagnostic", "Edit", "has_errors", "in_order", "silence"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Edit:
     """Text that stands in the place of another (an empty place: text put in between)."""
 
@@ -19,7 +20,7 @@ class Edit:
     text: str
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Diagnostic:
     """One finding about the input.
 
@@ -46,7 +47,7 @@ class Diagnostic:
         return self.name.severity
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Acceptance:
     """``accept NAME: REASON`` at the end of a line.
 

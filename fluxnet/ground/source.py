@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 
+from fluxnet.ground.record import record
+
 __all__ = ["NOWHERE", "Source", "Span"]
 
 
@@ -26,7 +28,7 @@ class Span:
 NOWHERE = Span("", 0, 0, 0)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Source:
     """One input text, decoded, with its lines (without line ends)."""
 

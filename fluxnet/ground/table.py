@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from enum import Enum
 from typing import TYPE_CHECKING
+
+from fluxnet.ground.record import record
 
 if TYPE_CHECKING:
     import pandas as pd
@@ -21,7 +22,7 @@ class Align(Enum):
     RIGHT = "right"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Column:
     """A column: its title on screen, its key in data, its unit.
 
@@ -40,7 +41,7 @@ class Column:
     wrap: int | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Table:
     """One table of a result; missing values are None, never NaN.
 

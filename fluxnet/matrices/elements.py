@@ -3,20 +3,20 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from fractions import Fraction
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.chemistry.formula import Formula, NitrogenReference
+from fluxnet.ground.record import record
 from fluxnet.network.contents import ELECTRONS, content_of_formula, in_order_of_balances
 from fluxnet.network.model import Network
 
 __all__ = ["ElementMatrix", "element_matrix", "network_elements"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ElementMatrix:
     """E: what one mole of each species holds, balances x species.
 

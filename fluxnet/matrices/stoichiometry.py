@@ -3,19 +3,19 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from fractions import Fraction
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.network.expression import Expression
 from fluxnet.network.model import Network
 
 __all__ = ["Stoichiometry", "parameter_values", "stoichiometry"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Stoichiometry:
     """All coefficients of a network as expressions, by row (species) and column (reaction).
 

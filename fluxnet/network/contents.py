@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 
 from fluxnet.chemistry.elements import VALENCE
 from fluxnet.chemistry.formula import Formula, degree_of_reduction
 from fluxnet.exact.linear import kernel
+from fluxnet.ground.record import record
 from fluxnet.network.model import CargoKind, Species
 
 __all__ = [
@@ -23,7 +23,7 @@ _LAST = ("O", CHARGE, ELECTRONS)
 _ZERO = Fraction(0)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Content:
     """What one mole of a species holds.
 
@@ -69,7 +69,7 @@ def content_of(species: Species) -> Content | None:
     return None if species.formula is None else content_of_formula(species.formula)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Functional:
     """One balance: a weighted sum of a content's amounts, named after its leading amount.
 

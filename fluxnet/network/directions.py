@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
 from fractions import Fraction
 
+from fluxnet.ground.record import record
 from fluxnet.network.contents import CHARGE
 from fluxnet.network.line_balance import Contents, LineBalance, held_by, line_functionals
 from fluxnet.network.model import Species
@@ -15,7 +15,7 @@ __all__ = ["Directions"]
 _Direction = tuple[tuple[str, Fraction], ...]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Directions:
     """The species of a network by the ratios of their amounts in every balance.
 

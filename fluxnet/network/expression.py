@@ -8,9 +8,10 @@ and a solved ``?`` passes the parameters' errors on.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from fractions import Fraction
 from typing import TypeVar
+
+from fluxnet.ground.record import record
 
 __all__ = ["ONE", "ZERO", "Expression", "constant", "parameter"]
 
@@ -18,7 +19,7 @@ _Power = tuple[tuple[str, int], ...]
 _Number = TypeVar("_Number", Fraction, float)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Polynomial:
     """A sum of monomials: pairs (powers by parameter, coefficient), sorted, without zeros."""
 
@@ -81,7 +82,7 @@ class _Polynomial:
 _UNIT = _Polynomial((((), Fraction(1)),))
 
 
-@dataclass(frozen=True, slots=True, eq=False)
+@record
 class Expression:
     """A quotient of polynomials in the parameters.
 

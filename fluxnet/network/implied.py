@@ -9,13 +9,13 @@ are left over.
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 from typing import Generic, TypeVar
 
 from fluxnet.chemistry.formula import Formula
 from fluxnet.exact.linear import independent_rows, solve
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.network.contents import CHARGE, ELECTRONS, Content, content_of_formula
 from fluxnet.network.model import Network
 from fluxnet.network.water import form_at_ph_seven, free_forms
@@ -27,7 +27,7 @@ Number = TypeVar("Number", Fraction, float)
 _ZERO = Fraction(0)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Implied(Generic[Number]):
     """What a conversion makes besides the species written, in the unit of their amounts.
 

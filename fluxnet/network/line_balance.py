@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
 
+from fluxnet.ground.record import record
 from fluxnet.network.contents import (
     CHARGE,
     ELECTRONS,
@@ -40,7 +40,7 @@ class Verdict(Enum):
     UNCHECKED = "cannot be checked"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ElementBalance:
     """One balance of one reaction [moles per mole of reaction].
 
@@ -61,7 +61,7 @@ class ElementBalance:
         return self.functional.name
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class LineBalance:
     """All balances of one reaction.
 
@@ -85,7 +85,7 @@ class LineBalance:
         return tuple(b for b in self.balances if not b.gap.is_zero)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Contents:
     """What the species of a network hold (None: no composition), and the free ones."""
 

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from enum import Enum
 from fractions import Fraction
 
+from fluxnet.ground.record import record
 from fluxnet.network.amounts import decimals_of
 from fluxnet.network.contents import Content
 from fluxnet.network.directions import Directions
@@ -32,7 +33,7 @@ class MendKind(Enum):
     ADD = "one term more"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Mend:
     """One repair that closes every balance of a line.
 

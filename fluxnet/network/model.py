@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
 from enum import Enum
 from fractions import Fraction
 
 from fluxnet.chemistry.formula import EMPTY, Formula
 from fluxnet.ground.diagnostic import Acceptance
+from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.expression import Expression
 
@@ -53,7 +54,7 @@ class CargoKind(Enum):
     GROUP = "group"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Cargo:
     """The difference between the loaded and the empty form of a carrier.
 
@@ -70,7 +71,7 @@ class Cargo:
     checks_protons: bool = False
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Species:
     """A species with its one role.
 
@@ -89,7 +90,7 @@ class Species:
     span: Span = NOWHERE
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Parameter:
     """A number with a name: exact, or measured where ``sd`` is given."""
 
@@ -101,7 +102,7 @@ class Parameter:
     span: Span = NOWHERE
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Term:
     """One species on one side of a reaction.
 
@@ -119,7 +120,7 @@ class Term:
     span: Span = NOWHERE
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Reaction:
     """A reaction, its flux positive from left to right."""
 
@@ -136,7 +137,7 @@ class Reaction:
         return tuple((-1, t) for t in self.left) + tuple((1, t) for t in self.right)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Compartment:
     """A part of metabolism (not a place in the cell)."""
 
@@ -154,7 +155,7 @@ class QuantityKind(Enum):
     SURPLUS = "surplus"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Quantity:
     """A thing with a value: a boundary species' rate, mu, a reaction's flux, a ratio.
 
@@ -187,7 +188,7 @@ class Relation(Enum):
     BETWEEN = "between"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Limit:
     """A bound on a quantity, or a measured value where ``sd`` is given.
 
@@ -209,7 +210,7 @@ class Limit:
         return self.sd is not None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Drop:
     """``drop NAME`` (a reaction or species) or ``drop limit QUANTITY``."""
 
@@ -218,7 +219,7 @@ class Drop:
     span: Span = NOWHERE
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Variant:
     """A named set of changes, applied by :func:`fluxnet.network.variant.apply_variant`.
 
@@ -246,7 +247,7 @@ class Basis(Enum):
     AMOUNT = "mmol"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Network:
     """A whole model, every line of it resolved; the order is the file's.
 

@@ -9,9 +9,9 @@ that stands on both sides once.
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
 from fractions import Fraction
 
+from fluxnet.ground.record import record
 from fluxnet.network.expression import Expression
 
 __all__ = ["Reach", "explains", "reach_of"]
@@ -21,7 +21,7 @@ _CONSTANT: tuple[tuple[str, int], ...] = ()
 _Monomial = tuple[tuple[str, int], ...]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Reach:
     """How far rounding can move a sum, by monomial in the parameters: (down, up)."""
 

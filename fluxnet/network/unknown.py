@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from fractions import Fraction
 
 from fluxnet.exact.linear import independent_rows, kernel, solve
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
+from fluxnet.ground.record import record
 from fluxnet.network.contents import Content, Functional
 from fluxnet.network.expression import ZERO, Expression, constant
 from fluxnet.network.line_balance import (
@@ -25,7 +26,7 @@ from fluxnet.network.water import water_of
 __all__ = ["solve_unknowns"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Unknown:
     """A ``?`` of one reaction: its side (-1 left, +1 right) and its place on that side."""
 

@@ -9,9 +9,10 @@ neither builds on the other, their changes must be equal.
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from enum import Enum
 
+from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import (
     Direction,
@@ -42,7 +43,7 @@ class ChangeKind(Enum):
     LIMIT = "limit"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Key:
     """The thing that a change sets."""
 
@@ -56,7 +57,7 @@ class Key:
         return self.name
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Change:
     """One change of one variant; ``value`` None is a drop.
 

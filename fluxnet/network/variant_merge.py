@@ -7,6 +7,7 @@ from dataclasses import dataclass, field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.network.amounts import number_text
 from fluxnet.network.model import Limit, Network, Parameter, Reaction, Variant
 from fluxnet.network.variant_changes import (
@@ -24,7 +25,7 @@ from fluxnet.network.variant_changes import (
 __all__ = ["Merged", "merge_variants", "nearest"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Merged:
     """What is set in the end: by key the thing, None where it is dropped."""
 

@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 
 from fluxnet.chemistry.formula import Formula
+from fluxnet.ground.record import record
 from fluxnet.network.contents import CHARGE, PHOSPHATE, Content, content_of_formula
 from fluxnet.network.model import CargoKind, Network, Species
 
@@ -15,7 +15,7 @@ __all__ = [
 ]  # fmt: skip
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Water:
     """``checked``: ``"O"`` where water is checked, ``"charge"`` where protons are.
 

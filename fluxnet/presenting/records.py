@@ -6,13 +6,13 @@ import hashlib
 import json
 import math
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 from pathlib import Path
 from typing import Any
 
 import fluxnet
 from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 
 __all__ = [
@@ -32,7 +32,7 @@ class Document:
     CATALOGUE = "catalogue/1"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Input:
     """A file that a result depends on, with the SHA-256 of its bytes."""
 

@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from enum import Enum
 
+from fluxnet.ground.record import record
 from fluxnet.ground.table import Column, Table
 
 __all__ = ["Block", "Heading", "Mood", "Sentence", "blocks_of_run", "screen_tables"]
@@ -21,14 +22,14 @@ class Mood(Enum):
     QUIET = "quiet"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Heading:
     """The start of a part, such as a run."""
 
     text: str
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Sentence:
     """A sentence; ``verdict`` marks the one that ``--quiet`` keeps."""
 

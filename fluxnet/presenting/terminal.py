@@ -4,11 +4,11 @@ from __future__ import annotations
 
 import os
 import sys
-from dataclasses import dataclass
 from typing import TYPE_CHECKING, TextIO
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Severity
+from fluxnet.ground.record import record
 from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.presenting.numbers import format_measured, format_number
 from fluxnet.presenting.screen import Block, Heading, Mood, Sentence
@@ -38,7 +38,7 @@ _ASCII = str.maketrans(
 _ASCII_RULE = "\n".join(["    ", "    ", " -- ", "    ", "    ", "    ", "    ", "    ", ""])
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Terminal:
     """A stream, whether it may be coloured, and how wide it is.
 

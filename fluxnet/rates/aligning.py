@@ -3,17 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass, field, replace
+from dataclasses import field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role, Species
 from fluxnet.rates.measured import MeasuredRate, RatesTable, Run
 
 __all__ = ["Alignment", "align_table"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Alignment:
     """The table in the model's names; None where the model lacks what it measures."""
 

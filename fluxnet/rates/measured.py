@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
 from enum import Enum
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import Basis, Quantity, Species
 
@@ -22,7 +23,7 @@ class SdSource(Enum):
     ASSUMED = "assumed"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class MeasuredRate:
     """One quantity of one run, already in the unit of the run's basis.
 
@@ -45,7 +46,7 @@ class MeasuredRate:
     own_sd: float | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Run:
     """One cultivation, or one steady state of it.
 
@@ -80,7 +81,7 @@ class Run:
         return tuple(r for r in self.rates if r.value is not None)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class RatesTable:
     """All runs of one table.
 

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from pathlib import Path
 
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Source
 from fluxnet.network.model import Network
 from fluxnet.reading.balancing import balance_reading
@@ -20,7 +21,7 @@ from fluxnet.reading.source import read_source, source_of_text
 __all__ = ["ModelReading", "read_model", "read_model_text"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ModelReading:
     """What became of a text: the network (None where errors forbid it), and all findings.
 

@@ -8,8 +8,9 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterator, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Source
 from fluxnet.reading import syntax as s
 from fluxnet.reading.layout import Cells, lay_out
@@ -35,7 +36,7 @@ _ON_ONE_LINE = ("model", "basis", "variant", "use")
 _WIDE_WORDS = ("compartment", "variant", "add to")
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Row:
     """A line to be written: blank, a comment alone, a statement, or text as it stands.
 

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from hashlib import sha256
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.solving.quadratic import solve_scaled
 from fluxnet.solving.region import Region, nearest
 
@@ -20,7 +21,7 @@ SEED = int.from_bytes(sha256(b"what bounds add by chance").digest()[:8], "big")
 """The same samples on every machine: the first eight bytes of a hash of what they are for."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Pressure:
     """A bound that presses on the best fit.
 

@@ -8,7 +8,7 @@ name in a conflict. A measured value is a row without bounds (least squares judg
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field, replace
+from dataclasses import field, replace
 from types import MappingProxyType
 
 import numpy as np
@@ -16,6 +16,7 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry, stoichiometry
 from fluxnet.network.model import Basis, Limit, Network, Quantity, QuantityKind
 from fluxnet.rates.measured import Run
@@ -35,7 +36,7 @@ __all__ = ["Built", "Uncertain", "build_problem", "derive_rows", "quantity_row",
 Vector = NDArray[np.float64]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Uncertain:
     """A number of the model that is itself measured: a parameter with ±, or an ash.
 
@@ -49,7 +50,7 @@ class Uncertain:
     high: float
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Built:
     """A problem with all that was decided on the way to it.
 

@@ -7,11 +7,11 @@ in its coordinates of the measured rows (what no measurement sees).
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 from math import gcd, lcm
 
 from fluxnet.exact.sparse import NullSpace, SparseRow, null_space
+from fluxnet.ground.record import record
 from fluxnet.solving.equalities import ExactRows
 
 __all__ = ["Relation", "Structure", "classify", "find_relations"]
@@ -22,14 +22,14 @@ _LONGEST = 4
 _Key = tuple[tuple[int, Fraction], ...]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Relation:
     """A combination of undetermined fluxes that is determined: pairs (column, coefficient)."""
 
     terms: tuple[tuple[int, Fraction], ...]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Structure:
     """What is possible, and what of it the measured values see.
 

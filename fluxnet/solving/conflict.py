@@ -7,11 +7,11 @@ can be left out. Then the balances, roles and directions that they collide with 
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.solving.least_change import Change, LeastChange, least_change
 from fluxnet.solving.linear import Programme
 from fluxnet.solving.members import Member, list_members
@@ -22,7 +22,7 @@ __all__ = ["Change", "Conflict", "LeastChange", "find_conflict", "least_change"]
 Vector = NDArray[np.float64]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Conflict:
     """Things that cannot hold together, though they can when any one of them is left out.
 

@@ -8,11 +8,10 @@ reach exactly, and halved until it is farther out.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.solving.functionals import Functionals
 from fluxnet.solving.reach import reach_far
 from fluxnet.solving.region import Region, nearest, region_at
@@ -28,7 +27,7 @@ _NEAR = 1e-4
 """A step of this part of the way is the last: what it adds is added by the slope."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Curve:
     """One functional, the way it is to go, the level of h, and its value at the fit."""
 

@@ -12,6 +12,7 @@ from fractions import Fraction
 from math import inf, isfinite
 
 from fluxnet.exact.sparse import SparseRow, null_space
+from fluxnet.ground.record import record
 from fluxnet.solving.build import Built
 from fluxnet.solving.forms import as_fraction, exact_numbers, exact_row, exact_species, form_of_row
 from fluxnet.solving.problem import RowKind
@@ -21,7 +22,7 @@ __all__ = ["Equality", "ExactRows", "find_equalities"]
 _TOLERANCE = 1e-9
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Equality:
     """A row that equals a value.
 
@@ -34,7 +35,7 @@ class Equality:
     is_measured: bool = False
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ExactRows:
     """A problem's rows in exact numbers, and those of them that hold with equality.
 

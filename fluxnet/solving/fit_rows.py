@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role, Species
 from fluxnet.rates.kinds import RateKind
 from fluxnet.solving.applying import is_same
@@ -29,7 +30,7 @@ Vector = NDArray[np.float64]
 _MEASURED = (RowKind.MEASUREMENT, RowKind.MEASURED_LIMIT)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class MeasuredPlaces:
     """The places of measured rows among the task's: plain values, then quotients."""
 
@@ -102,7 +103,7 @@ def fitted_rows(
     return tuple(found)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class UnmeasuredRates:
     """Boundary rates that nothing measures, and mu: their places, and whether each is fixed."""
 

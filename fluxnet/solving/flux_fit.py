@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
 from enum import Enum
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import Quantity
 from fluxnet.rates.kinds import RateKind
@@ -52,7 +53,7 @@ class BoundKind(Enum):
     RANGE = "range"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class FittedRow:
     """One rate, flux or ratio, measured or not, after the fit.
 
@@ -82,7 +83,7 @@ class FittedRow:
     span: Span = NOWHERE
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ParameterMove:
     """An uncertain parameter, or ash: as given and as the fit moved it."""
 
@@ -94,7 +95,7 @@ class ParameterMove:
     z: float | None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class PressingBound:
     """A bound without which the fit would be better.
 
@@ -117,7 +118,7 @@ class PressingBound:
         return self.pull is not None and abs(self.pull) > 2
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class FluxRelation:
     """A sum of undetermined fluxes that is itself determined.
 
@@ -142,7 +143,7 @@ class FluxRelation:
         return text[2:] if text.startswith("+ ") else text
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class FluxFit:
     """Fluxes fitted to measured rates by weighted least squares.
 

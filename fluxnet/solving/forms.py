@@ -7,12 +7,12 @@ Ranks are decided on these, from the decimals as written; the floating-point row
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from fractions import Fraction
 
 from fluxnet.chemistry.formula import molar_mass
 from fluxnet.exact.sparse import SparseRow
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.model import Basis, Network, Quantity, QuantityKind, Role
 from fluxnet.solving.build import Built
@@ -25,7 +25,7 @@ __all__ = [
 ]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Form:
     """A row as a weighted sum: of net productions, of fluxes, and of mu.
 

@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.solving.task import Point
 
 __all__ = ["Drifting", "Functionals", "Joined", "Placed", "Ratios"]
@@ -15,7 +14,7 @@ Vector = NDArray[np.float64]
 Places = NDArray[np.intp]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Placed:
     """The values of rows of the task, by their places."""
 
@@ -35,7 +34,7 @@ class Placed:
         return np.zeros(len(self.places), dtype=bool)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Ratios:
     """Quotients of rows of the task."""
 
@@ -61,7 +60,7 @@ class Ratios:
         return np.ones(len(self.over), dtype=bool)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Drifting:
     """Rows over the fluxes that change in proportion to the uncertain numbers.
 
@@ -96,7 +95,7 @@ class Drifting:
         return np.zeros(len(self.rows), dtype=bool)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Joined:
     """Several functionals, one behind the other."""
 

@@ -8,11 +8,10 @@ found by :mod:`fluxnet.solving.curve`.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.solving.curve import Curve, follow_curve, moved_by
 from fluxnet.solving.functionals import Functionals
 from fluxnet.solving.reach import Reach, reach_far, reach_flat
@@ -29,7 +28,7 @@ _DUST = 1e-9
 
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Intervals:
     """One entry a functional; infinite where nothing bounds it.
 
@@ -52,7 +51,7 @@ class Intervals:
         )
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Search:
     """What all searches of one call share."""
 

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.network.model import Quantity, QuantityKind
 from fluxnet.solving.alter import hard_part
 from fluxnet.solving.linear import Outcome, Programme
@@ -19,7 +20,7 @@ Vector = NDArray[np.float64]
 _PASSES = 30
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Change:
     """One measured value and what it would have to be.
 
@@ -34,7 +35,7 @@ class Change:
     in_sd: float
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class LeastChange:
     """The least change, or ``possible`` False: no change of measured values helps.
 
@@ -49,7 +50,7 @@ class LeastChange:
     common_k: float | None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Violation:
     """A measured value that by itself lies beyond a limit, by ``in_sd`` of its sds."""
 
@@ -184,7 +185,7 @@ def _common_k(hard: Problem, soft: _Soft, enough: float) -> float:
     return high
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Soft:
     """The measured rows.
 

@@ -5,7 +5,6 @@ The only user of highspy (imported when the first programme is made).
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from enum import Enum
 from typing import Any
 
@@ -13,6 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.residuals import Pair, is_contradiction, is_ray, violation_of, worst_violation
 from fluxnet.solving.scaling import find_scales
@@ -43,7 +43,7 @@ class Outcome(Enum):
     FAILED = "failed"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class LinearSolution:
     """The end of one solve.
 

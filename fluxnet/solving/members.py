@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from enum import Enum
 
 import numpy as np
 
+from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import Direction, QuantityKind
 from fluxnet.solving.problem import Problem, Row, RowKind
@@ -36,7 +36,7 @@ class MemberKind(Enum):
         return self in (MemberKind.MEASUREMENT, MemberKind.MEASURED_LIMIT)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Member:
     """One thing that bounds the fluxes.
 

@@ -7,11 +7,11 @@ coefficients that hold a parameter are computed again there.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.network.expression import Expression
 from fluxnet.network.model import Basis
 from fluxnet.solving.build import Built
@@ -23,7 +23,7 @@ __all__ = ["MovingRows", "moving_rows"]
 Vector = NDArray[np.float64]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class MovingRows:
     """Rows over the fluxes: those of the problem, then ``extra`` ones, then each flux itself.
 

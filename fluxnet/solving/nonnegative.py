@@ -6,10 +6,10 @@ asked when the fast solver's answer does not pass its check.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
+
+from fluxnet.ground.record import record
 
 __all__ = ["LeastDistance", "find_least_distance", "solve_nonnegative"]
 
@@ -80,7 +80,7 @@ def _restricted(matrix: Vector, right: Vector, passive: NDArray[np.bool_]) -> Ve
     return out
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class LeastDistance:
     """The point of G x >= g nearest to the origin, or a proof that there is none.
 

@@ -6,12 +6,13 @@ artificial reaction is needed; a role, a limit and a measured value are bounds o
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
 from enum import Enum
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import Quantity
 
@@ -28,7 +29,7 @@ class RowKind(Enum):
     MEASURED_LIMIT = "measured limit"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Row:
     """The label of one row.
 
@@ -52,7 +53,7 @@ class Row:
     per_mole: float = 1.0
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Problem:
     """low <= A v <= high with column_low <= v <= column_high.
 

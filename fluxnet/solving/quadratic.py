@@ -8,12 +8,13 @@ what does not pass is solved again more carefully, and last by a slow method of 
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.solving.careful import approach, is_unbounded, nearest_to
 from fluxnet.solving.linear import Outcome
 from fluxnet.solving.small_programme import FEASIBLE, SmallProgramme, ask, polish
@@ -23,7 +24,7 @@ __all__ = ["Outcome", "QuadraticSolution", "solve_quadratic", "solve_scaled"]
 Vector = NDArray[np.float64]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class QuadraticSolution:
     """A checked answer.
 

@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from fractions import Fraction
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.biomass import biomass_mass, biomasses
 from fluxnet.network.model import Basis, Direction, Network, Quantity, QuantityKind, Role, Species
@@ -22,7 +23,7 @@ __all__ = [
 Vector = NDArray[np.float64]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Frame:
     """What the rows of quantities are cut from, at given numbers (or their derivative).
 

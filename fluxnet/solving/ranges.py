@@ -2,13 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.progress import Progress, silent
+from fluxnet.ground.record import record
 from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.problem import Problem
 
@@ -17,7 +16,7 @@ __all__ = ["Ranges", "find_ranges"]
 Vector = NDArray[np.float64]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Ranges:
     """Least and largest values, one pair a flux (or functional), ±inf where unbounded.
 

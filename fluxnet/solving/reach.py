@@ -9,11 +9,10 @@ an upper bound by duality: what the search leaves open makes a range wider, neve
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.solving.quadratic import QuadraticSolution, solve_scaled
 from fluxnet.solving.region import Region, nearest
 from fluxnet.solving.small_programme import SmallProgramme
@@ -28,7 +27,7 @@ _TRIES = 60
 _DOUBT = 4
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Reach:
     """The largest value of a functional (less its value at the point), and where it is taken.
 

@@ -8,11 +8,10 @@ moves this is no approximation.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.solving.quadratic import Outcome, QuadraticSolution, solve_scaled
 from fluxnet.solving.small_programme import SmallProgramme
 from fluxnet.solving.task import Point, Task, flux_scale
@@ -29,7 +28,7 @@ _CONSTANT = 1e-7
 """By how much of its terms a constant row may miss its bound and still be rounding."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Bounds:
     """Rows over (u, t) with bounds; ``sources`` are their places in the task.
 
@@ -44,7 +43,7 @@ class Bounds:
     sizes: Vector
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Region:
     """Coordinates (u, t) around a point.
 

@@ -11,6 +11,7 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.network.model import (
     Direction,
@@ -37,7 +38,7 @@ from fluxnet.solving.words import limit_words
 __all__ = ["Sheet", "lay_rows"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Sheet:
     """Rows with bounds.
 
@@ -78,7 +79,7 @@ class _Draft:
         self.sizes.append(size)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Reading:
     """A measured value, of the run or of the model."""
 

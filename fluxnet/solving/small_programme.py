@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import daqp
 import numpy as np
 from numpy.typing import NDArray
+
+from fluxnet.ground.record import record
 
 __all__ = ["FEASIBLE", "NO_BOUND", "OPTIMAL", "SmallProgramme", "ask", "polish"]
 
@@ -19,7 +19,7 @@ OPTIMAL = 1e-8
 NO_BOUND = 1e30
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class SmallProgramme:
     """One programme, its rows of norm 1: minimise x'Hx/2 + f'x, low <= A x <= high.
 

@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.solving.build import Built
 from fluxnet.solving.flux_fit import ParameterMove
 from fluxnet.solving.region import Region
@@ -20,7 +19,7 @@ _NONE = 1e-9
 """An adjustment whose variance is below this part of the measured one cannot be."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Spread:
     """Errors around a fit.
 

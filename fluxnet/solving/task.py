@@ -7,12 +7,11 @@ E. So every point of a fit balances to rounding, wherever p has moved to.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.solving.build import Built
 from fluxnet.solving.classify import Structure
 from fluxnet.solving.forms import Form
@@ -28,7 +27,7 @@ Vector = NDArray[np.float64]
 Places = NDArray[np.intp]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Task:
     """What is to be fitted.
 
@@ -144,7 +143,7 @@ def whitening(covariance: Vector) -> Vector:
     return inverse
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Chart:
     """Coordinates around one place: v = kernel z + image y, where E(p) v = e gives y.
 
@@ -183,7 +182,7 @@ def _equilibrate(matrix: Vector) -> tuple[Vector, Vector]:
     return np.exp2(np.round(rows)), np.exp2(np.round(columns))
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Point:
     """Fluxes and numbers that meet all equalities, with their slopes and distances.
 

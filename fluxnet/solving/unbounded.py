@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.solving.alter import with_row
 from fluxnet.solving.least_flux import least_total_flux
 from fluxnet.solving.linear import Outcome, Programme
@@ -18,7 +19,7 @@ __all__ = ["LoopStep", "Unbounded", "explain_unbounded"]
 Vector = NDArray[np.float64]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class LoopStep:
     """A reaction of a loop, and its flux for each unit of the aim."""
 
@@ -26,7 +27,7 @@ class LoopStep:
     coefficient: float
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Unbounded:
     """What can grow for ever.
 

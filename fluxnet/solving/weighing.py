@@ -6,11 +6,12 @@ pass), and a measured ratio A / B = r ± s weighs A - r B with s times B, so tha
 
 from __future__ import annotations
 
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.network.model import Quantity
 from fluxnet.rates.covariance import covariance_at
 from fluxnet.rates.measured import Run
@@ -30,7 +31,7 @@ _LEAST = 0.1
 """A rate that is reconciled to nothing keeps this part of its relative sd."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Weighed:
     """The best fit under the equalities alone, with the problem's sds as the fit used them.
 

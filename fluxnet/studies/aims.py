@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from difflib import get_close_matches
 from enum import Enum
 from fractions import Fraction
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role
 
 __all__ = ["Aim", "Sense", "read_aim"]
@@ -22,7 +22,7 @@ class Sense(Enum):
     MINIMISE = "minimise"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Aim:
     """A weighted sum of quantities, to be made as large or as small as possible."""
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, replace
+from dataclasses import replace
 from fractions import Fraction
 
 from fluxnet.checks.blocked import Blocked, find_blocked
@@ -28,6 +28,7 @@ from fluxnet.checks.twins import check_twins
 from fluxnet.checks.unused import check_substrates, check_unused
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order, silence
 from fluxnet.ground.progress import Progress, silent
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Source
 from fluxnet.matrices.stoichiometry import stoichiometry
 from fluxnet.network.model import Network
@@ -41,7 +42,7 @@ _STEPS = (
 )
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Counts:
     """How large the model is."""
 
@@ -53,7 +54,7 @@ class Counts:
     limits: int
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class CheckResult:
     """All that the check found.
 

@@ -11,12 +11,13 @@ chi-squared with as many degrees of freedom as R has rows.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tails
 from fluxnet.studies.closure_errors import (
     Errors,
@@ -37,7 +38,7 @@ _ROUNDING = 1e-12
 """What is left of a value below this part of it is rounding."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ClosureMatrices:
     """The rows that a closure needs, over the measured values of a run.
 
@@ -68,7 +69,7 @@ class ClosureMatrices:
             array.setflags(write=False)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ClosureArrays:
     """The closure of many runs: arrays of runs x what they tell, all in the unit of the run.
 

@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field, replace
+from dataclasses import field, replace
 from fractions import Fraction
 
+from fluxnet.ground.record import record
 from fluxnet.network.biomass import biomass_mass, biomass_mass_sd, growth_factor
 from fluxnet.network.model import (
     Basis,
@@ -26,7 +27,7 @@ __all__ = ["collect_rows"]
 Sum = tuple[tuple[ClosureRow, Fraction], ...]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Ratio:
     """A ratio whose rows have no places yet; ``row`` is t of A - r B = t."""
 
@@ -36,7 +37,7 @@ class _Ratio:
     row: ClosureRow | None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Draft:
     """What is collected of one run."""
 

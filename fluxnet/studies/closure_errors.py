@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 
 __all__ = ["Errors", "Independent", "Joint", "NoVarianceError", "along", "errors_of", "sd_of_rows",
            "sds_left", "whiten"]  # fmt: skip
@@ -20,7 +19,7 @@ class NoVarianceError(MisuseError):
     """A covariance gives a relation among rates no variance, though each rate has one."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Independent:
     """Errors that know nothing of one another: sds, runs x values."""
 
@@ -46,7 +45,7 @@ class Independent:
         return Independent(self.variances[runs])
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Joint:
     """Errors with a covariance: runs x values x values."""
 

@@ -7,11 +7,11 @@ pass), and a ratio A / B = r ± s weighs A - r B with s times B, so that B is ne
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.rates.covariance import covariance_at, run_covariance
 from fluxnet.rates.measured import Run
 from fluxnet.studies.closure_batch import ClosureArrays, close_many
@@ -26,7 +26,7 @@ _LEAST = 0.1
 """A rate that is reconciled to nothing keeps this part of its relative sd."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class PreparedRun:
     """A run with its rows, and values and covariance over the measured ones.
 

@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.chemistry.formula import Formula, degree_of_reduction
+from fluxnet.ground.record import record
 from fluxnet.network.contents import (
     CHARGE,
     ELECTRONS,
@@ -38,7 +38,7 @@ _SEEN_NOT = ("H", "O", CHARGE)
 Amounts = Mapping[str, Fraction]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class PlannedBalance:
     """A balance that is shown: its name, unit, and the unmeasured species that take part."""
 
@@ -47,7 +47,7 @@ class PlannedBalance:
     missing: tuple[str, ...]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ClosurePlan:
     """The exact structure of a closure and the matrices made of it.
 

@@ -2,16 +2,15 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
+from fluxnet.ground.record import record
 from fluxnet.network.model import Direction
 from fluxnet.rates.kinds import RateKind
 
 __all__ = ["Balance", "ClosedRate", "Closure", "ClosureTest", "RunClosure", "World"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class World:
     """What is taken to be exchanged beside the species that have a row.
 
@@ -25,7 +24,7 @@ class World:
     nitrogen: str = "ammonia"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Balance:
     """What comes in and goes out of one balance, as measured.
 
@@ -48,7 +47,7 @@ class Balance:
     missing: tuple[str, ...] = ()
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ClosureTest:
     """The test of all balances at once.
 
@@ -64,7 +63,7 @@ class ClosureTest:
     closes: bool | None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ClosedRate:
     """One rate with a row, or a ratio of two: as measured, and as the balances would have it.
 
@@ -92,7 +91,7 @@ class ClosedRate:
         return self.reconciled is not None and self.reconciled < 0
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class RunClosure:
     """The closure of one run.
 
@@ -133,7 +132,7 @@ class RunClosure:
         return next((r for r in self.rates if r.species == species), None)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Closure:
     """The closures of all runs that were asked for, and what could not be done."""
 

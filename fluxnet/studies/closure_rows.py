@@ -2,15 +2,15 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from fractions import Fraction
 
+from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Species
 
 __all__ = ["ClosureRow", "ClosureRows", "RatioRow", "Weights", "balance_unit"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ClosureRow:
     """One row of a run.
 
@@ -33,7 +33,7 @@ class ClosureRow:
     spread: float = 0.0
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Weights:
     """Weights of the rows in a sum; of a relation the sum is zero."""
 
@@ -41,7 +41,7 @@ class Weights:
     unmeasured: tuple[Fraction, ...]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class RatioRow:
     """A row that is a ratio A / B of two rates; ``over`` and ``below`` are A and B by the others.
 
@@ -59,7 +59,7 @@ class RatioRow:
     row: int | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class ClosureRows:
     """All rows of a run that closure uses.
 

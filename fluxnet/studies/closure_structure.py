@@ -9,17 +9,17 @@ the left kernel of A_u in rational numbers, so that no tolerance decides a rank.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 
 from fluxnet.exact.linear import echelon, kernel, solve
+from fluxnet.ground.record import record
 
 __all__ = ["Redundancy", "find_redundancy"]
 
 Rows = tuple[tuple[Fraction, ...], ...]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Redundancy:
     """What a set of balances says of measured and unmeasured values.
 

@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
 
 from fluxnet.chemistry.catalogue import Compound, find_compound
 from fluxnet.chemistry.formula import Formula
 from fluxnet.chemistry.reader import read_formula
+from fluxnet.ground.record import record
 from fluxnet.network.model import Network, Role, Species
 from fluxnet.rates.measured import RatesTable
 from fluxnet.studies.closure_result import World
@@ -19,7 +19,7 @@ _SHOWN = {"proton": "protons"}
 _GASES = {"oxygen": "O2", "CO2": "CO2", "hydrogen": "H2"}
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class NitrogenSource:
     """The nitrogen source: ``entry`` is what :func:`identity` gives for it."""
 

@@ -3,11 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.implied import find_implied
 from fluxnet.network.model import Network
@@ -22,7 +23,7 @@ Array = NDArray[np.float64]
 _ROUNDING = 1e-9
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class EquationTerm:
     """A species and how much of it is made (negative: used), in the unit of the rates.
 
@@ -34,7 +35,7 @@ class EquationTerm:
     implied: bool = False
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class NetEquation:
     """What a compartment (None: the whole cell) does at the solved fluxes.
 

@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.model import Network
 
@@ -15,7 +14,7 @@ __all__ = ["LedgerLine", "LedgerPlace", "keep_ledger", "ledger_places", "ledger_
 Array = NDArray[np.float64]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class LedgerPlace:
     """One carrier in one compartment that touches it."""
 
@@ -23,7 +22,7 @@ class LedgerPlace:
     compartment: str
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class LedgerLine:
     """What one compartment makes and spends of one carrier, in the unit of the rates.
 

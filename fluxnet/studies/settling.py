@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.solving.build import Built
 from fluxnet.studies.equations import NetEquation, add_implied, find_equations
 from fluxnet.studies.ledger import LedgerLine, keep_ledger, ledger_places, ledger_rows
@@ -18,7 +18,7 @@ __all__ = ["Account", "Array", "Span", "Spans", "keep_account"]
 Array = NDArray[np.float64]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Span:
     """What is known of functionals of the fluxes, one number each.
 
@@ -33,7 +33,7 @@ class Span:
 Spans = Callable[[Array, Mapping[str, Array]], Span]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Account:
     """What a flux vector amounts to."""
 

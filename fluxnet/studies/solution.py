@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from enum import Enum
 
 from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.record import record
 from fluxnet.network.model import Limit, Network, Quantity
 from fluxnet.solving.conflict import Conflict, LeastChange
 from fluxnet.solving.flux_fit import FluxKind, RateKind
@@ -42,7 +42,7 @@ class SolveStatus(Enum):
         return self in (SolveStatus.SOLVED, SolveStatus.OPTIMAL)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class FluxEstimate:
     """A reaction's flux, in the unit of the rates.
 
@@ -63,7 +63,7 @@ class FluxEstimate:
     kind: FluxKind
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class RateEstimate:
     """A boundary rate (or another measured quantity), in its direction.
 
@@ -84,7 +84,7 @@ class RateEstimate:
     reversed_: bool = False
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class FluxTest:
     """Whether the rates agree with the balances, and what the bounds add.
 
@@ -105,7 +105,7 @@ class FluxTest:
     pulling: tuple[str, ...] = ()
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class MovedParameter:
     """A parameter with ± and where the fit moved it."""
 
@@ -116,7 +116,7 @@ class MovedParameter:
     moved_sd: float
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class BindingLimit:
     """A limit that holds the optimum back; ``worth`` is the aim's gain per unit of it."""
 
@@ -125,7 +125,7 @@ class BindingLimit:
     worth: float
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class FluxSolution:
     """The answer for one run (None: the model's limits alone)."""
 
@@ -157,7 +157,7 @@ class FluxSolution:
     notes: tuple[Diagnostic, ...] = ()
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Solution:
     """The answers for all runs that were asked for, and the network that they were asked of."""
 

@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 
 from fluxnet.chemistry.formula import molar_mass
+from fluxnet.ground.record import record
 from fluxnet.network.biomass import biomass_mass
 from fluxnet.network.model import Network, Role, Species
 
@@ -15,7 +15,7 @@ ALL_CARBON = "all carbon taken up"
 """The substrate's name where a yield is per total carbon."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Yield:
     """How much of a product is released per substrate taken up.
 

@@ -7,7 +7,6 @@ mol/C-mol). In the basis C-mol/C-mol/h they count C-mol where the species holds 
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 
 from fluxnet.chemistry.catalogue import find_compound
@@ -17,13 +16,14 @@ from fluxnet.chemistry.unit_words import Dimension
 from fluxnet.chemistry.units import Unit, UnitError, UnitFault, parse_unit
 from fluxnet.chemistry.weighed import Substance, WeighedForm, weighed_mass
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.network.model import Basis, Quantity, QuantityKind, Role, Species
 from fluxnet.tables.rate_units import BadUnit, RateUnit, UnitKind
 
 __all__ = ["Factor", "Target", "biomass_weight", "carbon_weight", "factor_to", "target_of"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Target:
     """What a run's rates are brought to; ``concentration`` [g/L] divides volumetric rates."""
 
@@ -35,7 +35,7 @@ class Target:
     concentration: float | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Factor:
     """What a value is multiplied with; ``free_acids`` names species weighed as the free acid."""
 

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
 
 from fluxnet.chemistry.unit_words import Dimension
 from fluxnet.chemistry.units import UnitError, UnitFault, parse_unit
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.tables.entries import RunHead
 from fluxnet.tables.grid import Cell
 from fluxnet.tables.numbers import Number, cell_fault, read_cell
@@ -17,7 +18,7 @@ from fluxnet.tables.statements import Statements
 __all__ = ["BiomassNumbers", "read_biomass_numbers"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class BiomassNumbers:
     """The shared error as a fraction; the concentration [g/L] with its relative error."""
 

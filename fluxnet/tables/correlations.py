@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import field
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.network.model import Quantity
 from fluxnet.rates.covariance import is_possible
 from fluxnet.rates.measured import MeasuredRate
@@ -18,7 +19,7 @@ from fluxnet.tables.grid import Cell
 __all__ = ["Correlation", "Correlations", "correlation_matrix"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Correlation:
     """One pair of quantities whose errors move together.
 
@@ -34,7 +35,7 @@ class Correlation:
     cell: Cell
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Correlations:
     """All pairs of a covariance table, with what was wrong in it."""
 

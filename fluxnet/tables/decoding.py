@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import codecs
 import re
-from dataclasses import dataclass
+
+from fluxnet.ground.record import record
 
 __all__ = ["Decoded", "decode"]
 
@@ -16,7 +17,7 @@ _MARKS = (
 _CONTROL = re.compile("[\x00-\x08\x0e-\x1f]")
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Decoded:
     """Text and the encoding it was read in; ``text`` is None where the bytes are no text.
 

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field, replace
+from dataclasses import field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.tables.grid import Cell, Row
 from fluxnet.tables.titles import Key, Title
@@ -16,7 +17,7 @@ __all__ = ["BiomassColumns", "Entries", "Entry", "RunHead", "column_twice", "ext
 _BLANK = Cell("")
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Entry:
     """One quantity of one run, as it stands in the table.
 
@@ -36,7 +37,7 @@ class Entry:
     title: str = "rate"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class RunHead:
     """What a table says of a run beside its quantities: carried columns, biomass numbers."""
 
@@ -50,7 +51,7 @@ class RunHead:
     concentration_unit: str = ""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Entries:
     """All entries of a table, the runs in the order in which they appear.
 
@@ -67,7 +68,7 @@ class Entries:
     diagnostics: tuple[Diagnostic, ...] = field(default=())
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class BiomassColumns:
     """The columns that tell of a run's biomass, where the table has them."""
 

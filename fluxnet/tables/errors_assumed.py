@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+
+from fluxnet.ground.record import record
 
 __all__ = ["SdRule", "assume_sds"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class SdRule:
     """An sd as a fraction of the value, and at least a fraction of the run's largest rate.
 

@@ -2,14 +2,15 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
 
+from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Source, Span
 
 __all__ = ["Cell", "Grid", "Row", "column_letters"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Cell:
     """One cell: its text without blanks around it, and where it stands.
 
@@ -35,7 +36,7 @@ class Cell:
         return f"row {self.span.line}, column {column_letters(self.column)}"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Row:
     """One row of cells; ``text`` is the whole line as it stood."""
 
@@ -56,7 +57,7 @@ class Row:
         return all(c.is_blank for c in self.cells)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Grid:
     """The rows of one text file or one sheet.
 

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field
+from dataclasses import field
 from pathlib import Path
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.tables.decoding import decode
 from fluxnet.tables.delimited import split_lines
@@ -16,7 +17,7 @@ from fluxnet.tables.workbook import is_workbook, read_workbook
 __all__ = ["Input", "read_input"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Input:
     """One file: lines of text, or sheets; neither where ``diagnostics`` hold the reason."""
 

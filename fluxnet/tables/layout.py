@@ -2,9 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, replace
+from dataclasses import field, replace
 from enum import Enum
 
+from fluxnet.ground.record import record
 from fluxnet.network.model import Network
 from fluxnet.tables.grid import Grid, Row
 from fluxnet.tables.quantities import is_quantity_name
@@ -25,7 +26,7 @@ class Form(Enum):
     WIDE = "wide"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Layout:
     """How a grid is to be read; ``form`` is None where no header was found.
 
@@ -43,7 +44,7 @@ class Layout:
     header: Row | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Judgement:
     """What a row is as a header."""
 

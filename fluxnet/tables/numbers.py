@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.tables.grid import Cell
 from fluxnet.tables.numerals import Decimal, is_infinite, read_number, split_numeral
 
@@ -15,7 +15,7 @@ __all__ = ["Number", "cell_fault", "read_cell"]
 _DATE = re.compile(r"\d{4}-\d\d-\d\d.*")
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Number:
     """A cell's number; ``sd`` or ``relative`` (a fraction) where an error stands beside it.
 

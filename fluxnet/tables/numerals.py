@@ -8,9 +8,9 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterable
-from dataclasses import dataclass
 from enum import Enum
 
+from fluxnet.ground.record import record
 from fluxnet.tables.grid import Cell
 
 __all__ = [
@@ -47,7 +47,7 @@ _PATTERNS = {
 _INFINITE = re.compile(r"[+-]?(nan|inf|infinity|∞)", re.IGNORECASE)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Numeral:
     """The parts of a cell: ``4.2 ± 5 %`` has a value, an error, and the error in per cent."""
 
@@ -115,7 +115,7 @@ def possible_decimals(text: str) -> frozenset[Decimal]:
     return frozenset(readable)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class DecimalChoice:
     """The decimal sign of a table; ``said`` where the table shows it, ``doubtful`` the cells.
 

@@ -4,9 +4,10 @@ from __future__ import annotations
 
 import difflib
 from collections.abc import Mapping
-from dataclasses import dataclass, field, replace
+from dataclasses import field, replace
 
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Quantity, QuantityKind, Role, Species
 from fluxnet.tables.vocabulary import (
     Vocabulary,
@@ -22,7 +23,7 @@ from fluxnet.tables.vocabulary import (
 __all__ = ["QuantityFault", "QuantityReading", "is_quantity_name", "read_quantity", "settle_ratio"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class QuantityFault:
     """Why a name or direction makes no quantity."""
 
@@ -31,7 +32,7 @@ class QuantityFault:
     mend: str | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class QuantityReading:
     """A quantity with the species that it names, or the fault that forbids one.
 

@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
 from enum import Enum
 from fractions import Fraction
 
 from fluxnet.chemistry.unit_words import MARKS, WORDS, Dimension
 from fluxnet.chemistry.units import Unit, UnitError, UnitFault, parse_unit
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 
 __all__ = ["BadUnit", "RateUnit", "UnitKind", "is_rate_unit", "is_unit", "read_rate_unit"]
 
@@ -41,7 +41,7 @@ _COUNT = re.compile(r"(?:/|\bper\b)\s*\(?\s*(\d+)\s*(?=[A-Za-zµμ])")
 _WORD = re.compile(r"(?:[CeN]-)?[A-Za-zµμ]+3?")
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class RateUnit:
     """A unit of a rates table.
 
@@ -63,7 +63,7 @@ class RateUnit:
         return f"{above}/{self.count} {below}"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class BadUnit:
     """Why a unit cannot be used."""
 

@@ -9,12 +9,13 @@ what cannot be read is an error with its cell, and nothing is dropped.
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, replace
+from dataclasses import field, replace
 from pathlib import Path
 
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Source, Span
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import RatesTable
@@ -38,7 +39,7 @@ _OF_RATES = frozenset(
 )
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class RatesReading:
     """A table, or None where its faults forbid one, with all that was found.
 

@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import field
 
 import numpy as np
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.network.model import Basis, Quantity, QuantityKind, Species
 from fluxnet.rates.covariance import join_errors
 from fluxnet.rates.measured import MeasuredRate, Run, SdSource
@@ -30,7 +31,7 @@ KnownFactors = dict[tuple[object, ...], Factor | BadUnit]
 _PER_BIOMASS = (Basis.SPECIFIC, Basis.CARBON)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class BuiltRun:
     """A run, or None where faults forbid one.
 
@@ -48,7 +49,7 @@ class BuiltRun:
     diagnostics: tuple[Diagnostic, ...] = field(default=())
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Scaled:
     """A reading in the basis of the run."""
 

@@ -9,10 +9,12 @@ from __future__ import annotations
 import re
 import zipfile
 from collections.abc import Iterator
-from dataclasses import dataclass, field
+from dataclasses import field
 from io import BytesIO
 from posixpath import join, normpath
 from xml.etree import ElementTree
+
+from fluxnet.ground.record import record
 
 __all__ = ["SheetMarks", "read_marks"]
 
@@ -21,7 +23,7 @@ _ADDRESS = re.compile(r"([A-Z]+)(\d+)")
 _QUOTED = re.compile(r'"[^"]*"|\\.')
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class SheetMarks:
     """Cells by (row, column), both from 0: why one holds nothing, and which are in per cent."""
 

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import field
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Network
 from fluxnet.tables.delimited import declared_separator, split_lines, split_text
@@ -21,7 +22,7 @@ _SAMPLE = 200
 _COVARIANCE = "covariance"
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class SheetChoice:
     """The sheet with the rates and the one with their covariance."""
 

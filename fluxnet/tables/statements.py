@@ -16,13 +16,14 @@ What can be declared is written as in a model::
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass, field
+from dataclasses import field
 from fractions import Fraction
 
 from fluxnet.chemistry.catalogue import find_compound
 from fluxnet.chemistry.reader import FormulaError, FormulaFault, read_formula
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Role, Species
 from fluxnet.tables.grid import Cell, Row
@@ -47,7 +48,7 @@ _CONCENTRATION = re.compile(
 _NITROGEN = re.compile(r"nitrogen\s+source\s*[:=]?\s*(?P<name>.+)", re.IGNORECASE)
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Statements:
     """What stood above a table.
 

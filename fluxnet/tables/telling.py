@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.tables.entries import Entries
 from fluxnet.tables.errors_assumed import SdRule
@@ -20,7 +20,7 @@ __all__ = ["Told", "assumption_notes", "tell_understood"]
 _SEPARATORS = {",": "comma-separated", ";": "semicolon-separated", "\t": "tab-separated"}
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Told:
     """The note on how a table was read, and its parts."""
 

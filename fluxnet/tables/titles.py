@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
 from enum import Enum
 
+from fluxnet.ground.record import record
 from fluxnet.tables.grid import Cell
 from fluxnet.tables.rate_units import is_unit
 from fluxnet.tables.vocabulary import read_direction, split_direction
@@ -48,7 +48,7 @@ _SD_START = re.compile(
 )
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Title:
     """A title taken apart.
 

@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass, field, replace
+from dataclasses import field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Network, Quantity, QuantityKind, Role, Species
 from fluxnet.rates.measured import RatesTable
@@ -29,7 +30,7 @@ from fluxnet.tables.wide_form import collect_wide
 __all__ = ["Understood", "understand"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Understood:
     """A table with everything that was said about it; ``table`` may be None."""
 

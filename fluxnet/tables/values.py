@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Collection, Iterable
-from dataclasses import dataclass, field, replace
+from dataclasses import field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Quantity, QuantityKind, Species
 from fluxnet.tables.entries import Entry
@@ -20,7 +21,7 @@ from fluxnet.tables.vocabulary import Vocabulary
 __all__ = ["Reading", "Readings", "read_entries"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Reading:
     """An entry understood: numbers still in the units as written.
 
@@ -38,7 +39,7 @@ class Reading:
     sd_unit: RateUnit | None = None
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Readings:
     """All readings; ``species`` each once, by the name first typed for it.
 

@@ -5,10 +5,10 @@ from __future__ import annotations
 import difflib
 import re
 import unicodedata
-from dataclasses import dataclass
 
 from fluxnet.chemistry.catalogue import CompoundKind, load_catalogue
 from fluxnet.chemistry.reader import read_formula
+from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role, Species
 
 __all__ = [
@@ -32,7 +32,7 @@ _MU = frozenset({"mu", "μ", "growth-rate", "specific-growth-rate"})
 _BIOMASS = frozenset({"biomass", "cells", "dry-weight", "cell-dry-weight"})
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Vocabulary:
     """The names that a table may use. ``declared`` are the table's own species."""
 
@@ -40,7 +40,7 @@ class Vocabulary:
     declared: tuple[Species, ...] = ()
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Found:
     """A species that a name stands for. ``assumed`` marks the common biomass formula."""
 

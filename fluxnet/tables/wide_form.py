@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.tables.entries import (
     BiomassColumns,
     Entries,
@@ -23,7 +22,7 @@ from fluxnet.tables.titles import Key, Title
 __all__ = ["collect_wide"]
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class _Columns:
     """The columns of a wide table: quantities with their sds, the run, what is carried."""
 

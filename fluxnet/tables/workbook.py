@@ -10,12 +10,13 @@ import datetime
 import zipfile
 import zlib
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import field
 from io import BytesIO
 from xml.etree import ElementTree
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.record import record
 from fluxnet.ground.source import Source, Span
 from fluxnet.tables.grid import Cell, Grid, Row
 from fluxnet.tables.sheet_marks import SheetMarks, read_marks
@@ -39,7 +40,7 @@ _LARGEST = 400_000_000
 """Bytes that a workbook may unpack to; more is no table of rates."""
 
 
-@dataclass(frozen=True, slots=True)
+@record
 class Workbook:
     """The sheets of a workbook, in their order; none where ``diagnostics`` say why."""
 
