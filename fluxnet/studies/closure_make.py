@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 from fractions import Fraction
 from math import isfinite, isnan
 
@@ -40,7 +41,10 @@ def make_closure(
         or_index=_or_index(rows, values),
         test=test,
         world=plan.world,
-        rates=_rates(plan, one, sds, arrays, place),
+        rates=tuple(
+            replace(rate, reconciled=None, reconciled_sd=None, z=None) if contradictions else rate
+            for rate in _rates(plan, one, sds, arrays, place)
+        ),
         reference=plan.reference,
         words=verdict(balances, test, contradictions),
         contradictions=contradictions,
@@ -73,8 +77,8 @@ def _balance(plan: ClosurePlan, arrays: ClosureArrays, place: int, k: int) -> Ba
         gap=gap,
         sd=sd,
         z=gap / sd if sd > 0 and not planned.missing else None,
-        recovery=_per_cent(arrays.recovery[place, k]),
-        recovery_sd=_per_cent(arrays.recovery_sd[place, k]),
+        recovery=None if planned.missing else _per_cent(arrays.recovery[place, k]),
+        recovery_sd=None if planned.missing else _per_cent(arrays.recovery_sd[place, k]),
         missing=planned.missing,
     )
 

@@ -30,9 +30,9 @@ class Balance:
 
     ``name`` is ``carbon``, ``nitrogen``, ``electrons`` or an element. For electrons ``taken``
     is what substrates give and ``released`` what products and acceptors take. ``gap`` is
-    released less taken; ``z`` is the gap over its sd, None where the sd is zero or something
-    unmeasured (``missing``) takes part. ``recovery`` and its sd are in per cent, None where
-    nothing is taken up.
+    released less taken; ``z`` is the gap over its sd, None where the sd is zero. ``recovery``
+    and its sd are in per cent, None where nothing is taken up. Where something that was not
+    measured (``missing``) takes part, z and recovery are None: the others say nothing of it.
     """
 
     name: str
@@ -71,8 +71,8 @@ class ClosedRate:
     and ratios), in ``unit``; below zero it is reversed.
     ``measured`` and ``sd`` are None where it was not measured; ``sd`` is the one that was
     used, a relative sd being taken of the reconciled value. ``reconciled`` and its sd are None
-    where nothing determines the rate. ``z`` is measured less reconciled over its sd, None
-    where no balance tests the rate.
+    where nothing determines the rate, or exact values contradict one another. ``z`` is
+    measured less reconciled over its sd, None where no balance tests the rate.
     """
 
     species: str
