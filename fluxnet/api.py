@@ -220,11 +220,18 @@ def closure(rates: Rates, model: Model | None = None, **options: Any) -> Answer[
     """Do carbon, nitrogen and electrons close?
 
     ``options`` are those of :func:`fluxnet.studies.closure.close_rates`.
+
+    Raises
+    ------
+    InputError
+        Where no run can be closed: an option names what the table does not have.
     """
     from fluxnet.presenting.closure_screen import closure_record, closure_screen
     from fluxnet.studies.closure import close_rates
 
     result = close_rates(rates.table, network=_network(model), **options)
+    if not result.runs:
+        raise InputError(result.diagnostics)
     record = closure_record(result)
     return Answer(result, Document.CLOSURE, closure_screen(result), record, "rates")
 

@@ -5,9 +5,11 @@ from __future__ import annotations
 import argparse
 
 from fluxnet.cli.inputs import load_model, load_rates
+from fluxnet.cli.main import Exit
 from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
 from fluxnet.cli.output import give_faults, give_findings, give_screen
 from fluxnet.ground.diagnostic import Diagnostic, in_order
+from fluxnet.ground.names import Name
 from fluxnet.network.model import Network
 from fluxnet.presenting.records import Document, Input
 
@@ -17,7 +19,7 @@ EXAMPLES = """Do carbon, nitrogen and electrons close?
 
   fluxnet closure rates.csv                          formulas from the catalogue
   fluxnet closure rates.csv --model model.flux       formulas from the model
-  fluxnet closure rates.csv --run A --without CO2    as if CO2 had no row
+  fluxnet closure rates.csv --run A --without CO2    as if the row of CO2 were not there
   fluxnet closure rates.csv --nitrogen nitrate       another nitrogen source
 """
 
@@ -27,7 +29,8 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("rates", metavar="RATES", help="a rates table (CSV, TSV, XLSX), or -")
     add_model_argument(parser, optional=True)
     parser.add_argument(
-        "--without", metavar="NAME", action="append", default=[], help="leave a row out"
+        "--without", metavar="NAME", action="append", default=[],
+        help="leave the rows of NAME out: it then counts as not exchanged",
     )
     parser.add_argument("--nitrogen", metavar="NAME", help="the nitrogen source (ammonia)")
     add_table_options(parser)
@@ -54,10 +57,16 @@ def run(arguments: argparse.Namespace) -> int:
     closure = close_rates(
         rates.table,
         network=network,
-        nitrogen=arguments.nitrogen or rates.table.nitrogen or "ammonia",
+        nitrogen=arguments.nitrogen,
         without=tuple(arguments.without),
     )
     diagnostics = in_order((*diagnostics, *closure.diagnostics))
+    if not closure.runs:
+        status = give_faults(arguments, Document.CLOSURE, inputs, diagnostics)
+        # an option that names what is not there is misuse; what a table names is its fault
+        asked = arguments.without or arguments.nitrogen
+        wrong = any(d.name is Name.UNKNOWN_QUANTITY for d in closure.diagnostics)
+        return Exit.MISUSE if asked and wrong else status
     give_findings(arguments, diagnostics)
     return give_screen(
         arguments, Document.CLOSURE, inputs, diagnostics, closure_record(closure),

@@ -24,7 +24,7 @@ class Align(Enum):
 
 @record
 class Column:
-    """A column: its title on screen, its key in data, its unit.
+    """A column: its title on screen (empty: only in data), its key in data, its unit.
 
     ``sd_of`` names the column whose standard deviation this one holds: on screen the two are
     shown together, rounded to what the error allows. Otherwise ``digits`` significant ones are
@@ -59,6 +59,11 @@ class Table:
         for row in self.rows:
             if len(row) != len(self.columns):
                 raise ValueError(f"a row of table {self.key} has {len(row)} cells")
+
+    @property
+    def is_shown(self) -> bool:
+        """Whether it has a column for the screen; a table of data alone has none."""
+        return any(column.title for column in self.columns)
 
     def to_frame(self) -> pd.DataFrame:
         """The table as a pandas frame, columns by key, numbers at full precision."""

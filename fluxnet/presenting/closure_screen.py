@@ -2,11 +2,14 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from dataclasses import replace
 from typing import Any
 
 from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.presenting.numbers import format_number, format_p
 from fluxnet.presenting.screen import Block, Heading, Mood, Sentence, blocks_of_run
+from fluxnet.rates.kinds import RateKind
 from fluxnet.studies.closure_result import Closure, RunClosure
 
 __all__ = ["closure_record", "closure_screen"]
@@ -14,77 +17,121 @@ __all__ = ["closure_record", "closure_screen"]
 # With more runs than this only the overview is shown.
 _MOST_RUNS = 12
 
+_IN_OVERVIEW = ("carbon", "nitrogen", "electrons")
+_CLOSES = {True: "yes", False: "no", None: "no test"}
+_VERDICTS = {True: "closes", False: "does not close", None: "no test"}
+
+_MEANING = {
+    RateKind.BALANCEABLE: "the others test it",
+    RateKind.NOT_BALANCEABLE: "nothing tests it",
+    RateKind.CALCULABLE: "not measured, but fixed by the others",
+    RateKind.NOT_CALCULABLE: "not measured, and fixed by nothing",
+}
+_NO_PROOF = (
+    "A closed balance is no proof: two errors can cancel, and what no balance tests can be wrong "
+    "by any amount."
+)
+
 
 def closure_screen(closure: Closure) -> tuple[Block, ...]:
     """Everything that is shown of a closure: an overview of several runs, then each."""
-    blocks: list[Block] = []
-    if len(closure.runs) > 1:
-        blocks.append(_overview(closure))
-    if len(closure.runs) <= _MOST_RUNS:
-        for run in closure.runs:
-            blocks += blocks_of_run(_run_blocks(run), run.run)
-        blocks.append(
-            Sentence(
-                "A closed balance is no proof: two errors can cancel, and what no balance tests "
-                "can be wrong by any amount.",
-                Mood.QUIET,
-            )
-        )
-    else:
-        blocks.append(Sentence("One run in full: --run NAME."))
-    return tuple(blocks)
+    if not closure.runs:
+        return ()
+    blocks: list[Block] = [_overview(closure)]
+    if len(closure.runs) > _MOST_RUNS:
+        return (*blocks, Sentence("One run in full: --run NAME."))
+    for run in closure.runs:
+        blocks += blocks_of_run(_run_blocks(run), run.run)
+    return (*blocks, Sentence(_how_to_read(closure), Mood.QUIET), Sentence(_NO_PROOF, Mood.QUIET))
+
+
+def _how_to_read(closure: Closure) -> str:
+    """What the signs and the kinds that are shown mean."""
+    shown = {rate.kind for run in closure.runs for rate in run.rates}
+    kinds = [f"{_kind(kind)}: {words}" for kind, words in _MEANING.items() if kind in shown]
+    return (
+        "± is one standard deviation (sd); z of a balance is its gap in sds, z of a rate measured "
+        f"less reconciled in sds of that difference. {_capital('; '.join(kinds))}."
+    )
+
+
+def _kind(kind: RateKind) -> str:
+    return kind.value.replace("_", " ")
+
+
+def _capital(text: str) -> str:
+    return text[:1].upper() + text[1:]
 
 
 def _overview(closure: Closure) -> Table:
-    columns = (
-        Column("run", "name"),
-        Column("verdict", "verdict"),
+    """All runs, one a row; data only where there is but one."""
+    several = len(closure.runs) > 1
+    names = [n for n in _IN_OVERVIEW if any(run.find_balance(n) for run in closure.runs)]
+    extras = list(dict.fromkeys(key for run in closure.runs for key, _ in run.extras))
+    columns = [
+        Column("run", "run"),
+        Column("closes", "closes"),
         Column("h", "h", align=Align.RIGHT, digits=3),
         Column("dof", "dof", align=Align.RIGHT),
         Column("p", "p_text", align=Align.RIGHT),
-        Column("carbon", "carbon", "%", Align.RIGHT),
-        Column("", "carbon_sd", sd_of="carbon"),
-        Column("electrons", "electrons", "%", Align.RIGHT),
-        Column("", "electrons_sd", sd_of="electrons"),
-    )
+        Column("", "p"),
+        Column("", "limit"),
+    ]
+    for name in names:
+        columns += [
+            Column(name, name, "%", Align.RIGHT), Column("", f"{name}_sd", sd_of=name)
+        ]  # fmt: skip
+    columns += [Column("", "or_index"), *(Column("", key) for key in extras)]
     rows: list[tuple[Cell, ...]] = []
     for run in closure.runs:
+        test, carried = run.test, dict(run.extras)
         recoveries: list[Cell] = []
-        for name in ("carbon", "electrons"):
+        for name in names:
             balance = run.find_balance(name)
-            recoveries += [balance and balance.recovery, balance and balance.recovery_sd]
-        test = run.test
-        rows.append((run.run, _verdict(run), test.h, test.dof, format_p(test.p), *recoveries))
-    return Table("overview", f"{len(rows)} runs", columns, tuple(rows))
-
-
-def _verdict(run: RunClosure) -> str:
-    if run.test.closes is None:
-        return "no test"
-    return "closes" if run.test.closes else "does not close"
+            told = (None, None) if balance is None else (balance.recovery, balance.recovery_sd)
+            recoveries += [told[0], _sd(told[1])]
+        rows.append((
+            run.run, _CLOSES[test.closes], test.h, test.dof, format_p(test.p), test.p, test.limit,
+            *recoveries, run.or_index, *(carried.get(key) for key in extras),
+        ))  # fmt: skip
+    if not several:
+        columns = [replace(column, title="") for column in columns]
+    return Table("overview", f"{len(rows)} runs" if several else "", tuple(columns), tuple(rows))
 
 
 def _run_blocks(run: RunClosure) -> tuple[Block, ...]:
     mood = {True: Mood.GOOD, False: Mood.BAD, None: Mood.DOUBTFUL}[run.test.closes]
-    blocks: list[Block] = [
-        Heading(f"run {run.run}: {_verdict(run)}"),
+    return (
+        Heading(f"run {run.run}: {_VERDICTS[run.test.closes]}"),
         Sentence(_world(run)),
         Sentence(run.words, mood, verdict=True),
-    ]
-    blocks += [
-        Sentence(f"Exact values contradict one another: {', '.join(names)}.", Mood.BAD)
-        for names in run.contradictions
-    ]
-    blocks += [Sentence(f"Note: {note}") for note in run.notes]
-    blocks += [_balances(run), _rates(run)]
-    return tuple(blocks)
+        *(Sentence(f"Note: {note}.") for note in run.notes),
+        _balances(run),
+        _rates(run),
+    )
 
 
 def _world(run: RunClosure) -> str:
-    text = f"Assumed: exchanged are the species with a row, and {', '.join(run.world.free)}"
-    if run.world.not_exchanged:
-        text += f"; not exchanged: {', '.join(run.world.not_exchanged)}"
-    return text + "."
+    """What is assumed to be exchanged, for somebody who has not read the manual."""
+    world = run.world
+    text = "Assumed to be exchanged: what has a row, and in any amount "
+    free = [name for name in world.free if name != world.nitrogen]
+    if world.nitrogen in world.free:
+        text += f"{', '.join(free)} and the nitrogen source, {world.nitrogen}."
+    else:
+        text += f"{_and(free)}; the nitrogen source, {world.nitrogen}, has a row."
+    if not world.not_exchanged:
+        return f"{text} Not exchanged: all else."
+    return f"{text} Not exchanged: {', '.join(world.not_exchanged)}, and all else without a row."
+
+
+def _and(names: Sequence[str]) -> str:
+    return names[0] if len(names) == 1 else f"{', '.join(names[:-1])} and {names[-1]}"
+
+
+def _sd(sd: float | None) -> float | None:
+    """An sd for the screen: of what no measured value went into there is none to be shown."""
+    return sd or None
 
 
 def _balances(run: RunClosure) -> Table:
@@ -100,21 +147,36 @@ def _balances(run: RunClosure) -> Table:
         Column("", "recovery_sd", sd_of="recovery"),
     )
     rows = tuple(
-        (b.name, b.unit, b.taken, b.released, b.gap, b.sd, b.z, b.recovery, b.recovery_sd)
+        (b.name, b.unit, b.taken, b.released, b.gap, _sd(b.sd), b.z, b.recovery,
+         _sd(b.recovery_sd))
         for b in run.balances
     )
-    notes = [f"electrons are counted from {run.reference} upwards"]
+    lacking: dict[tuple[str, ...], list[str]] = {}
+    for balance in run.balances:
+        if balance.missing:
+            lacking.setdefault(balance.missing, []).append(balance.name)
+    notes = [
+        f"{_and(names)}: without {_and(lacked)}, which {_was(lacked)} not measured"
+        for lacked, names in lacking.items()
+    ]
+    if run.find_balance("electrons") is not None:
+        notes.append(f"electrons: degrees of reduction, CO2, water and {run.reference} at 0")
+    if run.find_balance("nitrogen") is None:
+        notes.append(f"nitrogen is not balanced, since {run.world.nitrogen} has no row")
     if run.or_index is not None:
-        notes.append(f"O/R index {format_number(run.or_index, 4)}")
-    missing = dict.fromkeys(name for b in run.balances for name in b.missing)
-    if missing:
-        notes.append(f"without what is not measured: {', '.join(missing)}")
+        notes.append(f"O/R index of the products {format_number(run.or_index, 4)}")
     return Table("balances", "Balances, as measured", columns, rows, tuple(notes))
+
+
+def _was(names: tuple[str, ...]) -> str:
+    return "were" if len(names) > 1 else "was"
 
 
 def _rates(run: RunClosure) -> Table:
     columns = (
-        Column("species", "species"),
+        Column("species", "row"),
+        Column("", "species"),
+        Column("", "unit"),
         Column("way", "direction"),
         Column("measured", "measured", align=Align.RIGHT),
         Column("", "measured_sd", sd_of="measured"),
@@ -126,26 +188,18 @@ def _rates(run: RunClosure) -> Table:
     rows: list[tuple[Cell, ...]] = []
     for rate in run.rates:
         way = rate.direction.value if rate.direction else ""
-        name = rate.species if rate.unit == run.unit else f"{rate.species} [{rate.unit}]"
-        rows.append(
-            (
-                name,
-                f"{way}, reversed" if rate.is_reversed else way,
-                rate.measured,
-                rate.sd,
-                rate.reconciled,
-                rate.reconciled_sd,
-                rate.z,
-                rate.kind.value.replace("_", " "),
-            )
-        )
-    return Table(
-        "rates",
-        f"Rates [{run.unit}]",
-        columns,
-        tuple(rows),
-        ("sd: one standard deviation; z: adjustment over its sd",),
-    )
+        shows_unit = rate.unit not in (run.unit, "mol/mol")
+        rows.append((
+            f"{rate.species} [{rate.unit}]" if shows_unit else rate.species, rate.species,
+            rate.unit, f"{way}, reversed" if rate.is_reversed else way, rate.measured, rate.sd,
+            rate.reconciled,
+            rate.reconciled_sd if rate.sd == 0 else _sd(rate.reconciled_sd),
+            rate.z, _kind(rate.kind),
+        ))  # fmt: skip
+    notes = []
+    if run.test.dof == 1 and run.test.h is not None:
+        notes.append("one degree of freedom is one relation: every z tells the same")
+    return Table("rates", f"Rates [{run.unit}]", columns, tuple(rows), tuple(notes))
 
 
 def closure_record(closure: Closure) -> dict[str, Any]:

@@ -79,7 +79,8 @@ class Terminal:
         after_table = False
         if quiet:
             screen = _verdicts(screen)
-        for place, block in enumerate(screen):
+        shown = [b for b in screen if not isinstance(b, Table) or b.is_shown]
+        for place, block in enumerate(shown):
             if after_table and isinstance(block, Sentence):
                 console.print()
             after_table = isinstance(block, Table)

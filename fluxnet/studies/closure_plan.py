@@ -138,18 +138,12 @@ def plan_closure(
         )
         for i in shown
     )
-    notes = [
-        f"electrons are not balanced: {element} has no reference state" for element in unseen
-    ]
-    if source.name in free and source.formula.count("C"):
-        notes.append(
-            f"{source.name} brings carbon with its nitrogen: the carbon balance is made without it"
-        )
+    notes = _notes(rows, source, unseen, is_free=source.name in free)
     return ClosurePlan(
         rows.measured, rows.unmeasured, rows.ratios,
         tuple(a is not None and b is not None for a, b in zip(over, below, strict=True)),
         balances, redundancy, matrices,
-        describe_world(species, free, source, network, rows.aside), reference, tuple(notes),
+        describe_world(species, free, source, network, rows.aside), reference, notes,
     )  # fmt: skip
 
 
@@ -164,6 +158,30 @@ def _by_measured(
         if weight and known is not None:
             total = [t + weight * k for t, k in zip(total, known, strict=True)]
     return tuple(total)
+
+
+def _notes(
+    rows: ClosureRows, source: NitrogenSource, unseen: Sequence[str], *, is_free: bool
+) -> tuple[str, ...]:
+    """What the reader should know of how the balances were made."""
+    notes = [
+        f"electrons are not balanced: {element} has no reference state" for element in unseen
+    ]
+    if is_free and source.formula.count("C"):
+        notes.append(
+            f"{source.name} brings carbon with its nitrogen: the carbon balance is made without it"
+        )
+    formulas = {s.name: s.formula for s in rows.species}
+    for row in (*rows.measured, *rows.unmeasured):
+        formula = formulas.get(row.species or "")
+        if not is_free or row.direction is not Direction.IN or formula is None:
+            continue
+        if formula.count("N") and not formula.count("C"):
+            notes.append(
+                f"{row.name} is taken up while {source.name} is free: where {row.name} is the "
+                f"nitrogen source, name it (--nitrogen {row.name}), and nitrogen is balanced"
+            )
+    return tuple(notes)
 
 
 def _content(formula: Formula | None) -> Content:

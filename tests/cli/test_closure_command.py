@@ -1,0 +1,105 @@
+from __future__ import annotations
+
+import json
+from pathlib import Path
+from typing import Any
+
+import pytest
+
+from fluxnet.cli.main import Exit, run
+
+HEAD = "run,species,direction,rate,sd,unit\n"
+GOOD = """A,glucose,in,2,0.1,mmol/g/h
+A,CO2,out,6,0.3,mmol/g/h
+A,oxygen,in,5.9,0.3,mmol/g/h
+A,mu,,0.15,0.005,1/h
+A,CO2 / oxygen,,1.03,0.02,
+"""
+BAD = """B,glucose,in,10,0.2,mmol
+B,ethanol,out,15,0.2,mmol
+B,CO2,out,20,0.2,mmol
+"""
+
+
+@pytest.fixture(autouse=True)
+def folder(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Path:
+    (tmp_path / "good.csv").write_text(HEAD + GOOD, encoding="utf-8")
+    (tmp_path / "both.csv").write_text(HEAD + GOOD + BAD, encoding="utf-8")
+    monkeypatch.chdir(tmp_path)
+    return tmp_path
+
+
+def document(words: list[str], capsys: pytest.CaptureFixture[str]) -> Any:
+    run(["closure", *words, "--json"])
+    return json.loads(capsys.readouterr().out)
+
+
+def test_the_status_says_whether_the_runs_close() -> None:
+    assert run(["closure", "good.csv"]) == Exit.SOUND
+    assert run(["closure", "both.csv"]) == Exit.FINDING
+    assert run(["closure", "both.csv", "--run", "A"]) == Exit.SOUND
+
+
+def test_a_run_holds_the_keys_that_others_rely_on(capsys: pytest.CaptureFixture[str]) -> None:
+    told = document(["both.csv"], capsys)
+    assert told["document"] == "closure/1"
+    assert {"fluxnet", "document", "inputs", "warnings", "runs"} <= set(told)
+    for one in told["runs"]:
+        assert {"run", "balances", "or_index", "test", "world", "rates", "suspects"} <= set(one)
+        assert set(one["test"]) == {"h", "dof", "p", "limit", "closes"}
+        assert {"free", "not_exchanged"} <= set(one["world"])
+        for balance in one["balances"]:
+            assert {"name", "unit", "in", "out", "gap", "sd", "z", "recovery"} <= set(balance)
+        for rate in one["rates"]:
+            assert {"species", "direction", "measured", "sd", "reconciled", "reconciled_sd", "z",
+                    "kind"} <= set(rate)  # fmt: skip
+    ratio = told["runs"][0]["rates"][-1]
+    assert (ratio["species"], ratio["direction"]) == ("CO2 out / oxygen in", None)
+    assert ratio["kind"] == "balanceable"
+
+
+def test_a_row_is_left_out_by_name(capsys: pytest.CaptureFixture[str]) -> None:
+    told = document(["good.csv", "--without", "O2"], capsys)["runs"][0]
+    assert told["world"]["not_exchanged"] == ["O2", "H2"]
+    assert [rate["species"] for rate in told["rates"]] == ["glucose", "CO2", "mu"]
+
+
+@pytest.mark.parametrize(
+    ("words", "hint"),
+    [
+        (["--without", "glucos"], "did you mean glucose?"),
+        (["--without", "lactate"], "the rows are glucose in, CO2 out"),
+        (["--nitrogen", "amonia"], "ammonia"),
+        (["--run", "Z"], "its runs are A"),
+    ],
+)
+def test_an_option_that_names_what_is_not_there_is_misuse(
+    words: list[str], hint: str, capsys: pytest.CaptureFixture[str]
+) -> None:
+    assert run(["closure", "good.csv", *words]) == Exit.MISUSE
+    streams = capsys.readouterr()
+    assert streams.out == ""
+    assert hint in " ".join(streams.err.split())
+
+
+def test_a_nitrogen_source_that_the_table_names_wrongly_is_a_fault_of_the_table(
+    folder: Path,
+) -> None:
+    (folder / "bad.csv").write_text("nitrogen source glucose\n" + HEAD + GOOD, encoding="utf-8")
+    assert run(["closure", "bad.csv"]) == Exit.FINDING
+
+
+def test_files_of_one_run_hold_its_test(folder: Path) -> None:
+    assert run(["closure", "good.csv", "--csv", "out"]) == Exit.SOUND
+    head, row = (folder / "out" / "overview.csv").read_text(encoding="utf-8").splitlines()
+    told = dict(zip(head.split(","), row.split(","), strict=True))
+    assert told["closes"] == "yes"
+    assert float(told["h"]) < float(told["limit"])
+    assert (folder / "out" / "balances.csv").exists()
+
+
+def test_quiet_tells_the_verdict_alone(capsys: pytest.CaptureFixture[str]) -> None:
+    run(["closure", "good.csv", "--quiet"])
+    words = " ".join(capsys.readouterr().out.split())
+    assert words.startswith("Carbon closes to")
+    assert words.endswith(").")
