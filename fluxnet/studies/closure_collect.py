@@ -25,6 +25,7 @@ from fluxnet.studies.closure_world import identity
 __all__ = ["collect_rows"]
 
 Sum = tuple[tuple[ClosureRow, Fraction], ...]
+_NOTHING = Weights((), ())
 
 
 @record
@@ -96,8 +97,8 @@ def collect_rows(
 
 def _collected(draft: _Draft, left_out: tuple[str, ...], aside: tuple[str, ...]) -> ClosureRows:
     rows = sorted(draft.rows, key=lambda r: r.order)
-    measured = tuple(r for r in rows if r.place is not None)
-    unmeasured = tuple(r for r in rows if r.place is None)
+    measured = tuple(r for r in rows if r.is_measured)
+    unmeasured = tuple(r for r in rows if not r.is_measured)
 
     def weights(pairs: Sum) -> Weights:
         told = {id(row): weight for row, weight in pairs}
@@ -160,6 +161,7 @@ def _add_growth(draft: _Draft, place: int | None, order: int) -> bool:
         _add_growth_of_one(draft, *pairs[0], place, order)
         return True
     growth = ClosureRow("mu", None, None, "1/h", Fraction(0), place, order)
+    draft.rows.append(growth)
     parts: list[tuple[ClosureRow, Fraction]] = [(growth, Fraction(-1))]
     for one, factor in pairs:
         if draft.find(one.name) is None:
@@ -168,8 +170,8 @@ def _add_growth(draft: _Draft, place: int | None, order: int) -> bool:
         row = draft.find(one.name)
         if row is not None:
             draft.species[one.name] = one
-            parts.append((row, row.released * factor))
-    draft.rows.append(growth)
+            made = (row, row.released * factor)
+            parts += [made, *((t, Fraction(1)) for t in _add_ash(draft, one, made, order))]
     draft.ties.append(tuple(parts))
     return True
 
@@ -178,18 +180,44 @@ def _add_growth_of_one(
     draft: _Draft, biomass: Species, factor: Fraction, place: int | None, order: int
 ) -> None:
     """Add mu as a row of the only biomass, tied to the biomass' own rate where that has a row."""
-    is_specific = draft.run.basis is Basis.SPECIFIC
-    spread = biomass_mass_sd(biomass) / biomass_mass(biomass) if is_specific else 0.0
     own = draft.find(biomass.name)
     growth = ClosureRow(
         "mu", biomass.name if own is None else None, None, "1/h",
         1 / factor if own is None else Fraction(0), place, order,
-        identity(biomass.name, biomass.entry), spread,
+        identity(biomass.name, biomass.entry),
     )  # fmt: skip
     draft.species[biomass.name] = biomass
     draft.rows.append(growth)
+    whole = (growth, Fraction(1))
+    ash = _add_ash(draft, biomass, whole, order, -growth.released)
     if own is not None:
-        draft.ties.append(((growth, Fraction(1)), (own, -own.released * factor)))
+        taken = ((t, Fraction(-1)) for t in ash)
+        draft.ties.append((whole, (own, -own.released * factor), *taken))
+
+
+def _add_ash(
+    draft: _Draft,
+    biomass: Species,
+    growth: tuple[ClosureRow, Fraction],
+    order: int,
+    released: Fraction = Fraction(0),
+) -> tuple[ClosureRow, ...]:
+    """What an uncertain ash content takes from a growth rate, if it is uncertain.
+
+    The rate counts dry weight; that of the organic part is mu - t, with t = 0 ± s mu.
+    """
+    if draft.run.basis is not Basis.SPECIFIC or not biomass.ash_sd:
+        return ()
+    spread = biomass_mass_sd(biomass) / biomass_mass(biomass)
+    name = f"ash of {biomass.name}"
+    row = ClosureRow(
+        name, biomass.name if released else None, None, "1/h", released, None, order,
+        identity(biomass.name, biomass.entry), spread,
+    )  # fmt: skip
+    draft.rows.append(row)
+    told = RatioRow(name, "", order, _NOTHING, _NOTHING, Fraction(0), is_told=False)
+    draft.ratios.append(_Ratio(told, ((row, Fraction(1)),), (growth,), row))
+    return (row,)
 
 
 def _add_ratio(draft: _Draft, rate: MeasuredRate, place: int | None, order: int) -> bool:
@@ -197,48 +225,51 @@ def _add_ratio(draft: _Draft, rate: MeasuredRate, place: int | None, order: int)
     quantity = rate.quantity
     over = _part(draft, quantity, quantity.numerator, order)
     below = _part(draft, quantity, quantity.denominator, order)
-    if over is None or below is None:
+    if not over or not below:
         return False
     unit = "mol/mol"
     if not counts_moles(quantity):
-        unit = f"({over[0].unit})/({below[0].unit})"
-    nothing = Weights((), ())
+        unit = f"({over[0][0].unit})/({below[0][0].unit})"
     if place is None or rate.value is None:
-        told = RatioRow(str(quantity), unit, order, nothing, nothing)
-        draft.ratios.append(_Ratio(told, (over,), (below,), None))
+        told = RatioRow(str(quantity), unit, order, _NOTHING, _NOTHING)
+        draft.ratios.append(_Ratio(told, over, below, None))
         return True
     # as written: 1.05 and not its nearest binary fraction, so that ranks are those of decimals
     value = Fraction(repr(float(rate.value)))
     row = ClosureRow(str(quantity), None, None, unit, Fraction(0), place, order)
     draft.rows.append(row)
-    weights = {id(over[0]): over[1]}
-    weights[id(below[0])] = weights.get(id(below[0]), Fraction(0)) - value * below[1]
-    rows = {id(r): r for r in (over[0], below[0])}
+    weights: dict[int, Fraction] = {}
+    rows = {id(r): r for r, _ in (*over, *below)}
+    for factor, part in ((Fraction(1), over), (-value, below)):
+        for one, weight in part:
+            weights[id(one)] = weights.get(id(one), Fraction(0)) + factor * weight
     tie = tuple((rows[k], w) for k, w in weights.items())
     draft.ties.append((*tie, (row, Fraction(-1))))
-    told = RatioRow(str(quantity), unit, order, nothing, nothing, value)
-    draft.ratios.append(_Ratio(told, (over,), (below,), row))
+    told = RatioRow(str(quantity), unit, order, _NOTHING, _NOTHING, value)
+    draft.ratios.append(_Ratio(told, over, below, row))
     return True
 
 
-def _part(
-    draft: _Draft, ratio: Quantity, part: Quantity | None, order: int
-) -> tuple[ClosureRow, Fraction] | None:
-    """A part of a ratio by the row that holds it: in moles, or with mu in the run's units."""
+def _part(draft: _Draft, ratio: Quantity, part: Quantity | None, order: int) -> Sum:
+    """A part of a ratio by the rows that make it: in moles, or with mu in the run's units.
+
+    Nothing where it is not known.
+    """
     if part is None or part.kind not in (QuantityKind.MU, QuantityKind.RATE):
-        return None
+        return ()
     if part.kind is QuantityKind.MU:
-        if not any(r.name == "mu" for r in draft.rows) and not _add_growth(draft, None, order):
-            return None
-        return next(r for r in draft.rows if r.name == "mu"), Fraction(1)
+        if not any(r.name == "mu" for r in draft.rows):
+            _add_growth(draft, None, order)
+        return tuple((r, Fraction(1)) for r in draft.rows if r.name == "mu")
     species = draft.known(part.name)
     if species is None:
-        return None
+        return ()
     if draft.find(species.name) is None:
         _add_rate(draft, part, None, order)
-    row = draft.find(species.name)
-    if row is None:
-        return None
     direction = part.direction or Direction.OUT
     per_mole = Fraction(1) if counts_moles(ratio) else _per_mole(species, draft.run)
-    return row, row.released * direction.sign * per_mole
+    return tuple(
+        (r, r.released * direction.sign * per_mole)
+        for r in draft.rows
+        if r.species == species.name
+    )

@@ -113,6 +113,8 @@ def _rates(
             RateKind.CALCULABLE if fixed else RateKind.NOT_CALCULABLE,
         )))  # fmt: skip
     for k, ratio in enumerate(plan.ratios):
+        if not ratio.is_told:
+            continue
         found.append((ratio.order, _ratio(plan, k, one, sds, arrays, place)))
     return tuple(rate for _, rate in sorted(found, key=lambda pair: pair[0]))
 

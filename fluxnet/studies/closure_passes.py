@@ -57,10 +57,13 @@ class PreparedRun:
 
 def prepare_run(run: Run, rows: ClosureRows) -> PreparedRun:
     """The values and covariance of a run's measured rows."""
-    given = np.array([float(run.measured[r.place or 0].value or 0.0) for r in rows.measured])
+    given = np.array([
+        0.0 if r.place is None else float(run.measured[r.place].value or 0.0)
+        for r in rows.measured
+    ])  # fmt: skip
     values = given.copy()
     values[_ratio_places(rows)] = 0.0
-    return PreparedRun(run, rows, given, values, _covariance(rows, given, run_covariance(run)))
+    return PreparedRun(run, rows, given, values, _covariance(rows, run_covariance(run)))
 
 
 def close_prepared(
@@ -118,11 +121,13 @@ def _ratio_places(rows: ClosureRows) -> list[int]:
     return [ratio.row for ratio in rows.ratios if ratio.row is not None]
 
 
-def _covariance(rows: ClosureRows, values: Array, whole: Array) -> Array:
+def _covariance(rows: ClosureRows, whole: Array) -> Array:
     """The covariance of the rows used, with what an uncertain ash content adds."""
-    places = [r.place or 0 for r in rows.measured]
-    spread = np.array([r.spread for r in rows.measured]) * values
-    return np.asarray(whole[np.ix_(places, places)] + np.outer(spread, spread))
+    own = len(whole)
+    places = [own if r.place is None else r.place for r in rows.measured]
+    spread = np.array([r.spread for r in rows.measured])
+    padded = np.pad(whole, (0, 1))
+    return np.asarray(padded[np.ix_(places, places)] + np.diag(np.square(spread)))
 
 
 def _first_sizes(one: PreparedRun) -> Array:
@@ -161,5 +166,7 @@ def _at_answer(one: PreparedRun, arrays: ClosureArrays, place: int) -> Array:
     least = _LEAST * np.abs(one.given)
     answer = np.where(np.abs(answer) < least, np.copysign(least, answer), answer)
     values = np.array([float(r.value or 0.0) for r in one.run.measured])
-    values[[row.place or 0 for row in one.rows.measured]] = answer
-    return _covariance(one.rows, answer, covariance_at(one.run, values))
+    for row, value in zip(one.rows.measured, answer, strict=True):
+        if row.place is not None:
+            values[row.place] = value
+    return _covariance(one.rows, covariance_at(one.run, values))

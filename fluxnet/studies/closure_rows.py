@@ -18,8 +18,8 @@ class ClosureRow:
     the sum over several biomass species, and for a ratio. ``released`` is the moles of the
     species that one unit of the row's value releases, negative for uptake. ``place`` is its
     index among the run's measured rates, None where it has no value; ``order`` that among all
-    rows. ``spread`` is a relative error that the value gets from elsewhere (an uncertain ash
-    content).
+    rows. ``spread`` marks a value that no row of the table has: what an uncertain ash content
+    takes from a growth rate, a part 0 ± ``spread`` of it.
     """
 
     name: str
@@ -31,6 +31,11 @@ class ClosureRow:
     order: int = 0
     entry: str | None = None
     spread: float = 0.0
+
+    @property
+    def is_measured(self) -> bool:
+        """Whether it has a value with an error, or an exact one."""
+        return self.place is not None or self.spread > 0
 
 
 @record
@@ -47,7 +52,8 @@ class RatioRow:
 
     ``row`` is the index, among the measured rows, of the value t in A - r B = t: measured as
     0 ± s B, so that what is left of t is the adjustment of the ratio times B. It is None where
-    the ratio was not measured.
+    the ratio was not measured. ``is_told`` is False for what
+    ash takes of mu, which is no row of the table.
     """
 
     name: str
@@ -57,6 +63,7 @@ class RatioRow:
     below: Weights
     value: Fraction | None = None
     row: int | None = None
+    is_told: bool = True
 
 
 @record

@@ -59,8 +59,19 @@ def test_ash_makes_less_biomass_of_the_same_growth_and_its_error_is_counted() ->
     ash = close(AEROBIC, "biomass X CH1.8O0.5N0.2 ash 8 ± 2 %\n")
     grown = balance(ash, "carbon").released - 6
     assert grown == pytest.approx(0.92 * (balance(plain, "carbon").released - 6), rel=1e-9)
-    expected = np.hypot(0.005, 0.15 * 0.02 / 0.92)
-    assert rate(ash, "mu").sd == pytest.approx(expected, rel=1e-9)
+    assert rate(ash, "mu").sd == 0.005
+    both = np.hypot(0.005, 0.15 * 0.02 / 0.92) * 920 / 24.6264
+    assert balance(ash, "carbon").sd == pytest.approx(np.hypot(np.hypot(0.6, 0.3), both), rel=1e-3)
+
+
+def test_a_growth_rate_that_is_calculated_has_the_error_of_its_ash_too() -> None:
+    """1 C-mmol of biomass is 24.6264 / 0.92 mg of cells; both errors add in squares."""
+    text = ("A,glucose,in,2,0.1,mmol/g/h\nA,CO2,out,6,0.3,mmol/g/h\nA,oxygen,in,,,mmol/g/h\n"
+            "A,mu,,,,1/h\n")  # fmt: skip
+    growth = rate(close(text, "biomass X CH1.8O0.5N0.2 ash 8 ± 2 %\n"), "mu")
+    assert growth.reconciled == pytest.approx(6 * 24.6264 / 920, rel=1e-4)
+    relative = np.hypot(np.hypot(0.6, 0.3) / 6, 0.02 / 0.92)
+    assert growth.reconciled_sd == pytest.approx(float(growth.reconciled or 0) * relative)
 
 
 def test_a_blank_value_is_calculable_where_the_balances_fix_it() -> None:
