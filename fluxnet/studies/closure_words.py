@@ -28,7 +28,7 @@ def verdict(
     parts = [
         _of_closing(closing),
         _of_failing(failing),
-        *(f"no {b.name} {_be(b)} taken up" for b in balances if not b.taken and b.released > 0),
+        _of_sourceless([b for b in balances if not b.taken and b.released > 0]),
         _of_missing([b for b in balances if b.missing]),
         _of_test(test, contradictions, is_surprise=bool(closing) and not failing),
     ]
@@ -49,6 +49,13 @@ def _of_failing(balances: Sequence[Balance]) -> str:
         return ""
     verb = "do" if len(balances) > 1 else _verb(balances[0], "do", "does")
     return f"{_and([f'{b.name} ({_per_cent(b)})' for b in balances])} {verb} not close"
+
+
+def _of_sourceless(balances: Sequence[Balance]) -> str:
+    if not balances:
+        return ""
+    verb = "are" if len(balances) > 1 else _verb(balances[0], "are", "is")
+    return f"no {' and no '.join(b.name for b in balances)} {verb} taken up"
 
 
 def _of_missing(balances: Sequence[Balance]) -> str:
@@ -91,10 +98,6 @@ def _closes(balance: Balance) -> bool:
 
 def _verb(balance: Balance, plural: str, singular: str | None = None) -> str:
     return plural if balance.name == "electrons" else singular or f"{plural}s"
-
-
-def _be(balance: Balance) -> str:
-    return _verb(balance, "are", "is")
 
 
 def _and(names: Sequence[str]) -> str:

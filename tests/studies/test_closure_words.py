@@ -68,6 +68,12 @@ def told(name: str, recovery: float | None, sd: float = 2.0, missing: tuple[str,
             "out, and A in and C out.",
         ),
         (
+            [told("carbon", None, taken=0.0), told("electrons", None, taken=0.0)], REJECT, (),
+            "No carbon and no electrons are taken up; the rates contradict one another (h = 13.2 "
+            "on 2 degrees of freedom, limit 5.99, p = 0.0014): one is wrong, or something "
+            "exchanged has no row.",
+        ),
+        (
             [told("carbon", 0.0, 0.0, released=0.0)], ClosureTest(2164.2, 2, 0.0, 5.991, False), (),
             "Carbon (0 %) does not close; the rates contradict one another (h = 2164 on 2 degrees "
             "of freedom, limit 5.99, p < 0.001): one is wrong, or something exchanged has no row.",
