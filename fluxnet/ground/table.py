@@ -24,11 +24,13 @@ class Align(Enum):
 
 @record
 class Column:
-    """A column: its title on screen (empty: only in data), its key in data, its unit.
+    """A column: its title on screen (empty: only in data), its key in data (empty: only on
+    screen), its unit.
 
     ``sd_of`` names the column whose standard deviation this one holds: on screen the two are
-    shown together, rounded to what the error allows. Otherwise ``digits`` significant ones are
-    shown, or ``decimals`` behind the point. Text longer than ``wrap`` letters is broken.
+    shown together, rounded to what the error allows; an sd of 0 as ``exact``, unless
+    ``says_exact`` is False. Otherwise ``digits`` significant ones are shown, or ``decimals``
+    behind the point. Text longer than ``wrap`` letters is broken.
     """
 
     title: str
@@ -39,6 +41,7 @@ class Column:
     digits: int = 4
     decimals: int | None = None
     wrap: int | None = None
+    says_exact: bool = True
 
 
 @record

@@ -34,14 +34,20 @@ _NO_PROOF = (
 
 
 def closure_screen(closure: Closure) -> tuple[Block, ...]:
-    """Everything that is shown of a closure: an overview of several runs, then each."""
+    """Everything that is shown of a closure: an overview of several runs, then each.
+
+    The assumed world stands first, once where all runs share it.
+    """
     if not closure.runs:
         return ()
-    blocks: list[Block] = [_overview(closure)]
+    worlds = {_world(run) for run in closure.runs}
+    shared = len(worlds) == 1 and len(closure.runs) > 1
+    blocks: list[Block] = [Sentence(world) for world in worlds if shared]
+    blocks.append(_overview(closure))
     if len(closure.runs) > _MOST_RUNS:
         return (*blocks, Sentence("One run in full: --run NAME."))
     for run in closure.runs:
-        blocks += blocks_of_run(_run_blocks(run), run.run)
+        blocks += blocks_of_run(_run_blocks(run, tells_world=not shared), run.run)
     return (*blocks, Sentence(_how_to_read(closure), Mood.QUIET), Sentence(_NO_PROOF, Mood.QUIET))
 
 
@@ -79,8 +85,9 @@ def _overview(closure: Closure) -> Table:
     ]
     for name in names:
         columns += [
-            Column(name, name, "%", Align.RIGHT), Column("", f"{name}_sd", sd_of=name)
-        ]  # fmt: skip
+            Column(name, name, "%", Align.RIGHT),
+            Column("", f"{name}_sd", sd_of=name, says_exact=False),
+        ]
     columns += [Column("", "or_index"), *(Column("", key) for key in extras)]
     rows: list[tuple[Cell, ...]] = []
     for run in closure.runs:
@@ -89,7 +96,7 @@ def _overview(closure: Closure) -> Table:
         for name in names:
             balance = run.find_balance(name)
             told = (None, None) if balance is None else (balance.recovery, balance.recovery_sd)
-            recoveries += [told[0], _sd(told[1])]
+            recoveries += told
         rows.append((
             run.run, _CLOSES[test.closes], test.h, test.dof, format_p(test.p), test.p, test.limit,
             *recoveries, run.or_index, *(carried.get(key) for key in extras),
@@ -99,11 +106,11 @@ def _overview(closure: Closure) -> Table:
     return Table("overview", f"{len(rows)} runs" if several else "", tuple(columns), tuple(rows))
 
 
-def _run_blocks(run: RunClosure) -> tuple[Block, ...]:
+def _run_blocks(run: RunClosure, *, tells_world: bool) -> tuple[Block, ...]:
     mood = {True: Mood.GOOD, False: Mood.BAD, None: Mood.DOUBTFUL}[run.test.closes]
     return (
         Heading(f"run {run.run}: {_VERDICTS[run.test.closes]}"),
-        Sentence(_world(run)),
+        *((Sentence(_world(run)),) if tells_world else ()),
         Sentence(run.words, mood, verdict=True),
         *(Sentence(f"Note: {note}.") for note in run.notes),
         _balances(run),
@@ -129,11 +136,6 @@ def _and(names: Sequence[str]) -> str:
     return names[0] if len(names) == 1 else f"{', '.join(names[:-1])} and {names[-1]}"
 
 
-def _sd(sd: float | None) -> float | None:
-    """An sd for the screen: of what no measured value went into there is none to be shown."""
-    return sd or None
-
-
 def _balances(run: RunClosure) -> Table:
     columns = (
         Column("balance", "name"),
@@ -141,14 +143,13 @@ def _balances(run: RunClosure) -> Table:
         Column("in", "in", align=Align.RIGHT),
         Column("out", "out", align=Align.RIGHT),
         Column("gap, out - in", "gap", align=Align.RIGHT),
-        Column("", "sd", sd_of="gap"),
+        Column("", "sd", sd_of="gap", says_exact=False),
         Column("z", "z", align=Align.RIGHT, decimals=1),
         Column("recovery", "recovery", "%", Align.RIGHT),
-        Column("", "recovery_sd", sd_of="recovery"),
+        Column("", "recovery_sd", sd_of="recovery", says_exact=False),
     )
     rows = tuple(
-        (b.name, b.unit, b.taken, b.released, b.gap, _sd(b.sd), b.z, b.recovery,
-         _sd(b.recovery_sd))
+        (b.name, b.unit, b.taken, b.released, b.gap, b.sd, b.z, b.recovery, b.recovery_sd)
         for b in run.balances
     )
     lacking: dict[tuple[str, ...], list[str]] = {}
@@ -181,7 +182,7 @@ def _rates(run: RunClosure) -> Table:
         Column("measured", "measured", align=Align.RIGHT),
         Column("", "measured_sd", sd_of="measured"),
         Column("reconciled", "reconciled", align=Align.RIGHT),
-        Column("", "reconciled_sd", sd_of="reconciled"),
+        Column("", "reconciled_sd", sd_of="reconciled", says_exact=False),
         Column("z", "z", align=Align.RIGHT, decimals=1),
         Column("kind", "kind"),
     )
@@ -192,9 +193,7 @@ def _rates(run: RunClosure) -> Table:
         rows.append((
             f"{rate.species} [{rate.unit}]" if shows_unit else rate.species, rate.species,
             rate.unit, f"{way}, reversed" if rate.is_reversed else way, rate.measured, rate.sd,
-            rate.reconciled,
-            rate.reconciled_sd if rate.sd == 0 else _sd(rate.reconciled_sd),
-            rate.z, _kind(rate.kind),
+            rate.reconciled, rate.reconciled_sd, rate.z, _kind(rate.kind),
         ))  # fmt: skip
     notes = []
     if run.test.dof == 1 and run.test.h is not None:

@@ -97,8 +97,11 @@ class Terminal:
         for diagnostic in diagnostics[:most]:
             head, *rest = diagnostic_lines(diagnostic)
             self._print(console, head, _SEVERITY_STYLE[diagnostic.severity])
-            for line in rest:
+            marked = 2 if diagnostic.source_line is not None else 0
+            for line in rest[:marked]:
                 self._print_whole(console, line)
+            for line in rest[marked:]:
+                self._print(console, line, "", hang=13)
         if len(diagnostics) > most:
             self._print(console, f"... and {len(diagnostics) - most} more (--all shows them)", "")
 
@@ -117,7 +120,7 @@ class Terminal:
             legacy_windows=False,
         )
 
-    def _print(self, console: Console, text: str, style: str) -> None:
+    def _print(self, console: Console, text: str, style: str, hang: int = 0) -> None:
         from textwrap import wrap
 
         from rich.text import Text
@@ -125,7 +128,10 @@ class Terminal:
         # In a pipe sentences are broken for 80 columns; only tables may be wider.
         width = console.width if self.width is None else min(self.width, 80)
         for line in text.split("\n"):
-            for part in wrap(self._plain(line), width, break_on_hyphens=False) or [""]:
+            parts = wrap(
+                self._plain(line), width, break_on_hyphens=False, subsequent_indent=" " * hang
+            )
+            for part in parts or [""]:
                 console.print(Text(part, style=style if self.colour else ""), soft_wrap=True)
 
     def _print_whole(self, console: Console, line: str, style: str = "") -> None:
@@ -225,6 +231,8 @@ def table_cells(table: Table) -> tuple[tuple[Column, ...], tuple[tuple[str, ...]
         cells: list[str] = []
         for k, column in shown:
             sd = row[partner[column.key]] if column.key in partner else None
+            if sd == 0 and not table.columns[partner[column.key]].says_exact:
+                sd = None
             cells.append(_cell(row[k], sd, column))
         rows.append(tuple(cells))
     return tuple(c for _, c in shown), tuple(rows)

@@ -56,6 +56,13 @@ def test_the_world_is_the_first_thing_told_and_names_the_nitrogen_source() -> No
     assert "Not exchanged: all else." in flat(A + "A,H2,out,,,mmol/g/h,north\n")
 
 
+def test_a_world_that_all_runs_share_is_told_once_and_first() -> None:
+    assert flat(A + B).startswith("Assumed to be exchanged: what has a row")
+    assert flat(A + B).count("Assumed") == 1
+    assert flat(A + C).startswith("2 runs")
+    assert flat(A + C).count("Assumed") == 2
+
+
 def test_a_nitrogen_compound_that_is_taken_up_beside_the_free_source_is_told() -> None:
     nitrate = A + "A,nitrate,in,1.2,0.1,mmol/g/h,north\n"
     assert "name it (--nitrogen nitrate)" in flat(nitrate)
@@ -125,3 +132,9 @@ def test_many_runs_are_told_as_an_overview_alone() -> None:
 def test_options_that_name_what_is_not_there_raise() -> None:
     with pytest.raises(fx.InputError, match="no row of lactate"):
         answer(A, without=("lactate",))
+
+
+def test_only_a_typed_zero_is_told_as_exact_and_data_keep_every_zero() -> None:
+    text = "A,glucose,in,2,0,mmol,x\nA,ethanol,out,3.9,0.1,mmol,x\nA,CO2,out,4.1,0.1,mmol,x\n"
+    assert shown(text).count("exact") == 1
+    assert list(answer(text).to_frame()["reconciled_sd"]) == [0, 0, 0]
