@@ -4,13 +4,14 @@ from __future__ import annotations
 
 import argparse
 import sys
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
 
 from fluxnet.cli.main import Exit
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
+from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
 from fluxnet.ground.source import Source, Span
@@ -125,13 +126,34 @@ def load_rates(arguments: argparse.Namespace, network: Network | None) -> ReadRa
     if table is not None and arguments.run:
         table, told = _choose_runs(table, arguments)
         diagnostics = (*told, *diagnostics)
+    if table is not None and arguments.unmeasured:
+        table = _leave_unmeasured(table, arguments.unmeasured)
     return ReadRates(table, diagnostics, inputs)
+
+
+def _leave_unmeasured(table: RatesTable, asked: Sequence[str]) -> RatesTable:
+    from difflib import get_close_matches
+
+    from fluxnet.rates.unmeasuring import leave_unmeasured, measured_names
+
+    known = measured_names(table)
+    for name in asked:
+        if name not in known:
+            near = get_close_matches(name, known, 1, 0.6)
+            hint = f"the nearest is {near[0]}" if near else f"there are {', '.join(known)}"
+            raise MisuseError(f"no measured rate is called {name!r}; {hint}")
+    return leave_unmeasured(table, asked)
 
 
 def _choose_runs(
     table: RatesTable, arguments: argparse.Namespace
 ) -> tuple[RatesTable | None, tuple[Diagnostic, ...]]:
     names = [run.name for run in table.runs]
+    asked = [
+        name
+        for given in arguments.run
+        for name in ([given] if given in names else [part.strip() for part in given.split(",")])
+    ]
     told = tuple(
         Diagnostic(
             Name.UNKNOWN_RUN,
@@ -139,10 +161,10 @@ def _choose_runs(
             Span(str(arguments.rates), 0),
             mend=f"its runs are {', '.join(names)}",
         )
-        for name in arguments.run
+        for name in asked
         if name not in names
     )
     if told:
         return None, told
-    chosen = tuple(run for run in table.runs if run.name in arguments.run)
+    chosen = tuple(run for run in table.runs if run.name in asked)
     return replace(table, runs=chosen), ()

@@ -126,8 +126,7 @@ def _start_lightly() -> None:
 
 def _questions() -> str:
     """What is shown for ``fluxnet`` alone: the questions with the command for each."""
-    width = max(len(c.example) for c in COMMANDS)
-    lines = [f"  {c.example:<{width}}  {c.question}" for c in COMMANDS]
+    lines = [f"  {c.question}\n      {c.example}" for c in COMMANDS]
     return "\n".join(
         [
             "fluxnet closes, explains and proves the rates of a cultivation.",

@@ -36,7 +36,13 @@ def add_model_argument(parser: argparse.ArgumentParser, *, optional: bool = Fals
 def add_table_options(parser: argparse.ArgumentParser) -> None:
     """How a rates table is read."""
     group = parser.add_argument_group("rates table")
-    group.add_argument("--run", metavar="R", action="append", default=[], help="this run only")
+    group.add_argument(
+        "--run", metavar="R", action="append", default=[], help="these runs only: --run A,B"
+    )
+    group.add_argument(
+        "--unmeasured", metavar="NAME", action="append", default=[],
+        help="as if this rate were blank: exchanged, but not measured",
+    )  # fmt: skip
     group.add_argument("--sheet", help="the sheet of a workbook")
     group.add_argument("--decimal", choices=("point", "comma"), help="the decimal sign")
     group.add_argument("--separator", choices=("comma", "semicolon", "tab"), help="of columns")

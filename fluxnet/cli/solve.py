@@ -33,8 +33,10 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("--variant", metavar="V", default="base", help='such as "lean * fast"')
     aim = parser.add_mutually_exclusive_group()
     words = "a boundary species, `in SPECIES`, a reaction, mu, a carrier, or `2 A + B`"
-    aim.add_argument("--maximise", metavar="X", help=f"make X as large as possible: {words}")
-    aim.add_argument("--minimise", metavar="X", help="make X as small as possible")
+    aim.add_argument(
+        "--maximise", "--maximize", metavar="X", help=f"make X as large as possible: {words}"
+    )
+    aim.add_argument("--minimise", "--minimize", metavar="X", help="make X as small as possible")
     parser.add_argument(
         "--within", metavar="K", type=float, default=2.0,
         help="with an aim, hold each measured rate within K sd (2)",

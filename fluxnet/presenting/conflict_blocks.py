@@ -39,8 +39,17 @@ def conflict_blocks(run: FluxSolution) -> tuple[Block, ...]:
             Column("by [sd]", "in_sd", align=Align.RIGHT, decimals=1),
         )
         moved = [c for c in change.changes if abs(c.in_sd) >= 0.05]
-        changes = tuple((str(c.quantity), c.measured, c.changed, c.in_sd) for c in moved)
-        notes = ["parameters stand at their values, limits and exact values do not give way"]
+        rounding = 1e-12 * max((abs(c.measured) for c in change.changes), default=0.0)
+        changes = tuple(
+            (
+                str(c.quantity),
+                c.measured,
+                0.0 if abs(c.changed) < rounding else c.changed,
+                c.in_sd,
+            )
+            for c in moved
+        )
+        notes = ["with parameters as written; limits and exact values do not give way"]
         if change.common_k is not None:
             notes.append(
                 "all measured values can hold together within "

@@ -28,20 +28,16 @@ def equation_text(equation: NetEquation, scale: float = 1.0, digits: int = 3) ->
     return f"{left} -> {right}"
 
 
-def equation_lines(equation: NetEquation, unit: str) -> tuple[tuple[str, str, str], ...]:
-    """The equation per mol of substrate and, beside it, in the unit of the rates."""
+def equation_lines(equation: NetEquation, unit: str) -> tuple[tuple[str, str], ...]:
+    """The equation per mol of substrate and, below it, in the unit of the rates."""
     name = equation.compartment or "whole cell"
-    lines: list[tuple[str, str, str]] = []
-    if equation.per is not None and equation.per_amount:
-        lines.append((name, "per_mol", equation_text(equation, 1 / equation.per_amount)))
-        lines.append((f"  [{unit}]", "rate", equation_text(equation)))
-    else:
-        lines.append((name, "rate", equation_text(equation)))
+    amount = equation.per_amount
+    lines = [(name, equation_text(equation, 1 / amount if amount else 1.0))]
+    if amount and format_number(amount, 3) != "1":
+        lines.append((f"  [{unit}]", equation_text(equation)))
     if equation.base:
-        amount = format_number(equation.base, 3)
-        per = ""
-        if equation.per is not None and equation.per_amount:
-            share = format_number(equation.base / equation.per_amount, 3)
-            per = f", {share} mol per mol {equation.per}"
-        lines.append(("  base for the pH", "base", f"{amount} {unit}{per}"))
+        text = f"{format_number(equation.base, 3)} {unit}"
+        if amount and equation.per is not None:
+            text += f", {format_number(equation.base / amount, 3)} mol per mol {equation.per}"
+        lines.append(("  base for the pH", text))
     return tuple(lines)

@@ -81,7 +81,8 @@ def format_range(low: float | None, high: float | None) -> str:
     decimals = max(0, 1 - math.floor(math.log10(width)))
     if decimals > 8:
         return f"{low:.4g} to {high:.4g}"
-    return f"{_trim(_fixed(low, decimals))} to {_trim(_fixed(high, decimals))}"
+    ends = ("0" if end == 0 else _fixed(end, decimals) for end in (low, high))
+    return " to ".join(ends)
 
 
 def format_coefficient(value: Fraction | float) -> str:
@@ -119,7 +120,3 @@ def _fixed(value: float, decimals: int) -> str:
     if rounded == 0:
         rounded = 0.0  # no minus zero
     return f"{rounded:.{max(0, decimals)}f}"
-
-
-def _trim(text: str) -> str:
-    return text.rstrip("0").rstrip(".") if "." in text else text

@@ -47,17 +47,27 @@ def blocks_of_run(blocks: Iterable[Block], run: str | None) -> tuple[Block, ...]
 
 
 def screen_tables(screen: tuple[Block, ...]) -> tuple[Table, ...]:
-    """The tables of a screen as data: those of several runs as one, with a column ``run``."""
+    """The tables of a screen as data: those of several runs as one, with a column ``run``.
+
+    Columns and tables without a key are for the screen only.
+    """
     groups: dict[str, list[Table]] = {}
     for block in screen:
-        if isinstance(block, Table):
+        if isinstance(block, Table) and block.key:
             groups.setdefault(block.key, []).append(block)
     return tuple(_joined(tables) for tables in groups.values())
 
 
 def _joined(tables: list[Table]) -> Table:
     first = tables[0]
-    if all(table.run is None for table in tables):
-        return replace(first, rows=tuple(row for table in tables for row in table.rows))
-    rows = tuple((table.run, *row) for table in tables for row in table.rows)
-    return Table(first.key, first.title, (Column("run", "run"), *first.columns), rows)
+    kept = [k for k, column in enumerate(first.columns) if column.key]
+    columns = tuple(first.columns[k] for k in kept)
+    has_runs = any(table.run is not None for table in tables)
+    if has_runs:
+        columns = (Column("run", "run"), *columns)
+    rows = tuple(
+        (*((table.run,) if has_runs else ()), *(row[k] for k in kept))
+        for table in tables
+        for row in table.rows
+    )
+    return Table(first.key, first.title, columns, rows)

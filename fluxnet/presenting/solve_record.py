@@ -38,6 +38,7 @@ def _run(run: FluxSolution) -> Record:
         "unit": run.unit,
         "aim": None if run.aim is None else str(run.aim),
         "optimum": run.optimum,
+        "optimum_without_own_row": run.unheld,
         "within": run.within,
         "fluxes": [
             {
@@ -151,6 +152,7 @@ def _run(run: FluxSolution) -> Record:
             }
             for m in run.moved
         ],
+        "extras": dict(run.extras),
         "notes": [diagnostic_record(note) for note in run.notes],
     }
 

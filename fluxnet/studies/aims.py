@@ -68,6 +68,10 @@ def _read_term(words: Sequence[str], network: Network) -> tuple[Fraction, Quanti
         direction = Direction(rest.pop(0))
     elif len(rest) > 1 and rest[-1] in ("in", "out"):
         direction = Direction(rest.pop())
+    if "/" in rest:
+        raise MisuseError(
+            "an aim is no ratio: fix the lower part with a limit, and aim at the upper one"
+        )
     if len(rest) != 1:
         raise MisuseError(f"an aim is a name, not {' '.join(words) or 'nothing'!r}")
     return weight, _find_quantity(rest[0], direction, network)

@@ -7,6 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 
+from fluxnet.network.biomass import biomasses
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import Run
 from fluxnet.solving.build import build_problem
@@ -51,6 +52,8 @@ def fit_run(network: Network, run: Run | None) -> FluxSolution:
         left_out=fit.built.left_out,
         replaced=fit.built.replaced,
         notes=fit.built.notes,
+        extras=run.extras if run else (),
+        has_biomass=bool(biomasses(network)),
         violated_limits=tell_violations(fit.built.problem),
     )
     if fit.status is FitStatus.INFEASIBLE:
@@ -136,7 +139,7 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
     return replace(
         frame,
         fluxes=fluxes,
-        rates=tuple(_rate(row, frame.unit, rounding) for row in rates),
+        rates=tuple(_rate(row, frame.unit, rounding, fit.built.run) for row in rates),
         relations=tuple(f"{r.words} = {r.value:.4g} ± {r.sd:.2g}" for r in fit.relations),
         moved=tuple(MovedParameter(m.name, m.value, m.sd, m.moved, m.moved_sd) for m in fit.moved),
         ledger=account.ledger,
@@ -145,18 +148,20 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
     )
 
 
-def _rate(row: FittedRow, unit: str, rounding: float) -> RateEstimate:
+def _rate(row: FittedRow, unit: str, rounding: float, run: Run | None) -> RateEstimate:
     value = 0.0 if abs(row.value) <= rounding else row.value
+    measured = run.find(row.quantity) if run is not None else None
     return RateEstimate(
         quantity=row.quantity,
         unit=rate_unit(row.quantity, unit),
         measured=row.measured,
-        sd=row.sd,
+        # The fit takes a relative sd of the fitted value; people look for the one they typed.
+        sd=row.sd if measured is None or measured.sd is None else measured.sd,
         reconciled=value,
         reconciled_sd=row.value_sd,
         low=row.low,
         high=row.high,
-        z=row.z,
+        z=None if row.z is None else -row.z + 0.0,
         kind=row.kind,
         reversed_=value < 0 and row.quantity.direction is not None,
     )

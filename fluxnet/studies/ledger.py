@@ -91,7 +91,7 @@ def keep_ledger(
                 place.compartment,
                 made,
                 spent,
-                made - spent,
+                made - spent + 0.0,
                 sd,
                 None if lows is None else float(lows[k]),
                 None if highs is None else float(highs[k]),

@@ -7,10 +7,11 @@ from dataclasses import replace
 
 import numpy as np
 
+from fluxnet.network.biomass import biomasses
 from fluxnet.network.model import Network, Quantity, QuantityKind
 from fluxnet.rates.kinds import RateKind
 from fluxnet.rates.measured import Run
-from fluxnet.solving.alter import with_row
+from fluxnet.solving.alter import with_row, without_bounds
 from fluxnet.solving.build import Built, build_problem
 from fluxnet.solving.classify import classify
 from fluxnet.solving.conflict import find_conflict, least_change
@@ -78,6 +79,8 @@ def optimise(
         replaced=built.replaced,
         notes=built.notes,
         violated_limits=tell_violations(problem),
+        extras=run.extras if run else (),
+        has_biomass=bool(biomasses(network)),
     )
     if best.outcome is Outcome.UNBOUNDED:
         reason = explain_unbounded(problem, cost if aim.sense is Sense.MAXIMISE else -cost)
@@ -133,6 +136,7 @@ def _at_optimum(
     solution = replace(
         frame,
         optimum=best.objective + 0.0,
+        unheld=_unheld(problem, cost, frame.aim),
         fluxes=estimates,
         rates=_rates(built, fluxes, spans, frame.unit),
         ledger=account.ledger,
@@ -142,6 +146,19 @@ def _at_optimum(
         residual=max(best.residual, ranges.residual, worst_violation(at_best, fluxes)),
     )
     return replace(solution, words=tell_optimum(solution))
+
+
+def _unheld(problem: Problem, cost: Array, aim: Aim | None) -> float | None:
+    """The optimum without the rows that measure the aim itself, where there are any."""
+    asked = {quantity for _, quantity in aim.terms} if aim is not None else set()
+    rows = enumerate(problem.rows)
+    own = [i for i, row in rows if row.value is not None and row.quantity in asked]
+    if aim is None or not own:
+        return None
+    programme = Programme(without_bounds(problem, own))
+    maximise = aim.sense is Sense.MAXIMISE
+    free = programme.maximise(cost) if maximise else programme.minimise(cost)
+    return free.objective if free.outcome is not Outcome.FAILED else None
 
 
 def _is_point(low: float, high: float) -> bool:
@@ -298,6 +315,13 @@ def _binding(
         price = float(best.row_prices[i])
         if row.kind in (RowKind.BALANCE, RowKind.ROLE) or abs(price) <= _PRICE:
             continue
-        name = f"{row.name} (within {within:g} sd)" if row.sd else row.name
-        found.append(BindingLimit(name, float(problem.matrix[i] @ best.fluxes), price))
+        value = float(problem.matrix[i] @ best.fluxes)
+        name = row.name
+        if row.sd and row.value is not None and row.ratio is None:
+            at_low = abs(value - problem.row_low[i]) < abs(value - problem.row_high[i])
+            name = (
+                f"{row.name} {'>=' if at_low else '<='} {value:.4g} "
+                f"(measured {row.value:.4g} {'-' if at_low else '+'} {within:g} sd)"
+            )
+        found.append(BindingLimit(name, value, price))
     return tuple(sorted(found, key=lambda limit: -abs(limit.worth * limit.value)))

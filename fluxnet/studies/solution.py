@@ -67,8 +67,9 @@ class FluxEstimate:
 class RateEstimate:
     """A boundary rate (or another measured quantity), in its direction.
 
-    ``measured`` and ``sd`` are None where it was not measured; ``z`` is the adjustment over
-    its sd. ``reversed_`` marks a rate that came out against its direction.
+    ``measured`` and ``sd`` (as the table gives them) are None where it was not measured; ``z``
+    is the change over its sd, positive where the rate was raised. ``reversed_`` marks a rate
+    that came out against its direction.
     """
 
     quantity: Quantity
@@ -127,7 +128,11 @@ class BindingLimit:
 
 @record
 class FluxSolution:
-    """The answer for one run (None: the model's limits alone)."""
+    """The answer for one run (None: the model's limits alone).
+
+    ``extras`` are the table's columns carried through. ``unheld`` is the optimum of an aim
+    that is measured itself, without its own row.
+    """
 
     run: str | None
     variant: str
@@ -136,6 +141,7 @@ class FluxSolution:
     words: str
     aim: Aim | None = None
     optimum: float | None = None
+    unheld: float | None = None
     within: float | None = None
     fluxes: tuple[FluxEstimate, ...] = ()
     rates: tuple[RateEstimate, ...] = ()
@@ -155,6 +161,8 @@ class FluxSolution:
     replaced: tuple[Limit, ...] = ()
     residual: float = 0.0
     notes: tuple[Diagnostic, ...] = ()
+    extras: tuple[tuple[str, str], ...] = ()
+    has_biomass: bool = False
 
 
 @record

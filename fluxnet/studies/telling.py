@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from math import isinf
+
 from fluxnet.solving.conflict import Conflict, LeastChange
 from fluxnet.solving.least_change import find_violations
 from fluxnet.solving.problem import Problem
@@ -56,8 +58,8 @@ def _largest_spender(solution: FluxSolution) -> str:
         if spent > 0:
             most = min(lines, key=lambda line: line.net)
             return (
-                f" Of the {carrier} that compartments make for one another, {most.compartment} "
-                f"spends {-most.net / spent:.0%}."
+                f" Of the {carrier} that compartments make for one another (net of what each "
+                f"spends itself), {most.compartment} takes {-most.net / spent:.0%}."
             )
     return ""
 
@@ -65,13 +67,16 @@ def _largest_spender(solution: FluxSolution) -> str:
 def tell_optimum(solution: FluxSolution) -> str:
     """What an aim's best value is, per what, and what holds it back."""
     value = f"{solution.optimum:.4g} {_aim_unit(solution)}"
-    words = f"The best that the network allows: {solution.aim} gives {value}"
+    words = f"The best that the network allows, {solution.aim}: {value}"
     share = _share(solution)
     words += f"{share}. "
     if solution.limits:
         words += f"It is held back by {_listed([limit.name for limit in solution.limits[:3]])}."
     else:
         words += "No limit of the model holds it back, only the balances."
+    if solution.unheld is not None:
+        free = "there is no end to it" if isinf(solution.unheld) else f"it is {solution.unheld:.4g}"
+        words += f" Without its own measurement {free}."
     return words
 
 
