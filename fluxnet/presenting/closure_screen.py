@@ -79,7 +79,7 @@ def _overview(closure: Closure) -> Table:
         Column("closes", "closes"),
         Column("h", "h", align=Align.RIGHT, digits=3),
         Column("dof", "dof", align=Align.RIGHT),
-        Column("p", "p_text", align=Align.RIGHT),
+        Column("p", "", align=Align.RIGHT),
         Column("", "p"),
         Column("", "limit"),
     ]
@@ -175,7 +175,7 @@ def _was(names: tuple[str, ...]) -> str:
 
 def _rates(run: RunClosure) -> Table:
     columns = (
-        Column("species", "row"),
+        Column("species", ""),
         Column("", "species"),
         Column("", "unit"),
         Column("way", "direction"),
