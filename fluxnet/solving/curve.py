@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
 from fluxnet.solving.functionals import Functionals
-from fluxnet.solving.reach import reach_far
+from fluxnet.solving.reach import Reach, reach_far
 from fluxnet.solving.region import Region, nearest, region_at
 from fluxnet.solving.task import Point, Task, chart_at, point_at
 
@@ -25,6 +25,10 @@ _STEPS = 12
 _CLIMBS = 40
 _NEAR = 1e-4
 """A step of this part of the way is the last: what it adds is added by the slope."""
+_DUST = 1e-8
+"""A step of this part of what one sd of the measurements brings is the solver's rounding."""
+_LEFT, _BEYOND, _UNBALANCED = 1e-4, 1e-7, 1e-6
+"""How near h must be to its level, values to their bounds, forces to balance, at an end."""
 
 
 @record
@@ -32,20 +36,19 @@ class Curve:
     """One functional, the way it is to go, the level of h, and its value at the fit."""
 
     task: Task
-    functionals: Functionals
-    place: int
+    functional: Functionals
     sign: float
     level: float
     origin: float
 
     def gain(self, point: Point) -> float:
         """How far the functional has come at a point."""
-        return self.sign * float(self.functionals.values(point)[self.place] - self.origin)
+        return self.sign * float(self.functional.values(point)[0] - self.origin)
 
     def gradient(self, region: Region) -> Vector:
         """Its slope at the point of a region, over (u, t)."""
         width = len(region.seen)
-        slope = self.sign * self.functionals.slopes(region.point)[self.place][:width]
+        slope = self.sign * self.functional.slopes(region.point)[0, :width]
         return np.asarray(region.gradients(slope[None, :])[0], dtype=np.float64)
 
 
@@ -82,16 +85,55 @@ def follow_curve(
             break
         if onward.place is None:
             return np.inf, None
-        if abs(onward.value) <= _NEAR * max(abs(gain), abs(onward.value), 1e-12):
-            return gain + onward.value, point
-        if abs(onward.value) <= 1e-12 * abs(curve.origin):
+        dust = max(_DUST * float(np.linalg.norm(gradient)), 1e-12 * abs(curve.origin))
+        if abs(onward.value) <= dust:
             return gain, point
+        if abs(onward.value) <= _NEAR * abs(gain):
+            return gain + onward.value, point
         weight = onward.weight
         following = moved_by(task, point, here.step(onward.place))
         if following is None or following.h > curve.level + room:
             break
+        rest = _rest(curve, here, gradient, onward, following)
+        if rest is not None:
+            return curve.gain(following) + rest, following
         point = following
     return _climb(curve, start)
+
+
+def _rest(
+    curve: Curve, region: Region, gradient: Vector, reach: Reach, point: Point
+) -> float | None:
+    """What is left to add at the end of the linear problem, where that is the curved one's too.
+
+    It is where the pull, the slopes of h and the prices balance with the slopes that the point
+    itself has, and its bounds hold: often, because not all functionals feel the numbers. None
+    where they do not, or it cannot be told.
+    """
+    task, bounds = curve.task, region.bounds
+    radius = float(np.sqrt(max(curve.level - region.floor, 0.0)))
+    pull = reach.weight / float(np.linalg.norm(gradient))
+    left = curve.level - point.h
+    if reach.place is None or pull == 0 or abs(left) > _LEFT * radius**2:
+        return None
+    count = len(task.bounded)
+    fluxes = bounds.sources < count
+    values = point.values[task.bounded]
+    beyond = np.maximum(task.low - values, values - task.high)[bounds.sources[fluxes]]
+    if (beyond / bounds.norms[fluxes]).max(initial=0.0) > _BEYOND * radius:
+        return None
+    width = len(point.tangent[0])
+    balance = point.design.T @ point.residuals
+    balance += pull * curve.sign * curve.functional.slopes(point)[0]
+    prices = np.zeros(len(bounds.norms)) if reach.prices is None else reach.prices / bounds.norms
+    for i in np.flatnonzero(prices).tolist():
+        source, price = int(bounds.sources[i]), prices[i]
+        if source < count:
+            balance -= price * point.slopes[task.bounded[source]]
+        else:
+            balance[width - task.numbers + source - count] -= price
+    unbalanced = float(np.abs(region.gradients(balance[None, :])).max(initial=0.0))
+    return left / (2 * pull) if unbalanced <= _UNBALANCED * radius else None
 
 
 def moved_by(task: Task, point: Point, step: Vector) -> Point | None:
@@ -169,7 +211,7 @@ def _outermost(curve: Curve, numbers: Vector) -> Point | None:
             return None
         before = curve.gain(point)
         point = point_at(task, chart, point.z + region.step(reach.place), numbers)
-        if not curve.functionals.curved[curve.place]:
+        if not curve.functional.curved[0]:
             break
         if abs(curve.gain(point) - before) <= 1e-9 * max(abs(before), 1e-12):
             break

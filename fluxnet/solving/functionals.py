@@ -28,6 +28,10 @@ class Placed:
         """Their derivatives by the point's coordinates."""
         return point.slopes[self.places]
 
+    def only(self, i: int) -> Placed:
+        """The one at a place alone."""
+        return Placed(self.places[i : i + 1])
+
     @property
     def curved(self) -> NDArray[np.bool_]:
         """Whether each bends where no uncertain number moves."""
@@ -53,6 +57,10 @@ class Ratios:
         top = point.slopes[self.over] - values[:, None] * point.slopes[self.below]
         slopes: Vector = top / np.where(below == 0, np.nan, below)[:, None]
         return slopes
+
+    def only(self, i: int) -> Ratios:
+        """The one at a place alone."""
+        return Ratios(self.over[i : i + 1], self.below[i : i + 1])
 
     @property
     def curved(self) -> NDArray[np.bool_]:
@@ -89,6 +97,10 @@ class Drifting:
             slopes[:, len(point.z) :] += (self.drift @ point.fluxes).T
         return slopes
 
+    def only(self, i: int) -> Drifting:
+        """The one at a place alone."""
+        return Drifting(self.rows[i : i + 1], self.drift[:, i : i + 1], self.origin)
+
     @property
     def curved(self) -> NDArray[np.bool_]:
         """Whether each bends where no uncertain number moves."""
@@ -108,6 +120,14 @@ class Joined:
     def slopes(self, point: Point) -> Vector:
         """Their derivatives by the point's coordinates."""
         return np.vstack([part.slopes(point) for part in self.parts])
+
+    def only(self, i: int) -> Placed | Ratios | Drifting:
+        """The one at a place alone."""
+        for part in self.parts:
+            if i < len(part.curved):
+                return part.only(i)
+            i -= len(part.curved)
+        raise IndexError(i)
 
     @property
     def curved(self) -> NDArray[np.bool_]:

@@ -50,6 +50,26 @@ class Intervals:
             self.best_low[cut], self.best_high[cut],
         )
 
+    def times(self, places: NDArray[np.intp], factors: Vector) -> Intervals:
+        """The entries at some places, times factors that are not zero."""
+        ends = [
+            np.where(factors > 0, factors * low[places], factors * high[places])
+            for low, high in (
+                (self.low, self.high), (self.high, self.low),
+                (self.best_low, self.best_high), (self.best_high, self.best_low),
+            )
+        ]  # fmt: skip
+        return Intervals(factors * self.values[places], np.abs(factors) * self.sd[places], *ends)
+
+    def among(self, others: Intervals, mine: NDArray[np.bool_]) -> Intervals:
+        """These at the places marked as mine, and the others between them, both in order."""
+        both = []
+        for name in ("values", "sd", "low", "high", "best_low", "best_high"):
+            one = np.empty(len(mine))
+            one[mine], one[~mine] = getattr(self, name), getattr(others, name)
+            both.append(one)
+        return Intervals(*both)
+
 
 @record
 class _Search:
@@ -202,7 +222,8 @@ def _end(search: _Search, i: int, sign: float, flat: Vector) -> tuple[float, Poi
         room = max(search.level - region.floor, 1e-12)
         reach = reach_far(region, sign * search.gradients[i], float(np.sqrt(room)), flat)
         return reach.value, None
-    curve = Curve(search.task, search.functionals, i, sign, search.level, search.values[i])
+    functional = search.functionals.only(i)
+    curve = Curve(search.task, functional, sign, search.level, search.values[i])
     start = moved_by(search.task, region.point, region.step(flat)) if flat.any() else region.point
     if start is None:
         return np.inf, None

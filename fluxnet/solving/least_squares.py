@@ -150,7 +150,16 @@ def spans_of(
     for k, name in enumerate(task.rows.names):
         if drift is not None and name in drift:
             slopes[k] = drift[name]
-    return find_intervals(task, region, Drifting(rows, slopes, region.point.numbers))
+    # Multiples of a single flux are known already.
+    known = (np.count_nonzero(rows, axis=1) == 1) & ~slopes.any(axis=(0, 2))
+    places = np.abs(rows[known]).argmax(axis=1)
+    fluxes = Intervals(
+        region.point.fluxes, fit.flux_sd, fit.low, fit.high, fit.best_low, fit.best_high
+    )
+    asked = Drifting(rows[~known], slopes[:, ~known], region.point.numbers)
+    return fluxes.times(places, rows[known, places]).among(
+        find_intervals(task, region, asked), known
+    )
 
 
 def _told(

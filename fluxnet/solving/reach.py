@@ -34,12 +34,13 @@ class Reach:
     ``place`` is None where nothing bounds the functional, or no solver could tell: then
     ``value`` is infinite, which claims nothing; and where no place within the bounds is within
     the radius: then it is minus infinity. ``weight`` is the pull that led there, 0 where none
-    had to be found.
+    had to be found, and ``prices`` are those of the region's bounds, None where none presses.
     """
 
     value: float
     place: Vector | None
     weight: float = 0.0
+    prices: Vector | None = None
 
 
 def reach_far(
@@ -66,12 +67,13 @@ def reach_far(
     size = float(np.linalg.norm(gradient))
     if size == 0:
         return Reach(0.0, start)
-    straight = _straight(region, gradient, radius, start)
-    if straight is not None:
-        return Reach(float(gradient @ straight), straight)
     unit = gradient / size
     along = float(np.linalg.norm(unit[:seen]))
-    weight = guess or (radius / along if along > 1e-9 else radius)
+    first = radius / along if along > 1e-9 else radius
+    straight = _straight(region, gradient, radius, start)
+    if straight is not None:
+        return Reach(float(gradient @ straight), straight, first)
+    weight = guess or first
     low, high = 0.0, np.inf
     bound: Reach | None = None
     before = np.inf
@@ -88,7 +90,7 @@ def reach_far(
         left = radius**2 - float(away @ away)
         # By duality no place within the radius goes beyond this.
         gap = left / (2 * weight)
-        here = Reach(size * (float(unit @ found.x) + gap), found.x, weight)
+        here = Reach(size * (float(unit @ found.x) + gap), found.x, weight, found.prices)
         if abs(left) <= _CLOSE * radius**2:
             return here
         if left > 0:
@@ -100,7 +102,7 @@ def reach_far(
         following = _next_weight(region, found, unit, weight, radius)
         if following == np.inf and np.isinf(high):
             # The place stays where it is under any greater pull: a corner of the bounds.
-            return Reach(size * float(unit @ found.x), found.x, weight)
+            return Reach(size * float(unit @ found.x), found.x, weight, found.prices)
         # Where bounds are degenerate the slope misleads: then the bracket is halved.
         slow = np.isfinite(high) and abs(left) > 0.25 * before
         before = abs(left)

@@ -33,7 +33,7 @@ class Bounds:
     """Rows over (u, t) with bounds; ``sources`` are their places in the task.
 
     Places count the task's bounded rows first, then the ranges of its uncertain numbers. Rows
-    have norm 1; ``sizes`` are their absolute values.
+    have norm 1; ``sizes`` are their absolute values, ``norms`` what they were divided by.
     """
 
     rows: Vector
@@ -41,6 +41,7 @@ class Bounds:
     high: Vector
     sources: NDArray[np.intp]
     sizes: Vector
+    norms: Vector
 
 
 @record
@@ -138,7 +139,7 @@ def _bounds(
     norms = sizes[kept]
     rows = rows[kept] / norms[:, None]
     rows[np.abs(rows) < _DUST] = 0.0
-    bounds = Bounds(rows, low[kept] / norms, high[kept] / norms, kept, np.abs(rows))
+    bounds = Bounds(rows, low[kept] / norms, high[kept] / norms, kept, np.abs(rows), norms)
     return bounds, tuple(broken.tolist())
 
 

@@ -11,6 +11,8 @@ from fluxnet.network.model import Basis
 from fluxnet.rates.kinds import RateKind
 from fluxnet.rates.measured import MeasuredRate, Run
 from fluxnet.solving.flux_fit import BoundKind, FitStatus, FluxKind
+from fluxnet.solving.functionals import Drifting
+from fluxnet.solving.intervals import find_intervals
 from fluxnet.solving.least_squares import fit_fluxes, spans_of
 from fluxnet.solving.statistics import chi_squared_quantile
 
@@ -589,9 +591,21 @@ def test_an_impossible_covariance_is_refused(make_network, make_run):
 def test_any_functional_has_its_sd_and_range(make_network, make_run):
     network = make_network(YEAST)
     fit = fit_fluxes(network, make_run(network, *RATES))
-    spans = spans_of(fit, np.eye(7))
-    assert spans.sd == pytest.approx(fit.flux_sd)
-    assert spans.low == pytest.approx(fit.low, rel=1e-6, abs=1e-9)
+    # Multiples of one flux are taken from what is known, others searched: both in their order.
+    rows = np.vstack([-2 * np.eye(7)[:4], np.ones(7), 0.5 * np.eye(7)[4:]])
+    factors = np.array([-2, -2, -2, -2, 0.5, 0.5, 0.5])
+    single = [0, 1, 2, 3, 5, 6, 7]
+    spans = spans_of(fit, rows)
+    searched = find_intervals(
+        fit.task, fit.region,
+        Drifting(rows, np.zeros((fit.task.numbers, *rows.shape)), fit.region.point.numbers),
+    )  # fmt: skip
+    assert spans.sd[single] == pytest.approx(np.abs(factors) * fit.flux_sd)
+    assert spans.sd[4] == pytest.approx(np.sqrt(np.sum(fit.covariance[:7, :7])))
+    for name in ("values", "sd", "low", "high", "best_low", "best_high"):
+        found, expected = getattr(spans, name), getattr(searched, name)
+        assert found == pytest.approx(expected, rel=1e-6, abs=1e-9), name
+    assert (spans.low[:4] < spans.high[:4]).all()
     # ATP from oxphos is PO times its flux: PO's error must reach it
     oxphos = np.zeros((1, 7))
     oxphos[0, 4] = fit.numbers["PO"]
@@ -604,3 +618,16 @@ def test_any_functional_has_its_sd_and_range(make_network, make_run):
     slope[7] = fit.fluxes[4]
     assert with_error.sd[0] == pytest.approx(np.sqrt(slope @ fit.covariance @ slope))
     assert with_error.sd[0] != pytest.approx(without.sd[0], rel=0.01)
+
+
+def test_an_end_that_is_seen_at_once_is_the_one_found_by_going_on(
+    make_network, make_run, monkeypatch
+):
+    network = make_network(YEAST)
+    run = make_run(network, *RATES)
+    at_once = fit_fluxes(network, run)
+    monkeypatch.setattr("fluxnet.solving.curve._rest", lambda *_: None)
+    by_going_on = fit_fluxes(network, run)
+
+    assert at_once.low == pytest.approx(by_going_on.low, rel=1e-8, abs=1e-10)
+    assert at_once.high == pytest.approx(by_going_on.high, rel=1e-8, abs=1e-10)
