@@ -9,7 +9,7 @@ from pathlib import Path
 
 from fluxnet.cli.main import Exit
 
-__all__ = ["EXAMPLES", "add_arguments", "run"]
+__all__ = ["EXAMPLES", "MANUAL", "add_arguments", "run"]
 
 EXAMPLES = """The manual.
 
@@ -17,7 +17,7 @@ EXAMPLES = """The manual.
   fluxnet manual language            how a model is written
 """
 
-_FOLDER = Path(__file__).resolve().parent.parent / "manual"
+MANUAL = Path(__file__).resolve().parent.parent / "manual"
 
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
@@ -27,7 +27,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 
 def run(arguments: argparse.Namespace) -> int:
     """Print a topic, or the list of topics."""
-    topics = {path.stem: path for path in sorted(_FOLDER.glob("*.md"))}
+    topics = {path.stem: path for path in sorted(MANUAL.glob("*.md"))}
     if arguments.topic is None:
         print("A compartment is a part of metabolism (catabolism, anabolism, maintenance), not a")
         print("place in the cell. By itself it makes or spends carriers, ATP and NADH, which can")

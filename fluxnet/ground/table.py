@@ -24,9 +24,9 @@ class Align(Enum):
 
 @record
 class Column:
-    """A column: its title on screen (empty: only in data), its key in data (empty: only on
-    screen), its unit.
+    """A column: its title on screen, its key in data, its unit.
 
+    Without a title it stands only in data, without a key only on screen.
     ``sd_of`` names the column whose standard deviation this one holds: on screen the two are
     shown together, rounded to what the error allows; an sd of 0 as ``exact``, unless
     ``says_exact`` is False. Otherwise ``digits`` significant ones are shown, or ``decimals``

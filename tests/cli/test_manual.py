@@ -8,9 +8,13 @@ from pathlib import Path
 import pytest
 
 import fluxnet
+from fluxnet.cli.explain import read_words
 from fluxnet.cli.main import Exit, run
 from fluxnet.cli.new import MODEL, RATES
 from fluxnet.ground.names import Name
+from fluxnet.rates.kinds import RateKind
+from fluxnet.solving.flux_fit import FluxKind
+from fluxnet.studies.solution import SolveStatus
 from fluxnet.tables.rates_table import read_rates_text
 
 MANUAL = Path(fluxnet.__file__).parent / "manual"
@@ -73,3 +77,12 @@ def test_each_diagnostic_name_is_explained(
 
     assert name in shown
     assert "what to do" in shown
+
+
+def test_each_word_that_a_solve_can_end_with_is_explained() -> None:
+    words = read_words()
+
+    assert {status.value for status in SolveStatus} <= set(words)
+    assert {kind.value.replace("_", " ") for kind in RateKind} <= set(words)
+    assert {kind.value for kind in FluxKind} <= set(words)
+    assert all(len(meaning) > 10 for meaning in words.values())
