@@ -97,9 +97,10 @@ def _rates(
         if j in ratios:
             continue
         found.append((row.order, ClosedRate(
-            row.name, row.direction, row.unit, float(one.given[j]), float(sds[j]),
+            row.name, row.direction, row.unit, float(one.given[j]),
+            _typed_sd(one, row.order, sds[j]),
             float(arrays.reconciled[place, j]), float(arrays.reconciled_sd[place, j]),
-            _number(arrays.z[place, j]), _kind(plan, j),
+            _change(arrays.z[place, j]), _kind(plan, j),
         )))  # fmt: skip
     for j, (row, weights) in enumerate(
         zip(plan.unmeasured, plan.redundancy.weights, strict=True)
@@ -130,7 +131,7 @@ def _ratio(
         kind = RateKind.CALCULABLE if plan.known[k] else RateKind.NOT_CALCULABLE
         return ClosedRate(ratio.name, None, ratio.unit, None, None, value, sd, None, kind)
     measured, own_sd = float(one.given[ratio.row]), float(sds[ratio.row])
-    z = _number(arrays.z[place, ratio.row])
+    z = _change(arrays.z[place, ratio.row])
     if z is not None and arrays.denominator[place, k] < 0:
         z = -z  # what is left of A - r B has the sign of B
     if value is None:
@@ -139,6 +140,18 @@ def _ratio(
         ratio.name, None, ratio.unit, measured, own_sd, value, 0.0 if own_sd == 0 else sd, z,
         _kind(plan, ratio.row),
     )  # fmt: skip
+
+
+def _typed_sd(one: PreparedRun, order: int, used: float) -> float:
+    """The sd as typed: the one that was used may be a per cent of the reconciled value."""
+    typed = one.run.rates[order].sd
+    return float(used) if typed is None else typed
+
+
+def _change(z: float) -> float | None:
+    """The z of a rate, positive where it was raised: the batch has measured less reconciled."""
+    number = _number(z)
+    return None if number is None else -number + 0.0
 
 
 def _kind(plan: ClosurePlan, j: int) -> RateKind:

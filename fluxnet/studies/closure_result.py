@@ -69,10 +69,10 @@ class ClosedRate:
 
     ``species`` is the species, ``mu`` or the ratio. A magnitude in ``direction`` (None for mu
     and ratios), in ``unit``; below zero it is reversed.
-    ``measured`` and ``sd`` are None where it was not measured; ``sd`` is the one that was
-    used, a relative sd being taken of the reconciled value. ``reconciled`` and its sd are None
-    where nothing determines the rate, or exact values contradict one another. ``z`` is
-    measured less reconciled over its sd, None where no balance tests the rate.
+    ``measured`` and ``sd`` are None where it was not measured; ``sd`` is that of the table (the
+    test takes a relative one of the reconciled value). ``reconciled`` and its sd are None
+    where nothing determines the rate, or exact values contradict one another. ``z`` is the
+    change over its sd, positive where the rate was raised; None where no balance tests it.
     """
 
     species: str

@@ -88,7 +88,7 @@ def test_the_adjustment_of_a_ratio_has_its_sign_and_h_is_z_squared_where_it_stan
                 f"A,{RQ},,1.06,0.03,\n")  # fmt: skip
     ratio = rate(run, RQ)
     assert ratio.reconciled == pytest.approx(1)
-    assert ratio.z == pytest.approx(0.06 / 0.03)
+    assert ratio.z == pytest.approx(-0.06 / 0.03)
     assert run.test.h == pytest.approx(4)
     assert run.test.dof == 1
 
