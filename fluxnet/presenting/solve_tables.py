@@ -183,7 +183,7 @@ def _ledger(run: FluxSolution) -> list[Block]:
         if abs(balance) <= 1e-6 * max(made, spent):
             balance = 0.0
         rows.append(("", "together", made, spent, balance, None, ""))
-    note = "made and spent are summed inside each compartment; a carrier's nets add up to 0"
+    note = "made and spent are sums inside a compartment; a carrier's nets add up to 0"
     title = _title(run, "Carrier ledger: who made and who spent")
     keys = ("carrier", "compartment", "made", "spent", "net", "sd", "low", "high", "unit")
     plain = tuple(
