@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-import gc
-import os
 import sys
 from collections.abc import Sequence
 from enum import IntEnum
@@ -83,7 +81,6 @@ def _guarded(name: str, words: list[str]) -> int:
     from fluxnet.cli.faults import report_fault
     from fluxnet.ground.errors import MisuseError
 
-    _start_lightly()
     try:
         module = import_module(f"fluxnet.cli.{_MODULES[name]}")
         parser = argparse.ArgumentParser(
@@ -113,15 +110,6 @@ def _guarded(name: str, words: list[str]) -> int:
         return Exit.MISUSE
     except Exception:
         return report_fault(name, words)
-
-
-def _start_lightly() -> None:
-    """Spare a command that ends in a moment what pays only in a long computation."""
-    # The matrices of a network are small: starting numpy's threads takes longer than they save.
-    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
-    # What is imported stays; looking through it for garbage at every few hundred objects does not
-    # find any.
-    gc.set_threshold(50_000, 20, 20)
 
 
 def _questions() -> str:
