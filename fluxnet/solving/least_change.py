@@ -13,8 +13,9 @@ from fluxnet.solving.alter import hard_part
 from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.problem import Problem, Row, RowKind
 from fluxnet.solving.quadratic import solve_quadratic
+from fluxnet.solving.violations import same_way
 
-__all__ = ["Change", "LeastChange", "Violation", "find_violations", "least_change"]
+__all__ = ["Change", "LeastChange", "least_change"]
 
 Vector = NDArray[np.float64]
 _PASSES = 30
@@ -50,15 +51,6 @@ class LeastChange:
     common_k: float | None
 
 
-@record
-class Violation:
-    """A measured value that by itself lies beyond a limit, by ``in_sd`` of its sds."""
-
-    limit: Row
-    measured: Row
-    in_sd: float
-
-
 def least_change(problem: Problem) -> LeastChange:
     """The smallest change of measured values that meets everything else.
 
@@ -85,35 +77,6 @@ def least_change(problem: Problem) -> LeastChange:
     changes = _changes(problem, soft, fluxes)
     enough = max(abs(change.in_sd) for change in changes)
     return LeastChange(True, changes, total, _common_k(hard, soft, enough))
-
-
-def find_violations(problem: Problem, beyond: float = 2.0) -> tuple[Violation, ...]:
-    """Limits that a measured value of the same quantity violates by more than some sd."""
-    found = []
-    for i, row in enumerate(problem.rows):
-        if row.kind is not RowKind.LIMIT or row.quantity is None or row.ratio is not None:
-            continue
-        for other in problem.rows:
-            if other.value is None or not other.sd or other.quantity is None:
-                continue
-            sign = _same_way(row.quantity, other.quantity)
-            if sign == 0:
-                continue
-            value = sign * other.value
-            over = max(problem.row_low[i] - value, value - problem.row_high[i]) / other.sd
-            if over > beyond:
-                found.append(Violation(row, other, float(over)))
-    return tuple(found)
-
-
-def _same_way(one: Quantity, other: Quantity) -> int:
-    """1 for the same quantity, -1 for the same in the other direction, else 0."""
-    if one == other:
-        return 1
-    rate = QuantityKind.RATE
-    if one.kind is rate and other.kind is rate and one.name == other.name:
-        return -1
-    return 0
 
 
 def _least_squares(hard: Problem, soft: _Soft) -> tuple[float, Vector]:
@@ -283,7 +246,7 @@ def _row_of(problem: Problem, quantity: Quantity) -> Vector | None:
         row[problem.column(quantity.name)] = 1.0
         return row
     for i, label in enumerate(problem.rows):
-        sign = _same_way(quantity, label.quantity) if label.quantity is not None else 0
+        sign = same_way(quantity, label.quantity) if label.quantity is not None else 0
         if sign:
             found: Vector = sign * problem.matrix[i]
             return found

@@ -11,7 +11,6 @@ from fluxnet.network.biomass import biomasses
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import Run
 from fluxnet.solving.build import build_problem
-from fluxnet.solving.conflict import find_conflict, least_change
 from fluxnet.solving.flux_fit import FitStatus, FittedRow, FluxFit, PressingBound
 from fluxnet.solving.least_squares import fit_fluxes, spans_of
 from fluxnet.studies.settling import Array, Span, keep_account
@@ -57,6 +56,8 @@ def fit_run(network: Network, run: Run | None) -> FluxSolution:
         violated_limits=tell_violations(fit.built.problem),
     )
     if fit.status is FitStatus.INFEASIBLE:
+        from fluxnet.solving.conflict import find_conflict, least_change
+
         conflict = find_conflict(fit.built.problem, unit=frame.unit)
         change = least_change(fit.built.problem)
         return replace(
@@ -72,6 +73,8 @@ def fit_run(network: Network, run: Run | None) -> FluxSolution:
     )
     solution = replace(solution, words=tell_fit(solution, test))
     if solution.status is SolveStatus.INCONSISTENT:
+        from fluxnet.solving.conflict import find_conflict, least_change
+
         problem = build_problem(network, run, within=_WITHIN).problem
         conflict = find_conflict(problem, unit=frame.unit)
         if conflict.members:

@@ -3,17 +3,20 @@
 from __future__ import annotations
 
 from enum import Enum
+from typing import TYPE_CHECKING
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.record import record
 from fluxnet.network.model import Limit, Network, Quantity
-from fluxnet.solving.conflict import Conflict, LeastChange
 from fluxnet.solving.flux_fit import FluxKind, RateKind
-from fluxnet.solving.unbounded import Unbounded
-from fluxnet.studies.aims import Aim
 from fluxnet.studies.equations import NetEquation
 from fluxnet.studies.ledger import LedgerLine
 from fluxnet.studies.yields import Yield
+
+if TYPE_CHECKING:
+    from fluxnet.solving.conflict import Conflict, LeastChange
+    from fluxnet.solving.unbounded import Unbounded
+    from fluxnet.studies.aims import Aim
 
 __all__ = [
     "BindingLimit", "FluxEstimate", "FluxKind", "FluxSolution", "FluxTest", "MovedParameter",

@@ -5,10 +5,7 @@ from __future__ import annotations
 from fluxnet.ground.errors import MisuseError
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import RatesTable, Run
-from fluxnet.studies.aims import Aim, Sense, read_aim
-from fluxnet.studies.fitting import fit_run
-from fluxnet.studies.optimum import optimise
-from fluxnet.studies.solution import FluxSolution, Solution
+from fluxnet.studies.solution import Solution
 
 __all__ = ["solve_network"]
 
@@ -49,16 +46,18 @@ def solve_network(
         raise MisuseError("measured rates can only be held within a positive number of sd")
     if not 0 <= fraction <= 1:
         raise MisuseError("a fraction of the optimum lies between 0 and 1")
-    aim: Aim | None = None
-    if maximise is not None:
-        aim = read_aim(maximise, Sense.MAXIMISE, network)
-    elif minimise is not None:
-        aim = read_aim(minimise, Sense.MINIMISE, network)
     runs: tuple[Run | None, ...] = (None,) if table is None else table.runs
+    wanted = minimise if maximise is None else maximise
+    # Each of the two ways imports what it needs when it is gone.
+    if wanted is None:
+        from fluxnet.studies.fitting import fit_run
 
-    def answer(run: Run | None) -> FluxSolution:
-        if aim is None:
-            return fit_run(network, run)
-        return optimise(network, run, aim, within=within, fraction=fraction)
+        return Solution(network, tuple(fit_run(network, run) for run in runs))
+    from fluxnet.studies.aims import Sense, read_aim
+    from fluxnet.studies.optimum import optimise
 
-    return Solution(network, tuple(answer(run) for run in runs))
+    aim = read_aim(wanted, Sense.MINIMISE if maximise is None else Sense.MAXIMISE, network)
+    return Solution(
+        network,
+        tuple(optimise(network, run, aim, within=within, fraction=fraction) for run in runs),
+    )

@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 from math import isinf
+from typing import TYPE_CHECKING
 
-from fluxnet.solving.conflict import Conflict, LeastChange
-from fluxnet.solving.least_change import find_violations
 from fluxnet.solving.problem import Problem
-from fluxnet.solving.unbounded import Unbounded
-from fluxnet.studies.aims import Aim
+from fluxnet.solving.violations import find_violations
 from fluxnet.studies.solution import FluxKind, FluxSolution, FluxTest, RateKind
+
+if TYPE_CHECKING:
+    from fluxnet.solving.conflict import Conflict, LeastChange
+    from fluxnet.solving.unbounded import Unbounded
+    from fluxnet.studies.aims import Aim
 
 __all__ = ["tell_fit", "tell_infeasible", "tell_optimum", "tell_unbounded", "tell_violations"]
 

@@ -11,10 +11,10 @@ from fluxnet.network.model import Basis
 from fluxnet.solving.alter import hard_part
 from fluxnet.solving.build import build_problem
 from fluxnet.solving.conflict import find_conflict, least_change
-from fluxnet.solving.least_change import find_violations
 from fluxnet.solving.linear import Programme
 from fluxnet.solving.members import MemberKind, list_members
 from fluxnet.solving.problem import Problem
+from fluxnet.solving.violations import find_violations
 
 CELL = """
 substrate glucose, oxygen
