@@ -25,6 +25,8 @@ _STEPS = 12
 _CLIMBS = 40
 _NEAR = 1e-4
 """A step of this part of the way is the last: what it adds is added by the slope."""
+_LESS = 1e-6
+"""So is one after which the next, that grows shorter at the same ratio, is this part of it."""
 _DUST = 1e-8
 """A step of this part of what one sd of the measurements brings is the solver's rounding."""
 _LEFT, _BEYOND, _UNBALANCED = 1e-4, 1e-7, 1e-6
@@ -71,7 +73,7 @@ def follow_curve(
     """
     task, point = curve.task, start
     room = curve.level - start.h
-    weight = 0.0
+    weight, before = 0.0, 0.0
     for _ in range(_STEPS):
         here = region_at(task, point) if region is None else region
         region = None
@@ -88,9 +90,10 @@ def follow_curve(
         dust = max(_DUST * float(np.linalg.norm(gradient)), 1e-12 * abs(curve.origin))
         if abs(onward.value) <= dust:
             return gain, point
-        if abs(onward.value) <= _NEAR * abs(gain):
+        size = abs(onward.value)
+        if size <= _NEAR * abs(gain) or size**2 <= _LESS * abs(gain) * before:
             return gain + onward.value, point
-        weight = onward.weight
+        weight, before = onward.weight, size
         following = moved_by(task, point, here.step(onward.place))
         if following is None or following.h > curve.level + room:
             break
