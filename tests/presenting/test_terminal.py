@@ -44,7 +44,9 @@ def shown(encoding: str = "utf-8", **options: bool) -> str:
     return data.getvalue().decode(encoding)
 
 
-def test_a_name_is_never_cut_in_a_pipe() -> None:
+def test_a_name_is_never_cut_in_a_pipe(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.delenv("COLUMNS", raising=False)
+
     assert LONG_NAME in shown()
 
 
