@@ -4,7 +4,9 @@ from __future__ import annotations
 
 import csv
 import io
+import math
 import os
+import stat
 import tempfile
 from collections.abc import Sequence
 from pathlib import Path
@@ -16,6 +18,9 @@ __all__ = ["write_bytes", "write_csv", "write_text", "write_workbook"]
 
 # A cell that begins like this would run as a formula in a spreadsheet.
 _FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r")
+
+# A cell of a workbook holds no more letters.
+_LONGEST = 32_767
 
 
 def write_text(path: Path, text: str, *, force: bool = False) -> None:
@@ -84,13 +89,13 @@ def write_workbook(tables: Sequence[Table], path: Path, *, force: bool = False) 
                 sheet.write_string(0, j, column.key, bold)
                 sheet.write_string(1, j, column.unit)
             for i, row in enumerate(table.rows, start=2):
-                for j, cell in enumerate(row):
+                for j, cell in enumerate(map(_finite, row)):
                     if isinstance(cell, bool):
                         sheet.write_boolean(i, j, cell)
                     elif isinstance(cell, (int, float)):
                         sheet.write_number(i, j, cell)
                     elif cell is not None:
-                        sheet.write_string(i, j, cell)
+                        sheet.write_string(i, j, cell[:_LONGEST])
             sheet.freeze_panes(2, 1)
             sheet.autofit()
     _write(path, stream.getvalue(), force)
@@ -99,7 +104,12 @@ def write_workbook(tables: Sequence[Table], path: Path, *, force: bool = False) 
 def _safe(cell: Cell) -> Cell:
     if isinstance(cell, str) and cell.startswith(_FORMULA_STARTS):
         return "'" + cell
-    return cell
+    return _finite(cell)
+
+
+def _finite(cell: Cell) -> Cell:
+    """The cell, blank where it is an infinite end or no number: as null is in JSON."""
+    return None if isinstance(cell, float) and not math.isfinite(cell) else cell
 
 
 def _sheet_name(key: str, names: set[str]) -> str:
@@ -118,17 +128,36 @@ def _refuse_existing(path: Path) -> None:
 
 
 def _write(path: Path, data: bytes, force: bool) -> None:
+    """Write beside the file that the path leads to, then rename; its rights are kept."""
     if not force:
         _refuse_existing(path)
-    handle, name = tempfile.mkstemp(prefix=f".{path.name}.", dir=path.parent)
+    target = Path(os.path.realpath(path))
+    rights = _rights(target, path)
+    try:
+        handle, name = tempfile.mkstemp(prefix=f".{target.name[:50]}.", dir=target.parent)
+    except OSError as error:
+        raise OSError(error.errno, error.strerror, str(path)) from None
     try:
         with os.fdopen(handle, "wb") as file:
             file.write(data)
-        os.chmod(name, 0o666 & ~_umask())
-        os.replace(name, path)
-    except BaseException:
+        os.chmod(name, rights)
+        os.replace(name, target)
+    except BaseException as error:
         Path(name).unlink(missing_ok=True)
+        if isinstance(error, OSError):
+            raise OSError(error.errno, error.strerror, str(path)) from None
         raise
+
+
+def _rights(target: Path, shown: Path) -> int:
+    """The rights of the file to be written; nothing but an ordinary file is replaced."""
+    try:
+        found = os.lstat(target)
+    except FileNotFoundError:
+        return 0o666 & ~_umask()
+    if not stat.S_ISREG(found.st_mode):
+        raise MisuseError(f"{shown} is no ordinary file; name another")
+    return stat.S_IMODE(found.st_mode)
 
 
 def _umask() -> int:

@@ -1,6 +1,8 @@
 from __future__ import annotations
 
 import csv
+import math
+import os
 from pathlib import Path
 
 import pytest
@@ -61,3 +63,57 @@ def test_nothing_is_left_behind_where_writing_fails(tmp_path: Path) -> None:
         write_text(tmp_path / "missing" / "out.txt", "text")
 
     assert list(tmp_path.iterdir()) == []
+
+
+def test_what_is_no_ordinary_file_is_never_replaced(tmp_path: Path) -> None:
+    pipe, folder = tmp_path / "pipe", tmp_path / "folder"
+    os.mkfifo(pipe)
+    folder.mkdir()
+    for path in (pipe, folder):
+        with pytest.raises(MisuseError, match="no ordinary file"):
+            write_text(path, "new", force=True)
+
+    assert pipe.is_fifo()
+    assert sorted(p.name for p in tmp_path.iterdir()) == ["folder", "pipe"]
+
+
+def test_a_link_is_followed_and_rights_are_kept(tmp_path: Path) -> None:
+    real, link, circle = tmp_path / "real.txt", tmp_path / "link.txt", tmp_path / "circle"
+    real.write_text("old")
+    real.chmod(0o600)
+    link.symlink_to(real)
+    write_text(link, "new", force=True)
+
+    assert link.is_symlink()
+    assert real.read_text() == "new"
+    assert real.stat().st_mode & 0o777 == 0o600
+    circle.symlink_to(circle)
+    with pytest.raises(MisuseError, match="no ordinary file"):
+        write_text(circle, "new")
+
+
+def test_a_file_that_cannot_be_written_is_named_as_the_user_wrote_it(tmp_path: Path) -> None:
+    with pytest.raises(FileNotFoundError) as told:
+        write_text(tmp_path / "missing" / "out.txt", "text")
+
+    assert told.value.filename == str(tmp_path / "missing" / "out.txt")
+
+
+def test_an_end_without_a_limit_is_a_blank_cell(tmp_path: Path) -> None:
+    from python_calamine import CalamineWorkbook
+
+    table = Table(
+        "ranges",
+        "Ranges",
+        (Column("reaction", "reaction"), Column("low", "low"), Column("high", "high")),
+        (("burn", -math.inf, math.inf), ("upkeep", math.nan, 2.0), ("x" * 40_000, 0.0, 1.0)),
+    )
+    (path,) = write_csv((table,), tmp_path)
+    rows = list(csv.reader(path.open(encoding="utf-8")))
+
+    assert rows[1:3] == [["burn", "", ""], ["upkeep", "", "2.0"]]
+    write_workbook((table,), tmp_path / "out.xlsx")
+    book = CalamineWorkbook.from_path(tmp_path / "out.xlsx")
+    cells = book.get_sheet_by_name("ranges").to_python(skip_empty_area=False)
+    assert cells[2:4] == [["burn", "", ""], ["upkeep", "", 2.0]]
+    assert cells[4][0] == "x" * 32_767
