@@ -4,12 +4,15 @@ from __future__ import annotations
 
 import gc
 import os
+import sys
+from contextlib import suppress
+from typing import NoReturn
 
 __all__ = ["main"]
 
 
-def main() -> int:
-    """Run the command line in a process that ends with it, and give the exit status.
+def main() -> NoReturn:
+    """Run the command line in a process that ends with it.
 
     Most commands end in a moment, so that what pays only in a long computation is spared.
     """
@@ -20,10 +23,13 @@ def main() -> int:
     from fluxnet.cli.main import run
 
     status = run()
-    # All that is left goes with the process; no need to look through it for garbage first.
-    gc.freeze()
-    return status
+    # What cannot be written was told by the command. Taking apart what goes with the process
+    # anyway takes as long as reading a model.
+    for stream in (sys.stdout, sys.stderr):
+        with suppress(OSError, ValueError, AttributeError):
+            stream.flush()
+    os._exit(status)
 
 
 if __name__ == "__main__":
-    raise SystemExit(main())
+    main()

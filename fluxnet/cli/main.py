@@ -60,18 +60,31 @@ def run(arguments: Sequence[str] | None = None) -> int:
     from fluxnet.cli.streams import prepare_streams
 
     prepare_streams()
+    if words and words[0] in _MODULES:
+        return _guarded(words[0], words[1:])
+    try:
+        status = _about(words)
+        print(end="", flush=True)
+    except BrokenPipeError:
+        sys.stdout = None
+        return Exit.SOUND
+    except OSError as error:
+        print(f"fluxnet: output: {error.strerror}", file=sys.stderr)
+        return Exit.MISUSE
+    return status
+
+
+def _about(words: list[str]) -> int:
+    """What is said without any command."""
     if not words:
         print(_questions())
-        return Exit.SOUND
-    if words[0] in ("-h", "--help", "help"):
+    elif words[0] in ("-h", "--help", "help"):
         print(_help())
-        return Exit.SOUND
-    if words[0] in ("--version", "-V"):
+    elif words[0] in ("--version", "-V"):
         print(f"fluxnet {fluxnet.__version__}")
-        return Exit.SOUND
-    if words[0] not in _MODULES:
+    else:
         return _unknown(words[0])
-    return _guarded(words[0], words[1:])
+    return Exit.SOUND
 
 
 def _guarded(name: str, words: list[str]) -> int:
@@ -91,7 +104,7 @@ def _guarded(name: str, words: list[str]) -> int:
         )
         module.add_arguments(parser)
         status: int = module.run(parser.parse_args(words))
-        sys.stdout.flush()
+        print(end="", flush=True)
         return status
     except SystemExit as stop:
         return stop.code if isinstance(stop.code, int) else Exit.MISUSE

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import os
 import sys
-from typing import TYPE_CHECKING, TextIO
+from typing import TYPE_CHECKING, NoReturn, TextIO
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Severity
@@ -108,7 +108,13 @@ class Terminal:
     def _console(self) -> Console:
         from rich.console import Console
 
-        return Console(
+        class Plain(Console):
+            """A console that leaves a reader that has gone to the command."""
+
+            def on_broken_pipe(self) -> NoReturn:
+                raise BrokenPipeError
+
+        return Plain(
             file=self.stream,
             force_terminal=self.colour,
             no_color=not self.colour,
