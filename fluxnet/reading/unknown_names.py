@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from fluxnet.chemistry.catalogue import load_catalogue
+from fluxnet.chemistry.catalogue import CompoundKind, load_catalogue
 from fluxnet.ground.names import Name
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
@@ -56,6 +56,9 @@ def _report(name: str, mentions: list[Mention], scope: Scope) -> None:
         mend = f"{name} is another name of {synonym}: write {synonym}"
     elif unwritten is not None:
         mend = unwritten
+    elif (known := _declaration(name, scope)) is not None:
+        mend = f"declare it: {known}"
+        mend += f"; or, if that is meant, write {' or '.join(near)}" if near else ""
     elif near:
         mend = f"a similar name is declared: {', '.join(near)}"
     else:
@@ -101,6 +104,18 @@ def _unwritten(name: str) -> str | None:
     if compound is not None and compound.name in _FREE:
         return f"leave it out: {_FREE[compound.name]} free; to write it declare it: exchange {name}"
     return None
+
+
+def _declaration(name: str, scope: Scope) -> str | None:
+    """How a name that the catalogue knows, and no variant declares, would be declared."""
+    compound = load_catalogue().find(name)
+    if compound is None or any(name in inner.species for inner in scope.variants.values()):
+        return None
+    if compound.kind.is_carrier:
+        return f"carrier {name}"
+    if compound.kind in (CompoundKind.INTERMEDIATE, CompoundKind.BOUND_GROUP):
+        return f"inside {name}"
+    return f"product {name} if it leaves the cell, substrate if it is taken up, else inside {name}"
 
 
 def _advice(name: str, first: Mention, scope: Scope) -> str:

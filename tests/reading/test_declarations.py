@@ -6,7 +6,9 @@ from fractions import Fraction
 
 import pytest
 
+from fluxnet.ground.names import Name
 from fluxnet.network.model import Basis, CargoKind, Role
+from fluxnet.reading.model import read_model_text
 
 TAIL = "compartment c\n    a : glucose -> 2 ethanol + 2 CO2\n"
 HEAD = "substrate glucose\nproduct ethanol, CO2\n"
@@ -188,3 +190,14 @@ def test_biomass_without_a_formula_takes_the_catalogues_only_under_its_name(read
 
     assert network.find_species("cells").formula.written == "CH1.8O0.5N0.2"
     assert (found.name.value, found.span.column) == ("formula-needed", 9)
+
+
+def test_a_name_of_the_catalogue_that_is_not_declared_is_told_with_how_to_declare_it() -> None:
+    text = "substrate glucose\nproduct ethanol\nexchange CO2\ncarrier NADH\ncompartment a\n"
+    told = read_model_text(
+        text + "    f : glucose -> 2 ethanol + 2 CO2\n    g : glucose -> acetate + NADPH\n"
+    ).diagnostics
+    mends = [d.mend or "" for d in told if d.name is Name.UNKNOWN_SPECIES]
+
+    assert any("product acetate if it leaves the cell" in mend for mend in mends)
+    assert any(mend.startswith("declare it: carrier NADPH") for mend in mends)
