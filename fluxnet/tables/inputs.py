@@ -14,7 +14,10 @@ from fluxnet.tables.delimited import split_lines
 from fluxnet.tables.grid import Grid
 from fluxnet.tables.workbook import is_workbook, read_workbook
 
-__all__ = ["Input", "read_input"]
+__all__ = ["MOST_BYTES", "Input", "read_input"]
+
+MOST_BYTES = 200_000_000
+"""No more of a file is read: it may have no end."""
 
 
 @record
@@ -64,9 +67,14 @@ def _bytes_of(path: Path, file: str) -> bytes | Diagnostic:
             return Diagnostic(
                 Name.NOT_A_FILE, f"{file} is a folder", span, mend="name the file inside it"
             )
-        return path.read_bytes()
+        with path.open("rb") as opened:
+            data = opened.read(MOST_BYTES + 1)
     except (FileNotFoundError, NotADirectoryError):
         return Diagnostic(Name.FILE_MISSING, f"there is no file {file}", span)
     except (OSError, ValueError) as fault:
         words = getattr(fault, "strerror", None) or str(fault)
         return Diagnostic(Name.FILE_MISSING, f"{file} cannot be opened: {words}", span)
+    if len(data) <= MOST_BYTES:
+        return data
+    words = f"{file} has more than {MOST_BYTES // 1_000_000} million bytes"
+    return Diagnostic(Name.FILE_TOO_LONG, words, span, mend="is this the file that is meant?")

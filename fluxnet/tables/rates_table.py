@@ -153,7 +153,9 @@ def _rule(sd: float, floor: float, separator: str | None) -> SdRule:
 
 
 def _beside(path: Path) -> tuple[Path, ...]:
-    """Where the covariance table of a rates table may lie."""
+    """Where the covariance table of a rates table may lie; a path such as / has no name."""
+    if not path.name:
+        return ()
     endings = dict.fromkeys((path.suffix, ".csv", ".tsv"))
     return tuple(path.with_name(f"{path.stem}.covariance{e}") for e in endings)
 

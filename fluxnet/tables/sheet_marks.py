@@ -25,10 +25,15 @@ _QUOTED = re.compile(r'"[^"]*"|\\.')
 
 @record
 class SheetMarks:
-    """Cells by (row, column), both from 0: why one holds nothing, and which are in per cent."""
+    """Cells by (row, column), both from 0: why one holds nothing, and which are in per cent.
+
+    ``height`` and ``width`` are those of the area that holds all filled cells, from A1.
+    """
 
     faults: dict[tuple[int, int], tuple[str, str]] = field(default_factory=dict)
     percents: frozenset[tuple[int, int]] = frozenset()
+    height: int = 0
+    width: int = 0
 
 
 def read_marks(archive: zipfile.ZipFile, sheet: str) -> SheetMarks:
@@ -42,10 +47,13 @@ def read_marks(archive: zipfile.ZipFile, sheet: str) -> SheetMarks:
     percent_styles = _percent_styles(archive)
     faults: dict[tuple[int, int], tuple[str, str]] = {}
     percents: set[tuple[int, int]] = set()
+    height = width = 0
     for cell in _cells(archive.read(path)):
         place = _place(cell.get("r", ""))
         if place is None:
             continue
+        if len(cell):
+            height, width = max(height, place[0] + 1), max(width, place[1] + 1)
         value = next((c.text or "" for c in cell if _tag(c) == "v"), None)
         kind = cell.get("t", "n")
         if kind == "e":
@@ -54,7 +62,7 @@ def read_marks(archive: zipfile.ZipFile, sheet: str) -> SheetMarks:
             faults[place] = ("", "a formula stands there without a stored value")
         elif kind == "n" and cell.get("s", "0") in percent_styles:
             percents.add(place)
-    return SheetMarks(faults, frozenset(percents))
+    return SheetMarks(faults, frozenset(percents), height, width)
 
 
 def _cells(xml: bytes) -> Iterator[ElementTree.Element]:

@@ -27,7 +27,7 @@ _DAMAGE = (
     zipfile.BadZipFile,
     zlib.error,
     ElementTree.ParseError,
-    KeyError,
+    LookupError,
     NotImplementedError,
     RuntimeError,
     EOFError,
@@ -39,10 +39,13 @@ _DAMAGE = (
 _LARGEST = 400_000_000
 """Bytes that a workbook may unpack to; more is no table of rates."""
 
+_MOST_CELLS = 20_000_000
+"""Cells of the area that a sheet fills: the reader makes room for all, the blank ones too."""
+
 
 @record
 class Workbook:
-    """The sheets of a workbook, in their order; none where ``diagnostics`` say why."""
+    """The sheets of a workbook, hidden ones last; none where ``diagnostics`` say why."""
 
     sheets: tuple[Grid, ...] = ()
     diagnostics: tuple[Diagnostic, ...] = field(default=())
@@ -71,7 +74,7 @@ def read_workbook(data: bytes, file: str) -> Workbook:
 
 def _read_sheets(data: bytes, archive: zipfile.ZipFile, file: str) -> Workbook:
     try:
-        from python_calamine import CalamineError, CalamineWorkbook
+        from python_calamine import CalamineError, CalamineWorkbook, SheetVisibleEnum
     except ImportError:
         return Workbook(diagnostics=(
             Diagnostic(
@@ -84,13 +87,17 @@ def _read_sheets(data: bytes, archive: zipfile.ZipFile, file: str) -> Workbook:
         ))  # fmt: skip
     try:
         book = CalamineWorkbook.from_filelike(BytesIO(data))
-        return Workbook(tuple(
-            _grid(
-                book.get_sheet_by_name(name).to_python(skip_empty_area=False),
-                read_marks(archive, name), f"{file}!{name}", name,
-            )
-            for name in book.sheet_names
-        ))  # fmt: skip
+        grids: list[Grid] = []
+        seen = SheetVisibleEnum.Visible
+        for sheet in sorted(book.sheets_metadata, key=lambda one: one.visible != seen):
+            name = sheet.name
+            marks = read_marks(archive, name)
+            if marks.height * marks.width > _MOST_CELLS:
+                words = f"reaches down to row {marks.height} and across {marks.width} columns"
+                return _refused(f"{file}!{name}", words, "delete what stands far from the table")
+            values = book.get_sheet_by_name(name).to_python(skip_empty_area=False)
+            grids.append(_grid(values, marks, f"{file}!{name}", name))
+        return Workbook(tuple(grids))
     except CalamineError as fault:
         return _refused(file, f"cannot be read as a workbook ({fault})", "save it again")
 

@@ -188,3 +188,42 @@ def test_a_damaged_workbook_is_refused(member):
     reading = read_rates_bytes(stream.getvalue())
     assert reading.table is None
     assert {d.name for d in reading.diagnostics} == {Name.BINARY_FILE}
+
+
+def test_a_cell_at_the_far_end_of_a_sheet_is_refused_before_room_is_made_for_it():
+    def far(book):
+        book.worksheets()[0].write(1_048_575, 16_383, "x")
+
+    reading = read_rates_bytes(workbook({"May": [HEAD, ROW]}, far), file="r.xlsx")
+    assert reading.table is None
+    assert reading.diagnostics[0].name is Name.BINARY_FILE
+    assert "r.xlsx!May reaches down to row 1048576" in reading.diagnostics[0].message
+
+
+def test_a_format_far_from_the_table_does_no_harm():
+    def far(book):
+        book.worksheets()[0].write_blank(1_048_575, 16_383, None, book.add_format({"bold": True}))
+
+    assert read_rates_bytes(workbook({"May": [HEAD, ROW]}, far)).table is not None
+
+
+def test_a_hidden_sheet_is_not_read_in_place_of_one_that_is_seen():
+    def hide(book):
+        old, seen = book.worksheets()
+        old.hide()
+        seen.activate()
+
+    old, new = [HEAD, [*ROW[:3], 99, *ROW[4:]]], [HEAD, ROW]
+    reading = read_rates_bytes(workbook({"old": old, "May": new}, hide), file="r.xlsx")
+    assert reading.table.runs[0].rates[0].value == 2.5
+    assert any("not read: old" in d.message for d in reading.diagnostics)
+
+
+def test_a_part_that_names_an_unknown_encoding_is_told_as_damage():
+    packed = io.BytesIO(workbook({"May": [HEAD, ROW]}))
+    damaged = io.BytesIO()
+    with zipfile.ZipFile(packed) as before, zipfile.ZipFile(damaged, "w") as after:
+        for name in before.namelist():
+            after.writestr(name, before.read(name).replace(b'encoding="UTF-8"', b'encoding="U8?"'))
+    reading = read_rates_bytes(damaged.getvalue(), file="r.xlsx")
+    assert [d.name for d in reading.diagnostics] == [Name.BINARY_FILE]

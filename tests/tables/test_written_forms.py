@@ -8,6 +8,7 @@ import sys
 import pytest
 
 from fluxnet.ground.names import Name
+from fluxnet.tables import inputs
 from fluxnet.tables.numerals import Decimal, decide_decimal, read_number
 from fluxnet.tables.rates_table import read_rates, read_rates_bytes, read_rates_text
 
@@ -88,6 +89,59 @@ def test_another_number_of_the_table_tells_how_a_doubtful_one_is_meant(read):
     assert run.rates[0].value == 1.234
 
 
+HEADER = "species;direction;rate;sd;unit\n"
+
+
+@pytest.mark.parametrize(
+    ("rates", "sd", "decimal", "larger"),
+    [
+        (("1.234", "2.345", "2.100"), "2,5 %", "1,234", "1234"),
+        (("1,234", "2,345", "2,100"), "2.5 %", "1.234", "1234"),
+    ],
+)
+def test_an_sd_does_not_make_thousands_signs_of_the_rates(rates, sd, decimal, larger):
+    names = ("glucose;in", "ethanol;out", "CO2;out")
+    rows = [f"{n};{r};;mmol\n" for n, r in zip(names, rates, strict=True)]
+    reading = read_rates_text(HEADER + "".join(rows[:2]) + rows[2].replace(";;", f";{sd};"))
+    errors = [d for d in reading.diagnostics if d.severity.rank == 0]
+    assert reading.table is None
+    assert [(d.name, d.span.line) for d in errors] == [
+        (Name.AMBIGUOUS_NUMBER, line) for line in (2, 3, 4)
+    ]
+    assert f"`{sd}` in row 4" in errors[0].message
+    assert f"1.234 or {larger}" in errors[0].message
+    assert f"write {decimal} or {larger}" in errors[0].mend
+
+
+@pytest.mark.parametrize("proof", ["1.234,5", "1.234.567", "1.234.567,8"])
+def test_a_number_that_proves_thousands_signs_settles_the_others(read, proof):
+    run = read(HEADER + f"glucose;in;1.234;5 %;mmol\nethanol;out;{proof};5 %;mmol\n")
+    assert run.rates[0].value == 1234
+
+
+def test_a_number_that_proves_thousands_commas_settles_the_others(read):
+    run = read(HEADER + "glucose;in;1,234;5 %;mmol\nethanol;out;1,234.5;5 %;mmol\n")
+    assert run.rates[0].value == 1234
+
+
+def test_an_error_beside_a_number_is_no_thousand_either(fault):
+    found = fault(HEADER + "glucose;in;12,5 ± 1.234;;mmol\n")
+    assert found.name is Name.AMBIGUOUS_NUMBER
+
+
+def test_a_thousands_sign_can_be_said(read):
+    text = HEADER + "glucose;in;1.234;2,5 %;mmol\n"
+    assert read(text, decimal=Decimal.COMMA).rates[0].value == 1234
+
+
+def test_the_same_doubt_of_many_numbers_is_told_for_the_first_and_counted():
+    rows = "".join(f"A{n};glucose;in;1.234;2,5 %;mmol\n" for n in range(40))
+    reading = read_rates_text("run;" + HEADER + rows)
+    errors = [d for d in reading.diagnostics if d.severity.rank == 0]
+    assert [d.span.line for d in errors] == [2, 3, 4, 5, 6, 7]
+    assert "35 numbers" in errors[-1].message
+
+
 def test_a_point_in_a_comma_separated_file_is_a_decimal_point(read):
     assert read("species,direction,rate,unit\nglucose,in,1.234,mmol\n").rates[0].value == 1.234
 
@@ -165,3 +219,15 @@ def test_a_text_table_is_read_without_heavy_packages():
     )
     found = subprocess.run([sys.executable, "-c", script], capture_output=True, text=True)
     assert found.stdout.strip() == "[]", found.stderr
+
+
+def test_a_path_without_a_name_is_told_as_the_folder_that_it_is():
+    for path in (".", "/"):
+        (told,) = read_rates(path).diagnostics
+        assert told.name is Name.NOT_A_FILE
+
+
+def test_a_file_without_an_end_is_not_read_to_its_end(tmp_path, monkeypatch):
+    monkeypatch.setattr(inputs, "MOST_BYTES", 2_000_000)
+    (told,) = read_rates("/dev/zero").diagnostics
+    assert (told.name, "more than 2 million bytes" in told.message) == (Name.FILE_TOO_LONG, True)
