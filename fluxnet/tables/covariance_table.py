@@ -67,7 +67,7 @@ def read_covariance(
     filled = [r.cell(places[kind]) for r in body]
     choice = decide_decimal(filled, grid.separator)
     decimal = asked or choice.decimal
-    doubtful = () if asked else choice.doubtful
+    doubtful = () if asked else choice.doubtful + choice.disputed
     known = {r.quantity: None for r in readings.readings}
     pairs: list[Correlation] = []
     faults: list[Diagnostic] = []

@@ -3,15 +3,27 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Sequence
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
 from fluxnet.tables.grid import Cell
-from fluxnet.tables.numerals import Decimal, is_infinite, read_number, split_numeral
+from fluxnet.tables.numerals import (
+    Decimal,
+    DecimalChoice,
+    is_infinite,
+    read_number,
+    split_numeral,
+    two_readings,
+)
 
-__all__ = ["Number", "cell_fault", "read_cell"]
+__all__ = ["Number", "cell_fault", "decimal_faults", "read_cell"]
 
+_MOST = 5
+"""Cells with one fault that are told one by one."""
+
+_SAY = "say --decimal point or --decimal comma"
 _DATE = re.compile(r"\d{4}-\d\d-\d\d.*")
 
 
@@ -67,3 +79,40 @@ def _no_number(cell: Cell, title: str) -> Diagnostic:
         words = f"`{cell.text}` is a date"
         mend = "write the number again: spreadsheets turn 1.5 into the first of May"
     return cell_fault(Name.UNREADABLE_CELL, cell, title, words, mend)
+
+
+def decimal_faults(choice: DecimalChoice) -> list[Diagnostic]:
+    """One fault a cell that can be read in two ways, or is not written as the others are.
+
+    Of many cells with one fault the first are told, and then how many more there are.
+    """
+    faults: list[Diagnostic] = []
+
+    def add(cell: Cell, words: str, mend: str) -> None:
+        faults.append(cell_fault(Name.AMBIGUOUS_NUMBER, cell, "", words, mend))
+
+    def told(cells: Sequence[Cell], mend: str) -> Sequence[Cell]:
+        shown, rest = cells[:_MOST], cells[_MOST:]
+        if len(rest) < 2:
+            return cells
+        add(rest[0], f"`{rest[0].text}`: the same of {len(rest)} numbers from here on", mend)
+        return shown
+
+    for cell in told(choice.doubtful, _SAY):
+        small, large = two_readings(cell.text)
+        words = f"`{cell.text}` may be {small} or {large}, and no other number of the table tells"
+        add(cell, words, _SAY)
+    evidence = choice.evidence
+    if evidence is None:
+        return faults
+    sign, one_way = choice.decimal.name.lower(), "write all numbers in one way"
+    shown = f"`{evidence.text}` in {evidence.place} is written with a decimal {sign}"
+    for cell in told(choice.disputed, one_way):
+        small, large = two_readings(cell.text)
+        written = small.replace(".", choice.decimal.value)
+        words = f"`{cell.text}` may be {small} or {large}; {shown}"
+        add(cell, words, f"write {written} or {large}, or say --decimal {sign} where it is {large}")
+    for cell in told(choice.contrary, one_way):
+        words = f"`{cell.text}` is not written with a decimal {sign}, as others are; {shown}"
+        add(cell, words, one_way)
+    return faults

@@ -20,6 +20,7 @@ __all__ = [
     "possible_decimals",
     "read_number",
     "split_numeral",
+    "two_readings",
 ]
 
 
@@ -117,26 +118,49 @@ def possible_decimals(text: str) -> frozenset[Decimal]:
 
 @record
 class DecimalChoice:
-    """The decimal sign of a table; ``said`` where the table shows it, ``doubtful`` the cells.
+    """The decimal sign of a table; ``said`` where the table shows it, by the cell ``evidence``.
 
-    ``doubtful`` cells can be read in two ways and nothing decides; ``contrary`` ones are
-    written with the other sign than the rest.
+    ``doubtful`` cells can be read in two ways and nothing decides; ``disputed`` ones too, and
+    with the sign that the other numbers show they would be a thousand times what they are with
+    the other, which no number proves; ``contrary`` ones are written with the other sign.
     """
 
     decimal: Decimal
     said: bool
+    evidence: Cell | None = None
     doubtful: tuple[Cell, ...] = ()
+    disputed: tuple[Cell, ...] = ()
     contrary: tuple[Cell, ...] = ()
+
+    @property
+    def refused(self) -> tuple[Cell, ...]:
+        """All cells whose number is not taken."""
+        return self.doubtful + self.disputed + self.contrary
+
+
+def two_readings(text: str) -> tuple[str, str]:
+    """The numbers that a cell with one sign and three digits behind it may stand for.
+
+    Examples
+    --------
+    >>> two_readings("1,234 %")
+    ('1.234', '1234')
+    """
+    parts = split_numeral(text)
+    numeral = next((t for t in (parts.value, parts.error) if len(possible_decimals(t)) == 2), "")
+    return numeral.replace(",", "."), numeral.replace(",", "").replace(".", "")
 
 
 def decide_decimal(cells: Iterable[Cell], separator: str | None) -> DecimalChoice:
     """Find the decimal sign of a table from all its numbers.
 
     In a comma-separated file a single point is a decimal point: who writes decimal commas
-    separates by semicolon or tab.
+    separates by semicolon or tab. A sign before three digits is taken as a thousands sign only
+    where another number proves that thousands are marked (``1.234,5``, ``1.234.567``).
     """
-    votes: dict[Decimal, list[Cell]] = {d: [] for d in Decimal}
-    doubtful: list[Cell] = []
+    votes: dict[Decimal, dict[Cell, None]] = {d: {} for d in Decimal}
+    open_cells: dict[str, dict[Cell, None]] = {d.value: {} for d in Decimal}
+    marked: set[Decimal] = set()
     for cell in cells:
         if cell.number is not None:
             continue
@@ -144,13 +168,25 @@ def decide_decimal(cells: Iterable[Cell], separator: str | None) -> DecimalChoic
         for text in filter(None, (parts.value, parts.error)):
             possible = possible_decimals(text)
             if len(possible) == 1:
-                votes[next(iter(possible))].append(cell)
+                sign = next(iter(possible))
+                votes[sign][cell] = None
+                if sign.thousands in text:
+                    marked.add(sign)
+            elif possible and separator == "," and "," not in text:
+                votes[Decimal.POINT][cell] = None
             elif possible:
-                is_point = separator == "," and "," not in text
-                (votes[Decimal.POINT] if is_point else doubtful).append(cell)
+                open_cells["," if "," in text else "."][cell] = None
     point, comma = votes[Decimal.POINT], votes[Decimal.COMMA]
-    if point or comma:
-        chosen = Decimal.COMMA if len(comma) > len(point) else Decimal.POINT
-        other = point if chosen is Decimal.COMMA else comma
-        return DecimalChoice(chosen, True, contrary=tuple(dict.fromkeys(other)))
-    return DecimalChoice(Decimal.POINT, False, doubtful=tuple(dict.fromkeys(doubtful)))
+    if not point and not comma:
+        doubtful = tuple(dict.fromkeys((*open_cells["."], *open_cells[","])))
+        return DecimalChoice(Decimal.POINT, False, doubtful=doubtful)
+    chosen = Decimal.COMMA if len(comma) > len(point) else Decimal.POINT
+    contrary = point if chosen is Decimal.COMMA else comma
+    disputed = {} if chosen in marked else open_cells[chosen.thousands]
+    return DecimalChoice(
+        chosen,
+        True,
+        next(iter(votes[chosen])),
+        disputed=tuple(c for c in disputed if c not in contrary),
+        contrary=tuple(contrary),
+    )

@@ -19,7 +19,7 @@ from fluxnet.tables.errors_assumed import SdRule
 from fluxnet.tables.grid import Grid
 from fluxnet.tables.layout import Form, Layout, find_layout
 from fluxnet.tables.long_form import collect_long
-from fluxnet.tables.numbers import cell_fault
+from fluxnet.tables.numbers import decimal_faults
 from fluxnet.tables.numerals import Decimal, DecimalChoice, decide_decimal
 from fluxnet.tables.runs import BuiltRun, KnownFactors, build_run
 from fluxnet.tables.telling import assumption_notes, tell_understood
@@ -58,8 +58,8 @@ def understand(
     if not entries.entries and not entries.diagnostics:
         faults.append(_no_rows(grid, layout))
     choice = _decimal(entries, layout, grid, asked)
-    faults.extend(_decimal_faults(choice))
-    flagged = frozenset(c.span for c in (*choice.doubtful, *choice.contrary))
+    faults.extend(decimal_faults(choice))
+    flagged = frozenset(c.span for c in choice.refused)
     readings = read_entries(entries.entries, choice.decimal, layout.vocabulary, flagged)
     faults.extend(readings.diagnostics)
     pairs = Correlations()
@@ -125,33 +125,6 @@ def _decimal(entries: Entries, layout: Layout, grid: Grid, asked: Decimal | None
     if layout.statements.concentration is not None:
         cells.append(layout.statements.concentration)
     return decide_decimal(cells, grid.separator)
-
-
-def _decimal_faults(choice: DecimalChoice) -> list[Diagnostic]:
-    """One fault a cell that can be read in two ways, or is not written as the others are."""
-    faults = [
-        cell_fault(
-            Name.AMBIGUOUS_NUMBER,
-            cell,
-            "",
-            f"`{cell.text}` can be read with a decimal point or with a decimal comma, and no "
-            "other number of the table tells which",
-            "say --decimal comma or --decimal point",
-        )
-        for cell in choice.doubtful
-    ]
-    sign = choice.decimal.name.lower()
-    faults += [
-        cell_fault(
-            Name.AMBIGUOUS_NUMBER,
-            cell,
-            "",
-            f"`{cell.text}` is not written with a decimal {sign} as the other numbers are",
-            "write all numbers in one way",
-        )
-        for cell in choice.contrary
-    ]
-    return faults
 
 
 def _biomass(readings: Readings, vocabulary: Vocabulary) -> tuple[Species | None, tuple[str, ...]]:
