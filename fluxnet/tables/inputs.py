@@ -12,9 +12,8 @@ from fluxnet.ground.source import Span
 from fluxnet.tables.decoding import decode
 from fluxnet.tables.delimited import split_lines
 from fluxnet.tables.grid import Grid
-from fluxnet.tables.workbook import is_workbook, read_workbook
 
-__all__ = ["MOST_BYTES", "Input", "read_input"]
+__all__ = ["MOST_BYTES", "Input", "is_workbook", "read_input"]
 
 MOST_BYTES = 200_000_000
 """No more of a file is read: it may have no end."""
@@ -41,6 +40,8 @@ def read_input(data: bytes | Path, file: str) -> Input:
     if not data:
         return Input(file, diagnostics=(Diagnostic(Name.EMPTY_FILE, f"{file} is empty", span),))
     if is_workbook(data):
+        from fluxnet.tables.workbook import read_workbook  # most tables are texts
+
         book = read_workbook(data, file)
         return Input(file, (), book.sheets, book.diagnostics)
     decoded = decode(data)
@@ -58,6 +59,11 @@ def read_input(data: bytes | Path, file: str) -> Input:
     words = f"{file} is not UTF-8 and was read as Latin-1"
     note = Diagnostic(Name.WRONG_ENCODING, words, span, mend="save the file as UTF-8")
     return Input(file, lines, diagnostics=(note,))
+
+
+def is_workbook(data: bytes) -> bool:
+    """Whether bytes are a packed workbook, or one of an older kind that cannot be read."""
+    return data.startswith((b"PK\x03\x04", b"\xd0\xcf\x11\xe0"))
 
 
 def _bytes_of(path: Path, file: str) -> bytes | Diagnostic:

@@ -21,7 +21,7 @@ from fluxnet.ground.source import Source, Span
 from fluxnet.tables.grid import Cell, Grid, Row
 from fluxnet.tables.sheet_marks import SheetMarks, read_marks
 
-__all__ = ["Workbook", "is_workbook", "read_workbook"]
+__all__ = ["Workbook", "read_workbook"]
 
 _DAMAGE = (
     zipfile.BadZipFile,
@@ -49,11 +49,6 @@ class Workbook:
 
     sheets: tuple[Grid, ...] = ()
     diagnostics: tuple[Diagnostic, ...] = field(default=())
-
-
-def is_workbook(data: bytes) -> bool:
-    """Whether bytes are a packed workbook, or one of an older kind that cannot be read."""
-    return data.startswith((b"PK\x03\x04", b"\xd0\xcf\x11\xe0"))
 
 
 def read_workbook(data: bytes, file: str) -> Workbook:
