@@ -13,6 +13,7 @@ from fluxnet.solving.alter import hard_part
 from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.problem import Problem, Row, RowKind
 from fluxnet.solving.quadratic import solve_quadratic
+from fluxnet.solving.scaling import median_of
 from fluxnet.solving.violations import same_way
 
 __all__ = ["Change", "LeastChange", "least_change"]
@@ -88,8 +89,10 @@ def _least_squares(hard: Problem, soft: _Soft) -> tuple[float, Vector]:
     high = np.append(hard.row_high[bounded], hard.column_high)
     pieces = (soft.rows, soft.values, soft.sds)
     best, least, total = np.zeros(count), np.inf, np.inf
+    unit = median_of(soft.sds)  # tiny sds would make weights beyond the solver's tolerances
     for _ in range(_PASSES):
-        weighted, target = pieces[0] / pieces[2][:, None], pieces[1] / pieces[2]
+        sds = pieces[2] / unit
+        weighted, target = pieces[0] / sds[:, None], pieces[1] / sds
         answer = solve_quadratic(
             weighted.T @ weighted, -weighted.T @ target, rows, low, high
         )

@@ -241,3 +241,14 @@ def test_ratios_that_hold_need_no_change(make_network, make_run):
     change = least_change(build_problem(network, run).problem)
     assert change.total == pytest.approx(0, abs=1e-9)
     assert change.common_k == pytest.approx(0, abs=1e-6)
+
+
+def test_the_least_change_is_found_however_small_the_sds_are(make_network, make_run):
+    # ethanol + lactate = 2 glucose, measured 4 against 2: (2, 2, 1) per sd, squared 9.
+    network = make_network(CELL, ("oxygen <= 0", "growth <= 0"))
+    for sd in (1.0, 1e-6, 1e-9):
+        measured = ("glucose in 1 ± {0}", "ethanol out 3 ± {1}", "lactate out 1 ± {0}")
+        run = make_run(network, *(text.format(sd, 2 * sd) for text in measured))
+        change = least_change(build_problem(network, run).problem)
+        assert change.total * sd**2 == pytest.approx(4 / 9, rel=1e-6)
+        assert [c.changed for c in change.changes] == pytest.approx([13 / 9, 19 / 9, 7 / 9])
