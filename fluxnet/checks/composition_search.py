@@ -16,7 +16,7 @@ __all__ = ["Determined", "circuit", "determine", "is_possible", "shrink"]
 _ZERO = Fraction(0)
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class Determined:
     """What one balance's equations say.
 

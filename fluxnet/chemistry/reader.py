@@ -43,7 +43,7 @@ _CHARGE_BRACKET = re.compile(r"\s*\((?:(\d*\.?\d*)([+-])|([+-])(\d+\.?\d*))\)\s*
 _ZERO = Fraction(0)
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class _Amount:
     """A count with half a unit of its last written decimal."""
 

@@ -16,7 +16,6 @@ from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
 from fluxnet.ground.source import Source, Span
 from fluxnet.network.model import Network
-from fluxnet.network.variant import apply_variant
 from fluxnet.presenting.records import Input, hash_bytes, hash_file
 from fluxnet.reading.model import ModelReading, read_model, read_model_text
 
@@ -66,6 +65,8 @@ def load_model(arguments: argparse.Namespace, variant: str = "base") -> ReadMode
     reading, inputs = _read(arguments)
     network, diagnostics = reading.network, reading.diagnostics
     if network is not None and variant != "base":
+        from fluxnet.network.variant import apply_variant  # most commands ask for none
+
         network, told = apply_variant(network, variant)
         known = {(d.name, d.span, d.message) for d in diagnostics}
         new = (d for d in told if (d.name, d.span, d.message) not in known)

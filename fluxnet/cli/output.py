@@ -11,7 +11,6 @@ from fluxnet.cli.inputs import exit_of
 from fluxnet.cli.main import Exit
 from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.names import Severity
-from fluxnet.presenting.files import write_csv, write_workbook
 from fluxnet.presenting.records import Input, document_text
 from fluxnet.presenting.screen import Block, screen_tables
 from fluxnet.presenting.terminal import Terminal
@@ -34,6 +33,8 @@ def give_screen(
     Standard output carries the result; where files were written is said on standard error.
     """
     tables = screen_tables(screen)
+    if arguments.csv is not None or arguments.xlsx is not None:
+        from fluxnet.presenting.files import write_csv, write_workbook
     if arguments.csv is not None:
         paths = write_csv(tables, arguments.csv, force=arguments.force)
         print(f"wrote {len(paths)} tables into {arguments.csv}", file=sys.stderr)

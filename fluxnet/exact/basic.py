@@ -16,7 +16,7 @@ from fluxnet.exact.linear import Row, echelon
 __all__ = ["find_nonnegative", "largest"]
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class _Basis:
     """A tableau: rows of coefficients with the right side last, and each row's basic column."""
 

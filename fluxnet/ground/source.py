@@ -2,14 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from fluxnet.ground.record import record
 
 __all__ = ["NOWHERE", "Source", "Span"]
 
 
-@dataclass(frozen=True, slots=True, order=True)
+@record
 class Span:
     """A stretch of one line of one input.
 
@@ -23,6 +21,11 @@ class Span:
     line: int
     column: int = 1
     end_column: int = 1
+
+    def __lt__(self, other: Span) -> bool:
+        """Whether it stands before another: by file, line and column."""
+        mine = (self.file, self.line, self.column, self.end_column)
+        return mine < (other.file, other.line, other.column, other.end_column)
 
 
 NOWHERE = Span("", 0, 0, 0)

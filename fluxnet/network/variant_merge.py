@@ -33,7 +33,7 @@ class Merged:
     diagnostics: tuple[Diagnostic, ...] = ()
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class _Merging:
     """The work on one set of variants."""
 

@@ -34,7 +34,7 @@ class Rejected(NamedTuple):
     compartment: str | None
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class _Block:
     """An open block: ``head`` is None where the line that should open it was rejected."""
 

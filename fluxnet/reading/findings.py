@@ -29,7 +29,7 @@ class Stretch(Protocol):
         ...
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class Findings:
     """The list of faults of one reading.
 

@@ -38,7 +38,7 @@ class Place(NamedTuple):
     large: bool = False
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class Loaded:
     """Statements in order, the texts they come from, and the lines that were refused."""
 

@@ -22,7 +22,7 @@ from fluxnet.reading.unknown_names import report_unknown, resolve_free
 __all__ = ["resolve_network"]
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class _Parts:
     """What the statements of the unchanged model add up to."""
 

@@ -36,7 +36,7 @@ class Mention(NamedTuple):
     word: Word
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class Scope:
     """The names that a statement sees.
 

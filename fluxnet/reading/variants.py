@@ -20,7 +20,7 @@ from fluxnet.reading.scope import Kind, Scope, claim, place_words
 __all__ = ["resolve_variants"]
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class _Block:
     """The statements of one variant."""
 

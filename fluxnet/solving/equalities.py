@@ -55,7 +55,7 @@ class ExactRows:
         return [self.rows[e.place] for e in self.equalities if measured or not e.is_measured]
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class _Group:
     """All bounds on one functional, up to its factor."""
 

@@ -58,7 +58,7 @@ class Sheet:
     notes: tuple[Diagnostic, ...]
 
 
-@dataclass(slots=True)
+@dataclass(slots=True, eq=False, repr=False)
 class _Draft:
     """Rows as they are collected."""
 
