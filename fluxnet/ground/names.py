@@ -374,10 +374,16 @@ class Name(Enum):
         "Uptake and release are told apart by word, never by sign.", "Write in or out.")
     NEGATIVE_RATE = (
         "negative-rate", _E, "a rate is negative",
-        "Rates are magnitudes; the direction is told by word.", "Write the other direction.")
+        "Rates are magnitudes; the direction is told by word, and a minus often only marks the "
+        "uptake.",
+        "Write it without the minus, with the direction that is meant.")
     NEGATIVE_SD = (
         "negative-sd", _E, "a standard deviation is negative",
         "It has no meaning.", "Correct it; 0 means exact.")
+    SD_LARGER_THAN_RATE = (
+        "sd-larger-than-rate", _W, "a standard deviation without % is larger than its rate",
+        "Where per cent were meant, the rate has almost no weight in any test or fit.",
+        "Write 5 %, or [%] in the title of the sds; keep it where the rate may be 0.")
     NOT_A_NUMBER = (
         "not-a-number", _E, "a cell holds NaN or infinity",
         "It would spread to every answer.", "Leave it blank: not measured.")

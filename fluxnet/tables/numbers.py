@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Sequence
+from dataclasses import replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
 from fluxnet.tables.grid import Cell
+from fluxnet.tables.no_numbers import explain_no_number
 from fluxnet.tables.numerals import (
     Decimal,
     DecimalChoice,
@@ -18,13 +19,10 @@ from fluxnet.tables.numerals import (
     two_readings,
 )
 
-__all__ = ["Number", "cell_fault", "decimal_faults", "read_cell"]
+__all__ = ["Number", "cell_fault", "decimal_faults", "read_cell", "told_briefly"]
 
 _MOST = 5
-"""Cells with one fault that are told one by one."""
-
-_SAY = "say --decimal point or --decimal comma"
-_DATE = re.compile(r"\d{4}-\d\d-\d\d.*")
+"""Cells with one kind of fault that are told one by one."""
 
 
 @record
@@ -50,8 +48,8 @@ def cell_fault(
     return Diagnostic(name, f"{where}: {words}", cell.span, mend=mend)
 
 
-def read_cell(cell: Cell, decimal: Decimal, title: str) -> Number:
-    """The number in a cell that is not blank."""
+def read_cell(cell: Cell, decimal: Decimal, title: str, *, is_sd: bool = False) -> Number:
+    """The number in a cell that is not blank; ``is_sd`` says that it is to be an error."""
     if cell.fault is not None:
         words = f"`{cell.text}` {cell.fault}" if cell.text else cell.fault
         return Number(fault=cell_fault(Name.UNREADABLE_CELL, cell, title, words))
@@ -64,7 +62,9 @@ def read_cell(cell: Cell, decimal: Decimal, title: str) -> Number:
     value = read_number(parts.value, decimal)
     error = read_number(parts.error, decimal) if parts.error else 0.0
     if value is None or error is None:
-        return Number(fault=_no_number(cell, title))
+        found = explain_no_number(cell.text, decimal, is_sd=is_sd)
+        fault = cell_fault(Name.UNREADABLE_CELL, cell, title, found.words, found.mend)
+        return Number(fault=fault)
     if not parts.error:
         return Number(value, percent=parts.percent)
     if parts.error_percent:
@@ -72,47 +72,39 @@ def read_cell(cell: Cell, decimal: Decimal, title: str) -> Number:
     return Number(value, sd=error, percent=parts.percent)
 
 
-def _no_number(cell: Cell, title: str) -> Diagnostic:
-    words = f"`{cell.text}` is no number"
-    mend = "correct it, or leave the cell blank: not measured"
-    if _DATE.fullmatch(cell.text):
-        words = f"`{cell.text}` is a date"
-        mend = "write the number again: spreadsheets turn 1.5 into the first of May"
-    return cell_fault(Name.UNREADABLE_CELL, cell, title, words, mend)
+def told_briefly(faults: Sequence[Diagnostic]) -> list[Diagnostic]:
+    """Of many faults of one kind the first ones, the last with how many more there are."""
+    shown, rest = list(faults[:_MOST]), faults[_MOST:]
+    if len(rest) > 1:
+        first = rest[0]
+        shown.append(replace(first, message=f"{first.message}; {len(rest) - 1} more are like it"))
+        return shown
+    return list(faults)
 
 
 def decimal_faults(choice: DecimalChoice) -> list[Diagnostic]:
-    """One fault a cell that can be read in two ways, or is not written as the others are.
-
-    Of many cells with one fault the first are told, and then how many more there are.
-    """
-    faults: list[Diagnostic] = []
-
-    def add(cell: Cell, words: str, mend: str) -> None:
-        faults.append(cell_fault(Name.AMBIGUOUS_NUMBER, cell, "", words, mend))
-
-    def told(cells: Sequence[Cell], mend: str) -> Sequence[Cell]:
-        shown, rest = cells[:_MOST], cells[_MOST:]
-        if len(rest) < 2:
-            return cells
-        add(rest[0], f"`{rest[0].text}`: the same of {len(rest)} numbers from here on", mend)
-        return shown
-
-    for cell in told(choice.doubtful, _SAY):
+    """One fault a cell that can be read in two ways, or is not written as the others are."""
+    doubtful: list[Diagnostic] = []
+    for cell in choice.doubtful:
         small, large = two_readings(cell.text)
         words = f"`{cell.text}` may be {small} or {large}, and no other number of the table tells"
-        add(cell, words, _SAY)
+        mend = "say --decimal point or --decimal comma"
+        doubtful.append(cell_fault(Name.AMBIGUOUS_NUMBER, cell, "", words, mend))
     evidence = choice.evidence
     if evidence is None:
-        return faults
-    sign, one_way = choice.decimal.name.lower(), "write all numbers in one way"
+        return told_briefly(doubtful)
+    disputed: list[Diagnostic] = []
+    sign = choice.decimal.name.lower()
     shown = f"`{evidence.text}` in {evidence.place} is written with a decimal {sign}"
-    for cell in told(choice.disputed, one_way):
+    for cell in choice.disputed:
         small, large = two_readings(cell.text)
         written = small.replace(".", choice.decimal.value)
         words = f"`{cell.text}` may be {small} or {large}; {shown}"
-        add(cell, words, f"write {written} or {large}, or say --decimal {sign} where it is {large}")
-    for cell in told(choice.contrary, one_way):
+        mend = f"write {written} or {large}, or say --decimal {sign} where it is {large}"
+        disputed.append(cell_fault(Name.AMBIGUOUS_NUMBER, cell, "", words, mend))
+    contrary: list[Diagnostic] = []
+    for cell in choice.contrary:
         words = f"`{cell.text}` is not written with a decimal {sign}, as others are; {shown}"
-        add(cell, words, one_way)
-    return faults
+        mend = "write all numbers in one way"
+        contrary.append(cell_fault(Name.AMBIGUOUS_NUMBER, cell, "", words, mend))
+    return told_briefly(disputed) + told_briefly(contrary)

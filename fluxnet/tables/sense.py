@@ -2,17 +2,20 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
-from fluxnet.network.model import Direction, Quantity, QuantityKind
+from fluxnet.network.model import Direction, Quantity, QuantityKind, Species
 from fluxnet.tables.entries import Entry
 from fluxnet.tables.grid import Cell
 from fluxnet.tables.numbers import Number, cell_fault
+from fluxnet.tables.numerals import split_numeral
 from fluxnet.tables.rate_units import BadUnit, RateUnit
+from fluxnet.tables.reach import reach_faults
+from fluxnet.tables.vocabulary import direction_of_role
 
-__all__ = ["sense_faults", "unit_faults"]
+__all__ = ["sd_doubts", "sense_faults", "unit_faults"]
 
 
 def unit_faults(
@@ -63,9 +66,13 @@ def _unit_mend(quantity: Quantity | None) -> str:
 
 
 def sense_faults(
-    entry: Entry, quantity: Quantity | None, value: Number, sd: Number
+    entry: Entry,
+    quantity: Quantity | None,
+    value: Number,
+    sd: Number,
+    species: Sequence[Species] = (),
 ) -> list[Diagnostic]:
-    """Faults of numbers that can be read but make no sense."""
+    """Faults of numbers that can be read but make no sense; ``species`` are the quantity's."""
     kind = quantity.kind if quantity is not None else None
     sd_title = f"sd of {entry.name}"
     faults: list[Diagnostic] = []
@@ -77,7 +84,7 @@ def sense_faults(
         words = f"is in per cent, not in {entry.unit or 'a unit'}"
         add(Name.UNREADABLE_CELL, entry.value, entry.title, words)
     if value.value is not None and value.value < 0 and kind is not QuantityKind.FLUX:
-        mend = _other_direction(quantity, -value.value)
+        mend = _magnitude(entry.value.text, quantity, species)
         add(Name.NEGATIVE_RATE, entry.value, entry.title, "is negative", mend)
     if (value.sd is not None or value.relative is not None) and sd.value is not None:
         words = f"is a second sd beside `{entry.value.text}`"
@@ -87,15 +94,48 @@ def sense_faults(
         if number is not None and number < 0:
             words = "is a negative standard deviation"
             add(Name.NEGATIVE_SD, cell, sd_title, words, "0 means exact")
+    if not faults:
+        faults += reach_faults(entry, value, sd)
     if value.value is None and sd.value is not None:
         mend = "fill in the rate, or leave both blank"
         add(Name.UNREADABLE_CELL, entry.sd, sd_title, "is the sd of a rate that is blank", mend)
     return faults
 
 
-def _other_direction(quantity: Quantity | None, size: float) -> str | None:
-    """How to write a negative rate."""
-    if quantity is None or quantity.direction is None:
+def _magnitude(text: str, quantity: Quantity | None, species: Sequence[Species]) -> str | None:
+    """How to write a negative rate: most often the minus only marks the direction."""
+    if quantity is None:
         return None
-    other = Direction.OUT if quantity.direction is Direction.IN else Direction.IN
-    return f"write {size:g} with the direction {other.value}"
+    if quantity.kind is QuantityKind.MU:
+        return "rates are magnitudes: write 0 with its sd where the cells did not grow"
+    size = split_numeral(text).value.lstrip("-\u2212 ")
+    if quantity.direction is None:
+        return f"rates are magnitudes: write {size}"
+    told = quantity.direction
+    other, verb = (
+        (Direction.OUT, "released") if told is Direction.IN else (Direction.IN, "taken up")
+    )
+    words = f"rates are magnitudes: write {size} with the direction {told.value}"
+    if any(direction_of_role(s.role) is not None for s in species):
+        return words
+    kept = "only marks the uptake" if told is Direction.IN else "is only a convention"
+    return (
+        f"{words} if the minus {kept}; "
+        f"if {quantity.name} was really {verb}, {other.value}"
+    )
+
+
+def sd_doubts(
+    entry: Entry, value: float | None, sd: float | None, *, same_unit: bool
+) -> list[Diagnostic]:
+    """A warning where an sd without % is larger than its rate; 0 may have any sd."""
+    if not value or sd is None or not same_unit or sd <= abs(value):
+        return []
+    beside = split_numeral(entry.value.text)
+    cell, shown = (entry.value, beside.error) if entry.sd.is_blank else (entry.sd, entry.sd.text)
+    words = f"sd {shown} is larger than the rate {beside.value}"
+    mend = "correct it; what cannot be told from 0 may have such an sd"
+    if 1 <= sd <= 100:
+        words += f"; was {shown} % meant?"
+        mend = f"write {shown} %, or [%] in the title of the sds"
+    return [cell_fault(Name.SD_LARGER_THAN_RATE, cell, f"sd of {entry.name}", words, mend)]

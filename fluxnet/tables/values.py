@@ -11,11 +11,11 @@ from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Quantity, QuantityKind, Species
 from fluxnet.tables.entries import Entry
-from fluxnet.tables.numbers import Number, cell_fault, read_cell
+from fluxnet.tables.numbers import Number, cell_fault, read_cell, told_briefly
 from fluxnet.tables.numerals import Decimal
 from fluxnet.tables.quantities import QuantityReading, read_quantity, settle_ratio
 from fluxnet.tables.rate_units import BadUnit, RateUnit, read_rate_unit
-from fluxnet.tables.sense import sense_faults, unit_faults
+from fluxnet.tables.sense import sd_doubts, sense_faults, unit_faults
 from fluxnet.tables.vocabulary import Vocabulary
 
 __all__ = ["Reading", "Readings", "read_entries"]
@@ -69,6 +69,7 @@ def read_entries(
     typed: dict[str, Species] = {}
     readings: list[Reading] = []
     faults: list[Diagnostic] = []
+    doubts: list[Diagnostic] = []
     failed: set[str] = set()
     assumed: list[Entry] = []
     for entry in entries:
@@ -86,10 +87,13 @@ def read_entries(
         found = _read(entry, told, decimal, units, skip=bool(bad))
         if isinstance(found, Reading):
             readings.append(found)
+            same = found.sd_unit is None or entry.sd_unit == entry.unit
+            doubts += sd_doubts(entry, found.value, found.sd, same_unit=same)
         else:
             faults.extend(found)
             failed.add(entry.run)
     readings = _settled(readings, typed)
+    faults += told_briefly(doubts)
     return Readings(
         tuple(readings), tuple(typed.values()), frozenset(failed), tuple(assumed), tuple(faults)
     )
@@ -164,11 +168,11 @@ def _read(
     if not entry.value.is_blank and not skip:
         value = read_cell(entry.value, decimal, entry.title)
     if not entry.sd.is_blank and not skip:
-        sd = read_cell(entry.sd, decimal, f"sd of {entry.name}")
+        sd = read_cell(entry.sd, decimal, f"sd of {entry.name}", is_sd=True)
     faults += [n.fault for n in (value, sd) if n.fault is not None]
     faults += unit_faults(entry, told.quantity, units)
     if not faults:
-        faults += sense_faults(entry, told.quantity, value, sd)
+        faults += sense_faults(entry, told.quantity, value, sd, told.species)
     if faults or told.quantity is None or skip:
         return faults
     own, relative = value.sd, value.relative

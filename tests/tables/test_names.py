@@ -53,10 +53,29 @@ def test_a_direction_against_the_role_is_an_error(fault, network, species, direc
     assert found.name is Name.RATE_AGAINST_ROLE
 
 
-def test_a_negative_rate_is_told_with_the_other_direction(fault, network):
-    found = fault(LONG + "A,CO2,out,-2,1,mmol/g/h\n", network=network)
+@pytest.mark.parametrize(("row", "mend"), [
+    ("A,oxygen,in,-3.60,5 %,mmol/g/h",
+     "rates are magnitudes: write 3.60 with the direction in if the minus only marks the uptake; "
+     "if oxygen was really released, out"),
+    ("A,CO2,out,\u22122 ± 0.1,,mmol/g/h",
+     "rates are magnitudes: write 2 with the direction out if the minus is only a convention; "
+     "if CO2 was really taken up, in"),
+])  # fmt: skip
+def test_a_negative_rate_is_most_often_a_sign_convention(fault, row, mend):
+    found = fault(LONG + row + "\n")
+    assert (found.name, found.mend) == (Name.NEGATIVE_RATE, mend)
+    assert found.edits == ()
+
+
+def test_a_negative_rate_of_a_substrate_goes_no_other_way(fault, network):
+    found = fault(LONG + "A,glucose,in,-2.050,0.1,mmol/g/h\n", network=network)
+    assert found.mend == "rates are magnitudes: write 2.050 with the direction in"
+
+
+def test_a_negative_growth_rate_gets_a_mend_of_its_own(fault):
+    found = fault(LONG + "A,mu,,-0.01,0.02,1/h\n")
     assert found.name is Name.NEGATIVE_RATE
-    assert found.mend == "write 2 with the direction in"
+    assert "write 0" in found.mend
 
 
 def test_a_flux_is_named_with_or_without_its_word_and_may_be_negative(read, network):
