@@ -71,6 +71,13 @@ _TOKEN = re.compile(
 )
 
 
+_LONGEST = 100
+_LARGEST = 10**9
+"""No larger number stands in a unit, and none smaller than one by it."""
+
+_JOINS = ("slash", "times")
+
+
 @record
 class _Factor:
     word: Word
@@ -97,6 +104,8 @@ def parse_unit(text: str) -> Unit:
     ('g', Fraction(3, 50), ['L', 'h'])
     """
     plain = unicodedata.normalize("NFKC", text).replace("\u2212", "-").strip()
+    if len(plain) > _LONGEST:
+        raise UnitError(UnitFault.UNKNOWN, f"`{plain[:20]}...` is too long for a unit", plain)
     body, form = split_form(plain)
     body = re.sub(r"\bper\b", "/", body)
     if not body.strip():
@@ -136,12 +145,17 @@ def _read_factors(body: str) -> tuple[Fraction, list[_Factor]]:
     scale = Fraction(1)
     factors: list[_Factor] = []
     sign, inside = 1, False  # below the line for the next factor, or for a whole bracket
-    place = 0
+    place, before = 0, ""
     while place < len(body):
         match = _TOKEN.match(body, place)
         if match is None:
             raise UnitError(UnitFault.UNKNOWN, f"`{body[place]}` stands in no unit", body[place])
-        place = match.end()
+        place, kind = match.end(), match.lastgroup or ""
+        if kind == "blank":
+            continue
+        if not _may_follow(kind, before, inside=inside):
+            raise UnitError(UnitFault.UNKNOWN, f"`{match[0]}` cannot stand there", match[0])
+        before = kind
         if match["slash"]:
             sign = -1
         elif match["open"]:
@@ -152,6 +166,8 @@ def _read_factors(body: str) -> tuple[Fraction, list[_Factor]]:
             number = Fraction(match["number"])
             if not number:
                 raise UnitError(UnitFault.WRONG, "a unit holds the number 0", match["number"])
+            if not Fraction(1, _LARGEST) <= number <= _LARGEST:
+                raise UnitError(UnitFault.WRONG, f"`{match[0]}` is out of reach", match[0])
             scale *= number**sign
         elif match["word"]:
             power = int((match["power"] or "1").lstrip("^")[:4])
@@ -167,7 +183,20 @@ def _read_factors(body: str) -> tuple[Fraction, list[_Factor]]:
                 word, power = _word(match["word"], power)
                 factors.append(_Factor(word, sign * power, match[0]))
             sign = sign if inside else 1
+    if inside or before in _JOINS:
+        raise UnitError(UnitFault.UNKNOWN, f"`{body.strip()}` is not finished", body)
     return scale, factors
+
+
+def _may_follow(kind: str, before: str, *, inside: bool) -> bool:
+    """Whether a part of a unit may stand behind another: no ``**``, no bracket in a bracket."""
+    if kind in _JOINS:
+        return before not in ("open", *_JOINS) and (bool(before) or kind == "slash")
+    if kind == "open":
+        return not inside
+    if kind == "close":
+        return inside and before not in ("open", *_JOINS)
+    return kind != "number" or before in ("", "open", *_JOINS)
 
 
 def _word(written: str, power: int) -> tuple[Word, int]:

@@ -161,3 +161,24 @@ def test_there_and_back_is_exact(unit: str, other: str, name: str, value: Fracti
 def test_a_unit_with_a_senseless_number_is_refused(text):
     with pytest.raises(UnitError):
         parse_unit(text)
+
+
+@pytest.mark.parametrize(
+    "text",
+    [
+        "mmol**9999999/g/h", "9**9**9 mmol/g/h", "mmol//g/h", "mmol/g/", "*mmol", "mmol 5",
+        "((mmol))/g/h", "mmol/(g h", "mmol)/g/h", "mmol/()g", "mmol/g/h" + "*1" * 60,
+    ],
+)  # fmt: skip
+def test_signs_that_make_no_unit_are_no_factors_of_it(text: str) -> None:
+    with pytest.raises(UnitError) as told:
+        parse_unit(text)
+
+    assert told.value.kind is UnitFault.UNKNOWN
+
+
+def test_a_number_in_a_unit_has_a_size_that_somebody_meant() -> None:
+    assert parse_unit("1000000 mmol/g/h").scale == 10**6
+    for text in ("99999999999 mmol/g/h", "mmol/99999999999 g", "0.00000000001 mmol"):
+        with pytest.raises(UnitError, match="out of reach"):
+            parse_unit(text)
