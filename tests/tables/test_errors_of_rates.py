@@ -198,3 +198,30 @@ def test_a_pair_without_a_run_holds_for_every_run_that_measures_both():
 )  # fmt: skip
 def test_a_covariance_table_that_makes_no_sense_is_an_error(fault, pairs, name):
     assert fault(GAS, covariance=pairs).name is name
+
+
+@pytest.mark.parametrize(
+    ("rate", "sd", "words"),
+    [
+        ("1e308", "3 %", "`1e308` is out of reach"),
+        ("1e-320", "3 %", "`1e-320` is out of reach"),
+        ("2", "1e300", "`1e300` is out of reach"),
+        ("2 ± 1e-300", "", "`2 ± 1e-300` is out of reach"),
+        ("2", "1e-10", "`1e-10` is nothing beside the rate"),
+        ("2 ± 1e-10", "", "`2 ± 1e-10` is nothing beside the rate"),
+        ("2", "1e-8 %", "`1e-8 %` is nothing beside the rate"),
+        ("2", "1e10", "`1e10` leaves nothing of the rate"),
+        ("2", "1e12 %", "`1e12 %` leaves nothing of the rate"),
+    ],
+)
+def test_numbers_that_no_computer_can_weigh_are_refused_at_their_cell(rate, sd, words):
+    reading = read_rates_text(LONG + f"A,glucose,in,{rate},{sd},mmol/g/h\n")
+    (fault,) = [d for d in reading.diagnostics if d.severity.value == "error"]
+    assert reading.table is None
+    assert (fault.name, fault.span.line) == (Name.UNREADABLE_CELL, 2)
+    assert words in fault.message
+
+
+def test_an_sd_of_zero_and_the_sd_of_a_rate_of_zero_are_no_faults(read):
+    run = read(LONG + "A,glucose,in,2,0,mmol/g/h\nA,ethanol,out,0,1e-12,mmol/g/h\n")
+    assert [r.sd for r in run.rates] == [0.0, 1e-12]
