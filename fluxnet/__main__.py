@@ -18,8 +18,8 @@ def main() -> NoReturn:
     """
     # The matrices of a network are small: starting numpy's threads takes longer than they save.
     os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
-    # What is imported stays: looking for garbage every few hundred objects does not find any.
-    gc.set_threshold(50_000, 20, 20)
+    # What is imported stays: looking for garbage at every few hundred objects finds none.
+    gc.set_threshold(200_000, 20, 20)
     from fluxnet.cli.main import run
 
     status = run()
