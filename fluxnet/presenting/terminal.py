@@ -82,7 +82,7 @@ class Terminal:
         shown = [b for b in screen if not isinstance(b, Table) or b.is_shown]
         for place, block in enumerate(shown):
             if after_table and isinstance(block, Sentence):
-                console.print()
+                print(file=self.stream)
             after_table = isinstance(block, Table)
             if isinstance(block, Heading):
                 self._print(console, ("\n" if place else "") + block.text, "bold")
@@ -129,8 +129,6 @@ class Terminal:
     def _print(self, console: Console, text: str, style: str, hang: int = 0) -> None:
         from textwrap import wrap
 
-        from rich.text import Text
-
         # In a pipe sentences are broken for 80 columns; only tables may be wider.
         width = console.width if self.width is None else min(self.width, 80)
         for line in text.split("\n"):
@@ -138,19 +136,22 @@ class Terminal:
                 self._plain(line), width, break_on_hyphens=False, subsequent_indent=" " * hang
             )
             for part in parts or [""]:
-                console.print(Text(part, style=style if self.colour else ""), soft_wrap=True)
+                self._print_whole(console, part, style)
 
     def _print_whole(self, console: Console, line: str, style: str = "") -> None:
         """A line that must not be broken, because the next belongs below it."""
-        from rich.text import Text
+        if style and self.colour:
+            from rich.text import Text
 
-        console.print(Text(self._plain(line), style if self.colour else ""), soft_wrap=True)
+            console.print(Text(self._plain(line), style), soft_wrap=True)
+        else:
+            print(self._plain(line), file=self.stream)
 
     def _plain(self, text: str) -> str:
         return text.translate(_ASCII) if self.ascii_only else text
 
     def _show_table(self, console: Console, table: Table) -> None:
-        console.print()
+        print(file=self.stream)
         if table.title:
             self._print(console, table.title, "bold")
         columns, cells = table_cells(table)
