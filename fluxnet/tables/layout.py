@@ -31,7 +31,7 @@ class Layout:
     """How a grid is to be read; ``form`` is None where no header was found.
 
     ``titles`` are one a column; ``body`` are the rows below the header; ``score`` counts the
-    columns that were understood.
+    columns that were understood. ``shifted`` are the lines whose cells stand in wrong columns.
     """
 
     form: Form | None
@@ -42,6 +42,7 @@ class Layout:
     statements: Statements = field(default=Statements())
     score: int = 0
     header: Row | None = None
+    shifted: frozenset[int] = frozenset()
 
 
 @record

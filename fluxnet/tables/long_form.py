@@ -46,7 +46,10 @@ def collect_long(layout: Layout) -> Entries:
         named = _cell(row, places, Key.RUN).text
         continued = continued or bool(run and not named and Key.RUN in places)
         run = named or run or "1"
-        head = heads.get(run, RunHead(run, row.span))
+        head = heads.setdefault(run, RunHead(run, row.span))
+        if row.span.line in layout.shifted:
+            failed.add(run)
+            continue
         heads[run] = extend_head(head, row, extras, biomass)
         entry = _entry(row, run, places, layout.vocabulary)
         if entry is not None:

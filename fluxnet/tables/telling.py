@@ -14,6 +14,7 @@ from fluxnet.tables.grid import Grid
 from fluxnet.tables.layout import Layout
 from fluxnet.tables.numerals import DecimalChoice
 from fluxnet.tables.runs import BuiltRun
+from fluxnet.tables.surplus import untitled_words
 
 __all__ = ["Told", "assumption_notes", "tell_understood"]
 
@@ -34,8 +35,12 @@ def tell_understood(
     entries: Entries,
     choice: DecimalChoice,
     covariance: Grid | None,
+    untitled: Sequence[int] = (),
 ) -> Told:
-    """How the table was read: form, separator, decimal sign, header, what was carried through."""
+    """How the table was read: form, separator, decimal sign, header, what was carried through.
+
+    ``untitled`` are the columns that hold something and have no title.
+    """
     parts = [f"{layout.form.value if layout.form else 'no'} table"]
     if grid.sheet is not None:
         parts.append(f"sheet {grid.sheet}")
@@ -49,6 +54,8 @@ def tell_understood(
     parts.append(_count(len(entries.heads), "run"))
     if entries.carried:
         parts.append(f"carried through: {', '.join(entries.carried)}")
+    if untitled:
+        parts.append(untitled_words(untitled))
     if entries.continued:
         parts.append("a blank run cell continues the run above")
     if covariance is not None:

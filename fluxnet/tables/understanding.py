@@ -22,6 +22,7 @@ from fluxnet.tables.long_form import collect_long
 from fluxnet.tables.numbers import decimal_faults
 from fluxnet.tables.numerals import Decimal, DecimalChoice, decide_decimal
 from fluxnet.tables.runs import BuiltRun, KnownFactors, build_run
+from fluxnet.tables.surplus import find_surplus
 from fluxnet.tables.telling import assumption_notes, tell_understood
 from fluxnet.tables.values import Reading, Readings, read_entries
 from fluxnet.tables.vocabulary import Vocabulary, assumed_biomass, biomass_species
@@ -53,9 +54,12 @@ def understand(
     faults.extend(check_declarations(layout.statements.species, network))
     if layout.form is None:
         return Understood(None, notes, (*faults, _no_header(grid, layout)))
+    surplus = find_surplus(layout, grid.separator)
+    faults.extend(surplus.diagnostics)
+    layout = replace(layout, shifted=surplus.lines)
     entries = collect_long(layout) if layout.form is Form.LONG else collect_wide(layout)
     faults.extend(entries.diagnostics)
-    if not entries.entries and not entries.diagnostics:
+    if not entries.entries and not entries.diagnostics and not entries.failed:
         faults.append(_no_rows(grid, layout))
     choice = _decimal(entries, layout, grid, asked)
     faults.extend(decimal_faults(choice))
@@ -71,7 +75,7 @@ def understand(
     runs = _build_runs(entries, readings, layout, choice.decimal, biomass, pairs, rule)
     for built in runs:
         faults.extend(built.diagnostics)
-    told = tell_understood(grid, layout, entries, choice, covariance)
+    told = tell_understood(grid, layout, entries, choice, covariance, surplus.untitled)
     faults.append(told.note)
     faults.extend(assumption_notes(grid, runs, rule, assumed))
     table = RatesTable(

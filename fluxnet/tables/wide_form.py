@@ -38,10 +38,14 @@ def collect_wide(layout: Layout) -> Entries:
     biomass = BiomassColumns.among(layout.titles)
     entries: list[Entry] = []
     heads: dict[str, RunHead] = {}
+    failed: set[str] = set()
     for count, row in enumerate(layout.body, start=1):
         named = row.cell(columns.run.cell.column).text if columns.run else ""
         run = named or str(count)
-        head = heads.get(run, RunHead(run, row.span))
+        head = heads.setdefault(run, RunHead(run, row.span))
+        if row.span.line in layout.shifted:
+            failed.add(run)
+            continue
         heads[run] = extend_head(head, row, columns.extras, biomass)
         entries.extend(
             Entry(
@@ -59,7 +63,13 @@ def collect_wide(layout: Layout) -> Entries:
             for title, sd in columns.quantities
         )
     carried = tuple(t.cell.text for t in columns.extras)
-    return Entries(tuple(entries), tuple(heads.values()), carried, diagnostics=columns.faults)
+    return Entries(
+        tuple(entries),
+        tuple(heads.values()),
+        carried,
+        failed=frozenset(failed),
+        diagnostics=columns.faults,
+    )
 
 
 def _columns(layout: Layout) -> _Columns:
