@@ -80,11 +80,16 @@ def _faulty(
 def _tidy(arguments: argparse.Namespace) -> int:
     """Lay a model file out: in place, or to standard output for ``-``."""
     from fluxnet.presenting.files import write_text
+    from fluxnet.reading.source import MOST_BYTES, source_of_bytes
     from fluxnet.reading.tidy import tidy_text
 
     if arguments.model == "-":
-        sys.stdout.write(tidy_text(sys.stdin.read()))
-        return Exit.SOUND
+        data = sys.stdin.buffer.read(MOST_BYTES + 1)
+        source, told = source_of_bytes(data, "standard input", large=arguments.large)
+        give_findings(arguments, told)
+        if source is not None:
+            sys.stdout.write(tidy_text("\n".join((*source.lines, ""))))
+        return exit_of(told)
     model = load_model(arguments)
     if not model.sources:
         give_findings(arguments, model.diagnostics)

@@ -9,6 +9,7 @@ import traceback
 from collections.abc import Sequence
 
 import fluxnet
+from fluxnet.cli.streams import complain
 
 __all__ = ["report_fault"]
 
@@ -31,5 +32,5 @@ def report_fault(command: str, words: Sequence[str]) -> int:
         where = f"it is described in {file.name}: please send that file with your input"
     except OSError:
         where = "its description could not be written"
-    print(f"fluxnet {command}: a fault of ours stopped the command; {where}", file=sys.stderr)
+    complain(f"fluxnet {command}: a fault of ours stopped the command; {where}")
     return 3

@@ -17,7 +17,8 @@ from fluxnet.ground.record import record
 from fluxnet.ground.source import Source, Span
 from fluxnet.network.model import Network
 from fluxnet.presenting.records import Input, hash_bytes, hash_file
-from fluxnet.reading.model import ModelReading, read_model, read_model_text
+from fluxnet.reading.model import ModelReading, read_model, read_model_bytes
+from fluxnet.reading.source import MOST_BYTES
 
 if TYPE_CHECKING:
     from fluxnet.rates.measured import RatesTable
@@ -76,9 +77,8 @@ def load_model(arguments: argparse.Namespace, variant: str = "base") -> ReadMode
 
 def _read(arguments: argparse.Namespace) -> tuple[ModelReading, tuple[Input, ...]]:
     if arguments.model == "-":
-        data = sys.stdin.buffer.read()
-        text = data.decode("utf-8", errors="replace")
-        reading = read_model_text(text, file="standard input", large=arguments.large)
+        data = sys.stdin.buffer.read(MOST_BYTES + 1)
+        reading = read_model_bytes(data, large=arguments.large)
         return reading, (hash_bytes(data, "standard input"),)
     path = Path(arguments.model)
     reading = read_model(path, large=arguments.large, allow_use=tuple(arguments.allow_use))
@@ -103,6 +103,7 @@ class ReadRates:
 def load_rates(arguments: argparse.Namespace, network: Network | None) -> ReadRates:
     """Read the rates table that a command names, and keep the runs that it asks for."""
     # Imported here, so that `check` does not wait for the tables.
+    from fluxnet.tables.inputs import MOST_BYTES as MOST_OF_A_TABLE
     from fluxnet.tables.numerals import Decimal
     from fluxnet.tables.rates_table import read_rates, read_rates_bytes
 
@@ -111,7 +112,7 @@ def load_rates(arguments: argparse.Namespace, network: Network | None) -> ReadRa
     sd, floor = arguments.sd / 100, arguments.sd_floor / 100
     inputs: tuple[Input, ...]
     if arguments.rates == "-":
-        data = sys.stdin.buffer.read()
+        data = sys.stdin.buffer.read(MOST_OF_A_TABLE + 1)
         reading = read_rates_bytes(
             data, network=network, sheet=arguments.sheet, decimal=decimal, separator=separator,
             sd=sd, sd_floor=floor,

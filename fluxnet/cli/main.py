@@ -57,7 +57,7 @@ _MODULES = {command.name: command.module for command in COMMANDS}
 def run(arguments: Sequence[str] | None = None) -> int:
     """Run one command line and give its exit status; never lets a traceback out."""
     words = list(sys.argv[1:] if arguments is None else arguments)
-    from fluxnet.cli.streams import prepare_streams
+    from fluxnet.cli.streams import complain, prepare_streams
 
     prepare_streams()
     if words and words[0] in _MODULES:
@@ -69,7 +69,7 @@ def run(arguments: Sequence[str] | None = None) -> int:
         sys.stdout = None
         return Exit.SOUND
     except OSError as error:
-        print(f"fluxnet: output: {error.strerror}", file=sys.stderr)
+        complain(f"fluxnet: output: {error.strerror}")
         return Exit.MISUSE
     return status
 
@@ -92,6 +92,7 @@ def _guarded(name: str, words: list[str]) -> int:
     import argparse
 
     from fluxnet.cli.faults import report_fault
+    from fluxnet.cli.streams import complain
     from fluxnet.ground.errors import MisuseError
 
     try:
@@ -109,17 +110,17 @@ def _guarded(name: str, words: list[str]) -> int:
     except SystemExit as stop:
         return stop.code if isinstance(stop.code, int) else Exit.MISUSE
     except MisuseError as error:
-        print(f"fluxnet {name}: {error}", file=sys.stderr)
+        complain(f"fluxnet {name}: {error}")
         return Exit.MISUSE
     except KeyboardInterrupt:
-        print("interrupted", file=sys.stderr)
+        complain("interrupted")
         return Exit.INTERRUPTED
     except BrokenPipeError:
         # The reader of our output has gone (`| head`): nothing is left to be said to it.
         sys.stdout = None
         return Exit.SOUND
     except OSError as error:
-        print(f"fluxnet {name}: {error.filename or 'output'}: {error.strerror}", file=sys.stderr)
+        complain(f"fluxnet {name}: {error.filename or 'output'}: {error.strerror}")
         return Exit.MISUSE
     except Exception:
         return report_fault(name, words)

@@ -16,9 +16,9 @@ from fluxnet.reading.lines import LONGEST
 from fluxnet.reading.loading import Place, load_statements
 from fluxnet.reading.resolve import resolve_network
 from fluxnet.reading.scope import Scope, names_lost, words_of
-from fluxnet.reading.source import read_source, source_of_text
+from fluxnet.reading.source import read_source, source_of_bytes, source_of_text
 
-__all__ = ["ModelReading", "read_model", "read_model_text"]
+__all__ = ["ModelReading", "read_model", "read_model_bytes", "read_model_text"]
 
 
 @record
@@ -79,6 +79,16 @@ def read_model_text(
     if source is None:
         return ModelReading(None, told)
     return _read(source, told, None, Place(folder, tuple(allow_use), large))
+
+
+def read_model_bytes(
+    data: bytes, *, file: str = "standard input", large: bool = False
+) -> ModelReading:
+    """Read a model given as bytes, in any encoding that a file may have."""
+    source, told = source_of_bytes(data, file, large=large)
+    if source is None:
+        return ModelReading(None, told)
+    return _read(source, told, None, Place(None, (), large))
 
 
 def _read(

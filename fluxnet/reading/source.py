@@ -9,7 +9,8 @@ from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Source, Span
 
-__all__ = ["MOST_LINES", "read_source", "source_of_text", "split_lines"]
+__all__ = ["MOST_BYTES", "MOST_LINES", "read_source", "source_of_bytes", "source_of_text",
+           "split_lines"]
 
 MOST_LINES = 20_000
 """More lines than this are refused unless they are asked for."""
@@ -38,11 +39,7 @@ def read_source(
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or str(error)
         return None, (Diagnostic(Name.FILE_MISSING, f"{name} cannot be opened: {reason}", span),)
-    if len(data) > MOST_BYTES:
-        size = MOST_BYTES // 1_000_000
-        return None, (Diagnostic(Name.FILE_TOO_LONG, f"{name} has more than {size} million bytes",
-                                 span, mend="is this the file that is meant?"),)
-    return _decoded(data, name, large)
+    return source_of_bytes(data, name, large=large)
 
 
 def _beside(path: Path) -> str | None:
@@ -56,11 +53,16 @@ def _beside(path: Path) -> str | None:
     return f"a file with a similar name is there: {', '.join(near)}" if near else None
 
 
-def _decoded(
-    data: bytes, name: str, large: bool
+def source_of_bytes(
+    data: bytes, name: str, *, large: bool = False
 ) -> tuple[Source | None, tuple[Diagnostic, ...]]:
+    """The text that bytes hold, and what is wrong with them."""
     notes: list[Diagnostic] = []
     span = Span(name, 0)
+    if len(data) > MOST_BYTES:
+        size = MOST_BYTES // 1_000_000
+        return None, (Diagnostic(Name.FILE_TOO_LONG, f"{name} has more than {size} million bytes",
+                                 span, mend="is this the file that is meant?"),)
     if data.startswith((b"\xff\xfe", b"\xfe\xff")):
         text = data.decode("utf-16", errors="replace")
     elif b"\x00" in data[:65536] or data.startswith((b"PK\x03\x04", b"%PDF")):

@@ -39,6 +39,10 @@ def read_input(data: bytes | Path, file: str) -> Input:
     span = Span(file, 0, 0, 0)
     if not data:
         return Input(file, diagnostics=(Diagnostic(Name.EMPTY_FILE, f"{file} is empty", span),))
+    if len(data) > MOST_BYTES:
+        words = f"{file} has more than {MOST_BYTES // 1_000_000} million bytes"
+        mend = "is this the file that is meant?"
+        return Input(file, diagnostics=(Diagnostic(Name.FILE_TOO_LONG, words, span, mend=mend),))
     if is_workbook(data):
         from fluxnet.tables.workbook import read_workbook  # most tables are texts
 
@@ -74,13 +78,9 @@ def _bytes_of(path: Path, file: str) -> bytes | Diagnostic:
                 Name.NOT_A_FILE, f"{file} is a folder", span, mend="name the file inside it"
             )
         with path.open("rb") as opened:
-            data = opened.read(MOST_BYTES + 1)
+            return opened.read(MOST_BYTES + 1)
     except (FileNotFoundError, NotADirectoryError):
         return Diagnostic(Name.FILE_MISSING, f"there is no file {file}", span)
     except (OSError, ValueError) as fault:
         words = getattr(fault, "strerror", None) or str(fault)
         return Diagnostic(Name.FILE_MISSING, f"{file} cannot be opened: {words}", span)
-    if len(data) <= MOST_BYTES:
-        return data
-    words = f"{file} has more than {MOST_BYTES // 1_000_000} million bytes"
-    return Diagnostic(Name.FILE_TOO_LONG, words, span, mend="is this the file that is meant?")

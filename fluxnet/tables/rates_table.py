@@ -145,8 +145,9 @@ def read_rates(
 
 
 def _rule(sd: float, floor: float, separator: str | None) -> SdRule:
-    if not 0 <= sd < float("inf") or not 0 <= floor < float("inf"):
-        raise MisuseError("an assumed sd and its floor are fractions, not negative")
+    if not all(share == 0 or 1e-9 <= share <= 1e9 for share in (sd, floor)):
+        raise MisuseError("an assumed sd and its floor are shares of a rate that are not negative, "
+                          "0 or between 1e-9 and 1e9 (1e-7 and 1e11 %)")
     if separator is not None and len(separator) != 1:
         raise MisuseError(f"a separator is one sign, not {separator!r}")
     return SdRule(sd, floor)

@@ -1,0 +1,70 @@
+"""Streams that are closed, full, without an end or in another encoding."""
+
+from __future__ import annotations
+
+import subprocess
+import sys
+from pathlib import Path
+
+import pytest
+
+from fluxnet.cli.new import MODEL, RATES
+
+
+@pytest.fixture
+def folder(tmp_path: Path) -> Path:
+    (tmp_path / "model.flux").write_text(MODEL, encoding="utf-8")
+    (tmp_path / "rates.csv").write_text(RATES, encoding="utf-8")
+    return tmp_path
+
+
+def shell(folder: Path, words: str) -> subprocess.CompletedProcess[str]:
+    """A command line as a shell runs it; ``fluxnet`` stands for the command."""
+    line = words.replace("fluxnet", f'"{sys.executable}" -m fluxnet')
+    return subprocess.run(
+        line, shell=True, cwd=folder, capture_output=True, text=True, encoding="utf-8",
+        timeout=60, check=False,
+    )  # fmt: skip
+
+
+@pytest.mark.parametrize(
+    ("words", "status"),
+    [
+        ("fluxnet check model.flux >&-", 0),
+        ("fluxnet check model.flux 2>&-", 0),
+        ("fluxnet solve model.flux rates.csv --json >&- 2>&-", 0),
+        ("fluxnet check missing.flux >&- 2>&-", 2),
+        ("fluxnet manual >&-", 0),
+        ("fluxnet check - <&-", 2),
+        ("fluxnet closure - <&-", 2),
+        ("fluxnet check model.flux > /dev/full 2> /dev/full", 2),
+        ("fluxnet > /dev/full", 2),
+    ],
+)
+def test_a_stream_that_is_closed_or_full_is_no_fault(
+    folder: Path, words: str, status: int
+) -> None:
+    done = shell(folder, words)
+
+    assert done.returncode == status
+    assert "Traceback" not in done.stderr
+    assert "a fault of ours" not in done.stderr
+
+
+@pytest.mark.parametrize("words", ["fluxnet check -", "fluxnet check --tidy -"])
+def test_standard_input_without_an_end_is_refused(folder: Path, words: str) -> None:
+    done = shell(folder, f"{words} < /dev/zero")
+
+    assert done.returncode == 2
+    assert "standard input has more than 50 million bytes" in done.stderr
+
+
+@pytest.mark.parametrize("encoding", ["latin-1", "utf-16"])
+def test_standard_input_is_read_in_the_encodings_of_files(folder: Path, encoding: str) -> None:
+    (folder / "model.flux").write_bytes(MODEL.encode(encoding))
+    checked = shell(folder, "fluxnet check - < model.flux")
+    laid = shell(folder, "fluxnet check --tidy - < model.flux")
+
+    assert (checked.returncode, laid.returncode) == (0, 0)
+    assert ("wrong-encoding" in checked.stderr) == (encoding == "latin-1")
+    assert "PO  = 1.4 ± 0.2" in laid.stdout
