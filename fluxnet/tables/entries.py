@@ -22,7 +22,8 @@ class Entry:
     """One quantity of one run, as it stands in the table.
 
     ``title`` names its column in messages; ``unit`` is the unit's text (with the place that
-    says it), ``sd_unit`` that of the sd where it has one of its own (``%``).
+    says it), ``sd_unit`` that of the sd where it has one of its own (``%``), written in the
+    title ``sd_title``.
     """
 
     run: str
@@ -35,6 +36,7 @@ class Entry:
     unit_cell: Cell
     sd_unit: str = ""
     title: str = "rate"
+    sd_title: Cell = _BLANK
 
 
 @record

@@ -79,7 +79,7 @@ def _entry(row: Row, run: str, places: Mapping[Key, Title], vocabulary: Vocabula
         name, word = species.text, ""
     rate, sd = places[Key.RATE], places.get(Key.SD)
     unit = _cell(row, places, Key.UNIT)
-    if not unit.text and rate.unit:
+    if not unit.text and (rate.unit or Key.UNIT not in places):
         unit_text, unit = rate.unit, rate.cell
     else:
         unit_text = unit.text
@@ -94,6 +94,7 @@ def _entry(row: Row, run: str, places: Mapping[Key, Title], vocabulary: Vocabula
         unit_cell=unit,
         sd_unit=sd.unit if sd else "",
         title=rate.cell.text,
+        sd_title=sd.cell if sd else Cell(""),
     )
 
 

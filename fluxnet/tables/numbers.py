@@ -19,7 +19,7 @@ from fluxnet.tables.numerals import (
     two_readings,
 )
 
-__all__ = ["Number", "cell_fault", "decimal_faults", "read_cell", "told_briefly"]
+__all__ = ["Number", "cell_fault", "decimal_faults", "read_cell", "told_briefly", "told_once"]
 
 _MOST = 5
 """Cells with one kind of fault that are told one by one."""
@@ -80,6 +80,24 @@ def told_briefly(faults: Sequence[Diagnostic]) -> list[Diagnostic]:
         shown.append(replace(first, message=f"{first.message}; {len(rest) - 1} more are like it"))
         return shown
     return list(faults)
+
+
+def told_once(faults: Sequence[Diagnostic], places: str = "rows") -> list[Diagnostic]:
+    """One fault for all rows (or runs) with the same words, with how many more there are.
+
+    Two are told one by one.
+    """
+    alike: dict[tuple[Name, str], list[Diagnostic]] = {}
+    for fault in dict.fromkeys(faults):
+        alike.setdefault((fault.name, fault.message.partition(": ")[2]), []).append(fault)
+    told: list[Diagnostic] = []
+    for first, *others in alike.values():
+        if len(others) > 1:
+            words = f"{first.message}; the same in {len(others)} more {places}"
+            told.append(replace(first, message=words))
+        else:
+            told += [first, *others]
+    return told
 
 
 def decimal_faults(choice: DecimalChoice) -> list[Diagnostic]:

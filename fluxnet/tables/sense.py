@@ -24,35 +24,31 @@ def unit_faults(
     """Faults of an entry's units; ``units`` are those of all texts, as they were read."""
     faults: list[Diagnostic] = []
     is_ratio = "/" in entry.name if quantity is None else quantity.kind is QuantityKind.RATIO
+    is_own = entry.unit_cell.span.line == entry.value.span.line
+    # a long table whose title tells the unit, or should, has one fault for all its rows
+    for_all = not is_own and entry.unit_cell is not entry.name_cell
+    title = "unit" if is_own else entry.title
+    mend = _unit_mend(None if for_all else quantity)
     if not entry.unit and not entry.value.is_blank and not is_ratio:
-        faults.append(
-            cell_fault(
-                Name.UNKNOWN_UNIT,
-                entry.unit_cell if entry.unit_cell.span.line else entry.name_cell,
-                "",
-                f"{entry.name} has no unit",
-                _unit_mend(quantity),
-            )
-        )
+        words = f"{entry.name} has no unit"
+        if for_all:
+            words = "no unit is written, and the table has no column `unit`"
+            mend = "write the unit into the title, rate [mmol/g/h], or add the column"
+        faults.append(cell_fault(Name.UNKNOWN_UNIT, entry.unit_cell, title, words, mend))
     written = units[entry.unit]
     if entry.unit and isinstance(written, BadUnit):
+        words = written.words if entry.unit in written.words else f"`{entry.unit}`: {written.words}"
         faults.append(
-            cell_fault(
-                written.name,
-                entry.unit_cell,
-                "",
-                f"{entry.name}: {written.words}",
-                written.mend or _unit_mend(quantity),
-            )
+            cell_fault(written.name, entry.unit_cell, title, words, written.mend or mend)
         )
     own = units[entry.sd_unit]
     if entry.sd_unit not in ("", "%") and isinstance(own, BadUnit):
         faults.append(
             cell_fault(
                 own.name,
-                entry.name_cell,
-                "",
-                f"sd of {entry.name}: {own.words}",
+                entry.sd_title,
+                entry.sd_title.text,
+                own.words,
                 "write the unit of the rate, or %",
             )
         )

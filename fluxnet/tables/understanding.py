@@ -19,7 +19,7 @@ from fluxnet.tables.errors_assumed import SdRule
 from fluxnet.tables.grid import Grid
 from fluxnet.tables.layout import Form, Layout, find_layout
 from fluxnet.tables.long_form import collect_long
-from fluxnet.tables.numbers import decimal_faults
+from fluxnet.tables.numbers import decimal_faults, told_once
 from fluxnet.tables.numerals import Decimal, DecimalChoice, decide_decimal
 from fluxnet.tables.runs import BuiltRun, KnownFactors, build_run
 from fluxnet.tables.surplus import find_surplus
@@ -73,8 +73,7 @@ def understand(
         faults.extend(pairs.diagnostics)
     biomass, assumed = _biomass(readings, layout.vocabulary)
     runs = _build_runs(entries, readings, layout, choice.decimal, biomass, pairs, rule)
-    for built in runs:
-        faults.extend(built.diagnostics)
+    faults.extend(told_once([d for built in runs for d in built.diagnostics], "runs"))
     told = tell_understood(grid, layout, entries, choice, covariance, surplus.untitled)
     faults.append(told.note)
     faults.extend(assumption_notes(grid, runs, rule, assumed))

@@ -11,7 +11,7 @@ from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Quantity, QuantityKind, Species
 from fluxnet.tables.entries import Entry
-from fluxnet.tables.numbers import Number, cell_fault, read_cell, told_briefly
+from fluxnet.tables.numbers import Number, cell_fault, read_cell, told_briefly, told_once
 from fluxnet.tables.numerals import Decimal
 from fluxnet.tables.quantities import QuantityReading, read_quantity, settle_ratio
 from fluxnet.tables.rate_units import BadUnit, RateUnit, read_rate_unit
@@ -93,7 +93,7 @@ def read_entries(
             faults.extend(found)
             failed.add(entry.run)
     readings = _settled(readings, typed)
-    faults += told_briefly(doubts)
+    faults = told_once(faults) + told_briefly(doubts)
     return Readings(
         tuple(readings), tuple(typed.values()), frozenset(failed), tuple(assumed), tuple(faults)
     )

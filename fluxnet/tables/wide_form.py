@@ -59,6 +59,7 @@ def collect_wide(layout: Layout) -> Entries:
                 unit_cell=title.cell,
                 sd_unit=sd.unit if sd else "",
                 title=title.cell.text,
+                sd_title=sd.cell if sd else Cell(""),
             )
             for title, sd in columns.quantities
         )
