@@ -15,6 +15,7 @@ from fluxnet.network.unknown_signs import changes_sign
 __all__ = ["check_coefficients"]
 
 _WIDEST = 10**10
+_REACH = 10**30
 
 
 def check_coefficients(
@@ -34,7 +35,8 @@ def check_coefficients(
     tuple of Diagnostic
         ``division-by-zero`` and ``coefficient-not-positive`` at the parameters' values,
         ``coefficient-changes-sign`` within their ranges, ``wide-coefficients`` for a reaction
-        whose coefficients differ by more than ten decades.
+        whose coefficients differ by more than ten decades; ``unreadable-line`` for a
+        coefficient that cannot be computed with.
     """
     parameters = {p.name: p for p in network.parameters}
     found: list[Diagnostic] = []
@@ -75,11 +77,13 @@ def _term_findings(
     if coefficient is None:
         return
     number = coefficient.number
-    if number is not None and number > 0:
-        sizes.append(number)
-        return
     species = join([t.species for t in terms])
     name = f"the coefficient of {species} in {reaction.name}"
+    if number is not None and number > 0:
+        beyond = _beyond_reach(number, name, terms)
+        sizes.extend([] if beyond else [number])
+        yield from beyond
+        return
     at = {n: parameters[n].value for n in coefficient.parameters}
     try:
         value = coefficient.exact(at)
@@ -102,6 +106,10 @@ def _term_findings(
             also=also,
         )
         return
+    beyond = _beyond_reach(value, name, terms)
+    if beyond:
+        yield from beyond
+        return
     sizes.append(value)
     negative = changes_sign(coefficient, parameters)
     if negative is not None:
@@ -112,6 +120,21 @@ def _term_findings(
             term.span,
             also=also,
         )
+
+
+def _beyond_reach(value: Fraction, name: str, terms: Sequence[Term]) -> list[Diagnostic]:
+    """What is said of a coefficient that cannot be computed with."""
+    if Fraction(1, _REACH) <= value <= _REACH:
+        return []
+    return [
+        Diagnostic(
+            Name.UNREADABLE_LINE,
+            f"{name}, {terms[0].written}, is out of reach",
+            terms[0].span,
+            because="coefficients lie between 1e-30 and 1e30",
+            also=tuple(t.span for t in terms[1:]),
+        )
+    ]
 
 
 def _values(place: Mapping[str, Fraction]) -> str:

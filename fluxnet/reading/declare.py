@@ -15,11 +15,12 @@ from fluxnet.reading.findings import Findings
 from fluxnet.reading.lines import LogicalLine
 from fluxnet.reading.scope import Kind, Scope, claim
 
-__all__ = ["declare_parameter", "declare_species", "in_reach", "read_assignment"]
+__all__ = ["REACH", "declare_parameter", "declare_species", "in_reach", "read_assignment"]
 
 _PARAMETER = re.compile(r"[A-Za-z][A-Za-z0-9_]*")
 _ZERO = Fraction(0)
-_REACH = 10**100
+_REACH = 10**30
+REACH = "numbers lie between 1e-30 and 1e30"
 
 
 def declare_species(
@@ -108,6 +109,12 @@ def read_assignment(
     A setting without sd or range keeps those of its parameter: the value is held against the
     range that it keeps.
     """
+    span = line.span(said.name.start, said.name.end)
+    error = said.error.number if said.error is not None else None
+    numbers = [n for n in (said.value, error, said.low, said.high) if n is not None]
+    reached = [in_reach(line, number, findings) for number in numbers]
+    if not all(reached):
+        return Parameter(said.name.text, Fraction(1), span=span)
     value = said.value.value
     sd = None
     if said.error is not None:
@@ -130,10 +137,6 @@ def read_assignment(
             because=f"{said.name.text} may lie between {float(least):g} and {float(most):g}",
             mend="correct the value or the range",
         )
-    for number in (said.value, said.error.number if said.error else None, said.low, said.high):
-        if number is not None:
-            in_reach(line, number, findings)
-    span = line.span(said.name.start, said.name.end)
     return Parameter(said.name.text, value, sd, low, high, span)
 
 
@@ -162,6 +165,6 @@ def in_reach(line: LogicalLine, number: s.NumberText, findings: Findings) -> boo
         return True
     findings.add(
         Name.UNREADABLE_LINE, f"the number {number.text[:20]} is out of reach", line, number,
-        because="numbers lie between 1e-100 and 1e100",
+        because=REACH,
     )
     return False

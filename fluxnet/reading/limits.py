@@ -13,6 +13,9 @@ from fluxnet.reading.scope import Kind, Scope
 
 __all__ = ["resolve_limit", "resolve_quantity"]
 
+_LEAST = Fraction(1, 10**9)
+"""A smaller sd, as a part of its value, is lost in the rounding of the numbers."""
+
 
 def resolve_limit(line: LogicalLine, said: s.LimitLine, scope: Scope) -> Limit | None:
     """The limit of one line, or None where it makes no sense (told)."""
@@ -68,7 +71,17 @@ def _error_is_sound(line: LogicalLine, bound: s.BoundText, scope: Scope) -> bool
             line, error, mend="write =, or leave the ± out",
         )
         return False
-    if _sd(bound) == 0:
+    if not in_reach(line, bound.error.number, scope.findings):
+        return False
+    sd, size = _sd(bound), bound.value.value
+    if sd and size and not _LEAST <= sd / size <= 1 / _LEAST:
+        what = "is nothing beside the value" if sd < size else "leaves nothing of the value"
+        scope.findings.add(
+            Name.BAD_LIMIT, f"the error {bound.error.number.text} {what}", line, error,
+            mend="leave the ± out: the value is then exact" if sd < size else "check the number",
+        )
+        return False
+    if sd == 0:
         scope.findings.add(
             Name.BAD_LIMIT, "a measured value has an sd above zero", line, error,
             mend="leave the ± out: the value is then exact", certain=[(behind, "")],

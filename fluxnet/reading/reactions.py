@@ -10,7 +10,7 @@ from fluxnet.network.expression import ONE, Expression, constant, parameter
 from fluxnet.network.model import Reaction, Term
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
-from fluxnet.reading.declare import in_reach
+from fluxnet.reading.declare import REACH, in_reach
 from fluxnet.reading.lines import LogicalLine
 from fluxnet.reading.scope import RESERVED, Kind, Scope
 
@@ -19,7 +19,7 @@ __all__ = ["resolve_reaction"]
 _ZERO = Fraction(0)
 _LONGEST = 300
 _MOST_MONOMIALS = 2000
-_POWER_OF_TEN = re.compile(r"\d+[eE]\d+")
+_POWER_OF_TEN = re.compile(r"\d+[eE][+-]?\d+")
 _GLUED = re.compile(r"(\d+)(?=[^\W\d])")
 
 
@@ -197,7 +197,7 @@ def _parameter(line: LogicalLine, word: s.Word, scope: Scope) -> Expression | No
     if _POWER_OF_TEN.fullmatch(name):
         scope.findings.add(
             Name.UNREADABLE_LINE, f"the number {name[:20]} is out of reach", line, word,
-            because="numbers lie between 1e-100 and 1e100",
+            because=REACH,
         )
         return None
     if name in scope.species:
