@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from difflib import get_close_matches
 from enum import Enum
@@ -13,6 +14,13 @@ from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Ro
 
 __all__ = ["Aim", "Sense", "read_aim"]
 
+_NUMBER = re.compile(
+    r"[+-]?(?:\d{1,30}/0*[1-9]\d{0,29}"
+    r"|(?:\d{1,30}(?:\.\d{0,30})?|\.\d{1,30})(?:[eE][+-]?\d\d?)?)",
+    re.ASCII,
+)
+_REACH = 10**9
+"""No weight is larger, and none smaller than one by it: the other terms would vanish."""
 
 
 class Sense(Enum):
@@ -57,12 +65,8 @@ def read_aim(text: str, sense: Sense, network: Network) -> Aim:
 def _read_term(words: Sequence[str], network: Network) -> tuple[Fraction, Quantity]:
     weight = Fraction(1)
     rest = list(words)
-    if len(rest) > 1:
-        try:
-            weight = Fraction(rest[0])
-            rest = rest[1:]
-        except ValueError:
-            pass
+    if len(rest) > 1 and _NUMBER.fullmatch(rest[0]):
+        weight = _read_weight(rest.pop(0))
     direction = None
     if len(rest) > 1 and rest[0] in ("in", "out"):
         direction = Direction(rest.pop(0))
@@ -75,6 +79,13 @@ def _read_term(words: Sequence[str], network: Network) -> tuple[Fraction, Quanti
     if len(rest) != 1:
         raise MisuseError(f"an aim is a name, not {' '.join(words) or 'nothing'!r}")
     return weight, _find_quantity(rest[0], direction, network)
+
+
+def _read_weight(text: str) -> Fraction:
+    weight = Fraction(text)
+    if weight and not Fraction(1, _REACH) <= abs(weight) <= _REACH:
+        raise MisuseError(f"the weight {text} is out of reach: weights lie between 1e-9 and 1e9")
+    return weight
 
 
 def _find_quantity(name: str, direction: Direction | None, network: Network) -> Quantity:

@@ -9,6 +9,9 @@ from fluxnet.studies.solution import Solution
 
 __all__ = ["solve_network"]
 
+# More sds than this are no bound beside the rates themselves.
+_MOST = 1e6
+
 
 def solve_network(
     network: Network,
@@ -44,6 +47,8 @@ def solve_network(
         raise MisuseError("one aim at a time: maximise or minimise")
     if not within >= 0:
         raise MisuseError("measured rates can only be held within a positive number of sd")
+    if _MOST < within < float("inf"):
+        raise MisuseError(f"{within:g} sd hold nothing: leave the rates out, or take up to 1e6")
     if not 0 <= fraction <= 1:
         raise MisuseError("a fraction of the optimum lies between 0 and 1")
     runs: tuple[Run | None, ...] = (None,) if table is None else table.runs

@@ -9,6 +9,7 @@ from fluxnet.ground.errors import MisuseError
 from fluxnet.network.model import Direction, Network, Quantity, QuantityKind
 from fluxnet.reading.model import read_model_text
 from fluxnet.studies.aims import Sense, read_aim
+from fluxnet.studies.solve import solve_network
 
 
 @pytest.fixture(scope="module")
@@ -47,3 +48,26 @@ def test_a_weighted_sum_is_read(network: Network) -> None:
 def test_what_is_no_aim_is_refused_with_a_reason(network: Network, text: str) -> None:
     with pytest.raises(MisuseError, match=r"near to it are ethanol|inside species|an aim is"):
         read_aim(text, Sense.MAXIMISE, network)
+
+
+@pytest.mark.parametrize("weight", ["1e30", "1e-30", "9999999999", "1/9999999999"])
+def test_a_weight_beside_which_the_rest_vanishes_is_refused(network: Network, weight: str) -> None:
+    with pytest.raises(MisuseError, match="out of reach"):
+        read_aim(f"{weight} ethanol + X", Sense.MAXIMISE, network)
+
+
+@pytest.mark.parametrize("weight", ["1/0", "1e9999999999", "1e-400", "nan", "9" * 5000, "٣"])
+def test_a_weight_that_is_no_number_is_refused(network: Network, weight: str) -> None:
+    with pytest.raises(MisuseError, match="an aim is a name"):
+        read_aim(f"{weight} ethanol", Sense.MAXIMISE, network)
+
+
+def test_weights_may_be_fractions_negative_or_zero(network: Network) -> None:
+    aim = read_aim("1/3 ethanol + -2 X + 0 mu", Sense.MAXIMISE, network)
+
+    assert [weight for weight, _ in aim.terms] == [Fraction(1, 3), -2, 0]
+
+
+def test_rates_are_not_held_within_a_number_of_sd_that_holds_nothing(network: Network) -> None:
+    with pytest.raises(MisuseError, match="hold nothing"):
+        solve_network(network, maximise="mu", within=1e20)
