@@ -25,6 +25,9 @@ __all__ = ["Loaded", "Place", "load_statements"]
 
 _ROLES = {role.value for role in Role}
 
+_DEEPEST = 100
+"""No more files use one another in a row."""
+
 
 class Place(NamedTuple):
     """Where ``use`` looks and may look.
@@ -137,6 +140,12 @@ def _use(
                 Name.USE_CIRCLE, f"files use one another in a circle: {files}", line, said.path,
                 mend="take one of these `use` lines away",
             )
+        return
+    if len(chain) >= _DEEPEST:
+        findings.add(
+            Name.FILE_TOO_LONG, f"more than {_DEEPEST} files use one another in a row", line,
+            said.path, mend="use the file from the model itself",
+        )
         return
     loaded.files.add(path)
     shown = str(Path(line.file).parent / written)

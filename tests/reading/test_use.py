@@ -147,3 +147,14 @@ def test_used_files_are_written_in_the_models_basis(
     (folder / "main.flux").write_text(own + MODEL, encoding="utf-8")
 
     assert names(folder / "main.flux") == ([] if sound else ["basis-differs"])
+
+
+def test_files_that_use_one_another_without_an_end_are_told_and_not_followed(
+    tmp_path: Path,
+) -> None:
+    for number in range(300):
+        (tmp_path / f"{number}.flux").write_text(f'use "{number + 1}.flux"\n', encoding="utf-8")
+    found = read_model(tmp_path / "0.flux").diagnostics
+
+    (told,) = [d for d in found if d.name.value == "file-too-long"]
+    assert (Path(told.span.file).name, told.span.line) == ("99.flux", 1)
