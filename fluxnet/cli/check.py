@@ -13,6 +13,7 @@ from fluxnet.cli.output import give_faults, give_findings, give_screen
 from fluxnet.cli.progress import progress_on
 from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.names import Name
 from fluxnet.presenting.check_screen import check_record, check_screen, findings_record
 from fluxnet.presenting.records import Document, Input
 
@@ -91,7 +92,7 @@ def _tidy(arguments: argparse.Namespace) -> int:
             sys.stdout.write(tidy_text("\n".join((*source.lines, ""))))
         return exit_of(told)
     model = load_model(arguments)
-    if not model.sources:
+    if not model.sources or any(d.name is Name.WRONG_KIND_OF_FILE for d in model.diagnostics):
         give_findings(arguments, model.diagnostics)
         return exit_of(model.diagnostics)
     path = Path(arguments.model)

@@ -39,6 +39,7 @@ _UNREADABLE = frozenset(
         Name.UNKNOWN_RUN,
         Name.UNKNOWN_SHEET,
         Name.UNKNOWN_VARIANT,
+        Name.WRONG_KIND_OF_FILE,
     }
 )
 

@@ -60,6 +60,11 @@ class Name(Enum):
         "binary-file", _E, "the file is not text",
         "Models are plain text; a workbook can be given only as a rates table.",
         "Save it as plain text (UTF-8).")
+    WRONG_KIND_OF_FILE = (
+        "wrong-kind-of-file", _E, "a table stands where a model is expected, or the other way",
+        "A model lists reactions, a table measured rates; each command says which it takes.",
+        "`fluxnet check model.flux`, `fluxnet closure rates.csv`, "
+        "`fluxnet solve model.flux rates.csv`.")
     EMPTY_FILE = (
         "empty-file", _E, "the file holds nothing",
         "There is nothing to compute.", "Start from `fluxnet new NAME`.")

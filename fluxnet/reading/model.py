@@ -7,6 +7,7 @@ from dataclasses import replace
 from pathlib import Path
 
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order
+from fluxnet.ground.file_kinds import find_table_instead
 from fluxnet.ground.record import record
 from fluxnet.ground.source import Source
 from fluxnet.network.model import Network
@@ -94,6 +95,9 @@ def read_model_bytes(
 def _read(
     source: Source, told: tuple[Diagnostic, ...], path: Path | None, place: Place
 ) -> ModelReading:
+    mistaken = find_table_instead(source.lines, source.file)
+    if mistaken is not None:
+        return ModelReading(None, in_order((*told, mistaken)), (source,))
     findings = Findings(list(told))
     loaded = load_statements(source, path, place, findings)
     refused = [r.line.text for r in loaded.rejected if len(r.line.text) <= LONGEST]

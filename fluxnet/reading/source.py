@@ -65,7 +65,11 @@ def source_of_bytes(
                                  span, mend="is this the file that is meant?"),)
     if data.startswith((b"\xff\xfe", b"\xfe\xff")):
         text = data.decode("utf-16", errors="replace")
-    elif b"\x00" in data[:65536] or data.startswith((b"PK\x03\x04", b"%PDF")):
+    elif data.startswith((b"PK\x03\x04", b"\xd0\xcf\x11\xe0")):
+        return None, (Diagnostic(Name.BINARY_FILE, f"{name} is a workbook, and no model", span,
+                                 mend="a model is plain text; a workbook can hold the rates: "
+                                 "fluxnet closure rates.xlsx"),)
+    elif b"\x00" in data[:65536] or data.startswith(b"%PDF"):
         return None, (Diagnostic(Name.BINARY_FILE, f"{name} is not a text file", span,
                                  mend="save it as plain text (UTF-8)"),)
     else:

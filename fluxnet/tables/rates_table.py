@@ -14,6 +14,7 @@ from pathlib import Path
 
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.file_kinds import find_model_instead
 from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
 from fluxnet.ground.source import Source, Span
@@ -95,7 +96,11 @@ def read_rates_text(
     ('glucose in', 10.0, 0.3, 'mmol/g/h')
     """
     rule = _rule(sd, sd_floor, separator)
-    grid = choose_grid(split_lines(text), file, network, separator)
+    lines = split_lines(text)
+    mistaken = find_model_instead(lines, file)
+    if mistaken is not None:
+        return RatesReading(None, (mistaken,), (Source(file, lines),))
+    grid = choose_grid(lines, file, network, separator)
     pairs = None
     if covariance is not None:
         pairs = choose_covariance_grid(split_lines(covariance), f"covariance of {file}")
@@ -177,6 +182,10 @@ def _read_input(
         told.extend(choice.diagnostics)
         grid, pairs = choice.grid, choice.covariance
     else:
+        mistaken = find_model_instead(found.lines, found.file)
+        if mistaken is not None:
+            source = Source(found.file, found.lines)
+            return RatesReading(None, in_order((*told, mistaken)), (source,))
         grid = choose_grid(found.lines, found.file, network, separator) if found.lines else None
         if sheet is not None and not told:
             told.append(_no_workbook(found.file))

@@ -219,3 +219,36 @@ def test_a_command_that_is_wrongly_used_exits_with_2(
 
     assert status == Exit.MISUSE
     assert text
+
+
+@pytest.mark.parametrize(
+    ("words", "file", "expected"),
+    [
+        (["check", "rates.csv"], "rates.csv", "a model was expected"),
+        (["check", "rates.csv", "--tidy"], "rates.csv", "a model was expected"),
+        (["closure", "model.flux"], "model.flux", "a table of rates was expected"),
+        (["closure", "rates.csv", "--model", "rates.csv"], "rates.csv", "a model was expected"),
+        (["solve", "rates.csv", "model.flux"], "rates.csv", "a model was expected"),
+        (["solve", "model.flux", "model.flux"], "model.flux", "a table of rates was expected"),
+    ],
+    ids=lambda v: " ".join(v) if isinstance(v, list) else "",
+)
+def test_files_that_were_swapped_give_one_error_each(
+    folder: Path, words: list[str], file: str, expected: str, capsys: pytest.CaptureFixture[str]
+) -> None:
+    before = (folder / file).read_bytes()
+    status, text = told(words, capsys)
+
+    assert status == Exit.MISUSE
+    assert text.startswith(f"{file}: {file} looks like a")
+    assert expected in text
+    assert text.count("(wrong-kind-of-file)") == text.count("mend") == 1
+    assert (folder / file).read_bytes() == before
+
+
+def test_a_workbook_is_no_model(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    (folder / "book.xlsx").write_bytes(b"PK\x03\x04 what follows is packed")
+    status, text = told(["check", "book.xlsx"], capsys)
+
+    assert status == Exit.MISUSE
+    assert "book.xlsx is a workbook, and no model" in text
