@@ -5,7 +5,7 @@
 The bare imports are `import` of exactly what the command itself has loaded when it ends; that is
 verified before anything is measured. `check` loads lark, flint, networkx, numpy, highspy and
 rich, and neither scipy, pandas, daqp nor matplotlib; `solve` of measured rates loads lark, flint,
-numpy, daqp and rich (highspy only with an aim, or a conflict), and neither scipy, pandas, networkx
+numpy, daqp and rich, with an aim highspy as well, and neither scipy, pandas, networkx
 nor matplotlib. `--help` loads no library.
 
 Command and bare import are started in turn, as installed: with compiled byte code and a parser
@@ -41,6 +41,7 @@ compartment extra
     mae  : malate -> pyruvate + CO2 + NADPH
     pnt  : NADH <-> NADPH
     gapN : T3P -> 3PG + NADPH
+limit  glucose <= 10
 """
 RATES = """shared error biomass 4 %
 run,species,direction,rate,sd,unit
@@ -88,6 +89,10 @@ PAIRS = (
     Pair(
         "solve, 40 reactions", ("solve", "forty.flux", "forty.csv"),
         ("lark", "flint", "numpy", "daqp", "rich"), 1.5,
+    ),
+    Pair(
+        "solve with an aim", ("solve", "forty.flux", "--maximise", "lysine"),
+        ("lark", "flint", "numpy", "highspy", "daqp", "rich"), 1.5,
     ),
 )  # fmt: skip
 
