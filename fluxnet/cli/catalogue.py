@@ -8,7 +8,7 @@ import sys
 from fluxnet.chemistry.catalogue import load_catalogue
 from fluxnet.cli.main import Exit
 from fluxnet.cli.options import add_output_options
-from fluxnet.cli.output import give_screen
+from fluxnet.cli.output import give_screen, refuse_outputs
 from fluxnet.presenting.catalogue_screen import catalogue_record, catalogue_screen, compound_screen
 from fluxnet.presenting.records import Document
 
@@ -29,6 +29,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 
 def run(arguments: argparse.Namespace) -> int:
     """Show one compound, or all."""
+    refuse_outputs(arguments, Document.CATALOGUE)
     catalogue = load_catalogue()
     if not arguments.name:
         compounds = tuple(catalogue)

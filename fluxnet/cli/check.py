@@ -9,7 +9,7 @@ from pathlib import Path
 from fluxnet.cli.inputs import exit_of, load_model, load_rates
 from fluxnet.cli.main import Exit
 from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
-from fluxnet.cli.output import give_faults, give_findings, give_screen
+from fluxnet.cli.output import give_faults, give_findings, give_screen, refuse_outputs
 from fluxnet.cli.progress import progress_on
 from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.errors import MisuseError
@@ -44,6 +44,7 @@ def run(arguments: argparse.Namespace) -> int:
     """Check a model and show what was found."""
     if arguments.tidy:
         return _tidy(arguments)
+    refuse_outputs(arguments, Document.CHECK)
     model = load_model(arguments, arguments.variant)
     inputs, run_asked = model.inputs, None
     if model.network is None:

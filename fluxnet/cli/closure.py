@@ -7,7 +7,7 @@ import argparse
 from fluxnet.cli.inputs import load_model, load_rates
 from fluxnet.cli.main import Exit
 from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
-from fluxnet.cli.output import give_faults, give_findings, give_screen
+from fluxnet.cli.output import give_faults, give_findings, give_screen, refuse_outputs
 from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.names import Name
 from fluxnet.network.model import Network
@@ -39,6 +39,7 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 
 def run(arguments: argparse.Namespace) -> int:
     """Close the runs that were asked for, and show them."""
+    refuse_outputs(arguments, Document.CLOSURE)
     from fluxnet.presenting.closure_screen import closure_record, closure_screen
     from fluxnet.studies.closure import close_rates
 

@@ -5,17 +5,68 @@ from __future__ import annotations
 import argparse
 import sys
 from collections.abc import Mapping, Sequence
+from pathlib import Path
 from typing import Any
 
 from fluxnet.cli.inputs import exit_of
 from fluxnet.cli.main import Exit
 from fluxnet.ground.diagnostic import Diagnostic, in_order
+from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.names import Severity
-from fluxnet.presenting.records import Input, document_text
+from fluxnet.presenting.records import Document, Input, document_text
 from fluxnet.presenting.screen import Block, screen_tables
 from fluxnet.presenting.terminal import Terminal
 
-__all__ = ["give_faults", "give_findings", "give_screen"]
+__all__ = [
+    "ALWAYS_WRITTEN", "NAMES_OF_TABLES", "give_faults", "give_findings", "give_screen",
+    "refuse_outputs",
+]  # fmt: skip
+
+ALWAYS_WRITTEN = {
+    Document.CLOSURE: ("overview", "balances", "rates"),
+    Document.SOLVE: ("overview",),
+    Document.CATALOGUE: (),
+    Document.CHECK: (),
+}
+"""The tables that a command writes whatever its answer is."""
+
+NAMES_OF_TABLES = frozenset({
+    "balances", "catalogue", "compound", "conflict", "equations", "fluxes", "least_change",
+    "ledger", "limits", "most_energy", "overview", "parameters", "rates", "unbounded", "yields",
+})  # fmt: skip
+"""Every table that some command writes."""
+
+
+def refuse_outputs(arguments: argparse.Namespace, document: str) -> None:
+    """Refuse, before anything is read or computed, results that could not be written.
+
+    Raises
+    ------
+    MisuseError
+        Where a file exists and is not to be overwritten, is one of the inputs, or needs a
+        package that is not installed.
+    """
+    if arguments.csv is None and arguments.xlsx is None:
+        return
+    from fluxnet.presenting.files import refuse_file, refuse_workbook
+
+    given = (getattr(arguments, name, None) for name in ("rates", "model"))
+    inputs = [Path(file) for file in given if file not in (None, "-")]
+    if arguments.csv is not None:
+        folder: Path = arguments.csv
+        if folder.exists() and not folder.is_dir():
+            raise MisuseError(f"{folder} is no folder; --csv takes the folder for the tables")
+        for file in inputs:
+            is_there = file.resolve().parent == folder.resolve()
+            if is_there and file.suffix == ".csv" and file.stem in NAMES_OF_TABLES:
+                raise MisuseError(f"--csv {folder} would write over {file}; name another folder")
+        if folder.is_dir():
+            for name in ALWAYS_WRITTEN[document]:
+                refuse_file(folder / f"{name}.csv", force=arguments.force)
+    if arguments.xlsx is not None:
+        if any(file.resolve() == arguments.xlsx.resolve() for file in inputs):
+            raise MisuseError(f"--xlsx would write over {arguments.xlsx}, which is read")
+        refuse_workbook(arguments.xlsx, force=arguments.force)
 
 
 def give_screen(
@@ -70,7 +121,7 @@ def give_faults(
     told = in_order(diagnostics)
     give_findings(arguments, told)
     if arguments.json:
-        give_screen(arguments, document, inputs, told, body or {"runs": []}, ())
+        print(document_text(document, inputs, told, body or {"runs": []}))
     elif not arguments.quiet:
         errors = sum(d.severity is Severity.ERROR for d in told)
         print(f"nothing was computed: {errors} error{'s' if errors != 1 else ''}", file=sys.stderr)

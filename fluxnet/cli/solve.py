@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 import argparse
+from dataclasses import replace
 
 from fluxnet.cli.inputs import load_model, load_rates
 from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
-from fluxnet.cli.output import give_faults, give_findings, give_screen
+from fluxnet.cli.output import give_faults, give_findings, give_screen, refuse_outputs
 from fluxnet.ground.diagnostic import in_order
-from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.errors import InputError, MisuseError
 from fluxnet.ground.names import Name
 from fluxnet.presenting.records import Document
 from fluxnet.presenting.solve_record import solve_record
@@ -56,6 +57,7 @@ def run(arguments: argparse.Namespace) -> int:
 
     if arguments.model == "-" and arguments.rates == "-":
         raise MisuseError("standard input can be the model or the rates, not both")
+    refuse_outputs(arguments, Document.SOLVE)
     model = load_model(arguments, arguments.variant)
     if model.network is None:
         return give_faults(arguments, Document.SOLVE, model.inputs, model.diagnostics)
@@ -73,14 +75,24 @@ def run(arguments: argparse.Namespace) -> int:
             told = (*kept, *aligned.diagnostics)
             return give_faults(arguments, Document.SOLVE, inputs, told)
         table = aligned.table
-    solution = solve_network(
-        model.network,
-        table,
-        maximise=arguments.maximise,
-        minimise=arguments.minimise,
-        within=arguments.within,
-        fraction=arguments.fraction,
-    )
+    try:
+        solution = solve_network(
+            model.network,
+            table,
+            maximise=arguments.maximise,
+            minimise=arguments.minimise,
+            within=arguments.within,
+            fraction=arguments.fraction,
+        )
+    except InputError as fault:
+        texts = {source.file: source for source in model.sources}
+        told = tuple(
+            replace(d, source_line=texts[d.span.file].line(d.span.line))
+            if d.span.line and d.span.file in texts
+            else d
+            for d in fault.diagnostics
+        )
+        return give_faults(arguments, Document.SOLVE, inputs, (*diagnostics, *told))
     give_findings(arguments, in_order(diagnostics))
     return give_screen(
         arguments, Document.SOLVE, inputs, diagnostics, solve_record(solution),

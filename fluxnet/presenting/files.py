@@ -14,7 +14,9 @@ from pathlib import Path
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.table import Cell, Table
 
-__all__ = ["write_bytes", "write_csv", "write_text", "write_workbook"]
+__all__ = [
+    "refuse_file", "refuse_workbook", "write_bytes", "write_csv", "write_text", "write_workbook",
+]  # fmt: skip
 
 # A cell that begins like this would run as a formula in a spreadsheet.
 _FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r")
@@ -70,14 +72,9 @@ def write_workbook(tables: Sequence[Table], path: Path, *, force: bool = False) 
     MisuseError
         Where the file exists and ``force`` is not given, or xlsxwriter is not installed.
     """
-    if not force:
-        _refuse_existing(path)
-    try:
-        import xlsxwriter
-    except ImportError:
-        raise MisuseError(
-            "workbooks need the extra `sheets`: python -m pip install 'fluxnet[sheets]'"
-        ) from None
+    refuse_workbook(path, force=force)
+    import xlsxwriter
+
     stream = io.BytesIO()
     options = {"in_memory": True, "strings_to_formulas": False, "strings_to_urls": False}
     with xlsxwriter.Workbook(stream, options) as book:
@@ -99,6 +96,40 @@ def write_workbook(tables: Sequence[Table], path: Path, *, force: bool = False) 
             sheet.freeze_panes(2, 1)
             sheet.autofit()
     _write(path, stream.getvalue(), force)
+
+
+def refuse_file(path: Path, *, force: bool = False) -> None:
+    """Raise what writing a file would raise, before anything is computed for it.
+
+    Raises
+    ------
+    MisuseError
+        Where the file exists and ``force`` is not given, is a folder, or would lie in none.
+    """
+    if path.is_dir():
+        raise MisuseError(f"{path} is a folder; name a file in it")
+    if not path.parent.is_dir():
+        raise MisuseError(f"{path} cannot be written: there is no folder {path.parent}")
+    if not force:
+        _refuse_existing(path)
+
+
+def refuse_workbook(path: Path, *, force: bool = False) -> None:
+    """Raise what writing a workbook would raise; as :func:`refuse_file`.
+
+    Raises
+    ------
+    MisuseError
+        Also where xlsxwriter is not installed.
+    """
+    try:
+        import xlsxwriter  # noqa: F401
+    except ImportError:
+        raise MisuseError(
+            f"{path} cannot be written: workbooks need the package xlsxwriter, which is not "
+            "installed; pip install 'fluxnet[sheets]', or pip install xlsxwriter"
+        ) from None
+    refuse_file(path, force=force)
 
 
 def _safe(cell: Cell) -> Cell:
