@@ -13,6 +13,7 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.record import record
+from fluxnet.solving.basis_proof import Basis, is_best, is_spread
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.residuals import Pair, is_contradiction, is_ray, violation_of, worst_violation
 from fluxnet.solving.scaling import find_scales
@@ -94,6 +95,7 @@ class Programme:
         self._costs = np.zeros(len(problem.columns))
         self._cost_scale = 1.0
         self._row_scale, self._column_scale = find_scales(problem, self._sizes)
+        self._is_spread = is_spread(self._sizes)
         self._highs, self._meanings = self._load()
         self._set_method(*_ATTEMPTS[0])
 
@@ -245,8 +247,20 @@ class Programme:
         if outcome is Outcome.OPTIMAL:
             self._fluxes = np.array(self._highs.getSolution().col_value) * self._column_scale
             self.residual = violation_of(problem.matrix, self._sizes, self._fluxes, *bounds)
-            return outcome, self.residual < 1e-7
+            return outcome, self.residual < 1e-7 and (not self._is_spread or self._is_best())
         return outcome, False
+
+    def _is_best(self) -> bool:
+        """Whether the solver's basis is the best, in exact arithmetic."""
+        import highspy
+
+        found, status = self._highs.getBasis(), highspy.HighsBasisStatus
+        places = np.array([*found.col_status, *found.row_status])
+        open_ = np.append(self._column_low < self._column_high, self._row_low < self._row_high)
+        rise = open_ & ((places == status.kLower) | (places == status.kZero))
+        fall = open_ & ((places == status.kUpper) | (places == status.kZero))
+        costs = self._costs / self._column_scale
+        return is_best(self.problem.matrix, costs, Basis(places == status.kBasic, rise, fall))
 
     def _load(self) -> tuple[Any, dict[Any, Outcome]]:
         """The solver's model, and what its statuses mean (highspy has no types to lean on)."""

@@ -87,6 +87,8 @@ def optimise(
         return replace(
             frame, status=SolveStatus.UNBOUNDED, unbounded=reason, words=tell_unbounded(aim, reason)
         )
+    if best.outcome is Outcome.FAILED:
+        raise ArithmeticError("the solver could not tell what is best")
     if best.outcome is not Outcome.OPTIMAL:
         conflict = find_conflict(problem, unit=frame.unit)
         change = least_change(problem)

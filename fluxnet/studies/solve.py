@@ -2,10 +2,14 @@
 
 from __future__ import annotations
 
-from fluxnet.ground.errors import MisuseError
+from collections.abc import Callable
+
+import numpy as np
+
+from fluxnet.ground.errors import InputError, MisuseError
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import RatesTable, Run
-from fluxnet.studies.solution import Solution
+from fluxnet.studies.solution import FluxSolution, Solution
 
 __all__ = ["solve_network"]
 
@@ -42,6 +46,8 @@ def solve_network(
     ------
     MisuseError
         Where both aims are given, an aim names nothing, or a number makes no sense.
+    InputError
+        Where the numbers of the model lie too far apart to be computed with.
     """
     if maximise is not None and minimise is not None:
         raise MisuseError("one aim at a time: maximise or minimise")
@@ -57,12 +63,28 @@ def solve_network(
     if wanted is None:
         from fluxnet.studies.fitting import fit_run
 
-        return Solution(network, tuple(fit_run(network, run) for run in runs))
+        return Solution(network, tuple(_with_cause(network, fit_run, run) for run in runs))
     from fluxnet.studies.aims import Sense, read_aim
     from fluxnet.studies.optimum import optimise
 
     aim = read_aim(wanted, Sense.MINIMISE if maximise is None else Sense.MAXIMISE, network)
-    return Solution(
-        network,
-        tuple(optimise(network, run, aim, within=within, fraction=fraction) for run in runs),
-    )
+
+    def best_of(network: Network, run: Run | None) -> FluxSolution:
+        return optimise(network, run, aim, within=within, fraction=fraction)
+
+    return Solution(network, tuple(_with_cause(network, best_of, run) for run in runs))
+
+
+def _with_cause(
+    network: Network, solve: Callable[[Network, Run | None], FluxSolution], run: Run | None
+) -> FluxSolution:
+    """Solve one run; where the solvers give up, numbers far apart are told as the cause."""
+    try:
+        return solve(network, run)
+    except (ArithmeticError, np.linalg.LinAlgError) as failure:
+        from fluxnet.studies.precision import find_numbers_apart
+
+        told = find_numbers_apart(network, str(failure))
+        if told is None:
+            raise
+        raise InputError((told,)) from failure

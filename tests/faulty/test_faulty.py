@@ -178,7 +178,8 @@ OF_WORKBOOKS = {
     Name.PACKAGE_MISSING: "tables/test_workbook.py",
     Name.UNKNOWN_SHEET: "tables/test_workbook.py",
 }
-BY_CODE = {*OF_FILES, Name.LIMIT_REPLACED, Name.LIMIT_LEFT_OUT, Name.UNKNOWN_RUN}
+BY_CODE = {*OF_FILES, Name.LIMIT_REPLACED, Name.LIMIT_LEFT_OUT, Name.UNKNOWN_RUN,
+           Name.BEYOND_PRECISION}  # fmt: skip
 
 
 def names_in_files() -> set[str]:

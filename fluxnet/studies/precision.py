@@ -1,0 +1,60 @@
+"""Numbers of a model that lie too far apart for what was asked to be computed with them."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from fractions import Fraction
+
+from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.names import Name
+from fluxnet.ground.source import Span
+from fluxnet.network.amounts import number_text
+from fluxnet.network.model import Network
+
+__all__ = ["find_numbers_apart"]
+
+_APART = 10**5
+
+
+def find_numbers_apart(network: Network, reason: str) -> Diagnostic | None:
+    """The two numbers of a model that lie farthest apart, told as the cause of a failure.
+
+    Parameters
+    ----------
+    reason
+        What failed, as a clause.
+
+    Returns
+    -------
+    Diagnostic or None
+        None where the numbers lie within five decades: the failure has another cause.
+    """
+    numbers = sorted(_numbers(network), key=lambda found: found[0])
+    if not numbers or numbers[-1][0] < _APART * numbers[0][0]:
+        return None
+    (least, what, small), (most, which, large) = numbers[0], numbers[-1]
+    return Diagnostic(
+        Name.BEYOND_PRECISION,
+        f"{which} {number_text(most)} and {what} {number_text(least)} lie too far apart to be "
+        "computed with",
+        large,
+        because=reason,
+        mend="write them in another unit, or check them",
+        also=(small,),
+    )
+
+
+def _numbers(network: Network) -> Iterator[tuple[Fraction, str, Span]]:
+    """The size of every coefficient and limit that is not zero, with its name and place."""
+    values = {p.name: p.value for p in network.parameters}
+    for reaction in network.reactions:
+        for _, term in reaction.terms:
+            if term.coefficient is None:
+                continue
+            size = abs(term.coefficient.exact(values))
+            if size:
+                yield size, f"the coefficient of {term.species} in {reaction.name}", term.span
+    for limit in network.limits:
+        for bound in (limit.low, limit.high):
+            if bound:
+                yield abs(bound), f"the limit on {limit.quantity}", limit.span

@@ -1,0 +1,37 @@
+"""Where solvers give up on numbers far apart, the two numbers are told, not a false optimum."""
+
+from __future__ import annotations
+
+import pytest
+
+from fluxnet.cli.new import MODEL
+from fluxnet.ground.errors import InputError
+from fluxnet.ground.names import Name
+from fluxnet.network.model import Network
+from fluxnet.reading.model import read_model_text
+from fluxnet.studies.precision import find_numbers_apart
+from fluxnet.studies.solve import solve_network
+
+
+def network_of(text: str) -> Network:
+    network = read_model_text(text).network
+    assert network is not None
+    return network
+
+
+def test_an_optimum_that_numbers_far_apart_hide_is_an_error_with_both_places() -> None:
+    wide = MODEL.replace("-> PO ATP", "-> 1e12 ATP")
+    wide = wide.replace("upkeep     : ATP", "upkeep     : 1e-12 ATP")
+    network = network_of(wide.replace("limit  upkeep = 1.0 ± 0.3", "limit  glucose <= 10"))
+    with pytest.raises(InputError) as told:
+        solve_network(network, maximise="mu")
+
+    (found,) = told.value.diagnostics
+    lines = wide.splitlines()
+    assert found.name is Name.BEYOND_PRECISION
+    assert "1e12 ATP" in lines[found.span.line - 1]
+    assert "1e-12 ATP" in lines[found.also[0].line - 1]
+
+
+def test_numbers_of_one_size_are_never_the_cause() -> None:
+    assert find_numbers_apart(network_of(MODEL), "the solver gave up") is None
