@@ -234,7 +234,7 @@ class Name(Enum):
         "Floating-point answers lose their digits at such a spread.",
         "Write the reaction per another amount, or check the numbers.")
     BEYOND_PRECISION = (
-        "beyond-precision", _E, "numbers of the model lie too far apart to be computed with",
+        "beyond-precision", _E, "numbers of the input lie too far apart to be computed with",
         "Floating-point numbers hold sixteen digits: the small ones are lost beside the large.",
         "Write the reactions per another amount, or check the numbers.")
 

@@ -1,4 +1,4 @@
-"""Numbers of a model that lie too far apart for what was asked to be computed with them."""
+"""Numbers of a model and its rates that lie too far apart to be computed with."""
 
 from __future__ import annotations
 
@@ -10,14 +10,15 @@ from fluxnet.ground.names import Name
 from fluxnet.ground.source import Span
 from fluxnet.network.amounts import number_text
 from fluxnet.network.model import Network
+from fluxnet.rates.measured import Run
 
 __all__ = ["find_numbers_apart"]
 
 _APART = 10**5
 
 
-def find_numbers_apart(network: Network, reason: str) -> Diagnostic | None:
-    """The two numbers of a model that lie farthest apart, told as the cause of a failure.
+def find_numbers_apart(network: Network, run: Run | None, reason: str) -> Diagnostic | None:
+    """The two numbers of a model and a run that lie farthest apart, told as the cause of a failure.
 
     Parameters
     ----------
@@ -29,7 +30,7 @@ def find_numbers_apart(network: Network, reason: str) -> Diagnostic | None:
     Diagnostic or None
         None where the numbers lie within five decades: the failure has another cause.
     """
-    numbers = sorted(_numbers(network), key=lambda found: found[0])
+    numbers = sorted((*_numbers(network), *_rates(run)), key=lambda found: found[0])
     if not numbers or numbers[-1][0] < _APART * numbers[0][0]:
         return None
     (least, what, small), (most, which, large) = numbers[0], numbers[-1]
@@ -58,3 +59,12 @@ def _numbers(network: Network) -> Iterator[tuple[Fraction, str, Span]]:
         for bound in (limit.low, limit.high):
             if bound:
                 yield abs(bound), f"the limit on {limit.quantity}", limit.span
+
+
+def _rates(run: Run | None) -> Iterator[tuple[Fraction, str, Span]]:
+    """The size of every measured rate and sd that is not zero."""
+    for rate in () if run is None else run.rates:
+        if rate.value:
+            yield abs(Fraction(rate.value)), f"the rate of {rate.quantity}", rate.span
+        if rate.sd:
+            yield Fraction(rate.sd), f"the sd of {rate.quantity}", rate.span

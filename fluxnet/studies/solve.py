@@ -47,7 +47,7 @@ def solve_network(
     MisuseError
         Where both aims are given, an aim names nothing, or a number makes no sense.
     InputError
-        Where the numbers of the model lie too far apart to be computed with.
+        Where numbers of the model or a run lie too far apart to be computed with.
     """
     if maximise is not None and minimise is not None:
         raise MisuseError("one aim at a time: maximise or minimise")
@@ -84,7 +84,7 @@ def _with_cause(
     except (ArithmeticError, np.linalg.LinAlgError) as failure:
         from fluxnet.studies.precision import find_numbers_apart
 
-        told = find_numbers_apart(network, str(failure))
+        told = find_numbers_apart(network, run, str(failure))
         if told is None:
             raise
         raise InputError((told,)) from failure

@@ -125,7 +125,8 @@ def tell_infeasible(
 
 def tell_unbounded(aim: Aim, reason: Unbounded) -> str:
     """Why an aim has no best value."""
-    return f"{str(aim).capitalize()}: there is no end to it: {reason.words}."
+    words = str(aim)
+    return f"{words[:1].upper()}{words[1:]}: there is no end to it: {reason.words}."
 
 
 def tell_violations(problem: Problem) -> tuple[str, ...]:
