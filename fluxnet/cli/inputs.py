@@ -71,6 +71,8 @@ def load_model(arguments: argparse.Namespace, variant: str = "base") -> ReadMode
 
         network, told = apply_variant(network, variant)
         known = {(d.name, d.span, d.message) for d in diagnostics}
+        here = Span(str(arguments.model), 0)
+        told = tuple(d if d.span.file else replace(d, span=here) for d in told)
         new = (d for d in told if (d.name, d.span, d.message) not in known)
         diagnostics = (*diagnostics, *new)
     return ReadModel(network, diagnostics, inputs, reading.sources)

@@ -252,3 +252,12 @@ def test_a_workbook_is_no_model(folder: Path, capsys: pytest.CaptureFixture[str]
 
     assert status == Exit.MISUSE
     assert "book.xlsx is a workbook, and no model" in text
+
+
+def test_a_variant_that_the_model_lacks_is_told_with_the_file(
+    folder: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    status, text = told(["solve", "model.flux", "--variant", "nope"], capsys)
+
+    assert status == Exit.MISUSE
+    assert text.startswith("model.flux: the model has no variant nope")
