@@ -9,7 +9,7 @@ from pathlib import Path
 from fluxnet.cli.main import Exit
 from fluxnet.cli.main import run as run_command
 from fluxnet.ground.resources import resource_folder
-from fluxnet.presenting.files import write_bytes
+from fluxnet.presenting.files import refuse_file, write_bytes
 
 __all__ = ["EXAMPLES", "add_arguments", "run"]
 
@@ -49,6 +49,8 @@ def run(arguments: argparse.Namespace) -> int:
     folder: Path = arguments.folder
     sources = sorted(p for p in (resource_folder("examples") / _EXAMPLE).iterdir() if p.is_file())
     folder.mkdir(parents=True, exist_ok=True)
+    for source in sources:
+        refuse_file(folder / source.name, force=arguments.force)
     for source in sources:
         write_bytes(folder / source.name, source.read_bytes(), force=arguments.force)
     print(f"{folder / 'README.md'} tells the story; all of it is invented.")

@@ -6,7 +6,7 @@ import argparse
 from pathlib import Path
 
 from fluxnet.cli.main import Exit
-from fluxnet.presenting.files import write_text
+from fluxnet.presenting.files import refuse_file, write_text
 
 __all__ = ["EXAMPLES", "MODEL", "RATES", "add_arguments", "run"]
 
@@ -80,6 +80,8 @@ def run(arguments: argparse.Namespace) -> int:
     folder: Path = arguments.name
     files = {"model.flux": MODEL, "rates.csv": RATES, "HOW-TO.txt": _HOW_TO}
     folder.mkdir(parents=True, exist_ok=True)
+    for name in files:
+        refuse_file(folder / name, force=arguments.force)
     for name, text in files.items():
         write_text(folder / name, text, force=arguments.force)
     print(f"wrote {', '.join(files)} into {folder}; next: fluxnet check {folder / 'model.flux'}")

@@ -261,3 +261,15 @@ def test_a_variant_that_the_model_lacks_is_told_with_the_file(
 
     assert status == Exit.MISUSE
     assert text.startswith("model.flux: the model has no variant nope")
+
+
+@pytest.mark.parametrize(("command", "last"), [("new", "HOW-TO.txt"), ("demo", "tw4.flux")])
+def test_a_folder_with_one_of_the_files_in_it_is_left_as_it_is(
+    tmp_path: Path, command: str, last: str, capsys: pytest.CaptureFixture[str]
+) -> None:
+    (tmp_path / last).write_text("mine", encoding="utf-8")
+    status, text = told([command, str(tmp_path)], capsys)
+
+    assert status == Exit.MISUSE
+    assert f"{last} exists" in text
+    assert [p.name for p in tmp_path.iterdir()] == [last]
