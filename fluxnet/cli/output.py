@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import os
 import sys
 from collections.abc import Mapping, Sequence
 from pathlib import Path
@@ -57,16 +58,21 @@ def refuse_outputs(arguments: argparse.Namespace, document: str) -> None:
         if folder.exists() and not folder.is_dir():
             raise MisuseError(f"{folder} is no folder; --csv takes the folder for the tables")
         for file in inputs:
-            is_there = file.resolve().parent == folder.resolve()
+            is_there = _real(file).parent == _real(folder)
             if is_there and file.suffix == ".csv" and file.stem in NAMES_OF_TABLES:
                 raise MisuseError(f"--csv {folder} would write over {file}; name another folder")
         if folder.is_dir():
             for name in ALWAYS_WRITTEN[document]:
                 refuse_file(folder / f"{name}.csv", force=arguments.force)
     if arguments.xlsx is not None:
-        if any(file.resolve() == arguments.xlsx.resolve() for file in inputs):
+        if any(_real(file) == _real(arguments.xlsx) for file in inputs):
             raise MisuseError(f"--xlsx would write over {arguments.xlsx}, which is read")
         refuse_workbook(arguments.xlsx, force=arguments.force)
+
+
+def _real(path: Path) -> Path:
+    """Where a path leads; links in a circle lead to themselves, and are told where opened."""
+    return Path(os.path.realpath(path))
 
 
 def give_screen(

@@ -273,3 +273,18 @@ def test_a_folder_with_one_of_the_files_in_it_is_left_as_it_is(
     assert status == Exit.MISUSE
     assert f"{last} exists" in text
     assert [p.name for p in tmp_path.iterdir()] == [last]
+
+
+def test_links_in_a_circle_are_told_where_they_stand(
+    folder: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    (folder / "circle").symlink_to(folder / "circle")
+    for words in (
+        ["check", "circle", "--csv", "out"],
+        ["check", "model.flux", "--xlsx", "circle"],
+        ["closure", "circle", "--xlsx", "out.xlsx"],
+        ["check", "model.flux", "--csv", "circle"],
+    ):
+        status, text = told(words, capsys)
+        assert status == Exit.MISUSE
+        assert "circle" in text
