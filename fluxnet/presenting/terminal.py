@@ -10,14 +10,16 @@ from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Severity
 from fluxnet.ground.record import record
 from fluxnet.ground.table import Align, Cell, Column, Table
+from fluxnet.presenting.excerpt import excerpt_lines, place_of, seen
 from fluxnet.presenting.numbers import format_measured, format_number
 from fluxnet.presenting.screen import Block, Heading, Mood, Sentence
-from fluxnet.presenting.table_lines import cell_width, lay_out
+from fluxnet.presenting.table_lines import lay_out
 
 if TYPE_CHECKING:
     from rich.console import Console
+    from rich.text import Text
 
-__all__ = ["Terminal", "diagnostic_lines", "table_cells"]
+__all__ = ["Terminal", "diagnostic_lines", "rich_text", "table_cells"]
 
 _STYLE = {
     Mood.PLAIN: "",
@@ -148,7 +150,7 @@ class Terminal:
             print(self._plain(line), file=self.stream)
 
     def _plain(self, text: str) -> str:
-        return text.translate(_ASCII) if self.ascii_only else text
+        return seen(text).translate(_ASCII) if self.ascii_only else seen(text)
 
     def _show_table(self, console: Console, table: Table) -> None:
         print(file=self.stream)
@@ -209,6 +211,13 @@ class Terminal:
         print("\n".join(lines), file=self.stream, end="")
 
 
+def rich_text(text: str) -> Text:
+    """Text that rich prints as it stands: brackets are units, not markup, and no line is broken."""
+    from rich.text import Text
+
+    return Text(text, no_wrap=True, overflow="ignore")
+
+
 def _verdicts(screen: tuple[Block, ...]) -> tuple[Block, ...]:
     """The verdicts alone; of several runs with their headings."""
     several = sum(isinstance(block, Heading) for block in screen) > 1
@@ -264,26 +273,17 @@ def diagnostic_lines(diagnostic: Diagnostic) -> tuple[str, ...]:
 
     The exact words are marked in the line below the source line.
     """
-    span = diagnostic.span
-    place = span.file
-    if span.line:
-        place += f", line {span.line}, column {span.column}"
+    place = place_of(diagnostic.span)
     head = f"{place}: " if place else ""
     severity = "" if diagnostic.severity is Severity.ERROR else f"{diagnostic.severity.value}: "
     lines = [f"{head}{severity}{diagnostic.message} ({diagnostic.name.value})"]
-    if diagnostic.source_line is not None:
-        source = diagnostic.source_line.rstrip()
-        cut = len(source) - len(source.lstrip())
-        before = source[cut : span.column - 1]
-        width = max(1, span.end_column - span.column)
-        lines.append("    " + source[cut:].expandtabs(4))
-        lines.append("    " + " " * cell_width(before.expandtabs(4)) + "‾" * width)
+    lines.extend(excerpt_lines(diagnostic))
     if diagnostic.because:
         lines.append(f"    because  {diagnostic.because}")
     if diagnostic.mend:
         lines.append(f"    mend     {diagnostic.mend}")
     for other in diagnostic.also:
-        lines.append(f"    see      {other.file}, line {other.line}, column {other.column}")
+        lines.append(f"    see      {place_of(other)}")
     if diagnostic.accepted is not None:
         lines.append(f"    accepted {diagnostic.accepted}")
     return tuple(lines)
