@@ -48,7 +48,9 @@ _PREFIX = {
     "µ": Fraction(1, 10**6), "μ": Fraction(1, 10**6), "n": Fraction(1, 10**9),
 }  # fmt: skip
 
-MARKS: Final = frozenset({"dw", "cdw", "dcw", "dry", "weight", "biomass", "cells", "x"})
+MARKS: Final = frozenset({
+    "dw", "cdw", "dcw", "dry", "weight", "biomass", "cells", "x", "ts", "bts", "btm",
+})  # fmt: skip
 """Words behind the grams below a line that say what the grams are of."""
 
 
@@ -66,7 +68,7 @@ def _all_words() -> dict[str, Word]:
             words[electrons] = Word(Dimension.ELECTRONS, moles)
         words[f"{prefix}g"] = Word(Dimension.MASS, size)
         words[f"{prefix}gC"] = Word(Dimension.CARBON_MASS, size)
-        for dry in ("DW", "CDW", "DCW", "X", "dw", "cdw", "dcw"):
+        for dry in ("DW", "CDW", "DCW", "X", "dw", "cdw", "dcw", "TS", "BTS", "BTM"):
             words[f"{prefix}g{dry}"] = Word(Dimension.MASS, size)
         if prefix != "k":
             words[f"{prefix}L"] = words[f"{prefix}l"] = Word(Dimension.VOLUME, size)

@@ -170,10 +170,11 @@ def _growth_as_rate(
         if target.basis is Basis.CARBON:
             return Factor(scale)
         return Factor(scale * 1000 / biomass_weight(species))
+    mend = "write a unit such as mmol/g/h"
+    if unit.kind is UnitKind.NUMBER:
+        mend += "; per cent of the substrate are mmol per 100 mmol, or C-mol per 100 C-mol"
     return BadUnit(
-        Name.WRONG_UNIT,
-        f"`{_text(unit)}` is no unit of the rate of {quantity.name}",
-        "write a unit such as mmol/g/h",
+        Name.WRONG_UNIT, f"`{_text(unit)}` is no unit of the rate of {quantity.name}", mend
     )
 
 
@@ -244,4 +245,6 @@ def _biomass(target: Target) -> Species:
 
 
 def _text(unit: RateUnit) -> str:
-    return unit.unit.text if unit.unit is not None else "a plain number"
+    if unit.unit is not None:
+        return unit.unit.text
+    return "1" if unit.count == 1 else "%"

@@ -23,7 +23,7 @@ class Entry:
 
     ``title`` names its column in messages; ``unit`` is the unit's text (with the place that
     says it), ``sd_unit`` that of the sd where it has one of its own (``%``), written in the
-    title ``sd_title``.
+    title ``sd_title``. ``direction_cell`` is blank where no cell of its own tells the direction.
     """
 
     run: str
@@ -37,6 +37,7 @@ class Entry:
     sd_unit: str = ""
     title: str = "rate"
     sd_title: Cell = _BLANK
+    direction_cell: Cell = _BLANK
 
 
 @record

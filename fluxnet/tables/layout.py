@@ -10,7 +10,7 @@ from fluxnet.network.model import Network
 from fluxnet.tables.grid import Grid, Row
 from fluxnet.tables.quantities import is_quantity_name
 from fluxnet.tables.statements import Statements, joined, read_statement
-from fluxnet.tables.titles import Key, Title, is_header_part, read_title
+from fluxnet.tables.titles import Key, Title, is_header_part, is_like_unit, read_title, settle_keys
 from fluxnet.tables.vocabulary import Vocabulary
 
 __all__ = ["Form", "Layout", "find_layout"]
@@ -59,7 +59,7 @@ def find_layout(grid: Grid, network: Network | None) -> Layout:
 
     A row that only names species (it may be a note) is the header only where no row below it
     shows units or directions. Where no row is a header, the one that comes nearest stands in
-    ``header``.
+    ``header``: what stands below a long table's titles without a rate is not looked at.
     """
     statements = Statements()
     vocabulary = Vocabulary(network)
@@ -81,11 +81,20 @@ def find_layout(grid: Grid, network: Network | None) -> Layout:
             if found.is_sure:
                 return layout
             likely = likely or layout
+        elif _lacks_rate(titles):
+            return Layout(None, titles, (), depth, vocabulary, statements, found.score, row)
         if found.score > nearest[0]:
             nearest = (found.score, row)
         text = " ".join(c.text for c in row.cells if c.text)
         statements = joined(statements, Statements(notes=(text,)))
     return likely or Layout(None, (), (), 0, vocabulary, statements, nearest[0], nearest[1])
+
+
+def _lacks_rate(titles: tuple[Title, ...]) -> bool:
+    """Whether titles are a long table's but for the column of the rates."""
+    keys = {t.key for t in titles}
+    is_long = Key.SPECIES in keys and not keys.isdisjoint({Key.UNIT, Key.DIRECTION, Key.SD})
+    return is_long and Key.RATE not in keys
 
 
 def _titles(rows: tuple[Row, ...], index: int) -> tuple[tuple[Title, ...], int]:
@@ -95,15 +104,20 @@ def _titles(rows: tuple[Row, ...], index: int) -> tuple[tuple[Title, ...], int]:
         depth += 1
     width = max(len(r.cells) for r in rows[index : index + depth])
     below = rows[index + 1 : index + depth]
-    return tuple(
+    titles = (
         read_title(rows[index].cell(j), tuple(r.cell(j).text for r in below)) for j in range(width)
-    ), depth
+    )
+    return settle_keys(tuple(titles)), depth
 
 
 def _continues(row: Row) -> bool:
-    return not row.is_blank and all(
-        c.number is None and c.fault is None and is_header_part(c.text) for c in row.cells
-    )
+    """Whether a row below the titles belongs to the header: units, directions, ``sd``."""
+    if row.is_blank or any(c.number is not None or c.fault is not None for c in row.cells):
+        return False
+    others = [c.text for c in row.cells if not is_header_part(c.text)]
+    # unknown units are told as such, and not as numbers that cannot be read
+    alike = sum(is_like_unit(c.text) for c in row.cells)
+    return not others or (alike > 1 and all(is_like_unit(text) for text in others))
 
 
 def _judge(titles: tuple[Title, ...], vocabulary: Vocabulary) -> _Judgement:

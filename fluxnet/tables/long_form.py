@@ -17,6 +17,7 @@ from fluxnet.tables.entries import (
 from fluxnet.tables.grid import Cell, Row
 from fluxnet.tables.layout import Layout
 from fluxnet.tables.quantities import is_quantity_name
+from fluxnet.tables.reckoned import label_of
 from fluxnet.tables.titles import Key, Title
 from fluxnet.tables.vocabulary import Vocabulary, split_direction
 
@@ -73,7 +74,8 @@ def _entry(row: Row, run: str, places: Mapping[Key, Title], vocabulary: Vocabula
     species = _cell(row, places, Key.SPECIES)
     if species.is_blank:
         return None
-    direction = _cell(row, places, Key.DIRECTION).text
+    direction_cell = _cell(row, places, Key.DIRECTION)
+    direction = direction_cell.text
     name, word = split_direction(species.text)
     if direction or is_quantity_name(species.text, vocabulary):
         name, word = species.text, ""
@@ -95,6 +97,7 @@ def _entry(row: Row, run: str, places: Mapping[Key, Title], vocabulary: Vocabula
         sd_unit=sd.unit if sd else "",
         title=rate.cell.text,
         sd_title=sd.cell if sd else Cell(""),
+        direction_cell=direction_cell,
     )
 
 
@@ -103,9 +106,8 @@ def _cell(row: Row, places: Mapping[Key, Title], key: Key) -> Cell:
 
 
 def _nameless(row: Row, cell: Cell) -> Diagnostic:
-    return Diagnostic(
-        Name.UNREADABLE_CELL,
-        f"row {row.span.line} names no species",
-        cell.span,
-        mend="write the species, or start the line with # if it is a remark",
-    )
+    mend = "write the species, or start the line with # if it is a remark"
+    if label_of(row):
+        mend = "take the row out, or start its line with #: what is reckoned is no rate"
+    words = f"row {row.span.line} names no species"
+    return Diagnostic(Name.UNREADABLE_CELL, words, cell.span, mend=mend)

@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 import difflib
+import re
 from collections.abc import Mapping
 from dataclasses import field, replace
 
 from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Quantity, QuantityKind, Role, Species
+from fluxnet.tables.reckoned import names_total
 from fluxnet.tables.vocabulary import (
     Vocabulary,
     direction_of_role,
@@ -21,6 +23,9 @@ from fluxnet.tables.vocabulary import (
 )
 
 __all__ = ["QuantityFault", "QuantityReading", "is_quantity_name", "read_quantity", "settle_ratio"]
+
+_SYMBOL = re.compile(r"[qrQR]_?(?:[SPX]|s|p|x|sub|prod)")
+"""Specific rates of the substrate and the product, as textbooks write them."""
 
 
 @record
@@ -213,12 +218,23 @@ def _unknown(name: str, vocabulary: Vocabulary) -> QuantityReading:
             f"{inside.name} is {word} in the model and does not cross the boundary",
             "declare a boundary species for what is released, with a reaction that makes it",
         )
+    if names_total(name) or not any(c.isalpha() for c in name):
+        words = "is reckoned from other rows" if names_total(name) else "names no species"
+        mend = "take the row out, or start its line with #"
+        return _faulty(Name.UNKNOWN_QUANTITY, f"`{name}` {words}", mend)
+    if _SYMBOL.fullmatch(name):
+        return _faulty(
+            Name.UNKNOWN_QUANTITY,
+            f"`{name}` does not say which compound it is",
+            "write the compound's name with its direction, such as glucose in",
+        )
     near = nearest_names(name, vocabulary)
     source = "the catalogue" if network is None else "the model and the catalogue"
     mend = (
         f"did you mean {' or '.join(near)}?"
         if near
-        else (f"declare it above the table: species {'-'.join(name.split())} FORMULA")
+        else "write its name in the catalogue (`fluxnet catalogue`), or declare it above the "
+        f"table: species {'-'.join(name.split())} FORMULA"
     )
     return _faulty(
         Name.UNKNOWN_QUANTITY, f"{source} know{'s' if network is None else ''} no {name}", mend

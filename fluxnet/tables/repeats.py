@@ -13,9 +13,13 @@ __all__ = ["find_repeats"]
 
 
 def find_repeats(readings: Sequence[Reading], biomass: Species | None) -> list[Diagnostic]:
-    """One fault for each reading whose quantity stands already in the run."""
+    """One fault for each reading whose quantity stands already in the run.
+
+    Of a wide table one for each row that repeats its run's quantities.
+    """
     first: dict[object, Reading] = {}
     faults: list[Diagnostic] = []
+    rows: dict[tuple[int, int], list[Reading]] = {}
     for reading in readings:
         quantity = reading.quantity
         key: object = quantity
@@ -26,24 +30,36 @@ def find_repeats(readings: Sequence[Reading], biomass: Species | None) -> list[D
         before = first.setdefault(key, reading)
         if before is reading:
             continue
-        cell = reading.entry.name_cell
-        words = f"{quantity} of run {reading.entry.run} stands already in {_where(before, reading)}"
-        if before.quantity.kind is not quantity.kind:
-            words += f" as {before.quantity}"
-        faults.append(
-            Diagnostic(
-                Name.ROW_REPEATED,
-                f"{cell.place}: {words}",
-                cell.span,
-                mend="keep one, average them, or give the second another run's name",
-                also=(before.entry.name_cell.span,),
-            )
-        )
-    return faults
+        if before.entry.name_cell.span == reading.entry.name_cell.span:
+            lines = (before.entry.value.span.line, reading.entry.value.span.line)
+            rows.setdefault(lines, []).append(reading)
+        else:
+            faults.append(_twice(before, reading))
+    return faults + [_row_twice(line, repeated) for (line, _), repeated in rows.items()]
 
 
-def _where(before: Reading, reading: Reading) -> str:
-    cell = before.entry.name_cell
-    if cell.span == reading.entry.name_cell.span:
-        return f"row {before.entry.value.span.line}"
-    return cell.place
+def _twice(before: Reading, reading: Reading) -> Diagnostic:
+    cell, earlier = reading.entry.name_cell, before.entry.name_cell
+    words = f"{reading.quantity} of run {reading.entry.run} stands already in {earlier.place}"
+    if before.quantity.kind is not reading.quantity.kind:
+        words += f" as {before.quantity}"
+    return Diagnostic(
+        Name.ROW_REPEATED,
+        f"{cell.place}: {words}",
+        cell.span,
+        mend="keep one, average them, or give the second another run's name",
+        also=(earlier.span,),
+    )
+
+
+def _row_twice(line: int, repeated: Sequence[Reading]) -> Diagnostic:
+    entry = repeated[0].entry
+    names = ", ".join(str(r.quantity) for r in repeated)
+    return Diagnostic(
+        Name.ROW_REPEATED,
+        f"row {entry.value.span.line}: {names} of run {entry.run} stand{'s' * (len(repeated) < 2)} "
+        f"already in row {line}",
+        entry.value.span,
+        mend=f"average the rows, or give each a run's name of its own: {entry.run}-1, "
+        f"{entry.run}-2",
+    )

@@ -3,14 +3,15 @@
 from __future__ import annotations
 
 import re
+from dataclasses import replace
 from enum import Enum
 
 from fluxnet.ground.record import record
 from fluxnet.tables.grid import Cell
 from fluxnet.tables.rate_units import is_unit
-from fluxnet.tables.vocabulary import read_direction, split_direction
+from fluxnet.tables.vocabulary import is_growth_rate, read_direction, split_direction
 
-__all__ = ["Key", "Title", "read_title"]
+__all__ = ["Key", "Title", "is_header_part", "is_like_unit", "read_title", "settle_keys"]
 
 
 class Key(Enum):
@@ -27,24 +28,38 @@ class Key(Enum):
 
 
 _WORDS = {
-    "run": Key.RUN, "sample": Key.RUN, "experiment": Key.RUN, "cultivation": Key.RUN,
-    "species": Key.SPECIES, "quantity": Key.SPECIES, "compound": Key.SPECIES,
-    "substance": Key.SPECIES,
-    "direction": Key.DIRECTION,
-    "rate": Key.RATE, "value": Key.RATE, "amount": Key.RATE, "measured": Key.RATE,
-    "specific rate": Key.RATE, "q": Key.RATE,
-    "sd": Key.SD, "s.d.": Key.SD, "±": Key.SD, "+-": Key.SD, "stdev": Key.SD, "std": Key.SD,
-    "standard deviation": Key.SD, "error": Key.SD,
-    "unit": Key.UNIT, "units": Key.UNIT,
-    "shared error": Key.SHARED, "shared error biomass": Key.SHARED,
+    **dict.fromkeys((
+        "run", "run id", "sample", "sample id", "experiment", "experiment id", "cultivation",
+        "fermentation", "batch", "reactor", "vessel", "versuch", "probe", "ansatz", "charge",
+        "lauf",
+    ), Key.RUN),
+    **dict.fromkeys((
+        "species", "quantity", "compound", "substance", "metabolite", "analyte", "stoff",
+        "substanz", "verbindung", "größe", "komponente",
+    ), Key.SPECIES),
+    **dict.fromkeys(("direction", "in/out", "in or out", "richtung"), Key.DIRECTION),
+    **dict.fromkeys((
+        "rate", "value", "amount", "measured", "specific rate", "q", "mean", "average", "wert",
+        "messwert", "menge", "mittelwert",
+    ), Key.RATE),
+    **dict.fromkeys((
+        "sd", "s.d.", "±", "+-", "+/-", "stdev", "std", "std dev", "standard deviation", "error",
+        "stabw", "standardabweichung", "fehler",
+    ), Key.SD),
+    **dict.fromkeys(("unit", "units", "einheit", "einheiten"), Key.UNIT),
+    **dict.fromkeys(("shared error", "shared error biomass"), Key.SHARED),
     "biomass concentration": Key.CONCENTRATION,
 }  # fmt: skip
+_MEANS = frozenset({"mean", "average", "mittelwert"})
 _BRACKETS = re.compile(r"(?P<name>.*?)\s*(?:\[(?P<square>[^\[\]]*)\]|\((?P<round>[^()]*)\))\s*")
 _SD_END = re.compile(
-    r"(?P<name>.*\S)[\s_]+(?:sd|s\.d\.|stdev|std|±|\+-|standard deviation|error)", re.I
+    r"(?P<name>.*\S)[\s_]+(?:sd|s\.d\.|stdev|std|±|\+/?-|standard deviation|error)", re.I
 )
 _SD_START = re.compile(
-    r"(?:sd|s\.d\.|stdev|std|±|\+-|standard deviation)(?:[\s_]+of)?[\s_]+(?P<name>.+)", re.I
+    r"(?:sd|s\.d\.|stdev|std|±|\+/?-|standard deviation)(?:[\s_]+of)?[\s_]+(?P<name>.+)", re.I
+)
+_LIKE_UNIT = re.compile(
+    r"[^\W\d]{2,}[\w-]*(?:\s*/\s*\(?[\w-]+\)?)+|[^\W\d]+(?:[ *·][^\W\d]+\^?[-\u2212]\d)+"
 )
 
 
@@ -82,7 +97,7 @@ def read_title(cell: Cell, below: tuple[str, ...] = ()) -> Title:
     words = []
     for part in below:
         bare = part.strip().strip("[]()").strip()
-        if not bare or bare in "-–":
+        if not bare or bare in "-–" or (is_growth_rate(bare) and is_growth_rate(text)):
             continue
         if read_direction(bare) or _WORDS.get(bare.lower()) in (Key.SD, Key.RATE):
             words.append(bare)
@@ -102,6 +117,32 @@ def read_title(cell: Cell, below: tuple[str, ...] = ()) -> Title:
     return Title(cell, name, direction, unit, bracketed, is_sd=sd is not None)
 
 
+def settle_keys(titles: tuple[Title, ...]) -> tuple[Title, ...]:
+    """Titles of which only one is the run and one the rate, whatever else is called like them.
+
+    A column ``run`` goes before ``batch`` and ``sample``, a column ``rate`` before ``mean``; the
+    others are carried through. Two columns with one title stay a fault.
+    """
+    chosen: dict[Key, str] = {}
+    for key, weak in ((Key.RUN, frozenset(_WORDS) - {"run"}), (Key.RATE, _MEANS)):
+        words = [_word(t) for t in titles if t.key is key and not t.is_sd]
+        strong = [w for w in words if w not in weak]
+        if words:
+            chosen[key] = (strong or words)[0]
+    return tuple(
+        replace(t, key=None, name="")
+        if t.key in chosen
+        and _word(t) != chosen[t.key]
+        and (t.key is Key.RUN or _word(t) in _MEANS)
+        else t
+        for t in titles
+    )
+
+
+def _word(title: Title) -> str:
+    return title.name.lower().replace("_", " ")
+
+
 def is_header_part(text: str) -> bool:
     """Whether a cell below a title can belong to the header: a unit, a direction, ``sd``."""
     bare = text.strip()
@@ -110,4 +151,17 @@ def is_header_part(text: str) -> bool:
     bare = bare.strip("()").strip()
     if bare in ("", "-", "–", "%") or read_direction(bare):
         return True
-    return _WORDS.get(bare.lower()) in (Key.SD, Key.RATE) or is_unit(bare)
+    if _WORDS.get(bare.lower()) in (Key.SD, Key.RATE) or is_growth_rate(bare):
+        return True
+    return is_unit(bare)
+
+
+def is_like_unit(text: str) -> bool:
+    """Whether a cell below a title is built like a unit, known or not: ``kibbles/g/h``.
+
+    Examples
+    --------
+    >>> is_like_unit("mmol/gTM/h"), is_like_unit("n/a"), is_like_unit("1.5")
+    (True, False, False)
+    """
+    return _LIKE_UNIT.fullmatch(text.strip("[]() ")) is not None

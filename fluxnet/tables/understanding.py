@@ -19,6 +19,7 @@ from fluxnet.tables.errors_assumed import SdRule
 from fluxnet.tables.grid import Grid
 from fluxnet.tables.layout import Form, Layout, find_layout
 from fluxnet.tables.long_form import collect_long
+from fluxnet.tables.no_header import no_header
 from fluxnet.tables.numbers import decimal_faults, told_once
 from fluxnet.tables.numerals import Decimal, DecimalChoice, decide_decimal
 from fluxnet.tables.runs import BuiltRun, KnownFactors, build_run
@@ -53,7 +54,7 @@ def understand(
     faults = list(layout.statements.diagnostics)
     faults.extend(check_declarations(layout.statements.species, network))
     if layout.form is None:
-        return Understood(None, notes, (*faults, _no_header(grid, layout)))
+        return Understood(None, notes, (*faults, no_header(grid, layout)))
     surplus = find_surplus(layout, grid.separator)
     faults.extend(surplus.diagnostics)
     layout = replace(layout, shifted=surplus.lines)
@@ -161,22 +162,6 @@ def _species(readings: Readings, biomass: Species | None) -> tuple[Species, ...]
     if grows and biomass is not None and all(s.name != biomass.name for s in species):
         species.append(biomass)
     return tuple(species)
-
-
-def _no_header(grid: Grid, layout: Layout) -> Diagnostic:
-    row = layout.header or (grid.rows[0] if grid.rows else None)
-    file = grid.source.file
-    if row is None:
-        return Diagnostic(Name.EMPTY_FILE, f"{file} holds no table", Span(file, 0, 0, 0))
-    titles = ", ".join(c.text for c in row.cells if c.text)
-    return Diagnostic(
-        Name.MISSING_COLUMN,
-        f"row {row.span.line} ({titles}) is no header of a rates table, and no row below is",
-        row.span,
-        because="a long table has at least the columns species and rate; "
-        "a wide one names quantities with their units",
-        mend="write: run, species, direction, rate, sd, unit; or glucose in [mmol/g/h]",
-    )
 
 
 def _no_rows(grid: Grid, layout: Layout) -> Diagnostic:

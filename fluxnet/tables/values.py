@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection, Iterable
+from collections.abc import Collection, Iterable, Mapping
 from dataclasses import field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
@@ -13,12 +13,15 @@ from fluxnet.network.model import Quantity, QuantityKind, Species
 from fluxnet.tables.entries import Entry
 from fluxnet.tables.numbers import Number, cell_fault, read_cell, told_briefly, told_once
 from fluxnet.tables.numerals import Decimal
-from fluxnet.tables.quantities import QuantityReading, read_quantity, settle_ratio
+from fluxnet.tables.quantities import QuantityFault, QuantityReading, read_quantity, settle_ratio
 from fluxnet.tables.rate_units import BadUnit, RateUnit, read_rate_unit
+from fluxnet.tables.reckoned import names_total
 from fluxnet.tables.sense import sd_doubts, sense_faults, unit_faults
 from fluxnet.tables.vocabulary import Vocabulary
 
 __all__ = ["Reading", "Readings", "read_entries"]
+
+_WITHOUT_MINUS = ", and the numbers without the minus"
 
 
 @record
@@ -70,6 +73,7 @@ def read_entries(
     readings: list[Reading] = []
     faults: list[Diagnostic] = []
     doubts: list[Diagnostic] = []
+    unsaid: dict[str, tuple[Entry, Diagnostic]] = {}
     failed: set[str] = set()
     assumed: list[Entry] = []
     for entry in entries:
@@ -90,10 +94,13 @@ def read_entries(
             same = found.sd_unit is None or entry.sd_unit == entry.unit
             doubts += sd_doubts(entry, found.value, found.sd, same_unit=same)
         else:
-            faults.extend(found)
             failed.add(entry.run)
+            wrong = told.fault is not None and told.fault.name is Name.BAD_DIRECTION
+            if wrong and not entry.direction:
+                unsaid.setdefault(entry.name, (entry, found.pop(0)))
+            faults.extend(found)
     readings = _settled(readings, typed)
-    faults = told_once(faults) + told_briefly(doubts)
+    faults = told_once(faults) + _unsaid_directions(unsaid) + told_briefly(doubts)
     return Readings(
         tuple(readings), tuple(typed.values()), frozenset(failed), tuple(assumed), tuple(faults)
     )
@@ -151,6 +158,36 @@ def _renamed(quantity: Quantity, renamed: dict[str, Species]) -> Quantity:
     return quantity
 
 
+def _unsaid_directions(unsaid: Mapping[str, tuple[Entry, Diagnostic]]) -> list[Diagnostic]:
+    """One fault for all names without a direction, where they are more than two."""
+    found = list(unsaid.values())
+    if len(found) < 3:
+        return [fault for _, fault in found]
+    entry, first = found[0]
+    is_title = entry.name_cell is entry.unit_cell
+    where = "into each title" if is_title else "behind each name, or into a column direction"
+    mend = f"write it {where}: {entry.name} in, or {entry.name} out"
+    if any(_is_negative(one) for one, _ in found):
+        mend += _WITHOUT_MINUS
+    words = f"no direction is written for {', '.join(unsaid)}, and no role gives it"
+    return [replace(first, message=f"{entry.name_cell.place}: {words}", mend=mend)]
+
+
+def _is_negative(entry: Entry) -> bool:
+    return entry.value.text[:1] in ("-", "\u2212") and len(entry.value.text) > 1
+
+
+def _name_fault(entry: Entry, fault: QuantityFault) -> Diagnostic:
+    """The fault of a name or direction, at the cell that tells it."""
+    cell, mend = entry.name_cell, fault.mend
+    if fault.name is Name.BAD_DIRECTION:
+        if entry.direction and not entry.direction_cell.is_blank:
+            cell = entry.direction_cell
+        if not entry.direction and _is_negative(entry) and mend:
+            mend += _WITHOUT_MINUS
+    return cell_fault(fault.name, cell, "", fault.message, mend)
+
+
 def _read(
     entry: Entry,
     told: QuantityReading,
@@ -161,9 +198,9 @@ def _read(
 ) -> Reading | list[Diagnostic]:
     faults: list[Diagnostic] = []
     if told.fault is not None:
-        faults.append(
-            cell_fault(told.fault.name, entry.name_cell, "", told.fault.message, told.fault.mend)
-        )
+        faults.append(_name_fault(entry, told.fault))
+        if names_total(entry.name):
+            return faults
     value, sd = Number(), Number()
     if not entry.value.is_blank and not skip:
         value = read_cell(entry.value, decimal, entry.title)

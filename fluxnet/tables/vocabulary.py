@@ -21,9 +21,17 @@ __all__ = [
 ]
 
 _DIRECTIONS = {
-    **dict.fromkeys(("in", "uptake", "taken up", "consumed", "used", "into"), Direction.IN),
-    **dict.fromkeys(("out", "release", "released", "produced", "made", "out of"), Direction.OUT),
-}
+    **dict.fromkeys((
+        "in", "uptake", "taken up", "consumed", "consumption", "used", "into", "uptake rate",
+        "consumption rate", "aufnahme", "verbrauch",
+    ), Direction.IN),
+    **dict.fromkeys((
+        "out", "release", "released", "produced", "production", "made", "formed", "formation",
+        "secreted", "secretion", "evolved", "evolution", "out of", "release rate",
+        "production rate", "formation rate", "secretion rate", "evolution rate", "abgabe",
+        "bildung", "produktion",
+    ), Direction.OUT),
+}  # fmt: skip
 _TAIL = re.compile(
     rf"(?P<name>.+?)[\s_]+(?P<direction>{'|'.join(sorted(_DIRECTIONS, key=len, reverse=True))})",
     re.IGNORECASE,

@@ -13,10 +13,11 @@ from fluxnet.tables.entries import (
     column_twice,
     extend_head,
 )
-from fluxnet.tables.grid import Cell
+from fluxnet.tables.grid import Cell, Row
 from fluxnet.tables.layout import Layout
 from fluxnet.tables.quantities import is_quantity_name
 from fluxnet.tables.rate_units import RateUnit, UnitKind, is_rate_unit, read_rate_unit
+from fluxnet.tables.reckoned import MOST_BELOW, label_of, names_total
 from fluxnet.tables.titles import Key, Title
 
 __all__ = ["collect_wide"]
@@ -39,7 +40,13 @@ def collect_wide(layout: Layout) -> Entries:
     entries: list[Entry] = []
     heads: dict[str, RunHead] = {}
     failed: set[str] = set()
+    faults = list(columns.faults)
     for count, row in enumerate(layout.body, start=1):
+        label = label_of(row) if count > len(layout.body) - MOST_BELOW else ""
+        if label:
+            faults.append(_reckoned(row, label))
+            if names_total(label):
+                continue
         named = row.cell(columns.run.cell.column).text if columns.run else ""
         run = named or str(count)
         head = heads.setdefault(run, RunHead(run, row.span))
@@ -69,7 +76,7 @@ def collect_wide(layout: Layout) -> Entries:
         tuple(heads.values()),
         carried,
         failed=frozenset(failed),
-        diagnostics=columns.faults,
+        diagnostics=tuple(faults),
     )
 
 
@@ -94,8 +101,30 @@ def _columns(layout: Layout) -> _Columns:
             extras.append(title)
     for title in waiting:
         faults.extend(_join_sd(title, quantities))
-    run = fixed.get((Key.RUN, False))
+    run = fixed.get((Key.RUN, False), _untitled_run(layout))
     return _Columns(tuple(quantities), tuple(extras), run, tuple(faults))
+
+
+def _untitled_run(layout: Layout) -> Title | None:
+    """The first column, where it has no title and only words: it names the runs."""
+    first = layout.titles[0] if layout.titles else None
+    if first is None or first.cell.text or first.unit:
+        return None
+    texts = [row.cell(0).text for row in layout.body]
+    return first if texts and all(any(c.isalpha() for c in text) for text in texts) else None
+
+
+def _reckoned(row: Row, label: str) -> Diagnostic:
+    """What to tell of a row below the data: a mean can be a run, a total cannot."""
+    if not names_total(label):
+        words = f"row {row.span.line}, {label}, is read as a run like the others"
+        return Diagnostic(Name.TABLE_UNDERSTOOD, words, row.span)
+    return Diagnostic(
+        Name.UNREADABLE_CELL,
+        f"row {row.span.line}, {label}, is reckoned from the rows above and is no run",
+        row.span,
+        mend="take the row out, or start its line with #; a run needs another name",
+    )
 
 
 def _join_sd(title: Title, quantities: list[tuple[Title, Title | None]]) -> list[Diagnostic]:
@@ -106,7 +135,8 @@ def _join_sd(title: Title, quantities: list[tuple[Title, Title | None]]) -> list
             quantities[place] = (quantity, title)
             return []
     words = f"{title.cell.place}: `{title.cell.text}` is the sd of no column of the table"
-    return [Diagnostic(Name.MISSING_COLUMN, words, title.cell.span)]
+    mend = "write glucose sd, or put it right of the column that it belongs to"
+    return [Diagnostic(Name.MISSING_COLUMN, words, title.cell.span, mend=mend)]
 
 
 def _is_quantity(title: Title, known: frozenset[UnitKind], layout: Layout) -> bool:
