@@ -110,6 +110,12 @@ def resolve_quantity(
     bottom = _single(line, said.bottom, scope, ways, Direction.OUT)
     if top is None or bottom is None:
         return None
+    if (top.kind, top.name) == (bottom.kind, bottom.name):
+        scope.findings.add(
+            Name.BAD_LIMIT, "the ratio of a quantity to itself is always 1", line, said,
+            mend="name another quantity below the line",
+        )
+        return None
     return Quantity(QuantityKind.RATIO, numerator=top, denominator=bottom)
 
 

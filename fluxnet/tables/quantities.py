@@ -153,6 +153,10 @@ def _ratio(name: str, direction: str, vocabulary: Vocabulary) -> QuantityReading
         parts.append(reading.quantity)
         species.extend(reading.species)
         assumed = assumed or reading.assumed
+    if (parts[0].kind, parts[0].name) == (parts[1].kind, parts[1].name):
+        return _faulty(
+            Name.UNKNOWN_QUANTITY, f"`{name}` is always 1, and tells nothing", "take the row out"
+        )
     quantity = Quantity(QuantityKind.RATIO, numerator=parts[0], denominator=parts[1])
     return QuantityReading(quantity, tuple(species), assumed=assumed)
 

@@ -92,6 +92,8 @@ def test_limits_are_held_against_one_another(faults, lines, name) -> None:
         ("a in <= 1", "bad-limit"),
         ("mu between in 1 and out 2", "bad-limit"),
         ("a / b between in 1 and out 2", "bad-limit"),
+        ("glucose / glucose = 1", "bad-limit"),
+        ("CO2 in / CO2 out = 1", "bad-limit"),
         ("oxigen <= 1", "unknown-limit"),
         ("Oxygen <= 1", "case-differs"),
         ("Mu <= 1", "case-differs"),

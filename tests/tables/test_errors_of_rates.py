@@ -225,3 +225,10 @@ def test_numbers_that_no_computer_can_weigh_are_refused_at_their_cell(rate, sd, 
 def test_an_sd_of_zero_and_the_sd_of_a_rate_of_zero_are_no_faults(read):
     run = read(LONG + "A,glucose,in,2,0,mmol/g/h\nA,ethanol,out,0,1e-12,mmol/g/h\n")
     assert [r.sd for r in run.rates] == [0.0, 1e-12]
+
+
+def test_a_ratio_of_a_quantity_to_itself_is_no_measurement():
+    reading = read_rates_text(LONG + "A,glucose,in,2,0.1,mmol/g/h\nA,CO2 / CO2,,1,3 %,\n")
+    assert [(d.name, d.span.line) for d in reading.diagnostics if d.severity.value == "error"] == [
+        (Name.UNKNOWN_QUANTITY, 3)
+    ]
