@@ -20,9 +20,12 @@ def main() -> NoReturn:
     os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
     # What is imported stays: looking for garbage at every few hundred objects finds none.
     gc.set_threshold(200_000, 20, 20)
-    from fluxnet.cli.main import run
+    try:
+        from fluxnet.cli.main import run
 
-    status = run()
+        status = run()
+    except KeyboardInterrupt:  # while what tells of it is still being loaded
+        status = 130
     # What cannot be written was told by the command. Taking apart what goes with the process
     # anyway takes as long as reading a model.
     for stream in (sys.stdout, sys.stderr):

@@ -61,6 +61,8 @@ def run(arguments: argparse.Namespace) -> int:
         ]
         print(f"\n{'─' * 78}\n{question}\n  fluxnet {' '.join(command)}\n", flush=True)
         worst = max(worst, run_command(command))
+        if worst == Exit.INTERRUPTED:
+            return worst
         sys.stderr.flush()
     print(f"\n{'─' * 78}\nWhat was wrong in which week? {folder / 'answer.md'} tells.")
     return worst if worst > Exit.FINDING else Exit.SOUND

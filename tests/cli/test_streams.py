@@ -8,6 +8,8 @@ from pathlib import Path
 
 import pytest
 
+from fluxnet.cli import demo
+from fluxnet.cli.main import Exit, run
 from fluxnet.cli.new import MODEL, RATES
 
 
@@ -68,3 +70,18 @@ def test_standard_input_is_read_in_the_encodings_of_files(folder: Path, encoding
     assert (checked.returncode, laid.returncode) == (0, 0)
     assert ("wrong-encoding" in checked.stderr) == (encoding == "latin-1")
     assert "PO  = 1.4 ± 0.2" in laid.stdout
+
+
+def test_an_interrupted_step_ends_the_demo(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    steps: list[list[str]] = []
+
+    def interrupted(words: list[str]) -> int:
+        steps.append(words)
+        return Exit.INTERRUPTED
+
+    monkeypatch.setattr(demo, "run_command", interrupted)
+
+    assert run(["demo", str(tmp_path / "demo")]) == Exit.INTERRUPTED
+    assert len(steps) == 1
