@@ -10,6 +10,7 @@ from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role, Species
 from fluxnet.rates.measured import MeasuredRate, RatesTable, Run
+from fluxnet.rates.weighable import weigh_faults
 
 __all__ = ["Alignment", "align_table"]
 
@@ -26,7 +27,8 @@ def align_table(table: RatesTable, network: Network) -> Alignment:
     """Match every quantity of a table to the model's, by name, then by catalogue entry.
 
     Biomass of the table means the model's where that has one biomass species. What the model
-    does not have, or has with the other direction, is an error: no flux can make it.
+    does not have, or has with the other direction, is an error: no flux can make it. So are
+    rates that cannot be weighed against one another (:mod:`fluxnet.rates.weighable`).
     """
     entries = {s.name: s.entry or s.name for s in table.species}
     biomass = [s.name for s in network.boundary if s.role is Role.BIOMASS]
@@ -63,6 +65,7 @@ def _aligned(run: Run, names: dict[str, str], network: Network, faults: list[Dia
             message = f"run {run.name}: {before} and {rate.quantity} are one rate of the model"
             faults.append(Diagnostic(Name.ROW_REPEATED, message, rate.span))
         rates.append(replace(rate, quantity=quantity))
+    faults.extend(weigh_faults(run))
     return replace(run, rates=tuple(rates))
 
 

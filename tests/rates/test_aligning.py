@@ -73,3 +73,26 @@ def test_two_rates_that_the_model_calls_one_are_an_error(network):
     table = read_rates_text(text + "A,X,out,2,1,mmol\nA,Y,out,2,1,mmol\n").table
     found = align_table(table, network)
     assert [(d.name, d.span.line) for d in found.diagnostics] == [(Name.ROW_REPEATED, 5)]
+
+
+def test_a_ratio_over_a_rate_of_zero_has_no_value(network):
+    found = aligned("A,dextrose,in,0,0,mmol/g/h\nA,CO2 / dextrose,,2,0.1,\n", network)
+    (told,) = found.diagnostics
+    assert (told.name, told.span.line) == (Name.UNREADABLE_CELL, 3)
+    assert "since glc in is 0" in told.message or "since dextrose in is 0" in told.message
+
+
+@pytest.mark.parametrize("correlation", [1, -1])
+def test_errors_that_leave_a_sum_of_rates_exact_cannot_be_weighed(network, correlation):
+    text = "A,dextrose,in,2,0.1,mmol/g/h\nA,acetate,out,1,0.1,mmol/g/h\n"
+    pairs = f"run,first,second,correlation\nA,dextrose in,acetate out,{correlation}\n"
+    table = read_rates_text(LONG + text, covariance=pairs).table
+    (told,) = align_table(table, network).diagnostics
+    assert (told.name, told.span.line) == (Name.BAD_COVARIANCE, 2)
+
+
+def test_errors_that_move_together_for_the_most_part_are_weighed(network):
+    text = "A,dextrose,in,2,0.1,mmol/g/h\nA,acetate,out,1,0,mmol/g/h\nA,CO2,out,3,0.2,mmol/g/h\n"
+    pairs = "run,first,second,correlation\nA,dextrose in,CO2 out,0.999999\n"
+    table = read_rates_text(LONG + text, covariance=pairs).table
+    assert align_table(table, network).table is not None
