@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 import io
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 from functools import cached_property
 from pathlib import Path
 from typing import TYPE_CHECKING, Any, Generic, TypeVar
 
-from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.errors import InputError, MisuseError
 from fluxnet.ground.table import Table
 from fluxnet.network.model import Network
@@ -101,6 +101,7 @@ class Answer(Generic[Result]):
     screen: tuple[Block, ...] = field(repr=False)
     record: Mapping[str, Any] = field(repr=False)
     main: str = field(repr=False)
+    told: tuple[Diagnostic, ...] = field(default=(), repr=False)
 
     def __getattr__(self, name: str) -> Any:
         if name.startswith("__"):
@@ -113,7 +114,10 @@ class Answer(Generic[Result]):
         return {table.key: table for table in screen_tables(self.screen)}
 
     def to_frame(self, key: str | None = None) -> pd.DataFrame:
-        """One of its tables as a pandas frame, at full precision; the main one by default.
+        """One of its tables as a pandas frame, at full precision.
+
+        By default the main one, or the first where the answer has no such table: an infeasible
+        solve has an overview and no fluxes.
 
         Raises
         ------
@@ -121,14 +125,14 @@ class Answer(Generic[Result]):
             Where there is no table of that key.
         """
         tables = self.tables
-        wanted = key or self.main
+        wanted = key or (self.main if self.main in tables else next(iter(tables), ""))
         if wanted not in tables:
             raise MisuseError(f"there is no table {wanted!r}; there are {', '.join(tables)}")
         return tables[wanted].to_frame()
 
     def to_json(self) -> str:
-        """The document that ``--json`` prints."""
-        return document_text(self.document, (), (), self.record)
+        """The document that ``--json`` prints; what came from no file has no ``inputs``."""
+        return document_text(self.document, (), self.told, self.record)
 
     def __str__(self) -> str:
         from fluxnet.presenting.terminal import Terminal
@@ -137,13 +141,18 @@ class Answer(Generic[Result]):
         Terminal.text(stream).show(self.screen)
         return stream.getvalue()
 
-    def _repr_html_(self) -> str:
-        from html import escape
-
-        return f"<pre>{escape(str(self))}</pre>"
-
-    def __rich__(self) -> str:
+    def __repr__(self) -> str:
         return str(self)
+
+    def _repr_html_(self) -> str:
+        from fluxnet.presenting.notebook import screen_html
+
+        return screen_html(self.screen)
+
+    def __rich_console__(self, console: object, options: Any) -> Iterator[object]:
+        from fluxnet.presenting.terminal import rich_text
+
+        yield rich_text(self.screen, options.max_width)
 
 
 def read_model(
@@ -213,7 +222,7 @@ def check(model: Model) -> Answer[CheckResult]:
 
     result = check_network(model.network, model.diagnostics)
     screen = check_screen(result)
-    return Answer(result, Document.CHECK, screen, check_record(result), "most_energy")
+    return Answer(result, Document.CHECK, screen, check_record(result), "findings")
 
 
 def closure(rates: Rates, model: Model | None = None, **options: Any) -> Answer[Closure]:
@@ -233,7 +242,8 @@ def closure(rates: Rates, model: Model | None = None, **options: Any) -> Answer[
     if not result.runs:
         raise InputError(result.diagnostics)
     record = closure_record(result)
-    return Answer(result, Document.CLOSURE, closure_screen(result), record, "rates")
+    told = in_order((*_told(model), *rates.diagnostics, *result.diagnostics))
+    return Answer(result, Document.CLOSURE, closure_screen(result), record, "rates", told)
 
 
 def solve(model: Model, rates: Rates | None = None, **options: Any) -> Answer[Solution]:
@@ -256,13 +266,20 @@ def solve(model: Model, rates: Rates | None = None, **options: Any) -> Answer[So
     from fluxnet.studies.solve import solve_network
 
     table = None
+    also: tuple[Diagnostic, ...] = ()
     if rates is not None:
         aligned = align_table(rates.table, model.network)
         if aligned.table is None:
             raise InputError(aligned.diagnostics)
-        table = aligned.table
+        table, also = aligned.table, aligned.diagnostics
     result = solve_network(model.network, table, **options)
-    return Answer(result, Document.SOLVE, solve_screen(result), solve_record(result), "fluxes")
+    told = in_order((*_told(model), *(rates.diagnostics if rates is not None else ()), *also))
+    screen, record = solve_screen(result), solve_record(result)
+    return Answer(result, Document.SOLVE, screen, record, "fluxes", told)
+
+
+def _told(model: Model | None) -> tuple[Diagnostic, ...]:
+    return () if model is None else model.diagnostics
 
 
 def _network(model: Model | None) -> Network | None:

@@ -27,13 +27,14 @@ ALWAYS_WRITTEN = {
     Document.CLOSURE: ("overview", "balances", "rates"),
     Document.SOLVE: ("overview",),
     Document.CATALOGUE: (),
-    Document.CHECK: (),
+    Document.CHECK: ("findings",),
 }
 """The tables that a command writes whatever its answer is."""
 
 NAMES_OF_TABLES = frozenset({
-    "balances", "catalogue", "compound", "conflict", "equations", "fluxes", "least_change",
-    "ledger", "limits", "most_energy", "overview", "parameters", "rates", "unbounded", "yields",
+    "balances", "catalogue", "compound", "conflict", "equations", "findings", "fluxes",
+    "least_change", "ledger", "limits", "most_energy", "overview", "parameters", "rates",
+    "unbounded", "yields",
 })  # fmt: skip
 """Every table that some command writes."""
 
@@ -94,7 +95,8 @@ def give_screen(
         from fluxnet.presenting.files import write_csv, write_workbook
     if arguments.csv is not None:
         paths = write_csv(tables, arguments.csv, force=arguments.force)
-        print(f"wrote {len(paths)} tables into {arguments.csv}", file=sys.stderr)
+        written = "1 table" if len(paths) == 1 else f"{len(paths)} tables"
+        print(f"wrote {written} into {arguments.csv}", file=sys.stderr)
     if arguments.xlsx is not None:
         write_workbook(tables, arguments.xlsx, force=arguments.force)
         print(f"wrote {arguments.xlsx}", file=sys.stderr)

@@ -33,8 +33,17 @@ def check_screen(result: CheckResult, file: str = "") -> tuple[Block, ...]:
     ]  # fmt: skip
     if result.most_atp:
         blocks.append(_most_atp(result))
-    blocks += _freedom(result)
+    blocks += [*_freedom(result), _findings(result.diagnostics)]
     return tuple(blocks)
+
+
+def _findings(diagnostics: tuple[Diagnostic, ...]) -> Table:
+    """All findings as data: on screen they stand before everything else, with their lines."""
+    keys = ("name", "severity", "message", "file", "line", "column", "end_column", "because",
+            "mend", "accepted")  # fmt: skip
+    records = [diagnostic_record(diagnostic) for diagnostic in diagnostics]
+    rows = tuple(tuple(record[key] for key in keys) for record in records)
+    return Table("findings", "Findings", tuple(Column("", key) for key in keys), rows)
 
 
 def _verdict(diagnostics: tuple[Diagnostic, ...]) -> Sentence:
@@ -58,7 +67,8 @@ def _most_atp(result: CheckResult) -> Table:
     columns = (
         Column("substrate", "substrate"),
         Column("carrier", "carrier"),
-        Column("most, mol/mol", "amount", align=Align.RIGHT),
+        Column("most, mol/mol", "", align=Align.RIGHT),
+        Column("", "amount"),
         Column("by", "conversion", wrap=44),
     )
     rows = tuple(
@@ -66,6 +76,7 @@ def _most_atp(result: CheckResult) -> Table:
             most.substrate,
             most.carrier,
             "no end" if most.amount is None else format_number(float(most.amount)),
+            None if most.amount is None else float(most.amount),
             most.equation,
         )
         for most in result.most_atp

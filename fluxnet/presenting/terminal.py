@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import os
 import sys
+from io import StringIO
 from typing import TYPE_CHECKING, NoReturn, TextIO
 
 from fluxnet.ground.diagnostic import Diagnostic
@@ -211,11 +212,13 @@ class Terminal:
         print("\n".join(lines), file=self.stream, end="")
 
 
-def rich_text(text: str) -> Text:
-    """Text that rich prints as it stands: brackets are units, not markup, and no line is broken."""
+def rich_text(screen: tuple[Block, ...], width: int) -> Text:
+    """A screen as rich prints it in a console of that width: brackets are units, not markup."""
     from rich.text import Text
 
-    return Text(text, no_wrap=True, overflow="ignore")
+    stream = StringIO()
+    Terminal(stream, colour=False, width=width, ascii_only=False).show(screen)
+    return Text(stream.getvalue().rstrip("\n"), no_wrap=True)
 
 
 def _verdicts(screen: tuple[Block, ...]) -> tuple[Block, ...]:
