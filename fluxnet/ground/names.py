@@ -230,8 +230,8 @@ class Name(Enum):
         "coefficient-zero", _N, "a ? coefficient comes out as zero",
         "The species takes no part in the reaction.", "Take it out.")
     WIDE_COEFFICIENTS = (
-        "wide-coefficients", _W, "coefficients differ by more than ten decades",
-        "Floating-point answers lose their digits at such a spread.",
+        "wide-coefficients", _E, "coefficients of one reaction differ by more than ten decades",
+        "Floating-point answers lose their digits at such a spread: fluxes would be wrong.",
         "Write the reaction per another amount, or check the numbers.")
     BEYOND_PRECISION = (
         "beyond-precision", _E, "numbers of the input lie too far apart to be computed with",

@@ -2,7 +2,7 @@ from __future__ import annotations
 
 from fractions import Fraction
 
-from fluxnet.ground.names import Name
+from fluxnet.ground.names import Name, Severity
 from fluxnet.network.coefficients import check_coefficients
 from fluxnet.network.expression import constant, parameter
 from fluxnet.network.model import Parameter
@@ -42,10 +42,11 @@ def test_a_written_zero_is_an_error(build):
     assert names(build(SPECIES, "r: 0 A -> B")) == [Name.COEFFICIENT_NOT_POSITIVE]
 
 
-def test_coefficients_of_very_different_size_are_a_warning(build):
+def test_coefficients_of_very_different_size_in_one_reaction_are_an_error(build):
     assert names(build(SPECIES, "r: 1000000000000 A -> 0.000000000001 B")) == [
         Name.WIDE_COEFFICIENTS
     ]
+    assert Name.WIDE_COEFFICIENTS.severity is Severity.ERROR
     assert names(build(SPECIES, "r: 100000 A -> 0.001 B")) == []
 
 
