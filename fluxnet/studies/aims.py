@@ -19,6 +19,7 @@ _NUMBER = re.compile(
     r"|(?:\d{1,30}(?:\.\d{0,30})?|\.\d{1,30})(?:[eE][+-]?\d\d?)?)",
     re.ASCII,
 )
+_SIGN = re.compile(r"\s([+-])\s")
 _REACH = 10**9
 """No weight is larger, and none smaller than one by it: the other terms would vanish."""
 
@@ -43,30 +44,36 @@ class Aim:
         return tuple(q.name for _, q in self.terms if q.kind is QuantityKind.SURPLUS)
 
     def __str__(self) -> str:
-        parts = (f"{w} {_words(q)}" if w != 1 else _words(q) for w, q in self.terms)
-        return f"{self.sense.value} {' + '.join(parts)}"
+        parts = [(w < 0, f"{abs(w)} " * (abs(w) != 1) + _words(q)) for w, q in self.terms]
+        (less, first), *others = parts
+        rest = "".join(f" {'-' if minus else '+'} {words}" for minus, words in others)
+        return f"{self.sense.value} {'-' if less else ''}{first}{rest}"
 
 
 def read_aim(text: str, sense: Sense, network: Network) -> Aim:
     """The aim that a user names: ``ethanol``, ``in glucose``, ``mu``, ``oxphos``, ``ATP``.
 
     A boundary species stands for its release, or its uptake after ``in``; a substrate for its
-    uptake; a carrier for its surplus. A weighted sum is ``2 ethanol + lactate``.
+    uptake; a carrier for its surplus; ``flux oxphos`` is the reaction as screens name it. A
+    weighted sum is ``2 ethanol + lactate``, a difference ``ethanol - acetate``.
 
     Raises
     ------
     MisuseError
         Where a name is none of the network's, with the nearest.
     """
-    terms = tuple(_read_term(part.split(), network) for part in text.split(" + "))
+    first, *others = _SIGN.split(text)
+    signs = (1, *(-1 if sign == "-" else 1 for sign in others[::2]))
+    parts = (first, *others[1::2])
+    terms = tuple(_read_term(p.split(), k, network) for k, p in zip(signs, parts, strict=True))
     return Aim(sense, terms)
 
 
-def _read_term(words: Sequence[str], network: Network) -> tuple[Fraction, Quantity]:
-    weight = Fraction(1)
+def _read_term(words: Sequence[str], sign: int, network: Network) -> tuple[Fraction, Quantity]:
+    weight = Fraction(sign)
     rest = list(words)
     if len(rest) > 1 and _NUMBER.fullmatch(rest[0]):
-        weight = _read_weight(rest.pop(0))
+        weight *= _read_weight(rest.pop(0))
     direction = None
     if len(rest) > 1 and rest[0] in ("in", "out"):
         direction = Direction(rest.pop(0))
@@ -76,6 +83,8 @@ def _read_term(words: Sequence[str], network: Network) -> tuple[Fraction, Quanti
         raise MisuseError(
             "an aim is no ratio: fix the lower part with a limit, and aim at the upper one"
         )
+    if len(rest) == 2 and rest[0] == "flux" and network.find_reaction(rest[1]) is not None:
+        return weight, Quantity(QuantityKind.FLUX, rest[1])
     if len(rest) != 1:
         raise MisuseError(f"an aim is a name, not {' '.join(words) or 'nothing'!r}")
     return weight, _find_quantity(rest[0], direction, network)

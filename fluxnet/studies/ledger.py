@@ -83,7 +83,7 @@ def keep_ledger(
     lines: list[LedgerLine] = []
     for k, place in enumerate(places):
         parts = rows[k] * fluxes
-        made, spent = float(parts[parts > 0].sum()), float(-parts[parts < 0].sum())
+        made, spent = float(parts[parts > 0].sum()), 0.0 - float(parts[parts < 0].sum())
         sd = None if sds is None or np.isnan(sds[k]) else float(sds[k])
         lines.append(
             LedgerLine(

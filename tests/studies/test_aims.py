@@ -28,6 +28,7 @@ def network() -> Network:
         ("CO2 in", Quantity(QuantityKind.RATE, "CO2", Direction.IN)),
         ("mu", Quantity(QuantityKind.MU)),
         ("oxphos", Quantity(QuantityKind.FLUX, "oxphos")),
+        ("flux oxphos", Quantity(QuantityKind.FLUX, "oxphos")),
         ("ATP", Quantity(QuantityKind.SURPLUS, "ATP")),
     ],
 )
@@ -42,6 +43,14 @@ def test_a_weighted_sum_is_read(network: Network) -> None:
 
     assert [weight for weight, _ in aim.terms] == [Fraction(5, 2), 1]
     assert str(aim) == "minimise 5/2 ethanol out + X out"
+
+
+def test_a_difference_is_read_and_told(network: Network) -> None:
+    aim = read_aim("ethanol - 2 X + mu", Sense.MAXIMISE, network)
+
+    assert [weight for weight, _ in aim.terms] == [1, -2, 1]
+    assert str(aim) == "maximise ethanol out - 2 X out + mu"
+    assert str(read_aim("-3 X", Sense.MINIMISE, network)) == "minimise -3 X out"
 
 
 @pytest.mark.parametrize("text", ["ethnol", "pyruvate", "", "ethanol lactate"])

@@ -56,6 +56,16 @@ def test_the_nets_of_each_carrier_add_up_to_zero(network: Network, fluxes: np.nd
         assert sum(x.net for x in lines if x.carrier == carrier) == pytest.approx(0, abs=1e-12)
 
 
+def test_nothing_made_or_spent_is_a_plain_zero(network: Network, fluxes: np.ndarray) -> None:
+    matrix = stoichiometry(network)
+    places = ledger_places(network, matrix)
+    lines = keep_ledger(places, ledger_rows(network, matrix, matrix.floats({}), places), fluxes)
+
+    zeros = [x for line in lines for x in (line.made, line.spent) if x == 0]
+    assert len(zeros) == 4  # ATP: once not spent, twice not made; growth spends no NADH
+    assert not np.signbit(zeros).any()
+
+
 def test_made_and_spent_are_summed_inside_a_compartment(
     network: Network, fluxes: np.ndarray
 ) -> None:
