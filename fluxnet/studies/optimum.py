@@ -8,42 +8,30 @@ from dataclasses import replace
 import numpy as np
 
 from fluxnet.network.biomass import biomasses
-from fluxnet.network.model import Network, Quantity, QuantityKind
-from fluxnet.rates.kinds import RateKind
+from fluxnet.network.model import Network
 from fluxnet.rates.measured import Run
-from fluxnet.solving.alter import with_row, without_bounds
+from fluxnet.solving.alter import without_bounds
 from fluxnet.solving.build import Built, build_problem
-from fluxnet.solving.classify import classify
 from fluxnet.solving.conflict import find_conflict, least_change
-from fluxnet.solving.equalities import find_equalities
 from fluxnet.solving.flux_fit import FluxKind
 from fluxnet.solving.least_flux import least_total_flux
 from fluxnet.solving.linear import LinearSolution, Outcome, Programme, worst_violation
-from fluxnet.solving.problem import Problem, Row, RowKind
-from fluxnet.solving.quantities import default_direction, quantity_row
+from fluxnet.solving.problem import Problem, RowKind
 from fluxnet.solving.ranges import find_ranges
 from fluxnet.solving.unbounded import explain_unbounded
+from fluxnet.studies.aim_problem import PRICE, aim_cost, hold_optimum, open_carriers
 from fluxnet.studies.aims import Aim, Sense
-from fluxnet.studies.settling import Array, Span, Spans, keep_account
-from fluxnet.studies.solution import (
-    BindingLimit,
-    FluxEstimate,
-    FluxSolution,
-    RateEstimate,
-    SolveStatus,
-)
+from fluxnet.studies.optimum_rates import estimate_rates, is_point
+from fluxnet.studies.settling import Array, Span, keep_account
+from fluxnet.studies.solution import BindingLimit, FluxEstimate, FluxSolution, SolveStatus
 from fluxnet.studies.telling import (
     tell_infeasible,
     tell_optimum,
     tell_unbounded,
     tell_violations,
 )
-from fluxnet.studies.units import rate_unit
 
 __all__ = ["optimise"]
-
-# A price below this is the solver's own tolerance.
-_PRICE = 1e-8
 
 
 def optimise(
@@ -62,8 +50,8 @@ def optimise(
         With status OPTIMAL, INFEASIBLE or UNBOUNDED.
     """
     built = build_problem(network, run, within=within)
-    problem = _open_carriers(built, aim)
-    cost = _cost(built, aim)
+    problem = open_carriers(built, aim)
+    cost = aim_cost(built, aim)
     programme = Programme(problem)
     best = programme.maximise(cost) if aim.sense is Sense.MAXIMISE else programme.minimise(cost)
     frame = FluxSolution(
@@ -99,7 +87,7 @@ def optimise(
             least_change=change,
             words=tell_infeasible(conflict, change, within),
         )
-    return _at_optimum(frame, built, problem, cost, best, fraction)
+    return _at_optimum(frame, built, problem, cost, best, aim.sense, fraction)
 
 
 def _at_optimum(
@@ -108,9 +96,10 @@ def _at_optimum(
     problem: Problem,
     cost: Array,
     best: LinearSolution,
+    sense: Sense,
     fraction: float,
 ) -> FluxSolution:
-    at_best = _hold(problem, cost, best, fraction)
+    at_best = hold_optimum(problem, cost, best, sense, fraction)
     fluxes = least_total_flux(at_best)
     ranges = find_ranges(at_best)
     estimates = tuple(
@@ -124,7 +113,7 @@ def _at_optimum(
             best_low=float(ranges.low[j]),
             best_high=float(ranges.high[j]),
             kind=FluxKind.DETERMINED
-            if _is_point(ranges.low[j], ranges.high[j])
+            if is_point(ranges.low[j], ranges.high[j])
             else FluxKind.UNDETERMINED,
         )
         for j, reaction in enumerate(built.network.reactions)
@@ -140,7 +129,7 @@ def _at_optimum(
         optimum=best.objective + 0.0,
         unheld=_unheld(problem, cost, frame.aim),
         fluxes=estimates,
-        rates=_rates(built, fluxes, spans, frame.unit),
+        rates=estimate_rates(built, fluxes, spans, frame.unit),
         ledger=account.ledger,
         equations=account.equations,
         yields=account.yields,
@@ -163,151 +152,6 @@ def _unheld(problem: Problem, cost: Array, aim: Aim | None) -> float | None:
     return free.objective if free.outcome is not Outcome.FAILED else None
 
 
-def _is_point(low: float, high: float) -> bool:
-    """Whether a range is as narrow as the solver's own tolerance leaves it."""
-    return high - low <= 1e-6 * max(1.0, abs(low), abs(high))
-
-
-def _rates(
-    built: Built, fluxes: Array, spans: Spans, unit: str
-) -> tuple[RateEstimate, ...]:
-    """The measured quantities, then the boundary rates that were not measured."""
-    measured = {row.quantity: row for row in built.problem.rows if row.value is not None}
-    boundary = [
-        Quantity(QuantityKind.RATE, s.name, default_direction(s.role))
-        for s in built.network.boundary
-    ]
-    asked = [
-        *(q for q in measured if q is not None and q.kind is not QuantityKind.RATIO),
-        *(q for q in boundary if not _is_measured(q, measured)),
-    ]
-    rows = np.array(
-        [
-            quantity_row(built.network, built.stoichiometry, q, built.values, basis=built.basis)
-            for q in asked
-        ]
-    ).reshape(len(asked), len(fluxes))
-    span = spans(rows, {})
-    values = rows @ fluxes
-    tested = _tested(built)
-    estimates: list[RateEstimate] = []
-    for k, quantity in enumerate(asked):
-        row = measured.get(quantity)
-        point = _is_point(span.low[k], span.high[k])
-        if row is not None:
-            kind = RateKind.BALANCEABLE if quantity in tested else RateKind.NOT_BALANCEABLE
-        else:
-            kind = RateKind.CALCULABLE if point else RateKind.NOT_CALCULABLE
-        estimates.append(
-            RateEstimate(
-                quantity=quantity,
-                unit=rate_unit(quantity, unit),
-                measured=row.value if row is not None else None,
-                sd=row.sd if row is not None else None,
-                reconciled=float(values[k]) + 0.0,
-                reconciled_sd=None,
-                low=float(span.low[k]),
-                high=float(span.high[k]),
-                z=None,
-                kind=kind,
-                reversed_=bool(values[k] < -1e-9) and quantity.direction is not None,
-            )
-        )
-    return tuple(estimates)
-
-
-def _is_measured(quantity: Quantity, measured: Mapping[Quantity | None, Row]) -> bool:
-    return any(q is not None and q.name == quantity.name for q in measured)
-
-
-def _tested(built: Built) -> set[Quantity]:
-    """The measured quantities that the others test."""
-    structure = classify(find_equalities(built))
-    places = (
-        *structure.exact.soft,
-        *(e.place for e in structure.exact.equalities if e.is_measured),
-    )
-    rows = built.problem.rows
-    return {
-        quantity
-        for place, balanceable in zip(places, structure.balanceable, strict=False)
-        if balanceable and (quantity := rows[place].quantity) is not None
-    }
-
-
-def _cost(built: Built, aim: Aim) -> Array:
-    cost = np.zeros(len(built.problem.columns))
-    for weight, quantity in aim.terms:
-        row = quantity_row(
-            built.network, built.stoichiometry, quantity, built.values, basis=built.basis
-        )
-        cost += float(weight) * row
-    return cost
-
-
-def _open_carriers(built: Built, aim: Aim) -> Problem:
-    """The problem in which an aimed-at carrier may leave, for this question only.
-
-    Its balance becomes "made at least as much as spent", and reactions that do nothing but
-    spend it stand at their least: else they would take the surplus.
-    """
-    problem = built.problem
-    low, high = problem.row_low.copy(), problem.row_high.copy()
-    column_high = problem.column_high.copy()
-    for name in aim.surplus:
-        for i, row in enumerate(problem.rows):
-            if row.kind is RowKind.BALANCE and row.name == name:
-                high[i] = np.inf
-        for j, reaction in enumerate(built.network.reactions):
-            only = not reaction.right and [t.species for t in reaction.left] == [name]
-            if only:
-                column_high[j] = _least_of(problem, j)
-    return replace(problem, row_low=low, row_high=high, column_high=column_high)
-
-
-def _least_of(problem: Problem, j: int) -> float:
-    """The lower limit or measured value of one flux, else 0."""
-    least = max(0.0, float(problem.column_low[j]))
-    for i, row in enumerate(problem.rows):
-        if row.quantity is None or row.quantity.kind is not QuantityKind.FLUX:
-            continue
-        if row.quantity.name == problem.columns[j]:
-            held = row.value if row.value is not None else float(problem.row_low[i])
-            if np.isfinite(held):
-                least = max(least, held)
-    return least
-
-
-def _hold(problem: Problem, cost: Array, best: LinearSolution, fraction: float) -> Problem:
-    """The problem with the aim held at its optimum, or between that and a fraction of it.
-
-    All optima, and nothing else, meet the bounds of the rows and columns with a price exactly
-    (complementary slackness): holding these asks for no tolerance.
-    """
-    if fraction < 1:
-        low, high = sorted((best.objective * fraction, best.objective))
-        return with_row(problem, Row(RowKind.LIMIT, "the aim near its optimum"), cost, low, high)
-    values = problem.matrix @ best.fluxes
-    rows = _pressed(problem.row_low, problem.row_high, values, best.row_prices)
-    columns = _pressed(
-        problem.column_low, problem.column_high, best.fluxes, best.column_prices
-    )
-    return replace(
-        problem, row_low=rows[0], row_high=rows[1], column_low=columns[0], column_high=columns[1]
-    )
-
-
-def _pressed(low: Array, high: Array, values: Array, prices: Array) -> tuple[Array, Array]:
-    """Bounds that hold what has a price at the bound where it stands."""
-    low, high = low.copy(), high.copy()
-    for i in np.flatnonzero(np.abs(prices) > _PRICE):
-        if abs(values[i] - low[i]) <= abs(high[i] - values[i]):
-            high[i] = low[i]
-        else:
-            low[i] = high[i]
-    return low, high
-
-
 def _binding(
     problem: Problem, best: LinearSolution, within: float | None
 ) -> tuple[BindingLimit, ...]:
@@ -315,7 +159,7 @@ def _binding(
     found: list[BindingLimit] = []
     for i, row in enumerate(problem.rows):
         price = float(best.row_prices[i])
-        if row.kind in (RowKind.BALANCE, RowKind.ROLE) or abs(price) <= _PRICE:
+        if row.kind in (RowKind.BALANCE, RowKind.ROLE) or abs(price) <= PRICE:
             continue
         value = float(problem.matrix[i] @ best.fluxes)
         name = row.name

@@ -1,0 +1,115 @@
+from __future__ import annotations
+
+import pytest
+
+from fluxnet.ground.errors import MisuseError
+from fluxnet.network.model import Network
+from fluxnet.reading.model import read_model_text
+from fluxnet.studies.solution import FluxSolution, SolveStatus
+from fluxnet.studies.solve import solve_network
+from fluxnet.tables.rates_table import read_rates_text
+
+# Two products from one sugar: x costs ATP, y gives it.
+TEXT = """
+substrate glucose
+product ethanol, lactate
+exchange CO2
+carrier ATP carries energy
+carrier NADH
+inside pyruvate
+compartment a
+    g : glucose -> 2 pyruvate + 2 ATP + 2 NADH
+    f : pyruvate + NADH -> ethanol + CO2
+    l : pyruvate + NADH -> lactate
+compartment m
+    upkeep : ATP -> nothing
+limit glucose <= 10
+"""
+
+
+@pytest.fixture(scope="module")
+def network() -> Network:
+    network = read_model_text(TEXT).network
+    assert network is not None
+    return network
+
+
+def best(network: Network, **options: object) -> FluxSolution:
+    (run,) = solve_network(network, **options).runs  # type: ignore[arg-type]
+    return run
+
+
+def flux(run: FluxSolution, name: str) -> tuple[float, float, float]:
+    found = next(f for f in run.fluxes if f.reaction == name)
+    return found.low, found.value, found.high
+
+
+def test_at_the_optimum_every_flux_has_its_range_and_no_noise(network: Network) -> None:
+    run = best(network, maximise="ethanol")
+
+    assert run.status is SolveStatus.OPTIMAL
+    assert run.optimum == 20.0
+    assert flux(run, "l") == (0.0, 0.0, 0.0)
+    assert [limit.name for limit in run.limits] == ["limit glucose <= 10"]
+    assert run.limits[0].worth == pytest.approx(2.0)
+
+
+def test_near_the_optimum_ranges_are_those_of_the_fraction(network: Network) -> None:
+    run = best(network, maximise="ethanol", fraction=0.75)
+    low, _, high = flux(run, "f")
+
+    assert (low, high) == (pytest.approx(15), pytest.approx(20))
+    assert flux(run, "l")[2] == pytest.approx(5)
+
+
+def test_a_fraction_of_a_least_value_allows_larger_ones(network: Network) -> None:
+    text = TEXT + "limit ethanol >= 6\n"
+    bound = read_model_text(text).network
+    assert bound is not None
+    run = best(bound, minimise="glucose", fraction=0.5)
+    low, _, high = flux(run, "g")
+
+    assert run.optimum == pytest.approx(3)
+    assert (low, high) == (pytest.approx(3), pytest.approx(6))
+
+
+def test_the_surplus_of_a_carrier_is_what_its_spenders_leave(network: Network) -> None:
+    run = best(network, maximise="ATP")
+
+    assert run.optimum == pytest.approx(20)
+    assert flux(run, "upkeep") == (0.0, 0.0, 0.0)
+
+
+def test_an_aim_that_is_measured_is_told_without_its_own_row_as_well(network: Network) -> None:
+    table = read_rates_text(
+        "species,direction,rate,sd,unit\nethanol,out,8,0.5,mmol/g/h\n", network=network
+    ).table
+    assert table is not None
+    (run,) = solve_network(network, table, maximise="ethanol").runs
+
+    assert run.optimum == pytest.approx(9)
+    assert run.unheld == pytest.approx(20)
+    assert "Without its own measurement it is 20" in run.words
+
+
+def test_without_a_limit_the_aim_has_no_end_and_the_missing_limit_is_named() -> None:
+    network = read_model_text(TEXT.replace("limit glucose <= 10", "")).network
+    assert network is not None
+    run = best(network, maximise="ethanol")
+
+    assert run.status is SolveStatus.UNBOUNDED
+    assert run.unbounded is not None
+    assert run.unbounded.missing_limit == "glucose"
+
+
+@pytest.mark.parametrize(
+    "options",
+    [
+        {"maximise": "ethanol", "minimise": "lactate"},
+        {"maximise": "ethanol", "fraction": 1.5},
+        {"maximise": "ethanol", "within": -1.0},
+    ],
+)
+def test_what_makes_no_question_is_refused(network: Network, options: dict[str, object]) -> None:
+    with pytest.raises(MisuseError):
+        best(network, **options)
