@@ -170,7 +170,7 @@ class _Soft:
         """The quantities' own values: of a ratio A / B, not of its row A - r B."""
         values: Vector = self.rows @ fluxes
         for k, row in self.below.items():
-            under = float(row @ fluxes)
+            under = _sum_of(row, fluxes)
             values[k] = self.ratios[k] + (values[k] / under if under else 0.0)
         return values
 
@@ -192,7 +192,7 @@ class _Soft:
         rows, values, sds = self.rows.copy(), self.values.copy(), self.sds.copy()
         now = self.values_at(fluxes)
         for k, row in self.below.items():
-            under = float(row @ fluxes)
+            under = _sum_of(row, fluxes)
             if under:
                 rows[k] = rows[k] + (self.ratios[k] - now[k]) * row
                 values[k] = (self.ratios[k] - now[k]) * under
@@ -220,6 +220,13 @@ class _Soft:
             row_high=np.concatenate([hard.row_high, high, np.full(more, np.inf)]),
         )
         return Programme(problem).is_feasible()
+
+
+def _sum_of(row: Vector, fluxes: Vector) -> float:
+    """The value of a row, 0 where it is the rounding of its terms or of the other fluxes."""
+    total = float(row @ fluxes)
+    size = float(np.abs(row) @ np.abs(fluxes)) + float(np.abs(fluxes).max(initial=0.0))
+    return total if abs(total) > 1e-9 * size else 0.0
 
 
 def _soft_rows(problem: Problem) -> _Soft:
