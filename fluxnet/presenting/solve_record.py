@@ -38,8 +38,12 @@ def _run(run: FluxSolution) -> Record:
         "unit": run.unit,
         "aim": None if run.aim is None else str(run.aim),
         "optimum": run.optimum,
+        "optimum_low": None if run.span is None else run.span.low,
+        "optimum_high": None if run.span is None else run.span.high,
         "optimum_without_own_row": run.unheld,
+        "fraction": None if run.aim is None else run.fraction,
         "within": run.within,
+        "smallest_within": run.smallest_within,
         "fluxes": [
             {
                 "reaction": f.reaction,

@@ -101,6 +101,13 @@ def _assumptions(run: FluxSolution) -> list[Block]:
         lines += [
             Sentence(f"Pulled by a bound: {words}.", Mood.DOUBTFUL) for words in run.test.pulling
         ]
+    if run.smallest_within is not None and run.status is SolveStatus.OPTIMAL:
+        lines.append(
+            Sentence(
+                f"Measured values are held within {run.within:g} sd; the least within which they "
+                f"can hold together is {format_number(run.smallest_within, 3)}."
+            )
+        )
     if run.left_free and run.run is not None:
         lines.append(Sentence(f"Not measured, left free: {', '.join(run.left_free)}."))
     lines += [Sentence(f"Note: {note.message} ({note.name.value}).") for note in run.notes]

@@ -37,6 +37,11 @@ def _title(run: FluxSolution, text: str) -> str:
     return f"{text} [{run.unit}]{doubt}"
 
 
+def _at(run: FluxSolution) -> str:
+    """At which part of the optimum fluxes are shown."""
+    return "at the optimum" if run.fraction == 1 else f"at {run.fraction:.4g} of it or better"
+
+
 def _rates(run: FluxSolution) -> Table:
     at_best = run.aim is not None
     columns = (
@@ -45,7 +50,7 @@ def _rates(run: FluxSolution) -> Table:
         Column("way", "direction"),
         Column("measured", "measured", align=Align.RIGHT),
         Column("", "measured_sd", sd_of="measured"),
-        Column("at the optimum" if at_best else "solved", "value", align=Align.RIGHT),
+        Column(_at(run) if at_best else "solved", "value", align=Align.RIGHT),
         Column("", "sd"),
         Column("", "", sd_of="value"),
         Column("range there" if at_best else "95 % range", "", align=Align.RIGHT),
@@ -97,7 +102,7 @@ def _fluxes(run: FluxSolution) -> Table:
         Column("flux", "value", align=Align.RIGHT),
         Column("", "sd"),
         Column("", "", sd_of="value"),
-        Column("range at the optimum" if at_best else "95 % range", "", align=Align.RIGHT),
+        Column(f"range {_at(run)}" if at_best else "95 % range", "", align=Align.RIGHT),
         Column("kind", "kind"),
         Column("", "low"),
         Column("", "high"),

@@ -22,6 +22,7 @@ from fluxnet.solving.unbounded import explain_unbounded
 from fluxnet.studies.aim_problem import PRICE, aim_cost, hold_optimum, open_carriers
 from fluxnet.studies.aims import Aim, Sense
 from fluxnet.studies.optimum_rates import estimate_rates, is_point
+from fluxnet.studies.optimum_span import span_optimum
 from fluxnet.studies.settling import Array, Span, keep_account
 from fluxnet.studies.solution import BindingLimit, FluxEstimate, FluxSolution, SolveStatus
 from fluxnet.studies.telling import (
@@ -61,6 +62,7 @@ def optimise(
         unit=run.unit if run else network.basis.value,
         words="",
         aim=aim,
+        fraction=fraction,
         within=within,
         left_free=built.left_free,
         left_out=built.left_out,
@@ -85,6 +87,7 @@ def optimise(
             status=SolveStatus.INFEASIBLE,
             conflict=conflict,
             least_change=change,
+            smallest_within=change.common_k,
             words=tell_infeasible(conflict, change, within),
         )
     return _at_optimum(frame, built, problem, cost, best, aim.sense, fraction)
@@ -128,6 +131,8 @@ def _at_optimum(
         frame,
         optimum=best.objective + 0.0,
         unheld=_unheld(problem, cost, frame.aim),
+        span=span_optimum(built, frame.aim, best.objective) if frame.aim is not None else None,
+        smallest_within=least_change(problem).common_k if built.measured else None,
         fluxes=estimates,
         rates=estimate_rates(built, fluxes, spans, frame.unit),
         ledger=account.ledger,

@@ -20,7 +20,7 @@ if TYPE_CHECKING:
 
 __all__ = [
     "BindingLimit", "FluxEstimate", "FluxKind", "FluxSolution", "FluxTest", "MovedParameter",
-    "RateEstimate", "RateKind", "Solution", "SolveStatus",
+    "OptimumSpan", "RateEstimate", "RateKind", "Solution", "SolveStatus",
 ]
 
 
@@ -130,11 +130,27 @@ class BindingLimit:
 
 
 @record
+class OptimumSpan:
+    """The optimum over ± 2 sd of the ``parameters``, which otherwise stand at their values.
+
+    ``feasible`` is False where at some of these values nothing is: the ends are then those of
+    the others.
+    """
+
+    low: float
+    high: float
+    parameters: tuple[str, ...]
+    feasible: bool = True
+
+
+@record
 class FluxSolution:
     """The answer for one run (None: the model's limits alone).
 
     ``extras`` are the table's columns carried through. ``unheld`` is the optimum of an aim
-    that is measured itself, without its own row.
+    that is measured itself, without its own row; ``span`` the optimum over the parameters'
+    errors; ``fraction`` the share of the optimum at which fluxes and ranges are given.
+    Measured values are held within ``within`` sds and could be within ``smallest_within``.
     """
 
     run: str | None
@@ -145,7 +161,10 @@ class FluxSolution:
     aim: Aim | None = None
     optimum: float | None = None
     unheld: float | None = None
+    span: OptimumSpan | None = None
+    fraction: float = 1.0
     within: float | None = None
+    smallest_within: float | None = None
     fluxes: tuple[FluxEstimate, ...] = ()
     rates: tuple[RateEstimate, ...] = ()
     test: FluxTest | None = None

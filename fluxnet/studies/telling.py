@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
-from math import isinf
+from math import isclose, isinf
 from typing import TYPE_CHECKING
 
+from fluxnet.network.model import Direction
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.violations import find_violations
-from fluxnet.studies.solution import FluxKind, FluxSolution, FluxTest, RateKind
+from fluxnet.studies.solution import FluxKind, FluxSolution, FluxTest, OptimumSpan, RateKind
 
 if TYPE_CHECKING:
     from fluxnet.solving.conflict import Conflict, LeastChange
@@ -70,9 +71,9 @@ def _largest_spender(solution: FluxSolution) -> str:
 def tell_optimum(solution: FluxSolution) -> str:
     """What an aim's best value is, per what, and what holds it back."""
     value = f"{solution.optimum:.4g} {_aim_unit(solution)}"
-    words = f"The best that the network allows, {solution.aim}: {value}"
-    share = _share(solution)
-    words += f"{share}. "
+    words = f"The best that the network allows, {solution.aim}: {value}{_share(solution)}. "
+    if solution.span is not None:
+        words += _span_words(solution.span, _aim_unit(solution))
     if solution.limits:
         words += f"It is held back by {_listed([limit.name for limit in solution.limits[:3]])}."
     else:
@@ -83,6 +84,16 @@ def tell_optimum(solution: FluxSolution) -> str:
     return words
 
 
+def _span_words(span: OptimumSpan, unit: str) -> str:
+    """Where the optimum lies over the errors of the parameters."""
+    names = _listed(list(span.parameters))
+    gap = "" if span.feasible else "; at some of these values nothing is feasible"
+    if isclose(span.low, span.high, rel_tol=1e-9, abs_tol=1e-12):
+        return f"Within ± 2 sd of {names} it stays the same{gap}. "
+    low, high = ("no end" if isinf(end) else f"{end:.4g}" for end in (span.low, span.high))
+    return f"Over ± 2 sd of {names} it lies between {low} and {high} {unit}{gap}. "
+
+
 def _aim_unit(solution: FluxSolution) -> str:
     aim = solution.aim
     is_mu = aim is not None and all(str(quantity) == "mu" for _, quantity in aim.terms)
@@ -90,11 +101,14 @@ def _aim_unit(solution: FluxSolution) -> str:
 
 
 def _share(solution: FluxSolution) -> str:
-    """The aim's yield where it is the release of one product."""
+    """The aim's yield where it is the release of one product, and shown is the optimum."""
     aim = solution.aim
-    if aim is None or len(aim.terms) != 1:
+    if aim is None or len(aim.terms) != 1 or solution.fraction < 1:
         return ""
-    name = aim.terms[0][1].name
+    weight, quantity = aim.terms[0]
+    if weight != 1 or quantity.direction is not Direction.OUT:
+        return ""
+    name = quantity.name
     for line in solution.yields:
         if line.product == name and line.per_mole is not None:
             mass = f", {line.per_mass:.4g} g/g" if line.per_mass is not None else ""
