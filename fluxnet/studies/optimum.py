@@ -132,7 +132,7 @@ def _at_optimum(
         optimum=best.objective + 0.0,
         unheld=_unheld(problem, cost, frame.aim),
         span=span_optimum(built, frame.aim, best.objective) if frame.aim is not None else None,
-        smallest_within=least_change(problem).common_k if built.measured else None,
+        smallest_within=_smallest_within(built, problem),
         fluxes=estimates,
         rates=estimate_rates(built, fluxes, spans, frame.unit),
         ledger=account.ledger,
@@ -142,6 +142,20 @@ def _at_optimum(
         residual=max(best.residual, ranges.residual, worst_violation(at_best, fluxes)),
     )
     return replace(solution, words=tell_optimum(solution))
+
+
+def _smallest_within(built: Built, problem: Problem) -> float | None:
+    """The least number of sds within which all measured values can hold together.
+
+    None where nothing is measured, or where it is reached only as rates grow without end
+    (a measured ratio of two rates that nothing limits).
+    """
+    if not built.measured:
+        return None
+    try:
+        return least_change(problem).common_k
+    except ArithmeticError:
+        return None
 
 
 def _unheld(problem: Problem, cost: Array, aim: Aim | None) -> float | None:

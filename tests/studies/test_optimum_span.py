@@ -139,6 +139,17 @@ def test_the_least_number_of_sds_that_measured_values_need_is_told() -> None:
     assert tight.smallest_within == pytest.approx(1.5, abs=1e-6)
 
 
+def test_a_ratio_that_is_met_only_by_endless_rates_hides_no_optimum() -> None:
+    from fluxnet.cli.new import MODEL as RESPIRING
+
+    text = RESPIRING + "limit ethanol >= 3\nlimit CO2 / oxygen = 1.05 ± 0.03\n"
+
+    (run,) = fx.solve(fx.read_model_text(text), minimise="ethanol").runs
+
+    assert run.status.value == "optimal"
+    assert run.optimum == pytest.approx(3)
+
+
 def test_a_fraction_of_an_optimum_is_not_told_as_the_optimum_s_yield() -> None:
     model = fx.read_model_text(MODEL)
     whole, part = (fx.solve(model, maximise="ethanol", fraction=f) for f in (1.0, 0.9))
