@@ -8,11 +8,16 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 import pytest
+from hypothesis import settings
 
 if TYPE_CHECKING:
     from fluxnet.network.model import Network
     from fluxnet.rates.measured import Run
     from fluxnet.studies.solution import FluxSolution
+
+# The seed of a random test is the hash of its name: a failure can be had again.
+settings.register_profile("by name", derandomize=True)
+settings.load_profile("by name")
 
 MODELS = Path(__file__).resolve().parent.parent / "models"
 
