@@ -5,6 +5,7 @@ from __future__ import annotations
 import io
 import json
 import math
+from collections.abc import Callable
 from typing import Any
 
 from hypothesis import HealthCheck, given, settings
@@ -57,8 +58,20 @@ def finite(value: Any) -> bool:
     return not isinstance(value, float) or math.isfinite(value)
 
 
-def show(answer: fx.Answer[Any]) -> None:
-    """Every face of an answer, at a width that is usual and at a narrow one."""
+def show(ask: Callable[[], fx.Answer[Any]]) -> None:
+    """Every face of an answer, at a width that is usual and at a narrow one; or what is wrong."""
+    try:
+        answer = ask()
+    except fx.InputError as fault:
+        told = fault
+    else:
+        show_faces(answer)
+        return
+    assert told.diagnostics
+    assert str(told)
+
+
+def show_faces(answer: fx.Answer[Any]) -> None:
     assert str(answer).strip()
     assert "nan" not in str(answer).split()
     assert answer._repr_html_().startswith("<div>")
@@ -69,23 +82,17 @@ def show(answer: fx.Answer[Any]) -> None:
         Console(file=io.StringIO(), width=width).print(answer)
 
 
-@given(tables(), limits)
-@settings(max_examples=60, suppress_health_check=[HealthCheck.too_slow], deadline=None)
-def test_showing_a_closure_or_a_fit_never_raises(table: str, lines: list[str]) -> None:
-    try:
+@given(tables(), limits, st.sampled_from(["closure", "closure of the model", "fit"]))
+@settings(max_examples=120, suppress_health_check=[HealthCheck.too_slow], deadline=None)
+def test_showing_a_closure_or_a_fit_never_raises(table: str, lines: list[str], what: str) -> None:
+    def ask() -> fx.Answer[Any]:
         model = fx.read_model_text("\n".join([MODEL, *lines]) + "\n")
         rates = fx.read_rates_text(table, model)
-    except fx.InputError as fault:
-        assert fault.diagnostics
-        return
-    for ask in (lambda: fx.closure(rates), lambda: fx.closure(rates, model),
-                lambda: fx.solve(model, rates)):  # fmt: skip
-        try:
-            answer = ask()
-        except fx.InputError as fault:
-            assert fault.diagnostics
-        else:
-            show(answer)
+        if what == "fit":
+            return fx.solve(model, rates)
+        return fx.closure(rates, model if what == "closure of the model" else None)
+
+    show(ask)
 
 
 @given(st.one_of(st.none(), tables()), limits, st.sampled_from(AIMS), st.booleans(),
@@ -94,25 +101,18 @@ def test_showing_a_closure_or_a_fit_never_raises(table: str, lines: list[str]) -
 def test_showing_an_optimum_never_raises(
     table: str | None, lines: list[str], aim: str, upward: bool, within: float, fraction: float
 ) -> None:
-    try:
+    def ask() -> fx.Answer[Any]:
         model = fx.read_model_text("\n".join([MODEL, *lines]) + "\n")
         rates = None if table is None else fx.read_rates_text(table, model)
-        answer = fx.solve(model, rates, within=within, fraction=fraction,
-                          **{"maximise" if upward else "minimise": aim})  # fmt: skip
-    except fx.InputError as fault:
-        assert fault.diagnostics
-    else:
-        show(answer)
+        asked = {"maximise" if upward else "minimise": aim}
+        return fx.solve(model, rates, within=within, fraction=fraction, **asked)
+
+    show(ask)
 
 
 @given(st.lists(st.sampled_from(MODEL.splitlines()), unique=True, max_size=4), limits)
 @settings(max_examples=60, suppress_health_check=[HealthCheck.too_slow], deadline=None)
 def test_showing_a_check_never_raises(lost: list[str], lines: list[str]) -> None:
     kept = [line for line in MODEL.splitlines() if line not in lost]
-    try:
-        model = fx.read_model_text("\n".join([*kept, *lines]) + "\n")
-    except fx.InputError as fault:
-        assert fault.diagnostics
-        assert str(fault)
-    else:
-        show(fx.check(model))
+
+    show(lambda: fx.check(fx.read_model_text("\n".join([*kept, *lines]) + "\n")))

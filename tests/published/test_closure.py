@@ -5,20 +5,25 @@ Each entry is written as a table of rates, read as a user's file is read, and cl
 
 from __future__ import annotations
 
+import json
+from pathlib import Path
+
 import pytest
 
+import fluxnet as fx
+from fluxnet.cli.main import run as command
 from fluxnet.solving.statistics import chi_squared_quantile
-from fluxnet.studies.closure import close_rates
 from fluxnet.studies.closure_result import RunClosure
-from fluxnet.tables.rates_table import read_rates_text
 
 HEAD = "run,species,direction,rate,sd,unit\n"
 
 
-def close(text: str, **options: str) -> RunClosure:
-    reading = read_rates_text(HEAD + text)
-    assert reading.table is not None, reading.diagnostics
-    closure = close_rates(reading.table, **options)
+def close(text: str) -> RunClosure:
+    return close_table(HEAD + text)
+
+
+def close_table(text: str) -> RunClosure:
+    closure = fx.closure(fx.read_rates_text(text)).result
     assert closure.diagnostics == ()
     (run,) = closure.runs
     return run
@@ -63,12 +68,18 @@ def test_entry_2_1_limits_of_the_test(dof: int, printed: float) -> None:
         ),
     ],
 )  # fmt: skip
-def test_entry_2_1_limits_that_a_closure_reports(rows: str, dof: int, printed: float) -> None:
-    """The same column as the limit of runs with one to five redundant balances."""
-    run = close("".join(f"run,{n},{d},{v},{'0.1' if v else ''},mmol\n"
-                        for n, d, v in (row.split(",") for row in rows.split(";"))))  # fmt: skip
-    assert run.test.dof == dof
-    assert run.test.limit == pytest.approx(printed, rel=0.01)
+def test_entry_2_1_limits_that_a_closure_reports(
+    rows: str, dof: int, printed: float, tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """The same column as the limit that ``fluxnet closure --json`` gives, one to five balances."""
+    path = tmp_path / "rates.csv"
+    lines = (row.split(",") for row in rows.split(";"))
+    text = "".join(f"run,{n},{d},{v},{'0.1' if v else ''},mmol\n" for n, d, v in lines)
+    path.write_text(HEAD + text, encoding="utf-8")
+    command(["closure", str(path), "--json"])
+    (run,) = json.loads(capsys.readouterr().out)["runs"]
+    assert run["test"]["dof"] == dof
+    assert run["test"]["limit"] == pytest.approx(printed, rel=0.01)
 
 
 def test_entry_2_2_two_constraints_in_closed_form() -> None:
@@ -217,9 +228,7 @@ def test_entry_4_4_anaerobic_yeast() -> None:
     def run_with(cells: str) -> RunClosure:
         table = f"biomass X {cells}\n" + HEAD
         table += "".join(f"run,{n},{d},{v},,C-mol/C-mol\n" for n, d, v in lines)
-        reading = read_rates_text(table)
-        assert reading.table is not None, reading.diagnostics
-        return close_rates(reading.table).runs[0]
+        return close_table(table)
 
     run = run_with("CH1.78O0.5N0.2")
     assert recovery(run, "carbon") == pytest.approx(99.9, abs=0.01)
@@ -254,9 +263,7 @@ def test_entry_7_10_growth_on_hexadecane_at_a_given_respiratory_quotient() -> No
     table = "species hexadecane C16H34\nbiomass X CH1.66O0.27N0.20\n" + HEAD
     table += "run,hexadecane,in,1,0,mmol\nrun,X,out,,,mmol\nrun,ammonia,in,,,mmol\n"
     table += "run,CO2,out,,,mmol\nrun,oxygen,in,,,mmol\nrun,CO2 out / oxygen in,,0.43,0,\n"
-    reading = read_rates_text(table)
-    assert reading.table is not None, reading.diagnostics
-    (run,) = close_rates(reading.table).runs
+    run = close_table(table)
     found = {rate.species: rate.reconciled for rate in run.rates}
     expected = {"oxygen": 12.488, "ammonia": 2.126, "X": 10.630, "CO2": 5.370}
     for name, amount in expected.items():

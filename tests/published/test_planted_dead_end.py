@@ -9,12 +9,11 @@ from __future__ import annotations
 
 import numpy as np
 
+import fluxnet as fx
 from fluxnet.ground.names import Name
 from fluxnet.network.model import Network
-from fluxnet.reading.model import ModelReading, read_model_text
 from fluxnet.solving.build import build_problem
 from fluxnet.solving.ranges import find_ranges
-from fluxnet.studies.check import check_network
 
 MODEL = """model Succinate without air
 basis mmol/g/h
@@ -50,11 +49,9 @@ limit  glucose = 1
 """
 
 
-def read(*, with_release: bool) -> tuple[ModelReading, Network]:
+def read(*, with_release: bool) -> fx.Model:
     text = MODEL.replace("{release}", ", lactate" if with_release else "")
-    reading = read_model_text(text.replace("{inside}", "" if with_release else ", lactate"))
-    assert reading.network is not None, reading.diagnostics
-    return reading, reading.network
+    return fx.read_model_text(text.replace("{inside}", "" if with_release else ", lactate"))
 
 
 def without_flux(network: Network) -> list[str]:
@@ -65,24 +62,24 @@ def without_flux(network: Network) -> list[str]:
 
 
 def test_without_its_release_lactate_is_a_dead_end_and_ldh_alone_is_blocked() -> None:
-    reading, network = read(with_release=False)
+    model = read(with_release=False)
 
-    result = check_network(network, reading.diagnostics)
+    result = fx.check(model)
 
     warnings = [d for d in result.diagnostics if d.name.severity.value != "note"]
     assert [(d.name, d.message) for d in warnings] == [
         (Name.DEAD_END, "lactate is made by ldh, but nothing uses it")
     ]
     assert result.blocked_reactions == ("ldh",)
-    assert without_flux(network) == ["ldh"]
+    assert without_flux(model.network) == ["ldh"]
     assert result.verified
 
 
 def test_with_its_release_nothing_is_blocked() -> None:
-    reading, network = read(with_release=True)
+    model = read(with_release=True)
 
-    result = check_network(network, reading.diagnostics)
+    result = fx.check(model)
 
     assert result.blocked_reactions == ()
-    assert without_flux(network) == []
+    assert without_flux(model.network) == []
     assert all(d.name is not Name.DEAD_END for d in result.diagnostics)
