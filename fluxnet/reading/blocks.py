@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import NamedTuple
 
 from fluxnet.ground.names import Name
@@ -40,7 +41,12 @@ class _Block:
 
     indentation: int
     head: s.CompartmentLine | s.VariantLine | s.AdditionLine | None
-    inner: int | None = None
+    indentations: Counter[int] = field(default_factory=Counter)
+
+    @property
+    def usual(self) -> int:
+        """How most of its lines are indented; of several, as the first is."""
+        return self.indentations.most_common(1)[0][0]
 
 
 _IN_VARIANT = (s.LimitLine, s.SettingLine, s.DropLine, s.AdditionLine, s.SpeciesLine)
@@ -54,47 +60,43 @@ def place_statements(
     listed = list(lines)
     base = min((line.indentation for line, _ in listed), default=0)
     blocks: list[_Block] = []
-    placed: list[Placed] = []
-    rejected: list[Rejected] = []
+    around: list[tuple[_Block, ...]] = []
     for line, statement in listed:
         while blocks and line.indentation <= blocks[-1].indentation:
             blocks.pop()
+        around.append(tuple(blocks))
+        if blocks:
+            blocks[-1].indentations[line.indentation] += 1
         if isinstance(statement, Unparsed):
-            _settle(line, blocks)
-            compartment, _ = _names_of(blocks)
-            rejected.append(Rejected(line, compartment.text if compartment else None))
             blocks.append(_Block(line.indentation, None))
-            continue
-        placed.append(_place(line, statement, blocks, base, findings))
-        if isinstance(statement.line, (s.CompartmentLine, s.VariantLine, s.AdditionLine)):
+        elif isinstance(statement.line, (s.CompartmentLine, s.VariantLine, s.AdditionLine)):
             blocks.append(_Block(line.indentation, statement.line))
+    placed: list[Placed] = []
+    rejected: list[Rejected] = []
+    for (line, statement), outer in zip(listed, around, strict=True):
+        compartment, variant = _names_of(outer)
+        if isinstance(statement, Unparsed):
+            rejected.append(Rejected(line, compartment.text if compartment else None))
+            continue
+        placed.append(Placed(line, statement, compartment, variant))
+        if all(block.head is not None for block in outer):
+            _check_place(line, statement.line, outer, base, findings)
     return tuple(placed), tuple(rejected)
 
 
-def _settle(line: LogicalLine, blocks: list[_Block]) -> bool:
-    """Whether a line is indented as its block is; the first line of a block decides."""
-    if not blocks:
-        return True
-    if blocks[-1].inner is None:
-        blocks[-1].inner = line.indentation
-    return blocks[-1].inner == line.indentation
-
-
-def _place(
-    line: LogicalLine,
-    statement: s.Statement,
-    blocks: list[_Block],
-    base: int,
-    findings: Findings,
-) -> Placed:
-    in_step = _settle(line, blocks)
-    compartment, variant = _names_of(blocks)
-    if not any(block.head is None for block in blocks):
-        if not in_step:
-            _out_of_step(line, blocks[-1], findings)
-        else:
-            _check_block(line, statement.line, blocks, base, findings)
-    return Placed(line, statement, compartment, variant)
+def _check_place(
+    line: LogicalLine, said: s.Line, outer: tuple[_Block, ...], base: int, findings: Findings
+) -> None:
+    """Tell a line that is not indented as most lines of its block are, or belongs elsewhere."""
+    wanted = outer[-1].usual if outer else line.indentation
+    if line.indentation != wanted:
+        findings.add(
+            Name.BAD_INDENTATION,
+            f"this line is indented by {line.indentation} columns, its block by {wanted}",
+            line, mend=f"indent it by {wanted}",
+        )
+    else:
+        _check_block(line, said, outer, base, findings)
 
 
 def _names_of(blocks: Iterable[_Block]) -> tuple[s.Word | None, s.Word | None]:
@@ -110,17 +112,8 @@ def _names_of(blocks: Iterable[_Block]) -> tuple[s.Word | None, s.Word | None]:
     return compartment, variant
 
 
-def _out_of_step(line: LogicalLine, block: _Block, findings: Findings) -> None:
-    wanted = block.inner or 0
-    findings.add(
-        Name.BAD_INDENTATION,
-        f"this line is indented by {line.indentation} columns, the block's first line by {wanted}",
-        line, mend=f"indent it by {wanted}",
-    )
-
-
 def _check_block(
-    line: LogicalLine, said: s.Line, blocks: list[_Block], base: int, findings: Findings
+    line: LogicalLine, said: s.Line, blocks: tuple[_Block, ...], base: int, findings: Findings
 ) -> None:
     head = blocks[-1].head if blocks else None
     if isinstance(said, s.ReactionLine):

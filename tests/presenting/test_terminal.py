@@ -99,3 +99,11 @@ def test_markup_in_a_name_is_shown_as_typed() -> None:
 
     assert "[bold]X[/bold] :smile:" in stream.getvalue()
     assert "[red]gl[/red]" in stream.getvalue()
+
+
+def test_a_place_that_is_a_whole_file_is_told_without_a_line() -> None:
+    found = Diagnostic(
+        Name.NOT_A_FILE, "sub is a folder", Span("a.flux", 3, 1, 2), also=(Span("sub", 0, 1, 1),)
+    )
+
+    assert diagnostic_lines(found)[-1] == "    see      sub"

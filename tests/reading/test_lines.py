@@ -4,8 +4,10 @@ from __future__ import annotations
 
 import pytest
 
+from fluxnet.ground.names import Name
 from fluxnet.ground.source import Source
 from fluxnet.reading.lines import logical_lines, without_comment
+from fluxnet.reading.model import read_model_text
 
 HEAD = "substrate glucose\nproduct ethanol, CO2\n"
 
@@ -83,6 +85,20 @@ def test_a_tab_is_four_columns(read) -> None:
                    "    b : 2 ethanol + 2 CO2 -> glucose\n")
 
     assert len(network.reactions) == 2
+
+
+@pytest.mark.parametrize("odd", ["a", "b", "c"])
+def test_one_line_out_of_step_with_its_block_is_told_once_wherever_it_stands(odd: str) -> None:
+    lines = "".join(
+        f"{'      ' if name == odd else '    '}{name} : glucose -> 2 ethanol + 2 CO2\n"
+        for name in "abc"
+    )
+    reading = read_model_text(f"{HEAD}compartment all\n{lines}")
+
+    (found,) = [d for d in reading.diagnostics if d.name is Name.BAD_INDENTATION]
+    assert found.span.line == len(HEAD.splitlines()) + 2 + "abc".index(odd)
+    assert found.message == "this line is indented by 6 columns, its block by 4"
+    assert found.mend == "indent it by 4"
 
 
 def test_a_text_that_is_indented_as_a_whole_is_read(read) -> None:

@@ -65,4 +65,4 @@ def test_a_limit_out_of_reach_is_told_at_its_line(limit: str, name: Name) -> Non
 
 
 def test_numbers_within_reach_are_taken() -> None:
-    assert errors(value="1e12", made="(PO*1e6)", limit="limit glucose = 1 ± 1e-8") == []
+    assert errors(value="1e12", made="(PO*1e-6)", limit="limit glucose = 1 ± 1e-8") == []
