@@ -183,7 +183,8 @@ def _one_sign(text: str, start: int, sign: re.Match[str], end: int) -> list[Faul
     minus = re.compile(r"\s*(-\s*\d\S*)").match(text, sign.end(), end)
     if minus:
         return [_wrong("a limit is a magnitude: it is never negative", minus.start(1),
-                       minus.end(1), "tell the direction by the words in and out")]
+                       minus.end(1), "tell a species' direction by the words in and out; to limit "
+                       "a reaction backwards, write it the other way round")]
     unit = _UNIT.search(text, sign.end(), end)
     if unit:
         cut = len(text[: unit.start("unit")].rstrip())
