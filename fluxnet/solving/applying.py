@@ -13,7 +13,10 @@ from fluxnet.solving.problem import Row
 from fluxnet.solving.quantities import default_direction, has_mu
 from fluxnet.solving.words import limit_words
 
-__all__ = ["applies", "free_species", "is_same", "is_zero", "limit_notes", "may_reverse"]
+__all__ = [
+    "applies", "empty_notes", "free_species", "is_closed", "is_same", "is_zero", "limit_notes",
+    "may_reverse",
+]  # fmt: skip
 
 
 def applies(limit: Limit, network: Network, run: Run | None) -> bool:
@@ -56,6 +59,30 @@ def may_reverse(quantity: Quantity | None, network: Network) -> bool:
         return reaction is not None and reaction.reversible
     species = network.find_species(quantity.name)
     return species is not None and species.role is Role.EXCHANGE
+
+
+def is_closed(quantity: Quantity | None, network: Network) -> bool:
+    """Whether a limit leaves a quantity no value but zero."""
+    return quantity is not None and any(
+        is_zero(limit)
+        and is_same(limit.quantity, quantity, network)
+        and (limit.low == 0 or not may_reverse(quantity, network))
+        and limit.high == 0
+        for limit in network.limits
+    )
+
+
+def empty_notes(empty: Iterable[Limit], network: Network) -> tuple[Diagnostic, ...]:
+    """Notes on measured ratios over a quantity that a limit closes."""
+    return tuple(
+        Diagnostic(
+            Name.LIMIT_LEFT_OUT,
+            f"{limit_words(limit, network)} is left out: a limit closes "
+            f"{limit.quantity.denominator}, and a ratio over nothing has no value",
+            limit.span,
+        )
+        for limit in empty
+    )
 
 
 def free_species(

@@ -20,6 +20,8 @@ __all__ = ["Change", "LeastChange", "least_change"]
 
 Vector = NDArray[np.float64]
 _PASSES = 30
+_STEEP = 1e6
+_ROUNDING = 1e-9
 
 
 @record
@@ -89,10 +91,14 @@ def _least_squares(hard: Problem, soft: _Soft) -> tuple[float, Vector]:
     high = np.append(hard.row_high[bounded], hard.column_high)
     pieces = (soft.rows, soft.values, soft.sds)
     best, least, total = np.zeros(count), np.inf, np.inf
+    usual = 0.0
     unit = median_of(soft.sds)  # tiny sds would make weights beyond the solver's tolerances
     for _ in range(_PASSES):
         sds = pieces[2] / unit
         weighted, target = pieces[0] / sds[:, None], pieces[1] / sds
+        steepness = float(np.abs(weighted).max(initial=0.0))
+        if steepness > _STEEP * (usual := usual or steepness):
+            break  # the denominator of a ratio goes to nothing: no step tells more
         answer = solve_quadratic(
             weighted.T @ weighted, -weighted.T @ target, rows, low, high
         )
@@ -170,7 +176,7 @@ class _Soft:
         """The quantities' own values: of a ratio A / B, not of its row A - r B."""
         values: Vector = self.rows @ fluxes
         for k, row in self.below.items():
-            under = _sum_of(row, fluxes)
+            under = self._under(row, fluxes)
             values[k] = self.ratios[k] + (values[k] / under if under else 0.0)
         return values
 
@@ -192,12 +198,18 @@ class _Soft:
         rows, values, sds = self.rows.copy(), self.values.copy(), self.sds.copy()
         now = self.values_at(fluxes)
         for k, row in self.below.items():
-            under = _sum_of(row, fluxes)
+            under = self._under(row, fluxes)
             if under:
                 rows[k] = rows[k] + (self.ratios[k] - now[k]) * row
                 values[k] = (self.ratios[k] - now[k]) * under
                 sds[k] = self.own[k] * abs(under)
         return rows, values, sds
+
+    def _under(self, row: Vector, fluxes: Vector) -> float:
+        """The value of a denominator, 0 where it is the rounding of what it is found with."""
+        total = float(row @ fluxes)
+        size = float(np.abs(row) @ np.abs(fluxes) + np.abs(fluxes).max(initial=0.0))
+        return total if abs(total) > _ROUNDING * (size + np.abs(self.values).max()) else 0.0
 
     def holds_within(self, hard: Problem, k: float) -> bool:
         """Whether all can hold within k sd; a ratio's bounds are exact, not linearised."""
@@ -220,13 +232,6 @@ class _Soft:
             row_high=np.concatenate([hard.row_high, high, np.full(more, np.inf)]),
         )
         return Programme(problem).is_feasible()
-
-
-def _sum_of(row: Vector, fluxes: Vector) -> float:
-    """The value of a row, 0 where it is the rounding of its terms or of the other fluxes."""
-    total = float(row @ fluxes)
-    size = float(np.abs(row) @ np.abs(fluxes)) + float(np.abs(fluxes).max(initial=0.0))
-    return total if abs(total) > 1e-9 * size else 0.0
 
 
 def _soft_rows(problem: Problem) -> _Soft:
@@ -267,7 +272,14 @@ def _changes(problem: Problem, soft: _Soft, fluxes: Vector) -> tuple[Change, ...
     labels = [row for row in problem.rows if row.sd is not None and row.sd > 0]
     now, in_sds = soft.values_at(fluxes), soft.in_sds(fluxes)
     return tuple(
-        Change(label.name, label.quantity, float(was), float(new), float(sds))
-        for label, was, new, sds in zip(labels, soft.measured, now, in_sds, strict=True)
+        Change(label.name, label.quantity, float(was), _rounded(new, own), float(sds))
+        for label, was, new, sds, own in zip(
+            labels, soft.measured, now, in_sds, soft.own, strict=True
+        )
         if label.quantity is not None
     )
+
+
+def _rounded(value: float, sd: float) -> float:
+    """The value, 0 where it is nothing beside its sd."""
+    return float(value) if abs(value) > _ROUNDING * sd else 0.0

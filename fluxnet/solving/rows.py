@@ -25,7 +25,9 @@ from fluxnet.network.model import (
 from fluxnet.rates.measured import Run
 from fluxnet.solving.applying import (
     applies,
+    empty_notes,
     free_species,
+    is_closed,
     is_same,
     is_zero,
     limit_notes,
@@ -109,11 +111,14 @@ def lay_rows(
     readings = _run_readings(run)
     left_out: list[Limit] = []
     replaced: list[Limit] = []
+    empty: list[Limit] = []
     hard: list[Limit] = []
     rated = [r.quantity for r in readings]
     for limit in network.limits:
         if limit.is_measured and any(is_same(limit.quantity, q, network) for q in rated):
             replaced.append(limit)
+        elif limit.is_measured and is_closed(limit.quantity.denominator, network):
+            empty.append(limit)
         elif applies(limit, network, run):
             hard.append(limit)
         else:
@@ -146,14 +151,14 @@ def lay_rows(
         sources=tuple(draft.sources),
         sizes=tuple(draft.sizes),
         guessed=frozenset(draft.guessed),
-        left_out=tuple(limit for limit in left_out if not is_zero(limit)),
+        left_out=(*(limit for limit in left_out if not is_zero(limit)), *empty),
         replaced=tuple(replaced),
         left_free=free_species(
             network,
             (r.quantity for r in readings),
             zip(draft.rows, draft.low, draft.high, strict=True),
         ),
-        notes=limit_notes(left_out, replaced, network, run),
+        notes=(*empty_notes(empty, network), *limit_notes(left_out, replaced, network, run)),
     )
 
 

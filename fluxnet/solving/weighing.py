@@ -27,6 +27,9 @@ __all__ = ["Weighed", "fit_weighed", "weigh_again"]
 Vector = NDArray[np.float64]
 
 _PASSES = 30
+# A denominator this small beside the largest value is rounding.
+_NOTHING = 1e-9
+
 _LEAST = 0.1
 """A rate that is reconciled to nothing keeps this part of its relative sd."""
 
@@ -86,8 +89,8 @@ def weigh_again(weighed: Weighed, point: Point) -> Weighed:
     built, sizes = weighed.built, {}
     for place in built.estimated:
         quantity = built.problem.rows[place].quantity
-        size = abs(float(point.values[weighed.ratios[place][1]]))
-        if quantity is not None and quantity.denominator is not None and size > 0:
+        size = _size_of(point, weighed.ratios[place][1])
+        if quantity is not None and quantity.denominator is not None and size:
             sizes[quantity.denominator] = size
     if not sizes:
         return weighed
@@ -96,6 +99,15 @@ def weigh_again(weighed: Weighed, point: Point) -> Weighed:
     task = replace(weighed.task, whitening=whitening(built.covariance))
     best = fit_equalities(task, weighed.best.numbers)
     return Weighed(built, task, best, weighed.ratios)
+
+
+def _size_of(point: Point, place: int) -> float:
+    """The size of a denominator; 0 where it is the rounding of the other values.
+
+    A ratio over nothing has no value, and no error that could be worked out from one.
+    """
+    size = abs(float(point.values[place]))
+    return size if size > _NOTHING * float(np.abs(point.values).max()) else 0.0
 
 
 def _has_relative(run: Run) -> bool:
@@ -131,8 +143,8 @@ def _settle(
             row = built.problem.rows[place]
             if row.quantity is None or row.quantity.denominator is None:
                 continue
-            size = abs(float(best.values[ratios[place][1]]))
-            if size > 0 and row.denominator:
+            size = _size_of(best, ratios[place][1])
+            if size and row.denominator:
                 sizes[row.quantity.denominator] = size
                 change = max(change, abs(size - row.denominator) / row.denominator)
         if change < 1e-10:

@@ -6,6 +6,7 @@ import numpy as np
 import pytest
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.names import Name
 from fluxnet.network.model import Basis, Direction, Quantity, QuantityKind
 from fluxnet.solving.build import build_problem, derive_rows, quantity_row, rebuild
 from fluxnet.solving.problem import RowKind
@@ -269,3 +270,17 @@ def test_ratios_count_moles_also_where_rates_count_carbon(make_network, make_run
     row = built.problem.rows[i]
     assert row.denominator == pytest.approx(0.5)  # 3 C-mol of glucose
     assert row.sd == pytest.approx(0.05)
+
+
+def test_a_measured_ratio_over_a_rate_that_a_limit_closes_is_left_out_and_told(make_network):
+    lines = "substrate oxygen\nexchange CO2\na : oxygen -> CO2"
+    open_ = make_network(lines, ("CO2 / oxygen = 1.05 ± 0.03",))
+    closed = make_network(lines, ("oxygen <= 0", "CO2 / oxygen = 1.05 ± 0.03"))
+
+    assert build_problem(open_).left_out == ()
+    built = build_problem(closed)
+    assert [row.ratio for row in built.problem.rows if row.ratio is not None] == []
+    assert [str(limit.quantity) for limit in built.left_out] == ["CO2 out / oxygen in"]
+    (note,) = built.notes
+    assert note.name is Name.LIMIT_LEFT_OUT
+    assert "a limit closes oxygen in" in note.message

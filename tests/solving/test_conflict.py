@@ -254,10 +254,10 @@ def test_the_least_change_is_found_however_small_the_sds_are(make_network, make_
         assert [c.changed for c in change.changes] == pytest.approx([13 / 9, 19 / 9, 7 / 9])
 
 
-def test_a_measured_ratio_over_a_flux_that_a_limit_closes_is_no_fault(make_network, make_run):
-    # Without air CO2 / oxygen has no value: its row then only says that there is no CO2.
+def test_a_measured_ratio_over_a_rate_that_must_be_zero_is_no_fault(make_network):
+    # Without respiration CO2 / oxygen has no value: its row only says that there is no CO2.
     network = make_network(
-        CELL, ("oxygen <= 0", "CO2 / oxygen = 1.2 ± 0.2", "upkeep = 2 ± 0.1", "glucose <= 0.5")
+        CELL, ("oxphos <= 0", "CO2 / oxygen = 1.2 ± 0.2", "upkeep = 2 ± 0.1", "glucose <= 0.5")
     )
     for within in (None, 2.0):
         change = least_change(build_problem(network, within=within).problem)
