@@ -97,7 +97,7 @@ class Answer(Generic[Result]):
     """
 
     result: Result
-    document: str
+    document: Document
     screen: tuple[Block, ...] = field(repr=False)
     record: Mapping[str, Any] = field(repr=False)
     main: str = field(repr=False)

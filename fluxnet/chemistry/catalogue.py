@@ -113,11 +113,6 @@ class Compound:
         """Molar mass of the neutral form [g/mol]; 0 for an energy carrier."""
         return molar_mass(self.formula)
 
-    @property
-    def gibbs_ph7_kJ(self) -> float | None:  # noqa: N802
-        """The Gibbs energy of formation of the form at pH 7 [kJ/mol], where there is one."""
-        return next((g.energy for g in self.gibbs if g.charge == self.charge), None)
-
 
 @record
 class Catalogue:

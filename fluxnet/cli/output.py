@@ -39,7 +39,7 @@ NAMES_OF_TABLES = frozenset({
 """Every table that some command writes."""
 
 
-def refuse_outputs(arguments: argparse.Namespace, document: str) -> None:
+def refuse_outputs(arguments: argparse.Namespace, document: Document) -> None:
     """Refuse, before anything is read or computed, results that could not be written.
 
     Raises
@@ -78,7 +78,7 @@ def _real(path: Path) -> Path:
 
 def give_screen(
     arguments: argparse.Namespace,
-    document: str,
+    document: Document,
     inputs: Sequence[Input],
     diagnostics: Sequence[Diagnostic],
     body: Mapping[str, Any],
@@ -120,7 +120,7 @@ def give_findings(arguments: argparse.Namespace, diagnostics: Sequence[Diagnosti
 
 def give_faults(
     arguments: argparse.Namespace,
-    document: str,
+    document: Document,
     inputs: Sequence[Input],
     diagnostics: Sequence[Diagnostic],
     body: Mapping[str, Any] | None = None,

@@ -3,10 +3,9 @@
 from __future__ import annotations
 
 import math
-from fractions import Fraction
 
 __all__ = [
-    "format_coefficient", "format_measured", "format_number", "format_p", "format_range",
+    "format_measured", "format_number", "format_p", "format_range",
 ]
 
 
@@ -83,17 +82,6 @@ def format_range(low: float | None, high: float | None) -> str:
         return f"{low:.4g} to {high:.4g}"
     ends = ("0" if end == 0 else _fixed(end, decimals) for end in (low, high))
     return " to ".join(ends)
-
-
-def format_coefficient(value: Fraction | float) -> str:
-    """A coefficient: an exact fraction as a fraction, a float with four digits.
-
-    Examples
-    --------
-    >>> format_coefficient(Fraction(3, 2)), format_coefficient(Fraction(2)), format_coefficient(0.1)
-    ('3/2', '2', '0.1')
-    """
-    return str(value) if isinstance(value, Fraction) else format_number(value)
 
 
 def format_p(p: float | None) -> str:

@@ -6,6 +6,7 @@ import hashlib
 import json
 import math
 from collections.abc import Mapping, Sequence
+from enum import StrEnum
 from fractions import Fraction
 from pathlib import Path
 from typing import Any
@@ -23,7 +24,7 @@ __all__ = [
 Record = dict[str, Any]
 
 
-class Document:
+class Document(StrEnum):
     """The names of the documents with their versions."""
 
     CHECK = "check/1"
@@ -51,7 +52,7 @@ def hash_bytes(data: bytes, shown: str) -> Input:
 
 
 def document_text(
-    document: str,
+    document: Document,
     inputs: Sequence[Input],
     diagnostics: Sequence[Diagnostic],
     body: Mapping[str, Any],

@@ -11,10 +11,7 @@ import re
 from fluxnet.ground.source import Source, Span
 from fluxnet.tables.grid import Cell, Grid, Row
 
-__all__ = ["SEPARATORS", "declared_separator", "split_lines", "split_text"]
-
-SEPARATORS = {"comma": ",", "semicolon": ";", "tab": "\t"}
-"""The separators by the words that name them."""
+__all__ = ["declared_separator", "split_lines", "split_text"]
 
 _DECLARED = re.compile(r"sep=(.)\s*$", re.IGNORECASE)
 _LINE_END = re.compile(r"\r\n|\r|\n")

@@ -9,7 +9,7 @@ import unicodedata
 from fluxnet.chemistry.catalogue import CompoundKind, load_catalogue
 from fluxnet.chemistry.reader import read_formula
 from fluxnet.ground.record import record
-from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role, Species
+from fluxnet.network.model import Direction, Network, Role, Species
 
 __all__ = [
     "Vocabulary",
@@ -150,8 +150,3 @@ def nearest_names(name: str, vocabulary: Vocabulary) -> tuple[str, ...]:
     own = [s.name for s in boundary_species(vocabulary)]
     near = difflib.get_close_matches(name, own, 3, 0.6)
     return tuple(near) if near else tuple(load_catalogue().nearest(name))[:3]
-
-
-def rate_of(species: Species, direction: Direction) -> Quantity:
-    """The rate of a species in a direction."""
-    return Quantity(QuantityKind.RATE, species.name, direction)
