@@ -10,7 +10,7 @@ from fluxnet.presenting.files import refuse_file, write_text
 
 __all__ = ["EXAMPLES", "MODEL", "RATES", "add_arguments", "run"]
 
-EXAMPLES = """A folder to start from: a model, a rates table, a short how-to.
+EXAMPLES = """A folder to start from: a model, an empty rates table, an example of one, a how-to.
 
   fluxnet new my-strain
 """
@@ -57,6 +57,12 @@ run,species,direction,rate,sd,unit
 1,mu,,0.172,3 %,1/h
 """
 
+_EMPTY = """\
+# A row a run, below the units. An sd is absolute, or in per cent (3 %); 0 is exact.
+run,glucose in,sd,oxygen in,sd,CO2 out,sd,ethanol out,sd,mu,sd
+,mmol/g/h,,mmol/g/h,,mmol/g/h,,mmol/g/h,,1/h,
+"""
+
 _HOW_TO = """\
 Put your reactions into model.flux and your rates into rates.csv, then
 
@@ -64,7 +70,9 @@ Put your reactions into model.flux and your rates into rates.csv, then
     fluxnet closure rates.csv --model model.flux      do carbon and electrons close?
     fluxnet solve model.flux rates.csv       what did the cell do?
 
-The numbers in rates.csv are placeholders. A blank rate says: exchanged, but not measured.
+rates.csv is empty: a row of names, a row of units, and room for a row a run. A blank rate says:
+exchanged, but not measured. example.csv shows the other way to write a table, a row a rate; its
+numbers are invented, so that the commands can be tried.
 `fluxnet manual language` and `fluxnet manual rates` tell how the two files are written.
 """
 
@@ -78,7 +86,9 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 def run(arguments: argparse.Namespace) -> int:
     """Write the folder."""
     folder: Path = arguments.name
-    files = {"model.flux": MODEL, "rates.csv": RATES, "HOW-TO.txt": _HOW_TO}
+    files = {
+        "model.flux": MODEL, "rates.csv": _EMPTY, "example.csv": RATES, "HOW-TO.txt": _HOW_TO
+    }  # fmt: skip
     folder.mkdir(parents=True, exist_ok=True)
     for name in files:
         refuse_file(folder / name, force=arguments.force)

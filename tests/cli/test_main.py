@@ -214,6 +214,20 @@ def test_new_writes_a_folder_that_checks_closes_and_solves(
 
     assert run(["new", "mine"]) == Exit.SOUND
     assert run(["check", "mine/model.flux"]) == Exit.SOUND
-    assert run(["closure", "mine/rates.csv", "--model", "mine/model.flux"]) == Exit.SOUND
-    assert run(["solve", "mine/model.flux", "mine/rates.csv"]) == Exit.SOUND
+    assert run(["closure", "mine/example.csv", "--model", "mine/model.flux"]) == Exit.SOUND
+    assert run(["solve", "mine/model.flux", "mine/example.csv"]) == Exit.SOUND
     assert run(["new", "mine"]) == Exit.MISUSE
+
+
+def test_the_table_of_a_new_folder_is_empty_and_takes_a_row_a_run(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    monkeypatch.chdir(tmp_path)
+    run(["new", "mine"])
+    table = tmp_path / "mine" / "rates.csv"
+
+    assert run(["closure", "mine/rates.csv"]) == Exit.FINDING
+    assert "no row below it (no-measured-rate)" in " ".join(capsys.readouterr().err.split())
+    filled = table.read_text(encoding="utf-8") + "1,2.05,3 %,3.6,5 %,4.4,5 %,0.58,5 %,0.172,3 %\n"
+    table.write_text(filled, encoding="utf-8")
+    assert run(["solve", "mine/model.flux", "mine/rates.csv"]) == Exit.SOUND
