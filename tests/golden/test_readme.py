@@ -19,7 +19,7 @@ def test_the_screen_of_a_solve_is_what_the_starter_folder_gives(
     monkeypatch.chdir(tmp_path)
     run(["new", "."])
     capsys.readouterr()
-    run(["solve", "model.flux", "rates.csv"])
+    run(["solve", "model.flux", "example.csv"])
     shown = capsys.readouterr().out
     (block,) = (text for _, text in BLOCKS if text.startswith("run 1"))
     head, ledger = block.split("...\n")
