@@ -126,9 +126,12 @@ def look_up(word: str) -> Word | None:
     if not word.isalpha():  # pint would take a sign for a sum
         return None
     registry = _registry()
-    if word not in registry:
+    try:
+        if word not in registry:
+            return None
+        quantity = registry.Quantity(1, word)
+    except ValueError:  # a word for a number, such as nan
         return None
-    quantity = registry.Quantity(1, word)
     for dimension, base in _PLACES.items():
         if quantity.check(registry.Unit(base).dimensionality):
             # twelve digits: definitions have fewer, and the rest is noise of the conversion

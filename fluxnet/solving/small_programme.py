@@ -54,6 +54,8 @@ class SmallProgramme:
         if len(on):
             weights = prices[on]
             bound = np.where(weights > 0, self.high[on], self.low[on])
+            if not np.isfinite(bound).all():
+                return np.inf  # what has no bound has no price
             off = np.abs(reach[on] - bound) / np.maximum(size[on], np.abs(bound))
             violation = max(violation, float(off.max()))
             left = left + weights @ self.rows[on]
@@ -77,8 +79,10 @@ def ask(programme: SmallProgramme, settings: dict[str, float]) -> tuple[int, Vec
 def polish(programme: SmallProgramme, x: Vector, prices: Vector) -> tuple[Vector, Vector]:
     """The optimum with the same bounds pressing, solved as linear equations."""
     count = len(x)
+    bounds = np.where(prices > 0, programme.high, programme.low)
+    prices = np.where(np.isfinite(bounds), prices, 0.0)
     on = np.flatnonzero(prices)
-    target = np.where(prices[on] > 0, programme.high[on], programme.low[on])
+    target = bounds[on]
     system = np.zeros((count + len(on), count + len(on)))
     if programme.hessian is not None:
         system[:count, :count] = programme.hessian

@@ -10,6 +10,7 @@ from fluxnet.ground.errors import MisuseError
 from fluxnet.solving import quadratic
 from fluxnet.solving.nonnegative import find_least_distance, solve_nonnegative
 from fluxnet.solving.quadratic import Outcome, solve_quadratic
+from fluxnet.solving.small_programme import SmallProgramme, polish
 
 INF = np.inf
 
@@ -189,3 +190,17 @@ def test_the_nearest_point_is_a_combination_of_the_rows_that_press():
     assert found.x == pytest.approx([1.2, 0.35])
     assert found.multipliers @ rows == pytest.approx(found.x)
     assert found.multipliers[2] == 0
+
+
+def test_a_price_on_a_bound_that_is_not_there_never_passes() -> None:
+    rows = np.eye(2)
+    programme = SmallProgramme(
+        np.eye(2), np.array([-1.0, 0.0]), rows, np.array([-np.inf, 0.0]),
+        np.array([np.inf, np.inf]), rows,
+    )  # fmt: skip
+    x, prices = np.array([0.0, 0.0]), np.array([1.0, 0.0])
+
+    assert programme.residual(x, prices) == np.inf
+    better, left = polish(programme, x, prices)
+    assert better == pytest.approx([1.0, 0.0])
+    assert left.tolist() == [0.0, 0.0]
