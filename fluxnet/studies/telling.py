@@ -23,7 +23,16 @@ def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
     determined = sum(f.kind is FluxKind.DETERMINED for f in solution.fluxes)
     known = f"{determined} of {len(solution.fluxes)} fluxes are determined"
     spender = _largest_spender(solution)
+    beyond = test.bound_p is not None and test.bound_p < 0.05
+    if beyond and test.closes is not False:
+        return (
+            "The rates balance, but only with fluxes that the limits forbid: "
+            f"{', '.join(test.active)}. Fluxes are given, and not to be trusted."
+        )
     if test.h is None:
+        measured = any(rate.measured is not None for rate in solution.rates)
+        if not measured:
+            return f"No rate is measured: the limits alone leave this; {known}.{spender}"
         return f"The rates fit the network, but none tests another; {known}.{spender}"
     chance = "below 0.001" if test.p is not None and test.p < 0.001 else f"{test.p:.2g}"
     if test.closes is False:
@@ -31,11 +40,6 @@ def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
         return (
             f"The rates and the network do not agree: by chance they would differ so much with a "
             f"probability {chance}; {worst}. Fluxes are given, and not to be trusted."
-        )
-    if test.bound_p is not None and test.bound_p < 0.05:
-        return (
-            "The rates balance, but only with fluxes that the limits forbid: "
-            f"{', '.join(test.active)}. Fluxes are given, and not to be trusted."
         )
     return f"The rates and the network agree (p = {chance}); {known}.{spender}"
 
