@@ -198,7 +198,10 @@ def _outermost(curve: Curve, numbers: Vector) -> Point | None:
     except (ZeroDivisionError, np.linalg.LinAlgError):
         return None
     region = region_at(task, point, moving=False)
-    found = nearest(region)
+    try:
+        found = nearest(region)
+    except ArithmeticError:  # nothing is known there: the end is given as open, not as near
+        return None
     if found.x is None:
         return None
     place = found.x

@@ -27,6 +27,10 @@ __all__ = ["Weighed", "fit_weighed", "weigh_again"]
 Vector = NDArray[np.float64]
 
 _PASSES = 30
+# A guess that shrinks faster runs towards nothing: the weight of a ratio over a flux that its own
+# pull makes small.
+_SHRINKS = 0.1
+
 # A denominator this small beside the largest value is rounding.
 _NOTHING = 1e-9
 
@@ -90,7 +94,8 @@ def weigh_again(weighed: Weighed, point: Point) -> Weighed:
     for place in built.estimated:
         quantity = built.problem.rows[place].quantity
         size = _size_of(point, weighed.ratios[place][1])
-        if quantity is not None and quantity.denominator is not None and size:
+        least = _SHRINKS * (built.problem.rows[place].denominator or 0.0)
+        if quantity is not None and quantity.denominator is not None and size > least:
             sizes[quantity.denominator] = size
     if not sizes:
         return weighed
