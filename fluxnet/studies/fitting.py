@@ -120,7 +120,8 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
         FluxEstimate(
             reaction=reaction.name,
             compartment=reaction.compartment,
-            value=float(fit.fluxes[j]),
+            # rounding of the fit may leave a flux a trace outside of its own range
+            value=float(np.clip(fit.fluxes[j], fit.low[j], fit.high[j])),
             sd=None if np.isnan(fit.flux_sd[j]) else float(fit.flux_sd[j]),
             low=float(fit.low[j]),
             high=float(fit.high[j]),
