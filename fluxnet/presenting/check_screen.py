@@ -59,7 +59,10 @@ def _verdict(diagnostics: tuple[Diagnostic, ...]) -> Sentence:
     if warnings:
         text = f"No error, {_some(warnings, 'warning')}{tail}: every line balances."
         return Sentence(text, Mood.DOUBTFUL, verdict=True)
-    text = f"Sound: every line balances, nothing comes out of nothing, nothing is blocked{tail}."
+    if accepted:
+        text = f"No error; {_some(accepted, 'accepted warning')}: every line balances."
+        return Sentence(text, Mood.GOOD, verdict=True)
+    text = "Sound: every line balances, nothing comes out of nothing, nothing is blocked."
     return Sentence(text, Mood.GOOD, verdict=True)
 
 

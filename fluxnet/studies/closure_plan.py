@@ -35,7 +35,6 @@ __all__ = ["ClosurePlan", "PlannedBalance", "plan_closure"]
 
 _NAMES = {"C": "carbon", "N": "nitrogen", "P": "phosphorus", "S": "sulfur"}
 _SEEN_NOT = ("H", "O", CHARGE)
-Amounts = Mapping[str, Fraction]
 
 
 @record

@@ -143,7 +143,3 @@ class Closure:
     def is_sound(self) -> bool:
         """Whether every run could be closed, and none is rejected."""
         return not has_errors(self.diagnostics) and all(run.is_sound for run in self.runs)
-
-    def find_run(self, name: str) -> RunClosure | None:
-        """The closure of that run, or None."""
-        return next((run for run in self.runs if run.run == name), None)

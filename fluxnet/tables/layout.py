@@ -68,7 +68,7 @@ def find_layout(grid: Grid, network: Network | None) -> Layout:
     for index, row in enumerate(grid.rows[:_DEEPEST]):
         statement = read_statement(row)
         if statement is not None:
-            statements = joined(statements, statement)
+            statements = joined(statements, statement, row.span)
             vocabulary = replace(vocabulary, declared=statements.species)
             continue
         titles, depth = _titles(grid.rows, index)

@@ -24,7 +24,7 @@ from fluxnet.chemistry.reader import FormulaError, FormulaFault, read_formula
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
-from fluxnet.ground.source import Span
+from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import Role, Species
 from fluxnet.tables.grid import Cell, Row
 
@@ -95,8 +95,29 @@ def _statement(text: str, span: Span) -> Statements | None:
     return None if declaration is None else _declared(declaration, text, span)
 
 
-def joined(first: Statements, second: Statements) -> Statements:
-    """Two sets of statements as one; what stands twice is taken from the later line."""
+def joined(first: Statements, second: Statements, span: Span = NOWHERE) -> Statements:
+    """Two sets of statements as one; two different values of one thing are a fault.
+
+    Parameters
+    ----------
+    span
+        The line of the second.
+    """
+    pairs = (
+        ("the shared error", first.shared_error, second.shared_error),
+        ("the biomass concentration", _text(first.concentration), _text(second.concentration)),
+        ("the nitrogen source", first.nitrogen, second.nitrogen),
+    )
+    clashes = tuple(
+        Diagnostic(
+            Name.ROW_REPEATED,
+            f"{what} is given twice above the table, differently",
+            span,
+            mend="keep one of the lines; values that differ by run stand in a column",
+        )
+        for what, one, other in pairs
+        if one is not None and other is not None and one != other
+    )
     return Statements(
         first.species + second.species,
         first.shared_error if second.shared_error is None else second.shared_error,
@@ -104,8 +125,12 @@ def joined(first: Statements, second: Statements) -> Statements:
         second.concentration_unit or first.concentration_unit,
         second.nitrogen or first.nitrogen,
         first.notes + second.notes,
-        first.diagnostics + second.diagnostics,
+        first.diagnostics + second.diagnostics + clashes,
     )
+
+
+def _text(cell: Cell | None) -> str | None:
+    return None if cell is None else cell.text
 
 
 def _declared(found: re.Match[str], text: str, span: Span) -> Statements:

@@ -199,3 +199,23 @@ def test_a_catalogue_name_keeps_the_way_it_was_typed(read):
     assert (acid.name, acid.entry, acid.role) == ("Acetic acid", "acetate", Role.EXCHANGE)
     assert (cells.name, cells.role) == ("biomass", Role.BIOMASS)
     assert Name.BIOMASS_ASSUMED in [d.name for d in reading.diagnostics]
+
+
+@pytest.mark.parametrize(
+    ("one", "other", "what"),
+    [
+        ("shared error biomass 4 %", "shared error biomass 5 %", "the shared error"),
+        ("nitrogen source urea", "nitrogen source nitrate", "the nitrogen source"),
+    ],
+)
+def test_two_different_lines_of_one_kind_above_a_table_are_a_fault_with_its_line(
+    one: str, other: str, what: str
+) -> None:
+    rows = "species,direction,rate,sd,unit\nglucose,in,2,3 %,mmol/g/h\n"
+    reading = read_rates_text(f"{one}\n{other}\n{rows}")
+    (fault,) = (d for d in reading.diagnostics if d.name is Name.ROW_REPEATED)
+
+    assert reading.table is None
+    assert what in fault.message
+    assert fault.span.line == 2
+    assert read_rates_text(f"{one}\n{one}\n{rows}").table is not None
