@@ -22,7 +22,7 @@ def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
     """What a least-squares solve found."""
     determined = sum(f.kind is FluxKind.DETERMINED for f in solution.fluxes)
     known = f"{determined} of {len(solution.fluxes)} fluxes are determined"
-    spender = _largest_spender(solution)
+    spender = _largest_spender(solution) + _guessed_ratios(solution)
     beyond = test.bound_p is not None and test.bound_p < 0.05
     if beyond and test.closes is not False:
         return (
@@ -42,6 +42,18 @@ def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
             f"probability {chance}; {worst}. Fluxes are given, and not to be trusted."
         )
     return f"The rates and the network agree (p = {chance}); {known}.{spender}"
+
+
+def _guessed_ratios(solution: FluxSolution) -> str:
+    """The measured ratios whose weight is a guess, for nothing determines their lower part."""
+    loose = {r.quantity for r in solution.rates if r.measured is None and r.reconciled_sd is None}
+    words = [
+        f" The measured ratio {rate.quantity} is weighed by a guess of {below}, which nothing "
+        "determines: what rests on it is not to be trusted."
+        for rate in solution.rates
+        if rate.measured is not None and (below := rate.quantity.denominator) in loose
+    ]
+    return "".join(words)
 
 
 def _worst(solution: FluxSolution) -> str:

@@ -113,3 +113,16 @@ def test_without_a_limit_the_aim_has_no_end_and_the_missing_limit_is_named() -> 
 def test_what_makes_no_question_is_refused(network: Network, options: dict[str, object]) -> None:
     with pytest.raises(MisuseError):
         best(network, **options)
+
+
+def test_a_measured_ratio_over_a_rate_that_nothing_determines_is_not_trusted() -> None:
+    network = read_model_text(TEXT + "limit ethanol / glucose = 1.5 ± 0.1\n").network
+    assert network is not None
+    rates = "species,direction,rate,sd,unit\n{}\n"
+    fixed = read_rates_text(rates.format("glucose,in,4,0.1,mmol/g/h"), network=network).table
+    assert fixed is not None
+    (alone,) = solve_network(network, None).runs
+    (held,) = solve_network(network, fixed).runs
+
+    assert "weighed by a guess of glucose in" in alone.words
+    assert "guess" not in held.words
