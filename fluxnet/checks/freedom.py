@@ -9,6 +9,7 @@ from collections.abc import Collection, Sequence
 from fractions import Fraction
 
 from fluxnet.checks.cone import exact_rows, quantity_form
+from fluxnet.checks.redundancy import Addition, find_addition
 from fluxnet.exact.sparse import NullSpace, SparseRow, independent_forms, null_space
 from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
@@ -39,6 +40,12 @@ class Freedom:
     ``needed`` is a smallest set of quantities that, with ``fixed``, determines all fluxes;
     ``missing`` one to add to ``measured``. Where boundary rates alone do not suffice, fluxes
     inside (kind FLUX) stand in it, and ``boundary_enough`` is false.
+
+    An error in a measured value shows only where others test it. ``untested`` are those of the
+    measured ones (without a run: of ``needed``) that none tests; ``to_test`` a smallest set of
+    rates across the boundary after which all are, with ``redundancy_then`` redundant values:
+    two where that is possible, for one alone does not tell which of them is wrong.
+    ``never_tested`` are those that no rate across the boundary tests.
     """
 
     dimension: int
@@ -50,6 +57,10 @@ class Freedom:
     undetermined: tuple[str, ...]
     needed: tuple[Quantity, ...]
     missing: tuple[Quantity, ...]
+    untested: tuple[Quantity, ...]
+    to_test: tuple[Quantity, ...]
+    redundancy_then: int
+    never_tested: tuple[Quantity, ...]
 
     @property
     def boundary_enough(self) -> bool:
@@ -97,6 +108,18 @@ def measure_freedom(
     open_ = {j for j in running if rest.image(space.rows[j])}
     candidates = [Known(q) for q in _in_order_of_practice(network)]
     candidate_forms = [_form(network, stoich, rows, space, k) for k in candidates]
+    needed = _chosen(fixed_forms, candidate_forms, candidates)
+    held = fixed + (given or tuple(Known(q) for q in needed if q.kind is not QuantityKind.FLUX))
+    held_forms = [_form(network, stoich, rows, space, k) for k in held]
+    offered = _offered(network, stoich, rows, held)
+    wanted = [i for i, k in enumerate(held) if i >= len(fixed) or _is_measured(network, k)]
+    addition = (
+        find_addition(
+            held_forms, [_form(network, stoich, rows, space, k) for k in offered], wanted
+        )
+        if wanted
+        else Addition((), (), (), 0)
+    )
     return Freedom(
         dimension=space.dimension,
         fixed=tuple(k.quantity for k in fixed),
@@ -105,9 +128,39 @@ def measure_freedom(
         redundancy=len(forms) - (space.dimension - rest.dimension),
         determined=tuple(stoich.reactions[j] for j in running if j not in open_),
         undetermined=tuple(stoich.reactions[j] for j in running if j in open_),
-        needed=_chosen(fixed_forms, candidate_forms, candidates),
+        needed=needed,
         missing=_chosen(forms, candidate_forms, candidates),
+        untested=tuple(held[i].quantity for i in addition.untested),
+        to_test=tuple(offered[i].quantity for i in addition.added),
+        redundancy_then=addition.redundancy,
+        never_tested=tuple(held[i].quantity for i in addition.never),
     )
+
+
+def _is_measured(network: Network, known: Known) -> bool:
+    """Whether a value that a limit gives is a measured one."""
+    return any(x.is_measured and x.quantity == known.quantity for x in network.limits)
+
+
+def _offered(
+    network: Network,
+    stoich: Stoichiometry,
+    rows: dict[str, dict[int, Fraction]],
+    held: Sequence[Known],
+) -> list[Known]:
+    """What crosses the boundary and is not among the values held, under any name."""
+    taken = [
+        independent
+        for k in held
+        if (independent := quantity_form(network, stoich, rows, k.quantity))
+    ]
+    return [
+        Known(q)
+        for q in _in_order_of_practice(network)
+        if q.kind is not QuantityKind.FLUX
+        and (form := quantity_form(network, stoich, rows, q))
+        and all(len(independent_forms([form, other])) == 2 for other in taken)
+    ]
 
 
 def _form(

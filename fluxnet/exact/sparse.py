@@ -15,7 +15,8 @@ from math import gcd, lcm
 from fluxnet.ground.record import record
 
 __all__ = [
-    "NullSpace", "SparseRow", "independent_forms", "null_space", "point_near", "product",
+    "NullSpace", "SparseRow", "dependent_forms", "independent_forms", "null_space", "point_near",
+    "product",
 ]
 
 SparseRow = Mapping[int, Fraction]
@@ -127,6 +128,22 @@ def independent_forms(rows: Sequence[SparseRow]) -> tuple[int, ...]:
             held[column], age[column] = row, i
             chosen.append(i)
     return tuple(chosen)
+
+
+def dependent_forms(rows: Sequence[SparseRow]) -> tuple[bool, ...]:
+    """Which forms take part in a linear dependency: those that the others fix.
+
+    Examples
+    --------
+    >>> one = Fraction(1)
+    >>> dependent_forms([{0: one}, {1: one}, {0: 2 * one}])
+    (True, False, True)
+    """
+    turned: dict[int, dict[int, Fraction]] = {}
+    for i, row in enumerate(rows):
+        for k, value in row.items():
+            turned.setdefault(k, {})[i] = value
+    return tuple(bool(row) for row in null_space(list(turned.values()), len(rows)).rows)
 
 
 def product(row: SparseRow, point: Sequence[Fraction]) -> Fraction:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
+from fluxnet.checks.freedom import Freedom
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Severity
 from fluxnet.ground.table import Align, Column, Table
@@ -113,6 +114,26 @@ def _freedom(result: CheckResult) -> list[Block]:
         if freedom.missing:
             missing = ", ".join(map(str, freedom.missing))
             blocks.append(Sentence(f"To determine the rest, measure also: {missing}."))
+    return [*blocks, *_testing(freedom)]
+
+
+def _testing(freedom: Freedom) -> list[Block]:
+    """What to measure so that an error in any measured value shows."""
+    blocks: list[Block] = []
+    if freedom.measured and not (freedom.untested or freedom.to_test):
+        blocks.append(Sentence("Each of these values is tested by the others."))
+    if freedom.to_test:
+        values = "these values" if freedom.measured else "them"
+        count = _some(freedom.redundancy_then, "redundant value")
+        blocks.append(
+            Sentence(
+                f"To have {values} tested, so that an error in one shows, measure also: "
+                f"{', '.join(map(str, freedom.to_test))} ({count} then)."
+            )
+        )
+    if freedom.never_tested:
+        names = ", ".join(map(str, freedom.never_tested))
+        blocks.append(Sentence(f"An error in {names} shows in no rate across the boundary."))
     return blocks
 
 
@@ -166,6 +187,10 @@ def check_record(result: CheckResult) -> dict[str, Any]:
             "determined": list(freedom.determined),
             "undetermined": list(freedom.undetermined),
             "missing": [str(q) for q in freedom.missing],
+            "untested": [str(q) for q in freedom.untested],
+            "to_test": [str(q) for q in freedom.to_test],
+            "redundancy_then": freedom.redundancy_then,
+            "never_tested": [str(q) for q in freedom.never_tested],
         },
         "most_energy": [
             {
