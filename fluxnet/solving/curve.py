@@ -12,10 +12,11 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
+from fluxnet.solving.chart import Point, chart_at, point_at
 from fluxnet.solving.functionals import Functionals
 from fluxnet.solving.reach import Reach, reach_far
 from fluxnet.solving.region import Region, nearest, region_at
-from fluxnet.solving.task import Point, Task, chart_at, point_at
+from fluxnet.solving.task import Task
 
 __all__ = ["Curve", "follow_curve", "moved_by"]
 

@@ -9,8 +9,9 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.solving.chart import Chart, Point, chart_at, point_at
 from fluxnet.solving.region import Region, nearest, region_at
-from fluxnet.solving.task import Chart, Point, Task, chart_at, least_squares_step, point_at
+from fluxnet.solving.task import Task, least_squares_step
 
 __all__ = ["fit_bounded", "fit_equalities"]
 

@@ -6,7 +6,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
-from fluxnet.solving.task import Point
+from fluxnet.solving.chart import Point
 
 __all__ = ["Drifting", "Functionals", "Joined", "Placed", "Ratios"]
 

@@ -12,12 +12,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
+from fluxnet.solving.chart import Point, flux_scale, point_at
 from fluxnet.solving.curve import Curve, follow_curve, moved_by
 from fluxnet.solving.functionals import Functionals
 from fluxnet.solving.reach import Reach, reach_far, reach_flat
 from fluxnet.solving.region import Region
 from fluxnet.solving.statistics import chi_squared_quantile
-from fluxnet.solving.task import Point, Task, flux_scale, point_at
+from fluxnet.solving.task import Task
 
 __all__ = ["Intervals", "find_intervals"]
 

@@ -16,6 +16,7 @@ from fluxnet.network.model import Network, Quantity, QuantityKind
 from fluxnet.rates.measured import Run
 from fluxnet.solving.bound_test import chance_of_bounds
 from fluxnet.solving.build import Built, build_problem, rebuild
+from fluxnet.solving.chart import Point, flux_scale
 from fluxnet.solving.classify import Relation, Structure, classify, find_relations
 from fluxnet.solving.descent import fit_bounded
 from fluxnet.solving.equalities import find_equalities
@@ -37,7 +38,7 @@ from fluxnet.solving.region import Region
 from fluxnet.solving.representative import take_least_flux
 from fluxnet.solving.spread import find_adjustments, find_spread, parameter_moves
 from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tail
-from fluxnet.solving.task import Point, Task, flux_scale
+from fluxnet.solving.task import Task
 from fluxnet.solving.weighing import Weighed, fit_weighed, weigh_again
 
 __all__ = ["fit_fluxes", "spans_of"]

@@ -12,9 +12,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
+from fluxnet.solving.chart import Point, flux_scale
 from fluxnet.solving.quadratic import Outcome, QuadraticSolution, solve_scaled
 from fluxnet.solving.small_programme import SmallProgramme
-from fluxnet.solving.task import Point, Task, flux_scale
+from fluxnet.solving.task import Task
 
 __all__ = ["Bounds", "Region", "nearest", "region_at"]
 

@@ -5,9 +5,10 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.solving.chart import point_at
 from fluxnet.solving.quadratic import solve_quadratic
 from fluxnet.solving.region import Region, region_at
-from fluxnet.solving.task import Task, point_at
+from fluxnet.solving.task import Task
 
 __all__ = ["take_least_flux"]
 

@@ -7,9 +7,10 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
 from fluxnet.solving.build import Built
+from fluxnet.solving.chart import Point
 from fluxnet.solving.flux_fit import ParameterMove
 from fluxnet.solving.region import Region
-from fluxnet.solving.task import Point, Task
+from fluxnet.solving.task import Task
 
 __all__ = ["Spread", "find_adjustments", "find_spread", "parameter_moves"]
 

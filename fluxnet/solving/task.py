@@ -1,9 +1,4 @@
-"""A fit in numbers: the fluxes that meet all equalities, and how far they are from the data.
-
-Fluxes v and uncertain numbers p meet E(p) v = e. The solutions are written in coordinates:
-z within the null space of E at one place, and p itself; what is left of v then follows from
-E. So every point of a fit balances to rounding, wherever p has moved to.
-"""
+"""A fit in numbers: its rows, what is equal, measured or bounded, and the errors."""
 
 from __future__ import annotations
 
@@ -18,10 +13,7 @@ from fluxnet.solving.forms import Form
 from fluxnet.solving.moving import MovingRows, moving_rows
 from fluxnet.solving.scaling import median_of
 
-__all__ = [
-    "Chart", "Point", "Task", "chart_at", "flux_scale", "least_squares_step", "point_at", "task_of",
-    "whitening",
-]
+__all__ = ["Task", "least_squares_step", "task_of", "whitening"]
 
 Vector = NDArray[np.float64]
 Places = NDArray[np.intp]
@@ -141,113 +133,6 @@ def whitening(covariance: Vector) -> Vector:
         raise MisuseError("the covariance of the measured rates is not positive") from None
     inverse: Vector = np.linalg.solve(factor, np.eye(len(sd))) / sd
     return inverse
-
-
-@record
-class Chart:
-    """Coordinates around one place: v = kernel z + image y, where E(p) v = e gives y.
-
-    ``left`` picks independent combinations of the equalities.
-    """
-
-    kernel: Vector
-    image: Vector
-    left: Vector
-
-
-def chart_at(task: Task, numbers: Vector) -> Chart:
-    """Coordinates around given values of the uncertain numbers."""
-    equalities = task.rows.at(numbers)[task.equal]
-    rows, columns = _equilibrate(equalities)
-    scaled = equalities * rows[:, None] * columns
-    left, _, right = np.linalg.svd(scaled, full_matrices=True)
-    image = right[: task.rank].T * columns[:, None]
-    kernel = right[task.rank :].T * columns[:, None]
-    return Chart(kernel, image, left[:, : task.rank].T * rows)
-
-
-def _equilibrate(matrix: Vector) -> tuple[Vector, Vector]:
-    """Factors for rows and columns that bring all entries near 1: powers of two."""
-    rows, columns = np.zeros(matrix.shape[0]), np.zeros(matrix.shape[1])
-    if not matrix.size:
-        return np.exp2(rows), np.exp2(columns)
-    with np.errstate(divide="ignore"):
-        sizes = np.log2(np.abs(matrix))
-    there = np.isfinite(sizes)
-    sizes = np.where(there, sizes, 0.0)
-    by_row, by_column = np.maximum(there.sum(axis=1), 1), np.maximum(there.sum(axis=0), 1)
-    for _ in range(6):
-        rows = -((sizes + columns) * there).sum(axis=1) / by_row
-        columns = -((sizes + rows[:, None]) * there).sum(axis=0) / by_column
-    return np.exp2(np.round(rows)), np.exp2(np.round(columns))
-
-
-@record
-class Point:
-    """Fluxes and numbers that meet all equalities, with their slopes and distances.
-
-    ``tangent`` (fluxes x coordinates) is the derivative of the fluxes by z and the numbers;
-    ``slopes`` (rows x coordinates) that of every row's value. ``residuals`` are the whitened
-    distances of measured rows and numbers, ``design`` their negative derivative; ``h`` the sum
-    of their squares.
-    """
-
-    chart: Chart
-    z: Vector
-    numbers: Vector
-    fluxes: Vector
-    values: Vector
-    tangent: Vector
-    slopes: Vector
-    residuals: Vector
-    design: Vector
-
-    @property
-    def h(self) -> float:
-        """The weighted sum of squares."""
-        return float(self.residuals @ self.residuals)
-
-
-def point_at(task: Task, chart: Chart, z: Vector, numbers: Vector) -> Point:
-    """The point of given coordinates.
-
-    Raises
-    ------
-    ZeroDivisionError, numpy.linalg.LinAlgError
-        Where the numbers are so far from the chart's that there is none.
-    """
-    rows = task.rows.at(numbers)
-    equalities = chart.left @ rows[task.equal]
-    inner = equalities @ chart.image
-    across = equalities @ chart.kernel
-    moved = task.numbers
-    particular = chart.left @ task.equal_values
-    y = np.linalg.solve(inner, particular - across @ z)
-    fluxes = chart.kernel @ z + chart.image @ y
-    by_number = task.rows.slopes_at(numbers, fluxes)
-    push = np.hstack([across, chart.left @ by_number[task.equal]])
-    tangent = -chart.image @ np.linalg.solve(inner, push)
-    tangent[:, : len(z)] += chart.kernel
-    slopes = rows @ tangent
-    if moved:
-        slopes[:, len(z) :] += by_number
-    values = rows @ fluxes
-    residuals = task.whitening @ (task.measured - values[task.soft])
-    design = task.whitening @ slopes[task.soft]
-    if moved:
-        residuals = np.concatenate([residuals, (task.rows.start - numbers) / task.sd])
-        own = np.zeros((moved, design.shape[1]))
-        own[:, len(z) :] = np.diag(1 / task.sd)
-        design = np.vstack([design, own])
-    return Point(
-        chart, z, numbers, fluxes, values, tangent, slopes, residuals, design
-    )
-
-
-def flux_scale(task: Task, point: Point) -> float:
-    """The size of the largest flux of a point; of a usual one where all are zero."""
-    largest = float(np.abs(point.fluxes).max(initial=0.0))
-    return largest if largest > 1e-9 * task.scale else task.scale
 
 
 def least_squares_step(design: Vector, residuals: Vector, rank: int) -> Vector:
