@@ -14,12 +14,45 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
 from fluxnet.rates.measured import Run
+from fluxnet.rates.stacking import correlations, covariances_at, stack_errors
 
-__all__ = ["covariance_at", "is_possible", "join_errors", "own_correlations", "run_covariance"]
+__all__ = [
+    "GROSS", "covariance_at", "is_possible", "join_errors", "own_correlations", "run_covariance",
+    "within_reach",
+]  # fmt: skip
 
 Vector = NDArray[np.float64]
 _SLACK = 1e-10
-_ROUNDING = 1e-14
+_REACH = 2.0
+
+GROSS = 1e-3
+"""Where the first pass leaves the rates a smaller p than this, there is no second.
+
+A relative sd is taken of the reconciled value because that is the better estimate of the rate.
+Of rates that contradict one another grossly it is none: it only tells which way the wrong one
+pulls, and a sound rate that is pulled to a tenth would get a tenth of its sd. So these keep
+their sds as typed. At this level one sound run in a thousand is kept from its second pass, and
+both passes reject it.
+"""
+
+
+def within_reach(measured: Vector, reconciled: Vector) -> Vector:
+    """The values that relative errors are taken of: the reconciled, near the measured ones.
+
+    Between half and twice the measured value: a rate with a large error may be reconciled to
+    nothing, where its sd would vanish (and only a typed 0 is exact), or against its direction.
+    Before that a straight line through the errors has ceased to describe them.
+
+    Examples
+    --------
+    >>> within_reach(np.array([2.0, 2.0, 2.0, 0.0]), np.array([2.2, 0.1, -9.0, 1.0])).tolist()
+    [2.2, 1.0, 1.0, 0.0]
+    """
+    return np.asarray(np.clip(
+        reconciled,
+        np.minimum(measured / _REACH, measured * _REACH),
+        np.maximum(measured / _REACH, measured * _REACH),
+    ))  # fmt: skip
 
 
 def join_errors(
@@ -98,32 +131,15 @@ def covariance_at(run: Run, values: Sequence[float] | Vector) -> Vector:
     MisuseError
         Where there are not as many values as measured rates.
     """
-    rates = run.measured
-    if len(values) != len(rates):
-        raise MisuseError(f"run {run.name} has {len(rates)} measured rates, not {len(values)}")
-    share = run.shared_error or 0.0
-    parts = np.array([r.own_sd is not None for r in rates])
-    old = [(r.sd if r.own_sd is None else r.own_sd) or 0.0 for r in rates]
-    new = np.array(
-        [
-            s if r.relative is None else r.relative * abs(v)
-            for r, s, v in zip(rates, old, values, strict=True)
-        ]
-    )
-    after = np.where(parts, share * np.asarray(values, dtype=np.float64), 0.0)
-    return join_errors(new, after, own_correlations(run))
+    count = len(run.measured)
+    if len(values) != count:
+        raise MisuseError(f"run {run.name} has {count} measured rates, not {len(values)}")
+    (matrix,) = covariances_at(stack_errors((run,)), np.array([values], dtype=np.float64))
+    matrix.setflags(write=False)
+    return np.asarray(matrix)
 
 
 def own_correlations(run: Run) -> Vector:
     """The correlations of a run's measured rates without what the shared error adds."""
-    rates = run.measured
-    share = run.shared_error or 0.0
-    before = np.array([share * (r.value or 0.0) if r.own_sd is not None else 0.0 for r in rates])
-    together = np.outer(before, before)
-    own = run_covariance(run) - together
-    own[np.abs(own) <= _ROUNDING * np.abs(together)] = 0.0  # what subtraction leaves of nothing
-    old = np.array([(r.sd if r.own_sd is None else r.own_sd) or 0.0 for r in rates])
-    divisor = np.where(old > 0, old, 1.0)
-    correlations = np.asarray(own / np.outer(divisor, divisor))
-    np.fill_diagonal(correlations, 1.0)
-    return correlations
+    (matrix,) = correlations(stack_errors((run,)))
+    return np.asarray(matrix)

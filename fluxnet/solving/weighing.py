@@ -1,7 +1,8 @@
 """The best fit with the weights that it implies itself.
 
 Two kinds of sd depend on the answer: a relative sd is taken of the reconciled value (one more
-pass), and a measured ratio A / B = r ± s weighs A - r B with s times B, so that B is needed.
+pass, unless the first rejects grossly: :data:`fluxnet.rates.covariance.GROSS`), and a measured
+ratio A / B = r ± s weighs A - r B with s times B, so that B is needed.
 """
 
 from __future__ import annotations
@@ -13,15 +14,15 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
 from fluxnet.network.model import Quantity
-from fluxnet.rates.covariance import covariance_at
+from fluxnet.rates.covariance import GROSS, covariance_at, within_reach
 from fluxnet.rates.measured import Run
 from fluxnet.solving.build import Built, rebuild
-from fluxnet.solving.chart import Point
 from fluxnet.solving.classify import Structure
 from fluxnet.solving.descent import fit_equalities
 from fluxnet.solving.forms import Form, exact_numbers, exact_row, exact_species, form_of
 from fluxnet.solving.problem import Row, RowKind
-from fluxnet.solving.task import Task, task_of, whitening
+from fluxnet.solving.statistics import chi_squared_tail
+from fluxnet.solving.task import Point, Task, task_of, whitening
 
 __all__ = ["Weighed", "fit_weighed", "weigh_again"]
 
@@ -34,9 +35,6 @@ _SHRINKS = 0.1
 
 # A denominator this small beside the largest value is rounding.
 _NOTHING = 1e-9
-
-_LEAST = 0.1
-"""A rate that is reconciled to nothing keeps this part of its relative sd."""
 
 
 @record
@@ -77,7 +75,8 @@ def fit_weighed(built: Built, structure: Structure, extra: tuple[Form, ...] = ()
     best = fit_equalities(task)
     built, task, best = _settle(built, task, best, ratios, sure)
     run = built.run
-    if run is not None and _has_relative(run):
+    is_gross = structure.dof > 0 and chi_squared_tail(best.h, structure.dof) < GROSS
+    if run is not None and _has_relative(run) and not is_gross:
         built = _reweighed(built, run, _reconciled(built, run, best, ratios))
         task = replace(task, whitening=whitening(built.covariance))
         best = fit_equalities(task, best.numbers)
@@ -164,7 +163,7 @@ def _settle(
 def _reconciled(
     built: Built, run: Run, best: Point, ratios: dict[int, tuple[int, int]]
 ) -> Vector:
-    """The fitted values of a run's measured rates, kept away from zero."""
+    """The fitted values of a run's measured rates that relative errors are taken of."""
     places = [i for i, r in enumerate(built.problem.rows) if r.kind is RowKind.MEASUREMENT]
     values = best.values[places]
     for k, place in enumerate(places):
@@ -172,9 +171,7 @@ def _reconciled(
             over, below = ratios[place]
             values[k] = best.values[over] / (best.values[below] or np.inf)
     given = np.array([rate.value or 0.0 for rate in run.measured])
-    least = _LEAST * np.abs(given)
-    values = np.where(np.abs(values) < least, np.copysign(least, values), values)
-    return np.asarray(values, dtype=np.float64)
+    return within_reach(given, values)
 
 
 def _reweighed(built: Built, run: Run, values: Vector) -> Built:

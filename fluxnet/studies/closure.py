@@ -2,22 +2,26 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection, Sequence
+from collections.abc import Collection, Iterator, Sequence
 
 from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.names import Name
-from fluxnet.network.model import Network
+from fluxnet.ground.source import NOWHERE, Span
+from fluxnet.network.model import Network, QuantityKind
 from fluxnet.rates.measured import RatesTable, Run
 from fluxnet.studies.closure_batch import NoVarianceError
 from fluxnet.studies.closure_collect import collect_rows
-from fluxnet.studies.closure_make import make_closure
-from fluxnet.studies.closure_passes import PreparedRun, close_prepared, prepare_run
+from fluxnet.studies.closure_make import make_closures
+from fluxnet.studies.closure_passes import PreparedRuns, close_prepared, prepare_runs
 from fluxnet.studies.closure_plan import ClosurePlan, plan_closure
-from fluxnet.studies.closure_result import Closure, RunClosure
+from fluxnet.studies.closure_result import Closure
 from fluxnet.studies.closure_without import leave_rates_out
 from fluxnet.studies.closure_world import NitrogenSource, find_source
 
-__all__ = ["close_rates"]
+__all__ = ["close_in_parts", "close_rates", "join_parts"]
+
+_PART = 2_000
+"""Runs that are closed at once: enough for arrays to pay, few enough to tell of in between."""
 
 
 def close_rates(
@@ -60,64 +64,107 @@ def close_rates(
     >>> round(run.test.h, 6), run.test.dof, round(run.find_rate("ethanol").reconciled, 6)
     (6.5, 2, 19.4)
     """
+    parts = close_in_parts(
+        table, network=network, nitrogen=nitrogen, without=without, runs=runs
+    )  # fmt: skip
+    return join_parts(table, tuple(parts))
+
+
+def close_in_parts(
+    table: RatesTable,
+    *,
+    network: Network | None = None,
+    nitrogen: str | None = None,
+    without: Collection[str] = (),
+    runs: Collection[str] | None = None,
+) -> Iterator[Closure]:
+    """As :func:`close_rates`, some runs at a time: whoever stops keeps those that are done.
+
+    Runs with the same rows come together; :func:`join_parts` puts them into the table's order.
+    """
     faults: list[Diagnostic] = []
-    source = _source(nitrogen or table.nitrogen or "ammonia", table, network, faults)
+    source = _source(nitrogen, table, network, faults)
     chosen = _chosen(table, runs, faults)
     kept, unknown = leave_rates_out(table, chosen, without, network)
     faults.extend(unknown)
     if source is None or faults:
-        return Closure((), in_order(faults))
-    prepared: list[PreparedRun] = []
-    for run, aside in kept:
-        one = prepare_run(run, collect_rows(run, table, network, aside))
-        if not len(one.values):
-            faults.append(Diagnostic(
-                Name.NO_MEASURED_RATE, f"run {run.name} holds no measured rate to close", run.span
+        yield Closure((), in_order(faults))
+        return
+    for members, aside in _alike(kept):
+        rows = collect_rows(members[0], table, network, aside)
+        if not rows.measured:
+            yield Closure((), tuple(
+                Diagnostic(
+                    Name.NO_MEASURED_RATE, f"run {run.name} holds no measured rate to close",
+                    run.span,
+                )
+                for run in members
             ))  # fmt: skip
-        else:
-            prepared.append(one)
-    closed: dict[int, RunClosure] = {}
-    for places in _batches(prepared):
-        batch = [prepared[i] for i in places]
-        plan = plan_closure(batch[0].rows, batch[0].exact, batch[0].run.unit, source, network)
-        for place, answer in zip(places, _close_batch(plan, batch), strict=True):
-            if isinstance(answer, Diagnostic):
-                faults.append(answer)
-            else:
-                closed[place] = answer
-    return Closure(tuple(closed[i] for i in sorted(closed)), in_order(faults))
+            continue
+        plan: ClosurePlan | None = None
+        for start in range(0, len(members), _PART):
+            batch = prepare_runs(members[start : start + _PART], rows)
+            plan = plan or plan_closure(rows, batch.exact, members[0].unit, source, network)
+            yield _close_batch(plan, batch)
 
 
-def _batches(prepared: Sequence[PreparedRun]) -> list[list[int]]:
-    """Indices of the runs that one batch can close together."""
-    batches: dict[tuple[object, ...], list[int]] = {}
-    for i, one in enumerate(prepared):
-        batches.setdefault(one.signature, []).append(i)
-    return list(batches.values())
+def join_parts(table: RatesTable, parts: Sequence[Closure]) -> Closure:
+    """Parts of a closure as one, its runs in the order of the table."""
+    place = {run.name: i for i, run in enumerate(table.runs)}
+    return Closure(
+        tuple(sorted((r for part in parts for r in part.runs), key=lambda r: place[r.run])),
+        in_order(d for part in parts for d in part.diagnostics),
+    )
 
 
-def _close_batch(plan: ClosurePlan, batch: list[PreparedRun]) -> list[RunClosure | Diagnostic]:
+def _alike(
+    kept: Sequence[tuple[Run, tuple[str, ...]]],
+) -> list[tuple[list[Run], tuple[str, ...]]]:
+    """Runs with the same rows together: quantities, units, what is exact, values of ratios."""
+    groups: dict[tuple[object, ...], tuple[list[Run], tuple[str, ...]]] = {}
+    for run, aside in kept:
+        rows = tuple(
+            (
+                rate.quantity,
+                rate.value is None,
+                not rate.sd,
+                rate.value if rate.quantity.kind is QuantityKind.RATIO else None,
+            )
+            for rate in run.rates
+        )
+        key = (rows, run.basis, run.unit, aside, run.covariance is None)
+        groups.setdefault(key, ([], aside))[0].append(run)
+    return list(groups.values())
+
+
+def _close_batch(plan: ClosurePlan, batch: PreparedRuns) -> Closure:
     """Close runs with the same rows; where one of them cannot be, each by itself."""
     try:
-        arrays, sds = close_prepared(plan, batch)
+        return Closure(tuple(make_closures(plan, batch, close_prepared(plan, batch))))
     except NoVarianceError as fault:
-        if len(batch) > 1:
-            return [answer for one in batch for answer in _close_batch(plan, [one])]
-        run = batch[0].run
-        return [Diagnostic(Name.BAD_COVARIANCE, f"run {run.name}: {fault}", run.span)]
-    return [make_closure(plan, one, sds[i], arrays, i) for i, one in enumerate(batch)]
+        if len(batch.runs) > 1:
+            alone = [_close_batch(plan, one) for one in batch.each()]
+            return Closure(
+                tuple(run for part in alone for run in part.runs),
+                tuple(d for part in alone for d in part.diagnostics),
+            )
+        run = batch.runs[0]
+        fault_of_run = Diagnostic(Name.BAD_COVARIANCE, f"run {run.name}: {fault}", run.span)
+        return Closure((), (fault_of_run,))
 
 
 def _source(
-    name: str, table: RatesTable, network: Network | None, faults: list[Diagnostic]
+    option: str | None, table: RatesTable, network: Network | None, faults: list[Diagnostic]
 ) -> NitrogenSource | None:
+    name = option or table.nitrogen or "ammonia"
     found = find_source(name, table, network)
     if isinstance(found, NitrogenSource):
         return found
     near = ", ".join(found)
+    where = Span(f"--nitrogen {option}", 0) if option else NOWHERE
     faults.append(Diagnostic(
         Name.UNKNOWN_QUANTITY,
-        f"the nitrogen source {name} is no compound with nitrogen that is known here",
+        f"the nitrogen source {name} is no compound with nitrogen that is known here", where,
         mend=f"write {near}" if near else "write ammonia, N2, nitrate, urea or a species' name",
     ))  # fmt: skip
     return None

@@ -30,7 +30,10 @@ from fluxnet.studies.closure_errors import (
     whiten,
 )
 
-__all__ = ["ClosureArrays", "ClosureMatrices", "NoVarianceError", "close_many"]
+__all__ = [
+    "ClosureArrays", "ClosureMatrices", "NoVarianceError", "balances_of", "close_many",
+    "close_with",
+]  # fmt: skip
 
 Array = NDArray[np.float64]
 SIGNIFICANCE = 0.05
@@ -140,8 +143,12 @@ def close_many(
     >>> runs.h.round(6).tolist(), runs.reconciled.round(6).tolist()
     ([6.5], [[9.7, 19.4, 19.4]])
     """
+    return close_with(matrices, values, errors_of(sds, covariances))
+
+
+def close_with(matrices: ClosureMatrices, values: Array, errors: Errors) -> ClosureArrays:
+    """Close many runs with errors of either kind; as :func:`close_many`."""
     y = np.asarray(values, dtype=np.float64)
-    errors = errors_of(sds, covariances)
     _check(matrices, y, errors)
     R, W = matrices.redundancy, matrices.calculated
     Z, f = whiten(R, along(R, y), errors)
@@ -173,7 +180,7 @@ def close_many(
         calculated_sd=sd_of_rows(W, Z, errors),
         residual=off.max(axis=1) if dof else np.zeros(len(y)),
         **_ratios(matrices, reconciled, Z, errors),
-        **_balances(matrices, y, errors),
+        **balances_of(matrices, y, errors),
     )
 
 
@@ -225,7 +232,7 @@ def _check(matrices: ClosureMatrices, y: Array, errors: Errors) -> None:
         raise MisuseError("an sd is zero exactly where the balances take the value as exact")
 
 
-def _balances(matrices: ClosureMatrices, y: Array, errors: Errors) -> dict[str, Array]:
+def balances_of(matrices: ClosureMatrices, y: Array, errors: Errors) -> dict[str, Array]:
     """What is taken up and released of each balance, the gap, the recovery, and their sds.
 
     Taken is what substrates bring; acceptors (which are taken up but hold less than nothing)

@@ -44,6 +44,10 @@ class Independent:
         """The errors of some of the runs."""
         return Independent(self.variances[runs])
 
+    def scaled(self, sizes: Array) -> Independent:
+        """The errors of values times ``sizes`` (runs x values)."""
+        return Independent(self.variances * np.square(sizes))
+
 
 @record
 class Joint:
@@ -71,6 +75,10 @@ class Joint:
     def some(self, runs: NDArray[np.bool_]) -> Joint:
         """The errors of some of the runs."""
         return Joint(self.matrix[runs])
+
+    def scaled(self, sizes: Array) -> Joint:
+        """The errors of values times ``sizes`` (runs x values)."""
+        return Joint(self.matrix * sizes[:, :, None] * sizes[:, None, :])
 
 
 Errors = Independent | Joint

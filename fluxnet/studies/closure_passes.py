@@ -1,100 +1,95 @@
 """Runs with the same rows closed as one batch, again until their errors agree with the answer.
 
 Two kinds of sd depend on the answer: a relative sd is taken of the reconciled value (one more
-pass), and a ratio A / B = r ± s weighs A - r B with s times B, so that B is needed.
+pass, unless the first rejects grossly: :data:`fluxnet.rates.covariance.GROSS`), and a ratio
+A / B = r ± s weighs A - r B with s times B, so that B is needed.
 """
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterator, Sequence
+from dataclasses import replace
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
-from fluxnet.rates.covariance import covariance_at, run_covariance
+from fluxnet.rates.covariance import GROSS, within_reach
 from fluxnet.rates.measured import Run
-from fluxnet.studies.closure_batch import ClosureArrays, close_many
+from fluxnet.rates.stacking import StackedErrors, covariances_at, sds_at, stack_errors
+from fluxnet.studies.closure_batch import ClosureArrays, balances_of, close_with
+from fluxnet.studies.closure_errors import Errors, Independent, Joint
 from fluxnet.studies.closure_plan import ClosurePlan
 from fluxnet.studies.closure_rows import ClosureRows
 
-__all__ = ["PreparedRun", "close_prepared", "prepare_run"]
+__all__ = ["PreparedRuns", "close_prepared", "prepare_runs"]
 
 Array = NDArray[np.float64]
 _PASSES = 30
-_LEAST = 0.1
-"""A rate that is reconciled to nothing keeps this part of its relative sd."""
 
 
 @record
-class PreparedRun:
-    """A run with its rows, and values and covariance over the measured ones.
+class PreparedRuns:
+    """Runs with the same rows: values and errors over the measured ones, runs x rows.
 
-    ``given`` are the values as measured; of a ratio ``values`` holds t of A - r B = t, 0.
+    ``given`` are the values as measured; of a ratio ``values`` holds t of A - r B = t, 0, and
+    ``errors`` that of the ratio. ``exact`` tells which values have no error.
     """
 
-    run: Run
+    runs: tuple[Run, ...]
     rows: ClosureRows
     given: Array
     values: Array
-    covariance: Array
+    stacked: StackedErrors
+    errors: Errors
+    exact: tuple[bool, ...]
 
-    @property
-    def exact(self) -> tuple[bool, ...]:
-        """Which values have no error."""
-        return tuple(bool(v == 0) for v in np.diag(self.covariance))
-
-    @property
-    def is_independent(self) -> bool:
-        """Whether the errors know nothing of one another."""
-        return not np.any(self.covariance - np.diag(np.diag(self.covariance)))
-
-    @property
-    def signature(self) -> tuple[object, ...]:
-        """What runs of one batch have in common."""
-        return self.rows, self.exact, self.run.unit, self.is_independent
+    def each(self) -> Iterator[PreparedRuns]:
+        """The runs, each by itself."""
+        for run in self.runs:
+            yield prepare_runs((run,), self.rows)
 
 
-def prepare_run(run: Run, rows: ClosureRows) -> PreparedRun:
-    """The values and covariance of a run's measured rows."""
-    given = np.array([
-        0.0 if r.place is None else float(run.measured[r.place].value or 0.0)
-        for r in rows.measured
-    ])  # fmt: skip
+def prepare_runs(runs: Sequence[Run], rows: ClosureRows) -> PreparedRuns:
+    """The values and errors of runs with the same rows, of which the same are exact."""
+    stacked = stack_errors(runs)
+    given = _by_rows(rows, stacked.values)
     values = given.copy()
-    values[_ratio_places(rows)] = 0.0
-    return PreparedRun(run, rows, given, values, _covariance(rows, run_covariance(run)))
+    values[:, [ratio.row for ratio in rows.ratios if ratio.row is not None]] = 0.0
+    errors = _errors(rows, stacked, stacked.values, typed=True)
+    exact = tuple(bool(v == 0) for v in errors.variances[0])
+    return PreparedRuns(tuple(runs), rows, given, values, stacked, errors, exact)
 
 
-def close_prepared(
-    plan: ClosurePlan, batch: Sequence[PreparedRun]
-) -> tuple[ClosureArrays, Array]:
+def close_prepared(plan: ClosurePlan, batch: PreparedRuns) -> ClosureArrays:
     """Close runs with the same rows.
 
-    Returns
-    -------
-    The arrays, and the sds that were used: runs x values, those of ratios in their own unit.
+    The balances are those of the values and errors as measured, whatever the passes make of
+    the errors.
 
     Raises
     ------
     NoVarianceError
         Where the covariance of a run gives a tested relation no variance.
     """
-    covariances = np.array([one.covariance for one in batch])
-    sizes = np.array([_first_sizes(one) for one in batch])
-    arrays, sizes = _settle(plan, batch, covariances, sizes)
-    if any(_is_relative(one.run) for one in batch):
-        covariances = np.array([_at_answer(one, arrays, i) for i, one in enumerate(batch)])
-        arrays, sizes = _settle(plan, batch, covariances, sizes)
-    return arrays, np.sqrt(np.einsum("nii->ni", covariances))
+    first = _first_sizes(batch)
+    arrays, sizes = _settle(plan, batch, batch.errors, first)
+    as_measured = batch.errors.scaled(_measured_sizes(batch.rows, first, sizes))
+    balances: dict[str, Any] = balances_of(plan.matrices, batch.values, as_measured)
+    if batch.stacked.is_relative and plan.matrices.redundancy.size:
+        errors = _at_answer(batch, arrays)
+        arrays, _ = _settle(plan, batch, errors, sizes)
+    return replace(arrays, **balances)
 
 
 def _settle(
-    plan: ClosurePlan, batch: Sequence[PreparedRun], covariances: Array, sizes: Array
+    plan: ClosurePlan, batch: PreparedRuns, errors: Errors, sizes: Array
 ) -> tuple[ClosureArrays, Array]:
     """Close with the values t of ratios scaled by the denominators, until these stand still."""
     places = [(k, r.row) for k, r in enumerate(plan.ratios) if r.row is not None and plan.known[k]]
-    arrays = _close(plan, batch, covariances, sizes)
+    sizes = sizes.copy()
+    arrays = close_with(plan.matrices, batch.values, errors.scaled(sizes))
     for _ in range(_PASSES if places else 0):
         before = sizes.copy()
         for k, row in places:
@@ -102,71 +97,75 @@ def _settle(
             sizes[:, row] = np.where(size != 0, size, sizes[:, row])
         if (np.abs(sizes - before) <= 1e-10 * np.abs(before)).all():
             break
-        arrays = _close(plan, batch, covariances, sizes)
+        arrays = close_with(plan.matrices, batch.values, errors.scaled(sizes))
     return arrays, sizes
 
 
-def _close(
-    plan: ClosurePlan, batch: Sequence[PreparedRun], covariances: Array, sizes: Array
-) -> ClosureArrays:
-    values = np.array([one.values for one in batch])
-    if batch[0].is_independent:
-        sds = np.sqrt(np.einsum("nii->ni", covariances)) * np.abs(sizes)
-        return close_many(plan.matrices, values, sds)
-    scaled = covariances * sizes[:, :, None] * sizes[:, None, :]
-    return close_many(plan.matrices, values, covariances=scaled)
+def _by_rows(rows: ClosureRows, of_rates: Array) -> Array:
+    """What is known of each measured rate as what is known of each row: 0 where it is none."""
+    padded = np.pad(of_rates, ((0, 0), (0, 1)))
+    return np.asarray(padded[:, _places(rows)])
 
 
-def _ratio_places(rows: ClosureRows) -> list[int]:
-    return [ratio.row for ratio in rows.ratios if ratio.row is not None]
+def _places(rows: ClosureRows) -> list[int]:
+    """The place of each row among the measured rates, the last where it is none of them."""
+    return [-1 if row.place is None else row.place for row in rows.measured]
 
 
-def _covariance(rows: ClosureRows, whole: Array) -> Array:
-    """The covariance of the rows used, with what an uncertain ash content adds."""
-    own = len(whole)
-    places = [own if r.place is None else r.place for r in rows.measured]
-    spread = np.array([r.spread for r in rows.measured])
-    padded = np.pad(whole, (0, 1))
-    return np.asarray(padded[np.ix_(places, places)] + np.diag(np.square(spread)))
+def _errors(rows: ClosureRows, stacked: StackedErrors, values: Array, *, typed: bool) -> Errors:
+    """The errors of the rows at some values, with what an uncertain ash content adds."""
+    spread = np.square([row.spread for row in rows.measured])
+    if stacked.covariances is None:
+        sds = stacked.own if typed else sds_at(stacked, values)
+        return Independent(np.square(_by_rows(rows, sds)) + spread)
+    whole = stacked.covariances if typed else covariances_at(stacked, values)
+    padded = np.pad(whole, ((0, 0), (0, 1), (0, 1)))
+    places = _places(rows)
+    return Joint(padded[:, places][:, :, places] + np.diag(spread))
 
 
-def _first_sizes(one: PreparedRun) -> Array:
+def _first_sizes(batch: PreparedRuns) -> Array:
     """What t of each value counts: 1, of a ratio the denominator as far as it was measured.
 
     A guess stands for one that was not: its numerator over the ratio, else the largest rate.
     """
-    sizes = np.ones(len(one.values))
-    largest = float(np.abs(one.values).max(initial=0.0)) or 1.0
-    for ratio in one.rows.ratios:
+    values = batch.values
+    sizes = np.ones_like(values)
+    largest = np.abs(values).max(axis=1, initial=0.0)
+    largest[largest == 0] = 1.0
+    for ratio in batch.rows.ratios:
         if ratio.row is None:
             continue
         over, below = (
-            float(np.array([float(w) for w in part.measured]) @ one.values)
+            values @ np.array([float(w) for w in part.measured])
             for part in (ratio.over, ratio.below)
         )
-        value = float(ratio.value or 0)
-        sizes[ratio.row] = below or (over / value if value else 0.0) or largest
+        guess = over / float(ratio.value) if ratio.value else np.zeros_like(over)
+        guess = np.where(guess != 0, guess, largest)
+        sizes[:, ratio.row] = np.where(below != 0, below, guess)
     return sizes
 
 
-def _is_relative(run: Run) -> bool:
-    return bool(run.shared_error) or any(r.relative is not None for r in run.measured)
+def _measured_sizes(rows: ClosureRows, first: Array, settled: Array) -> Array:
+    """The sizes as measured, and as found where a denominator was not measured."""
+    sizes = first.copy()
+    for ratio in rows.ratios:
+        if ratio.row is not None and any(ratio.below.unmeasured):
+            sizes[:, ratio.row] = settled[:, ratio.row]
+    return sizes
 
 
-def _at_answer(one: PreparedRun, arrays: ClosureArrays, place: int) -> Array:
-    """The covariance with relative errors taken of the reconciled values.
-
-    Kept away from zero: a variance would vanish with its value, and only a typed 0 is exact.
-    """
-    answer = arrays.reconciled[place].copy()
-    for k, ratio in enumerate(one.rows.ratios):
+def _at_answer(batch: PreparedRuns, arrays: ClosureArrays) -> Errors:
+    """The errors with relative ones taken of the reconciled values, where these are believed."""
+    answer = arrays.reconciled.copy()
+    for k, ratio in enumerate(batch.rows.ratios):
         if ratio.row is not None:
-            found = arrays.ratio[place, k]
-            answer[ratio.row] = found if np.isfinite(found) else one.given[ratio.row]
-    least = _LEAST * np.abs(one.given)
-    answer = np.where(np.abs(answer) < least, np.copysign(least, answer), answer)
-    values = np.array([float(r.value or 0.0) for r in one.run.measured])
-    for row, value in zip(one.rows.measured, answer, strict=True):
+            found = arrays.ratio[:, k]
+            answer[:, ratio.row] = np.where(np.isfinite(found), found, batch.given[:, ratio.row])
+    answer = within_reach(batch.given, answer)
+    answer[arrays.p < GROSS] = batch.given[arrays.p < GROSS]
+    values = batch.stacked.values.copy()
+    for j, row in enumerate(batch.rows.measured):
         if row.place is not None:
-            values[row.place] = value
-    return _covariance(one.rows, covariance_at(one.run, values))
+            values[:, row.place] = answer[:, j]
+    return _errors(batch.rows, batch.stacked, values, typed=False)

@@ -8,6 +8,7 @@ from difflib import get_close_matches
 from fluxnet.chemistry.catalogue import find_compound
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.source import Span
 from fluxnet.network.model import Network, Quantity, QuantityKind, Role, Species
 from fluxnet.rates.leaving_out import leave_out
 from fluxnet.rates.measured import RatesTable, Run, SdSource
@@ -127,4 +128,5 @@ def _unknown(name: str, runs: Sequence[Run]) -> Diagnostic:
     near = get_close_matches(fold(name), list(bare), 1, 0.6)
     if near and find_compound(split_direction(name)[0]) is None:
         mend = f"did you mean {bare[near[0]]}?"
-    return Diagnostic(Name.UNKNOWN_QUANTITY, f"no row of {name} to leave out", mend=mend)
+    where = Span(f"--without {name}", 0)
+    return Diagnostic(Name.UNKNOWN_QUANTITY, f"no row of {name} to leave out", where, mend=mend)

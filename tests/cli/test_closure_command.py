@@ -89,6 +89,14 @@ def test_a_nitrogen_source_that_the_table_names_wrongly_is_a_fault_of_the_table(
     assert run(["closure", "bad.csv"]) == Exit.FINDING
 
 
+@pytest.mark.parametrize("option", ["--nitrogen nope", "--without nope"])
+def test_an_option_that_names_what_is_not_there_is_the_place_of_its_fault(
+    folder: Path, capsys: pytest.CaptureFixture[str], option: str
+) -> None:
+    assert run(["closure", "good.csv", *option.split()]) == Exit.MISUSE
+    assert capsys.readouterr().err.startswith(f"{option}: error: ")
+
+
 def test_files_of_one_run_hold_its_test(folder: Path) -> None:
     assert run(["closure", "good.csv", "--csv", "out"]) == Exit.SOUND
     head, row = (folder / "out" / "overview.csv").read_text(encoding="utf-8").splitlines()

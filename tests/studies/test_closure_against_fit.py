@@ -25,6 +25,7 @@ HEAD = "run,species,direction,rate,sd,unit\n"
 CORRELATIONS = {
     "absolute": "CO2 out,oxygen in,0.7",
     "relative": "CO2 out,oxygen in,0.7\nCO2 out,glucose in,-0.3",
+    "poor": "CO2 out,oxygen in,0.7",
     "ratio": "CO2 out / oxygen in,oxygen in,-0.6",
     "yields": "X out / glucose in,mu / glucose in,0.9\noxygen in,CO2 out / oxygen in,-0.6",
     "blank": "ethanol out,X out,0.4",
@@ -42,6 +43,8 @@ TABLES = {
     "mu / glucose in,,0.066,0.005,;X out / glucose in,,2.6,0.2,",
     "blank": "glucose,in,2.3,0.1,mmol/g/h;CO2,out,,,mmol/g/h;oxygen,in,5.9,5 %,mmol/g/h;"
     "ethanol,out,0.5,10 %,mmol/g/h;X,out,6,3 %,mmol/g/h",
+    "poor": "glucose,in,2.4,5 %,mmol/g/h;CO2,out,6.1,5 %,mmol/g/h;oxygen,in,6.9,5 %,mmol/g/h;"
+    "ethanol,out,0.9,40 %,mmol/g/h;mu,,0.15,3 %,1/h",
     "exact": "glucose,in,2.3,0,mmol/g/h;CO2,out,6.9,0.3,mmol/g/h;oxygen,in,5.7,0.3,mmol/g/h;"
     "ethanol,out,0.5,0,mmol/g/h;mu,,0.155,0.005,1/h",
 }
@@ -105,3 +108,21 @@ def test_one_answer_for_two_kinds_of_cells_with_uncertain_ash() -> None:
         assert found is not None
         assert found.reconciled == pytest.approx(told[shown].value, rel=1e-3)
         assert found.reconciled_sd == pytest.approx(told[shown].value_sd or 0, rel=5e-3)
+
+
+FAR_OFF = (
+    "A,glucose,in,2.4,5 %,mmol/g/h\nA,CO2,out,2.1,5 %,mmol/g/h\nA,oxygen,in,9,5 %,mmol/g/h\n"
+    "A,ethanol,out,0.5,10 %,mmol/g/h\nA,mu,,0.15,3 %,1/h\n"
+)
+
+
+@pytest.mark.parametrize("before", ["", "shared error biomass 6 %\n"], ids=["", "shared"])
+def test_one_answer_far_off(before: str) -> None:
+    """Both leave the sds of such rates as typed."""
+    model = network("0")
+    table = read_rates_text(before + HEAD + FAR_OFF, network=model).table
+    assert table is not None
+    (run,) = close_rates(table, network=model).runs
+    fit = fit_fluxes(model, table.runs[0])
+    assert run.test.h == pytest.approx(float(fit.h or 0), rel=1e-9)
+    assert (run.test.p or 0) < 1e-6
