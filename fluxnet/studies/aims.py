@@ -12,7 +12,7 @@ from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role
 
-__all__ = ["Aim", "Sense", "read_aim"]
+__all__ = ["Aim", "Sense", "name_quantity", "read_aim"]
 
 _NUMBER = re.compile(
     r"[+-]?(?:\d{1,30}/0*[1-9]\d{0,29}"
@@ -74,20 +74,31 @@ def _read_term(words: Sequence[str], sign: int, network: Network) -> tuple[Fract
     rest = list(words)
     if len(rest) > 1 and _NUMBER.fullmatch(rest[0]):
         weight *= _read_weight(rest.pop(0))
-    direction = None
-    if len(rest) > 1 and rest[0] in ("in", "out"):
-        direction = Direction(rest.pop(0))
-    elif len(rest) > 1 and rest[-1] in ("in", "out"):
-        direction = Direction(rest.pop())
     if "/" in rest:
         raise MisuseError(
             "an aim is no ratio: fix the lower part with a limit, and aim at the upper one"
         )
+    return weight, name_quantity(rest, network)
+
+
+def name_quantity(words: Sequence[str], network: Network, what: str = "an aim") -> Quantity:
+    """The one quantity that some words name: ``ethanol``, ``in CO2``, ``mu``, ``flux oxphos``.
+
+    Raises
+    ------
+    MisuseError
+        Where they name none of the network's, with the nearest.
+    """
+    rest, direction = list(words), None
+    if len(rest) > 1 and rest[0] in ("in", "out"):
+        direction = Direction(rest.pop(0))
+    elif len(rest) > 1 and rest[-1] in ("in", "out"):
+        direction = Direction(rest.pop())
     if len(rest) == 2 and rest[0] == "flux" and network.find_reaction(rest[1]) is not None:
-        return weight, Quantity(QuantityKind.FLUX, rest[1])
+        return Quantity(QuantityKind.FLUX, rest[1])
     if len(rest) != 1:
-        raise MisuseError(f"an aim is a name, not {' '.join(words) or 'nothing'!r}")
-    return weight, _find_quantity(rest[0], direction, network)
+        raise MisuseError(f"{what} is a name, not {' '.join(words) or 'nothing'!r}")
+    return _find_quantity(rest[0], direction, network)
 
 
 def _read_weight(text: str) -> Fraction:
