@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
+from fractions import Fraction
 from heapq import heapify, heappop, heappush
 from typing import Any
 
@@ -15,7 +16,7 @@ from flint import fmpq
 
 from fluxnet.ground.record import record
 
-__all__ = ["Factors", "Numbers", "factorise"]
+__all__ = ["Factors", "Numbers", "factorise", "solve_turned"]
 
 Numbers = Mapping[int, Any]
 """{place: fmpq}, zeros left out."""
@@ -162,3 +163,27 @@ def _clear(
             del row[j]
             holders[j].discard(name)
     return share
+
+
+def solve_turned(
+    rows: Sequence[Mapping[int, Fraction]], right: Mapping[int, Fraction]
+) -> tuple[Fraction, ...] | None:
+    """The y of A' y = c, one a row of a square sparse matrix; None where it is singular.
+
+    Examples
+    --------
+    >>> solve_turned([{0: Fraction(1), 4: Fraction(1)}, {4: Fraction(2)}], {0: Fraction(1)})
+    (Fraction(1, 1), Fraction(-1, 2))
+    >>> solve_turned([{0: Fraction(1)}, {0: Fraction(2)}], {})
+    """
+    own = [(i, {j: fmpq(v.numerator, v.denominator) for j, v in row.items()})
+           for i, row in enumerate(rows)]  # fmt: skip
+    columns = {j for _, row in own for j in row}
+    factors = factorise(own, columns)
+    if not factors.is_regular:
+        return None
+    given = {j: fmpq(v.numerator, v.denominator) for j, v in right.items() if v}
+    found = factors.solve_turned(given)
+    return tuple(
+        Fraction(int(v.p), int(v.q)) for v in (found.get(i, _ZERO) for i in range(len(own)))
+    )

@@ -20,7 +20,6 @@ Vector = NDArray[np.float64]
 Flags = NDArray[np.bool_]
 
 _SPREAD = 1e3
-_MOST = 100
 _ROUNDING = 1e-9
 """A part of what is added up that the rounding of the coefficients can explain."""
 
@@ -45,7 +44,7 @@ def is_spread(sizes: Vector) -> bool:
 
 
 def is_best(matrix: Vector, costs: Vector, basis: Basis) -> bool:
-    """Whether no move away from a basis makes the costs smaller; True where it is too large.
+    """Whether no move away from a basis makes the costs smaller, but for rounding.
 
     Parameters
     ----------
@@ -56,15 +55,17 @@ def is_best(matrix: Vector, costs: Vector, basis: Basis) -> bool:
     basis
         That of the solution.
     """
-    from fluxnet.exact.linear import solve
+    from fluxnet.exact.factors import solve_turned
 
     count = matrix.shape[1]
     columns = np.flatnonzero(basis.inside[:count])
     rows = np.flatnonzero(~basis.inside[count:])
-    if len(columns) != len(rows) or len(rows) > _MOST:
-        return len(rows) > _MOST
-    equations = [[Fraction(float(matrix[i, j])) for i in rows] for j in columns]
-    found = solve(equations, [Fraction(float(costs[j])) for j in columns], len(rows))
+    lines: list[dict[int, Fraction]] = [
+        {int(j): Fraction(float(matrix[i, j])) for j in columns if matrix[i, j]} for i in rows
+    ]
+    found = None
+    if len(rows) == len(columns) == len({j for line in lines for j in line}):
+        found = solve_turned(lines, {int(j): Fraction(float(costs[j])) for j in columns})
     if found is None:
         return False
     prices = np.array([float(p) for p in found])

@@ -1,12 +1,12 @@
 """Linear programmes on a warm model: costs and bounds change, the model is never built again.
 
-The only user of highspy (imported when the first programme is made).
+The solver's own model is made by :mod:`fluxnet.solving.solver_model`.
 """
 
 from __future__ import annotations
 
 from enum import Enum
-from typing import Any
+from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,8 +15,19 @@ from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.record import record
 from fluxnet.solving.basis_proof import Basis, is_best, is_spread
 from fluxnet.solving.problem import Problem
-from fluxnet.solving.residuals import Pair, is_contradiction, is_ray, violation_of, worst_violation
+from fluxnet.solving.residuals import (
+    Entries,
+    Pair,
+    is_contradiction,
+    is_ray,
+    violation_of,
+    worst_violation,
+)
 from fluxnet.solving.scaling import find_scales
+from fluxnet.solving.solver_model import basis_places, load_model
+
+if TYPE_CHECKING:
+    from fluxnet.exact.simplex import Place
 
 __all__ = ["LinearSolution", "Outcome", "Programme", "worst_violation"]
 
@@ -64,6 +75,14 @@ class LinearSolution:
     residual: float
 
 
+_MEANINGS = {
+    "kOptimal": Outcome.OPTIMAL,
+    "kModelEmpty": Outcome.OPTIMAL,
+    "kInfeasible": Outcome.INFEASIBLE,
+    "kUnbounded": Outcome.UNBOUNDED,
+}
+
+
 class Programme:
     """A warm linear programme: the one mutable object of the package.
 
@@ -92,11 +111,12 @@ class Programme:
         self._column_low = problem.column_low.copy()
         self._column_high = problem.column_high.copy()
         self._sizes = np.abs(problem.matrix)
+        self._entries = Entries.of(problem.matrix)
         self._costs = np.zeros(len(problem.columns))
         self._cost_scale = 1.0
         self._row_scale, self._column_scale = find_scales(problem, self._sizes)
         self._is_spread = is_spread(self._sizes)
-        self._highs, self._meanings = self._load()
+        self._highs = load_model(problem, self._entries, self._row_scale, self._column_scale)
         self._set_method(*_ATTEMPTS[0])
 
     # --- changes ---------------------------------------------------------------------
@@ -197,6 +217,10 @@ class Programme:
         _, exists, ray = self._highs.getPrimalRay()
         return np.array(ray) * self._column_scale if exists else None
 
+    def places(self) -> tuple[Place, ...]:
+        """Where each flux, then each row, stands in the last basis (the rows' own without one)."""
+        return basis_places(self._highs, *self.problem.matrix.shape)
+
     # --- inside ----------------------------------------------------------------------
 
     def _solve(self, cost: Vector, sign: float) -> LinearSolution:
@@ -231,7 +255,7 @@ class Programme:
     def _attempt(self) -> tuple[Outcome, bool]:
         """What the solver says, and whether that is sure."""
         self._highs.run()
-        outcome = self._meanings.get(self._highs.getModelStatus(), Outcome.FAILED)
+        outcome = _MEANINGS.get(self._highs.getModelStatus().name, Outcome.FAILED)
         problem, bounds = self.problem, self._bounds()
         if outcome is Outcome.INFEASIBLE:
             weights = self.dual_ray()
@@ -246,62 +270,20 @@ class Programme:
             return outcome, gain < 0 and is_ray(problem.matrix, ray, *bounds)
         if outcome is Outcome.OPTIMAL:
             self._fluxes = np.array(self._highs.getSolution().col_value) * self._column_scale
-            self.residual = violation_of(problem.matrix, self._sizes, self._fluxes, *bounds)
+            self.residual = violation_of(self._entries, self._fluxes, *bounds)
             return outcome, self.residual < 1e-7 and (not self._is_spread or self._is_best())
         return outcome, False
 
     def _is_best(self) -> bool:
         """Whether the solver's basis is the best, in exact arithmetic."""
-        import highspy
+        from fluxnet.exact.simplex import Place
 
-        found, status = self._highs.getBasis(), highspy.HighsBasisStatus
-        places = np.array([*found.col_status, *found.row_status])
+        places = np.array(self.places())
         open_ = np.append(self._column_low < self._column_high, self._row_low < self._row_high)
-        rise = open_ & ((places == status.kLower) | (places == status.kZero))
-        fall = open_ & ((places == status.kUpper) | (places == status.kZero))
+        rise = open_ & ((places == Place.LOW) | (places == Place.FREE))
+        fall = open_ & ((places == Place.HIGH) | (places == Place.FREE))
         costs = self._costs / self._column_scale
-        return is_best(self.problem.matrix, costs, Basis(places == status.kBasic, rise, fall))
-
-    def _load(self) -> tuple[Any, dict[Any, Outcome]]:
-        """The solver's model, and what its statuses mean (highspy has no types to lean on)."""
-        import highspy
-
-        status = highspy.HighsModelStatus
-        meanings = {
-            status.kOptimal: Outcome.OPTIMAL,
-            status.kModelEmpty: Outcome.OPTIMAL,
-            status.kInfeasible: Outcome.INFEASIBLE,
-            status.kUnbounded: Outcome.UNBOUNDED,
-        }
-        problem = self.problem
-        rows, columns = problem.matrix.shape
-        make: Any = highspy.Highs
-        highs = make()
-        for option, value in (
-            ("output_flag", False),
-            ("presolve", "off"),
-            ("solver", "simplex"),
-            ("threads", 1),
-            ("simplex_scale_strategy", 0),  # scaled here; its own leaves some problems "unknown"
-            ("small_matrix_value", 1e-12),
-        ):
-            highs.setOptionValue(option, value)
-        scaled = problem.matrix * self._row_scale[:, None] * self._column_scale
-        place_row, place_column = np.nonzero(scaled)
-        model = highspy.HighsLp()
-        model.num_row_, model.num_col_ = rows, columns
-        model.col_cost_ = self._costs
-        model.col_lower_ = self._column_low / self._column_scale
-        model.col_upper_ = self._column_high / self._column_scale
-        model.row_lower_ = self._row_low * self._row_scale
-        model.row_upper_ = self._row_high * self._row_scale
-        model.a_matrix_.format_ = highspy.MatrixFormat.kRowwise
-        model.a_matrix_.start_ = np.searchsorted(place_row, np.arange(rows + 1)).astype(np.int32)
-        model.a_matrix_.index_ = place_column.astype(np.int32)
-        model.a_matrix_.value_ = scaled[place_row, place_column]
-        if highs.passModel(model) is highspy.HighsStatus.kError:
-            raise MisuseError("the problem is beyond what a linear programme can hold")
-        return highs, meanings
+        return is_best(self.problem.matrix, costs, Basis(places == Place.BASIC, rise, fall))
 
     @staticmethod
     def _refuse_nan(*values: float | Vector) -> None:

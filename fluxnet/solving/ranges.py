@@ -10,6 +10,7 @@ from fluxnet.ground.progress import Progress, silent
 from fluxnet.ground.record import record
 from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.problem import Problem
+from fluxnet.solving.residuals import Entries
 
 __all__ = ["Ranges", "find_ranges"]
 
@@ -37,7 +38,8 @@ def find_ranges(
     """Minimise and maximise each flux, or each functional, under all bounds of a problem.
 
     One model is kept warm: only costs change. A flux that stood at its own bound in any earlier
-    solution cannot go further, and is not asked for again; that is exact.
+    solution cannot go further, and is not asked for again; nor is one that rows with equality
+    leave a single value, one row after another. Both are exact.
 
     Parameters
     ----------
@@ -82,8 +84,13 @@ def find_ranges(
     worst, outcome = 0.0, Outcome.OPTIMAL
     seen = programme.fluxes()[None] @ targets.T
     lowest, highest = seen[0].copy(), seen[0].copy()
+    loose = ~_fixed_columns(problem)
+    moves = (targets[:, loose] != 0).any(axis=1)
     for k, target in enumerate(targets):
         progress("ranges", k, len(targets))
+        if not moves[k]:
+            low[k] = high[k] = min(max(seen[0, k], floor[k]), ceiling[k]) + 0.0
+            continue
         for sign, ends, reached, bound in (
             (1.0, low, lowest, floor),
             (-1.0, high, highest, ceiling),
@@ -106,3 +113,18 @@ def find_ranges(
     for ends in (low, high):
         ends.setflags(write=False)
     return Ranges(low, high, outcome, worst)
+
+
+def _fixed_columns(problem: Problem) -> NDArray[np.bool_]:
+    """The fluxes that their own bounds, or rows in which all others are fixed, leave one value."""
+    fixed: NDArray[np.bool_] = problem.column_low == problem.column_high
+    entries = Entries.of(problem.matrix)
+    equal = (problem.row_low == problem.row_high)[entries.row]
+    rows, columns = entries.row[equal], entries.column[equal]
+    while True:
+        left = ~fixed[columns]
+        rows, columns = rows[left], columns[left]
+        alone = np.bincount(rows, minlength=entries.rows)[rows] == 1
+        if not alone.any():
+            return fixed
+        fixed[columns[alone]] = True

@@ -5,12 +5,34 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.record import record
 from fluxnet.solving.problem import Problem
 
-__all__ = ["Pair", "is_contradiction", "is_ray", "violation_of", "worst_violation"]
+__all__ = ["Entries", "Pair", "is_contradiction", "is_ray", "violation_of", "worst_violation"]
 
 Vector = NDArray[np.float64]
 Pair = tuple[Vector, Vector]
+
+
+@record
+class Entries:
+    """The entries of a matrix that are not zero, row by row; most rows hold a handful."""
+
+    row: NDArray[np.intp]
+    column: NDArray[np.intp]
+    value: Vector
+    rows: int
+
+    @classmethod
+    def of(cls, matrix: Vector) -> Entries:
+        """Those of a matrix."""
+        row, column = np.nonzero(matrix)
+        return cls(row, column, matrix[row, column], len(matrix))
+
+    def add(self, terms: Vector) -> Vector:
+        """The sum of each row's terms, given one an entry."""
+        total = np.bincount(self.row, weights=terms, minlength=self.rows)
+        return np.asarray(total, dtype=np.float64)
 
 
 def worst_violation(problem: Problem, fluxes: Vector) -> float:
@@ -26,15 +48,14 @@ def worst_violation(problem: Problem, fluxes: Vector) -> float:
         0 where nothing is violated.
     """
     rows, columns = (problem.row_low, problem.row_high), (problem.column_low, problem.column_high)
-    return violation_of(problem.matrix, np.abs(problem.matrix), fluxes, rows, columns)
+    return violation_of(Entries.of(problem.matrix), fluxes, rows, columns)
 
 
-def violation_of(
-    matrix: Vector, sizes: Vector, fluxes: Vector, rows: Pair, columns: Pair
-) -> float:
-    """:func:`worst_violation` by parts; ``sizes`` are the absolute values of the matrix."""
-    values = matrix @ fluxes
-    magnitude = np.maximum(1.0, sizes @ np.abs(fluxes))
+def violation_of(entries: Entries, fluxes: Vector, rows: Pair, columns: Pair) -> float:
+    """:func:`worst_violation` by parts."""
+    terms = entries.value * fluxes[entries.column]
+    values = entries.add(terms)
+    magnitude = np.maximum(1.0, entries.add(np.abs(terms)))
     row = np.maximum(rows[0] - values, values - rows[1]) / magnitude
     column = np.maximum(columns[0] - fluxes, fluxes - columns[1])
     column = column / np.maximum(1.0, np.abs(fluxes))

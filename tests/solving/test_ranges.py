@@ -15,7 +15,7 @@ from fluxnet.solving.alter import with_row
 from fluxnet.solving.build import build_problem, quantity_row
 from fluxnet.solving.least_flux import least_total_flux
 from fluxnet.solving.linear import Outcome, Programme, worst_violation
-from fluxnet.solving.problem import Row, RowKind
+from fluxnet.solving.problem import Problem, Row, RowKind
 from fluxnet.solving.ranges import find_ranges
 
 TWO_WAYS = """
@@ -180,3 +180,27 @@ def test_the_ranges_of_sixty_reactions_are_those_of_another_solver():
         ):
             assert mine == other or abs(mine - other) < 1e-8, problem.columns[j]
     assert np.isinf(ranges.high[[problem.column("sdh"), problem.column("frd")]]).all()
+
+
+def test_what_equalities_fix_one_after_another_is_not_asked_of_the_solver(monkeypatch) -> None:
+    # in -> a -> b -> out with the uptake held, and a circle beside it that nothing holds.
+    count, asked = 300, []
+    matrix = np.zeros((count, count + 2))
+    for i in range(count):
+        matrix[i, i], matrix[i, i + 1] = 1.0, -1.0
+    low, high = np.zeros(count + 2), np.full(count + 2, np.inf)
+    low[0] = high[0] = 2.0
+    high[-1] = 7.0
+    problem = Problem(
+        tuple(f"r{j}" for j in range(count + 2)),
+        tuple(Row(RowKind.BALANCE, f"s{i}") for i in range(count)),
+        matrix, np.zeros(count), np.zeros(count), low, high,
+    )  # fmt: skip
+    run = Programme.run
+    monkeypatch.setattr(Programme, "run", lambda self: asked.append(1) or run(self))
+    ranges = find_ranges(problem)
+
+    assert ranges.low[:-1].tolist() == ranges.high[:-1].tolist()
+    assert ranges.high[count] == 2.0
+    assert (ranges.low[-1], ranges.high[-1]) == (0.0, 7.0)
+    assert len(asked) <= 3
