@@ -12,12 +12,16 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
+from fluxnet.solving.alter import without_bounds
 from fluxnet.solving.least_change import Change, LeastChange, least_change
 from fluxnet.solving.linear import Programme
 from fluxnet.solving.members import Member, list_members
 from fluxnet.solving.problem import Problem
 
-__all__ = ["Change", "Conflict", "LeastChange", "find_conflict", "least_change"]
+__all__ = [
+    "Change", "Conflict", "LeastChange", "find_conflict", "find_conflicts", "least_change",
+    "without_members",
+]
 
 Vector = NDArray[np.float64]
 
@@ -100,6 +104,43 @@ def find_conflict(problem: Problem, *, unit: str = "") -> Conflict:
     kept += sieve.filter(making[::-1])
     chosen = tuple(m for m in members if m in kept)
     return Conflict(chosen, is_hard, _is_irreducible(problem, chosen))
+
+
+def find_conflicts(problem: Problem, *, most: int = 3, unit: str = "") -> tuple[Conflict, ...]:
+    """Conflicts that share no limit and no measurement; ``most`` of them at most.
+
+    After each the limits and measurements among its members are lifted, and the rest is asked
+    again; where it has none, nothing can be lifted and the search ends.
+
+    Returns
+    -------
+    tuple of Conflict
+        Empty where the problem has a solution.
+
+    Examples
+    --------
+    >>> from fluxnet.solving.problem import Row, RowKind
+    >>> rows = tuple(Row(RowKind.LIMIT, f"limit {n}") for n in ("a <= 1", "a >= 2", "b <= -1"))
+    >>> problem = Problem(("a", "b"), rows, np.array([[1.0, 0], [1, 0], [0, 1]]),
+    ...     np.array([-np.inf, 2, -np.inf]), np.array([1, np.inf, -1]), np.zeros(2),
+    ...     np.full(2, np.inf))
+    >>> sorted([m.name for m in conflict.given] for conflict in find_conflicts(problem))
+    [['limit a <= 1', 'limit a >= 2'], ['limit b <= -1']]
+    """
+    found: list[Conflict] = []
+    while len(found) < most:
+        conflict = find_conflict(problem, unit=unit)
+        if conflict.members:
+            found.append(conflict)
+        if not conflict.given:
+            break
+        problem = without_members(problem, conflict.given)
+    return tuple(found)
+
+
+def without_members(problem: Problem, members: Iterable[Member]) -> Problem:
+    """The problem with the bounds of some limits and measurements lifted."""
+    return without_bounds(problem, [i for member in members for i in member.rows])
 
 
 class _Sieve:

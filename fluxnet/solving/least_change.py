@@ -16,7 +16,7 @@ from fluxnet.solving.quadratic import solve_quadratic
 from fluxnet.solving.scaling import median_of
 from fluxnet.solving.violations import same_way
 
-__all__ = ["Change", "LeastChange", "least_change"]
+__all__ = ["Change", "LeastChange", "least_change", "quantity_in"]
 
 Vector = NDArray[np.float64]
 _PASSES = 30
@@ -240,7 +240,7 @@ def _soft_rows(problem: Problem) -> _Soft:
     for k, i in enumerate(places):
         quantity = problem.rows[i].quantity
         if quantity is not None and quantity.denominator is not None:
-            row = _row_of(problem, quantity.denominator)
+            row = quantity_in(problem, quantity.denominator)
             if row is not None:
                 below[k] = row / problem.rows[i].per_mole
     rows = [problem.rows[i] for i in places]
@@ -254,7 +254,7 @@ def _soft_rows(problem: Problem) -> _Soft:
     return _Soft(problem.matrix[places], values, sds, own, ratios, below)
 
 
-def _row_of(problem: Problem, quantity: Quantity) -> Vector | None:
+def quantity_in(problem: Problem, quantity: Quantity) -> Vector | None:
     """The row of a quantity that the problem itself holds, in any direction."""
     if quantity.kind is QuantityKind.FLUX:
         row = np.zeros(len(problem.columns))

@@ -125,7 +125,7 @@ def lay_rows(
             left_out.append(limit)
     for limit in hard:
         if not limit.is_measured:
-            _add_limit(draft, limit, network)
+            _add_limit(draft, limit, network, run)
     for limit in left_out:
         _add_zeros(draft, limit, network)
     for limit in hard:
@@ -222,14 +222,15 @@ def _add_reading(
         pair = Limit(
             reading.quantity, Relation.BETWEEN, Fraction(ratio - half), Fraction(ratio + half)
         )
-        _add_ratio(draft, pair, reading.kind, reading.name, reading.span, False)
+        _add_ratio(draft, pair, reading.kind, reading.name, reading.span, per_mole)
 
 
-def _add_limit(draft: _Draft, limit: Limit, network: Network) -> None:
+def _add_limit(draft: _Draft, limit: Limit, network: Network, run: Run | None) -> None:
     name = limit_words(limit, network)
     if limit.quantity.kind is QuantityKind.RATIO:
         guard = may_reverse(limit.quantity.denominator, network)
-        _add_ratio(draft, limit, RowKind.LIMIT, name, limit.span, guard)
+        per_mole = _per_mole(limit.quantity, network, run)
+        _add_ratio(draft, limit, RowKind.LIMIT, name, limit.span, per_mole, guard)
         return
     low = -inf if limit.low is None else float(limit.low)
     high = inf if limit.high is None else float(limit.high)
@@ -237,20 +238,26 @@ def _add_limit(draft: _Draft, limit: Limit, network: Network) -> None:
 
 
 def _add_ratio(
-    draft: _Draft, limit: Limit, kind: RowKind, name: str, span: Span, guard: bool
+    draft: _Draft,
+    limit: Limit,
+    kind: RowKind,
+    name: str,
+    span: Span,
+    per_mole: float,
+    guard: bool = False,
 ) -> None:
     """Bound a ratio A / B by A - low B >= 0 and A - high B <= 0, with B going its way.
 
     ``guard``: B could be negative, and a one-sided limit would then turn round.
     """
     quantity, low, high = limit.quantity, limit.low, limit.high
+    ends = [(low, 0.0, inf), (high, -inf, 0.0)]
     if low is not None and low == high:
-        draft.add(Row(kind, name, quantity, span=span, ratio=float(low)), 0.0, 0.0)
-        return
-    if low is not None:
-        draft.add(Row(kind, name, quantity, span=span, ratio=float(low)), 0.0, inf)
-    if high is not None:
-        draft.add(Row(kind, name, quantity, span=span, ratio=float(high)), -inf, 0.0)
+        ends, guard = [(low, 0.0, 0.0)], False
+    for ratio, least, most in ends:
+        if ratio is not None:
+            row = Row(kind, name, quantity, span=span, ratio=float(ratio), per_mole=per_mole)
+            draft.add(row, least, most)
     if guard and (low is None or high is None):
         draft.add(Row(kind, name, quantity.denominator, span=span), 0.0, inf)
 

@@ -1,0 +1,68 @@
+"""Why nothing is feasible, in full: each conflict with its bill and what would end it."""
+
+from __future__ import annotations
+
+from fluxnet.ground.record import record
+from fluxnet.solving.alternatives import Alternative, find_alternatives
+from fluxnet.solving.build import Built
+from fluxnet.solving.conflict import Conflict, find_conflicts, without_members
+from fluxnet.solving.farkas import find_contradiction
+from fluxnet.solving.problem import Problem
+from fluxnet.solving.rational_rows import rational_rows
+from fluxnet.studies.bill import Bill
+from fluxnet.studies.bill_conflict import BillPrice, make_bill, price_species
+
+__all__ = ["MOST_CONFLICTS", "ToldConflict", "explain_conflicts"]
+
+MOST_CONFLICTS = 3
+"""So many conflicts at most are looked for."""
+
+
+@record
+class ToldConflict:
+    """A conflict with the bill that proves it.
+
+    ``bill`` is None where no exact proof was found, ``prices`` are those of the balanced
+    species in its unit. ``alternatives`` are the limits and measurements each of which, giving
+    way alone, ends this conflict: of several conflicts, where the others are mended.
+    """
+
+    conflict: Conflict
+    bill: Bill | None
+    prices: tuple[BillPrice, ...]
+    alternatives: tuple[Alternative, ...]
+
+
+def explain_conflicts(built: Built, problem: Problem, unit: str) -> tuple[ToldConflict, ...]:
+    """The conflicts of a problem without a solution, at most :data:`MOST_CONFLICTS`.
+
+    Parameters
+    ----------
+    built
+        Where the problem comes from: its rows are the same, its bounds may differ.
+    unit
+        That of the rates.
+
+    Returns
+    -------
+    tuple of ToldConflict
+        Empty where the problem has a solution. No two share a limit or measurement.
+    """
+    conflicts = find_conflicts(problem, most=MOST_CONFLICTS, unit=unit)
+    if not conflicts:
+        return ()
+    rows = rational_rows(built)
+    told: list[ToldConflict] = []
+    for conflict in conflicts:
+        proof = find_contradiction(problem, conflict.members, rows)
+        others = [m for other in conflicts if other is not conflict for m in other.given]
+        rest = without_members(problem, others)
+        told.append(
+            ToldConflict(
+                conflict,
+                None if proof is None else make_bill(built, proof, unit),
+                () if proof is None else price_species(built, proof, unit),
+                find_alternatives(rest, conflict.given),
+            )
+        )
+    return tuple(told)
