@@ -127,7 +127,17 @@ def _run(run: FluxSolution) -> Record:
             }
             for y in run.yields
         ],
-        "relations": list(run.relations),
+        "relations": [
+            {
+                "words": relation.words,
+                "terms": [{"reaction": name, "coefficient": c} for name, c in relation.terms],
+                "value": relation.value,
+                "sd": relation.sd,
+                "low": relation.low,
+                "high": relation.high,
+            }
+            for relation in run.relations
+        ],
         "prices": [],
         "limits": [{"name": x.name, "value": x.value, "worth": x.worth} for x in run.limits],
         "conflict": _conflict(run),

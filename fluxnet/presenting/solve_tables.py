@@ -6,19 +6,21 @@ from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.network.model import QuantityKind
 from fluxnet.presenting.equation_text import equation_lines
 from fluxnet.presenting.numbers import format_range
-from fluxnet.presenting.screen import Block, Sentence
+from fluxnet.presenting.screen import Block
 from fluxnet.studies.ledger import LedgerLine
 from fluxnet.studies.solution import FluxKind, FluxSolution, RateEstimate, SolveStatus
 
 __all__ = ["solve_tables"]
 
 _AT_BOUND = "without ±: a bound cuts the range short, and no sd describes it"
+_MOST_RELATIONS = 6
 
 
 def solve_tables(run: FluxSolution) -> list[Block]:
     """All tables of a run whose fluxes were found."""
     blocks: list[Block] = [_rates(run), _fluxes(run)]
-    blocks += [Sentence(f"Only together: {relation}.") for relation in run.relations]
+    if run.relations:
+        blocks.append(_relations(run))
     if run.moved:
         blocks.append(_moved(run))
     if run.ledger:
@@ -133,6 +135,35 @@ def _fluxes(run: FluxSolution) -> Table:
     if any(_is_cut(f.value, f.sd, f.low, f.high) for f in run.fluxes):
         notes.append(_AT_BOUND)
     return Table("fluxes", _title(run, "Fluxes"), columns, rows, tuple(notes))
+
+
+def _relations(run: FluxSolution) -> Table:
+    """What is determined of undetermined fluxes: sums and differences, the plainest first."""
+    columns = (
+        Column("together", "words"),
+        Column("flux", "value", align=Align.RIGHT),
+        Column("", "sd"),
+        Column("", "", sd_of="value"),
+        Column("95 % range", "", align=Align.RIGHT),
+        Column("", "low"),
+        Column("", "high"),
+    )
+    rows = tuple(
+        (
+            r.words,
+            r.value,
+            r.sd,
+            _shown_sd(r.value, r.sd, r.low, r.high),
+            format_range(r.low, r.high),
+            r.low,
+            r.high,
+        )
+        for r in run.relations[:_MOST_RELATIONS]
+    )
+    more = len(run.relations) - len(rows)
+    notes = (f"and {more} more, which --json gives",) if more else ()
+    title = _title(run, "Undetermined fluxes of which only sums and differences are determined")
+    return Table("relations", title, columns, rows, notes)
 
 
 def _is_cut(value: float, sd: float | None, low: float, high: float) -> bool:

@@ -17,7 +17,7 @@ from fluxnet.rates.measured import Run
 from fluxnet.solving.bound_test import chance_of_bounds
 from fluxnet.solving.build import Built, build_problem, rebuild
 from fluxnet.solving.chart import Point, flux_scale
-from fluxnet.solving.classify import Relation, Structure, classify, find_relations
+from fluxnet.solving.classify import Structure, classify
 from fluxnet.solving.descent import fit_bounded
 from fluxnet.solving.equalities import find_equalities
 from fluxnet.solving.fit_rows import (
@@ -35,6 +35,7 @@ from fluxnet.solving.intervals import Intervals, find_intervals
 from fluxnet.solving.pulls import pressing_bounds
 from fluxnet.solving.quantities import has_mu
 from fluxnet.solving.region import Region
+from fluxnet.solving.relations import Relation, find_relations
 from fluxnet.solving.representative import take_least_flux
 from fluxnet.solving.spread import find_adjustments, find_spread, parameter_moves
 from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tail

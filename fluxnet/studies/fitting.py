@@ -11,7 +11,13 @@ from fluxnet.network.biomass import biomasses
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import Run
 from fluxnet.solving.build import build_problem
-from fluxnet.solving.flux_fit import FitStatus, FittedRow, FluxFit, PressingBound
+from fluxnet.solving.flux_fit import (
+    FitStatus,
+    FittedRow,
+    FluxFit,
+    FluxRelation,
+    PressingBound,
+)
 from fluxnet.solving.least_squares import fit_fluxes, spans_of
 from fluxnet.studies.settling import Array, Span, keep_account
 from fluxnet.studies.solution import (
@@ -29,6 +35,9 @@ __all__ = ["fit_run"]
 
 # Within so many sds measured rates are asked to hold together when the fit is rejected.
 _WITHIN = 2.0
+
+# A relation of fluxes tells something where it is so much narrower than its terms.
+_TELLING = 0.5
 
 # A rate this small beside the largest flux is rounding, not a rate.
 _ROUNDING = 1e-12
@@ -144,11 +153,22 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
         frame,
         fluxes=fluxes,
         rates=tuple(_rate(row, frame.unit, rounding, fit.built.run) for row in rates),
-        relations=tuple(f"{r.words} = {r.value:.4g} ± {r.sd:.2g}" for r in fit.relations),
+        relations=_telling_relations(fit),
         moved=tuple(MovedParameter(m.name, m.value, m.sd, m.moved, m.moved_sd) for m in fit.moved),
         ledger=account.ledger,
         equations=account.equations,
         yields=account.yields,
+    )
+
+
+def _telling_relations(fit: FluxFit) -> tuple[FluxRelation, ...]:
+    """The relations whose range is at most half as wide as the ranges of their terms allow."""
+    width = dict(zip(fit.reactions, fit.high - fit.low, strict=True))
+    return tuple(
+        relation
+        for relation in fit.relations
+        if relation.high - relation.low
+        <= _TELLING * sum(abs(c) * width[name] for name, c in relation.terms)
     )
 
 

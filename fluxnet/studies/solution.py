@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.record import record
 from fluxnet.network.model import Limit, Network, Quantity
-from fluxnet.solving.flux_fit import FluxKind, RateKind
+from fluxnet.solving.flux_fit import FluxKind, FluxRelation, RateKind
 from fluxnet.studies.equations import NetEquation
 from fluxnet.studies.ledger import LedgerLine
 from fluxnet.studies.yields import Yield
@@ -19,8 +19,8 @@ if TYPE_CHECKING:
     from fluxnet.studies.aims import Aim
 
 __all__ = [
-    "BindingLimit", "FluxEstimate", "FluxKind", "FluxSolution", "FluxTest", "MovedParameter",
-    "OptimumSpan", "RateEstimate", "RateKind", "Solution", "SolveStatus",
+    "BindingLimit", "FluxEstimate", "FluxKind", "FluxRelation", "FluxSolution", "FluxTest",
+    "MovedParameter", "OptimumSpan", "RateEstimate", "RateKind", "Solution", "SolveStatus",
 ]
 
 
@@ -172,7 +172,7 @@ class FluxSolution:
     equations: tuple[NetEquation, ...] = ()
     yields: tuple[Yield, ...] = ()
     limits: tuple[BindingLimit, ...] = ()
-    relations: tuple[str, ...] = ()
+    relations: tuple[FluxRelation, ...] = ()
     moved: tuple[MovedParameter, ...] = ()
     conflict: Conflict | None = None
     least_change: LeastChange | None = None
