@@ -107,6 +107,8 @@ def _is_meant(network: Network, group: Blocked) -> bool:
     names = {o.name for o in group.obstacles}
     limits = [limit for limit in network.limits if limit_words(limit, network) in names]
     of_variants = {limit.span for variant in network.variants for limit in variant.limits}
+    if any(limit.high is not None and limit.high < 0 for limit in limits):
+        return False  # it asks for a flux backwards: that there is none is not meant
     if all(limit.span in of_variants for limit in limits):
         return True
     touched = {name for limit in limits for name in _names(network, limit.quantity)}

@@ -164,8 +164,11 @@ def _add_signs(
         return
     not_below = limit.low is not None and limit.low >= 0
     not_above = limit.high is not None and limit.high <= 0
-    if limit.quantity.kind is QuantityKind.RATIO and not not_above:
-        return
+    is_exact = limit.low is not None and limit.low == limit.high
+    if limit.quantity.kind is QuantityKind.RATIO and (
+        not not_above or (is_exact and limit.low)
+    ):
+        return  # A = r B says nothing of the sign of A where B may turn round
     form = Form(
         FormKind.LIMIT,
         limit_words(limit, network),

@@ -252,6 +252,14 @@ class Name(Enum):
         "limit-against-role", _E, "a limit's direction contradicts the species' role",
         "A substrate is only taken up and a product only released.",
         "Correct the direction, or declare the species as exchange.")
+    LIMIT_AGAINST_DIRECTION = (
+        "limit-against-direction", _E, "a limit makes an irreversible reaction run backwards",
+        "Its flux, positive from left to right, is never negative.",
+        "Write the reaction with <->, or correct the number.")
+    LIMIT_WITHOUT_EFFECT = (
+        "limit-without-effect", _N, "a negative lower limit on an irreversible reaction",
+        "Its flux is never negative, so that the limit holds nothing back.",
+        "Take the limit away, or write the reaction with <->.")
     CONTRADICTORY_LIMITS = (
         "contradictory-limits", _E, "two limits leave no room between them",
         "No flux can meet both.", "Correct one of them.")

@@ -169,6 +169,12 @@ class Quantity:
     numerator: Quantity | None = None
     denominator: Quantity | None = None
 
+    @property
+    def names(self) -> frozenset[str]:
+        """The species and reactions that it is of; mu has none."""
+        parts = [q.name for q in (self, self.numerator, self.denominator) if q is not None]
+        return frozenset(name for name in parts if name)
+
     def __str__(self) -> str:
         if self.kind is QuantityKind.RATIO:
             return f"{self.numerator} / {self.denominator}"

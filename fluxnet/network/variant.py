@@ -2,20 +2,22 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from bisect import bisect_right
+from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import replace
 
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order
 from fluxnet.ground.errors import MisuseError
-from fluxnet.ground.names import Name
-from fluxnet.ground.source import NOWHERE
+from fluxnet.ground.names import Name, Severity
+from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.balance import check_balances
 from fluxnet.network.coefficients import check_coefficients
 from fluxnet.network.model import Network, Reaction, Variant
 from fluxnet.network.unknown import solve_unknowns
 from fluxnet.network.variant_build import build_variant, same_network
-from fluxnet.network.variant_changes import ChangeKind, Key, Thing, ancestors_of
-from fluxnet.network.variant_merge import merge_variants, nearest
+from fluxnet.network.variant_changes import NO_DOUBT, ChangeKind, Doubt, Key, Thing
+from fluxnet.network.variant_lineage import Lineage, nearest, parents_first, read_lineage
+from fluxnet.network.variant_merge import merge_variants
 
 __all__ = ["BASE", "apply_variant", "check_variants"]
 
@@ -63,39 +65,126 @@ def apply_variant(
         return None, in_order(found)
     if not asked:
         return network, ()
-    chosen = [n for n in variants if n in asked]
-    taking_part = set(asked).union(*(ancestors_of(n, variants) for n in asked))
-    merged = merge_variants(network, variants, [n for n in variants if n in taking_part])
-    if has_errors(merged.diagnostics):
-        return None, in_order(merged.diagnostics)
-    label = " * ".join(chosen)
-    changed, faults = build_variant(network, merged.things, label)
-    if has_errors(faults):
-        return None, in_order(faults)
-    own = tuple(a for n in variants if n in taking_part for a in variants[n].acceptances)
-    changed = replace(changed, acceptances=(*network.acceptances, *own))
-    touched = tuple(_touched(network, changed, merged.things))
-    changed, unsolved = solve_unknowns(changed, touched)
-    found = [*faults, *unsolved]
-    touched_names = {r.name for r in touched}
-    again = tuple(r for r in changed.reactions if r.name in touched_names)
-    found.extend(check_coefficients(changed, again))
-    if not has_errors(found):
-        found.extend(check_balances(changed, again))
-    if same_network(network, changed):
-        found.append(_empty(label, variants[chosen[0]], single=len(chosen) == 1))
-    return (None if has_errors(found) else changed), in_order(found)
+    lineage = read_lineage(network, variants)
+    changed, faults, touched = _changed(lineage, asked)
+    changed, told = _look_again(changed, touched)
+    told = in_order((*faults, *told))
+    return (None if has_errors(told) else changed), told
 
 
-def check_variants(network: Network) -> tuple[Diagnostic, ...]:
+def check_variants(
+    network: Network, told: Iterable[Diagnostic] = (), doubt: Doubt = NO_DOUBT
+) -> tuple[Diagnostic, ...]:
     """What is wrong with each variant of a model, applied by itself.
 
     Notes on balances that cannot be checked are left out: they are no matter of the variant.
+
+    Parameters
+    ----------
+    told
+        What is known to be wrong with the model: nothing more is said of those lines, and
+        whether a variant is empty only where it has no faulty line.
+    doubt
+        Names of which faulty lines may have said something.
     """
+    errors = [d for d in told if d.severity is Severity.ERROR]
+    faulty = {(d.span.file, d.span.line) for d in errors}
+    variants = {v.name: v for v in network.variants}
     found: list[Diagnostic] = []
-    for variant in network.variants:
-        found.extend(apply_variant(network, variant.name)[1])
-    return in_order(d for d in found if d.name is not Name.BALANCE_NOT_CHECKED)
+    if not errors:
+        found.extend(_faults_of_parents(dict.fromkeys(variants), variants))
+    lineage = read_lineage(network, variants, doubt)
+    hazy = _with_faults(network, errors)
+    seen: dict[object, object] = {}
+    own: dict[str, set[tuple[Name, Span]]] = {}
+    for name in lineage.above:
+        changed, faults, touched = _changed(lineage, (name,))
+        above = lineage.above[name]
+        causes = [(d, (d.name, d.span)) for d in faults]
+        own[name] = {cause for _, cause in causes}
+        inherited = set().union(*(own[parent] for parent in above if own[parent]))
+        in_doubt = not hazy.isdisjoint({name, *above})
+        found.extend(
+            d for d, cause in causes
+            if cause not in inherited and not (in_doubt and d.name is Name.VARIANT_EMPTY)
+        )
+        new = [r for r in touched if _is_new(r, changed, doubt, seen)]
+        if new:
+            found.extend(_look_again(changed, new)[1])
+    return in_order(
+        d for d in found
+        if d.name is not Name.BALANCE_NOT_CHECKED
+        and (d.name is Name.STILL_USED or (d.span.file, d.span.line) not in faulty)
+        and not (errors and d.severity is Severity.NOTE)
+    )  # fmt: skip
+
+
+def _changed(
+    lineage: Lineage, asked: Iterable[str]
+) -> tuple[Network, list[Diagnostic], tuple[Reaction, ...]]:
+    """The network with some variants applied, what is wrong with them, and what to look at."""
+    network = lineage.network
+    chosen = [n for n in lineage.variants if n in set(asked)]
+    members = lineage.family(chosen)
+    merged = merge_variants(lineage, members)
+    label = " * ".join(chosen)
+    changed, faults = build_variant(network, merged, label, lineage.doubt)
+    own = tuple(a for n in members for a in lineage.variants[n].acceptances)
+    changed = replace(changed, acceptances=(*network.acceptances, *own))
+    found = [*merged.diagnostics, *faults]
+    settled = not has_errors(found)
+    if settled and same_network(network, changed):
+        found.append(_empty(label, lineage.variants[chosen[0]], single=len(chosen) == 1))
+    return changed, found, tuple(_touched(network, changed, merged.things, settled=settled))
+
+
+def _look_again(
+    changed: Network, touched: Iterable[Reaction]
+) -> tuple[Network, tuple[Diagnostic, ...]]:
+    """The network with the ``?`` of some reactions solved, and what is wrong with these."""
+    names = {r.name for r in touched if all(changed.find_species(t.species) for _, t in r.terms)}
+    changed, unsolved = solve_unknowns(changed, tuple(r for r in touched if r.name in names))
+    again = tuple(r for r in changed.reactions if r.name in names)
+    found = [*unsolved, *check_coefficients(changed, again)]
+    if not has_errors(found):
+        found.extend(check_balances(changed, again))
+    return changed, tuple(found)
+
+
+def _is_new(
+    reaction: Reaction, changed: Network, doubt: Doubt, seen: dict[object, object]
+) -> bool:
+    """Whether a reaction with just these species and parameters has not been looked at yet.
+
+    The things themselves are kept beside their identities, which would else be given anew.
+    """
+    names = dict.fromkeys(t.species for _, t in reaction.terms)
+    if any(name in doubt.things for name in names):
+        return False
+    used = frozenset().union(
+        *(t.coefficient.parameters for _, t in reaction.terms if t.coefficient is not None)
+    )
+    things = (
+        reaction,
+        *(changed.find_species(name) for name in names),
+        *(p for p in changed.parameters if p.name in used),
+    )
+    key = tuple(map(id, things))
+    if key in seen:
+        return False
+    seen[key] = things
+    return True
+
+
+def _with_faults(network: Network, errors: Iterable[Diagnostic]) -> set[str]:
+    """The variants with an error between their head and the next one's."""
+    heads = sorted((v.span.file, v.span.line, v.name) for v in network.variants)
+    found: set[str] = set()
+    for error in errors:
+        behind = bisect_right(heads, (error.span.file, error.span.line, chr(0x10FFFF)))
+        if behind and heads[behind - 1][0] == error.span.file:
+            found.add(heads[behind - 1][2])
+    return found
 
 
 def _unknown(asked: Mapping[str, None], variants: Mapping[str, Variant]) -> Iterator[Diagnostic]:
@@ -134,35 +223,40 @@ def _faults_of_parents(
                     variant.span,
                     mend=f"write {' or '.join(near)}" if near else None,
                 )
+    sound = set(parents_first(variants))
+    place = {name: i for i, name in enumerate(variants)}
     for name in variants:
-        if name in seen and name in ancestors_of(name, variants):
-            circle = _circle(name, variants)
-            if name == min(circle, key=list(variants).index):
-                yield Diagnostic(
-                    Name.VARIANT_CIRCLE,
-                    f"variants build on one another in a circle: {' from '.join(circle)}",
-                    variants[name].span,
-                    mend=f"take `from {circle[1]}` away from {name}",
-                    also=tuple(variants[n].span for n in circle[1:-1]),
-                )
+        circle = _circle(name, variants) if name in seen and name not in sound else []
+        if circle and name == min(circle, key=place.__getitem__):
+            yield Diagnostic(
+                Name.VARIANT_CIRCLE,
+                f"variants build on one another in a circle: {' from '.join(circle)}",
+                variants[name].span,
+                mend=f"take `from {circle[1]}` away from {name}",
+                also=tuple(variants[n].span for n in circle[1:-1]),
+            )
 
 
 def _circle(name: str, variants: Mapping[str, Variant]) -> list[str]:
-    """The shortest way from a variant back to itself."""
-    ways = [[name]]
+    """The shortest way from a variant back to itself; empty where there is none."""
+    ways, seen = [[name]], {name}
     for way in ways:
         for parent in variants[way[-1]].parents:
             if parent == name:
                 return [*way, name]
-            if parent in variants and parent not in way:
+            if parent in variants and parent not in seen:
+                seen.add(parent)
                 ways.append([*way, parent])
-    return [name]
+    return []
 
 
 def _touched(
-    network: Network, changed: Network, things: Mapping[Key, Thing | None]
+    network: Network, changed: Network, things: Mapping[Key, Thing | None], *, settled: bool
 ) -> Iterator[Reaction]:
-    """The reactions to look at again: new ones, and those with a changed parameter."""
+    """The reactions to look at again: new ones, and those with a changed parameter or species.
+
+    Where the changes themselves are faulty (not ``settled``) only new ones without any such.
+    """
     set_anew = {k.name for k in things if k.kind is ChangeKind.PARAMETER}
     remade = {k.name for k in things if k.kind is ChangeKind.SPECIES}
     for reaction in changed.reactions:
@@ -172,7 +266,7 @@ def _touched(
             t.species in remade or (t.coefficient and t.coefficient.parameters & set_anew)
             for _, t in reaction.terms
         )
-        if is_new or unsolved or moved:
+        if (is_new and not moved) or (settled and (unsolved or moved)):
             yield reaction
 
 

@@ -10,6 +10,7 @@ from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Span
 from fluxnet.network.amounts import number_text
+from fluxnet.network.limit_directions import against_directions
 from fluxnet.network.model import (
     Direction,
     Limit,
@@ -21,7 +22,15 @@ from fluxnet.network.model import (
     Relation,
     Species,
 )
-from fluxnet.network.variant_changes import ChangeKind, Key, Thing, keys_of_limit, plain
+from fluxnet.network.variant_changes import (
+    ChangeKind,
+    Doubt,
+    Key,
+    Thing,
+    keys_of_limit,
+    plain,
+)
+from fluxnet.network.variant_merge import Merged
 
 __all__ = ["build_variant", "same_network"]
 
@@ -29,16 +38,18 @@ _Named = TypeVar("_Named", Species, Parameter, Reaction)
 
 
 def build_variant(
-    network: Network, things: Mapping[Key, Thing | None], label: str
+    network: Network, merged: Merged, label: str, doubt: Doubt
 ) -> tuple[Network, tuple[Diagnostic, ...]]:
     """The network with things set anew or taken out, and what is wrong with it.
 
-    What is replaced keeps its place; what is new stands at the end.
+    What is replaced keeps its place; what is new stands at the end. Nothing is said of
+    the things in ``doubt``.
     """
+    things = merged.things
     species = _replaced(network.species, ChangeKind.SPECIES, things, Species)
     parameters = _replaced(network.parameters, ChangeKind.PARAMETER, things, Parameter)
     reactions = _replaced(network.reactions, ChangeKind.REACTION, things, Reaction)
-    gone = _gone(network, species, reactions)
+    gone = _gone(network, species, reactions) - doubt.things
     limits = [
         limit
         for limit in _limits(network.limits, things)
@@ -52,10 +63,14 @@ def build_variant(
         limits=tuple(limits),
         variant=label,
     )
+    known = set(network.limits) if reactions == network.reactions else set()
     faults = [
+        *against_directions(
+            (m for m in limits if m not in known), {r.name: r for r in reactions}
+        ),
         *_outside_range(parameters),
         *_same_names(changed),
-        *_still_used(changed, gone),
+        *_still_used(changed, gone, merged.drops),
     ]
     return changed, tuple(faults)
 
@@ -153,27 +168,33 @@ def _same_names(network: Network) -> Iterator[Diagnostic]:
         places[thing.name] = thing.span
 
 
-def _still_used(network: Network, gone: frozenset[str]) -> Iterator[Diagnostic]:
-    """Reactions and ratios that name what is not there in this variant."""
+def _still_used(
+    network: Network, gone: frozenset[str], drops: Mapping[str, tuple[Span, ...]]
+) -> Iterator[Diagnostic]:
+    """Reactions and ratios that name what is not there in this variant.
+
+    Each is told at its first use, the other uses and the lines that drop it beside.
+    """
     users: dict[str, list[str]] = {}
-    places: dict[str, Span] = {}
+    places: dict[str, list[Span]] = {}
     for reaction in network.reactions:
         for _, term in reaction.terms:
             if term.species in gone:
                 users.setdefault(term.species, []).append(reaction.name)
-                places.setdefault(term.species, term.span)
+                places.setdefault(term.species, []).append(term.span)
     for limit in network.limits:
         for part in (limit.quantity.numerator, limit.quantity.denominator):
             if part is not None and part.name in gone:
                 users.setdefault(part.name, []).append(f"the limit on {limit.quantity}")
-                places.setdefault(part.name, limit.span)
+                places.setdefault(part.name, []).append(limit.span)
     for name, names in users.items():
         verb = "use" if len(names) > 1 else "uses"
         yield Diagnostic(
             Name.STILL_USED,
             f"in {network.variant} there is no {name}, which {', '.join(names)} still {verb}",
-            places[name],
+            places[name][0],
             mend=f"drop {', '.join(names)} as well, or keep {name}",
+            also=(*places[name][1:], *drops.get(name, ())),
         )
 
 

@@ -8,7 +8,7 @@ neither builds on the other, their changes must be equal.
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator
 from dataclasses import replace
 from enum import Enum
 
@@ -17,7 +17,6 @@ from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import (
     Direction,
     Limit,
-    Network,
     Parameter,
     Quantity,
     QuantityKind,
@@ -27,7 +26,7 @@ from fluxnet.network.model import (
 )
 
 __all__ = [
-    "Change", "ChangeKind", "Key", "Thing", "ancestors_of", "base_thing", "changes_of",
+    "NO_DOUBT", "Change", "ChangeKind", "Doubt", "Key", "Thing", "changes_of",
     "keys_of_limit", "keys_of_quantity", "plain",
 ]  # fmt: skip
 
@@ -70,6 +69,22 @@ class Change:
     span: Span = NOWHERE
 
 
+@record
+class Doubt:
+    """Names of which faulty lines may have said something, so that nothing is told of them.
+
+    ``things`` may be declared by such a line, or have a fault in their declaration; ``dropped``
+    may be dropped, and ``limited`` limited, by one.
+    """
+
+    things: frozenset[str] = frozenset()
+    dropped: frozenset[str] = frozenset()
+    limited: frozenset[str] = frozenset()
+
+
+NO_DOUBT = Doubt()
+
+
 def keys_of_quantity(quantity: Quantity) -> tuple[Key, ...]:
     """The keys that a quantity stands for: a rate without a direction stands for both."""
     if quantity.kind is QuantityKind.RATE and quantity.direction is None:
@@ -85,18 +100,6 @@ def keys_of_limit(limit: Limit) -> tuple[Key, ...]:
     if quantity.kind is QuantityKind.RATE and limit.low is not None and limit.low < 0:
         return keys_of_quantity(replace(quantity, direction=None))
     return keys_of_quantity(quantity)
-
-
-def ancestors_of(name: str, variants: Mapping[str, Variant]) -> frozenset[str]:
-    """All that a variant builds on, itself left out; the variants must hold no circle."""
-    found: set[str] = set()
-    waiting = list(variants[name].parents)
-    while waiting:
-        parent = waiting.pop()
-        if parent in variants and parent not in found:
-            found.add(parent)
-            waiting.extend(variants[parent].parents)
-    return frozenset(found)
 
 
 def changes_of(variant: Variant, context: frozenset[str]) -> Iterator[Change]:
@@ -132,14 +135,3 @@ def plain(thing: Thing | None) -> object:
         )
         return (thing.name, thing.compartment, thing.reversible, terms)
     return None if thing is None else replace(thing, span=NOWHERE)
-
-
-def base_thing(key: Key, network: Network) -> Thing | None:
-    """What the network has under a key."""
-    if key.kind is ChangeKind.SPECIES:
-        return network.find_species(key.name)
-    if key.kind is ChangeKind.REACTION:
-        return network.find_reaction(key.name)
-    if key.kind is ChangeKind.PARAMETER:
-        return next((p for p in network.parameters if p.name == key.name), None)
-    return next((m for m in network.limits if key in keys_of_limit(m)), None)

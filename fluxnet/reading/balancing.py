@@ -18,22 +18,21 @@ __all__ = ["balance_reading"]
 def balance_reading(network: Network, scope: Scope) -> Network:
     """The network with its ``?`` solved; what is wrong goes to the scope's findings.
 
-    Where lines have faults of their own the others are looked at all the same, the lines that
-    variants add among them; only then are variants not applied, and no notes made.
+    Where lines have faults of their own the others are looked at all the same, and variants
+    are applied to what is sound; no notes are made then.
     """
     findings = scope.findings.found
+    settled = network
     if has_errors(findings):
         told = _checked(network, scope)
         findings.extend(d for d in told if d.severity is not Severity.NOTE)
-        for variant in network.variants:
-            _balance_added(variant.name, network, scope)
-        return network
-    settled, unsolved = solve_unknowns(network)
-    findings.extend((*unsolved, *check_coefficients(settled), *check_balances(settled)))
-    if settled.variants and not has_errors(findings):
+    else:
+        settled, unsolved = solve_unknowns(network)
+        findings.extend((*unsolved, *check_coefficients(settled), *check_balances(settled)))
+    if settled.variants:
         from fluxnet.network.variant import check_variants  # most models have none
 
-        findings.extend(check_variants(settled))
+        findings.extend(check_variants(settled, tuple(findings), scope.doubt))
     return settled
 
 
@@ -45,24 +44,3 @@ def _checked(network: Network, scope: Scope) -> list[Diagnostic]:
     )
     alone, unsolved = solve_unknowns(replace(network, reactions=sound))
     return [*unsolved, *check_coefficients(alone), *check_balances(alone)]
-
-
-def _balance_added(name: str, network: Network, scope: Scope) -> None:
-    """Balance the reactions that a variant adds, by themselves."""
-    inner = scope.variants[name]
-    variant = next(v for v in network.variants if v.name == name)
-    added = tuple(
-        r for r in variant.reactions
-        if all(t.species in inner.species and t.species not in scope.broken for _, t in r.terms)
-    )
-    if not added:
-        return
-    alone, more = solve_unknowns(
-        replace(
-            network, species=tuple(inner.species.values()),
-            parameters=tuple(inner.parameters.values()), reactions=added, limits=(),
-            variants=(),
-        )
-    )
-    told = (*more, *check_balances(alone))
-    scope.findings.found.extend(d for d in told if d.severity is Severity.ERROR)

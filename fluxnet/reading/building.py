@@ -143,18 +143,18 @@ class Builder(Transformer[Token, Any]):
         return s.LimitLine(parts[1], parts[2])
 
     def bound(self, parts: list[Any]) -> s.BoundText:
-        numbers = [p for p in parts if isinstance(p, Token) and p.type == "NUMBER"]
+        numbers = [p for p in parts if isinstance(p, s.NumberText)]
         error = next((p for p in parts if isinstance(p, s.ErrorText)), None)
-        end = error.number.end if error else _end(numbers[-1])
+        end = error.number.end if error else numbers[-1].end
         relation = _RELATION[parts[0].type]
         if relation is not Relation.BETWEEN:
-            return s.BoundText(relation, _number(numbers[0]), error, None, None, None,
+            return s.BoundText(relation, numbers[0], error, None, None, None,
                                _start(parts[0]), end)
         middle = next(i for i, p in enumerate(parts) if getattr(p, "type", "") == "AND")
         ways = [next((p for p in half if isinstance(p, Direction)), None)
                 for half in (parts[:middle], parts[middle:])]
-        return s.BoundText(relation, _number(numbers[0]), None, ways[0],
-                           _number(numbers[1]), ways[1], _start(parts[0]), end)
+        return s.BoundText(relation, numbers[0], None, ways[0], numbers[1], ways[1],
+                           _start(parts[0]), end)
 
     def quantity(self, parts: list[Any]) -> s.QuantityText:
         return s.QuantityText(parts[0], parts[2] if len(parts) > 1 else None)

@@ -180,11 +180,6 @@ def _one_sign(text: str, start: int, sign: re.Match[str], end: int) -> list[Faul
         return [_wrong("it is not said what is limited", start, sign.end(), _LIMIT_FORM)]
     if not right:
         return [_wrong("the limit has no value", sign.start(), sign.end(), _LIMIT_FORM)]
-    minus = re.compile(r"\s*(-\s*\d\S*)").match(text, sign.end(), end)
-    if minus:
-        return [_wrong("a limit is a magnitude: it is never negative", minus.start(1),
-                       minus.end(1), "tell a species' direction by the words in and out; to limit "
-                       "a reaction backwards, write it the other way round")]
     unit = _UNIT.search(text, sign.end(), end)
     if unit:
         cut = len(text[: unit.start("unit")].rstrip())
@@ -192,7 +187,7 @@ def _one_sign(text: str, start: int, sign: re.Match[str], end: int) -> list[Faul
                        "take it out: every rate is in the unit of the basis",
                        Change(cut, unit.end("unit"), ""))]
     at = text.index(right, sign.end())
-    if not re.match(NUMBER, right):
+    if not re.match(rf"-?\s*{NUMBER}", right):
         return [_wrong(f"`{right}` is no number", at, at + len(right), _LIMIT_FORM)]
     return []
 

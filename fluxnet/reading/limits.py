@@ -19,11 +19,21 @@ _LEAST = Fraction(1, 10**9)
 
 def resolve_limit(line: LogicalLine, said: s.LimitLine, scope: Scope) -> Limit | None:
     """The limit of one line, or None where it makes no sense (told)."""
+    limit = _limit(line, said, scope)
+    if limit is None:
+        single = (said.quantity.top, said.quantity.bottom)
+        scope.unlimited.update(one.name.text for one in single if one is not None)
+    return limit
+
+
+def _limit(line: LogicalLine, said: s.LimitLine, scope: Scope) -> Limit | None:
     bound = said.bound
     quantity = resolve_quantity(line, said.quantity, scope, ways=(bound.way, bound.other_way))
     numbers = [n for n in (bound.value, bound.other) if n is not None]
     sound = all(in_reach(line, n, scope.findings) for n in numbers)
     if quantity is None or not sound or not _error_is_sound(line, bound, scope):
+        return None
+    if not _may_be_negative(quantity, scope) and not _magnitudes(line, said, quantity, scope):
         return None
     span = line.span(said.quantity.start, bound.end)
     value = bound.value.value
@@ -55,7 +65,35 @@ def _sd(bound: s.BoundText) -> Fraction | None:
     if bound.error is None:
         return None
     sd = bound.error.number.value
-    return bound.value.value * sd / 100 if bound.error.relative else sd
+    return abs(bound.value.value) * sd / 100 if bound.error.relative else sd
+
+
+def _may_be_negative(quantity: Quantity, scope: Scope) -> bool:
+    """Whether a limit of it may be negative: a flux has a sign, a rate a direction by word."""
+    if quantity.kind is QuantityKind.FLUX:
+        return True
+    parts = (quantity.numerator, quantity.denominator)
+    return any(
+        p is not None and p.kind is QuantityKind.FLUX and scope.reactions[p.name].reversible
+        for p in parts
+    )
+
+
+def _magnitudes(
+    line: LogicalLine, said: s.LimitLine, quantity: Quantity, scope: Scope
+) -> bool:
+    """Whether no number of a limit is negative; else say so."""
+    bound = said.bound
+    negative = [n for n in (bound.value, bound.other) if n is not None and n.value < 0]
+    what = str(quantity) if quantity.direction is None else quantity.name
+    for number in negative:
+        scope.findings.add(
+            Name.BAD_LIMIT, f"a limit on {what} is a magnitude: it is never negative",
+            line, number,
+            mend="tell a species' direction by the words in and out"
+            if quantity.kind is QuantityKind.RATE else "write it without the minus",
+        )
+    return not negative
 
 
 def _error_is_sound(line: LogicalLine, bound: s.BoundText, scope: Scope) -> bool:
@@ -73,7 +111,7 @@ def _error_is_sound(line: LogicalLine, bound: s.BoundText, scope: Scope) -> bool
         return False
     if not in_reach(line, bound.error.number, scope.findings):
         return False
-    sd, size = _sd(bound), bound.value.value
+    sd, size = _sd(bound), abs(bound.value.value)
     if sd and size and not _LEAST <= sd / size <= 1 / _LEAST:
         what = "is nothing beside the value" if sd < size else "leaves nothing of the value"
         scope.findings.add(

@@ -101,7 +101,10 @@ def _read(
     findings = Findings(list(told))
     loaded = load_statements(source, path, place, findings)
     refused = [r.line.text for r in loaded.rejected if len(r.line.text) <= LONGEST]
-    scope = Scope(findings, lost=names_lost(refused), named=words_of(refused))
+    drops = [text for text in refused if text.split()[:1] == ["drop"]]
+    scope = Scope(
+        findings, lost=names_lost(refused), named=words_of(refused), dropped=words_of(drops)
+    )
     network = resolve_network(loaded, scope)
     network = balance_reading(network, scope)
     diagnostics = in_order(_with_lines(findings.found, loaded.sources))

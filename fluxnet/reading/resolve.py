@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Span
+from fluxnet.network.limit_directions import against_directions
 from fluxnet.network.model import Limit, Network, Parameter, Reaction, Species, Variant
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
@@ -60,6 +61,7 @@ def resolve_network(loaded: Loaded, scope: Scope) -> Network:
             if limit is not None:
                 parts.limits.append(limit)
     scope.findings.found.extend(compare_limits(parts.limits))
+    scope.findings.found.extend(against_directions(parts.limits, scope.reactions))
     free = resolve_free(base, scope)
     variants: tuple[Variant, ...] = ()
     if any(isinstance(p.statement.line, s.VariantLine) for p in base):

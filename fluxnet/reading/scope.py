@@ -11,6 +11,7 @@ from typing import NamedTuple
 from fluxnet.ground.names import Name
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Parameter, Reaction, Species
+from fluxnet.network.variant_changes import Doubt
 from fluxnet.reading.fault_record import NAME
 from fluxnet.reading.findings import Findings
 from fluxnet.reading.lines import LogicalLine
@@ -41,8 +42,9 @@ class Scope:
     """The names that a statement sees.
 
     ``lost`` are names that a rejected line may have declared, so that no second error is made
-    of them; ``named`` are all words of rejected lines. ``broken`` are species whose declaration
-    has a fault. ``variants`` are the scopes of the variants.
+    of them; ``named`` are all words of rejected lines, ``dropped`` those of rejected ``drop``
+    lines. ``broken`` are species whose declaration has a fault, ``unlimited`` what limits with
+    a fault are on. ``variants`` are the scopes of the variants.
     """
 
     findings: Findings
@@ -54,17 +56,27 @@ class Scope:
     variant: str | None = None
     lost: set[str] = field(default_factory=set)
     named: set[str] = field(default_factory=set)
+    dropped: set[str] = field(default_factory=set)
     unknown: dict[str, list[Mention]] = field(default_factory=dict)
     used_parameters: set[str] = field(default_factory=set)
     broken: set[str] = field(default_factory=set)
+    unlimited: set[str] = field(default_factory=set)
     variants: dict[str, Scope] = field(default_factory=dict)
+
+    @property
+    def doubt(self) -> Doubt:
+        """What faulty lines may have said, as the network's own checks take it."""
+        return Doubt(
+            frozenset(self.lost | self.broken), frozenset(self.lost | self.dropped),
+            frozenset(self.named | self.unlimited),
+        )
 
     def inner(self, variant: str) -> Scope:
         """The scope of a variant: it sees all names of this one, and adds its own."""
         return Scope(
             self.findings, dict(self.species), dict(self.parameters), dict(self.reactions),
-            dict(self.places), dict(self.folded), variant, self.lost, self.named, self.unknown,
-            self.used_parameters, self.broken, self.variants,
+            dict(self.places), dict(self.folded), variant, self.lost, self.named, self.dropped,
+            self.unknown, self.used_parameters, self.broken, self.unlimited, self.variants,
         )
 
     def twin(self, name: str, *kinds: Kind) -> str | None:
@@ -81,6 +93,7 @@ class Scope:
 _NAMES = re.compile(NAME)
 _LABEL = re.compile(rf"\s*({NAME})\s*:")
 _ARROW = re.compile(r"->|=>|→|⇌|<-")
+_DECLARE_NOTHING = (["limit"], ["drop"], ["set"])
 _LETTERS = re.compile(r"[^\W\d]\w*")
 
 
@@ -92,13 +105,19 @@ def words_of(texts: Iterable[str]) -> set[str]:
 
 
 def names_lost(texts: Iterable[str]) -> set[str]:
-    """The names that rejected lines may have declared: of a reaction only its own."""
+    """The names that rejected lines may have declared: of a reaction only its own.
+
+    Examples
+    --------
+    >>> sorted(names_lost(["inside citrat ; malate", "pdh : pyruvate => CO2", "limit CO2 << 3"]))
+    ['citrat', 'inside', 'malate', 'pdh']
+    """
     found: set[str] = set()
     for text in texts:
         label = _LABEL.match(text)
         if label or _ARROW.search(text):
             found.update([label[1]] if label else [text.split()[0]])
-        else:
+        elif text.split()[:1] not in _DECLARE_NOTHING:
             found |= words_of([text])
     return found
 

@@ -55,7 +55,7 @@ def resolve_variants(
         inherited: set[str] = set()
         for parent in block.said.parents:
             _inherit(inner, scope.variants.get(parent.text), inherited)
-        _let_go(inner, block.dropped | inherited)
+        _let_go(inner, block.dropped | inherited | scope.dropped)
         scope.variants[name] = inner
         found[name] = _resolve(block, inner, phosphate)
     return tuple(found[name] for name in blocks)

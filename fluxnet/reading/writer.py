@@ -13,7 +13,6 @@ from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import (
     CargoKind,
     Compartment,
-    Direction,
     Drop,
     Limit,
     Network,
@@ -248,7 +247,7 @@ def _limit(limit: Limit, roles: dict[str, Role]) -> str:
     low, high = limit.low or Fraction(0), limit.high or Fraction(0)
     if limit.relation is Relation.EQUAL:
         return f"{shown} = {_number(low)}{f' ± {_number(limit.sd)}' if limit.sd else ''}"
-    if low < 0 and quantity.direction is Direction.OUT:
+    if low < 0 and quantity.direction is not None:
         return f"{quantity.name} between in {_number(-low)} and out {_number(high)}"
     return f"{shown} between {_number(low)} and {_number(high)}"
 

@@ -14,6 +14,7 @@ biomass X CH1.8O0.5N0.2 ash 8 %
 compartment c
     a : glucose -> 2 ethanol + 2 CO2
     b : ethanol + 3 oxygen -> 2 CO2
+    r : ethanol + 3 oxygen <-> 2 CO2
 """
 
 
@@ -44,6 +45,11 @@ def limit(read):
         ("CO2 in / oxygen <= 1", "CO2 in / oxygen in", None, 1, None),
         ("a / b = 2", "flux a / flux b", 2, 2, None),
         ("oxygen / mu <= 20", "oxygen in / mu", None, 20, None),
+        ("r >= -2", "flux r", -2, None, None),
+        ("r <= - 2", "flux r", None, -2, None),
+        ("r between -2.5 and 1e1", "flux r", Fraction(-5, 2), 10, None),
+        ("r = -2 ± 5 %", "flux r", -2, -2, Fraction(1, 10)),
+        ("a / r >= -3", "flux a / flux r", -3, None, None),
     ],
 )  # fmt: skip
 def test_a_limit_bounds_a_quantity_in_its_direction(limit, text, quantity, low, high, sd) -> None:
@@ -69,6 +75,8 @@ def test_a_limit_bounds_a_quantity_in_its_direction(limit, text, quantity, low, 
         (["CO2 between in 1 and out 5", "CO2 in >= 2"], "contradictory-limits"),
         (["a / b >= 2", "a / b <= 1"], "contradictory-limits"),
         (["mu >= 0.2", "mu <= 0.1"], "contradictory-limits"),
+        (["r >= -1", "r <= -2"], "contradictory-limits"),
+        (["r >= -2", "r <= -1"], None),
     ],
 )
 def test_limits_are_held_against_one_another(faults, lines, name) -> None:
@@ -76,8 +84,8 @@ def test_limits_are_held_against_one_another(faults, lines, name) -> None:
 
     assert [d.name.value for d in found] == ([name] if name else [])
     if name:
-        assert found[0].span.line == 9
-        assert found[0].also[0].line == 8
+        assert found[0].span.line == 10
+        assert found[0].also[0].line == 9
 
 
 @pytest.mark.parametrize(
@@ -98,9 +106,17 @@ def test_limits_are_held_against_one_another(faults, lines, name) -> None:
         ("Oxygen <= 1", "case-differs"),
         ("Mu <= 1", "case-differs"),
         ("oxygen <= 1e200", "unreadable-line"),
+        ("oxygen >= -1", "bad-limit"),
+        ("CO2 in <= -1", "bad-limit"),
+        ("CO2 between in -1 and out 5", "bad-limit"),
+        ("mu = -0.1 ± 0.1", "bad-limit"),
+        ("a / b >= -1", "bad-limit"),
+        ("a = -1 ± 0.1", "limit-against-direction"),
+        ("a between -2 and -1", "limit-against-direction"),
+        ("r between -1 and -2", "contradictory-limits"),
     ],
 )
 def test_a_limit_that_makes_no_sense_is_told(fault, text, name) -> None:
     found = fault(f"{HEAD}limit {text}\n")
 
-    assert (found.name.value, found.span.line) == (name, 8)
+    assert (found.name.value, found.span.line) == (name, 9)

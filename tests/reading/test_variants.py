@@ -114,3 +114,71 @@ variant v
 """)
 
     assert [d.name.value for d in found] == ["unknown-statement", "unbalanced-line"]
+
+
+def test_faults_of_variants_are_told_beside_those_of_the_model_and_make_no_others(faults) -> None:
+    found = faults("""\
+substrate glucose
+product   ethanol, lactate, CO2
+inside    pyruvate
+carrier   NADH
+parameter a = 2 in [1, 3]
+compartment c
+    gly : glucose -> 2 pyruvate + (a + 2 - a) NADH
+    eth : pyruvate + NADH -> ethanol + 2 CO2
+    ldh : pyruvate + NADH -> lactat
+    bad : pyruvate => lactate
+limit glucose <= -3
+variant one
+    drop ldh, bad
+    set a = 7
+variant two from one
+    drop limit glucose
+variant three
+    drop ldh,, bad
+    add to c
+        ldh : pyruvate + NADH -> lactate
+        new : pyruvate + NADH -> lactate + CO2
+variant four
+    drop ethanol
+    limit glucos <= 1
+variant five from four
+""")
+
+    assert [(d.span.line, d.name.value) for d in found] == [
+        (8, "still-used"),  # once, though `five` inherits it
+        (8, "unbalanced-line"),
+        (9, "unknown-species"),
+        (10, "wrong-arrow"),
+        (11, "bad-limit"),
+        (14, "outside-range"),
+        (18, "unreadable-line"),
+        (21, "unbalanced-line"),
+        (24, "unknown-limit"),
+    ]
+    used = found[0]
+    assert used.span.column == 30
+    assert [(s.line, s.column) for s in used.also] == [(23, 10)]
+
+
+def test_a_long_chain_of_variants_is_applied_link_by_link(read) -> None:
+    from fluxnet.network.variant import apply_variant
+
+    links = "".join(
+        f"variant v{k}{f' from v{k - 1}' if k else ''}\n    set a = {k + 2}\n"
+        f"    inside m{k} C3H4O3\n    add to c\n        r{k} : pyruvate -> m{k}\n"
+        for k in range(400)
+    )
+    network = read(
+        "substrate glucose\nproduct ethanol, CO2\ninside pyruvate\ncarrier NADH\n"
+        "parameter a = 1 ± 0.1 in [0, 500]\ncompartment c\n"
+        "    gly : glucose -> 2 pyruvate + (a + 2 - a) NADH\n"
+        "    eth : pyruvate + NADH -> ethanol + CO2\n" + links
+    )
+
+    last, told = apply_variant(network, "v399")
+
+    assert told == ()
+    assert [r.name for r in last.reactions] == ["gly", "eth", *(f"r{k}" for k in range(400))]
+    a = last.parameters[0]
+    assert (a.value, a.sd, a.high) == (401, Fraction(1, 10), 500)
