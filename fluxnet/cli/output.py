@@ -32,7 +32,8 @@ ALWAYS_WRITTEN = {
 """The tables that a command writes whatever its answer is."""
 
 NAMES_OF_TABLES = frozenset({
-    "balances", "catalogue", "compound", "conflict", "equations", "findings", "fluxes",
+    "alternatives", "balances", "bill", "bill_prices", "catalogue", "compound", "conflict",
+    "equations", "findings", "fluxes",
     "least_change", "ledger", "limits", "most_energy", "overview", "parameters", "rates",
     "unbounded", "yields",
 })  # fmt: skip

@@ -1,71 +1,163 @@
-"""Why it cannot be: a conflict, the least change, or what lets an aim grow for ever."""
+"""Why it cannot be: the bill of each conflict, and what would end it; or what has no end."""
 
 from __future__ import annotations
 
 from fluxnet.ground.table import Align, Column, Table
+from fluxnet.network.model import QuantityKind
+from fluxnet.presenting.bill_table import NEEDS, SURPLUS, bill_tables
 from fluxnet.presenting.numbers import format_number
-from fluxnet.presenting.screen import Block, Sentence
-from fluxnet.studies.solution import FluxSolution
+from fluxnet.presenting.screen import Block, Mood, Sentence
+from fluxnet.solving.alternatives import Alternative
+from fluxnet.solving.least_change import LeastChange
+from fluxnet.studies.conflicts import MOST_CONFLICTS, ToldConflict
+from fluxnet.studies.solution import FluxSolution, SolveStatus
 
-__all__ = ["conflict_blocks", "unbounded_blocks"]
+__all__ = ["alternative_words", "conflict_blocks", "unbounded_blocks"]
+
+_SHOWN = 0.5
+"""Smaller changes, in sd, are named together."""
 
 
-def conflict_blocks(run: FluxSolution) -> tuple[Block, ...]:
-    """The members that cannot hold together, and the least change that mends it."""
+def conflict_blocks(run: FluxSolution, *, prices: bool = False) -> tuple[Block, ...]:
+    """The bills, what is in conflict, the least change that mends it, and what else would.
+
+    Parameters
+    ----------
+    prices
+        Show what each carrier and species is worth in the bill, too.
+    """
     blocks: list[Block] = []
-    conflict, change = run.conflict, run.least_change
-    if conflict is not None and conflict.members:
-        within = f", each within {run.within:g} sd" if run.within is not None else ""
-        given = conflict.given or conflict.members
-        blocks.append(
-            Table(
-                "conflict",
-                f"These cannot hold together{within}",
-                (Column("cannot hold together", "words", wrap=56), Column("kind", "kind")),
-                tuple((m.words, m.kind.value) for m in given),
-            )
-        )
-        making = [m.words for m in conflict.members if m not in given]
-        beside = f" It rests on {'; '.join(making)}." if making else ""
-        checked = "without any one of them the others can (each was tried)."
-        if not conflict.verified:
-            checked = "whether each of them is needed could not be verified."
-        blocks.append(Sentence(f"{checked[0].upper()}{checked[1:]}{beside}"))
-    if change is not None and change.possible and change.changes:
-        columns = (
-            Column("measured value", "name"),
-            Column("measured", "measured", align=Align.RIGHT),
-            Column("would be", "changed", align=Align.RIGHT),
-            Column("by [sd]", "in_sd", align=Align.RIGHT, decimals=1),
-        )
-        moved = [c for c in change.changes if abs(c.in_sd) >= 0.05]
-        rounding = 1e-12 * max((abs(c.measured) for c in change.changes), default=0.0)
-        changes = tuple(
-            (
-                str(c.quantity),
-                c.measured,
-                0.0 if abs(c.changed) < rounding else c.changed,
-                c.in_sd,
-            )
-            for c in moved
-        )
-        notes = ["with parameters as written; limits and exact values do not give way"]
-        if change.common_k is not None:
-            notes.append(
-                "all measured values can hold together within "
-                f"{format_number(change.common_k, 3)} sd"
-            )
-        blocks.append(
-            Table("least_change", "The least change that mends it", columns, changes, tuple(notes))
-        )
-    elif change is not None and not change.possible:
-        blocks.append(
+    several = len(run.conflicts) > 1
+    for place, told in enumerate(run.conflicts):
+        number = f" {place + 1}" if several else ""
+        blocks += _bill(run, told, number, is_told=place == 0)
+        blocks += _prices(told, number, prices)
+        blocks += _members(run, told, number)
+    if len(run.conflicts) == MOST_CONFLICTS:
+        blocks.append(Sentence(f"No more than {MOST_CONFLICTS} conflicts are looked for."))
+    if run.least_change is not None:
+        blocks += _least_change(run.least_change)
+    for place, told in enumerate(run.conflicts):
+        blocks += _alternatives(told, f" {place + 1}" if several else "")
+    return tuple(blocks)
+
+
+def _bill(run: FluxSolution, told: ToldConflict, number: str, *, is_told: bool) -> list[Block]:
+    if told.bill is None:
+        return []
+    blocks: list[Block] = []
+    if not (is_told and run.status is SolveStatus.INFEASIBLE):
+        within = f"with every measured value within {run.within:g} sd, " if run.within else ""
+        head = f"Conflict{number}" if number else "Why the rates cannot hold together"
+        blocks.append(Sentence(f"{head}: {within}{_lower(told.bill.words)}", Mood.BAD))
+    titles = SURPLUS if told.is_surplus else NEEDS
+    return [*blocks, *bill_tables(told.bill, f"Bill{number} [{told.bill.unit}]", titles)]
+
+
+def _lower(words: str) -> str:
+    return words[:1].lower() + words[1:]
+
+
+def _prices(told: ToldConflict, number: str, is_shown: bool) -> list[Block]:
+    """What each balanced species and carrier is worth."""
+    if told.bill is None or not told.prices:
+        return []
+    titles = ("one of", "is worth") if is_shown else ("", "")
+    columns = (
+        Column(titles[0], "species"),
+        Column(titles[1], "price", align=Align.RIGHT),
+        Column("", "unit"),
+    )
+    rows = tuple((p.species, p.price, told.bill.unit) for p in told.prices)
+    notes = ("below zero: a surplus that has to be got rid of",)
+    any_below = any(p.price < 0 for p in told.prices)
+    title = f"Prices of bill{number} [{told.bill.unit}]"
+    return [Table("bill_prices", title, columns, rows, notes if any_below else ())]
+
+
+def _members(run: FluxSolution, told: ToldConflict, number: str) -> list[Block]:
+    """What is in conflict: the bill has named the limits and measurements already."""
+    conflict = told.conflict
+    given = conflict.given or conflict.members
+    within = f", each within {run.within:g} sd" if run.within is not None else ""
+    titles = ("cannot hold together", "kind") if told.bill is None else ("", "")
+    columns = (Column(titles[0], "words", wrap=56), Column(titles[1], "kind"))
+    rows = tuple((m.words, m.kind.value) for m in given)
+    title = f"These cannot hold together{within}"
+    making = [m.words for m in conflict.members if m not in given]
+    beside = f" It rests on {'; '.join(making)}." if making else ""
+    number = f" of conflict{number}" if number else ""
+    checked = f"Without any one line{number} the others can hold together (each was tried)."
+    if not conflict.verified:
+        checked = f"Whether each line{number} is needed could not be verified."
+    proof = " The bill was checked in exact arithmetic." if told.bill is not None else (
+        " No exact proof was found."
+    )
+    return [Table("conflict", title, columns, rows), Sentence(f"{checked}{proof}{beside}")]
+
+
+def _least_change(change: LeastChange) -> list[Block]:
+    if not change.possible:
+        return [
             Sentence(
                 "No change of the measured rates mends it: limits and exact values contradict "
                 "one another."
             )
-        )
-    return tuple(blocks)
+        ]
+    if not change.changes:
+        return []
+    columns = (
+        Column("measured value", "name"),
+        Column("measured", "measured", align=Align.RIGHT),
+        Column("would be", "changed", align=Align.RIGHT),
+        Column("by [sd]", "in_sd", align=Align.RIGHT, decimals=1),
+    )
+    ranked = sorted(change.changes, key=lambda c: -abs(c.in_sd))
+    least = min(_SHOWN, abs(ranked[0].in_sd) / 2)
+    moved = [c for c in change.changes if abs(c.in_sd) >= least]
+    rest = [c for c in change.changes if abs(c.in_sd) < least]
+    rounding = 1e-12 * max(abs(c.measured) for c in change.changes)
+    rows = tuple(
+        (str(c.quantity), c.measured, 0.0 if abs(c.changed) < rounding else c.changed, c.in_sd)
+        for c in moved
+    )
+    notes = ["with parameters as written; limits and exact values do not give way"]
+    if rest:
+        notes.append(f"the others by less than {format_number(least, 2)} sd")
+    if change.common_k is not None:
+        within = format_number(change.common_k, 3)
+        notes.append(f"all measured values can hold together within {within} sd")
+    return [Table("least_change", "The least change that mends it", columns, rows, tuple(notes))]
+
+
+def _alternatives(told: ToldConflict, number: str) -> list[Block]:
+    """Each limit or measurement that could give way alone, the smallest change in sd first."""
+    ends = f"ends conflict{number}" if number else "mends it"
+    if not told.alternatives:
+        return [Sentence(f"No limit or measured value {ends} by giving way alone.")]
+    ranked = sorted(
+        told.alternatives, key=lambda a: (a.in_sd is None, abs(a.in_sd or 0.0))
+    )
+    listed = "; or ".join(alternative_words(a) for a in ranked)
+    keys = ("quantity", "is_ceiling", "needed", "stated", "in_sd")
+    rows = tuple(
+        (str(a.quantity), a.is_ceiling, a.needed, a.stated, a.in_sd) for a in ranked
+    )
+    return [
+        Sentence(f"Any one of these alone {ends} (all else as it stands): {listed}."),
+        Table("alternatives", "", tuple(Column("", key) for key in keys), rows),
+    ]
+
+
+def alternative_words(alternative: Alternative) -> str:
+    """What one of them would have to be, instead of what."""
+    a = alternative
+    bound = "at most" if a.is_ceiling else "at least"
+    sds = "" if a.in_sd is None else f" ({a.in_sd:+.1f} sd)"
+    name = str(a.quantity)
+    if a.quantity.kind is QuantityKind.FLUX:
+        name = name.removeprefix("flux ")
+    return f"{name} {bound} {format_number(a.needed)} instead of {format_number(a.stated)}{sds}"
 
 
 def unbounded_blocks(run: FluxSolution) -> tuple[Block, ...]:

@@ -4,12 +4,13 @@ from __future__ import annotations
 
 from typing import Any
 
-from fluxnet.network.model import Quantity, QuantityKind
+from fluxnet.presenting.conflict_record import conflict_record
+from fluxnet.presenting.quantity_record import quantity_record
 from fluxnet.presenting.records import diagnostic_record
 from fluxnet.solving.words import limit_words
 from fluxnet.studies.solution import FluxSolution, Solution
 
-__all__ = ["quantity_record", "solve_record"]
+__all__ = ["solve_record"]
 
 Record = dict[str, Any]
 
@@ -17,15 +18,6 @@ Record = dict[str, Any]
 def solve_record(solution: Solution) -> Record:
     """The body of a ``solve/1`` document."""
     return {"runs": [_run(run) for run in solution.runs]}
-
-
-def quantity_record(quantity: Quantity) -> Record:
-    """A quantity: the species (or reaction, or ratio) and the direction."""
-    is_rate = quantity.kind is QuantityKind.RATE
-    return {
-        "species": quantity.name if is_rate else str(quantity),
-        "direction": quantity.direction.value if is_rate and quantity.direction else None,
-    }
 
 
 def _run(run: FluxSolution) -> Record:
@@ -140,7 +132,7 @@ def _run(run: FluxSolution) -> Record:
         ],
         "prices": [],
         "limits": [{"name": x.name, "value": x.value, "worth": x.worth} for x in run.limits],
-        "conflict": _conflict(run),
+        "conflict": conflict_record(run),
         "unbounded": None
         if run.unbounded is None
         else {
@@ -168,32 +160,4 @@ def _run(run: FluxSolution) -> Record:
         ],
         "extras": dict(run.extras),
         "notes": [diagnostic_record(note) for note in run.notes],
-    }
-
-
-def _conflict(run: FluxSolution) -> Record | None:
-    if run.conflict is None or not run.conflict.members:
-        return None
-    change = run.least_change
-    return {
-        "members": [
-            {"kind": m.kind.value, "name": m.name, "words": m.words} for m in run.conflict.members
-        ],
-        "irreducible": run.conflict.verified,
-        "bill": [],
-        "least_change": []
-        if change is None
-        else [
-            {
-                **quantity_record(c.quantity),
-                "measured": c.measured,
-                "changed": c.changed,
-                "in_sd": c.in_sd,
-            }
-            for c in change.changes
-        ],
-        "possible": None if change is None else change.possible,
-        "total": None if change is None else change.total,
-        "smallest_common_sd": None if change is None else change.common_k,
-        "words": run.words,
     }

@@ -12,7 +12,7 @@ from fluxnet.solving.problem import Problem, Row
 from fluxnet.solving.words import number_words
 from fluxnet.studies.bill import Bill, BillLine, BillSide
 from fluxnet.studies.bill_rounding import print_bill
-from fluxnet.studies.bill_unit import Coin, choose_coin, species_prices
+from fluxnet.studies.bill_unit import Coin, species_prices
 from fluxnet.studies.bill_words import BillPart, tell_bill
 from fluxnet.studies.units import rate_unit
 
@@ -27,7 +27,7 @@ class BillPrice:
     price: float
 
 
-def make_bill(built: Built, contradiction: Contradiction, unit: str) -> Bill:
+def make_bill(built: Built, contradiction: Contradiction, coin: Coin, unit: str) -> Bill:
     """The bill of a contradiction between limits and measured values.
 
     Every bound counts at the end that is best for a solution. A bound of zero is a line only
@@ -37,10 +37,11 @@ def make_bill(built: Built, contradiction: Contradiction, unit: str) -> Bill:
     ----------
     built
         Its problem has the rows of the contradiction, in the same order.
+    coin
+        What worths count: :func:`fluxnet.studies.bill_unit.choose_coin`.
     unit
         That of the rates.
     """
-    coin = choose_coin(built, contradiction, unit)
     problem = built.problem
     weights = [w for w in contradiction.weights if w.member.kind.is_given or w.worth]
     sides = {side: [w for w in weights if _side(w) is side] for side in BillSide}
@@ -67,12 +68,13 @@ def make_bill(built: Built, contradiction: Contradiction, unit: str) -> Bill:
     return replace(bill, words=tell_bill(built.network, coin, demands, supplies, amounts))
 
 
-def price_species(built: Built, contradiction: Contradiction, unit: str) -> tuple[BillPrice, ...]:
+def price_species(
+    built: Built, contradiction: Contradiction, coin: Coin
+) -> tuple[BillPrice, ...]:
     """What each species and carrier of a conflict is worth in its bill's unit.
 
     A negative price is that of a surplus that has to be got rid of.
     """
-    coin = choose_coin(built, contradiction, unit)
     prices = species_prices(contradiction, built.problem)
     return tuple(BillPrice(name, float(price / coin.size)) for name, price in prices.items())
 

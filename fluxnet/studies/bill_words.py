@@ -46,7 +46,7 @@ def tell_bill(
     words = f"The {coin.noun} that {list_words(subjects)} {verb}, {need}"
     several = coin.noun == "electrons"
     if bringing:
-        are, do = ("are" if several else "is"), ("take" if coin.is_surplus else "make")
+        are, do = ("are" if several else "is"), ("take" if coin.is_surplus else "bring")
         given = list_words(_subjects(network, bringing))
         basis = _basis(bringing)
         return f"{words}, {are} more than {given} {basis} can {do}, {have} {coin.unit}."

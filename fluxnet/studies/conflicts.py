@@ -11,6 +11,7 @@ from fluxnet.solving.problem import Problem
 from fluxnet.solving.rational_rows import rational_rows
 from fluxnet.studies.bill import Bill
 from fluxnet.studies.bill_conflict import BillPrice, make_bill, price_species
+from fluxnet.studies.bill_unit import choose_coin
 
 __all__ = ["MOST_CONFLICTS", "ToldConflict", "explain_conflicts"]
 
@@ -22,13 +23,15 @@ MOST_CONFLICTS = 3
 class ToldConflict:
     """A conflict with the bill that proves it.
 
-    ``bill`` is None where no exact proof was found, ``prices`` are those of the balanced
-    species in its unit. ``alternatives`` are the limits and measurements each of which, giving
-    way alone, ends this conflict: of several conflicts, where the others are mended.
+    ``bill`` is None where no exact proof was found. ``is_surplus``: what it counts is too much,
+    and has to go somewhere. ``prices`` are those of the balanced species in the bill's unit.
+    ``alternatives`` are the limits and measurements each of which, giving way alone, ends this
+    conflict: of several conflicts, where the others are mended.
     """
 
     conflict: Conflict
     bill: Bill | None
+    is_surplus: bool
     prices: tuple[BillPrice, ...]
     alternatives: tuple[Alternative, ...]
 
@@ -56,13 +59,11 @@ def explain_conflicts(built: Built, problem: Problem, unit: str) -> tuple[ToldCo
     for conflict in conflicts:
         proof = find_contradiction(problem, conflict.members, rows)
         others = [m for other in conflicts if other is not conflict for m in other.given]
-        rest = without_members(problem, others)
-        told.append(
-            ToldConflict(
-                conflict,
-                None if proof is None else make_bill(built, proof, unit),
-                () if proof is None else price_species(built, proof, unit),
-                find_alternatives(rest, conflict.given),
-            )
-        )
+        ways = find_alternatives(without_members(problem, others), conflict.given)
+        if proof is None:
+            told.append(ToldConflict(conflict, None, False, (), ways))
+            continue
+        coin = choose_coin(built, proof, unit)
+        bill, prices = make_bill(built, proof, coin, unit), price_species(built, proof, coin)
+        told.append(ToldConflict(conflict, bill, coin.is_surplus, prices, ways))
     return tuple(told)

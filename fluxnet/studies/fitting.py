@@ -65,16 +65,17 @@ def fit_run(network: Network, run: Run | None) -> FluxSolution:
         violated_limits=tell_violations(fit.built.problem),
     )
     if fit.status is FitStatus.INFEASIBLE:
-        from fluxnet.solving.conflict import find_conflict, least_change
+        from fluxnet.solving.least_change import least_change
+        from fluxnet.studies.conflicts import explain_conflicts
 
-        conflict = find_conflict(fit.built.problem, unit=frame.unit)
+        conflicts = explain_conflicts(fit.built, fit.built.problem, frame.unit)
         change = least_change(fit.built.problem)
         return replace(
             frame,
             status=SolveStatus.INFEASIBLE,
-            conflict=conflict,
+            conflicts=conflicts,
             least_change=change,
-            words=tell_infeasible(conflict, change),
+            words=tell_infeasible(conflicts, change),
         )
     test = _test(fit)
     solution = replace(
@@ -82,13 +83,15 @@ def fit_run(network: Network, run: Run | None) -> FluxSolution:
     )
     solution = replace(solution, words=tell_fit(solution, test))
     if solution.status is SolveStatus.INCONSISTENT:
-        from fluxnet.solving.conflict import find_conflict, least_change
+        from fluxnet.solving.least_change import least_change
+        from fluxnet.studies.conflicts import explain_conflicts
 
-        problem = build_problem(network, run, within=_WITHIN).problem
-        conflict = find_conflict(problem, unit=frame.unit)
-        if conflict.members:
+        held = build_problem(network, run, within=_WITHIN)
+        conflicts = explain_conflicts(held, held.problem, frame.unit)
+        if conflicts:
+            change = least_change(held.problem)
             solution = replace(
-                solution, conflict=conflict, within=_WITHIN, least_change=least_change(problem)
+                solution, conflicts=conflicts, within=_WITHIN, least_change=change
             )
     return solution
 

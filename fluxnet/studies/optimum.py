@@ -12,7 +12,7 @@ from fluxnet.network.model import Network
 from fluxnet.rates.measured import Run
 from fluxnet.solving.alter import without_bounds
 from fluxnet.solving.build import Built, build_problem
-from fluxnet.solving.conflict import find_conflict, least_change
+from fluxnet.solving.conflict import least_change
 from fluxnet.solving.flux_fit import FluxKind
 from fluxnet.solving.least_flux import least_total_flux
 from fluxnet.solving.linear import LinearSolution, Outcome, Programme, worst_violation
@@ -80,15 +80,17 @@ def optimise(
     if best.outcome is Outcome.FAILED:
         raise ArithmeticError("the solver could not tell what is best")
     if best.outcome is not Outcome.OPTIMAL:
-        conflict = find_conflict(problem, unit=frame.unit)
+        from fluxnet.studies.conflicts import explain_conflicts
+
+        conflicts = explain_conflicts(built, problem, frame.unit)
         change = least_change(problem)
         return replace(
             frame,
             status=SolveStatus.INFEASIBLE,
-            conflict=conflict,
+            conflicts=conflicts,
             least_change=change,
             smallest_within=change.common_k,
-            words=tell_infeasible(conflict, change, within),
+            words=tell_infeasible(conflicts, change, within),
         )
     return _at_optimum(frame, built, problem, cost, best, aim.sense, fraction)
 

@@ -17,6 +17,7 @@ if TYPE_CHECKING:
     from fluxnet.solving.conflict import Conflict, LeastChange
     from fluxnet.solving.unbounded import Unbounded
     from fluxnet.studies.aims import Aim
+    from fluxnet.studies.conflicts import ToldConflict
 
 __all__ = [
     "BindingLimit", "FluxEstimate", "FluxKind", "FluxRelation", "FluxSolution", "FluxTest",
@@ -174,7 +175,7 @@ class FluxSolution:
     limits: tuple[BindingLimit, ...] = ()
     relations: tuple[FluxRelation, ...] = ()
     moved: tuple[MovedParameter, ...] = ()
-    conflict: Conflict | None = None
+    conflicts: tuple[ToldConflict, ...] = ()
     least_change: LeastChange | None = None
     unbounded: Unbounded | None = None
     violated_limits: tuple[str, ...] = ()
@@ -185,6 +186,11 @@ class FluxSolution:
     notes: tuple[Diagnostic, ...] = ()
     extras: tuple[tuple[str, str], ...] = ()
     has_biomass: bool = False
+
+    @property
+    def conflict(self) -> Conflict | None:
+        """The first conflict, where there is one."""
+        return self.conflicts[0].conflict if self.conflicts else None
 
 
 @record

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from math import isclose, isinf
 from typing import TYPE_CHECKING
 
@@ -11,9 +12,10 @@ from fluxnet.solving.violations import find_violations
 from fluxnet.studies.solution import FluxKind, FluxSolution, FluxTest, OptimumSpan, RateKind
 
 if TYPE_CHECKING:
-    from fluxnet.solving.conflict import Conflict, LeastChange
+    from fluxnet.solving.conflict import LeastChange
     from fluxnet.solving.unbounded import Unbounded
     from fluxnet.studies.aims import Aim
+    from fluxnet.studies.conflicts import ToldConflict
 
 __all__ = ["tell_fit", "tell_infeasible", "tell_optimum", "tell_unbounded", "tell_violations"]
 
@@ -133,17 +135,15 @@ def _share(solution: FluxSolution) -> str:
 
 
 def tell_infeasible(
-    conflict: Conflict, change: LeastChange | None, within: float | None = None
+    conflicts: Sequence[ToldConflict], change: LeastChange | None, within: float | None = None
 ) -> str:
     """What cannot hold together, and how much would have to give way."""
-    given = [member.name for member in conflict.given]
-    names = _listed(given) if given else "what the model demands"
     held = f" within {within:g} sd" if within is not None else ""
-    words = f"No fluxes meet everything{held}: {names} cannot hold together"
+    words = f"No fluxes meet everything{held}{_first_conflict(conflicts)}"
     if change is None:
         return words + "."
     if not change.possible:
-        return words + ", and no change of the measured rates mends it."
+        return words + "; no change of the measured rates mends it."
     if change.common_k is None or not change.changes:
         return words + "."
     most = max(change.changes, key=lambda one: abs(one.in_sd))
@@ -151,6 +151,20 @@ def tell_infeasible(
         f"{words}. The least change that mends it moves {most.quantity} from {most.measured:.4g} "
         f"to {most.changed:.4g} ({most.in_sd:+.1f} sd)."
     )
+
+
+def _first_conflict(conflicts: Sequence[ToldConflict]) -> str:
+    """The first conflict, by its bill where it has one, and how many stand beside it."""
+    if not conflicts:
+        return ""
+    bill = conflicts[0].bill
+    given = [member.name for member in conflicts[0].conflict.given]
+    names = _listed(given) if given else "what the model demands"
+    words = f": {names} cannot hold together" if bill is None else f". {bill.words[:-1]}"
+    if len(conflicts) > 1:
+        words += f", and {len(conflicts) - 1} more such conflict"
+        words += "s stand beside it" if len(conflicts) > 2 else " stands beside it"
+    return words
 
 
 def tell_unbounded(aim: Aim, reason: Unbounded) -> str:
