@@ -13,12 +13,13 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
 from fluxnet.solving.chart import Point, chart_at, point_at
+from fluxnet.solving.forces import Forces, forces_of, missing_at
 from fluxnet.solving.functionals import Functionals
-from fluxnet.solving.reach import Reach, reach_far
+from fluxnet.solving.reach import reach_far
 from fluxnet.solving.region import Region, nearest, region_at
 from fluxnet.solving.task import Task
 
-__all__ = ["Curve", "follow_curve", "moved_by"]
+__all__ = ["Curve", "End", "follow_curve", "moved_by"]
 
 Vector = NDArray[np.float64]
 
@@ -30,8 +31,6 @@ _LESS = 1e-6
 """So is one after which the next, that grows shorter at the same ratio, is this part of it."""
 _DUST = 1e-8
 """A step of this part of what one sd of the measurements brings is the solver's rounding."""
-_LEFT, _BEYOND, _UNBALANCED = 1e-4, 1e-7, 1e-6
-"""How near h must be to its level, values to their bounds, forces to balance, at an end."""
 
 
 @record
@@ -48,6 +47,11 @@ class Curve:
         """How far the functional has come at a point."""
         return self.sign * float(self.functional.values(point)[0] - self.origin)
 
+    def missing(self, forces: Forces, point: Point) -> float | None:
+        """What it lacks at a point to its end, None where that is not known."""
+        slope = self.sign * self.functional.slopes(point)[0]
+        return missing_at(self.task, forces, point, self.level, slope)
+
     def gradient(self, region: Region) -> Vector:
         """Its slope at the point of a region, over (u, t)."""
         width = len(region.seen)
@@ -55,89 +59,60 @@ class Curve:
         return np.asarray(region.gradients(slope[None, :])[0], dtype=np.float64)
 
 
-def follow_curve(
-    curve: Curve, start: Point, region: Region | None = None
-) -> tuple[float, Point | None]:
+@record
+class End:
+    """Where a functional ends: how far it goes, and the point and forces there.
+
+    ``point`` is None where nothing bounds the functional (the value is infinite), ``forces``
+    where they were not needed to tell.
+    """
+
+    value: float
+    point: Point | None = None
+    forces: Forces | None = None
+
+
+def follow_curve(curve: Curve, region: Region, place: Vector) -> End:
     """How far the functional goes, and the point where it ends.
 
     Parameters
     ----------
-    start
-        A point within the bounds and below the level.
     region
-        That of ``start``, where it is known.
-
-    Returns
-    -------
-    value, point
-        The point is None, and the value infinite, where nothing bounds the functional.
+        That of a point within the bounds and below the level.
+    place
+        A place within the region and as near to its centre, from which it is to go on.
     """
-    task, point = curve.task, start
-    room = curve.level - start.h
+    task, point, here = curve.task, region.point, region
+    room = curve.level - point.h
     weight, before = 0.0, 0.0
     for _ in range(_STEPS):
-        here = region_at(task, point) if region is None else region
-        region = None
         left = curve.level - here.floor
         gain = curve.gain(point)
         if not np.isfinite(gain) or left <= 0 or here.broken:
             break
-        gradient = curve.gradient(here)
-        onward = reach_far(here, gradient, float(np.sqrt(left)), np.zeros(len(gradient)), weight)
+        gradient, radius = curve.gradient(here), float(np.sqrt(left))
+        onward = reach_far(here, gradient, radius, place, weight)
         if onward.value == -np.inf:
             break
         if onward.place is None:
-            return np.inf, None
+            return End(np.inf)
         dust = max(_DUST * float(np.linalg.norm(gradient)), 1e-12 * abs(curve.origin))
         if abs(onward.value) <= dust:
-            return gain, point
+            return End(gain, point)
+        forces = forces_of(here, onward.prices, radius)
         size = abs(onward.value)
         if size <= _NEAR * abs(gain) or size**2 <= _LESS * abs(gain) * before:
-            return gain + onward.value, point
+            return End(gain + onward.value, point, forces)
         weight, before = onward.weight, size
         following = moved_by(task, point, here.step(onward.place))
         if following is None or following.h > curve.level + room:
             break
-        rest = _rest(curve, here, gradient, onward, following)
-        if rest is not None:
-            return curve.gain(following) + rest, following
+        missing = curve.missing(forces, following)
+        if missing is not None:
+            return End(curve.gain(following) + missing, following, forces)
         point = following
-    return _climb(curve, start)
-
-
-def _rest(
-    curve: Curve, region: Region, gradient: Vector, reach: Reach, point: Point
-) -> float | None:
-    """What is left to add at the end of the linear problem, where that is the curved one's too.
-
-    It is where the pull, the slopes of h and the prices balance with the slopes that the point
-    itself has, and its bounds hold: often, because not all functionals feel the numbers. None
-    where they do not, or it cannot be told.
-    """
-    task, bounds = curve.task, region.bounds
-    radius = float(np.sqrt(max(curve.level - region.floor, 0.0)))
-    pull = reach.weight / float(np.linalg.norm(gradient))
-    left = curve.level - point.h
-    if reach.place is None or pull == 0 or abs(left) > _LEFT * radius**2:
-        return None
-    count = len(task.bounded)
-    fluxes = bounds.sources < count
-    values = point.values[task.bounded]
-    beyond = np.maximum(task.low - values, values - task.high)[bounds.sources[fluxes]]
-    if (beyond / bounds.norms[fluxes]).max(initial=0.0) > _BEYOND * radius:
-        return None
-    width = len(point.tangent[0])
-    balance = point.design.T @ point.residuals
-    balance += pull * curve.sign * curve.functional.slopes(point)[0]
-    prices = np.zeros(len(bounds.norms)) if reach.prices is None else reach.prices / bounds.norms
-    for i in np.flatnonzero(prices).tolist():
-        source, price = int(bounds.sources[i]), prices[i]
-        if source < count:
-            balance -= price * point.slopes[task.bounded[source]]
-        else:
-            balance[width - task.numbers + source - count] -= price
-    unbalanced = float(np.abs(region.gradients(balance[None, :])).max(initial=0.0))
-    return left / (2 * pull) if unbalanced <= _UNBALANCED * radius else None
+        here, place = region_at(task, point), np.zeros(len(gradient))
+    return _climb(curve, region.point)
 
 
 def moved_by(task: Task, point: Point, step: Vector) -> Point | None:
@@ -150,12 +125,12 @@ def moved_by(task: Task, point: Point, step: Vector) -> Point | None:
         return None
 
 
-def _climb(curve: Curve, start: Point) -> tuple[float, Point | None]:
+def _climb(curve: Curve, start: Point) -> End:
     """Move the numbers in steps that each bring the functional farther out."""
     task = curve.task
     point = _outermost(curve, start.numbers)
     if point is None:
-        return np.inf, None
+        return End(np.inf)
     gain = curve.gain(point)
     for _ in range(_CLIMBS):
         here = region_at(task, point)
@@ -167,9 +142,9 @@ def _climb(curve: Curve, start: Point) -> tuple[float, Point | None]:
         if onward.value == -np.inf:
             break
         if onward.place is None:
-            return np.inf, None
+            return End(np.inf)
         if onward.value <= _NEAR * max(abs(gain), 1e-12):
-            return gain + max(onward.value, 0.0), point
+            return End(gain + max(onward.value, 0.0), point)
         step = here.step(onward.place)[len(point.z) :]
         better = None
         factor = 1.0
@@ -184,7 +159,7 @@ def _climb(curve: Curve, start: Point) -> tuple[float, Point | None]:
         if better is None:
             break
         point, gain = better, curve.gain(better)
-    return gain, point
+    return End(gain, point)
 
 
 def _outermost(curve: Curve, numbers: Vector) -> Point | None:

@@ -28,9 +28,9 @@ class Placed:
         """Their derivatives by the point's coordinates."""
         return point.slopes[self.places]
 
-    def only(self, i: int) -> Placed:
-        """The one at a place alone."""
-        return Placed(self.places[i : i + 1])
+    def some(self, wanted: Places) -> Placed:
+        """Those at some places among them, in rising order."""
+        return Placed(self.places[wanted])
 
     @property
     def curved(self) -> NDArray[np.bool_]:
@@ -58,9 +58,9 @@ class Ratios:
         slopes: Vector = top / np.where(below == 0, np.nan, below)[:, None]
         return slopes
 
-    def only(self, i: int) -> Ratios:
-        """The one at a place alone."""
-        return Ratios(self.over[i : i + 1], self.below[i : i + 1])
+    def some(self, wanted: Places) -> Ratios:
+        """Those at some places among them, in rising order."""
+        return Ratios(self.over[wanted], self.below[wanted])
 
     @property
     def curved(self) -> NDArray[np.bool_]:
@@ -73,7 +73,7 @@ class Drifting:
     """Rows over the fluxes that change in proportion to the uncertain numbers.
 
     ``rows`` (functionals x fluxes) are those at ``origin``, ``drift`` (numbers x functionals
-    x fluxes) their derivatives.
+    x fluxes) their derivatives; both are without entries where the rows stay as they are.
     """
 
     rows: Vector
@@ -81,6 +81,8 @@ class Drifting:
     origin: Vector
 
     def _rows(self, point: Point) -> Vector:
+        if not len(self.origin):
+            return self.rows
         moved = point.numbers - self.origin
         rows: Vector = self.rows + np.einsum("k,kij->ij", moved, self.drift)
         return rows
@@ -97,9 +99,9 @@ class Drifting:
             slopes[:, len(point.z) :] += (self.drift @ point.fluxes).T
         return slopes
 
-    def only(self, i: int) -> Drifting:
-        """The one at a place alone."""
-        return Drifting(self.rows[i : i + 1], self.drift[:, i : i + 1], self.origin)
+    def some(self, wanted: Places) -> Drifting:
+        """Those at some places among them, in rising order."""
+        return Drifting(self.rows[wanted], self.drift[:, wanted], self.origin)
 
     @property
     def curved(self) -> NDArray[np.bool_]:
@@ -121,13 +123,16 @@ class Joined:
         """Their derivatives by the point's coordinates."""
         return np.vstack([part.slopes(point) for part in self.parts])
 
-    def only(self, i: int) -> Placed | Ratios | Drifting:
-        """The one at a place alone."""
+    def some(self, wanted: Places) -> Joined:
+        """Those at some places among them, in rising order."""
+        parts, start = [], 0
         for part in self.parts:
-            if i < len(part.curved):
-                return part.only(i)
-            i -= len(part.curved)
-        raise IndexError(i)
+            stop = start + len(part.curved)
+            inside = wanted[(wanted >= start) & (wanted < stop)]
+            if len(inside):
+                parts.append(part.some(inside - start))
+            start = stop
+        return Joined(tuple(parts))
 
     @property
     def curved(self) -> NDArray[np.bool_]:

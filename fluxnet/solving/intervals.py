@@ -12,8 +12,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
-from fluxnet.solving.chart import Point, flux_scale, point_at
-from fluxnet.solving.curve import Curve, follow_curve, moved_by
+from fluxnet.solving.chart import flux_scale, point_at
+from fluxnet.solving.curve import Curve, End, follow_curve
+from fluxnet.solving.forces import missing_at
 from fluxnet.solving.functionals import Functionals
 from fluxnet.solving.reach import Reach, reach_far, reach_flat
 from fluxnet.solving.region import Region
@@ -158,6 +159,8 @@ def _fill(search: _Search, members: list[tuple[int, float]]) -> None:
     """The ends of the intervals of functionals that go up and down together."""
     first, lead = members[0]
     origin = np.zeros(search.gradients.shape[1])
+    places = np.array([i for i, _ in members], dtype=np.intp)
+    functionals = search.functionals.some(places) if search.curved[first] else None
     for sign in (-1.0, 1.0):
         best, least = origin, 0.0
         if search.hidden[first]:
@@ -167,22 +170,32 @@ def _fill(search: _Search, members: list[tuple[int, float]]) -> None:
                 _note(search, members, 0, sign, np.inf)
                 continue
             best, least = flat.place, flat.value
-        reach, there = _end(search, first, sign, best)
+        end = _end(search, first, sign, best)
         # What the best fit allows, 95 % allows too.
-        reach = max(reach, least)
+        reach = max(end.value, least)
         _note(search, members, 0, sign, reach)
-        if there is None or len(members) == 1:
+        there = end.point
+        if there is None or functionals is None or len(members) == 1:
             continue
-        values = search.functionals.values(there) - search.values
-        slopes = search.functionals.slopes(there)
-        for i, other in members[1:]:
+        values = functionals.values(there) - search.values[places]
+        slopes = functionals.slopes(there)
+        for k, (i, other) in enumerate(members[1:], start=1):
             factor = other / lead
-            size = float(np.abs(slopes[i]).max(initial=0.0))
-            differs = np.abs(slopes[i] - factor * slopes[first]).max() > 1e-6 * size
-            if differs or abs(values[i] - factor * values[first]) > 1e-6 * abs(values[i]):
-                turn = sign if factor > 0 else -sign
-                own, _ = _end(search, i, turn, best)
-                _note(search, [(i, 1.0)], 0, turn, own)
+            size = float(np.abs(slopes[k]).max(initial=0.0))
+            differs = np.abs(slopes[k] - factor * slopes[0]).max() > 1e-6 * size
+            if not differs and abs(values[k] - factor * values[0]) <= 1e-6 * abs(values[k]):
+                continue
+            turn = sign if factor > 0 else -sign
+            missing = None
+            if end.forces is not None:
+                missing = missing_at(
+                    search.task, end.forces, there, search.level, turn * slopes[k]
+                )
+            own = (
+                _end(search, i, turn, best).value if missing is None
+                else turn * float(values[k]) + missing
+            )
+            _note(search, [(i, 1.0)], 0, turn, max(own, abs(factor) * least))
 
 
 def _note(
@@ -210,7 +223,7 @@ def _flat_end(search: _Search, i: int, sign: float) -> Reach:
     return Reach(sign * (value - search.values[i]), flat.place)
 
 
-def _end(search: _Search, i: int, sign: float, flat: Vector) -> tuple[float, Point | None]:
+def _end(search: _Search, i: int, sign: float, flat: Vector) -> End:
     """How far a functional goes at 95 %, and the point where it ends.
 
     Parameters
@@ -222,10 +235,7 @@ def _end(search: _Search, i: int, sign: float, flat: Vector) -> tuple[float, Poi
     if not search.curved[i]:
         room = max(search.level - region.floor, 1e-12)
         reach = reach_far(region, sign * search.gradients[i], float(np.sqrt(room)), flat)
-        return reach.value, None
-    functional = search.functionals.only(i)
+        return End(reach.value)
+    functional = search.functionals.some(np.array([i]))
     curve = Curve(search.task, functional, sign, search.level, search.values[i])
-    start = moved_by(search.task, region.point, region.step(flat)) if flat.any() else region.point
-    if start is None:
-        return np.inf, None
-    return follow_curve(curve, start, region if start is region.point else None)
+    return follow_curve(curve, region, flat)

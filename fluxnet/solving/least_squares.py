@@ -49,6 +49,8 @@ Vector = NDArray[np.float64]
 _PRESSES = 1e-9
 """What bounds add to h below this part of it is rounding."""
 _GUESSES = 3
+_CANCELS = 1e-9
+"""What is left of a sum below this part of its terms is rounding."""
 
 
 def fit_fluxes(network: Network, run: Run | None = None, *, built: Built | None = None) -> FluxFit:
@@ -152,6 +154,10 @@ def spans_of(
     for k, name in enumerate(task.rows.names):
         if drift is not None and name in drift:
             slopes[k] = drift[name]
+    # What no measurement sees cancels in a determined row, up to the rounding of its terms.
+    free = np.where(task.open_fluxes[:, None], region.point.tangent @ region.unseen, 0.0)
+    terms = np.abs(rows) @ np.abs(free)
+    determined = np.asarray(np.all(np.abs(rows @ free) <= _CANCELS * terms, axis=1), dtype=bool)
     # Multiples of a single flux are known already.
     known = (np.count_nonzero(rows, axis=1) == 1) & ~slopes.any(axis=(0, 2))
     places = np.abs(rows[known]).argmax(axis=1)
@@ -160,7 +166,7 @@ def spans_of(
     )
     asked = Drifting(rows[~known], slopes[:, ~known], region.point.numbers)
     return fluxes.times(places, rows[known, places]).among(
-        find_intervals(task, region, asked), known
+        find_intervals(task, region, asked, determined[~known]), known
     )
 
 
@@ -240,15 +246,14 @@ def _all_ranges(
 ) -> tuple[Intervals, Intervals, Intervals, Intervals]:
     """The ranges of fluxes, measured rows, other rates and relations: what is alike once."""
     count = task.rows.count
-    rows = np.vstack([np.eye(count), np.zeros((len(relations), count))])
+    rows = np.zeros((len(relations), count))
     for k, relation in enumerate(relations):
         for j, factor in relation.terms:
-            rows[count + k, j] = float(factor)
-    drift = np.zeros((task.numbers, *rows.shape))
+            rows[k, j] = float(factor)
+    steady = Drifting(rows, np.zeros((0, *rows.shape)), np.zeros(0))
     plain, ratios = places.functionals
-    parts = (
-        Drifting(rows, drift, region.point.numbers), plain, ratios, Placed(rates.places)
-    )
+    fluxes = Placed(np.arange(len(task.rows.base) - count, len(task.rows.base)))
+    parts = (fluxes, steady, plain, ratios, Placed(rates.places))
     determined = np.concatenate(
         [
             np.array(structure.determined, dtype=bool),

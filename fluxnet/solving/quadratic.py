@@ -154,7 +154,9 @@ def _solve(
 ) -> tuple[Outcome, Vector | None, Vector, float]:
     """Solve, check, and try again until a way passes the check."""
     none = np.zeros(len(programme.low))
-    ways: tuple[dict[str, float], ...] = ({}, {"eps_prox": 1e-2, "primal_tol": 1e-9})
+    ways: tuple[dict[str, float], ...] = (
+        {"primal_tol": 1e-9}, {"eps_prox": 1e-2, "primal_tol": 1e-9}
+    )
     for settings in ways:
         flag, x, prices = ask(programme, settings)
         if flag == -3 and is_unbounded(programme):

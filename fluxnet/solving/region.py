@@ -25,6 +25,8 @@ _FLAT = 1e-11
 """A row that a unit step changes by less than this part of its terms is a constant."""
 _DUST = 1e-11
 """A coefficient below this part of its row's norm is what rounding left of none."""
+_ALIKE = 10
+"""Rows of norm 1 that agree to so many decimals are parallel."""
 _CONSTANT = 1e-7
 """By how much of its terms a constant row may miss its bound and still be rounding."""
 
@@ -140,8 +142,34 @@ def _bounds(
     norms = sizes[kept]
     rows = rows[kept] / norms[:, None]
     rows[np.abs(rows) < _DUST] = 0.0
-    bounds = Bounds(rows, low[kept] / norms, high[kept] / norms, kept, np.abs(rows), norms)
+    low, high = low[kept] / norms, high[kept] / norms
+    some = _tightest(rows, low, high)
+    rows = rows[some]
+    bounds = Bounds(rows, low[some], high[some], kept[some], np.abs(rows), norms[some])
     return bounds, tuple(broken.tolist())
+
+
+def _tightest(rows: Vector, low: Vector, high: Vector) -> list[int]:
+    """The rows that bound anything beside those that are parallel to them.
+
+    The fluxes of a chain of reactions are all parallel, so that few of them are left.
+    """
+    if not rows.size:
+        return list(range(len(rows)))
+    sizes = np.abs(rows)
+    lead = rows[np.arange(len(rows)), (sizes > 0.3 * sizes.max(axis=1)[:, None]).argmax(axis=1)]
+    turned = lead < 0
+    keys = np.round(rows / np.where(turned, -1.0, 1.0)[:, None], _ALIKE) + 0.0
+    floors = np.where(turned, -high, low).tolist()
+    ceilings = np.where(turned, -low, high).tolist()
+    below: dict[bytes, int] = {}
+    above: dict[bytes, int] = {}
+    for i, key in enumerate(map(bytes, keys)):
+        if floors[i] > floors[below.setdefault(key, i)]:
+            below[key] = i
+        if ceilings[i] < ceilings[above.setdefault(key, i)]:
+            above[key] = i
+    return sorted({*below.values(), *above.values()})
 
 
 def nearest(region: Region, target: Vector | None = None) -> QuadraticSolution:

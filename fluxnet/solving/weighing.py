@@ -17,12 +17,13 @@ from fluxnet.network.model import Quantity
 from fluxnet.rates.covariance import GROSS, covariance_at, within_reach
 from fluxnet.rates.measured import Run
 from fluxnet.solving.build import Built, rebuild
+from fluxnet.solving.chart import Point
 from fluxnet.solving.classify import Structure
 from fluxnet.solving.descent import fit_equalities
 from fluxnet.solving.forms import Form, exact_numbers, exact_row, exact_species, form_of
 from fluxnet.solving.problem import Row, RowKind
 from fluxnet.solving.statistics import chi_squared_tail
-from fluxnet.solving.task import Point, Task, task_of, whitening
+from fluxnet.solving.task import Task, task_of, whitening
 
 __all__ = ["Weighed", "fit_weighed", "weigh_again"]
 
