@@ -82,7 +82,8 @@ class ClosureArrays:
     ``gap``, ``gap_sd``, ``recovery`` (a fraction) and ``recovery_sd`` runs x balances. NaN
     stands where a number is not defined: h without redundancy, z of a value that no balance
     tests, a ratio to nothing, recovery where nothing is taken up.
-    ``residual`` is the largest |R y^| over the sum of its terms' magnitudes.
+    ``residual`` is the largest |R y^| over the sum of its terms' magnitudes; ``errors`` are
+    those that it was closed with.
     """
 
     dof: int
@@ -105,6 +106,7 @@ class ClosureArrays:
     recovery: Array
     recovery_sd: Array
     residual: Array = field(repr=False)
+    errors: Errors = field(repr=False)
 
 
 def close_many(
@@ -179,6 +181,7 @@ def close_with(matrices: ClosureMatrices, values: Array, errors: Errors) -> Clos
         calculated=calculated,
         calculated_sd=sd_of_rows(W, Z, errors),
         residual=off.max(axis=1) if dof else np.zeros(len(y)),
+        errors=errors,
         **_ratios(matrices, reconciled, Z, errors),
         **balances_of(matrices, y, errors),
     )

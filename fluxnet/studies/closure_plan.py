@@ -14,6 +14,7 @@ from fluxnet.network.contents import (
     CHARGE,
     ELECTRONS,
     Content,
+    Functional,
     content_of_formula,
     in_order_of_balances,
     without_free,
@@ -29,9 +30,14 @@ from fluxnet.studies.closure_rows import (
     balance_unit,
 )
 from fluxnet.studies.closure_structure import Redundancy, find_redundancy
-from fluxnet.studies.closure_world import NitrogenSource, describe_world, free_formulas
+from fluxnet.studies.closure_world import (
+    NitrogenSource,
+    describe_world,
+    free_formulas,
+    identity,
+)
 
-__all__ = ["ClosurePlan", "PlannedBalance", "plan_closure"]
+__all__ = ["BalanceSystem", "ClosurePlan", "PlannedBalance", "plan_closure"]
 
 _NAMES = {"C": "carbon", "N": "nitrogen", "P": "phosphorus", "S": "sulfur"}
 _SEEN_NOT = ("H", "O", CHARGE)
@@ -44,6 +50,40 @@ class PlannedBalance:
     name: str
     unit: str
     missing: tuple[str, ...]
+
+
+@record
+class BalanceSystem:
+    """The balances of a run as sums over its rows: ``measured`` A_m, ``unmeasured`` A_u.
+
+    The first rows are the balances of ``functionals``, behind them stand relations that are no
+    balances. ``amounts`` is all that any species with a row, or free, holds; ``taken`` are the
+    identities of those with a row and of the free ones. ``shift`` is what the electron balance
+    adds for each nitrogen.
+    """
+
+    functionals: tuple[Functional, ...]
+    amounts: tuple[str, ...]
+    shift: Fraction
+    taken: tuple[str, ...]
+    measured: tuple[tuple[Fraction, ...], ...]
+    unmeasured: tuple[tuple[Fraction, ...], ...]
+
+    def of_formula(self, formula: Formula) -> tuple[Fraction, ...] | None:
+        """What one mole of a compound releases into each row.
+
+        None where no balance has a place for one of its elements.
+        """
+        content = content_of_formula(formula)
+        others = set(content.amounts).difference(self.amounts, _SEEN_NOT)
+        if others - {ELECTRONS} or content.without_reference:
+            return None
+        nitrogen = content.amounts.get("N", Fraction(0))
+        released = tuple(
+            f.of(content) + (self.shift * nitrogen if f.name == ELECTRONS else 0)
+            for f in self.functionals
+        )
+        return (*released, *(Fraction(0),) * (len(self.measured) - len(released)))
 
 
 @record
@@ -64,6 +104,7 @@ class ClosurePlan:
     world: World
     reference: str
     notes: tuple[str, ...]
+    system: BalanceSystem
 
 
 def plan_closure(
@@ -109,9 +150,13 @@ def plan_closure(
     shown = _in_order_shown(names)
     tied_measured = [tie.measured for tie in rows.ties]
     tied_unmeasured = [tie.unmeasured for tie in rows.ties]
-    redundancy = find_redundancy(
-        [*measured_rows, *tied_measured], [*unmeasured_rows, *tied_unmeasured], exact
-    )
+    system = BalanceSystem(
+        functionals, tuple(amounts), shift if "N" in amounts else Fraction(0),
+        tuple(identity(s.name, s.entry) for s in species)
+        + tuple(source.entry if name == source.name else identity(name) for name in free),
+        (*measured_rows, *tied_measured), (*unmeasured_rows, *tied_unmeasured),
+    )  # fmt: skip
+    redundancy = find_redundancy(system.measured, system.unmeasured, exact)
     width = len(rows.measured)
     over = [_by_measured(ratio.over, redundancy.weights) for ratio in rows.ratios]
     below = [_by_measured(ratio.below, redundancy.weights) for ratio in rows.ratios]
@@ -142,7 +187,7 @@ def plan_closure(
         rows.measured, rows.unmeasured, rows.ratios,
         tuple(a is not None and b is not None for a, b in zip(over, below, strict=True)),
         balances, redundancy, matrices,
-        describe_world(species, free, source, network, rows.aside), reference, notes,
+        describe_world(species, free, source, network, rows.aside), reference, notes, system,
     )  # fmt: skip
 
 

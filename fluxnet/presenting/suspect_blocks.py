@@ -1,0 +1,230 @@
+"""What could be wrong: the suspects that explain a run best, and what to do about it."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from fluxnet.ground.table import Align, Cell, Column, Table
+from fluxnet.presenting.numbers import format_number, format_p
+from fluxnet.presenting.screen import Block, Data, Mood, Sentence
+from fluxnet.presenting.suspect_text import and_words, suspect_words, would_be_words
+from fluxnet.solving.statistics import chi_squared_quantile
+from fluxnet.studies.suspect_result import Standing, Suspect, SuspectKind, Suspects
+
+__all__ = ["suspect_blocks"]
+
+_MOST_ROWS = 12
+_MOST_NAMED = 4
+_PLAUSIBLE = (Standing.MEASURED, Standing.MODEL, Standing.COMMON)
+
+
+def suspect_blocks(
+    suspects: Suspects, run: str | None, *, everything: bool = False
+) -> list[Block]:
+    """The suspects of one run: those that explain it best, and what that is worth.
+
+    Parameters
+    ----------
+    run
+        The name of the run, for the tables as data.
+    everything
+        Show all suspects that cannot be told from the best one, rare and impossible ones too.
+    """
+    blocks: list[Block] = [_lead(suspects)]
+    if suspects.explained or not suspects.pairs:
+        blocks.append(_table(suspects, everything=everything))
+    else:
+        blocks.append(_pairs(suspects))
+    blocks += [Sentence(text) for text in _advice(suspects)]
+    return [*blocks, Data(lambda: (_data(suspects, run),))]
+
+
+def _lead(suspects: Suspects) -> Sentence:
+    """What the table under it holds."""
+    limit = chi_squared_quantile(0.95, suspects.dof)
+    if suspects.h <= limit:
+        return Sentence(
+            "The rates agree. What would make them agree still better is no sign of an error."
+        )
+    if suspects.dof == 1:
+        return Sentence(
+            "What could be wrong? Only one relation tests the rates: every suspect explains it "
+            "fully, and none can be told from another.",
+            Mood.DOUBTFUL,
+        )
+    if not suspects.explained:
+        best = min((s.h_left for s in suspects.group if s.possible), default=suspects.h)
+        return Sentence(
+            f"What could be wrong? No single error explains it: the best one leaves h = "
+            f"{format_number(best, 3)}, where "
+            f"{format_number(chi_squared_quantile(0.95, suspects.dof - 1), 3)} would do.",
+            Mood.BAD,
+        )
+    several = len({s.direction_number for s in suspects.group if s.possible}) > 1
+    text = (
+        "What could be wrong? Each of these by itself explains it; the measurements do not tell "
+        "which (at 5 %), the likelier ones come first."
+        if several
+        else "What could be wrong? One thing explains it, and no other does (at 5 %)."
+    )
+    return Sentence(text, Mood.DOUBTFUL)
+
+
+def _table(suspects: Suspects, *, everything: bool) -> Table:
+    """The first group, one line for all that can never be told apart."""
+    rows, left = _lines(suspects, everything=everything)
+    columns = (
+        Column("suspect", ""),
+        Column("measured", "", align=Align.RIGHT),
+        Column("would have to be", "", align=Align.RIGHT),
+        Column("h left", "", align=Align.RIGHT, digits=2),
+        Column("p", "", align=Align.RIGHT),
+        Column("apart [sd]", "", align=Align.RIGHT, decimals=1),
+    )
+    cells: list[tuple[Cell, ...]] = []
+    notes: list[str] = []
+    for first, twins in rows:
+        cells.append((
+            _named(first, suspects), format_number(first.measured), would_be_words(first),
+            first.h_left if first.h_left > 0.005 else 0.0, format_p(first.p), first.separation,
+        ))  # fmt: skip
+        if twins:
+            notes.append(_twin_note(first, twins, everything=everything))
+    if left:
+        notes.append(f"and {left}: --all")
+    tries = f"the best of {suspects.distinct} different suspects" if suspects.distinct > 1 else "it"
+    notes.append(
+        f"h left: the test value if it is so; p: how often {tries} would gain as much by chance; "
+        "apart: how far off the nearest different suspect lies"
+    )
+    return Table("", "Suspects", columns, tuple(cells), tuple(notes))
+
+
+def _lines(
+    suspects: Suspects, *, everything: bool
+) -> tuple[list[tuple[Suspect, list[Suspect]]], str]:
+    """The lines to show, each with its twins, and words for what is left out."""
+    by_number: dict[int, list[Suspect]] = {}
+    for one in suspects.group:
+        by_number.setdefault(one.direction_number, []).append(one)
+    lines = [(members[0], members[1:]) for members in by_number.values()]
+    if everything:
+        return lines, ""
+    likely = [line for line in lines if line[0].standing in _PLAUSIBLE]
+    shown = (likely or [line for line in lines if line[0].possible] or lines)[:_MOST_ROWS]
+    hidden = [line for line in lines if line not in shown]
+    counts = [
+        (sum(line[0].standing in _PLAUSIBLE for line in hidden), "as likely"),
+        (sum(line[0].standing is Standing.RARE for line in hidden), "less likely"),
+        (sum(line[0].standing is Standing.IMPOSSIBLE for line in hidden), "not possible"),
+    ]
+    told = [f"{count} {words}" for count, words in counts if count]
+    return shown, f"{and_words(told)}" if told else ""
+
+
+def _named(suspect: Suspect, suspects: Suspects) -> str:
+    """The first cell of a line: the label, with the unit where it is not that of the rates."""
+    label = suspect.label
+    units = [s.unit for s in suspects.all if s.kind is not SuspectKind.PARAMETER]
+    usual = max(set(units), key=units.count) if units else ""
+    if suspect.unit not in (usual, "", "mol/mol"):
+        label += f" [{suspect.unit}]"
+    if suspect.kind is SuspectKind.CARRIER:
+        label += " spent beside" if suspect.size >= 0 else " made beside"
+    return label if suspect.possible else f"{label} (not possible)"
+
+
+def _twin_note(first: Suspect, twins: Sequence[Suspect], *, everything: bool) -> str:
+    """Those that these measurements can never tell from the first one of a line."""
+    told = [t for t in twins if everything or t.standing in _PLAUSIBLE]
+    told = told if everything else told[:_MOST_NAMED]
+    names = [f"{_twin_name(t)} {would_be_words(t)}" for t in told]
+    rest = len(twins) - len(told)
+    if rest:
+        names.append(f"{rest} {'less likely' if told else 'unlikely ones'}")
+    return f"never to be told from {first.label} by these rates: {and_words(names)}"
+
+
+def _twin_name(suspect: Suspect) -> str:
+    if suspect.kind is SuspectKind.CARRIER:
+        return f"{suspect.name} {'spent' if suspect.size >= 0 else 'made'} beside"
+    return suspect.label
+
+
+def _pairs(suspects: Suspects) -> Table:
+    """Pairs of suspects, where none by itself explains it."""
+    columns = (
+        Column("two at once", "", wrap=62),
+        Column("h left", "", align=Align.RIGHT, digits=2),
+    )
+    rows = tuple(
+        (f"{suspect_words(pair.first)}; {suspect_words(pair.second)}", pair.h_left)
+        for pair in suspects.pairs
+    )
+    notes = [f"and {suspects.pairs_left} pairs that do as well"] if suspects.pairs_left else []
+    notes.append("each of the two is needed beside the other")
+    return Table("", "Pairs of suspects", columns, rows, tuple(notes))
+
+
+def _advice(suspects: Suspects) -> list[str]:
+    """What the suspects are worth, and what to do."""
+    told: list[str] = []
+    if suspects.h <= chi_squared_quantile(0.95, suspects.dof):
+        return told
+    cleared = [s.label for s in suspects.others if s.kind is SuspectKind.MEASURED_RATE]
+    if suspects.explained and cleared and suspects.dof > 1:
+        told.append(f"Not it alone (at 5 %): {and_words(cleared)}.")
+    best = next((s for s in suspects.group if s.possible), None)
+    if suspects.explained and best is not None:
+        told.append(_what_to_do(best, suspects))
+    if suspects.dof == 2:
+        told.append(
+            "Two relations test the rates, and the size of a suspect uses up one of them: that it "
+            "fits well is no evidence."
+        )
+    missing = suspects.missing
+    if missing is not None and missing.low is not None and missing.low > 0:
+        sign = "released" if missing.carbon >= 0 else "taken up"
+        told.append(
+            f"If something {sign} is missing, it holds {format_number(missing.gamma, 2)} electrons "
+            f"per carbon (95 %: {format_number(missing.low, 2)} to "
+            f"{format_number(missing.high, 2)}; sugars and acetate 4, ethanol 6)."
+        )
+    return told
+
+
+def _what_to_do(best: Suspect, suspects: Suspects) -> str:
+    """Which measurement to repeat, and what its outcome would tell."""
+    numbers = {s.direction_number for s in suspects.group}
+    rates = [
+        s for s in suspects.group
+        if s.kind is SuspectKind.MEASURED_RATE and s.possible
+    ]  # fmt: skip
+    if best.kind is SuspectKind.MEASURED_RATE:
+        other = [s.label for s in rates if s is not best]
+        text = (
+            f"To do: measure {best.label} once more. Near {would_be_words(best)} it was the error; "
+            f"near {format_number(best.measured)} it was not"
+        )
+        if other:
+            return f"{text}, and {and_words(other[:3])} come next."
+        return f"{text}." if len(numbers) == 1 else f"{text}, and look further down the table."
+    return f"To do: measure {best.name}; {suspect_words(best)} would explain it."
+
+
+def _data(suspects: Suspects, run: str | None) -> Table:
+    """All suspects of a run as data."""
+    keys = (
+        "kind", "species", "direction", "size", "sd", "unit", "measured", "would_be",
+        "would_be_sd", "h_left", "p", "separation", "possible", "standing", "group",
+        "direction_number", "words",
+    )  # fmt: skip
+    rows = tuple(
+        (
+            s.kind.value, s.name, s.direction.value if s.direction else None, s.size, s.sd, s.unit,
+            s.measured, s.would_be, s.would_be_sd, s.h_left, s.p, s.separation, s.possible,
+            s.standing.value, s.group, s.direction_number, suspect_words(s),
+        )
+        for s in suspects.all
+    )  # fmt: skip
+    return Table("suspects", "Suspects", tuple(Column("", key) for key in keys), rows, run=run)

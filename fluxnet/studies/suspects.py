@@ -1,0 +1,240 @@
+"""Which suspects explain what is wrong in a run, in the order in which to think of them.
+
+All runs with the same rows are weighed at once; records are made of one run at a time.
+"""
+
+from __future__ import annotations
+
+from dataclasses import replace
+from math import isfinite, sqrt
+
+import numpy as np
+from numpy.typing import NDArray
+
+from fluxnet.ground.record import record
+from fluxnet.network.model import Direction
+from fluxnet.solving.statistics import chi_squared_quantile
+from fluxnet.solving.suspects import (
+    SuspectArrays,
+    Whitened,
+    first_group,
+    weigh_suspects,
+    whiten_residuals,
+)
+from fluxnet.studies.suspect_plan import Hypothesis, SuspectPlan
+from fluxnet.studies.suspect_result import Standing, Suspect, SuspectKind, Suspects
+
+__all__ = [
+    "JudgedSuspects", "MeasuredValues", "judge_suspects", "make_suspect", "rank_standings",
+    "tell_suspects",
+]  # fmt: skip
+
+Array = NDArray[np.float64]
+_STANDINGS = tuple(Standing)
+_LIKELY = 2.0
+"""A value whose bound is so many sds away is not possible."""
+
+
+@record
+class MeasuredValues:
+    """What was measured in some runs: arrays of runs x values, ``covariance`` square over them.
+
+    ``values`` are those that enter the relations; ``given`` those that are told, one unit of
+    an error in the first being ``factors`` in the second (a ratio A / B enters as A - r B).
+    """
+
+    values: Array
+    covariance: Array
+    given: Array
+    factors: Array
+
+
+@record
+class JudgedSuspects:
+    """Suspects of many runs, each possible or not: arrays of runs x suspects.
+
+    ``standing`` has the place of each one's :class:`Standing`. ``given`` and ``would_be_sd``
+    are NaN for what is no measured value; ``factors`` turn a size as it enters the relations
+    into what is told.
+    """
+
+    plan: SuspectPlan
+    whitened: Whitened
+    arrays: SuspectArrays
+    given: Array
+    factors: Array
+    would_be_sd: Array
+    standing: NDArray[np.intp]
+    group: NDArray[np.bool_]
+
+
+def judge_suspects(plan: SuspectPlan, measured: MeasuredValues) -> JudgedSuspects:
+    """Weigh all suspects of some runs, and see which of them are possible."""
+    R, V = plan.relations, measured.covariance
+    across = R @ V
+    whitened = whiten_residuals(measured.values @ R.T, across @ R.T)
+    arrays = weigh_suspects(whitened, plan.directions, plan.classes)
+    rows = [h.row for h in plan.hypotheses]
+    of_rates = np.array([i for i, row in enumerate(rows) if row is not None], dtype=np.intp)
+    places = np.array([row for row in rows if row is not None], dtype=np.intp)
+    shape = arrays.sizes.shape
+    factors, given = np.ones(shape), np.full(shape, np.nan)
+    factors[:, of_rates] = measured.factors[:, places]
+    given[:, of_rates] = measured.given[:, places]
+    arrays = replace(
+        arrays, sizes=arrays.sizes * factors + 0.0, sds=arrays.sds * np.abs(factors)
+    )
+    would_be, would_be_sd = given - arrays.sizes, np.full(shape, np.nan)
+    # b = u f / |g| with f the whitened residuals: what it shares with the value itself
+    units = whitened.factor @ plan.directions[of_rates].T
+    norms = np.sqrt(np.square(units).sum(axis=1))
+    shared = (units * (whitened.factor @ across[:, :, places])).sum(axis=1) / np.square(norms)
+    variances = np.einsum("nii->ni", V)[:, places] - 2 * shared + 1 / np.square(norms)
+    would_be_sd[:, of_rates] = np.sqrt(np.maximum(variances, 0.0)) * np.abs(factors[:, of_rates])
+    standing = np.where(
+        arrays.sizes >= 0,
+        [_STANDINGS.index(h.positive) for h in plan.hypotheses],
+        [_STANDINGS.index(h.negative) for h in plan.hypotheses],
+    )
+    low = np.array([plan.hypotheses[i].low for i in of_rates])
+    high = np.array([plan.hypotheses[i].high for i in of_rates])
+    reach = _LIKELY * would_be_sd[:, of_rates]
+    outside = (would_be[:, of_rates] + reach < low) | (would_be[:, of_rates] - reach > high)
+    impossible = _STANDINGS.index(Standing.IMPOSSIBLE)
+    standing[:, of_rates] = np.where(outside, impossible, standing[:, of_rates])
+    return JudgedSuspects(
+        plan, whitened, arrays, given, factors, would_be_sd, standing,
+        first_group(arrays.h_left, standing != impossible),
+    )  # fmt: skip
+
+
+def tell_suspects(judged: JudgedSuspects, run: int) -> Suspects:
+    """The suspects of one run, the most plausible of those that explain it best first.
+
+    The order inside the group: measured values and what the model makes (without a model:
+    common by-products), then other common by-products, then rare ones, at last what is not
+    possible; of equals the one that leaves the smaller h first.
+    """
+    from fluxnet.studies.suspect_pairs import find_missing, tell_pairs
+
+    plan, arrays = judged.plan, judged.arrays
+    places = _ranked(judged, run)
+    group = [i for i in places if judged.group[run, i]]
+    others = [
+        i for i in places
+        if not judged.group[run, i]
+        and plan.hypotheses[i].kind in (SuspectKind.MEASURED_RATE, SuspectKind.PARAMETER)
+    ]  # fmt: skip
+    possible = judged.standing[run] != _STANDINGS.index(Standing.IMPOSSIBLE)
+    best = arrays.h_left[run][possible].min(initial=np.inf)
+    dof = plan.dof
+    explained = dof < 2 or bool(best <= chi_squared_quantile(0.95, dof - 1))
+    pairs, more = ((), 0) if explained or dof < 3 else tell_pairs(judged, run)
+    return Suspects(
+        h=float(arrays.h[run]),
+        dof=dof,
+        group=tuple(make_suspect(judged, run, i) for i in group),
+        others=tuple(make_suspect(judged, run, i) for i in others),
+        left=len(plan.hypotheses) - len(group),
+        tried=len(plan.hypotheses),
+        distinct=plan.distinct,
+        explained=explained,
+        pairs=pairs,
+        pairs_left=more,
+        missing=find_missing(judged, run),
+        with_model=plan.with_model,
+    )
+
+
+def _ranked(judged: JudgedSuspects, run: int) -> list[int]:
+    """All suspects of a run, the first to think of first."""
+    left = judged.arrays.h_left[run]
+    standing = judged.standing[run]
+    classes = rank_standings(with_model=judged.plan.with_model)
+    # what twins leave differs by rounding only
+    digits = np.round(left / (1 + judged.arrays.h[run]), 9)
+    return [int(i) for i in np.lexsort((standing, digits, classes[standing]))]
+
+
+def rank_standings(*, with_model: bool) -> NDArray[np.intp]:
+    """By the place of each standing: in which class it is put."""
+    order = {
+        Standing.MEASURED: 0,
+        Standing.MODEL: 0,
+        Standing.COMMON: 1 if with_model else 0,
+        Standing.RARE: 2,
+        Standing.IMPOSSIBLE: 3,
+    }
+    return np.array([order[s] for s in _STANDINGS], dtype=np.intp)
+
+
+def make_suspect(
+    judged: JudgedSuspects, run: int, i: int, beside: tuple[float, float] | None = None
+) -> Suspect:
+    """One suspect of a run as a record.
+
+    Parameters
+    ----------
+    beside
+        Its size and sd where it does not stand alone.
+    """
+    plan, arrays = judged.plan, judged.arrays
+    one, number = plan.hypotheses[i], plan.classes[i]
+    alone = float(arrays.sizes[run, i]), float(arrays.sds[run, i])
+    size, sd = alone if beside is None else beside
+    is_rate = one.row is not None
+    would_be_sd = float(judged.would_be_sd[run, i])
+    if beside is not None and is_rate:
+        # what its size shares with its value is the same beside another one
+        would_be_sd = sqrt(max(0.0, sd**2 - alone[1] ** 2 + would_be_sd**2))
+    would_be = float(judged.given[run, i]) - size
+    standing = one.positive if size >= 0 else one.negative
+    if is_rate and not _fits(one, would_be, would_be_sd):
+        standing = Standing.IMPOSSIBLE
+    direction, shown = one.direction, size
+    if one.kind is SuspectKind.UNMEASURED_SPECIES:
+        direction, shown = Direction.OUT if size >= 0 else Direction.IN, abs(size)
+    apart = float(arrays.separation[run, i])
+    return Suspect(
+        kind=one.kind,
+        name=one.name,
+        direction=direction,
+        size=shown,
+        sd=sd,
+        unit=one.unit,
+        h_left=float(arrays.h_left[run, i]),
+        p=float(arrays.p[run, i]),
+        separation=apart if isfinite(apart) else None,
+        standing=standing,
+        group=1 if judged.group[run, i] else 2,
+        direction_number=number,
+        measured=float(judged.given[run, i]) if is_rate else None,
+        would_be=would_be if is_rate else None,
+        would_be_sd=would_be_sd if is_rate else None,
+        why_not=_why_not(one, size, would_be) if standing is Standing.IMPOSSIBLE else None,
+        twins=tuple(_name_of(judged, run, k) for k in plan.members(number) if k != i),
+    )
+
+
+def _fits(one: Hypothesis, would_be: float, sd: float) -> bool:
+    """Whether a true value is within its bounds, or near enough."""
+    return one.low - _LIKELY * sd <= would_be <= one.high + _LIKELY * sd
+
+
+def _name_of(judged: JudgedSuspects, run: int, i: int) -> str:
+    """How a twin is named: with the direction that its size tells."""
+    one = judged.plan.hypotheses[i]
+    if one.kind is SuspectKind.UNMEASURED_SPECIES:
+        return f"{one.name} {'out' if judged.arrays.sizes[run, i] >= 0 else 'in'}"
+    return one.name if one.direction is None else f"{one.name} {one.direction.value}"
+
+
+def _why_not(one: Hypothesis, size: float, would_be: float) -> str:
+    """Why a suspect of this size is not possible."""
+    if one.row is not None:
+        if would_be < one.low:
+            return "it would be below zero" if one.low == 0 else "it would be below its limit"
+        return "it would be above its limit"
+    if size >= 0:
+        return "nothing here releases it"
+    return "nothing here can take it up"
