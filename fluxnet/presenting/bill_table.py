@@ -32,7 +32,7 @@ def bill_tables(bill: Bill, title: str, titles: BillTitles = NEEDS) -> tuple[Tab
     columns = (
         Column(titles.demand, "", wrap=42),
         Column("amount", "", align=Align.RIGHT),
-        Column("", ""),
+        Column("unit", ""),
         Column("x price", "", align=Align.RIGHT),
         Column("= worth", "", align=Align.RIGHT),
     )

@@ -106,10 +106,11 @@ def _name(weight: Weight, row: Row | None) -> str:
     value, sd, end = row.value, row.sd, float(weight.end)
     if row.ratio is not None:
         return member.words
+    name = str(row.quantity).removeprefix("flux ")
     if value is None or not sd:
-        return f"{row.quantity}, exactly {number_words(end)}"
+        return f"{name}, exactly {number_words(end)}"
     away = (end - value) / sd
-    return f"{row.quantity}, {number_words(value)} {'+' if away > 0 else '-'} {abs(away):.3g} sd"
+    return f"{name}, {number_words(value)} {'+' if away > 0 else '-'} {abs(away):.3g} sd"
 
 
 def _part(weight: Weight, problem: Problem) -> BillPart:

@@ -18,8 +18,8 @@ _TRIES = 4
 class PrintedBill:
     """Texts of a bill: ``lines`` hold (amount, price, worth) in the order of the bill's.
 
-    ``adds_up``: the worths as printed add up to the sums as printed, and these differ by the
-    shortfall as printed. Otherwise a last digit is off by rounding.
+    The shortfall is the difference of the sums as printed. ``adds_up``: the worths as printed
+    add up to the sums as printed; otherwise a last digit is off by rounding.
     """
 
     lines: tuple[tuple[str, str, str], ...]
@@ -45,11 +45,12 @@ def print_bill(bill: Bill) -> PrintedBill:
     """
     least = _decimals(bill)
     decimals = next((d for d in range(least, least + _TRIES) if _adds_up(bill, d)), least)
+    supply, demand = _rounded(bill.supply, decimals), _rounded(bill.demand, decimals)
     return PrintedBill(
         lines=tuple(_line(line, decimals) for line in bill.lines),
-        supply=_text(bill.supply, decimals),
-        demand=_text(bill.demand, decimals),
-        shortfall=_text(bill.shortfall, decimals),
+        supply=f"{supply:f}",
+        demand=f"{demand:f}",
+        shortfall=f"{demand - supply:f}",
         adds_up=_adds_up(bill, decimals),
     )
 
@@ -64,15 +65,12 @@ def _decimals(bill: Bill) -> int:
 
 
 def _adds_up(bill: Bill, decimals: int) -> bool:
-    def total(side: BillSide) -> Decimal:
-        worths = (_rounded(x.worth, decimals) for x in bill.lines if x.side is side)
-        return sum(worths, Decimal(0))
-
-    supply, demand = _rounded(bill.supply, decimals), _rounded(bill.demand, decimals)
-    return (
-        total(BillSide.SUPPLY) == supply
-        and total(BillSide.DEMAND) == demand
-        and demand - supply == _rounded(bill.shortfall, decimals)
+    """Whether rounded worths add up to the rounded sum, on both sides."""
+    sums = {BillSide.SUPPLY: bill.supply, BillSide.DEMAND: bill.demand}
+    return all(
+        sum((_rounded(x.worth, decimals) for x in bill.lines if x.side is side), Decimal(0))
+        == _rounded(total, decimals)
+        for side, total in sums.items()
     )
 
 
@@ -102,7 +100,3 @@ def _plain(value: Decimal) -> str:
 
 def _rounded(value: float, decimals: int) -> Decimal:
     return round(Decimal(repr(value)), decimals) + Decimal(0)
-
-
-def _text(value: float, decimals: int) -> str:
-    return f"{_rounded(value, decimals):f}"
