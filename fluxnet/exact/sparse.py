@@ -47,7 +47,8 @@ class NullSpace:
         total: dict[int, Fraction] = {}
         for j, a in row.items():
             for k, b in self.rows[j].items():
-                total[k] = total.get(k, Fraction(0)) + a * b
+                before = total.get(k)
+                total[k] = a * b if before is None else before + a * b
         return {k: v for k, v in total.items() if v}
 
     def point(self, coordinates: Sequence[Fraction]) -> tuple[Fraction, ...]:
@@ -89,7 +90,8 @@ def null_space(rows: Sequence[SparseRow], columns: int) -> NullSpace:
         for j, a in row.items():
             if j != column:
                 for k, b in found[j].items():
-                    total[k] = total.get(k, 0) + a * b
+                    before = total.get(k)
+                    total[k] = a * b if before is None else before + a * b
         divisor = -row[column]
         found[column] = {k: v / divisor for k, v in total.items() if v}
     return NullSpace(free, tuple(found))

@@ -7,8 +7,7 @@ found in exact arithmetic; of the plainest of them as many are told as are indep
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping
-from fractions import Fraction
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from math import gcd, lcm
 
 from fluxnet.exact.sparse import NullSpace, SparseRow, null_space
@@ -53,10 +52,15 @@ def find_relations(structure: Structure) -> tuple[Relation, ...]:
     zeros = [exact.rows[e.place] for e in exact.equalities if not e.value]
     plain = null_space(zeros, exact.columns)
     found = sorted(_readable(_leaders(structure, plain)), key=lambda relation: relation.effort)
+    used = sorted({j for relation in found for j, _ in relation.terms})
+    forms = _common(used, plain.rows)
     chosen: list[Relation] = []
-    steps: list[tuple[int, dict[int, Fraction]]] = []
+    steps: list[tuple[int, _Form]] = []
     for relation in found:
-        rest = _reduced(plain.image({j: Fraction(c) for j, c in relation.terms}), steps)
+        form: _Form = {}
+        for j, c in relation.terms:
+            form = _combined(1, form, c, forms[j])
+        rest = _reduced(form, steps)
         if rest:
             steps.append((min(rest), rest))
             chosen.append(relation)
@@ -77,8 +81,19 @@ def _leaders(structure: Structure, plain: NullSpace) -> dict[int, _Form]:
         if form and (chain := _direction(_whole(plain.rows[j]))[0]) not in chains:
             chains.add(chain)
             forms[j] = form
-    common = lcm(*(v.denominator for form in forms.values() for v in form.values()))
-    return {j: {k: int(v * common) for k, v in form.items()} for j, form in forms.items()}
+    return _common(forms, forms)
+
+
+def _common(
+    columns: Iterable[int], forms: Mapping[int, SparseRow] | Sequence[SparseRow]
+) -> dict[int, _Form]:
+    """Forms in whole numbers, over one common denominator."""
+    wanted = list(columns)
+    common = lcm(*(v.denominator for j in wanted for v in forms[j].values()))
+    return {
+        j: {k: v.numerator * (common // v.denominator) for k, v in forms[j].items()}
+        for j in wanted
+    }
 
 
 def _readable(forms: Mapping[int, _Form]) -> Iterator[Relation]:
@@ -121,24 +136,20 @@ def _combined(weight: int, form: _Form, other_weight: int, other: _Form) -> _For
     return {i: v for i, v in total.items() if v}
 
 
-def _reduced(
-    form: Mapping[int, Fraction], steps: Iterable[tuple[int, SparseRow]]
-) -> dict[int, Fraction]:
+def _reduced(form: _Form, steps: Iterable[tuple[int, _Form]]) -> _Form:
     """What is left of a form when those before it are taken out; empty where it is their sum."""
-    rest = dict(form)
     for pivot, row in steps:
-        if pivot in rest:
-            factor = rest[pivot] / row[pivot]
-            for k, v in row.items():
-                rest[k] = rest.get(k, Fraction(0)) - factor * v
-            rest = {k: v for k, v in rest.items() if v}
-    return rest
+        if pivot in form:
+            form = _combined(row[pivot], form, -form[pivot], row)
+            size = gcd(*form.values())
+            form = {k: v // size for k, v in form.items()}
+    return form
 
 
 def _whole(row: SparseRow) -> _Form:
     """A row in whole numbers."""
     common = lcm(*(v.denominator for v in row.values()))
-    return {k: int(v * common) for k, v in row.items()}
+    return {k: v.numerator * (common // v.denominator) for k, v in row.items()}
 
 
 def _direction(form: _Form) -> tuple[_Key, int]:
