@@ -235,7 +235,8 @@ def closure(rates: Rates, model: Model | None = None, **options: Any) -> Answer[
     InputError
         Where no run can be closed: an option names what the table does not have.
     """
-    from fluxnet.presenting.closure_screen import closure_record, closure_screen
+    from fluxnet.presenting.closure_record import closure_record
+    from fluxnet.presenting.closure_screen import closure_screen
     from fluxnet.studies.closure import close_rates
 
     result = close_rates(rates.table, network=_network(model), **options)

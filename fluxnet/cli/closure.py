@@ -3,15 +3,23 @@
 from __future__ import annotations
 
 import argparse
+import sys
+from typing import TYPE_CHECKING
 
 from fluxnet.cli.inputs import load_model, load_rates
 from fluxnet.cli.main import Exit
 from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
 from fluxnet.cli.output import give_faults, give_findings, give_screen, refuse_outputs
+from fluxnet.cli.progress import progress_on
 from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.names import Name
+from fluxnet.ground.progress import Progress
 from fluxnet.network.model import Network
 from fluxnet.presenting.records import Document, Input
+
+if TYPE_CHECKING:
+    from fluxnet.rates.measured import RatesTable
+    from fluxnet.studies.closure_result import Closure
 
 __all__ = ["EXAMPLES", "add_arguments", "run"]
 
@@ -32,6 +40,10 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         "--without", metavar="NAME", action="append", default=[],
         help="leave the rows of NAME out: it then counts as not exchanged",
     )
+    parser.add_argument(
+        "--suspects", action="store_true",
+        help="say what could be wrong in every run, not only in those that do not close",
+    )  # fmt: skip
     parser.add_argument("--nitrogen", metavar="NAME", help="the nitrogen source (ammonia)")
     add_table_options(parser)
     add_output_options(parser)
@@ -40,8 +52,8 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 def run(arguments: argparse.Namespace) -> int:
     """Close the runs that were asked for, and show them."""
     refuse_outputs(arguments, Document.CLOSURE)
-    from fluxnet.presenting.closure_screen import closure_record, closure_screen
-    from fluxnet.studies.closure import close_rates
+    from fluxnet.presenting.closure_record import closure_record
+    from fluxnet.presenting.closure_screen import closure_screen
 
     network: Network | None = None
     inputs: tuple[Input, ...] = ()
@@ -51,16 +63,14 @@ def run(arguments: argparse.Namespace) -> int:
         network, inputs, diagnostics = model.network, model.inputs, model.diagnostics
         if network is None:
             return give_faults(arguments, Document.CLOSURE, inputs, diagnostics)
-    rates = load_rates(arguments, network)
+    with progress_on(sys.stderr) as progress:
+        rates = load_rates(arguments, network, progress)
+        closure, undone = (
+            _close(arguments, rates.table, network, progress) if rates.table else (None, 0)
+        )
     inputs, diagnostics = (*inputs, *rates.inputs), (*diagnostics, *rates.diagnostics)
-    if rates.table is None:
+    if closure is None:
         return give_faults(arguments, Document.CLOSURE, inputs, diagnostics)
-    closure = close_rates(
-        rates.table,
-        network=network,
-        nitrogen=arguments.nitrogen,
-        without=tuple(arguments.without),
-    )
     diagnostics = in_order((*diagnostics, *closure.diagnostics))
     if not closure.runs:
         status = give_faults(arguments, Document.CLOSURE, inputs, diagnostics)
@@ -69,7 +79,44 @@ def run(arguments: argparse.Namespace) -> int:
         wrong = any(d.name is Name.UNKNOWN_QUANTITY for d in closure.diagnostics)
         return Exit.MISUSE if asked and wrong else status
     give_findings(arguments, diagnostics)
-    return give_screen(
-        arguments, Document.CLOSURE, inputs, diagnostics, closure_record(closure),
-        closure_screen(closure), sound=closure.is_sound,
+    body = closure_record(closure) if arguments.json else {}
+    if undone:
+        body["undone"] = undone
+    status = give_screen(
+        arguments, Document.CLOSURE, inputs, diagnostics, body,
+        closure_screen(closure, everything=arguments.all), sound=closure.is_sound,
     )  # fmt: skip
+    if undone:
+        done = len(closure.runs)
+        print(f"interrupted: {done:,} of {done + undone:,} runs are closed", file=sys.stderr)
+        return Exit.INTERRUPTED
+    return status
+
+
+def _close(
+    arguments: argparse.Namespace,
+    table: RatesTable,
+    network: Network | None,
+    progress: Progress,
+) -> tuple[Closure, int]:
+    """The closure, and how many runs are left when the user stops: what is done is kept."""
+    from fluxnet.studies.closure import close_in_parts, join_parts
+
+    parts: list[Closure] = []
+    total, done = len(table.runs), 0
+    try:
+        for part in close_in_parts(
+            table,
+            network=network,
+            nitrogen=arguments.nitrogen,
+            without=tuple(arguments.without),
+            suspects=True if arguments.suspects else None,
+        ):
+            parts.append(part)
+            done += len(part.runs) + len(part.diagnostics)
+            progress("closing runs", done, total)
+    except KeyboardInterrupt:
+        if not any(part.runs for part in parts):
+            raise
+        return join_parts(table, parts), total - done
+    return join_parts(table, parts), 0

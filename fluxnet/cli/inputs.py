@@ -13,6 +13,7 @@ from fluxnet.cli.main import Exit
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.names import Name
+from fluxnet.ground.progress import Progress, silent
 from fluxnet.ground.record import record
 from fluxnet.ground.source import Source, Span
 from fluxnet.network.model import Network
@@ -103,7 +104,9 @@ class ReadRates:
     inputs: tuple[Input, ...]
 
 
-def load_rates(arguments: argparse.Namespace, network: Network | None) -> ReadRates:
+def load_rates(
+    arguments: argparse.Namespace, network: Network | None, progress: Progress = silent
+) -> ReadRates:
     """Read the rates table that a command names, and keep the runs that it asks for."""
     # Imported here, so that `check` does not wait for the tables.
     from fluxnet.tables.inputs import MOST_BYTES as MOST_OF_A_TABLE
@@ -118,13 +121,13 @@ def load_rates(arguments: argparse.Namespace, network: Network | None) -> ReadRa
         data = sys.stdin.buffer.read(MOST_OF_A_TABLE + 1)
         reading = read_rates_bytes(
             data, network=network, sheet=arguments.sheet, decimal=decimal, separator=separator,
-            sd=sd, sd_floor=floor,
+            sd=sd, sd_floor=floor, progress=progress,
         )  # fmt: skip
         inputs = (hash_bytes(data, "standard input"),)
     else:
         reading = read_rates(
             Path(arguments.rates), network=network, sheet=arguments.sheet, decimal=decimal,
-            separator=separator, sd=sd, sd_floor=floor,
+            separator=separator, sd=sd, sd_floor=floor, progress=progress,
         )  # fmt: skip
         inputs = read_inputs(source.file for source in reading.sources)
     table, diagnostics = reading.table, reading.diagnostics

@@ -35,7 +35,7 @@ NAMES_OF_TABLES = frozenset({
     "alternatives", "balances", "bill", "bill_prices", "catalogue", "compound", "conflict",
     "equations", "findings", "fluxes",
     "least_change", "ledger", "limits", "most_energy", "overview", "parameters", "rates",
-    "unbounded", "yields",
+    "spread", "unbounded", "yields",
 })  # fmt: skip
 """Every table that some command writes."""
 

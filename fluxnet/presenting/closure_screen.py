@@ -1,24 +1,29 @@
-"""What a closure shows: the world, the verdict, balances, reconciled rates; and as data."""
+"""What a closure shows: the world, the verdict, balances, reconciled rates."""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import replace
-from typing import Any
 
 from fluxnet.ground.table import Align, Cell, Column, Table
-from fluxnet.presenting.numbers import format_number, format_p
-from fluxnet.presenting.screen import Block, Heading, Mood, Sentence, blocks_of_run
+from fluxnet.presenting.closure_overview import (
+    closed_share,
+    overview,
+    sorted_out,
+    spread_of_recoveries,
+    worst_runs,
+)
+from fluxnet.presenting.numbers import format_number
+from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence, blocks_of_run
+from fluxnet.presenting.suspect_blocks import suspect_blocks
 from fluxnet.rates.kinds import RateKind
 from fluxnet.studies.closure_result import Closure, RunClosure
 
-__all__ = ["closure_record", "closure_screen"]
+__all__ = ["closure_screen"]
 
-# With more runs than this only the overview is shown.
-_MOST_RUNS = 12
+# With more runs than the first only an overview is shown, with more than the second their spread.
+_MOST_IN_FULL = 12
+_MOST_IN_OVERVIEW = 30
 
-_IN_OVERVIEW = ("carbon", "nitrogen", "electrons")
-_CLOSES = {True: "yes", False: "no", None: "no test"}
 _VERDICTS = {True: "closes", False: "does not close", None: "no test"}
 
 _MEANING = {
@@ -27,28 +32,56 @@ _MEANING = {
     RateKind.CALCULABLE: "not measured, but fixed by the others",
     RateKind.NOT_CALCULABLE: "not measured, and fixed by nothing",
 }
+_ONE = "One run in full: --run NAME"
+_MORE = "`fluxnet solve` with a model tests more: carriers balance too, and tell suspects apart."
 _NO_PROOF = (
     "A closed balance is no proof: two errors can cancel, and what no balance tests can be wrong "
     "by any amount."
 )
 
 
-def closure_screen(closure: Closure) -> tuple[Block, ...]:
+def closure_screen(closure: Closure, *, everything: bool = False) -> tuple[Block, ...]:
     """Everything that is shown of a closure: an overview of several runs, then each.
 
-    The assumed world stands first, once where all runs share it.
+    The assumed world stands first, once where all runs share it. Of many runs the overview is
+    shown alone, of very many how their balances spread and the ones that close least; the
+    tables of all runs are there as data. ``everything`` shows all suspects, rare ones too.
     """
     if not closure.runs:
         return ()
     worlds = {_world(run) for run in closure.runs}
     shared = len(worlds) == 1 and len(closure.runs) > 1
     blocks: list[Block] = [Sentence(world) for world in worlds if shared]
-    blocks.append(_overview(closure))
-    if len(closure.runs) > _MOST_RUNS:
-        return (*blocks, Sentence("One run in full: --run NAME."))
+    if len(closure.runs) > _MOST_IN_FULL:
+        return (*blocks, *_many_runs(closure))
+    blocks.append(overview(closure.runs))
     for run in closure.runs:
-        blocks += blocks_of_run(_run_blocks(run, tells_world=not shared), run.run)
+        blocks += blocks_of_run(_run_blocks(run, tells_world=not shared, everything=everything), run.run)
     return (*blocks, Sentence(_how_to_read(closure), Mood.QUIET), Sentence(_NO_PROOF, Mood.QUIET))
+
+
+def _many_runs(closure: Closure) -> tuple[Block, ...]:
+    """What is shown of more runs than anybody reads, and the tables of all of them as data."""
+    words, mood = closed_share(closure.runs)
+    share = Sentence(words, mood, verdict=True)
+
+    def each() -> tuple[Table, ...]:
+        return tuple(
+            table
+            for run in closure.runs
+            for table in blocks_of_run((_balances(run), _rates(run)), run.run)
+            if isinstance(table, Table)
+        )
+
+    if len(closure.runs) <= _MOST_IN_OVERVIEW:
+        return (overview(closure.runs), share, Sentence(f"{_ONE}."), Data(each))
+    return (
+        share,
+        spread_of_recoveries(closure.runs),
+        *worst_runs(closure.runs),
+        Sentence(f"{_ONE}; all of them as tables: --csv DIR."),
+        Data(lambda: (sorted_out(closure.runs), *each())),
+    )
 
 
 def _how_to_read(closure: Closure) -> str:
@@ -69,50 +102,17 @@ def _capital(text: str) -> str:
     return text[:1].upper() + text[1:]
 
 
-def _overview(closure: Closure) -> Table:
-    """All runs, one a row; data only where there is but one."""
-    several = len(closure.runs) > 1
-    names = [n for n in _IN_OVERVIEW if any(run.find_balance(n) for run in closure.runs)]
-    extras = list(dict.fromkeys(key for run in closure.runs for key, _ in run.extras))
-    columns = [
-        Column("run", "run"),
-        Column("closes", "closes"),
-        Column("h", "h", align=Align.RIGHT, digits=3),
-        Column("dof", "dof", align=Align.RIGHT),
-        Column("p", "", align=Align.RIGHT),
-        Column("", "p"),
-        Column("", "limit"),
-    ]
-    for name in names:
-        columns += [
-            Column(name, name, "%", Align.RIGHT),
-            Column("", f"{name}_sd", sd_of=name, says_exact=False),
-        ]
-    columns += [Column("", "or_index"), *(Column("", key) for key in extras)]
-    rows: list[tuple[Cell, ...]] = []
-    for run in closure.runs:
-        test, carried = run.test, dict(run.extras)
-        recoveries: list[Cell] = []
-        for name in names:
-            balance = run.find_balance(name)
-            told = (None, None) if balance is None else (balance.recovery, balance.recovery_sd)
-            recoveries += told
-        rows.append((
-            run.run, _CLOSES[test.closes], test.h, test.dof, format_p(test.p), test.p, test.limit,
-            *recoveries, run.or_index, *(carried.get(key) for key in extras),
-        ))  # fmt: skip
-    if not several:
-        columns = [replace(column, title="") for column in columns]
-    return Table("overview", f"{len(rows)} runs" if several else "", tuple(columns), tuple(rows))
-
-
-def _run_blocks(run: RunClosure, *, tells_world: bool) -> tuple[Block, ...]:
+def _run_blocks(
+    run: RunClosure, *, tells_world: bool, everything: bool
+) -> tuple[Block, ...]:
     mood = {True: Mood.GOOD, False: Mood.BAD, None: Mood.DOUBTFUL}[run.test.closes]
+    suspects = run.suspects
     return (
         Heading(f"run {run.run}: {_VERDICTS[run.test.closes]}"),
         *((Sentence(_world(run)),) if tells_world else ()),
         Sentence(run.words, mood, verdict=True),
         *(Sentence(f"Note: {note}.") for note in run.notes),
+        *(suspect_blocks(suspects, run.run, more=_MORE, everything=everything) if suspects else ()),
         _balances(run),
         _rates(run),
     )
@@ -199,66 +199,3 @@ def _rates(run: RunClosure) -> Table:
     if run.test.dof == 1 and run.test.h is not None:
         notes.append("one degree of freedom is one relation: every z tells the same")
     return Table("rates", f"Rates [{run.unit}]", columns, tuple(rows), tuple(notes))
-
-
-def closure_record(closure: Closure) -> dict[str, Any]:
-    """The body of a ``closure/1`` document."""
-    return {"runs": [_run_record(run) for run in closure.runs]}
-
-
-def _run_record(run: RunClosure) -> dict[str, Any]:
-    test = run.test
-    return {
-        "run": run.run,
-        "words": run.words,
-        "unit": run.unit,
-        "balances": [
-            {
-                "name": b.name,
-                "unit": b.unit,
-                "in": b.taken,
-                "out": b.released,
-                "gap": b.gap,
-                "sd": b.sd,
-                "z": b.z,
-                "recovery": b.recovery,
-                "recovery_sd": b.recovery_sd,
-                "missing": list(b.missing),
-            }
-            for b in run.balances
-        ],
-        "or_index": run.or_index,
-        "test": {
-            "h": test.h,
-            "dof": test.dof,
-            "p": test.p,
-            "limit": test.limit,
-            "closes": test.closes,
-        },
-        "world": {
-            "free": list(run.world.free),
-            "not_exchanged": list(run.world.not_exchanged),
-            "nitrogen_reference": run.reference,
-        },
-        "rates": [
-            {
-                "species": r.species,
-                "direction": r.direction.value if r.direction else None,
-                "unit": r.unit,
-                "measured": r.measured,
-                "sd": r.sd,
-                "reconciled": r.reconciled,
-                "reconciled_sd": r.reconciled_sd,
-                "z": r.z,
-                "kind": r.kind.value,
-                "reversed": r.is_reversed,
-            }
-            for r in run.rates
-        ],
-        "suspects": list(run.suspects),
-        "contradictions": [list(names) for names in run.contradictions],
-        "left_out": list(run.left_out),
-        "notes": list(run.notes),
-        "residual": run.residual,
-        "extras": dict(run.extras),
-    }

@@ -27,7 +27,7 @@ def _block_html(block: Block) -> str:
         return f"<h4>{escape(block.text)}</h4>"
     if isinstance(block, Sentence):
         return f"<p>{escape(block.text)}</p>"
-    return _table_html(block) if block.is_shown else ""
+    return _table_html(block) if isinstance(block, Table) and block.is_shown else ""
 
 
 def _table_html(table: Table) -> str:

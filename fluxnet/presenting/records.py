@@ -22,6 +22,8 @@ __all__ = [
 ]
 
 Record = dict[str, Any]
+_MOST_SPREAD_OUT = 100
+_NO_RUNS = '\n  "runs": []'
 
 
 class Document(StrEnum):
@@ -59,7 +61,8 @@ def document_text(
 ) -> str:
     """A whole document as JSON text: the envelope, the findings, then the body's keys.
 
-    Numbers are at full precision; missing ones and infinities are null.
+    Numbers are at full precision; missing ones and infinities are null. Many runs stand one a
+    line, which is shorter and sooner written.
     """
     record = {
         "fluxnet": fluxnet.__version__,
@@ -68,7 +71,16 @@ def document_text(
         "warnings": [diagnostic_record(d) for d in diagnostics],
         **body,
     }
-    return json.dumps(_finite(record), ensure_ascii=False, allow_nan=False, indent=2)
+    runs = record.get("runs", ())
+    if len(runs) <= _MOST_SPREAD_OUT:
+        return _json(record, indent=2)
+    head, tail = _json({**record, "runs": []}, indent=2).split(_NO_RUNS, 1)
+    lines = ",\n".join(f"    {_json(run)}" for run in runs)
+    return f"{head}{_NO_RUNS[:-1]}\n{lines}\n  ]{tail}"
+
+
+def _json(value: Any, indent: int | None = None) -> str:
+    return json.dumps(_finite(value), ensure_ascii=False, allow_nan=False, indent=indent)
 
 
 def diagnostic_record(diagnostic: Diagnostic) -> Record:

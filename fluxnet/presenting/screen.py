@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
+from collections.abc import Callable, Iterable
 from dataclasses import replace
 from enum import Enum
 
 from fluxnet.ground.record import record
 from fluxnet.ground.table import Column, Table
 
-__all__ = ["Block", "Heading", "Mood", "Sentence", "blocks_of_run", "screen_tables"]
+__all__ = ["Block", "Data", "Heading", "Mood", "Sentence", "blocks_of_run", "screen_tables"]
 
 
 class Mood(Enum):
@@ -38,7 +38,14 @@ class Sentence:
     verdict: bool = False
 
 
-Block = Heading | Sentence | Table
+@record
+class Data:
+    """Tables that are not shown, and made only when somebody asks for them."""
+
+    make: Callable[[], tuple[Table, ...]]
+
+
+Block = Heading | Sentence | Table | Data
 
 
 def blocks_of_run(blocks: Iterable[Block], run: str | None) -> tuple[Block, ...]:
@@ -53,8 +60,10 @@ def screen_tables(screen: tuple[Block, ...]) -> tuple[Table, ...]:
     """
     groups: dict[str, list[Table]] = {}
     for block in screen:
-        if isinstance(block, Table) and block.key:
-            groups.setdefault(block.key, []).append(block)
+        tables = block.make() if isinstance(block, Data) else (block,)
+        for table in tables:
+            if isinstance(table, Table) and table.key:
+                groups.setdefault(table.key, []).append(table)
     return tuple(_joined(tables) for tables in groups.values())
 
 

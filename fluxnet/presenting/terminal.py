@@ -13,7 +13,7 @@ from fluxnet.ground.record import record
 from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.presenting.excerpt import excerpt_lines, place_of, seen
 from fluxnet.presenting.numbers import format_measured, format_number
-from fluxnet.presenting.screen import Block, Heading, Mood, Sentence
+from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence
 from fluxnet.presenting.table_lines import lay_out
 
 if TYPE_CHECKING:
@@ -84,6 +84,8 @@ class Terminal:
             screen = _verdicts(screen)
         shown = [b for b in screen if not isinstance(b, Table) or b.is_shown]
         for place, block in enumerate(shown):
+            if isinstance(block, Data):
+                continue
             if after_table and isinstance(block, Sentence):
                 print(file=self.stream)
             after_table = isinstance(block, Table)

@@ -47,11 +47,29 @@ def split_text(lines: tuple[str, ...], separator: str, file: str) -> Grid:
         elif number == 0 and declared_separator(lines):
             number += 1
         else:
-            cells, number = _split_row(lines, number, separator, file)
+            if '"' in line:
+                cells, number = _split_row(lines, number, separator, file)
+            else:
+                cells, number = _split_plain(line, number, separator, file), number + 1
             if any(not c.is_blank for c in cells):
                 span = Span(file, first + 1, 1, len(line) + 1)
                 rows.append(Row(tuple(cells), "\n".join(lines[first:number]), span))
     return Grid(tuple(rows), Source(file, lines), separator, comments=tuple(comments))
+
+
+def _split_plain(line: str, number: int, separator: str, file: str) -> list[Cell]:
+    """The cells of a line without quotes."""
+    cells: list[Cell] = []
+    place = 0
+    for column, text in enumerate(line.split(separator)):
+        stripped = text.strip()
+        # of a blank cell the place is its end
+        left = place + len(text) - len(text.lstrip())
+        cells.append(
+            Cell(stripped, column, Span(file, number + 1, left + 1, left + len(stripped) + 1))
+        )
+        place += len(text) + 1
+    return cells
 
 
 def _split_row(

@@ -37,6 +37,7 @@ def collect_long(layout: Layout) -> Entries:
             faults.append(column_twice(title))
         places.setdefault(title.key, title)
     biomass = BiomassColumns.among(layout.titles)
+    tells_biomass = bool(biomass.titles)
     used = {t.cell.column for t in (*places.values(), *biomass.titles)}
     extras = [t for t in layout.titles if t.cell.column not in used and t.cell.text]
     entries: list[Entry] = []
@@ -51,7 +52,8 @@ def collect_long(layout: Layout) -> Entries:
         if row.span.line in layout.shifted:
             failed.add(run)
             continue
-        heads[run] = extend_head(head, row, extras, biomass)
+        if extras or tells_biomass:
+            heads[run] = extend_head(head, row, extras, biomass)
         entry = _entry(row, run, places, layout.vocabulary)
         if entry is not None:
             entries.append(entry)

@@ -9,6 +9,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterable
 from enum import Enum
+from functools import lru_cache
 
 from fluxnet.ground.record import record
 from fluxnet.tables.grid import Cell
@@ -45,6 +46,8 @@ _PATTERNS = {
     )
     for d in Decimal
 }
+_PLAIN = re.compile(r"[+-]?(?:\d+|(?P<point>\d+\.(?:\d{1,2}|\d{4,})))", re.ASCII)
+_MOST_KEPT = 1 << 16
 _INFINITE = re.compile(r"[+-]?(nan|inf|infinity|∞)", re.IGNORECASE)
 
 
@@ -58,6 +61,7 @@ class Numeral:
     error_percent: bool = False
 
 
+@lru_cache(_MOST_KEPT)
 def split_numeral(text: str) -> Numeral:
     """Take a cell apart at ``±`` (or ``+-``) and at ``%``.
 
@@ -76,6 +80,7 @@ def split_numeral(text: str) -> Numeral:
     )
 
 
+@lru_cache(_MOST_KEPT)
 def read_number(text: str, decimal: Decimal) -> float | None:
     """The number a text stands for, or None.
 
@@ -84,6 +89,8 @@ def read_number(text: str, decimal: Decimal) -> float | None:
     >>> read_number("1.234,5", Decimal.COMMA), read_number("1.234,5", Decimal.POINT)
     (1234.5, None)
     """
+    if decimal is Decimal.POINT and _PLAIN.fullmatch(text) and len(text) < 300:
+        return float(text)
     text = text.replace("\u2212", "-").strip()
     found = _PATTERNS[decimal].fullmatch(text)
     if found is None or not (found["whole"] or found["grouped"] or found["fraction"]):
@@ -92,6 +99,9 @@ def read_number(text: str, decimal: Decimal) -> float | None:
         text = text.replace(sign, "")
     number = float(text.replace(decimal.value, "."))
     return number if abs(number) < float("inf") else None
+
+
+_POINT_ALONE = frozenset({Decimal.POINT})
 
 
 def is_infinite(text: str) -> bool:
@@ -109,6 +119,9 @@ def possible_decimals(text: str) -> frozenset[Decimal]:
     >>> [d.name for d in possible_decimals("0,123")], possible_decimals("12")
     (['COMMA'], frozenset())
     """
+    plain = _PLAIN.fullmatch(text)
+    if plain is not None and len(text) < 300:
+        return _POINT_ALONE if plain["point"] else frozenset()
     values = {d: read_number(text, d) for d in Decimal}
     readable = {d: v for d, v in values.items() if v is not None}
     if len(readable) == 2 and len(set(readable.values())) == 1:
@@ -158,8 +171,9 @@ def decide_decimal(cells: Iterable[Cell], separator: str | None) -> DecimalChoic
     separates by semicolon or tab. A sign before three digits is taken as a thousands sign only
     where another number proves that thousands are marked (``1.234,5``, ``1.234.567``).
     """
-    votes: dict[Decimal, dict[Cell, None]] = {d: {} for d in Decimal}
-    open_cells: dict[str, dict[Cell, None]] = {d.value: {} for d in Decimal}
+    # cells by their id: hashing what they hold takes longer than reading it
+    votes: dict[Decimal, dict[int, Cell]] = {d: {} for d in Decimal}
+    open_cells: dict[str, dict[int, Cell]] = {d.value: {} for d in Decimal}
     marked: set[Decimal] = set()
     for cell in cells:
         if cell.number is not None:
@@ -169,16 +183,16 @@ def decide_decimal(cells: Iterable[Cell], separator: str | None) -> DecimalChoic
             possible = possible_decimals(text)
             if len(possible) == 1:
                 sign = next(iter(possible))
-                votes[sign][cell] = None
+                votes[sign][id(cell)] = cell
                 if sign.thousands in text:
                     marked.add(sign)
             elif possible and separator == "," and "," not in text:
-                votes[Decimal.POINT][cell] = None
+                votes[Decimal.POINT][id(cell)] = cell
             elif possible:
-                open_cells["," if "," in text else "."][cell] = None
+                open_cells["," if "," in text else "."][id(cell)] = cell
     point, comma = votes[Decimal.POINT], votes[Decimal.COMMA]
     if not point and not comma:
-        doubtful = tuple(dict.fromkeys((*open_cells["."], *open_cells[","])))
+        doubtful = tuple({**open_cells["."], **open_cells[","]}.values())
         return DecimalChoice(Decimal.POINT, False, doubtful=doubtful)
     chosen = Decimal.COMMA if len(comma) > len(point) else Decimal.POINT
     contrary = point if chosen is Decimal.COMMA else comma
@@ -186,7 +200,7 @@ def decide_decimal(cells: Iterable[Cell], separator: str | None) -> DecimalChoic
     return DecimalChoice(
         chosen,
         True,
-        next(iter(votes[chosen])),
-        disputed=tuple(c for c in disputed if c not in contrary),
-        contrary=tuple(contrary),
+        next(iter(votes[chosen].values())),
+        disputed=tuple(c for k, c in disputed.items() if k not in contrary),
+        contrary=tuple(contrary.values()),
     )

@@ -16,6 +16,7 @@ from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.file_kinds import find_model_instead
 from fluxnet.ground.names import Name
+from fluxnet.ground.progress import Progress, silent
 from fluxnet.ground.record import record
 from fluxnet.ground.source import Source, Span
 from fluxnet.network.model import Network
@@ -117,6 +118,7 @@ def read_rates_bytes(
     separator: str | None = None,
     sd: float = 0.05,
     sd_floor: float = 0.005,
+    progress: Progress = silent,
 ) -> RatesReading:
     """Read a table of rates from bytes: text in any usual encoding, or a workbook.
 
@@ -124,7 +126,7 @@ def read_rates_bytes(
     """
     rule = _rule(sd, sd_floor, separator)
     found = read_input(data, file)
-    return _read_input(found, None, network, sheet, decimal, separator, rule)
+    return _read_input(found, None, network, sheet, decimal, separator, rule, progress)
 
 
 def read_rates(
@@ -136,6 +138,7 @@ def read_rates(
     separator: str | None = None,
     sd: float = 0.05,
     sd_floor: float = 0.005,
+    progress: Progress = silent,
 ) -> RatesReading:
     """Read a table of rates from a file, and the covariance table that may lie beside it.
 
@@ -146,7 +149,7 @@ def read_rates(
     found = read_input(path, str(path))
     beside = next((p for p in _beside(path) if p.is_file()), None)
     covariance = None if beside is None else read_input(beside, str(beside))
-    return _read_input(found, covariance, network, sheet, decimal, separator, rule)
+    return _read_input(found, covariance, network, sheet, decimal, separator, rule, progress)
 
 
 def _rule(sd: float, floor: float, separator: str | None) -> SdRule:
@@ -174,6 +177,7 @@ def _read_input(
     decimal: Decimal | None,
     separator: str | None,
     rule: SdRule,
+    progress: Progress,
 ) -> RatesReading:
     told = list(found.diagnostics)
     pairs: Grid | None = None
@@ -195,19 +199,24 @@ def _read_input(
             pairs = choose_covariance_grid(beside.lines, beside.file)
     if grid is None or has_errors(told):
         return RatesReading(None, in_order(told))
-    reading = _read(grid, pairs, network, decimal, rule)
+    reading = _read(grid, pairs, network, decimal, rule, progress)
     return replace(reading, diagnostics=in_order((*told, *reading.diagnostics)))
 
 
 def _read(
-    grid: Grid, pairs: Grid | None, network: Network | None, decimal: Decimal | None, rule: SdRule
+    grid: Grid,
+    pairs: Grid | None,
+    network: Network | None,
+    decimal: Decimal | None,
+    rule: SdRule,
+    progress: Progress = silent,
 ) -> RatesReading:
     sources = (grid.source,) if pairs is None else (grid.source, pairs.source)
     if not grid.rows:
         file = grid.source.file
         fault = Diagnostic(Name.EMPTY_FILE, f"{file} holds no table", Span(file, 0, 0, 0))
         return RatesReading(None, (fault,), sources, grid.comments)
-    understood = understand(grid, network, decimal, rule, pairs)
+    understood = understand(grid, network, decimal, rule, pairs, progress)
     diagnostics = in_order(_with_line(d, sources) for d in understood.diagnostics)
     table = understood.table
     if has_errors(diagnostics):

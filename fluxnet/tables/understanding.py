@@ -6,6 +6,7 @@ from dataclasses import field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.progress import Progress, silent
 from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Network, Quantity, QuantityKind, Role, Species
@@ -31,6 +32,8 @@ from fluxnet.tables.wide_form import collect_wide
 
 __all__ = ["Understood", "understand"]
 
+_OFTEN = 500
+
 
 @record
 class Understood:
@@ -47,6 +50,7 @@ def understand(
     asked: Decimal | None,
     rule: SdRule,
     covariance: Grid | None = None,
+    progress: Progress = silent,
 ) -> Understood:
     """Read the runs of a grid, and the correlations of their errors in another."""
     layout = find_layout(grid, network)
@@ -65,7 +69,9 @@ def understand(
     choice = _decimal(entries, layout, grid, asked)
     faults.extend(decimal_faults(choice))
     flagged = frozenset(c.span for c in choice.refused)
-    readings = read_entries(entries.entries, choice.decimal, layout.vocabulary, flagged)
+    readings = read_entries(
+        entries.entries, choice.decimal, layout.vocabulary, flagged, progress
+    )  # fmt: skip
     faults.extend(readings.diagnostics)
     pairs = Correlations()
     if covariance is not None:
@@ -73,7 +79,7 @@ def understand(
         pairs = read_covariance(covariance, readings, names, layout.vocabulary, asked)
         faults.extend(pairs.diagnostics)
     biomass, assumed = _biomass(readings, layout.vocabulary)
-    runs = _build_runs(entries, readings, layout, choice.decimal, biomass, pairs, rule)
+    runs = _build_runs(entries, readings, layout, choice.decimal, biomass, pairs, rule, progress)
     faults.extend(told_once([d for built in runs for d in built.diagnostics], "runs"))
     told = tell_understood(grid, layout, entries, choice, covariance, surplus.untitled)
     faults.append(told.note)
@@ -96,6 +102,7 @@ def _build_runs(
     biomass: Species | None,
     pairs: Correlations,
     rule: SdRule,
+    progress: Progress,
 ) -> list[BuiltRun]:
     mine: dict[str, list[Reading]] = {head.name: [] for head in entries.heads}
     for reading in readings.readings:
@@ -103,7 +110,9 @@ def _build_runs(
     network = layout.vocabulary.network
     runs: list[BuiltRun] = []
     known: KnownFactors = {}
-    for head in entries.heads:
+    for count, head in enumerate(entries.heads):
+        if count % _OFTEN == 0:
+            progress("building runs", count, len(entries.heads))
         numbers = read_biomass_numbers(head, layout.statements, decimal)
         built = build_run(
             head,

@@ -2,11 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Collection, Iterable, Mapping
+from collections.abc import Collection, Mapping, Sequence
 from dataclasses import field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.progress import Progress, silent
 from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Quantity, QuantityKind, Species
@@ -21,6 +22,7 @@ from fluxnet.tables.vocabulary import Vocabulary
 
 __all__ = ["Reading", "Readings", "read_entries"]
 
+_OFTEN = 2_000
 _WITHOUT_MINUS = ", and the numbers without the minus"
 
 
@@ -58,10 +60,11 @@ class Readings:
 
 
 def read_entries(
-    entries: Iterable[Entry],
+    entries: Sequence[Entry],
     decimal: Decimal,
     vocabulary: Vocabulary,
     flagged: Collection[Span] = (),
+    progress: Progress = silent,
 ) -> Readings:
     """Read every entry; one with a fault is left out, and its run is named as failed.
 
@@ -76,7 +79,9 @@ def read_entries(
     unsaid: dict[str, tuple[Entry, Diagnostic]] = {}
     failed: set[str] = set()
     assumed: list[Entry] = []
-    for entry in entries:
+    for count, entry in enumerate(entries):
+        if count % _OFTEN == 0:
+            progress("reading rates", count, len(entries))
         key = (entry.name, entry.direction)
         if key not in known:
             known[key] = _once(read_quantity(*key, vocabulary), typed)

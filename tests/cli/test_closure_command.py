@@ -7,6 +7,7 @@ from typing import Any
 import pytest
 
 from fluxnet.cli.main import Exit, run
+from fluxnet.studies import closure
 
 HEAD = "run,species,direction,rate,sd,unit\n"
 GOOD = """A,glucose,in,2,0.1,mmol/g/h
@@ -94,7 +95,7 @@ def test_an_option_that_names_what_is_not_there_is_the_place_of_its_fault(
     folder: Path, capsys: pytest.CaptureFixture[str], option: str
 ) -> None:
     assert run(["closure", "good.csv", *option.split()]) == Exit.MISUSE
-    assert capsys.readouterr().err.startswith(f"{option}: error: ")
+    assert capsys.readouterr().err.startswith(f"{option}: ")
 
 
 def test_files_of_one_run_hold_its_test(folder: Path) -> None:
@@ -104,6 +105,78 @@ def test_files_of_one_run_hold_its_test(folder: Path) -> None:
     assert told["closes"] == "yes"
     assert float(told["h"]) < float(told["limit"])
     assert (folder / "out" / "balances.csv").exists()
+
+
+def test_what_is_closed_when_the_user_stops_is_kept_and_told(
+    monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """The runs differ in their rows, so that they are closed one after the other."""
+    made = closure.make_closures
+
+    def stop_at_the_second(plan: Any, batch: Any, arrays: Any) -> Any:
+        if batch.runs[0].name == "B":
+            raise KeyboardInterrupt
+        return made(plan, batch, arrays)
+
+    monkeypatch.setattr(closure, "make_closures", stop_at_the_second)
+    assert run(["closure", "both.csv", "--json"]) == Exit.INTERRUPTED
+    shown = capsys.readouterr()
+    told = json.loads(shown.out)
+    assert [one["run"] for one in told["runs"]] == ["A"]
+    assert told["undone"] == 1
+    assert "interrupted: 1 of 2 runs are closed" in shown.err
+    assert run(["closure", "both.csv", "--run", "B"]) == Exit.INTERRUPTED
+    assert capsys.readouterr().out == ""
+
+
+def many_runs(count: int) -> str:
+    return HEAD + "".join(
+        (BAD if i % 10 == 3 else GOOD.replace("A,", "B,")).replace("B,", f"R{i},")
+        for i in range(count)
+    )
+
+
+def test_many_runs_are_told_by_their_spread_and_the_worst_and_written_in_full(
+    folder: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    (folder / "many.csv").write_text(many_runs(250), encoding="utf-8")
+    assert run(["closure", "many.csv", "--csv", "out"]) == Exit.FINDING
+    text = capsys.readouterr().out
+    words = " ".join(text.split())
+    assert "25 of 250 tested runs do not close (10 %; of sound runs chance alone" in words
+    assert "the worst 20 of 25" in words
+    assert len(text.splitlines()) < 50
+    assert max(len(line) for line in text.splitlines()) <= 80
+    for name, rows in (("overview", 250), ("rates", 225 * 5 + 25 * 3)):
+        table = (folder / "out" / f"{name}.csv").read_text(encoding="utf-8").splitlines()
+        assert len(table) == 1 + rows
+    spread = (folder / "out" / "spread.csv").read_text(encoding="utf-8").splitlines()
+    assert spread[1].startswith("carbon,250,")
+
+
+def test_quiet_tells_of_many_runs_how_many_close(
+    folder: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    (folder / "many.csv").write_text(many_runs(20), encoding="utf-8")
+    run(["closure", "many.csv", "--quiet"])
+    assert capsys.readouterr().out.startswith("2 of 20 tested runs do not close")
+
+
+def test_many_runs_as_data_are_the_same_as_few(
+    folder: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """They stand one a line, and hold what each holds by itself."""
+    (folder / "many.csv").write_text(many_runs(101), encoding="utf-8")
+    run(["closure", "many.csv", "--json"])
+    text = capsys.readouterr().out
+    many = json.loads(text)["runs"]
+    assert len(many) == 101
+    assert sum(line.startswith('    {"run"') for line in text.splitlines()) == 101
+    for name in ("R3", "R100"):
+        (alone,) = document(["many.csv", "--run", name], capsys)["runs"]
+        told = next(one for one in many if one["run"] == name)
+        assert told["test"]["h"] == pytest.approx(alone["test"]["h"], rel=1e-12)
+        assert told.keys() == alone.keys()
 
 
 def test_quiet_tells_the_verdict_alone(capsys: pytest.CaptureFixture[str]) -> None:

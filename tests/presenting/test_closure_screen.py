@@ -127,6 +127,27 @@ def test_many_runs_are_told_as_an_overview_alone() -> None:
     tables = [block for block in answer(text).screen if isinstance(block, Table)]
     assert [table.key for table in tables] == ["overview"]
     assert "--run NAME" in shown(text)
+    assert "All 13 tested runs close." in shown(text)
+    frame = answer(text).to_frame()
+    assert len(frame) == 13 * 5
+    assert "R12" in set(frame["run"])
+
+
+def test_very_many_runs_are_told_by_their_spread() -> None:
+    """Carbon recoveries of 31 runs whose CO2 goes from 5.0 to 6.5: the middle one is 5.75."""
+    text = "".join(
+        A.replace("A,", f"R{i},").replace("out,6,", f"out,{5 + i / 20},") for i in range(31)
+    )
+    spread = answer(text).tables["spread"]
+    told = dict(zip([c.key for c in spread.columns], spread.rows[0], strict=True))
+    middle = answer(A.replace("out,6,", "out,5.75,")).runs[0].find_balance("carbon")
+    assert told["median"] == pytest.approx(middle.recovery)
+    assert told["sd"] == pytest.approx(middle.recovery_sd, rel=0.05)
+    second = answer(A.replace("out,6,", "out,5.05,")).runs[0].find_balance("carbon")
+    assert told["low"] == pytest.approx(second.recovery)
+    assert len(answer(text).to_frame("overview")) == 31
+    assert str(answer(text)).count("R1 ") <= 1
+    assert "<td" in answer(text)._repr_html_()
 
 
 def test_options_that_name_what_is_not_there_raise() -> None:
