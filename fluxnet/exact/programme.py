@@ -17,13 +17,14 @@ from flint import fmpq
 from fluxnet.ground.record import record
 
 __all__ = [
-    "ExactProgramme", "excludes", "is_endless", "least_value", "make_programme", "meets",
-    "worst_break",
+    "ExactProgramme", "at_bounds", "excludes", "is_endless", "least_value", "make_programme",
+    "meets", "worst_break",
 ]  # fmt: skip
 
 Row = Mapping[int, Fraction]
 Bound = Fraction | None
 _ZERO = fmpq(0)
+_NOTHING = Fraction(0)
 
 
 @record
@@ -84,7 +85,7 @@ def to_flint(value: Fraction) -> Any:
 
 def to_fraction(value: Any) -> Fraction:
     """FLINT's own number as a fraction."""
-    return Fraction(int(value.p), int(value.q))
+    return Fraction(int(value.p), int(value.q)) if value else _NOTHING
 
 
 def meets(programme: ExactProgramme, fluxes: Sequence[Fraction]) -> bool:
@@ -180,3 +181,15 @@ def is_endless(programme: ExactProgramme, ray: Sequence[Fraction]) -> bool:
     for j, c in programme.costs.items():
         gain += c * own[j]
     return bool(gain < 0)
+
+
+def at_bounds(
+    programme: ExactProgramme, fluxes: Sequence[Fraction]
+) -> tuple[tuple[bool, bool], ...]:
+    """Whether each flux, then each row, stands at its lower and at its upper bound."""
+    own = [to_flint(v) for v in fluxes]
+    values = own + [programme.value_of(i, own) for i in range(len(programme.rows))]
+    return tuple(
+        (low is not None and value == low, high is not None and value == high)
+        for value, low, high in zip(values, programme.low, programme.high, strict=True)
+    )

@@ -19,7 +19,7 @@ from fluxnet.studies.settling import Array
 __all__ = ["PRICE", "aim_cost", "hold_optimum", "open_carriers"]
 
 PRICE = 1e-8
-"""A price below this is the solver's own tolerance."""
+"""A price below this is the solver's own tolerance, where none is proven."""
 
 
 def aim_cost(built: Built, aim: Aim) -> Array:

@@ -7,6 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 
+from fluxnet.ground.progress import Progress, silent
 from fluxnet.network.biomass import biomasses
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import Run
@@ -16,15 +17,17 @@ from fluxnet.solving.conflict import least_change
 from fluxnet.solving.flux_fit import FluxKind
 from fluxnet.solving.least_flux import least_total_flux
 from fluxnet.solving.linear import LinearSolution, Outcome, Programme, worst_violation
-from fluxnet.solving.problem import Problem, RowKind
+from fluxnet.solving.problem import Problem
 from fluxnet.solving.ranges import find_ranges
 from fluxnet.solving.unbounded import explain_unbounded
-from fluxnet.studies.aim_problem import PRICE, aim_cost, hold_optimum, open_carriers
+from fluxnet.studies.aim_problem import aim_cost, hold_optimum, open_carriers
 from fluxnet.studies.aims import Aim, Sense
+from fluxnet.studies.optimum_bill import make_optimum_bill
+from fluxnet.studies.optimum_proof import as_proven, find_worths, prove_aim
 from fluxnet.studies.optimum_rates import estimate_rates, is_point
 from fluxnet.studies.optimum_span import span_optimum
 from fluxnet.studies.settling import Array, Span, keep_account
-from fluxnet.studies.solution import BindingLimit, FluxEstimate, FluxSolution, SolveStatus
+from fluxnet.studies.solution import FluxEstimate, FluxSolution, SolveStatus
 from fluxnet.studies.telling import (
     tell_infeasible,
     tell_optimum,
@@ -36,7 +39,13 @@ __all__ = ["optimise"]
 
 
 def optimise(
-    network: Network, run: Run | None, aim: Aim, *, within: float = 2.0, fraction: float = 1.0
+    network: Network,
+    run: Run | None,
+    aim: Aim,
+    *,
+    within: float = 2.0,
+    fraction: float = 1.0,
+    progress: Progress = silent,
 ) -> FluxSolution:
     """Solve for an aim under the limits, with measured rates held within ``within`` sds.
 
@@ -55,6 +64,8 @@ def optimise(
     cost = aim_cost(built, aim)
     programme = Programme(problem)
     best = programme.maximise(cost) if aim.sense is Sense.MAXIMISE else programme.minimise(cost)
+    proven = prove_aim(built, problem, aim, programme, within)
+    best = as_proven(best, proven, aim.sense)
     frame = FluxSolution(
         run=run.name if run else None,
         variant=network.variant,
@@ -69,6 +80,7 @@ def optimise(
         replaced=built.replaced,
         notes=built.notes,
         violated_limits=tell_violations(problem),
+        proof=proven.proof,
         extras=run.extras if run else (),
         has_biomass=bool(biomasses(network)),
     )
@@ -92,7 +104,14 @@ def optimise(
             smallest_within=change.common_k,
             words=tell_infeasible(conflicts, change, within),
         )
-    return _at_optimum(frame, built, problem, cost, best, aim.sense, fraction)
+    prices, limits = find_worths(problem, cost, proven, aim, within, progress=progress)
+    frame = replace(
+        frame,
+        prices=prices,
+        limits=limits,
+        bill=make_optimum_bill(problem, proven, aim, frame.unit, within),
+    )
+    return _at_optimum(frame, built, problem, cost, best, aim.sense, progress)
 
 
 def _at_optimum(
@@ -102,11 +121,11 @@ def _at_optimum(
     cost: Array,
     best: LinearSolution,
     sense: Sense,
-    fraction: float,
+    progress: Progress,
 ) -> FluxSolution:
-    at_best = hold_optimum(problem, cost, best, sense, fraction)
+    at_best = hold_optimum(problem, cost, best, sense, frame.fraction)
     fluxes = least_total_flux(at_best)
-    ranges = find_ranges(at_best)
+    ranges = find_ranges(at_best, progress=progress)
     estimates = tuple(
         FluxEstimate(
             reaction=reaction.name,
@@ -125,7 +144,7 @@ def _at_optimum(
     )
 
     def spans(rows: Array, drift: Mapping[str, Array]) -> Span:
-        found = find_ranges(at_best, rows)
+        found = find_ranges(at_best, rows, progress=progress)
         return Span(np.full(len(rows), np.nan), found.low, found.high)
 
     account = keep_account(built, fluxes, spans)
@@ -140,7 +159,6 @@ def _at_optimum(
         ledger=account.ledger,
         equations=account.equations,
         yields=account.yields,
-        limits=_binding(problem, best, frame.within),
         residual=max(best.residual, ranges.residual, worst_violation(at_best, fluxes)),
     )
     return replace(solution, words=tell_optimum(solution))
@@ -172,23 +190,3 @@ def _unheld(problem: Problem, cost: Array, aim: Aim | None) -> float | None:
     free = programme.maximise(cost) if maximise else programme.minimise(cost)
     return free.objective if free.outcome is not Outcome.FAILED else None
 
-
-def _binding(
-    problem: Problem, best: LinearSolution, within: float | None
-) -> tuple[BindingLimit, ...]:
-    """The limits and measured values with a price, the most worth first."""
-    found: list[BindingLimit] = []
-    for i, row in enumerate(problem.rows):
-        price = float(best.row_prices[i])
-        if row.kind in (RowKind.BALANCE, RowKind.ROLE) or abs(price) <= PRICE:
-            continue
-        value = float(problem.matrix[i] @ best.fluxes)
-        name = row.name
-        if row.sd and row.value is not None and row.ratio is None:
-            at_low = abs(value - problem.row_low[i]) < abs(value - problem.row_high[i])
-            name = (
-                f"{row.name} {'>=' if at_low else '<='} {value:.4g} "
-                f"(measured {row.value:.4g} {'-' if at_low else '+'} {within:g} sd)"
-            )
-        found.append(BindingLimit(name, value, price))
-    return tuple(sorted(found, key=lambda limit: -abs(limit.worth * limit.value)))

@@ -9,12 +9,14 @@ from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.record import record
 from fluxnet.network.model import Limit, Network, Quantity
 from fluxnet.solving.flux_fit import FluxKind, FluxRelation, RateKind
+from fluxnet.studies.bill import Bill
 from fluxnet.studies.equations import NetEquation
 from fluxnet.studies.ledger import LedgerLine
 from fluxnet.studies.yields import Yield
 
 if TYPE_CHECKING:
     from fluxnet.solving.conflict import Conflict, LeastChange
+    from fluxnet.solving.proof import Proof
     from fluxnet.solving.unbounded import Unbounded
     from fluxnet.studies.aims import Aim
     from fluxnet.studies.conflicts import ToldConflict
@@ -22,6 +24,7 @@ if TYPE_CHECKING:
 __all__ = [
     "BindingLimit", "FluxEstimate", "FluxKind", "FluxRelation", "FluxSolution", "FluxTest",
     "MovedParameter", "OptimumSpan", "RateEstimate", "RateKind", "Solution", "SolveStatus",
+    "SpeciesPrice",
 ]
 
 
@@ -123,11 +126,35 @@ class MovedParameter:
 
 @record
 class BindingLimit:
-    """A limit that holds the optimum back; ``worth`` is the aim's gain per unit of it."""
+    """A limit that holds the optimum back.
+
+    ``worth`` is the change of the aim per unit by which the bound is raised, at the prices that
+    prove the optimum; ``worth_up`` that of the first bit by which it is raised, ``worth_down``
+    that per unit of the first bit by which it is lowered: both the same unless other bounds
+    hold there, too. Infinite where the bound cannot move that way at all.
+    """
 
     name: str
     value: float
     worth: float
+    worth_up: float
+    worth_down: float
+
+
+@record
+class SpeciesPrice:
+    """What one unit of a balanced species is worth to the aim at its optimum.
+
+    Positive: one more unit, as a gift, would raise a maximum or lower a minimum by so much;
+    negative: it is a surplus that has to be got rid of. Where the optimum leaves the price free
+    ``price_low`` is what the first bit more would help, ``price_high`` what the first bit less
+    would cost.
+    """
+
+    species: str
+    price: float
+    price_low: float
+    price_high: float
 
 
 @record
@@ -152,6 +179,7 @@ class FluxSolution:
     that is measured itself, without its own row; ``span`` the optimum over the parameters'
     errors; ``fraction`` the share of the optimum at which fluxes and ranges are given.
     Measured values are held within ``within`` sds and could be within ``smallest_within``.
+    ``proof`` is that of the status (None: none is asked for, in a fit), ``bill`` the optimum's.
     """
 
     run: str | None
@@ -173,6 +201,9 @@ class FluxSolution:
     equations: tuple[NetEquation, ...] = ()
     yields: tuple[Yield, ...] = ()
     limits: tuple[BindingLimit, ...] = ()
+    prices: tuple[SpeciesPrice, ...] = ()
+    proof: Proof | None = None
+    bill: Bill | None = None
     relations: tuple[FluxRelation, ...] = ()
     moved: tuple[MovedParameter, ...] = ()
     conflicts: tuple[ToldConflict, ...] = ()
@@ -202,5 +233,7 @@ class Solution:
 
     @property
     def is_sound(self) -> bool:
-        """Whether nothing is wrong with any run."""
-        return all(run.status.is_sound for run in self.runs)
+        """Whether nothing is wrong with any run, and every optimum is proven."""
+        return all(
+            run.status.is_sound and (run.proof is None or run.proof.verified) for run in self.runs
+        )
