@@ -26,10 +26,10 @@ SURPLUS = BillTitles("has to go somewhere", "can go to", "left over")
 def bill_tables(bill: Bill, title: str, titles: BillTitles = NEEDS) -> tuple[Table, Table]:
     """The bill for the screen, and for files.
 
-    On the screen every worth is the product of its amount and price as printed, and the
-    column of worths adds up; a note says so where a last digit does not.
+    On the screen the column of worths adds up, and every worth is the product of its amount
+    and price as printed; a note says so where a last digit is not.
     """
-    columns = (
+    columns: tuple[Column, ...] = (
         Column(titles.demand, "", wrap=42),
         Column("amount", "", align=Align.RIGHT),
         Column("unit", ""),
@@ -51,7 +51,7 @@ def bill_tables(bill: Bill, title: str, titles: BillTitles = NEEDS) -> tuple[Tab
         ]
         rows.append(("  together", "", "", "", shown[side]))
     rows.append((titles.between, "", "", "", printed.shortfall))
-    notes = () if printed.adds_up else ("a last digit of a sum is off by rounding",)
+    notes = () if printed.multiplies else ("a last digit is rounded so that the column adds up",)
     if len(units) == 1:
         columns = (*columns[:2], *columns[3:])
         rows = [(*row[:2], *row[3:]) for row in rows]

@@ -3,7 +3,8 @@
 from __future__ import annotations
 
 import math
-from decimal import Decimal
+from collections.abc import Sequence
+from decimal import ROUND_FLOOR, Decimal
 
 from fluxnet.ground.record import record
 from fluxnet.studies.bill import Bill, BillLine, BillSide
@@ -11,29 +12,30 @@ from fluxnet.studies.bill import Bill, BillLine, BillSide
 __all__ = ["PrintedBill", "print_bill"]
 
 _MOST_DIGITS = 12
-_TRIES = 4
 
 
 @record
 class PrintedBill:
     """Texts of a bill: ``lines`` hold (amount, price, worth) in the order of the bill's.
 
-    The shortfall is the difference of the sums as printed. ``adds_up``: the worths as printed
-    add up to the sums as printed; otherwise a last digit is off by rounding.
+    The worths add up to the sums, and the shortfall is the difference of these.
+    ``multiplies``: each worth is the rounded product of its amount and price as printed;
+    otherwise a last digit was changed to make the column add up.
     """
 
     lines: tuple[tuple[str, str, str], ...]
     supply: str
     demand: str
     shortfall: str
-    adds_up: bool
+    multiplies: bool
 
 
 def print_bill(bill: Bill) -> PrintedBill:
     """Round a bill: three digits of its sums and two of what is missing, at the least.
 
-    Up to three decimals more are taken where the columns add up with them and without do not.
-    Amount and price keep as many digits as it takes for their product to be the worth.
+    Where the rounded worths do not add up to the rounded sums one decimal more is tried; then
+    those nearest to the next number are rounded the other way. Amount and price keep as many
+    digits as it takes for their product to be the worth.
 
     Examples
     --------
@@ -44,14 +46,16 @@ def print_bill(bill: Bill) -> PrintedBill:
     ((('3.2', '1', '3.20'), ('1.2', '2.4', '2.88')), '0.32')
     """
     least = _decimals(bill)
-    decimals = next((d for d in range(least, least + _TRIES) if _adds_up(bill, d)), least)
+    decimals = least if _adds_up(bill, least) or not _adds_up(bill, least + 1) else least + 1
     supply, demand = _rounded(bill.supply, decimals), _rounded(bill.demand, decimals)
+    worths = _worths(bill, decimals)
+    lines = [_line(x, w, decimals) for x, w in zip(bill.lines, worths, strict=True)]
     return PrintedBill(
-        lines=tuple(_line(line, decimals) for line in bill.lines),
+        lines=tuple(texts for texts, _ in lines),
         supply=f"{supply:f}",
         demand=f"{demand:f}",
         shortfall=f"{demand - supply:f}",
-        adds_up=_adds_up(bill, decimals),
+        multiplies=all(fits for _, fits in lines),
     )
 
 
@@ -64,23 +68,46 @@ def _decimals(bill: Bill) -> int:
     return max(0, *needed)
 
 
+def _sums(bill: Bill) -> dict[BillSide, float]:
+    return {BillSide.SUPPLY: bill.supply, BillSide.DEMAND: bill.demand}
+
+
 def _adds_up(bill: Bill, decimals: int) -> bool:
     """Whether rounded worths add up to the rounded sum, on both sides."""
-    sums = {BillSide.SUPPLY: bill.supply, BillSide.DEMAND: bill.demand}
     return all(
         sum((_rounded(x.worth, decimals) for x in bill.lines if x.side is side), Decimal(0))
         == _rounded(total, decimals)
-        for side, total in sums.items()
+        for side, total in _sums(bill).items()
     )
 
 
-def _line(line: BillLine, decimals: int) -> tuple[str, str, str]:
-    worth = _rounded(line.worth, decimals)
+def _worths(bill: Bill, decimals: int) -> list[Decimal]:
+    """The worths rounded so that they add up: the largest remainders are rounded up."""
+    worths = [_rounded(x.worth, decimals) for x in bill.lines]
+    if _adds_up(bill, decimals):
+        return worths
+    step = Decimal(1).scaleb(-decimals)
+    for side, total in _sums(bill).items():
+        places = [k for k, x in enumerate(bill.lines) if x.side is side]
+        exact = {k: Decimal(repr(bill.lines[k].worth)) for k in places}
+        for k in places:
+            worths[k] = exact[k].quantize(step, ROUND_FLOOR)
+        left = int((_rounded(total, decimals) - sum(worths[k] for k in places)) / step)
+        for k in sorted(places, key=lambda k: worths[k] - exact[k])[: max(0, left)]:
+            worths[k] += step
+    return worths
+
+
+def _line(line: BillLine, worth: Decimal, decimals: int) -> tuple[tuple[str, str, str], bool]:
+    """The texts of a line, and whether the product is the worth."""
+    texts: Sequence[Decimal] = ()
     for digits in range(4, _MOST_DIGITS + 1):
         amount, price = _significant(line.amount, digits), _significant(line.price, digits)
-        if _rounded(float(amount * price), decimals) == worth:
-            break
-    return f"{_plain(amount)}", f"{_plain(price)}", f"{worth:f}"
+        fits = _rounded(float(amount * price), decimals) == worth
+        texts = texts or (amount, price)
+        if fits:
+            return (_plain(amount), _plain(price), f"{worth:f}"), True
+    return (_plain(texts[0]), _plain(texts[1]), f"{worth:f}"), False
 
 
 def _significant(value: float, digits: int) -> Decimal:
