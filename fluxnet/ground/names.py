@@ -222,6 +222,12 @@ class Name(Enum):
     COEFFICIENT_NEGATIVE = (
         "coefficient-negative", _E, "a ? coefficient comes out negative",
         "The species belongs on the other side.", "Move it to the other side of the arrow.")
+    DIVIDES_IN_RANGE = (
+        "divides-by-zero-in-range", _W,
+        "a coefficient divides by zero within the range of its parameters",
+        "Towards that place it grows beyond all bounds, and beyond it has the other sign: the "
+        "errors of the parameters cannot be passed on.",
+        "Narrow the range or the sd, or write the line per another amount.")
     COEFFICIENT_CHANGES_SIGN = (
         "coefficient-changes-sign", _W, "a coefficient changes its sign within a parameter's range",
         "At one end of the range the species would be used, at the other made.",

@@ -10,9 +10,12 @@ from fluxnet.ground.names import Name
 from fluxnet.network.amounts import number_text
 from fluxnet.network.balance_words import join
 from fluxnet.network.model import Network, Parameter, Reaction, Term
-from fluxnet.network.unknown_signs import changes_sign
+from fluxnet.network.poles import Pole
+from fluxnet.network.unknown_signs import changes_sign, pole_within, range_of, range_words
 
 __all__ = ["check_coefficients"]
+
+_Place = tuple[tuple[str, Fraction], ...]
 
 _WIDEST = 10**10
 _REACH = 10**30
@@ -34,16 +37,17 @@ def check_coefficients(
     -------
     tuple of Diagnostic
         ``division-by-zero`` and ``coefficient-not-positive`` at the parameters' values,
-        ``coefficient-changes-sign`` within their ranges, ``wide-coefficients`` for a reaction
-        whose coefficients differ by more than ten decades; ``unreadable-line`` for a
-        coefficient that cannot be computed with.
+        ``divides-by-zero-in-range`` and ``coefficient-changes-sign`` within their ranges,
+        ``wide-coefficients`` for a reaction whose coefficients differ by more than ten
+        decades; ``unreadable-line`` for a coefficient that cannot be computed with.
     """
     parameters = {p.name: p for p in network.parameters}
     found: list[Diagnostic] = []
     for reaction in network.reactions if reactions is None else reactions:
         sizes: list[Fraction] = []
+        poles: set[_Place] = set()
         for terms in _alike(reaction):
-            found.extend(_term_findings(reaction, terms, parameters, sizes))
+            found.extend(_term_findings(reaction, terms, parameters, sizes, poles))
         if sizes and max(sizes) > _WIDEST * min(sizes):
             found.append(
                 Diagnostic(
@@ -71,6 +75,7 @@ def _term_findings(
     terms: Sequence[Term],
     parameters: Mapping[str, Parameter],
     sizes: list[Fraction],
+    poles: set[_Place],
 ) -> Iterator[Diagnostic]:
     term, also = terms[0], tuple(t.span for t in terms[1:])
     coefficient = term.coefficient
@@ -111,15 +116,52 @@ def _term_findings(
         yield from beyond
         return
     sizes.append(value)
+    pole = pole_within(coefficient, parameters)
+    if pole is not None:
+        place = tuple(sorted(pole.place.items()))
+        if place in poles:
+            return  # another term of the reaction divides by the same
+        poles.add(place)
+        yield Diagnostic(
+            Name.DIVIDES_IN_RANGE,
+            f"{name}, {term.written}, {_pole_words(pole, parameters)}",
+            term.span,
+            because="; ".join(range_words(parameters[n]) for n in sorted(pole.place)),
+            mend="narrow the range or the sd, or write the line in another way",
+            also=also,
+        )
+        return
     negative = changes_sign(coefficient, parameters)
     if negative is not None:
-        place, lowest = negative
+        where, lowest = negative
         yield Diagnostic(
             Name.COEFFICIENT_CHANGES_SIGN,
-            f"{name} is {number_text(value)}, but {number_text(lowest)} at {_values(place)}",
+            f"{name} is {number_text(value)}, but {number_text(lowest)} at {_values(where)}",
             term.span,
             also=also,
         )
+
+
+def _pole_words(pole: Pole, parameters: Mapping[str, Parameter]) -> str:
+    """Where a coefficient divides by zero, as far as that is known."""
+    plural = "s" if len(pole.place) > 1 else ""
+    ranges = f"the parameter{plural}' range{plural}" if plural else "the parameter's range"
+    if not pole.proven:
+        return f"may divide by zero within {ranges}: that could not be ruled out"
+    place = ", ".join(
+        f"{n} = {number_text(v if pole.exact else _rounded(v, parameters[n]))}"
+        for n, v in sorted(pole.place.items())
+    )
+    return f"divides by zero within {ranges}, {'at' if pole.exact else 'near'} {place}"
+
+
+def _rounded(value: Fraction, parameter: Parameter) -> Fraction:
+    """A place to some thousandths of the parameter's range."""
+    low, high = range_of(parameter)
+    digits = 0
+    while (high - low) * 10**digits < 1000 and digits < 30:
+        digits += 1
+    return round(value, digits)
 
 
 def _beyond_reach(value: Fraction, name: str, terms: Sequence[Term]) -> list[Diagnostic]:

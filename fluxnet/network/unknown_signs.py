@@ -11,8 +11,9 @@ from fluxnet.ground.names import Name
 from fluxnet.network.amounts import coefficient_text, number_text
 from fluxnet.network.expression import Expression
 from fluxnet.network.model import Parameter, Reaction, Term
+from fluxnet.network.poles import Pole, find_pole
 
-__all__ = ["changes_sign", "range_of", "sign_findings"]
+__all__ = ["changes_sign", "pole_within", "range_of", "range_words", "sign_findings"]
 
 _STEPS = 8
 
@@ -25,6 +26,15 @@ def range_of(parameter: Parameter) -> tuple[Fraction, Fraction]:
     return low, high
 
 
+def pole_within(
+    coefficient: Expression, parameters: Mapping[str, Parameter]
+) -> Pole | None:
+    """A place within the parameters' ranges where a coefficient divides by zero."""
+    if coefficient.denominator.number is not None:
+        return None
+    return find_pole(coefficient, {n: range_of(parameters[n]) for n in coefficient.parameters})
+
+
 def changes_sign(
     coefficient: Expression, parameters: Mapping[str, Parameter]
 ) -> tuple[dict[str, Fraction], Fraction] | None:
@@ -32,7 +42,7 @@ def changes_sign(
 
     The corners of the ranges are tried, which decides it where each parameter enters linearly;
     where one enters by a higher power or in a denominator, also points between them, on a grid
-    of eight steps. A place where it has no value is passed over.
+    of eight steps. It should have no pole there (see :func:`pole_within`).
     """
     names = sorted(coefficient.parameters)
     linear = coefficient.denominator.number is not None and all(
@@ -50,7 +60,7 @@ def changes_sign(
         try:
             value = coefficient.exact(place)
         except ZeroDivisionError:
-            continue
+            continue  # (a/a) where a is zero: nothing changes its sign there
         if value < 0 and (worst is None or value < worst[1]):
             worst = (place, value)
     return worst
@@ -109,6 +119,8 @@ def _sign_finding(
             term.span,
             mend=f"take {term.species} out of {reaction.name}" if value.is_zero else None,
         )
+    if pole_within(value, known) is not None:
+        return  # it comes from a written coefficient, which is told by itself
     negative = changes_sign(value, known)
     if negative is not None:
         place, lowest = negative
@@ -117,11 +129,18 @@ def _sign_finding(
             Name.COEFFICIENT_CHANGES_SIGN,
             f"{name} is {shown}, but {number_text(lowest)} at {where}",
             term.span,
-            because="; ".join(_range_words(known[n]) for n in place),
+            because="; ".join(range_words(known[n]) for n in place),
         )
 
 
-def _range_words(parameter: Parameter) -> str:
+def range_words(parameter: Parameter) -> str:
+    """From where to where a parameter may lie, and by what.
+
+    Examples
+    --------
+    >>> range_words(Parameter("b", Fraction(2, 5), sd=Fraction(1, 10)))
+    'b from 0.2 to 0.6 (its value ± 2 sd)'
+    """
     low, high = range_of(parameter)
     given = parameter.low is not None and parameter.high is not None
     source = "its range" if given else "its value ± 2 sd"
