@@ -56,7 +56,8 @@ def closure_screen(closure: Closure, *, everything: bool = False) -> tuple[Block
         return (*blocks, *_many_runs(closure))
     blocks.append(overview(closure.runs))
     for run in closure.runs:
-        blocks += blocks_of_run(_run_blocks(run, tells_world=not shared, everything=everything), run.run)
+        of_run = _run_blocks(run, tells_world=not shared, everything=everything)
+        blocks += blocks_of_run(of_run, run.run)
     return (*blocks, Sentence(_how_to_read(closure), Mood.QUIET), Sentence(_NO_PROOF, Mood.QUIET))
 
 

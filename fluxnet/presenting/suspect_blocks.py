@@ -2,8 +2,6 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
-
 from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.presenting.numbers import format_number, format_p
 from fluxnet.presenting.screen import Block, Data, Mood, Sentence
@@ -14,12 +12,12 @@ from fluxnet.studies.suspect_result import Standing, Suspect, SuspectKind, Suspe
 __all__ = ["suspect_blocks"]
 
 _MOST_ROWS = 12
-_MOST_NAMED = 4
+_SAME = "="
 _PLAUSIBLE = (Standing.MEASURED, Standing.MODEL, Standing.COMMON)
 
 
 def suspect_blocks(
-    suspects: Suspects, run: str | None, *, everything: bool = False
+    suspects: Suspects, run: str | None, *, more: str = "", everything: bool = False
 ) -> list[Block]:
     """The suspects of one run: those that explain it best, and what that is worth.
 
@@ -27,6 +25,8 @@ def suspect_blocks(
     ----------
     run
         The name of the run, for the tables as data.
+    more
+        What would bring more relations to test the rates with.
     everything
         Show all suspects that cannot be told from the best one, rare and impossible ones too.
     """
@@ -35,7 +35,7 @@ def suspect_blocks(
         blocks.append(_table(suspects, everything=everything))
     else:
         blocks.append(_pairs(suspects))
-    blocks += [Sentence(text) for text in _advice(suspects)]
+    blocks += [Sentence(text) for text in _advice(suspects, more)]
     return [*blocks, Data(lambda: (_data(suspects, run),))]
 
 
@@ -71,8 +71,8 @@ def _lead(suspects: Suspects) -> Sentence:
 
 
 def _table(suspects: Suspects, *, everything: bool) -> Table:
-    """The first group, one line for all that can never be told apart."""
-    rows, left = _lines(suspects, everything=everything)
+    """The first group, those that can never be told apart under one another."""
+    shown, left = _shown(suspects, everything=everything)
     columns = (
         Column("suspect", ""),
         Column("measured", "", align=Align.RIGHT),
@@ -82,73 +82,64 @@ def _table(suspects: Suspects, *, everything: bool) -> Table:
         Column("apart [sd]", "", align=Align.RIGHT, decimals=1),
     )
     cells: list[tuple[Cell, ...]] = []
-    notes: list[str] = []
-    for first, twins in rows:
+    before: int | None = None
+    for one in shown:
+        if one.direction_number == before:
+            row: tuple[Cell, ...] = (f"{_SAME} {_named(one, suspects)}", "", would_be_words(one))
+            cells.append((*row, "", "", ""))
+            continue
+        before = one.direction_number
         cells.append((
-            _named(first, suspects), format_number(first.measured), would_be_words(first),
-            first.h_left if first.h_left > 0.005 else 0.0, format_p(first.p), first.separation,
+            _named(one, suspects), format_number(one.measured), would_be_words(one),
+            one.h_left if one.h_left > 0.005 else 0.0, format_p(one.p), one.separation,
         ))  # fmt: skip
-        if twins:
-            notes.append(_twin_note(first, twins, everything=everything))
-    if left:
-        notes.append(f"and {left}: --all")
-    tries = f"the best of {suspects.distinct} different suspects" if suspects.distinct > 1 else "it"
+    notes = [f"and {left}: --all"] if left else []
+    if any(str(row[0]).startswith(_SAME) for row in cells):
+        notes.append(
+            f"{_SAME} of any size, it cannot be told from the one above by these measurements"
+        )
     notes.append(
-        f"h left: the test value if it is so; p: how often {tries} would gain as much by chance; "
-        "apart: how far off the nearest different suspect lies"
+        "h left: the test value that remains; p: how often the best of "
+        f"{suspects.distinct} different suspects gains as much by chance; apart: how far off the "
+        "nearest different suspect is"
     )
-    return Table("", "Suspects", columns, tuple(cells), tuple(notes))
+    unit = _usual_unit(suspects)
+    title = f"Suspects [{unit}]" if unit else "Suspects"
+    return Table("", title, columns, tuple(cells), tuple(notes))
 
 
-def _lines(
-    suspects: Suspects, *, everything: bool
-) -> tuple[list[tuple[Suspect, list[Suspect]]], str]:
-    """The lines to show, each with its twins, and words for what is left out."""
-    by_number: dict[int, list[Suspect]] = {}
-    for one in suspects.group:
-        by_number.setdefault(one.direction_number, []).append(one)
-    lines = [(members[0], members[1:]) for members in by_number.values()]
+def _shown(suspects: Suspects, *, everything: bool) -> tuple[list[Suspect], str]:
+    """The suspects to show, twins together, and words for those of the group that are not."""
+    numbers = dict.fromkeys(s.direction_number for s in suspects.group)
+    ordered = [s for n in numbers for s in suspects.group if s.direction_number == n]
     if everything:
-        return lines, ""
-    likely = [line for line in lines if line[0].standing in _PLAUSIBLE]
-    shown = (likely or [line for line in lines if line[0].possible] or lines)[:_MOST_ROWS]
-    hidden = [line for line in lines if line not in shown]
+        return ordered, ""
+    likely = [s for s in ordered if s.standing in _PLAUSIBLE]
+    shown = (likely or [s for s in ordered if s.possible] or ordered)[:_MOST_ROWS]
+    hidden = [s for s in ordered if s not in shown]
     counts = [
-        (sum(line[0].standing in _PLAUSIBLE for line in hidden), "as likely"),
-        (sum(line[0].standing is Standing.RARE for line in hidden), "less likely"),
-        (sum(line[0].standing is Standing.IMPOSSIBLE for line in hidden), "not possible"),
+        (sum(s.standing in _PLAUSIBLE for s in hidden), "more as likely"),
+        (sum(s.standing is Standing.RARE for s in hidden), "less likely"),
+        (sum(not s.possible for s in hidden), "not possible"),
     ]
     told = [f"{count} {words}" for count, words in counts if count]
-    return shown, f"{and_words(told)}" if told else ""
+    return shown, and_words(told) if told else ""
 
 
 def _named(suspect: Suspect, suspects: Suspects) -> str:
     """The first cell of a line: the label, with the unit where it is not that of the rates."""
     label = suspect.label
-    units = [s.unit for s in suspects.all if s.kind is not SuspectKind.PARAMETER]
-    usual = max(set(units), key=units.count) if units else ""
-    if suspect.unit not in (usual, "", "mol/mol"):
+    if suspect.unit not in (_usual_unit(suspects), "", "mol/mol"):
         label += f" [{suspect.unit}]"
     if suspect.kind is SuspectKind.CARRIER:
         label += " spent beside" if suspect.size >= 0 else " made beside"
     return label if suspect.possible else f"{label} (not possible)"
 
 
-def _twin_note(first: Suspect, twins: Sequence[Suspect], *, everything: bool) -> str:
-    """Those that these measurements can never tell from the first one of a line."""
-    told = [t for t in twins if everything or t.standing in _PLAUSIBLE]
-    told = told if everything else told[:_MOST_NAMED]
-    names = [f"{_twin_name(t)} {would_be_words(t)}" for t in told]
-    rest = len(twins) - len(told)
-    if rest:
-        names.append(f"{rest} {'less likely' if told else 'unlikely ones'}")
-    return f"never to be told from {first.label} by these rates: {and_words(names)}"
-
-
-def _twin_name(suspect: Suspect) -> str:
-    if suspect.kind is SuspectKind.CARRIER:
-        return f"{suspect.name} {'spent' if suspect.size >= 0 else 'made'} beside"
-    return suspect.label
+def _usual_unit(suspects: Suspects) -> str:
+    """The unit that most suspects have."""
+    units = [s.unit for s in suspects.all]
+    return max(units, key=units.count) if units else ""
 
 
 def _pairs(suspects: Suspects) -> Table:
@@ -166,7 +157,7 @@ def _pairs(suspects: Suspects) -> Table:
     return Table("", "Pairs of suspects", columns, rows, tuple(notes))
 
 
-def _advice(suspects: Suspects) -> list[str]:
+def _advice(suspects: Suspects, more: str) -> list[str]:
     """What the suspects are worth, and what to do."""
     told: list[str] = []
     if suspects.h <= chi_squared_quantile(0.95, suspects.dof):
@@ -180,7 +171,7 @@ def _advice(suspects: Suspects) -> list[str]:
     if suspects.dof == 2:
         told.append(
             "Two relations test the rates, and the size of a suspect uses up one of them: that it "
-            "fits well is no evidence."
+            f"fits well is no evidence.{' ' if more else ''}{more}"
         )
     missing = suspects.missing
     if missing is not None and missing.low is not None and missing.low > 0:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Collection, Iterator, Sequence
+from dataclasses import replace
 
 from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.names import Name
@@ -31,6 +32,7 @@ def close_rates(
     nitrogen: str | None = None,
     without: Collection[str] = (),
     runs: Collection[str] | None = None,
+    suspects: bool | None = None,
 ) -> Closure:
     """Balance, test and reconcile the runs of a table.
 
@@ -51,6 +53,9 @@ def close_rates(
         has no row left counts as not exchanged. A species takes its ratios with it.
     runs
         Names of the runs to close; None: all.
+    suspects
+        Whether to look for what could be wrong in every run; None: in those that do not close,
+        where the table has no more than 2,000 runs.
 
     Examples
     --------
@@ -65,8 +70,8 @@ def close_rates(
     (6.5, 2, 19.4)
     """
     parts = close_in_parts(
-        table, network=network, nitrogen=nitrogen, without=without, runs=runs
-    )  # fmt: skip
+        table, network=network, nitrogen=nitrogen, without=without, runs=runs, suspects=suspects
+    )
     return join_parts(table, tuple(parts))
 
 
@@ -77,6 +82,7 @@ def close_in_parts(
     nitrogen: str | None = None,
     without: Collection[str] = (),
     runs: Collection[str] | None = None,
+    suspects: bool | None = None,
 ) -> Iterator[Closure]:
     """As :func:`close_rates`, some runs at a time: whoever stops keeps those that are done.
 
@@ -90,6 +96,8 @@ def close_in_parts(
     if source is None or faults:
         yield Closure((), in_order(faults))
         return
+    if suspects is None and len(kept) > _PART:
+        suspects = False
     for members, aside in _alike(kept):
         rows = collect_rows(members[0], table, network, aside)
         if not rows.measured:
@@ -105,7 +113,7 @@ def close_in_parts(
         for start in range(0, len(members), _PART):
             batch = prepare_runs(members[start : start + _PART], rows)
             plan = plan or plan_closure(rows, batch.exact, members[0].unit, source, network)
-            yield _close_batch(plan, batch)
+            yield _close_batch(plan, batch, network, suspects)
 
 
 def join_parts(table: RatesTable, parts: Sequence[Closure]) -> Closure:
@@ -137,13 +145,27 @@ def _alike(
     return list(groups.values())
 
 
-def _close_batch(plan: ClosurePlan, batch: PreparedRuns) -> Closure:
+def _close_batch(
+    plan: ClosurePlan, batch: PreparedRuns, network: Network | None, suspects: bool | None
+) -> Closure:
     """Close runs with the same rows; where one of them cannot be, each by itself."""
     try:
-        return Closure(tuple(make_closures(plan, batch, close_prepared(plan, batch))))
+        arrays = close_prepared(plan, batch)
+        closed = make_closures(plan, batch, arrays)
+        wanted = [
+            i for i, run in enumerate(closed)
+            if run.test.h is not None
+            and (suspects or (suspects is None and run.test.closes is False))
+        ]  # fmt: skip
+        if wanted:
+            from fluxnet.studies.suspects_closure import seek_suspects
+
+            for place, sought in seek_suspects(plan, batch, arrays, wanted, network).items():
+                closed[place] = replace(closed[place], sought=sought)
+        return Closure(tuple(closed))
     except NoVarianceError as fault:
         if len(batch.runs) > 1:
-            alone = [_close_batch(plan, one) for one in batch.each()]
+            alone = [_close_batch(plan, one, network, suspects) for one in batch.each()]
             return Closure(
                 tuple(run for part in alone for run in part.runs),
                 tuple(d for part in alone for d in part.diagnostics),

@@ -2,10 +2,17 @@
 
 from __future__ import annotations
 
+from dataclasses import field
+from typing import TYPE_CHECKING
+
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
 from fluxnet.ground.record import record
 from fluxnet.network.model import Direction
 from fluxnet.rates.kinds import RateKind
+
+if TYPE_CHECKING:
+    from fluxnet.studies.suspect_result import Suspects
+    from fluxnet.studies.suspects_closure import SoughtSuspects
 
 __all__ = ["Balance", "ClosedRate", "Closure", "ClosureTest", "RunClosure", "World"]
 
@@ -98,7 +105,7 @@ class RunClosure:
     ``or_index`` is None where oxygen or another acceptor has a row. ``reference`` is the
     nitrogen compound that counts as holding no electrons. ``contradictions`` name exact values
     that cannot hold together, one entry a relation; ``left_out`` are rows that closure cannot
-    use. ``words`` is the verdict. ``suspects`` is empty: nothing looks for them.
+    use. ``words`` is the verdict. ``sought`` holds what was weighed to find ``suspects``.
     ``residual`` is the largest imbalance of the reconciled rates, relative to their terms.
     """
 
@@ -116,12 +123,17 @@ class RunClosure:
     notes: tuple[str, ...] = ()
     residual: float = 0.0
     extras: tuple[tuple[str, str], ...] = ()
-    suspects: tuple[()] = ()
+    sought: SoughtSuspects | None = field(default=None, repr=False, compare=False)
 
     @property
     def is_sound(self) -> bool:
         """Whether nothing rejects the rates (without redundancy nothing can)."""
         return self.test.closes is not False
+
+    @property
+    def suspects(self) -> Suspects | None:
+        """What could be wrong, as records made anew; None where it was not looked for."""
+        return None if self.sought is None else self.sought.tell()
 
     def find_balance(self, name: str) -> Balance | None:
         """The balance of that name, or None."""
