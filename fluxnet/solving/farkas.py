@@ -11,12 +11,12 @@ from fractions import Fraction
 
 import numpy as np
 
-from fluxnet.exact.sparse import SparseRow, null_space, point_near
+from fluxnet.exact.programme import ExactProgramme, excludes, to_fraction
+from fluxnet.exact.sparse import null_space, point_near
 from fluxnet.ground.record import record
 from fluxnet.solving.linear import Programme
 from fluxnet.solving.members import Member
 from fluxnet.solving.problem import Problem
-from fluxnet.solving.rational_rows import as_written
 
 __all__ = ["Contradiction", "Weight", "find_contradiction"]
 
@@ -56,16 +56,16 @@ class Contradiction:
 
 
 def find_contradiction(
-    problem: Problem, members: Sequence[Member], rows: Sequence[SparseRow]
+    problem: Problem, exact: ExactProgramme, members: Sequence[Member]
 ) -> Contradiction | None:
     """The multipliers by which the members of a conflict contradict one another.
 
     Parameters
     ----------
+    exact
+        The same problem in exact numbers (:func:`fluxnet.solving.proof.exact_programme`).
     members
-        Those of an irreducible set, of one problem.
-    rows
-        All rows of the problem, exactly (:mod:`fluxnet.solving.rational_rows`).
+        Those of an irreducible set.
 
     Returns
     -------
@@ -76,11 +76,12 @@ def find_contradiction(
     --------
     >>> from fluxnet.solving.conflict import find_conflict
     >>> from fluxnet.solving.problem import Row, RowKind
-    >>> from fluxnet.solving.rational_rows import problem_rows
+    >>> from fluxnet.solving.proof import exact_programme
     >>> labels = (Row(RowKind.LIMIT, "limit a <= 1"), Row(RowKind.LIMIT, "limit 2 a >= 3"))
     >>> problem = Problem(("a",), labels, np.array([[1.0], [2.0]]),
     ...     np.array([-np.inf, 3.0]), np.array([1.0, np.inf]), np.zeros(1), np.full(1, np.inf))
-    >>> found = find_contradiction(problem, find_conflict(problem).members, problem_rows(problem))
+    >>> members = find_conflict(problem).members
+    >>> found = find_contradiction(problem, exact_programme(problem), members)
     >>> [float(w.factor / found.gap) for w in found.weights]
     [2.0, -1.0]
     """
@@ -88,8 +89,8 @@ def find_contradiction(
     held = {m.column for m in members if m.column is not None}
     columns: dict[int, dict[int, Fraction]] = {}
     for k, (_, i) in enumerate(places):
-        for j, value in rows[i].items():
-            columns.setdefault(j, {})[k] = value
+        for j, value in exact.rows[i].items():
+            columns.setdefault(j, {})[k] = to_fraction(value)
     space = null_space([columns[j] for j in columns if j not in held], len(places))
     if space.dimension == 0:
         return None
@@ -98,10 +99,19 @@ def find_contradiction(
     else:
         factors = point_near(space, _rough(problem, members, [i for _, i in places]))
     for sign in (1, -1):
-        found = _weighed(problem, members, places, [sign * f for f in factors], rows)
-        if found is not None:
+        found = _weighed(exact, members, places, [sign * f for f in factors])
+        if found is not None and _is_proof(exact, found):
             return found
     return None
+
+
+def _is_proof(exact: ExactProgramme, found: Contradiction) -> bool:
+    """Whether the multipliers of the rows exclude all fluxes, by the check of every proof."""
+    weights = [Fraction(0)] * len(exact.rows)
+    for weight in found.weights:
+        if weight.row is not None:
+            weights[weight.row] = -weight.factor
+    return excludes(exact, weights)
 
 
 def _rough(problem: Problem, members: Sequence[Member], places: list[int]) -> list[float]:
@@ -122,11 +132,10 @@ def _rough(problem: Problem, members: Sequence[Member], places: list[int]) -> li
 
 
 def _weighed(
-    problem: Problem,
+    exact: ExactProgramme,
     members: Sequence[Member],
     places: list[tuple[Member, int]],
     factors: list[Fraction],
-    rows: Sequence[SparseRow],
 ) -> Contradiction | None:
     """The contradiction of these multipliers of the rows, where they make one."""
     weights: list[Weight] = []
@@ -134,19 +143,25 @@ def _weighed(
     for (member, i), factor in zip(places, factors, strict=True):
         if not factor:
             continue
-        for j, value in rows[i].items():
-            pull[j] = pull.get(j, Fraction(0)) + factor * value
-        end = float((problem.row_high if factor > 0 else problem.row_low)[i])
-        if not np.isfinite(end):
+        for j, value in exact.rows[i].items():
+            pull[j] = pull.get(j, Fraction(0)) + factor * to_fraction(value)
+        end = _end(exact, exact.columns + i, factor)
+        if end is None:
             return None
-        weights.append(Weight(member, i, None, factor, as_written(end)))
+        weights.append(Weight(member, i, None, factor, end))
     owners = {m.column: m for m in members if m.column is not None}
     for j, value in pull.items():
         if not value:
             continue
-        end = float((problem.column_high if value < 0 else problem.column_low)[j])
-        if j not in owners or not np.isfinite(end):
+        end = _end(exact, j, -value)
+        if j not in owners or end is None:
             return None
-        weights.append(Weight(owners[j], None, j, -value, as_written(end)))
+        weights.append(Weight(owners[j], None, j, -value, end))
     total = sum((w.worth for w in weights), Fraction(0))
     return Contradiction(tuple(weights), -total) if total < 0 else None
+
+
+def _end(exact: ExactProgramme, place: int, factor: Fraction) -> Fraction | None:
+    """The bound that counts for a factor, of a flux or (behind them) a row."""
+    end = (exact.high if factor > 0 else exact.low)[place]
+    return None if end is None else to_fraction(end)

@@ -10,9 +10,9 @@ from fluxnet.ground.record import record
 from fluxnet.network.model import CargoKind, Network, Quantity, QuantityKind, Role, Species
 from fluxnet.solving.build import Built
 from fluxnet.solving.farkas import Contradiction
+from fluxnet.solving.forms import as_fraction
 from fluxnet.solving.problem import Problem, Row
 from fluxnet.solving.quantities import default_direction, units_per_mole
-from fluxnet.solving.rational_rows import as_written
 from fluxnet.studies.units import rate_unit
 
 __all__ = ["Coin", "choose_coin", "species_prices"]
@@ -125,7 +125,7 @@ def _crossing_prices(built: Built, contradiction: Contradiction) -> dict[str, Fr
                 continue
             way = quantity.direction or default_direction(species.role)
             moles = row is not None and row.ratio is not None
-            unit = 1 if moles else as_written(units_per_mole(species, built.basis))
+            unit = 1 if moles else as_fraction(units_per_mole(species, built.basis))
             gain = -way.sign * unit * part * weight.factor
             found[species.name] = found.get(species.name, Fraction(0)) + gain
     roles = {s.name: s.role is not Role.SUBSTRATE for s in network.boundary}
@@ -140,7 +140,7 @@ def _rates_of(row: Row | None) -> list[tuple[Quantity, Fraction]]:
     above, below = quantity.numerator, quantity.denominator
     parts = [(quantity, Fraction(1))]
     if above is not None and below is not None and row.ratio is not None:
-        parts = [(above, Fraction(1)), (below, -as_written(row.ratio))]
+        parts = [(above, Fraction(1)), (below, -as_fraction(row.ratio))]
     return [(q, share) for q, share in parts if q.kind is QuantityKind.RATE]
 
 

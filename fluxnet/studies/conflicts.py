@@ -8,7 +8,7 @@ from fluxnet.solving.build import Built
 from fluxnet.solving.conflict import Conflict, find_conflicts, without_members
 from fluxnet.solving.farkas import find_contradiction
 from fluxnet.solving.problem import Problem
-from fluxnet.solving.rational_rows import rational_rows
+from fluxnet.solving.proof import exact_programme, exact_sums
 from fluxnet.studies.bill import Bill
 from fluxnet.studies.bill_conflict import BillPrice, make_bill, price_species
 from fluxnet.studies.bill_unit import choose_coin
@@ -36,7 +36,9 @@ class ToldConflict:
     alternatives: tuple[Alternative, ...]
 
 
-def explain_conflicts(built: Built, problem: Problem, unit: str) -> tuple[ToldConflict, ...]:
+def explain_conflicts(
+    built: Built, problem: Problem, unit: str, within: float | None = None
+) -> tuple[ToldConflict, ...]:
     """The conflicts of a problem without a solution, at most :data:`MOST_CONFLICTS`.
 
     Parameters
@@ -45,6 +47,8 @@ def explain_conflicts(built: Built, problem: Problem, unit: str) -> tuple[ToldCo
         Where the problem comes from: its rows are the same, its bounds may differ.
     unit
         That of the rates.
+    within
+        The number of sds that measured values are held within.
 
     Returns
     -------
@@ -54,10 +58,11 @@ def explain_conflicts(built: Built, problem: Problem, unit: str) -> tuple[ToldCo
     conflicts = find_conflicts(problem, most=MOST_CONFLICTS, unit=unit)
     if not conflicts:
         return ()
-    rows = rational_rows(built)
+    rows, _ = exact_sums(built, ())
+    exact = exact_programme(problem, rows, within=within)
     told: list[ToldConflict] = []
     for conflict in conflicts:
-        proof = find_contradiction(problem, conflict.members, rows)
+        proof = find_contradiction(problem, exact, conflict.members)
         others = [m for other in conflicts if other is not conflict for m in other.given]
         ways = find_alternatives(without_members(problem, others), conflict.given)
         if proof is None:

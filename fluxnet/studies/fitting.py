@@ -87,7 +87,7 @@ def fit_run(network: Network, run: Run | None) -> FluxSolution:
         from fluxnet.studies.conflicts import explain_conflicts
 
         held = build_problem(network, run, within=_WITHIN)
-        conflicts = explain_conflicts(held, held.problem, frame.unit)
+        conflicts = explain_conflicts(held, held.problem, frame.unit, _WITHIN)
         if conflicts:
             change = least_change(held.problem)
             solution = replace(

@@ -94,7 +94,7 @@ def optimise(
     if best.outcome is not Outcome.OPTIMAL:
         from fluxnet.studies.conflicts import explain_conflicts
 
-        conflicts = explain_conflicts(built, problem, frame.unit)
+        conflicts = explain_conflicts(built, problem, frame.unit, within)
         change = least_change(problem)
         return replace(
             frame,
