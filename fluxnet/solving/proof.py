@@ -203,9 +203,9 @@ def _row_bounds(
     if within is None or row.value is None or not row.sd or row.ratio is not None:
         return _bound(low), _bound(high)
     value, room = as_fraction(row.value), as_fraction(within) * as_fraction(row.sd)
-    ends = (value - room, value + room)
-    same = [
-        isfinite(bound) and isclose(bound, end, rel_tol=1e-12, abs_tol=1e-12 * abs(row.value))
-        for bound, end in zip((low, high), ends, strict=True)
-    ]
-    return ends if all(same) else (_bound(low), _bound(high))
+    size = 1e-12 * abs(row.value)
+    lower, upper = (
+        end if isclose(bound, end, rel_tol=1e-12, abs_tol=size) else _bound(bound)
+        for bound, end in ((low, value - room), (high, value + room))
+    )
+    return lower, upper

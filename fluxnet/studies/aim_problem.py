@@ -49,21 +49,26 @@ def open_carriers(built: Built, aim: Aim) -> Problem:
         for j, reaction in enumerate(built.network.reactions):
             only = not reaction.right and [t.species for t in reaction.left] == [name]
             if only:
-                column_high[j] = _least_of(problem, j)
+                place, least = _least_of(problem, j)
+                # Where a row says so, its own bound keeps it: that bound has the price.
+                if place is None:
+                    column_high[j] = least
+                else:
+                    high[place] = least
     return replace(problem, row_low=low, row_high=high, column_high=column_high)
 
 
-def _least_of(problem: Problem, j: int) -> float:
-    """The lower limit or measured value of one flux, else 0."""
-    least = max(0.0, float(problem.column_low[j]))
+def _least_of(problem: Problem, j: int) -> tuple[int | None, float]:
+    """The lower limit or measured value of one flux with its row, else what its arrow says."""
+    place, least = None, max(0.0, float(problem.column_low[j]))
     for i, row in enumerate(problem.rows):
         if row.quantity is None or row.quantity.kind is not QuantityKind.FLUX:
             continue
         if row.quantity.name == problem.columns[j]:
             held = row.value if row.value is not None else float(problem.row_low[i])
-            if np.isfinite(held):
-                least = max(least, held)
-    return least
+            if np.isfinite(held) and held > least:
+                place, least = i, held
+    return place, least
 
 
 def hold_optimum(

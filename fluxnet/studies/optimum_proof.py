@@ -14,6 +14,7 @@ from fluxnet.solving.linear import LinearSolution, Outcome, Programme
 from fluxnet.solving.prices import Price, find_prices
 from fluxnet.solving.problem import Problem, RowKind
 from fluxnet.solving.proof import Proven, exact_programme, exact_sums, prove_outcome
+from fluxnet.solving.words import quantity_words
 from fluxnet.studies.aims import Aim, Sense
 from fluxnet.studies.settling import Array
 from fluxnet.studies.solution import BindingLimit, SpeciesPrice
@@ -130,7 +131,10 @@ def row_words(problem: Problem, i: int, value: float, within: float) -> str:
     row = problem.rows[i]
     if not row.sd or row.value is None or row.ratio is not None:
         return row.name
+    name = row.name if row.quantity is None else quantity_words(row.quantity)
+    if problem.row_low[i] == problem.row_high[i]:
+        return f"{name} = {value:.4g} (as measured)"
     at_low = abs(value - problem.row_low[i]) < abs(value - problem.row_high[i])
     sds = f"{'-' if at_low else '+'} {within:g} sd"
     bound = f"{'>=' if at_low else '<='} {value:.4g}"
-    return f"{row.name} {bound} (measured {row.value:.4g} {sds})"
+    return f"{name} {bound} (measured {row.value:.4g} {sds})"
