@@ -30,7 +30,8 @@ class Column:
     ``sd_of`` names the column whose standard deviation this one holds: on screen the two are
     shown together, rounded to what the error allows; an sd of 0 as ``exact``, unless
     ``says_exact`` is False. Otherwise ``digits`` significant ones are shown, or ``decimals``
-    behind the point. Text longer than ``wrap`` letters is broken.
+    behind the point, or as many in every cell as suit them all where they are ``even``. Text
+    may be broken down to ``wrap`` letters where the table is too wide.
     """
 
     title: str
@@ -40,6 +41,7 @@ class Column:
     sd_of: str | None = None
     digits: int = 4
     decimals: int | None = None
+    even: bool = False
     wrap: int | None = None
     says_exact: bool = True
 

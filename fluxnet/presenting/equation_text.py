@@ -2,10 +2,15 @@
 
 from __future__ import annotations
 
+import re
+
 from fluxnet.presenting.numbers import format_number
+from fluxnet.presenting.table_lines import GLUE
 from fluxnet.studies.equations import NetEquation
 
 __all__ = ["equation_lines", "equation_text"]
+
+_SIGN = re.compile(f"{GLUE}(\\+|->){GLUE}")
 
 
 def equation_text(equation: NetEquation, scale: float = 1.0, digits: int = 3) -> str:
@@ -32,12 +37,17 @@ def equation_lines(equation: NetEquation, unit: str) -> tuple[tuple[str, str], .
     """The equation per mol of substrate and, below it, in the unit of the rates."""
     name = equation.compartment or "whole cell"
     amount = equation.per_amount
-    lines = [(name, equation_text(equation, 1 / amount if amount else 1.0))]
+    lines = [(name, _glued(equation_text(equation, 1 / amount if amount else 1.0)))]
     if amount and format_number(amount, 3) != "1":
-        lines.append((f"  [{unit}]", equation_text(equation)))
+        lines.append((f"  {unit}", _glued(equation_text(equation))))
     if equation.base:
         text = f"{format_number(equation.base, 3)} {unit}"
         if amount and equation.per is not None:
             text += f", {format_number(equation.base / amount, 3)} mol per mol {equation.per}"
-        lines.append(("  base for the pH", text))
+        lines.append(("  base needed", text))
     return tuple(lines)
+
+
+def _glued(text: str) -> str:
+    """An equation that can only be broken before a + or the arrow."""
+    return _SIGN.sub(rf" \1{GLUE}", text.replace(" ", GLUE))

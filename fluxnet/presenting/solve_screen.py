@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from math import ceil, log10
+
 from fluxnet.ground.table import Align, Column, Table
 from fluxnet.presenting.conflict_blocks import conflict_blocks, unbounded_blocks
 from fluxnet.presenting.numbers import format_number, format_p
@@ -81,13 +83,19 @@ def _run_blocks(run: FluxSolution) -> tuple[Block, ...]:
         blocks += solve_tables(run)
         blocks.append(
             Sentence(
-                f"Every balance holds to {run.residual:.1g} of its terms (recomputed).", Mood.QUIET
+                f"Every balance holds to {_as_good_as(run.residual)} of its terms (recomputed).",
+                Mood.QUIET,
             )
         )
     if not run.status.is_sound and run.fluxes:
         # The verdict has scrolled away by now; nobody should read the tables without it.
         blocks.append(Sentence(f"{heading[0].upper()}{heading[1:]}; not to be trusted.", mood))
     return tuple(blocks)
+
+
+def _as_good_as(residual: float) -> str:
+    """The power of ten below which a residual lies; what is smaller than 1e-12 is rounding."""
+    return f"1e{ceil(log10(max(residual, 1e-12)))}"
 
 
 def _assumptions(run: FluxSolution) -> list[Block]:

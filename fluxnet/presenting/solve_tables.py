@@ -17,20 +17,22 @@ _MOST_RELATIONS = 6
 
 
 def solve_tables(run: FluxSolution) -> list[Block]:
-    """All tables of a run whose fluxes were found."""
-    blocks: list[Block] = [_rates(run), _fluxes(run)]
-    if run.relations:
-        blocks.append(_relations(run))
-    if run.moved:
-        blocks.append(_moved(run))
-    if run.ledger:
-        blocks += _ledger(run)
-    if run.equations:
-        blocks += _equations(run)
-    if run.yields:
-        blocks.append(_yields(run))
+    """All tables of a run whose fluxes were found, what is asked for first before the rest."""
+    blocks: list[Block] = []
     if run.limits:
         blocks.append(_limits(run))
+    blocks.append(_rates(run))
+    if run.yields:
+        blocks.append(_yields(run))
+    if run.ledger:
+        blocks += _ledger(run)
+    blocks.append(_fluxes(run))
+    if run.relations:
+        blocks.append(_relations(run))
+    if any(equation.terms for equation in run.equations):
+        blocks += _equations(run)
+    if run.moved:
+        blocks.append(_moved(run))
     return blocks
 
 
@@ -101,7 +103,7 @@ def _fluxes(run: FluxSolution) -> Table:
     columns = (
         Column("reaction", "reaction"),
         Column("compartment", "compartment"),
-        Column("flux", "value", align=Align.RIGHT),
+        Column("flux", "value", align=Align.RIGHT, even=True),
         Column("", "sd"),
         Column("", "", sd_of="value"),
         Column(f"range {_at(run)}" if at_best else "95 % range", "", align=Align.RIGHT),
@@ -197,9 +199,9 @@ def _ledger(run: FluxSolution) -> list[Block]:
     columns = (
         Column("carrier", ""),
         Column("compartment", ""),
-        Column("made", "", align=Align.RIGHT),
-        Column("spent", "", align=Align.RIGHT),
-        Column("net", "net", align=Align.RIGHT),
+        Column("made", "", align=Align.RIGHT, even=True),
+        Column("spent", "", align=Align.RIGHT, even=True),
+        Column("net", "net", align=Align.RIGHT, even=True),
         Column("", "", sd_of="net"),
         Column("range of net", "", align=Align.RIGHT),
     )
@@ -233,18 +235,16 @@ def _ledger(run: FluxSolution) -> list[Block]:
 
 
 def _equations(run: FluxSolution) -> list[Block]:
-    """The equations as text, and their terms as data."""
+    """The equations as text, that of the whole cell first, and their terms as data."""
     per = next((e.per for e in run.equations if e.per), None)
     title = f"Net equations, per mol {per} and in {run.unit}" if per else "Net equations"
     lines = tuple(
         line
-        for equation in run.equations
+        for equation in sorted(run.equations, key=lambda e: e.compartment is not None)
         if equation.terms
         for line in equation_lines(equation, run.unit)
     )
-    shown = Table(
-        "", title, (Column("compartment", ""), Column("equation", "", wrap=56)), lines
-    )
+    shown = Table("", title, (Column("compartment", ""), Column("equation", "", wrap=40)), lines)
     keys = ("compartment", "species", "coefficient", "per_mol_substrate", "implied", "unit")
     rows: list[tuple[Cell, ...]] = []
     for equation in run.equations:
@@ -264,9 +264,9 @@ def _yields(run: FluxSolution) -> Table:
     columns = (
         Column("product", "product"),
         Column("on", "substrate"),
-        Column("mol/mol", "mol_per_mol", align=Align.RIGHT),
-        Column("g/g", "g_per_g", align=Align.RIGHT),
-        Column("C-mol/C-mol", "cmol_per_cmol", align=Align.RIGHT),
+        Column("mol/mol", "mol_per_mol", align=Align.RIGHT, even=True),
+        Column("g/g", "g_per_g", align=Align.RIGHT, even=True),
+        Column("C-mol/C-mol", "cmol_per_cmol", align=Align.RIGHT, even=True),
     )
     rows = tuple((y.product, y.substrate, y.per_mole, y.per_mass, y.per_carbon) for y in run.yields)
     notes = ("g of biomass is dry weight, ash included",) if run.has_biomass else ()

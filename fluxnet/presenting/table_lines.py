@@ -1,13 +1,19 @@
-"""Tables that fit as they are: lines of text, columns beside columns."""
+"""Tables as lines of text: columns beside columns, long texts broken between words."""
 
 from __future__ import annotations
 
 from collections.abc import Sequence
 from unicodedata import combining, east_asian_width
 
-__all__ = ["cell_width", "lay_out"]
+from fluxnet.presenting.points import align_points
+
+__all__ = ["GLUE", "cell_width", "lay_out"]
+
+GLUE = "\N{NO-BREAK SPACE}"
+"""A space at which no text is broken; shown as a plain one."""
 
 _BETWEEN = "  "
+_LEAST = 12
 
 
 def cell_width(text: str) -> int:
@@ -23,42 +29,111 @@ def lay_out(
     titles: Sequence[str],
     rows: Sequence[Sequence[str]],
     rights: Sequence[bool],
-    limits: Sequence[int | None],
+    breaks: Sequence[int | None],
     width: int,
+    text_width: int | None = None,
     rule: str = "─",
-) -> tuple[str, str, tuple[str, ...]] | None:
-    """The title line, the rule below it and the lines of a table; None where it is too wide.
+) -> tuple[str, str, tuple[str, ...]]:
+    """The title line, the rule below it and the lines of a table.
+
+    Numbers are aligned at their points and never broken. A table that is too wide all the same
+    has its widest texts broken.
 
     Parameters
     ----------
     rights
-        Whether each column's text stands at its right side.
-    limits
-        The width beyond which each column's text is to be broken, or None.
-    width
-        Of the whole table at most.
+        Whether each column holds numbers, at its right side.
+    breaks
+        The width down to which the text of a column is broken so that the table is no wider
+        than ``text_width``, or None.
+    width, text_width
+        Of the whole table at most, and of one with texts to be broken.
 
     Examples
     --------
-    >>> lay_out(["rate", "of"], [["1.5", "CO2"]], [True, False], [None, None], 80, "-")
+    >>> lay_out(["rate", "of"], [["1.5", "CO2"]], [True, False], [None, None], 80, rule="-")
     ('rate  of', '---------', (' 1.5  CO2',))
     """
-    cells = [titles, *rows]
-    sizes = [[cell_width(cell) for cell in row] for row in cells]
-    widths = [max(column) for column in zip(*sizes, strict=True)]
-    total = sum(widths) + len(_BETWEEN) * (len(widths) - 1)
-    if (
-        not rows
-        or total > width
-        or any(limit is not None and limit < own for limit, own in zip(limits, widths, strict=True))
-        or any("\n" in cell for row in cells for cell in row)
-    ):
-        return None
-    lines = [
-        _BETWEEN.join(
-            " " * (own - size) + cell if right else cell + " " * (own - size)
-            for cell, size, own, right in zip(row, row_sizes, widths, rights, strict=True)
-        ).rstrip()
-        for row, row_sizes in zip(cells, sizes, strict=True)
+    columns = [list(column) for column in zip(*rows, strict=True)] or [[] for _ in titles]
+    columns = [
+        align_points(column) if right else column
+        for column, right in zip(columns, rights, strict=True)
     ]
-    return lines[0], rule * total, tuple(lines[1:])
+    widths = [
+        max(cell_width(line) for cell in (title, *column) for line in (cell.split("\n") or [""]))
+        for title, column in zip(titles, columns, strict=True)
+    ]
+    widths = _fitted(titles, widths, rights, breaks, width, text_width or width)
+    total = sum(widths) + len(_BETWEEN) * (len(widths) - 1)
+    head, *more = _lines(titles, widths, rights)
+    lines = [
+        line for row in zip(*columns, strict=True) for line in _lines(row, widths, rights)
+    ]
+    return "\n".join([head, *more]), rule * total, tuple(lines)
+
+
+def _fitted(
+    titles: Sequence[str],
+    widths: list[int],
+    rights: Sequence[bool],
+    breaks: Sequence[int | None],
+    width: int,
+    text_width: int,
+) -> list[int]:
+    """The widths of columns whose texts are broken where the table is too wide."""
+    total = sum(widths) + len(_BETWEEN) * (len(widths) - 1)
+    for k, least in enumerate(breaks):
+        if least is not None and total > text_width:
+            broken = max(widths[k] - (total - text_width), min(least, widths[k]))
+            total -= widths[k] - broken
+            widths[k] = broken
+    texts = [k for k, right in enumerate(rights) if not right]
+    while total > width and texts:
+        widest = max(texts, key=lambda k: widths[k])
+        if widths[widest] <= _LEAST:
+            break
+        widths[widest] -= 1
+        total -= 1
+    return widths
+
+
+def _lines(cells: Sequence[str], widths: Sequence[int], rights: Sequence[bool]) -> list[str]:
+    """One row as the lines that it takes."""
+    parts = [_folded(cell, own) for cell, own in zip(cells, widths, strict=True)]
+    lines: list[str] = []
+    for place in range(max(map(len, parts), default=0)):
+        texts = [part[place] if place < len(part) else "" for part in parts]
+        line = _BETWEEN.join(
+            _padded(text, own, right=right)
+            for text, own, right in zip(texts, widths, rights, strict=True)
+        )
+        lines.append(line.rstrip().replace(GLUE, " "))
+    return lines
+
+
+def _padded(text: str, width: int, *, right: bool) -> str:
+    """A text with the spaces that fill its column."""
+    spaces = " " * (width - cell_width(text))
+    return spaces + text if right else text + spaces
+
+
+def _folded(text: str, width: int) -> list[str]:
+    """A text broken at its spaces; within a word only where that is too long by itself."""
+    if "\n" not in text and cell_width(text) <= width:
+        return [text]
+    lines: list[str] = []
+    for part in text.split("\n"):
+        line = ""
+        for word in part.split(" "):
+            longer = f"{line} {word}" if line else word
+            if cell_width(longer) <= width:
+                line = longer
+                continue
+            lines += [line] if line else []
+            line = word
+            while cell_width(line) > width:
+                fits = sum(cell_width(line[: n + 1]) <= width for n in range(len(line)))
+                lines.append(line[: max(fits, 1)])
+                line = line[max(fits, 1) :]
+        lines.append(line)
+    return lines

@@ -4,7 +4,9 @@ from __future__ import annotations
 
 import os
 import sys
+from dataclasses import replace
 from io import StringIO
+from math import isfinite
 from typing import TYPE_CHECKING, NoReturn, TextIO
 
 from fluxnet.ground.diagnostic import Diagnostic
@@ -13,6 +15,7 @@ from fluxnet.ground.record import record
 from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.presenting.excerpt import excerpt_lines, place_of, seen
 from fluxnet.presenting.numbers import format_measured, format_number
+from fluxnet.presenting.points import common_decimals
 from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence
 from fluxnet.presenting.table_lines import lay_out
 
@@ -36,9 +39,6 @@ _ASCII = str.maketrans(
     {"±": "+-", "→": "->", "⇌": "<->", "·": ".", "‾": "^", "─": "-", "━": "=", "…": "...",
      "–": "-", "≤": "<=", "≥": ">=", "µ": "u", "γ": "gamma", "×": "x"}
 )  # fmt: skip
-
-# A rule under the header and nothing else, in rich's notation of eight lines.
-_ASCII_RULE = "\n".join(["    ", "    ", " -- ", "    ", "    ", "    ", "    ", "    ", ""])
 
 
 @record
@@ -134,12 +134,11 @@ class Terminal:
     def _print(self, console: Console, text: str, style: str, hang: int = 0) -> None:
         from textwrap import wrap
 
-        # In a pipe sentences are broken for 80 columns; only tables may be wider.
-        width = console.width if self.width is None else min(self.width, 80)
         for line in text.split("\n"):
             parts = wrap(
-                self._plain(line), width, break_on_hyphens=False, subsequent_indent=" " * hang
-            )
+                self._plain(line), self._text_width(console), break_on_hyphens=False,
+                subsequent_indent=" " * hang,
+            )  # fmt: skip
             for part in parts or [""]:
                 self._print_whole(console, part, style)
 
@@ -152,6 +151,10 @@ class Terminal:
         else:
             print(self._plain(line), file=self.stream)
 
+    def _text_width(self, console: Console) -> int:
+        """How wide texts are: in a pipe 80 columns, where only tables may be wider."""
+        return console.width if self.width is None else min(self.width, 80)
+
     def _plain(self, text: str) -> str:
         return seen(text).translate(_ASCII) if self.ascii_only else seen(text)
 
@@ -162,56 +165,19 @@ class Terminal:
         columns, cells = table_cells(table)
         titles = [self._plain(f"{c.title} [{c.unit}]" if c.unit else c.title) for c in columns]
         rows = [[self._plain(cell) for cell in row] for row in cells]
-        laid = lay_out(
+        head, rule, lines = lay_out(
             titles,
             rows,
             [column.align is Align.RIGHT for column in columns],
             [column.wrap for column in columns],
             console.width,
+            self._text_width(console),
             self._plain("─"),
         )
-        if laid is None:
-            self._show_grid(console, columns, titles, rows)
-        else:
-            head, rule, lines = laid
-            self._print_whole(console, head, "bold")
-            print(rule, *lines, sep="\n", file=self.stream)
+        self._print_whole(console, head, "bold")
+        print(rule, *lines, sep="\n", file=self.stream)
         for note in table.notes:
             self._print(console, "  " + note, "dim")
-
-    def _show_grid(
-        self,
-        console: Console,
-        columns: tuple[Column, ...],
-        titles: list[str],
-        rows: list[list[str]],
-    ) -> None:
-        """A table with texts that must be broken; for others this takes ten times as long."""
-        from rich import box
-        from rich.table import Table as Grid
-        from rich.text import Text
-
-        grid = Grid(
-            box=box.Box(_ASCII_RULE, ascii=True) if self.ascii_only else box.SIMPLE_HEAD,
-            pad_edge=False,
-            show_edge=False,
-            collapse_padding=True,
-            header_style="bold" if self.colour else "",
-        )
-        for column, title in zip(columns, titles, strict=True):
-            grid.add_column(
-                title,
-                justify="right" if column.align is Align.RIGHT else "left",
-                overflow="fold",
-                max_width=column.wrap,
-            )
-        for row in rows:
-            grid.add_row(*(Text(cell) for cell in row))
-        with console.capture() as capture:
-            console.print(grid)
-        # rich fills every line to the table's width; a pipe has no use for that.
-        lines = (line.rstrip() for line in capture.get().split("\n"))
-        print("\n".join(lines), file=self.stream, end="")
 
 
 def rich_text(screen: tuple[Block, ...], width: int) -> Text:
@@ -247,16 +213,33 @@ def table_cells(table: Table) -> tuple[tuple[Column, ...], tuple[tuple[str, ...]
         and c.title
         and (not table.rows or any(row[k] not in (None, "") for row in table.rows))
     ]
-    rows: list[tuple[str, ...]] = []
-    for row in table.rows:
-        cells: list[str] = []
-        for k, column in shown:
-            sd = row[partner[column.key]] if column.key in partner else None
-            if sd == 0 and not table.columns[partner[column.key]].says_exact:
-                sd = None
-            cells.append(_cell(row[k], sd, column))
-        rows.append(tuple(cells))
-    return tuple(c for _, c in shown), tuple(rows)
+    cells = [
+        _column_cells(
+            column,
+            [row[k] for row in table.rows],
+            [row[partner[column.key]] for row in table.rows] if column.key in partner else None,
+            says_exact=column.key not in partner or table.columns[partner[column.key]].says_exact,
+        )
+        for k, column in shown
+    ]
+    rows = tuple(zip(*cells, strict=True)) if cells else ((),) * len(table.rows)
+    return tuple(c for _, c in shown), rows
+
+
+def _column_cells(
+    column: Column, values: list[Cell], sds: list[Cell] | None, *, says_exact: bool
+) -> list[str]:
+    """The cells of one column as shown."""
+    known = [None] * len(values) if sds is None else sds
+    given = [None if sd == 0 and not says_exact else sd for sd in known]
+    if column.even:
+        alone = [
+            float(value)
+            for value, sd in zip(values, given, strict=True)
+            if sd is None and isinstance(value, (int, float)) and isfinite(value)
+        ]
+        column = replace(column, decimals=common_decimals(alone, column.digits))
+    return [_cell(value, sd, column) for value, sd in zip(values, given, strict=True)]
 
 
 def _cell(value: Cell, sd: Cell, column: Column) -> str:
@@ -268,7 +251,7 @@ def _cell(value: Cell, sd: Cell, column: Column) -> str:
         return value
     if isinstance(sd, (int, float)):
         return format_measured(float(value), float(sd))
-    if column.decimals is not None:
+    if column.decimals is not None and isfinite(value) and (value or not column.even):
         return f"{round(value, column.decimals) + 0.0:.{column.decimals}f}"
     return format_number(float(value), column.digits)
 
