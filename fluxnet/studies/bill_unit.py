@@ -55,7 +55,7 @@ def choose_coin(built: Built, contradiction: Contradiction, unit: str) -> Coin:
     found = _by_carrier(network, prices, unit)
     if found is not None:
         return found
-    if not prices:
+    if not prices and _is_of_one(problem, contradiction):
         return _by_quantity(problem, contradiction, unit)
     crossing = _crossing_prices(built, contradiction)
     found = _by_content(network, {**prices, **crossing}, unit)
@@ -142,6 +142,12 @@ def _rates_of(row: Row | None) -> list[tuple[Quantity, Fraction]]:
     if above is not None and below is not None and row.ratio is not None:
         parts = [(above, Fraction(1)), (below, -as_fraction(row.ratio))]
     return [(q, share) for q, share in parts if q.kind is QuantityKind.RATE]
+
+
+def _is_of_one(problem: Problem, contradiction: Contradiction) -> bool:
+    """Whether all bounds are those of one quantity."""
+    labels = [problem.rows[w.row].quantity for w in contradiction.weights if w.row is not None]
+    return len({(q.kind, q.name) for q in labels if q is not None}) <= 1
 
 
 def _by_quantity(problem: Problem, contradiction: Contradiction, unit: str) -> Coin:
