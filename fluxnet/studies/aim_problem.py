@@ -37,7 +37,8 @@ def open_carriers(built: Built, aim: Aim) -> Problem:
     """The problem in which an aimed-at carrier may leave, for this question only.
 
     Its balance becomes "made at least as much as spent", and reactions that do nothing but
-    spend it stand at their least: else they would take the surplus.
+    spend it stand at their lower limit or measured value: else they would take the surplus, or
+    leave some sds of what they are known to need.
     """
     problem = built.problem
     low, high = problem.row_low.copy(), problem.row_high.copy()
@@ -54,7 +55,7 @@ def open_carriers(built: Built, aim: Aim) -> Problem:
                 if place is None:
                     column_high[j] = least
                 else:
-                    high[place] = least
+                    low[place] = high[place] = least
     return replace(problem, row_low=low, row_high=high, column_high=column_high)
 
 

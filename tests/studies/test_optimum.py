@@ -80,6 +80,31 @@ def test_the_surplus_of_a_carrier_is_what_its_spenders_leave(network: Network) -
     assert flux(run, "upkeep") == (0.0, 0.0, 0.0)
 
 
+@pytest.mark.parametrize(
+    ("limit", "spent"),
+    [("upkeep = 4 ± 0.4", 4), ("upkeep >= 3", 3), ("upkeep between 2 and 6", 2)],
+)
+def test_a_carriers_spender_stands_at_its_limit_or_measured_value(limit: str, spent: float) -> None:
+    network = read_model_text(f"{TEXT}limit {limit}\n").network
+    assert network is not None
+    run = best(network, maximise="ATP")
+
+    assert run.optimum == pytest.approx(20 - spent)
+    assert flux(run, "upkeep") == pytest.approx((spent, spent, spent))
+    assert run.proof is not None
+    assert run.proof.verified
+
+
+def test_a_spender_that_is_measured_in_the_table_stands_there_too(network: Network) -> None:
+    table = read_rates_text(
+        "species,direction,rate,sd,unit\nupkeep,,5,1,mmol/g/h\n", network=network
+    ).table
+    assert table is not None
+    (run,) = solve_network(network, table, maximise="ATP").runs
+
+    assert run.optimum == pytest.approx(15)
+
+
 def test_an_aim_that_is_measured_is_told_without_its_own_row_as_well(network: Network) -> None:
     table = read_rates_text(
         "species,direction,rate,sd,unit\nethanol,out,8,0.5,mmol/g/h\n", network=network
