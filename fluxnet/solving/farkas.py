@@ -12,7 +12,7 @@ from fractions import Fraction
 import numpy as np
 
 from fluxnet.exact.programme import ExactProgramme, excludes, to_fraction
-from fluxnet.exact.sparse import null_space, point_near
+from fluxnet.exact.sparse import NullSpace, null_space, point_near
 from fluxnet.ground.record import record
 from fluxnet.solving.linear import Programme
 from fluxnet.solving.members import Member
@@ -87,22 +87,30 @@ def find_contradiction(
     """
     places = [(m, i) for m in members for i in m.rows]
     held = {m.column for m in members if m.column is not None}
-    columns: dict[int, dict[int, Fraction]] = {}
-    for k, (_, i) in enumerate(places):
-        for j, value in exact.rows[i].items():
-            columns.setdefault(j, {})[k] = to_fraction(value)
-    space = null_space([columns[j] for j in columns if j not in held], len(places))
-    if space.dimension == 0:
-        return None
-    if space.dimension == 1:
-        factors = space.point([Fraction(1)])
-    else:
-        factors = point_near(space, _rough(problem, members, [i for _, i in places]))
-    for sign in (1, -1):
+    space = _null_space(exact, places, held)
+    factors = space.point([Fraction(1)]) if space.dimension == 1 else ()
+    if space.dimension > 1:
+        # A member of several rows needs one of them: the solver tells which.
+        rough = _rough(problem, members, [i for _, i in places])
+        kept = [k for k, weight in enumerate(rough) if weight]
+        places = [places[k] for k in kept]
+        factors = point_near(_null_space(exact, places, held), [rough[k] for k in kept])
+    for sign in (1, -1) if factors else ():
         found = _weighed(exact, members, places, [sign * f for f in factors])
         if found is not None and _is_proof(exact, found):
             return found
     return None
+
+
+def _null_space(
+    exact: ExactProgramme, places: list[tuple[Member, int]], held: set[int]
+) -> NullSpace:
+    """The combinations of rows that leave nothing of any flux without a bound."""
+    columns: dict[int, dict[int, Fraction]] = {}
+    for k, (_, i) in enumerate(places):
+        for j, value in exact.rows[i].items():
+            columns.setdefault(j, {})[k] = to_fraction(value)
+    return null_space([columns[j] for j in columns if j not in held], len(places))
 
 
 def _is_proof(exact: ExactProgramme, found: Contradiction) -> bool:
