@@ -6,6 +6,12 @@ from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.network.model import QuantityKind
 from fluxnet.presenting.equation_text import equation_lines
 from fluxnet.presenting.numbers import format_range
+from fluxnet.presenting.optimum_tables import (
+    limits_table,
+    price_notes,
+    price_words,
+    prices_table,
+)
 from fluxnet.presenting.screen import Block
 from fluxnet.studies.ledger import LedgerLine
 from fluxnet.studies.solution import FluxKind, FluxSolution, RateEstimate, SolveStatus
@@ -20,7 +26,9 @@ def solve_tables(run: FluxSolution) -> list[Block]:
     """All tables of a run whose fluxes were found, what is asked for first before the rest."""
     blocks: list[Block] = []
     if run.limits:
-        blocks.append(_limits(run))
+        blocks.append(limits_table(run))
+    if run.prices:
+        blocks.append(prices_table(run))
     blocks.append(_rates(run))
     if run.yields:
         blocks.append(_yields(run))
@@ -204,6 +212,7 @@ def _ledger(run: FluxSolution) -> list[Block]:
         Column("net", "net", align=Align.RIGHT, even=True),
         Column("", "", sd_of="net"),
         Column("range of net", "", align=Align.RIGHT),
+        Column("one is worth" if run.prices else "", "", align=Align.RIGHT),
     )
     rows: list[tuple[Cell, ...]] = []
     by_carrier: dict[str, list[LedgerLine]] = {}
@@ -214,14 +223,17 @@ def _ledger(run: FluxSolution) -> list[Block]:
             sd = _shown_sd(line.net, line.sd or None, line.low or 0.0, line.high or 0.0)
             known = line.sd is not None or line.low == line.high
             span = "" if known else format_range(line.low, line.high)
-            name = carrier if place == 0 else ""
-            rows.append((name, line.compartment, line.made, line.spent, line.net, sd, span))
+            name, worth = (carrier, price_words(run, carrier)) if place == 0 else ("", "")
+            rows.append((name, line.compartment, line.made, line.spent, line.net, sd, span, worth))
         made, spent = (sum(getattr(line, side) for line in lines) for side in ("made", "spent"))
         balance = made - spent
         if abs(balance) <= 1e-6 * max(made, spent):
             balance = 0.0
-        rows.append(("", "together", made, spent, balance, None, ""))
-    note = "made and spent are sums inside a compartment; a carrier's nets add up to 0"
+        rows.append(("", "together", made, spent, balance, None, "", ""))
+    notes = (
+        "made and spent are sums inside a compartment; a carrier's nets add up to 0",
+        *price_notes(run, tuple(by_carrier)),
+    )
     title = _title(run, "Carrier ledger: who made and who spent")
     keys = ("carrier", "compartment", "made", "spent", "net", "sd", "low", "high", "unit")
     plain = tuple(
@@ -229,7 +241,7 @@ def _ledger(run: FluxSolution) -> list[Block]:
         for x in run.ledger
     )
     return [
-        Table("", title, columns, tuple(rows), (note,)),
+        Table("", title, columns, tuple(rows), notes),
         Table("ledger", title, tuple(Column("", key) for key in keys), plain),
     ]
 
@@ -272,13 +284,3 @@ def _yields(run: FluxSolution) -> Table:
     notes = ("g of biomass is dry weight, ash included",) if run.has_biomass else ()
     return Table("yields", "Yields", columns, rows, notes)
 
-
-def _limits(run: FluxSolution) -> Table:
-    columns = (
-        Column("what holds it back", "name", wrap=52),
-        Column("gain per unit", "worth", align=Align.RIGHT),
-        Column("", "value"),
-    )
-    rows = tuple((limit.name, limit.worth, limit.value) for limit in run.limits)
-    notes = ("gain: change of the aim per unit by which the bound is raised (from the solver)",)
-    return Table("limits", "What holds the aim back", columns, rows, notes)

@@ -13,6 +13,9 @@ from fluxnet.solving.problem import Problem
 
 __all__ = ["least_total_flux"]
 
+_TRACE = 1e-13
+"""What the solver's own sums leave of a flux that is zero, beside the largest flux."""
+
 
 def least_total_flux(problem: Problem) -> NDArray[np.float64]:
     """Fluxes with the smallest sum of absolute values.
@@ -61,6 +64,7 @@ def least_total_flux(problem: Problem) -> NDArray[np.float64]:
         raise MisuseError("no fluxes meet the bounds: there is no least total")
     fluxes = solution.fluxes[: len(low)].copy()
     fluxes[both] -= solution.fluxes[len(low) :]
+    fluxes[np.abs(fluxes) <= _TRACE * np.abs(fluxes).max(initial=0.0)] = 0.0
     if solution.outcome is not Outcome.OPTIMAL or worst_violation(problem, fluxes) > 1e-7:
         raise ArithmeticError("the least total flux could not be found")
     fluxes.setflags(write=False)

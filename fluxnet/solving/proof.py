@@ -178,18 +178,23 @@ _SAID: Mapping[Outcome, End] = {
     Outcome.INFEASIBLE: End.INFEASIBLE,
     Outcome.UNBOUNDED: End.UNBOUNDED,
 }
-_ENDS = {
+_PROVEN = {
+    End.OPTIMAL: "Proven in exact arithmetic",
+    End.INFEASIBLE: "That no fluxes meet everything is proven in exact arithmetic",
+    End.UNBOUNDED: "That there is no end to it is proven in exact arithmetic",
+}
+_OTHERWISE = {
     End.OPTIMAL: "there is an optimum",
-    End.INFEASIBLE: "no fluxes meet all bounds",
+    End.INFEASIBLE: "no fluxes meet everything",
     End.UNBOUNDED: "there is no end to it",
-    End.OPEN: "the steps that were allowed did not lead to a proof",
+    End.OPEN: "the steps allowed lead to no proof",
 }
 
 
 def _words(found: ExactSolution, verified: bool, gap: float) -> str:
     if verified:
-        return "Proven in exact arithmetic"
-    return f"Not proven: in exact arithmetic {_ENDS[found.end]} (off by {gap:.2g})"
+        return _PROVEN[found.end]
+    return f"Not proven: in exact arithmetic {_OTHERWISE[found.end]} (off by {gap:.2g})"
 
 
 def _bound(value: float) -> Fraction | None:
