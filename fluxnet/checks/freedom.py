@@ -15,7 +15,7 @@ from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Role, Species
 
-__all__ = ["Freedom", "Known", "known_by_limits", "measure_freedom"]
+__all__ = ["Freedom", "Known", "in_order_of_practice", "known_by_limits", "measure_freedom"]
 
 
 @record
@@ -106,7 +106,7 @@ def measure_freedom(
     rest = null_space(forms, space.dimension)
     running = [j for j, row in enumerate(space.rows) if row]
     open_ = {j for j in running if rest.image(space.rows[j])}
-    candidates = [Known(q) for q in _in_order_of_practice(network)]
+    candidates = [Known(q) for q in in_order_of_practice(network)]
     candidate_forms = [_form(network, stoich, rows, space, k) for k in candidates]
     needed = _chosen(fixed_forms, candidate_forms, candidates)
     held = fixed + (given or tuple(Known(q) for q in needed if q.kind is not QuantityKind.FLUX))
@@ -156,7 +156,7 @@ def _offered(
     ]
     return [
         Known(q)
-        for q in _in_order_of_practice(network)
+        for q in in_order_of_practice(network)
         if q.kind is not QuantityKind.FLUX
         and (form := quantity_form(network, stoich, rows, q))
         and all(len(independent_forms([form, other])) == 2 for other in taken)
@@ -187,7 +187,7 @@ def _chosen(
     return tuple(names[i - len(held)].quantity for i in picked if i >= len(held))
 
 
-def _in_order_of_practice(network: Network) -> tuple[Quantity, ...]:
+def in_order_of_practice(network: Network) -> tuple[Quantity, ...]:
     """All quantities that could be measured, the usual ones first.
 
     Carbon substrates, growth, products, oxygen, CO2, whatever else crosses the boundary;
