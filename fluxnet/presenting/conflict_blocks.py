@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from fluxnet.ground.table import Align, Column, Table
-from fluxnet.network.model import QuantityKind
 from fluxnet.presenting.bill_table import NEEDS, SURPLUS, bill_tables
 from fluxnet.presenting.numbers import format_number
 from fluxnet.presenting.screen import Block, Mood, Sentence
@@ -152,12 +151,13 @@ def _alternatives(told: ToldConflict, number: str) -> list[Block]:
 def alternative_words(alternative: Alternative) -> str:
     """What one of them would have to be, instead of what."""
     a = alternative
-    bound = "at most" if a.is_ceiling else "at least"
+    needed = format_number(a.needed)
+    if not a.member.kind.is_measured:
+        return f"{a.member.name} {'lowered' if a.is_ceiling else 'raised'} to {needed}"
     sds = "" if a.in_sd is None else f" ({a.in_sd:+.1f} sd)"
-    name = str(a.quantity)
-    if a.quantity.kind is QuantityKind.FLUX:
-        name = name.removeprefix("flux ")
-    return f"{name} {bound} {format_number(a.needed)} instead of {format_number(a.stated)}{sds}"
+    name = str(a.quantity).removeprefix("flux ")
+    bound = "at most" if a.is_ceiling else "at least"
+    return f"{name} {bound} {needed} instead of {format_number(a.stated)}{sds}"
 
 
 def unbounded_blocks(run: FluxSolution) -> tuple[Block, ...]:

@@ -8,7 +8,7 @@ from fractions import Fraction
 from fluxnet.ground.record import record
 from fluxnet.solving.build import Built
 from fluxnet.solving.farkas import Contradiction, Weight
-from fluxnet.solving.problem import Problem, Row
+from fluxnet.solving.problem import Problem
 from fluxnet.solving.words import number_words
 from fluxnet.studies.bill import Bill, BillLine, BillSide
 from fluxnet.studies.bill_rounding import print_bill
@@ -90,7 +90,7 @@ def _line(weight: Weight, side: BillSide, problem: Problem, coin: Coin, unit: st
     quantity = row.quantity if row is not None else None
     return BillLine(
         side=side,
-        name=_name(weight, row),
+        name=_name(weight, problem),
         amount=float(abs(weight.end)),
         unit=unit if quantity is None else rate_unit(quantity, unit),
         price=float(abs(weight.factor) / coin.size),
@@ -98,15 +98,16 @@ def _line(weight: Weight, side: BillSide, problem: Problem, coin: Coin, unit: st
     )
 
 
-def _name(weight: Weight, row: Row | None) -> str:
+def _name(weight: Weight, problem: Problem) -> str:
     """A bound with the end that counts, as the user wrote it."""
-    member = weight.member
-    if row is None or row.quantity is None or not member.kind.is_measured:
-        return member.words
+    row = problem.rows[weight.row] if weight.row is not None else None
+    if row is None or row.quantity is None or not weight.member.kind.is_measured:
+        return weight.member.words
+    name = str(row.quantity).removeprefix("flux ")
     value, sd, end = row.value, row.sd, float(weight.end)
     if row.ratio is not None:
-        return member.words
-    name = str(row.quantity).removeprefix("flux ")
+        label = next(r for r in problem.rows if r.quantity == row.quantity and r.sd is not None)
+        value, sd, end = label.ratio, (label.sd or 0.0) / (label.denominator or 1.0), row.ratio
     if value is None or not sd:
         return f"{name}, exactly {number_words(end)}"
     away = (end - value) / sd
@@ -117,4 +118,4 @@ def _part(weight: Weight, problem: Problem) -> BillPart:
     row = problem.rows[weight.row] if weight.row is not None else None
     quantity = row.quantity if row is not None else None
     kind = weight.member.kind
-    return BillPart(_name(weight, row), quantity, kind.is_measured, not weight.worth)
+    return BillPart(_name(weight, problem), quantity, kind.is_measured, not weight.worth)

@@ -61,8 +61,9 @@ def choose_coin(built: Built, contradiction: Contradiction, unit: str) -> Coin:
     found = _by_content(network, {**prices, **crossing}, unit)
     if found is not None:
         return found
+    is_ratio = any(w.row is not None and problem.rows[w.row].ratio for w in contradiction.weights)
     for name, price in crossing.items():
-        if price:
+        if price and not is_ratio:  # a ratio asks for a share of what it is measured by
             return _coin(name, price, unit)
     return _by_quantity(problem, contradiction, unit)
 
@@ -79,8 +80,11 @@ def _unit_of(noun: str, unit: str) -> str:
 
 
 def _by_carrier(network: Network, prices: Mapping[str, Fraction], unit: str) -> Coin | None:
-    carriers = [s for s in network.carriers if prices.get(s.name) and s.cargo is not None]
-    energy = [s for s in carriers if s.cargo and s.cargo.kind is CargoKind.ENERGY]
+    carriers = [s for s in network.carriers if prices.get(s.name)]
+    energy = [
+        s for s in carriers
+        if s.name == "ATP" or (s.cargo and s.cargo.kind is CargoKind.ENERGY)
+    ]  # fmt: skip
     for species in sorted(energy, key=lambda s: s.name != "ATP"):
         return _coin(species.name, prices[species.name], unit)
     each = [
@@ -154,6 +158,6 @@ def _by_quantity(problem: Problem, contradiction: Contradiction, unit: str) -> C
     """The unit of the first quantity that has one."""
     for weight in contradiction.weights:
         quantity = problem.rows[weight.row].quantity if weight.row is not None else None
-        if quantity is not None:
+        if quantity is not None and quantity.kind is not QuantityKind.RATIO:
             return Coin(rate_unit(quantity, unit) or unit, "", abs(weight.factor))
     return Coin(unit, "", abs(contradiction.weights[0].factor))

@@ -20,6 +20,12 @@ class BillPart:
     is_measured: bool
     is_nothing: bool
 
+    @property
+    def counts(self) -> bool:
+        """Whether it has a worth, or is a ratio: that sets the worths of others."""
+        is_ratio = self.quantity is not None and self.quantity.kind is QuantityKind.RATIO
+        return is_ratio or not self.is_nothing
+
 
 def tell_bill(
     network: Network,
@@ -33,14 +39,14 @@ def tell_bill(
     What brings nothing is named only where nothing else does.
     """
     need, have = amounts
-    needing = [p for p in demands if not p.is_nothing]
-    bringing = [p for p in supplies if not p.is_nothing]
+    needing = [p for p in demands if p.counts]
+    bringing = [p for p in supplies if p.counts]
     named = list_words(p.name for p in supplies)
     if not coin.noun:
         asked = list_words(p.name for p in needing)
-        verb = "asks" if len(needing) == 1 else "ask"
-        allowed = f"{named} {'allows' if len(supplies) == 1 else 'allow'}" if named else "nothing"
-        return f"What {asked} {verb} for, {need}, is more than {allowed}, {have} {coin.unit}."
+        some = f"at most {have}" if bringing else "nothing"
+        left = f"{some} is left{f' by {named}' if named else ''}"
+        return f"At least {need} {coin.unit} is asked for by {asked}; {left}."
     subjects = _subjects(network, needing)
     verb = ("bring" if coin.is_surplus else "need") + ("s" if len(subjects) == 1 else "")
     words = f"The {coin.noun} that {list_words(subjects)} {verb}, {need}"
@@ -87,7 +93,7 @@ def _subject(network: Network, part: BillPart) -> tuple[str, str]:
         if species is not None and species.role is Role.BIOMASS:
             return "", "growth"
         return "uptake" if quantity.direction is Direction.IN else "release", quantity.name
-    return "", str(quantity).removeprefix("flux ")
+    return "", part.name if quantity.kind is QuantityKind.RATIO else quantity.name
 
 
 def list_words(words: Iterable[str]) -> str:
