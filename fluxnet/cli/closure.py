@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import argparse
 import sys
+from pathlib import Path
 from typing import TYPE_CHECKING
 
 from fluxnet.cli.inputs import load_model, load_rates
@@ -12,6 +13,7 @@ from fluxnet.cli.options import add_model_argument, add_output_options, add_tabl
 from fluxnet.cli.output import give_faults, give_findings, give_screen, refuse_outputs
 from fluxnet.cli.progress import progress_on
 from fluxnet.ground.diagnostic import Diagnostic, in_order
+from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.names import Name
 from fluxnet.ground.progress import Progress
 from fluxnet.network.model import Network
@@ -29,6 +31,7 @@ EXAMPLES = """Do carbon, nitrogen and electrons close?
   fluxnet closure rates.csv --model model.flux       formulas from the model
   fluxnet closure rates.csv --run A --without CO2    as if the row of CO2 were not there
   fluxnet closure rates.csv --nitrogen nitrate       another nitrogen source
+  fluxnet closure grams.csv --table rates.csv        the rates as they were understood
 """
 
 
@@ -45,6 +48,10 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         help="say what could be wrong in every run, not only in those that do not close",
     )  # fmt: skip
     parser.add_argument("--nitrogen", metavar="NAME", help="the nitrogen source (ammonia)")
+    parser.add_argument(
+        "--table", metavar="FILE", type=Path,
+        help="write the rates as they were understood: one unit a run, every rate with its sd",
+    )  # fmt: skip
     add_table_options(parser)
     add_output_options(parser)
 
@@ -52,6 +59,8 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
 def run(arguments: argparse.Namespace) -> int:
     """Close the runs that were asked for, and show them."""
     refuse_outputs(arguments, Document.CLOSURE)
+    if arguments.table is not None:
+        _refuse_table(arguments)
     from fluxnet.presenting.closure_record import closure_record
     from fluxnet.presenting.closure_screen import closure_screen
 
@@ -79,6 +88,8 @@ def run(arguments: argparse.Namespace) -> int:
         wrong = any(d.name is Name.UNKNOWN_QUANTITY for d in closure.diagnostics)
         return Exit.MISUSE if asked and wrong else status
     give_findings(arguments, diagnostics)
+    if rates.table is not None and arguments.table is not None:
+        _write_table(arguments, rates.table)
     body = closure_record(closure) if arguments.json else {}
     if undone:
         body["undone"] = undone
@@ -91,6 +102,37 @@ def run(arguments: argparse.Namespace) -> int:
         print(f"interrupted: {done:,} of {done + undone:,} runs are closed", file=sys.stderr)
         return Exit.INTERRUPTED
     return status
+
+
+def _refuse_table(arguments: argparse.Namespace) -> None:
+    """Refuse a file for the rates that could not be written, or is the one that is read."""
+    from fluxnet.presenting.files import refuse_file
+
+    table: Path = arguments.table
+    if arguments.rates != "-" and table.resolve() == Path(arguments.rates).resolve():
+        raise MisuseError(f"--table would write over {table}, which is read")
+    for path in (table, _beside(table)):
+        refuse_file(path, force=arguments.force)
+
+
+def _write_table(arguments: argparse.Namespace, table: RatesTable) -> None:
+    """Write the rates, and beside them the correlations of their errors where there are any."""
+    from fluxnet.presenting.files import write_text
+    from fluxnet.tables.writer import write_covariance_text, write_rates_text
+
+    path, beside = arguments.table, _beside(arguments.table)
+    pairs = write_covariance_text(table)
+    if not pairs and beside.exists():
+        raise MisuseError(f"{beside} would be taken for the correlations of {path}; take it away")
+    write_text(path, write_rates_text(table), force=arguments.force)
+    if pairs:
+        write_text(beside, pairs, force=arguments.force)
+    print(f"wrote {path}{f' and {beside}' if pairs else ''}", file=sys.stderr)
+
+
+def _beside(table: Path) -> Path:
+    """Where a rates table's correlations are looked for."""
+    return table.with_name(f"{table.stem}.covariance.csv")
 
 
 def _close(

@@ -129,6 +129,39 @@ def test_what_is_closed_when_the_user_stops_is_kept_and_told(
     assert capsys.readouterr().out == ""
 
 
+GRAMS = """run,species,direction,rate,sd,unit
+A,glucose,in,1.80156,3 %,g/g/h
+A,ethanol,out,0.86,,g/g/h
+A,CO2,out,19.6,0.4,mmol/g/h
+"""
+
+
+@pytest.mark.parametrize("above", ["", "shared error biomass 4 %\n"], ids=["", "shared"])
+def test_the_rates_as_understood_are_a_table_with_the_same_closure(
+    folder: Path, capsys: pytest.CaptureFixture[str], above: str
+) -> None:
+    (folder / "grams.csv").write_text(above + GRAMS, encoding="utf-8")
+    pairs = "first,second,correlation\nglucose in,CO2 out,0.4\n"
+    (folder / "grams.covariance.csv").write_text(pairs, encoding="utf-8")
+    first = document(["grams.csv", "--table", "plain.csv"], capsys)["runs"]
+    written = (folder / "plain.csv").read_text(encoding="utf-8")
+    assert "A,glucose,in,10.0,3 %,mmol/g/h" in written
+    assert (folder / "plain.covariance.csv").exists()
+    (again,) = document(["plain.csv"], capsys)["runs"]
+    assert again["test"] == pytest.approx(first[0]["test"], rel=1e-9)
+    assert run(["closure", "grams.csv", "--table", "plain.csv"]) == Exit.MISUSE
+    assert run(["closure", "grams.csv", "--table", "grams.csv", "--force"]) == Exit.MISUSE
+
+
+def test_correlations_left_beside_a_table_are_not_taken_for_those_of_a_new_one(
+    folder: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    (folder / "plain.covariance.csv").write_text("first,second,correlation\n", encoding="utf-8")
+    assert run(["closure", "good.csv", "--table", "plain.csv", "--force"]) == Exit.MISUSE
+    assert "take it away" in capsys.readouterr().err
+    assert not (folder / "plain.csv").exists()
+
+
 def many_runs(count: int) -> str:
     return HEAD + "".join(
         (BAD if i % 10 == 3 else GOOD.replace("A,", "B,")).replace("B,", f"R{i},")
