@@ -2,7 +2,8 @@
 
 The data stand in ``catalogue.csv`` beside this file, one compound a line, each value with its
 source. Formulas and charges at pH 7 are from memory, as each line says; where the data package
-``chemicals`` knows the compound its formula was compared, and the tests compare it again.
+``chemicals`` knows the compound its formula was compared, and the tests compare it again. The
+names, German ones among them, are from memory.
 """
 
 from __future__ import annotations

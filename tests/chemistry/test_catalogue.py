@@ -203,3 +203,31 @@ def test_the_data_file_has_no_empty_field_where_one_is_needed() -> None:
             assert line["name"]
             assert line["kind"]
             assert line["formula"] or line["kind"] == "energy-carrier"
+
+
+@pytest.mark.parametrize(
+    ("german", "name"),
+    [
+        ("Essigsäure", "acetate"), ("Essigsaeure", "acetate"), ("milchsäure", "lactate"),
+        ("Bernsteinsäure", "succinate"), ("Ameisensäure", "formate"), ("Äthanol", "ethanol"),
+        ("Glycerin", "glycerol"), ("Harnstoff", "urea"), ("Sauerstoff", "oxygen"),
+        ("Wasserstoff", "hydrogen"), ("Kohlendioxid", "CO2"), ("Ammoniak", "ammonia"),
+        ("Saccharose", "sucrose"), ("Wasser", "water"), ("A\u0308thanol", "ethanol"),
+    ],
+)  # fmt: skip
+def test_compounds_are_found_by_their_german_names(german: str, name: str) -> None:
+    found = find_compound(german)
+
+    assert found is not None
+    assert found.name == name
+
+
+def test_no_name_belongs_to_two_compounds() -> None:
+    catalogue = load_catalogue()
+    for name in catalogue.names:
+        compound = catalogue.find(name)
+        assert compound is not None
+        for other in compound.synonyms:
+            found = catalogue.find(other)
+            assert found is not None
+            assert found.name == name, other

@@ -108,7 +108,7 @@ def test_a_name_that_the_model_does_not_have_is_an_error(fault, network, row, na
 
 
 def test_the_nearest_name_of_the_model_is_offered(fault, network):
-    assert "acetate" in fault(LONG + "A,acetat,out,1,1,mmol\n", network=network).mend
+    assert "acetate" in fault(LONG + "A,acettate,out,1,1,mmol\n", network=network).mend
 
 
 def test_a_compound_of_the_catalogue_outside_the_model_is_a_warning(network):
