@@ -46,6 +46,10 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         "--fraction", metavar="F", type=float, default=1.0,
         help="with an aim, give ranges at this fraction of the optimum (1)",
     )  # fmt: skip
+    parser.add_argument(
+        "--suspects", action="store_true",
+        help="without an aim, say what could be wrong in every run, not only in rejected ones",
+    )  # fmt: skip
     add_table_options(parser)
     add_output_options(parser)
 
@@ -83,6 +87,7 @@ def run(arguments: argparse.Namespace) -> int:
             minimise=arguments.minimise,
             within=arguments.within,
             fraction=arguments.fraction,
+            suspects=arguments.suspects,
         )
     except InputError as fault:
         texts = {source.file: source for source in model.sources}
@@ -96,5 +101,6 @@ def run(arguments: argparse.Namespace) -> int:
     give_findings(arguments, in_order(diagnostics))
     return give_screen(
         arguments, Document.SOLVE, inputs, diagnostics, solve_record(solution),
-        solve_screen(solution), sound=solution.is_sound,
+        solve_screen(solution, everything=arguments.all),
+        sound=solution.is_sound,
     )  # fmt: skip

@@ -7,6 +7,7 @@ from typing import Any
 from fluxnet.presenting.conflict_record import conflict_record
 from fluxnet.presenting.quantity_record import quantity_record
 from fluxnet.presenting.records import diagnostic_record
+from fluxnet.presenting.suspect_record import suspect_keys
 from fluxnet.solving.words import limit_words
 from fluxnet.studies.solution import FluxSolution, Solution
 
@@ -79,6 +80,7 @@ def _run(run: FluxSolution) -> Record:
             "active_bounds": list(test.active),
             "pulling_bounds": list(test.pulling),
         },
+        **suspect_keys(run.suspects),
         "ledger": [
             {
                 "carrier": line.carrier,

@@ -22,11 +22,17 @@ _MOODS = {
 }
 
 
-def solve_screen(solution: Solution) -> tuple[Block, ...]:
-    """Everything that is shown of a solve: an overview of several runs, then each."""
+def solve_screen(solution: Solution, *, everything: bool = False) -> tuple[Block, ...]:
+    """Everything that is shown of a solve: an overview of several runs, then each.
+
+    Parameters
+    ----------
+    everything
+        Show all suspects, rare and impossible ones too.
+    """
     blocks: list[Block] = [_overview(solution)]
     for run in solution.runs:
-        blocks += blocks_of_run(_run_blocks(run), run.run)
+        blocks += blocks_of_run(_run_blocks(run, everything), run.run)
     return tuple(blocks)
 
 
@@ -64,7 +70,7 @@ def _overview(solution: Solution) -> Table:
     return Table("overview", f"{len(rows)} runs", columns, rows)
 
 
-def _run_blocks(run: FluxSolution) -> tuple[Block, ...]:
+def _run_blocks(run: FluxSolution, everything: bool) -> tuple[Block, ...]:
     what = f"run {run.run}" if run.run is not None else "no measured rates"
     if run.extras:
         what += f" ({', '.join(f'{name} {value}' for name, value in run.extras)})"
@@ -76,6 +82,7 @@ def _run_blocks(run: FluxSolution) -> tuple[Block, ...]:
         Heading(heading),
         Sentence(run.words, mood, verdict=True),
         *_assumptions(run),
+        *_suspects(run, everything=everything),
         *conflict_blocks(run),
         *unbounded_blocks(run),
     ]
@@ -96,6 +103,15 @@ def _run_blocks(run: FluxSolution) -> tuple[Block, ...]:
 def _as_good_as(residual: float) -> str:
     """The power of ten below which a residual lies; what is smaller than 1e-12 is rounding."""
     return f"1e{ceil(log10(max(residual, 1e-12)))}"
+
+
+def _suspects(run: FluxSolution, *, everything: bool) -> list[Block]:
+    """What could be wrong with the rates, where it was looked for."""
+    if run.suspects is None:
+        return []
+    from fluxnet.presenting.suspect_blocks import suspect_blocks
+
+    return suspect_blocks(run.suspects, run.run, everything=everything)
 
 
 def _assumptions(run: FluxSolution) -> list[Block]:

@@ -60,14 +60,17 @@ def _lead(suspects: Suspects) -> Sentence:
             f"{format_number(chi_squared_quantile(0.95, suspects.dof - 1), 3)} would do.",
             Mood.BAD,
         )
-    several = len({s.direction_number for s in suspects.group if s.possible}) > 1
-    text = (
-        "What could be wrong? Each of these by itself explains it; the measurements do not tell "
-        "which (at 5 %), the likelier ones come first."
-        if several
-        else "What could be wrong? One thing explains it, and no other does (at 5 %)."
-    )
-    return Sentence(text, Mood.DOUBTFUL)
+    possible = [s.direction_number for s in suspects.group if s.possible]
+    if len(possible) == 1:
+        text = "One thing explains it, and no other does (at 5 %)."
+    elif len(set(possible)) == 1:
+        text = "These explain it, each by itself, and nothing else does (at 5 %)."
+    else:
+        text = (
+            "Each of these by itself explains it; the measurements do not tell which (at 5 %), "
+            "the likelier ones come first."
+        )
+    return Sentence(f"What could be wrong? {text}", Mood.DOUBTFUL)
 
 
 def _table(suspects: Suspects, *, everything: bool) -> Table:
@@ -85,8 +88,9 @@ def _table(suspects: Suspects, *, everything: bool) -> Table:
     before: int | None = None
     for one in shown:
         if one.direction_number == before:
-            row: tuple[Cell, ...] = (f"{_SAME} {_named(one, suspects)}", "", would_be_words(one))
-            cells.append((*row, "", "", ""))
+            measured = "" if one.measured is None else format_number(one.measured)
+            name = f"{_SAME} {_named(one, suspects)}"
+            cells.append((name, measured, would_be_words(one), "", "", ""))
             continue
         before = one.direction_number
         cells.append((

@@ -43,11 +43,12 @@ _TELLING = 0.5
 _ROUNDING = 1e-12
 
 
-def fit_run(network: Network, run: Run | None) -> FluxSolution:
+def fit_run(network: Network, run: Run | None, *, suspects: bool = False) -> FluxSolution:
     """Fit fluxes to one run (None: to the measured limits of the model alone).
 
     A run that the balances accept but whose fit a limit holds back beyond chance
-    (p below 5 %) is inconsistent as well.
+    (p below 5 %) is inconsistent as well. What could be wrong is looked for where the balances
+    reject a run, and with ``suspects`` always.
     """
     fit = fit_fluxes(network, run)
     frame = FluxSolution(
@@ -82,6 +83,10 @@ def fit_run(network: Network, run: Run | None) -> FluxSolution:
         _account(frame, fit), test=test, status=_status(fit, test), residual=fit.residual
     )
     solution = replace(solution, words=tell_fit(solution, test))
+    if suspects or test.closes is False:
+        from fluxnet.studies.suspects_solve import seek_flux_suspects
+
+        solution = replace(solution, suspects=seek_flux_suspects(fit, frame.unit))
     if solution.status is SolveStatus.INCONSISTENT:
         from fluxnet.solving.least_change import least_change
         from fluxnet.studies.conflicts import explain_conflicts

@@ -20,6 +20,7 @@ if TYPE_CHECKING:
     from fluxnet.solving.unbounded import Unbounded
     from fluxnet.studies.aims import Aim
     from fluxnet.studies.conflicts import ToldConflict
+    from fluxnet.studies.suspect_result import Suspects
 
 __all__ = [
     "BindingLimit", "FluxEstimate", "FluxKind", "FluxRelation", "FluxSolution", "FluxTest",
@@ -180,6 +181,7 @@ class FluxSolution:
     errors; ``fraction`` the share of the optimum at which fluxes and ranges are given.
     Measured values are held within ``within`` sds and could be within ``smallest_within``.
     ``proof`` is that of the status (None: none is asked for, in a fit), ``bill`` the optimum's.
+    ``suspects`` are what could be wrong in a fit (None: not looked for).
     """
 
     run: str | None
@@ -204,6 +206,7 @@ class FluxSolution:
     prices: tuple[SpeciesPrice, ...] = ()
     proof: Proof | None = None
     bill: Bill | None = None
+    suspects: Suspects | None = None
     relations: tuple[FluxRelation, ...] = ()
     moved: tuple[MovedParameter, ...] = ()
     conflicts: tuple[ToldConflict, ...] = ()

@@ -25,6 +25,7 @@ def solve_network(
     minimise: str | None = None,
     within: float = 2.0,
     fraction: float = 1.0,
+    suspects: bool = False,
 ) -> Solution:
     """Solve the fluxes of each run.
 
@@ -41,6 +42,8 @@ def solve_network(
         The aim, as :func:`fluxnet.studies.aims.read_aim` reads it; at most one of them.
     fraction
         The share of the optimum at which the ranges of the fluxes are searched.
+    suspects
+        Without an aim, look for what could be wrong in sound runs, too.
 
     Raises
     ------
@@ -63,7 +66,10 @@ def solve_network(
     if wanted is None:
         from fluxnet.studies.fitting import fit_run
 
-        return Solution(network, tuple(_with_cause(network, fit_run, run) for run in runs))
+        def fit_one(network: Network, run: Run | None) -> FluxSolution:
+            return fit_run(network, run, suspects=suspects)
+
+        return Solution(network, tuple(_with_cause(network, fit_one, run) for run in runs))
     from fluxnet.studies.aims import Sense, read_aim
     from fluxnet.studies.optimum import optimise
 

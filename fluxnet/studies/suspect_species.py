@@ -11,11 +11,11 @@ from collections.abc import Collection, Iterator
 from fluxnet.chemistry.catalogue import CompoundKind, Plausibility, load_catalogue
 from fluxnet.chemistry.formula import Formula
 from fluxnet.ground.record import record
-from fluxnet.network.model import Network, Role
+from fluxnet.network.model import Network, Role, Species
 from fluxnet.studies.closure_world import identity
 from fluxnet.studies.suspect_result import Standing
 
-__all__ = ["Candidate", "find_candidates"]
+__all__ = ["Candidate", "crosses", "find_candidates"]
 
 _NEVER_CROSS = (
     CompoundKind.BOUND_GROUP, CompoundKind.ELECTRON_CARRIER, CompoundKind.ENERGY_CARRIER,
@@ -91,6 +91,17 @@ def find_candidates(taken: Collection[str], network: Network | None) -> tuple[Ca
     return tuple(found)
 
 
+def crosses(species: Species) -> bool:
+    """Whether a species is a compound that can cross the boundary, as far as one knows.
+
+    An own name inside may be that of a product before it leaves, and is told by the product.
+    """
+    entry = load_catalogue().find(species.entry or species.name)
+    if entry is None:
+        return species.role.is_boundary
+    return entry.kind not in _NEVER_CROSS
+
+
 def _of_model(network: Network | None) -> Iterator[tuple[Candidate, str]]:
     """The species of a model that are no carriers, with their identities.
 
@@ -100,14 +111,10 @@ def _of_model(network: Network | None) -> Iterator[tuple[Candidate, str]]:
     if network is None:
         return
     made, used = _running(network)
-    catalogue = load_catalogue()
     for species in network.species:
         if species.role is Role.CARRIER or species.formula is None:
             continue
-        entry = catalogue.find(species.entry or species.name)
-        # an own name inside may be that of a product before it leaves: it is told by the product
-        is_unknown = entry is None and species.role is Role.INSIDE
-        if is_unknown or (entry is not None and entry.kind in _NEVER_CROSS):
+        if not crosses(species):
             continue
         can_leave = species.role is not Role.SUBSTRATE and species.name in made
         can_enter = species.role in (Role.SUBSTRATE, Role.EXCHANGE) and species.name in used
