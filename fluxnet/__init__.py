@@ -14,6 +14,7 @@ if TYPE_CHECKING:
     from fluxnet.api import (
         Answer,
         Model,
+        Network,
         Rates,
         check,
         closure,
@@ -22,6 +23,7 @@ if TYPE_CHECKING:
         read_rates,
         read_rates_text,
         solve,
+        write_model,
     )
     from fluxnet.ground.errors import FluxnetError, InputError, MisuseError
 
@@ -33,6 +35,7 @@ __all__ = [
     "InputError",
     "MisuseError",
     "Model",
+    "Network",
     "Rates",
     "__version__",
     "check",
@@ -42,6 +45,7 @@ __all__ = [
     "read_rates",
     "read_rates_text",
     "solve",
+    "write_model",
 ]
 
 _HOMES = dict.fromkeys(("FluxnetError", "InputError", "MisuseError"), "fluxnet.ground.errors")

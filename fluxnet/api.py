@@ -2,19 +2,17 @@
 
 from __future__ import annotations
 
-import io
-from collections.abc import Iterator, Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 from functools import cached_property
 from pathlib import Path
-from typing import TYPE_CHECKING, Any, Generic, TypeVar
+from typing import TYPE_CHECKING, Any
 
-from fluxnet.ground.diagnostic import Diagnostic, in_order
+from fluxnet.ground.diagnostic import Diagnostic, in_order, with_accepted
 from fluxnet.ground.errors import InputError, MisuseError
-from fluxnet.ground.table import Table
 from fluxnet.network.model import Network
-from fluxnet.presenting.records import Document, document_text
-from fluxnet.presenting.screen import Block, screen_tables
+from fluxnet.presenting.accepted import accepted_blocks
+from fluxnet.presenting.answer import Answer
+from fluxnet.presenting.records import Document
 
 if TYPE_CHECKING:
     import numpy as np
@@ -27,16 +25,16 @@ if TYPE_CHECKING:
     from fluxnet.studies.solution import Solution
 
 __all__ = [
-    "Answer", "Model", "Rates", "check", "closure", "read_model", "read_model_text",
-    "read_rates", "read_rates_text", "solve",
+    "Answer", "Model", "Network", "Rates", "check", "closure", "read_model", "read_model_text",
+    "read_rates", "read_rates_text", "solve", "write_model",
 ]
-
-Result = TypeVar("Result")
-
 
 @dataclass(frozen=True)
 class Model:
-    """A model read without an error: its network, and what was noted on the way."""
+    """A model read without an error: its network, and what was noted on the way.
+
+    Every function that takes a model takes a bare :class:`Network` as well.
+    """
 
     network: Network
     diagnostics: tuple[Diagnostic, ...] = ()
@@ -44,21 +42,11 @@ class Model:
     @cached_property
     def S(self) -> NDArray[np.float64]:  # noqa: N802
         """The stoichiometric matrix, species x reactions, at the parameters' values."""
-        from fluxnet.matrices.stoichiometry import parameter_values, stoichiometry
-
-        values = {name: float(v) for name, v in parameter_values(self.network).items()}
-        matrix = stoichiometry(self.network).floats(values)
-        matrix.setflags(write=False)
-        return matrix
+        return self.network.S
 
     def frame(self) -> pd.DataFrame:
         """The matrix with its labels: a row a species, a column a reaction."""
-        import pandas as pd
-
-        species = [s.name for s in self.network.species]
-        return pd.DataFrame(
-            self.S, index=species, columns=[r.name for r in self.network.reactions]
-        )
+        return self.network.frame()
 
     def variant(self, names: str) -> Model:
         """The model with a variant, or a product of variants (``"a * b"``), applied.
@@ -87,72 +75,6 @@ class Rates:
     def runs(self) -> tuple[Run, ...]:
         """The runs, in the order of the table."""
         return self.table.runs
-
-
-@dataclass(frozen=True)
-class Answer(Generic[Result]):
-    """One result with its faces: data, frame, JSON, terminal, notebook.
-
-    ``result`` is the study's frozen result; its fields can be had from the answer directly.
-    """
-
-    result: Result
-    document: Document
-    screen: tuple[Block, ...] = field(repr=False)
-    record: Mapping[str, Any] = field(repr=False)
-    main: str = field(repr=False)
-    told: tuple[Diagnostic, ...] = field(default=(), repr=False)
-
-    def __getattr__(self, name: str) -> Any:
-        if name.startswith("__"):
-            raise AttributeError(name)
-        return getattr(self.result, name)
-
-    @property
-    def tables(self) -> Mapping[str, Table]:
-        """All tables that it shows, by key."""
-        return {table.key: table for table in screen_tables(self.screen)}
-
-    def to_frame(self, key: str | None = None) -> pd.DataFrame:
-        """One of its tables as a pandas frame, at full precision.
-
-        By default the main one, or the first where the answer has no such table: an infeasible
-        solve has an overview and no fluxes.
-
-        Raises
-        ------
-        MisuseError
-            Where there is no table of that key.
-        """
-        tables = self.tables
-        wanted = key or (self.main if self.main in tables else next(iter(tables), ""))
-        if wanted not in tables:
-            raise MisuseError(f"there is no table {wanted!r}; there are {', '.join(tables)}")
-        return tables[wanted].to_frame()
-
-    def to_json(self) -> str:
-        """The document that ``--json`` prints; what came from no file has no ``inputs``."""
-        return document_text(self.document, (), self.told, self.record)
-
-    def __str__(self) -> str:
-        from fluxnet.presenting.terminal import Terminal
-
-        stream = io.StringIO()
-        Terminal.text(stream).show(self.screen)
-        return stream.getvalue()
-
-    def __repr__(self) -> str:
-        return str(self)
-
-    def _repr_html_(self) -> str:
-        from fluxnet.presenting.notebook import screen_html
-
-        return screen_html(self.screen)
-
-    def __rich_console__(self, console: object, options: Any) -> Iterator[object]:
-        from fluxnet.presenting.terminal import rich_text
-
-        yield rich_text(self.screen, options.max_width)
 
 
 def read_model(
@@ -191,7 +113,29 @@ def read_model_text(text: str, *, file: str = "model.flux", folder: Path | None 
     return _model(reading.network, reading.diagnostics)
 
 
-def read_rates(path: str | Path, model: Model | None = None, **options: Any) -> Rates:
+def write_model(network: Model | Network) -> str:
+    r"""The text of a network in the canonical layout: reading it gives the network again.
+
+    Examples
+    --------
+    >>> text = "product CO2\nsubstrate formate, oxygen\ncompartment c\n a:formate+0.5 oxygen->CO2"
+    >>> print(write_model(read_model_text(text)), end="")
+    basis      mmol/g/h
+    <BLANKLINE>
+    product    CO2
+    substrate  formate, oxygen
+    <BLANKLINE>
+    compartment c
+        a : formate + 0.5 oxygen -> CO2
+    """
+    from fluxnet.reading.writer import write_model as write
+
+    return write(_network(network))
+
+
+def read_rates(
+    path: str | Path, network: Model | Network | None = None, **options: Any
+) -> Rates:
     """Read a rates table (CSV, TSV, XLSX), with a model's names and roles where one is given.
 
     ``options`` are those of :func:`fluxnet.tables.rates_table.read_rates`.
@@ -203,29 +147,41 @@ def read_rates(path: str | Path, model: Model | None = None, **options: Any) -> 
     """
     from fluxnet.tables.rates_table import read_rates as read
 
-    reading = read(path, network=_network(model), **options)
+    reading = read(path, network=_network_or_none(network), **options)
     return _rates(reading.table, reading.diagnostics)
 
 
-def read_rates_text(text: str, model: Model | None = None, **options: Any) -> Rates:
+def read_rates_text(
+    text: str, network: Model | Network | None = None, **options: Any
+) -> Rates:
     """Read a rates table given as text; as :func:`read_rates`."""
     from fluxnet.tables.rates_table import read_rates_text as read
 
-    reading = read(text, network=_network(model), **options)
+    reading = read(text, network=_network_or_none(network), **options)
     return _rates(reading.table, reading.diagnostics)
 
 
-def check(model: Model) -> Answer[CheckResult]:
-    """Check a model: is its reaction list sound?"""
+def check(network: Model | Network) -> Answer[CheckResult]:
+    """Check a model: is its reaction list sound?
+
+    Examples
+    --------
+    >>> from fluxnet.cli.new import MODEL
+    >>> check(read_model_text(MODEL)).sound
+    True
+    """
     from fluxnet.presenting.check_screen import check_record, check_screen
     from fluxnet.studies.check import check_network
 
-    result = check_network(model.network, model.diagnostics)
+    noted = network.diagnostics if isinstance(network, Model) else ()
+    result = check_network(_network(network), noted)
     screen = check_screen(result)
     return Answer(result, Document.CHECK, screen, check_record(result), "findings")
 
 
-def closure(rates: Rates, model: Model | None = None, **options: Any) -> Answer[Closure]:
+def closure(
+    rates: Rates, network: Model | Network | None = None, **options: Any
+) -> Answer[Closure]:
     """Do carbon, nitrogen and electrons close?
 
     ``options`` are those of :func:`fluxnet.studies.closure.close_rates`.
@@ -239,15 +195,18 @@ def closure(rates: Rates, model: Model | None = None, **options: Any) -> Answer[
     from fluxnet.presenting.closure_screen import closure_screen
     from fluxnet.studies.closure import close_rates
 
-    result = close_rates(rates.table, network=_network(model), **options)
+    result = close_rates(rates.table, network=_network_or_none(network), **options)
     if not result.runs:
         raise InputError(result.diagnostics)
     record = closure_record(result)
-    told = in_order((*_told(model), *rates.diagnostics, *result.diagnostics))
-    return Answer(result, Document.CLOSURE, closure_screen(result), record, "rates", told)
+    told = in_order((*_told(network), *rates.diagnostics, *result.diagnostics))
+    screen = (*closure_screen(result), *accepted_blocks(told))
+    return Answer(result, Document.CLOSURE, screen, record, "rates", told)
 
 
-def solve(model: Model, rates: Rates | None = None, **options: Any) -> Answer[Solution]:
+def solve(
+    network: Model | Network, rates: Rates | None = None, **options: Any
+) -> Answer[Solution]:
     r"""What did the cell do, or what could it do at best?
 
     ``options`` are those of :func:`fluxnet.studies.solve.solve_network`: ``maximise``,
@@ -269,22 +228,42 @@ def solve(model: Model, rates: Rates | None = None, **options: Any) -> Answer[So
     table = None
     also: tuple[Diagnostic, ...] = ()
     if rates is not None:
-        aligned = align_table(rates.table, model.network)
+        aligned = align_table(rates.table, _network(network))
         if aligned.table is None:
             raise InputError(aligned.diagnostics)
         table, also = aligned.table, aligned.diagnostics
-    result = solve_network(model.network, table, **options)
-    told = in_order((*_told(model), *(rates.diagnostics if rates is not None else ()), *also))
-    screen, record = solve_screen(result), solve_record(result)
+    result = solve_network(_network(network), table, **options)
+    noted = rates.diagnostics if rates is not None else ()
+    told = in_order((*_told(network), *noted, *also))
+    screen = (*solve_screen(result), *accepted_blocks(told))
+    record = solve_record(result)
     return Answer(result, Document.SOLVE, screen, record, "fluxes", told)
 
 
-def _told(model: Model | None) -> tuple[Diagnostic, ...]:
-    return () if model is None else model.diagnostics
+def _told(network: Model | Network | None) -> tuple[Diagnostic, ...]:
+    """What a report that does not check the model says of it."""
+    if network is None:
+        return ()
+    noted = network.diagnostics if isinstance(network, Model) else ()
+    return with_accepted(noted, _network(network).acceptances)
 
 
-def _network(model: Model | None) -> Network | None:
-    return None if model is None else model.network
+def _network(given: Model | Network) -> Network:
+    """The bare network.
+
+    Raises
+    ------
+    MisuseError
+        Where something else was given, such as a path.
+    """
+    network = given.network if isinstance(given, Model) else given
+    if not isinstance(network, Network):
+        raise MisuseError(f"a model is needed, from read_model, not {type(given).__name__}")
+    return network
+
+
+def _network_or_none(given: Model | Network | None) -> Network | None:
+    return None if given is None else _network(given)
 
 
 def _model(network: Network | None, diagnostics: tuple[Diagnostic, ...]) -> Model:

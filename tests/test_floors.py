@@ -33,13 +33,19 @@ ROOMS = {
     "highspy": {"solving"},
     "daqp": {"solving"},
     "networkx": {"checks/graph.py"},
-    "pandas": {"tables", "ground/table.py", "api"},
+    "pandas": {
+        "tables", "ground/table.py", "network/matrix.py", "network/model.py",
+        "presenting/answer.py", "api",
+    },
     "python_calamine": {"tables"},
     "pint": {"chemistry/units.py", "chemistry"},
     "rich": {"presenting/terminal.py", "cli"},
     "xlsxwriter": {"presenting"},
     "scipy": set[str](),
-    "numpy": {"rates", "tables", "matrices", "solving", "checks", "studies", "presenting", "api"},
+    "numpy": {
+        "network/matrix.py", "network/model.py", "rates", "tables", "matrices", "solving", "checks",
+        "studies", "presenting", "api",
+    },
 }
 
 

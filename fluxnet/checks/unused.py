@@ -37,7 +37,9 @@ def check_substrates(network: Network) -> tuple[Diagnostic, ...]:
     """A warning where nothing with carbon can be taken up; CO2 as an exchange is no food."""
     if any(_is_food(s) for s in network.boundary):
         return ()
-    place = network.boundary[0].span if network.boundary else NOWHERE
+    places = [thing.span for thing in network.boundary]
+    places += [compartment.span for compartment in network.compartments]
+    place = places[0] if places else NOWHERE
     return (
         Diagnostic(
             Name.NO_SUBSTRATE,

@@ -15,7 +15,8 @@ from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.names import Name
 from fluxnet.presenting.check_screen import check_record, check_screen, findings_record
-from fluxnet.presenting.records import Document, Input
+from fluxnet.presenting.records import Document, Input, document_text, hash_bytes
+from fluxnet.reading.source import MOST_BYTES, source_of_bytes
 
 __all__ = ["EXAMPLES", "add_arguments", "run"]
 
@@ -44,6 +45,8 @@ def run(arguments: argparse.Namespace) -> int:
     """Check a model and show what was found."""
     if arguments.tidy:
         return _tidy(arguments)
+    if arguments.model == "-" and arguments.rates == "-":
+        raise MisuseError("standard input can be the model or the rates, not both")
     refuse_outputs(arguments, Document.CHECK)
     model = load_model(arguments, arguments.variant)
     inputs, run_asked = model.inputs, None
@@ -82,30 +85,52 @@ def _faulty(
 def _tidy(arguments: argparse.Namespace) -> int:
     """Lay a model file out: in place, or to standard output for ``-``."""
     from fluxnet.presenting.files import write_text
-    from fluxnet.reading.source import MOST_BYTES, source_of_bytes
     from fluxnet.reading.tidy import tidy_text
 
     if arguments.model == "-":
         data = sys.stdin.buffer.read(MOST_BYTES + 1)
+        inputs = (hash_bytes(data, "standard input"),)
         source, told = source_of_bytes(data, "standard input", large=arguments.large)
+        if source is None:
+            return _not_laid_out(arguments, inputs, told)
         give_findings(arguments, told)
-        if source is not None:
-            sys.stdout.write(tidy_text("\n".join((*source.lines, ""))))
-        return exit_of(told)
+        before = "\n".join((*source.lines, ""))
+        after = tidy_text(before)
+        if not arguments.json:
+            sys.stdout.write(after)
+        return _laid_out(arguments, inputs, told, after, changed=after != before)
     model = load_model(arguments)
     if not model.sources or any(d.name is Name.WRONG_KIND_OF_FILE for d in model.diagnostics):
-        give_findings(arguments, model.diagnostics)
-        return exit_of(model.diagnostics)
+        return _not_laid_out(arguments, model.inputs, model.diagnostics)
     path = Path(arguments.model)
-    before = path.read_bytes()
+    data = path.read_bytes()
     try:
-        text = before.decode("utf-8-sig")
+        text = data.decode("utf-8-sig")
     except UnicodeDecodeError:
         raise MisuseError(f"{path} is not UTF-8; save it as UTF-8 first") from None
     after = tidy_text(text)
-    if after.encode("utf-8") == before:
-        print(f"{path} is laid out already", file=sys.stderr)
-    else:
+    changed = after.encode("utf-8") != data
+    if changed:
         write_text(path, after, force=True)
-        print(f"laid {path} out", file=sys.stderr)
+    said = f"laid {path} out" if changed else f"{path} is laid out already"
+    if not arguments.quiet:
+        print(said, file=sys.stderr)
+    return _laid_out(arguments, model.inputs, (), after, changed=changed)
+
+
+def _laid_out(
+    arguments: argparse.Namespace, inputs: tuple[Input, ...], told: tuple[Diagnostic, ...],
+    text: str, *, changed: bool,
+) -> int:  # fmt: skip
+    if arguments.json:
+        print(document_text(Document.TIDY, inputs, told, {"text": text, "changed": changed}))
     return Exit.SOUND
+
+
+def _not_laid_out(
+    arguments: argparse.Namespace, inputs: tuple[Input, ...], told: tuple[Diagnostic, ...]
+) -> int:
+    if arguments.json:
+        print(document_text(Document.TIDY, inputs, told, {"text": None, "changed": False}))
+    give_findings(arguments, told)
+    return exit_of(told)

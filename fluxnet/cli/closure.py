@@ -69,7 +69,7 @@ def run(arguments: argparse.Namespace) -> int:
     diagnostics: tuple[Diagnostic, ...] = ()
     if arguments.model is not None:
         model = load_model(arguments)
-        network, inputs, diagnostics = model.network, model.inputs, model.diagnostics
+        network, inputs, diagnostics = model.network, model.inputs, model.told
         if network is None:
             return give_faults(arguments, Document.CLOSURE, inputs, diagnostics)
     with progress_on(sys.stderr) as progress:
@@ -87,7 +87,7 @@ def run(arguments: argparse.Namespace) -> int:
         asked = arguments.without or arguments.nitrogen
         wrong = any(d.name is Name.UNKNOWN_QUANTITY for d in closure.diagnostics)
         return Exit.MISUSE if asked and wrong else status
-    give_findings(arguments, diagnostics)
+    give_findings(arguments, [d for d in diagnostics if d.accepted is None])
     if rates.table is not None and arguments.table is not None:
         _write_table(arguments, rates.table)
     body = closure_record(closure) if arguments.json else {}

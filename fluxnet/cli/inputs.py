@@ -10,7 +10,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from fluxnet.cli.main import Exit
-from fluxnet.ground.diagnostic import Diagnostic, has_errors
+from fluxnet.ground.diagnostic import Diagnostic, has_errors, with_accepted
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.names import Name
 from fluxnet.ground.progress import Progress, silent
@@ -53,6 +53,12 @@ class ReadModel:
     diagnostics: tuple[Diagnostic, ...]
     inputs: tuple[Input, ...]
     sources: tuple[Source, ...]
+
+    @property
+    def told(self) -> tuple[Diagnostic, ...]:
+        """What a report that does not check the model says of it: what it accepts among that."""
+        acceptances = () if self.network is None else self.network.acceptances
+        return with_accepted(self.diagnostics, acceptances)
 
 
 def exit_of(diagnostics: tuple[Diagnostic, ...]) -> int:

@@ -14,6 +14,7 @@ from fluxnet.cli.main import Exit
 from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.names import Severity
+from fluxnet.presenting.accepted import accepted_blocks
 from fluxnet.presenting.records import Document, Input, document_text
 from fluxnet.presenting.screen import Block, screen_tables
 from fluxnet.presenting.terminal import Terminal
@@ -91,6 +92,7 @@ def give_screen(
 
     Standard output carries the result; where files were written is said on standard error.
     """
+    screen = (*screen, *accepted_blocks(diagnostics))
     tables = screen_tables(screen)
     if arguments.csv is not None or arguments.xlsx is not None:
         from fluxnet.presenting.files import write_csv, write_workbook

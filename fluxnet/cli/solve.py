@@ -66,7 +66,7 @@ def run(arguments: argparse.Namespace) -> int:
     if model.network is None:
         return give_faults(arguments, Document.SOLVE, model.inputs, model.diagnostics)
     table = None
-    inputs, diagnostics = model.inputs, model.diagnostics
+    inputs, diagnostics = model.inputs, model.told
     if arguments.rates is not None:
         rates = load_rates(arguments, model.network)
         inputs, diagnostics = (*inputs, *rates.inputs), (*diagnostics, *rates.diagnostics)
@@ -98,7 +98,7 @@ def run(arguments: argparse.Namespace) -> int:
             for d in fault.diagnostics
         )
         return give_faults(arguments, Document.SOLVE, inputs, (*diagnostics, *told))
-    give_findings(arguments, in_order(diagnostics))
+    give_findings(arguments, [d for d in in_order(diagnostics) if d.accepted is None])
     return give_screen(
         arguments, Document.SOLVE, inputs, diagnostics, solve_record(solution),
         solve_screen(solution, everything=arguments.all),

@@ -9,7 +9,7 @@ from fluxnet.ground.names import Name, Severity
 from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 
-__all__ = ["Acceptance", "Diagnostic", "Edit", "has_errors", "in_order", "silence"]
+__all__ = ["Acceptance", "Diagnostic", "Edit", "has_errors", "in_order", "silence", "with_accepted"]
 
 
 @record
@@ -80,6 +80,42 @@ def silence(
 
     Errors cannot be accepted away.
     """
+    marked, unused = _marked(diagnostics, acceptances)
+    told = (
+        Diagnostic(
+            Name.ACCEPT_UNUSED,
+            f"nothing on this line gives the warning {acceptance.name.value}",
+            acceptance.span,
+            mend="take the acceptance away",
+        )
+        for acceptance in unused
+    )
+    return (*marked, *told)
+
+
+def with_accepted(
+    diagnostics: Iterable[Diagnostic], acceptances: Iterable[Acceptance]
+) -> tuple[Diagnostic, ...]:
+    """The findings of a report that does not check the model, with all that it accepts.
+
+    Warnings that are there and accepted are marked; of the others, which only a check would
+    find, the acceptance itself is listed.
+    """
+    marked, unused = _marked(diagnostics, acceptances)
+    listed = (
+        Diagnostic(
+            acceptance.name, f"the model accepts {acceptance.name.value} on this line",
+            acceptance.span, accepted=acceptance.reason,
+        )
+        for acceptance in unused
+    )  # fmt: skip
+    return (*marked, *listed)
+
+
+def _marked(
+    diagnostics: Iterable[Diagnostic], acceptances: Iterable[Acceptance]
+) -> tuple[list[Diagnostic], list[Acceptance]]:
+    """The findings, accepted warnings marked, and the acceptances that met none."""
     listed = tuple(acceptances)
     waiting = {
         (a.span.file, line, a.name): a
@@ -95,14 +131,4 @@ def silence(
             marked.append(replace(diagnostic, accepted=waiting[key].reason))
         else:
             marked.append(diagnostic)
-    for acceptance in listed:
-        if acceptance not in used:
-            marked.append(
-                Diagnostic(
-                    Name.ACCEPT_UNUSED,
-                    f"nothing on this line gives the warning {acceptance.name.value}",
-                    acceptance.span,
-                    mend="take the acceptance away",
-                )
-            )
-    return tuple(marked)
+    return marked, [a for a in listed if a not in used]

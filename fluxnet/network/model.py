@@ -5,12 +5,19 @@ from __future__ import annotations
 from dataclasses import field
 from enum import Enum
 from fractions import Fraction
+from typing import TYPE_CHECKING
 
 from fluxnet.chemistry.formula import EMPTY, Formula
 from fluxnet.ground.diagnostic import Acceptance
 from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.expression import Expression
+from fluxnet.network.quantity import Direction, Limit, Quantity, QuantityKind, Relation
+
+if TYPE_CHECKING:
+    import numpy as np
+    import pandas as pd
+    from numpy.typing import NDArray
 
 __all__ = [
     "Basis", "Cargo", "CargoKind", "Compartment", "Direction", "Limit", "Network", "Parameter",
@@ -32,18 +39,6 @@ class Role(Enum):
     def is_boundary(self) -> bool:
         """Whether species of this role cross the boundary."""
         return self not in (Role.CARRIER, Role.INSIDE)
-
-
-class Direction(Enum):
-    """Which way a boundary species goes; never told by a sign alone."""
-
-    IN = "in"
-    OUT = "out"
-
-    @property
-    def sign(self) -> int:
-        """The sign of a release: +1 out of the cell, -1 into it."""
-        return 1 if self is Direction.OUT else -1
 
 
 class CargoKind(Enum):
@@ -145,77 +140,6 @@ class Compartment:
     span: Span = NOWHERE
 
 
-class QuantityKind(Enum):
-    """What can be limited, measured or aimed at."""
-
-    RATE = "rate"
-    MU = "mu"
-    FLUX = "flux"
-    RATIO = "ratio"
-    SURPLUS = "surplus"
-
-
-@record
-class Quantity:
-    """A thing with a value: a boundary species' rate, mu, a reaction's flux, a ratio.
-
-    ``name`` is the species or reaction. A rate is a magnitude in ``direction``. A ratio is
-    ``numerator`` over ``denominator``. ``SURPLUS`` is a carrier's surplus (an aim only).
-    """
-
-    kind: QuantityKind
-    name: str = ""
-    direction: Direction | None = None
-    numerator: Quantity | None = None
-    denominator: Quantity | None = None
-
-    @property
-    def names(self) -> frozenset[str]:
-        """The species and reactions that it is of; mu has none."""
-        parts = [q.name for q in (self, self.numerator, self.denominator) if q is not None]
-        return frozenset(name for name in parts if name)
-
-    def __str__(self) -> str:
-        if self.kind is QuantityKind.RATIO:
-            return f"{self.numerator} / {self.denominator}"
-        if self.kind is QuantityKind.MU:
-            return "mu"
-        if self.kind is QuantityKind.RATE and self.direction is not None:
-            return f"{self.name} {self.direction.value}"
-        return f"flux {self.name}" if self.kind is QuantityKind.FLUX else self.name
-
-
-class Relation(Enum):
-    """How a limit bounds its quantity."""
-
-    AT_MOST = "<="
-    AT_LEAST = ">="
-    EQUAL = "="
-    BETWEEN = "between"
-
-
-@record
-class Limit:
-    """A bound on a quantity, or a measured value where ``sd`` is given.
-
-    ``low`` and ``high`` in the unit of the basis (1/h for mu), in the quantity's direction:
-    None is no bound; both equal for ``=``. ``between in 1 and out 5`` of an exchange species
-    is stored in the direction OUT with ``low`` -1 and ``high`` 5.
-    """
-
-    quantity: Quantity
-    relation: Relation
-    low: Fraction | None
-    high: Fraction | None
-    sd: Fraction | None = None
-    span: Span = NOWHERE
-
-    @property
-    def is_measured(self) -> bool:
-        """Whether it is a measured value rather than a hard bound."""
-        return self.sd is not None
-
-
 @record
 class Drop:
     """``drop NAME`` (a reaction or species) or ``drop limit QUANTITY``."""
@@ -288,6 +212,19 @@ class Network:
     def find_reaction(self, name: str) -> Reaction | None:
         """The reaction of that name, or None."""
         return self._reactions.get(name)
+
+    @property
+    def S(self) -> NDArray[np.float64]:  # noqa: N802
+        """The stoichiometric matrix, species x reactions, at the parameters' values."""
+        from fluxnet.network.matrix import matrix_of
+
+        return matrix_of(self)
+
+    def frame(self) -> pd.DataFrame:
+        """The matrix with its labels: a row a species, a column a reaction."""
+        from fluxnet.network.matrix import frame_of
+
+        return frame_of(self)
 
     @property
     def boundary(self) -> tuple[Species, ...]:

@@ -22,8 +22,8 @@ def check_screen(result: CheckResult, file: str = "") -> tuple[Block, ...]:
     counts = result.counts
     variant = result.network.variant
     blocks: list[Block] = [
-        Heading(f"{file}{': ' if file else ''}{result.network.title}"
-                f"{'' if variant == 'base' else f', variant {variant}'}"),
+        Heading(f"{': '.join(part for part in (file, result.network.title) if part)}"
+                f"{'' if variant == 'base' else f', variant {variant}'}".removeprefix(", ")),
         Sentence(
             f"{_some(counts.reactions, 'reaction')} in "
             f"{_some(counts.compartments, 'compartment')}, {counts.species} species, of which "

@@ -30,6 +30,7 @@ class Document(StrEnum):
     """The names of the documents with their versions."""
 
     CHECK = "check/1"
+    TIDY = "tidy/1"
     CLOSURE = "closure/1"
     SOLVE = "solve/1"
     CATALOGUE = "catalogue/1"

@@ -68,3 +68,11 @@ def test_an_exchange_with_electrons_is_a_substrate(read: Read) -> None:
     network = read("exchange acetate, CO2\ncompartment all\n    r1 : acetate -> acetate\n")
 
     assert check_substrates(network) == ()
+
+
+def test_a_model_of_carriers_alone_is_told_at_its_first_compartment(read: Read) -> None:
+    network = read("carrier ATP\ncompartment all\n    r1 : ATP -> nothing\n")
+    (told,) = check_substrates(network)
+
+    assert (told.name, told.span) == (Name.NO_SUBSTRATE, network.compartments[0].span)
+    assert told.span.line

@@ -92,6 +92,8 @@ def test_check_loads_neither_scipy_nor_pandas_nor_matplotlib(folder: Path) -> No
         ["solve", "model.flux", "--maximise", "ethanol", "--json"],
         ["catalogue", "--json"],
         ["check", "missing.flux", "--json"],
+        ["check", "model.flux", "--tidy", "--json"],
+        ["check", "missing.flux", "--tidy", "--json"],
         ["closure", "missing.csv", "--json"],
         ["solve", "missing.flux", "--json"],
     ],

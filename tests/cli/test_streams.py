@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import json
 import subprocess
 import sys
 from pathlib import Path
@@ -85,3 +86,26 @@ def test_an_interrupted_step_ends_the_demo(
 
     assert run(["demo", str(tmp_path / "demo")]) == Exit.INTERRUPTED
     assert len(steps) == 1
+
+
+def test_the_tidy_document_holds_the_text_and_whether_it_is_another(folder: Path) -> None:
+    (folder / "wild.flux").write_text("substrate   glucose\ncompartment c\n a:glucose->2 X\n")
+    first, again = (
+        json.loads(shell(folder, "fluxnet check wild.flux --tidy --json").stdout)
+        for _ in range(2)
+    )
+    piped = json.loads(shell(folder, "fluxnet check - --tidy --json < wild.flux").stdout)
+
+    assert first["document"] == "tidy/1"
+    assert (first["changed"], again["changed"], piped["changed"]) == (True, False, False)
+    assert first["text"] == again["text"] == (folder / "wild.flux").read_text()
+    assert "    a : glucose -> 2 X\n" in first["text"]
+    assert first["inputs"][0]["sha256"] != again["inputs"][0]["sha256"]
+
+
+@pytest.mark.parametrize("words", ["fluxnet check - --rates -", "fluxnet solve - -"])
+def test_standard_input_is_one_thing_only(folder: Path, words: str) -> None:
+    done = shell(folder, f"{words} < model.flux")
+
+    assert done.returncode == 2
+    assert "standard input can be the model or the rates, not both" in done.stderr
