@@ -10,11 +10,15 @@ from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 from scipy.optimize import linprog
 
+from fluxnet.exact.programme import at_bounds, excludes, is_endless, least_value, meets
 from fluxnet.solving.alter import with_row
 from fluxnet.solving.conflict import find_conflict
+from fluxnet.solving.forms import as_fraction
 from fluxnet.solving.least_flux import least_total_flux
 from fluxnet.solving.linear import Outcome, Programme, worst_violation
+from fluxnet.solving.prices import find_prices
 from fluxnet.solving.problem import Problem, Row, RowKind
+from fluxnet.solving.proof import exact_programme, prove_outcome
 from fluxnet.solving.ranges import find_ranges
 
 INF = np.inf
@@ -200,3 +204,102 @@ def test_every_conflict_is_irreducible_and_infeasible(problem):
         assert answer.status == (2 if left_out is None else 0)
     if conflict.is_hard:
         assert not any(m.kind.is_measured for m in conflict.members)
+
+
+def prove(problem: Problem, cost: np.ndarray):
+    """The outcome of a warm programme with what exact arithmetic says of it."""
+    programme = Programme(problem)
+    solution = programme.minimise(cost)
+    costs = {j: as_fraction(c) for j, c in enumerate(cost.tolist()) if c}
+    exact = exact_programme(problem, costs=costs)
+    return solution, prove_outcome(exact, programme.places(), solution.outcome)
+
+
+@settings(deadline=None, derandomize=True, max_examples=200)
+@given(problems(capped=False))
+def test_every_outcome_is_proven_exactly_by_prices_weights_or_a_ray(problem):
+    solution, proven = prove(problem, costs_for(problem))
+    found, programme = proven.solution, proven.programme
+
+    assert proven.proof.verified
+    assert proven.proof.gap == 0
+    match solution.outcome:
+        case Outcome.OPTIMAL:
+            assert meets(programme, found.fluxes)
+            assert least_value(programme, found.prices) == found.objective
+            assert solution.objective == pytest.approx(float(found.objective), abs=1e-6)
+        case Outcome.INFEASIBLE:
+            assert excludes(programme, found.weights)
+        case _:
+            assert meets(programme, found.fluxes)
+            assert is_endless(programme, found.ray)
+
+
+@settings(deadline=None, derandomize=True, max_examples=150)
+@given(problems(), st.integers(0, 3))
+def test_redundant_rows_change_no_proof_and_no_value(problem, place):
+    cost = costs_for(problem)
+    solution, proven = prove(problem, cost)
+    k = place % len(problem.rows)
+    twice = with_row(
+        problem, Row(RowKind.LIMIT, "again"), 2 * problem.matrix[k],
+        2 * problem.row_low[k], 2 * problem.row_high[k],
+    )
+    again, other = prove(twice, cost)
+
+    assert other.proof.verified
+    assert again.outcome is solution.outcome
+    if solution.outcome is Outcome.OPTIMAL:
+        assert other.solution.objective == proven.solution.objective
+
+
+@settings(deadline=None, derandomize=True, max_examples=150)
+@given(problems(), DECADES, DECADES)
+def test_coefficients_far_apart_are_proven_all_the_same(problem, for_rows, for_columns):
+    rows = np.array([10.0**k for k in for_rows])[: len(problem.rows)]
+    columns = np.array([10.0**k for k in for_columns])[: len(problem.columns)]
+    wild = replace(
+        problem,
+        matrix=problem.matrix * rows[:, None] * columns,
+        row_low=problem.row_low * rows,
+        row_high=problem.row_high * rows,
+        column_low=problem.column_low / columns,
+        column_high=problem.column_high / columns,
+    )
+    cost = costs_for(problem)
+    (_, tame), (solution, other) = prove(problem, cost), prove(wild, cost * columns)
+
+    assert other.proof.verified
+    if solution.outcome is Outcome.OPTIMAL:
+        assert float(other.solution.objective) == pytest.approx(
+            float(tame.solution.objective), rel=1e-9, abs=1e-9
+        )
+
+
+STEP = 2.0**-20
+
+
+@settings(deadline=None, derandomize=True, max_examples=150)
+@given(problems(), st.integers(0, 7))
+def test_the_ends_of_a_price_are_what_one_bit_more_and_one_bit_less_change(problem, place):
+    # A programme's value is straight on both sides of its corners, and a corner is met exactly.
+    cost = costs_for(problem)
+    solution, proven = prove(problem, cost)
+    assume(solution.outcome is Outcome.OPTIMAL)
+    i = place % len(problem.rows)
+    (price,) = find_prices(problem, cost, proven, [i])
+    met = at_bounds(proven.programme, proven.solution.fluxes)
+    at_low, at_high = met[len(problem.columns) + i]
+    changes = []
+    for step in (STEP, -STEP):
+        low, high = problem.row_low.copy(), problem.row_high.copy()
+        if at_low:
+            low[i] += step
+        if at_high:
+            high[i] += step
+        moved, _ = prove(replace(problem, row_low=low, row_high=high), cost)
+        changes.append((moved.objective - solution.objective) / step)
+
+    assert price.low <= price.value <= price.high
+    assert changes[0] == pytest.approx(price.high, abs=1e-3)
+    assert changes[1] == pytest.approx(price.low, abs=1e-3)
