@@ -13,13 +13,11 @@ from fluxnet.solving.alter import without_bounds
 from fluxnet.solving.least_change import quantity_in
 from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.members import Member
-from fluxnet.solving.problem import Problem, Row
+from fluxnet.solving.problem import Problem, Row, RowKind
 
 __all__ = ["Alternative", "find_alternatives"]
 
 Vector = NDArray[np.float64]
-_PASSES = 50
-_STILL = 1e-12
 
 
 @record
@@ -49,7 +47,6 @@ def find_alternatives(problem: Problem, members: Iterable[Member]) -> tuple[Alte
     --------
     >>> from fluxnet.network.model import QuantityKind
     >>> from fluxnet.solving.conflict import find_conflict
-    >>> from fluxnet.solving.problem import RowKind
     >>> a, b = (Quantity(QuantityKind.FLUX, name) for name in "ab")
     >>> rows = (Row(RowKind.LIMIT, "limit a <= 1", a), Row(RowKind.LIMIT, "limit b >= 3", b),
     ...     Row(RowKind.BALANCE, "s"))
@@ -76,7 +73,7 @@ def _alternative(problem: Problem, member: Member) -> Alternative | None:
     if quantity is None:
         return None
     if row.ratio is not None:
-        span = _ratio_span(problem, programme, place)
+        span = _ratio_span(problem, rest, place)
     else:
         span = _span(programme, problem.matrix[place])
     low, high = _bounds(problem, own, row)
@@ -130,10 +127,12 @@ def _span(programme: Programme, row: Vector) -> tuple[float, float] | None:
     return least.objective, most.objective
 
 
-def _ratio_span(
-    problem: Problem, programme: Programme, place: int
-) -> tuple[float, float] | None:
-    """The ends of a ratio over all that is feasible; None where its denominator has no row."""
+def _ratio_span(problem: Problem, rest: Problem, place: int) -> tuple[float, float] | None:
+    """The ends of a ratio over all that is feasible; None where its denominator has no row.
+
+    With w = t v and t = 1 / denominator it is linear: bounds are multiplied by t, and the
+    denominator of w is 1 (Charnes & Cooper 1962, from memory).
+    """
     label = problem.rows[place]
     below = label.quantity.denominator if label.quantity is not None else None
     under = quantity_in(problem, below) if below is not None else None
@@ -141,27 +140,28 @@ def _ratio_span(
         return None
     under = under / label.per_mole
     above = problem.matrix[place] + label.ratio * under
-    most = programme.maximise(under)
-    if most.outcome is not Outcome.OPTIMAL or most.objective <= 0:
-        return None
-    start = float(above @ most.fluxes) / most.objective
-    high = _ratio_end(programme, above, under, start)
-    low = -_ratio_end(programme, -above, under, -start)
-    return low, high
+    programme = Programme(_per_denominator(rest, under))
+    return _span(programme, np.append(above, 0.0))
 
 
-def _ratio_end(programme: Programme, above: Vector, under: Vector, start: float) -> float:
-    """The largest value of a ratio (Dinkelbach 1967, from memory): inf where there is no end."""
-    ratio = start
-    for _ in range(_PASSES):
-        best = programme.maximise(above - ratio * under)
-        if best.outcome is not Outcome.OPTIMAL:
-            return np.inf
-        bottom = float(under @ best.fluxes)
-        size = float(np.abs(above) @ np.abs(best.fluxes)) + abs(ratio * bottom)
-        if best.objective <= _STILL * size:
-            return ratio
-        if bottom <= _STILL * size:
-            return np.inf
-        ratio = float(above @ best.fluxes) / bottom
-    return ratio
+def _per_denominator(problem: Problem, under: Vector) -> Problem:
+    """The problem for w = t v, with the column t behind the others, and the denominator at 1."""
+    columns = np.eye(len(problem.columns))
+    both = np.vstack([problem.matrix, columns])
+    lows = np.append(problem.row_low, problem.column_low)
+    highs = np.append(problem.row_high, problem.column_high)
+    parts = [
+        np.hstack([sign * both[kept], -sign * ends[kept, None]])
+        for sign, ends, kept in ((1, lows, np.isfinite(lows)), (-1, highs, np.isfinite(highs)))
+    ]
+    matrix = np.vstack([*parts, np.append(under, 0.0)])
+    count = len(matrix)
+    return Problem(
+        columns=(*problem.columns, "1 / denominator"),
+        rows=tuple(Row(RowKind.LIMIT, str(i)) for i in range(count)),
+        matrix=matrix,
+        row_low=np.append(np.zeros(count - 1), 1.0),
+        row_high=np.append(np.full(count - 1, np.inf), 1.0),
+        column_low=np.append(np.full(len(problem.columns), -np.inf), 0.0),
+        column_high=np.full(len(problem.columns) + 1, np.inf),
+    )
