@@ -24,6 +24,7 @@ EXAMPLES = """What did the cell do; who made and who spent the ATP and the NADH?
   fluxnet solve model.flux --maximise ethanol             the best that the model allows
   fluxnet solve model.flux --variant anaerobic --maximise mu
   fluxnet solve model.flux rates.csv --maximise ATP --within 1
+  fluxnet solve model.flux --maximise mu --proof          the bill that proves the optimum
 """
 
 
@@ -45,6 +46,10 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--fraction", metavar="F", type=float, default=1.0,
         help="with an aim, give ranges at this fraction of the optimum (1)",
+    )  # fmt: skip
+    parser.add_argument(
+        "--proof", action="store_true",
+        help="with an aim, show the bill that proves the optimum",
     )  # fmt: skip
     parser.add_argument(
         "--suspects", action="store_true",
@@ -101,6 +106,6 @@ def run(arguments: argparse.Namespace) -> int:
     give_findings(arguments, [d for d in in_order(diagnostics) if d.accepted is None])
     return give_screen(
         arguments, Document.SOLVE, inputs, diagnostics, solve_record(solution),
-        solve_screen(solution, everything=arguments.all),
+        solve_screen(solution, with_bill=arguments.proof, everything=arguments.all),
         sound=solution.is_sound,
     )  # fmt: skip

@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import Any
 
 from fluxnet.presenting.conflict_blocks import alternative_words
+from fluxnet.presenting.optimum_record import bill_lines
 from fluxnet.presenting.quantity_record import quantity_record
 from fluxnet.studies.conflicts import ToldConflict
 from fluxnet.studies.solution import FluxSolution
@@ -50,17 +51,7 @@ def _told(told: ToldConflict) -> Record:
             for m in told.conflict.members
         ],
         "irreducible": told.conflict.verified,
-        "bill": [
-            {
-                "side": line.side.value,
-                "name": line.name,
-                "amount": line.amount,
-                "unit": line.unit,
-                "price": line.price,
-                "worth": line.worth,
-            }
-            for line in (bill.lines if bill is not None else ())
-        ],
+        "bill": [] if bill is None else bill_lines(bill),
         "bill_unit": None if bill is None else bill.unit,
         "supply": None if bill is None else bill.supply,
         "demand": None if bill is None else bill.demand,

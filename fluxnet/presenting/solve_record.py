@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import Any
 
 from fluxnet.presenting.conflict_record import conflict_record
+from fluxnet.presenting.optimum_record import limits_record, prices_record, proof_record
 from fluxnet.presenting.quantity_record import quantity_record
 from fluxnet.presenting.records import diagnostic_record
 from fluxnet.presenting.suspect_record import suspect_keys
@@ -132,8 +133,8 @@ def _run(run: FluxSolution) -> Record:
             }
             for relation in run.relations
         ],
-        "prices": [],
-        "limits": [{"name": x.name, "value": x.value, "worth": x.worth} for x in run.limits],
+        "prices": prices_record(run),
+        "limits": limits_record(run),
         "conflict": conflict_record(run),
         "unbounded": None
         if run.unbounded is None
@@ -145,8 +146,7 @@ def _run(run: FluxSolution) -> Record:
             ],
         },
         "violated_limits": list(run.violated_limits),
-        # Nothing is called proven until the proof has been checked in exact arithmetic.
-        "proof": {"verified": False, "residual": run.residual},
+        "proof": proof_record(run),
         "left_free": list(run.left_free),
         "left_out": [limit_words(limit) for limit in run.left_out],
         "replaced": [limit_words(limit) for limit in run.replaced],

@@ -7,6 +7,7 @@ from math import ceil, log10
 from fluxnet.ground.table import Align, Column, Table
 from fluxnet.presenting.conflict_blocks import conflict_blocks, unbounded_blocks
 from fluxnet.presenting.numbers import format_number, format_p
+from fluxnet.presenting.optimum_tables import doubt_blocks, proof_blocks
 from fluxnet.presenting.screen import Block, Heading, Mood, Sentence, blocks_of_run
 from fluxnet.presenting.solve_tables import solve_tables
 from fluxnet.studies.solution import FluxSolution, FluxTest, Solution, SolveStatus
@@ -22,17 +23,21 @@ _MOODS = {
 }
 
 
-def solve_screen(solution: Solution, *, everything: bool = False) -> tuple[Block, ...]:
+def solve_screen(
+    solution: Solution, *, with_bill: bool = False, everything: bool = False
+) -> tuple[Block, ...]:
     """Everything that is shown of a solve: an overview of several runs, then each.
 
     Parameters
     ----------
+    with_bill
+        Show the bill that proves each optimum, too.
     everything
         Show all suspects, rare and impossible ones too.
     """
     blocks: list[Block] = [_overview(solution)]
     for run in solution.runs:
-        blocks += blocks_of_run(_run_blocks(run, everything), run.run)
+        blocks += blocks_of_run(_run_blocks(run, with_bill, everything), run.run)
     return tuple(blocks)
 
 
@@ -70,7 +75,7 @@ def _overview(solution: Solution) -> Table:
     return Table("overview", f"{len(rows)} runs", columns, rows)
 
 
-def _run_blocks(run: FluxSolution, everything: bool) -> tuple[Block, ...]:
+def _run_blocks(run: FluxSolution, with_bill: bool, everything: bool) -> tuple[Block, ...]:
     what = f"run {run.run}" if run.run is not None else "no measured rates"
     if run.extras:
         what += f" ({', '.join(f'{name} {value}' for name, value in run.extras)})"
@@ -81,6 +86,7 @@ def _run_blocks(run: FluxSolution, everything: bool) -> tuple[Block, ...]:
     blocks: list[Block] = [
         Heading(heading),
         Sentence(run.words, mood, verdict=True),
+        *doubt_blocks(run),
         *_assumptions(run),
         *_suspects(run, everything=everything),
         *conflict_blocks(run),
@@ -94,6 +100,7 @@ def _run_blocks(run: FluxSolution, everything: bool) -> tuple[Block, ...]:
                 Mood.QUIET,
             )
         )
+    blocks += proof_blocks(run, with_bill=with_bill)
     if not run.status.is_sound and run.fluxes:
         # The verdict has scrolled away by now; nobody should read the tables without it.
         blocks.append(Sentence(f"{heading[0].upper()}{heading[1:]}; not to be trusted.", mood))
