@@ -41,6 +41,7 @@ from fluxnet.solving.spread import find_adjustments, find_spread, parameter_move
 from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tail
 from fluxnet.solving.task import Task
 from fluxnet.solving.weighing import Weighed, fit_weighed, weigh_again
+from fluxnet.solving.weightless import without_weightless
 
 __all__ = ["fit_fluxes", "spans_of"]
 
@@ -61,7 +62,8 @@ def fit_fluxes(network: Network, run: Run | None = None, *, built: Built | None 
     network
         With its ``?`` solved.
     run
-        Its measured rates; without one the measured limits of the model alone.
+        Its measured rates (one whose sd is above 30 times the largest rate counts as not
+        measured); without one the measured limits of the model alone.
     built
         The problem, where it was built already (without bounds on measured values).
 
@@ -94,7 +96,8 @@ def fit_fluxes(network: Network, run: Run | None = None, *, built: Built | None 
     >>> fit.fluxes.round(6).tolist(), round(fit.h, 6), fit.dof, round(fit.p_value, 5)
     ([9.7], 6.5, 2, 0.03877)
     """
-    built = build_problem(network, run) if built is None else built
+    if built is None:
+        built = build_problem(network, None if run is None else without_weightless(run))
     exact = find_equalities(built)
     if exact.contradictions:
         return _nothing(built, exact.contradictions)
