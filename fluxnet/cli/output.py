@@ -35,7 +35,7 @@ ALWAYS_WRITTEN = {
 NAMES_OF_TABLES = frozenset({
     "alternatives", "balances", "bill", "bill_prices", "catalogue", "compound", "conflict",
     "equations", "findings", "fluxes",
-    "least_change", "ledger", "limits", "most_energy", "overview", "parameters", "rates",
+    "least_change", "ledger", "limits", "most_energy", "overview", "parameters", "prices", "rates",
     "spread", "unbounded", "yields",
 })  # fmt: skip
 """Every table that some command writes."""
