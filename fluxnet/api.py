@@ -48,6 +48,27 @@ class Model:
         """The matrix with its labels: a row a species, a column a reaction."""
         return self.network.frame()
 
+    def elements(self) -> pd.DataFrame:
+        """What a mole of each boundary species holds: a row a balance, a column a species.
+
+        Electrons are the degree of reduction with ammonia as the reference for nitrogen. A
+        balance of rates is a row times the releases (what is taken up counts negative).
+
+        Examples
+        --------
+        >>> from fluxnet.cli.new import MODEL
+        >>> read_model_text(MODEL).elements().loc[["C", "electrons"], ["glucose", "oxygen"]]
+                   glucose  oxygen
+        C              6.0     0.0
+        electrons     24.0    -4.0
+        """
+        import pandas as pd
+
+        from fluxnet.matrices.elements import network_elements
+
+        held = network_elements(self.network)
+        return pd.DataFrame(held.floats, index=list(held.balances), columns=list(held.species))
+
     def variant(self, names: str) -> Model:
         """The model with a variant, or a product of variants (``"a * b"``), applied.
 

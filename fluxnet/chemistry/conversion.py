@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from fractions import Fraction
-from typing import overload
 
 from fluxnet.chemistry.elements import ATOMIC_WEIGHT
 from fluxnet.chemistry.formula import degree_of_reduction
@@ -11,19 +10,11 @@ from fluxnet.chemistry.unit_words import Dimension
 from fluxnet.chemistry.units import Unit, UnitError, UnitFault
 from fluxnet.chemistry.weighed import FREE, Substance, weighed_mass
 
-__all__ = ["conversion_factor", "convert"]
+__all__ = ["conversion_factor"]
 
 
-@overload
-def convert(value: Fraction, unit: Unit, to: Unit, substance: Substance) -> Fraction: ...
-@overload
-def convert(value: float, unit: Unit, to: Unit, substance: Substance) -> float: ...
-def convert(
-    value: float | Fraction, unit: Unit, to: Unit, substance: Substance
-) -> float | Fraction:
-    """A value of a species in another unit of the same denominators.
-
-    A fraction stays one (exact); a float is rounded once.
+def conversion_factor(unit: Unit, to: Unit, substance: Substance) -> Fraction:
+    """How many of the second unit one of the first is, for this species: an exact number.
 
     Raises
     ------
@@ -36,22 +27,8 @@ def convert(
     >>> from fluxnet.chemistry.reader import read_formula
     >>> from fluxnet.chemistry.units import parse_unit
     >>> glucose = Substance("glucose", read_formula("C6H12O6"))
-    >>> convert(1.80156, parse_unit("g/L/h"), parse_unit("mmol/L/h"), glucose)
-    10.0
-    """
-    factor = conversion_factor(unit, to, substance)
-    if isinstance(value, Fraction):
-        return value * factor
-    return float(Fraction(value) * factor)
-
-
-def conversion_factor(unit: Unit, to: Unit, substance: Substance) -> Fraction:
-    """How many of the second unit one of the first is, for this species.
-
-    Raises
-    ------
-    UnitError
-        As for :func:`convert`.
+    >>> round(float(conversion_factor(parse_unit("g/L/h"), parse_unit("mmol/L/h"), glucose)), 4)
+    5.5507
     """
     if sorted(d.value for d in unit.per) != sorted(d.value for d in to.per):
         raise UnitError(

@@ -20,40 +20,7 @@ from fluxnet.network.line_balance import (
 from fluxnet.network.mend import find_mends
 from fluxnet.network.model import Network, Reaction
 
-__all__ = ["LineBalance", "Verdict", "balance_of", "balances_of", "check_balances"]
-
-
-def balance_of(reaction: Reaction, network: Network) -> LineBalance:
-    """The balances of one reaction, exactly.
-
-    C, N, S and every other element but H and O, and electrons; P only where the model
-    balances phosphate; O and charge only where water and protons are written and can be
-    checked, acids then counting as their formulas stand or all as their ions at pH 7, in
-    whichever form the line closes. Carriers count their cargo.
-
-    Parameters
-    ----------
-    reaction
-        Its ``?`` coefficients should be solved; with one left nothing is checked.
-    network
-        Where its species are declared.
-
-    Returns
-    -------
-    LineBalance
-        Left, right and gap of each balance in moles per mole of reaction, as expressions in
-        the parameters, and the verdict.
-    """
-    return balance_line(reaction, contents_of_network(network, (reaction,)))
-
-
-def balances_of(
-    network: Network, reactions: Iterable[Reaction] | None = None
-) -> tuple[LineBalance, ...]:
-    """The balances of all reactions of a network, or of some of them."""
-    chosen = network.reactions if reactions is None else tuple(reactions)
-    contents = contents_of_network(network, chosen)
-    return tuple(balance_line(r, contents) for r in chosen)
+__all__ = ["check_balances"]
 
 
 def check_balances(

@@ -146,8 +146,12 @@ def line_functionals(
 
 
 def balance_line(reaction: Reaction, contents: Contents) -> LineBalance:
-    """Balance one reaction whose ``?`` coefficients are solved.
+    """Balance one reaction whose ``?`` coefficients are solved, exactly.
 
+    C, N, S and every other element but H and O, and electrons; P only where the model
+    balances phosphate; O and charge only where water and protons are written and can be
+    checked, acids then counting as their formulas stand or all as their ions at pH 7, in
+    whichever form the line closes. Carriers count their cargo.
     A solved ``?`` follows the other numbers, so it does not excuse a gap and is not to blame
     for one: rounding is judged by the balances in which no solved species counts.
     """

@@ -24,14 +24,13 @@ from fluxnet.solving.problem import Problem, Row
 from fluxnet.solving.quantities import (
     Frame,
     ash_key,
-    derivative_frame,
     frame_at,
     number_values,
     quantity_row,
 )
 from fluxnet.solving.rows import Sheet, lay_rows
 
-__all__ = ["Built", "Uncertain", "build_problem", "derive_rows", "quantity_row", "rebuild"]
+__all__ = ["Built", "Uncertain", "build_problem", "quantity_row", "rebuild"]
 
 Vector = NDArray[np.float64]
 
@@ -195,21 +194,6 @@ def rebuild(
         covariance=_read_only(built.covariance * np.outer(scale, scale)),
         estimated=tuple(i for i in built.estimated if _denominator(rows[i]) not in known),
     )
-
-
-def derive_rows(built: Built, name: str) -> Vector:
-    """The derivative of the problem's matrix by one uncertain number, rows x columns.
-
-    Raises
-    ------
-    MisuseError
-        Where the network has no such number.
-    """
-    number_values(built.network, {name: 0.0})
-    frame = derivative_frame(
-        built.network, built.stoichiometry, built.values, built.basis, name
-    )
-    return _matrix(built.problem.rows, frame)
 
 
 def _matrix(rows: tuple[Row, ...], frame: Frame) -> Vector:

@@ -87,11 +87,6 @@ class MovingRows:
         """The number of fluxes."""
         return int(self.base.shape[1])
 
-    @property
-    def flux_rows(self) -> slice:
-        """The rows that are the fluxes themselves."""
-        return slice(len(self.base) - self.count, len(self.base))
-
     def change(self, numbers: Vector) -> Change:
         """The core and its slopes at other values of the uncertain numbers.
 

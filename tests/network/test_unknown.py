@@ -6,7 +6,8 @@ import pytest
 
 from fluxnet.ground.diagnostic import has_errors
 from fluxnet.ground.names import Name
-from fluxnet.network.balance import Verdict, balance_of, check_balances
+from fluxnet.network.balance import check_balances
+from fluxnet.network.line_balance import Verdict, balance_line, contents_of_network
 from fluxnet.network.model import Parameter
 from fluxnet.network.unknown import solve_unknowns
 
@@ -23,6 +24,10 @@ COMMON = {
     "X": "biomass CH1.8O0.5N0.2",
 }
 K = Parameter("K", Fraction(21, 10), Fraction(3, 10))
+
+
+def balance_of(reaction, network):
+    return balance_line(reaction, contents_of_network(network, (reaction,)))
 
 
 def coefficients(network, name="r"):

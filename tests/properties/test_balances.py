@@ -9,9 +9,9 @@ from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 
 from fluxnet.chemistry.formula import composition
-from fluxnet.network.balance import Verdict, balance_of, check_balances
+from fluxnet.network.balance import check_balances
 from fluxnet.network.expression import Expression, constant, parameter
-from fluxnet.network.line_balance import contents_of_network
+from fluxnet.network.line_balance import Verdict, balance_line, contents_of_network
 from fluxnet.network.mend import MendKind, find_mends
 from fluxnet.network.model import (
     Basis,
@@ -51,6 +51,10 @@ def compounds(draw, name):
          "N": draw(st.integers(0, 2))}
     )  # fmt: skip
     return Species(name, Role.INSIDE, formula)
+
+
+def balance_of(reaction, network):
+    return balance_line(reaction, contents_of_network(network, (reaction,)))
 
 
 def network_of(species, *reactions, parameters=(A,), **fields):
