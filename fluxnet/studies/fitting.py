@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import replace
+from typing import TYPE_CHECKING
 
 import numpy as np
 
@@ -19,7 +20,14 @@ from fluxnet.solving.flux_fit import (
     PressingBound,
 )
 from fluxnet.solving.least_squares import fit_fluxes, spans_of
+from fluxnet.solving.sources import find_sources
 from fluxnet.studies.settling import Array, Span, keep_account
+from fluxnet.studies.shares import (
+    correlated_fluxes,
+    correlated_numbers,
+    shares_of,
+    slopes_of,
+)
 from fluxnet.studies.solution import (
     FluxEstimate,
     FluxSolution,
@@ -30,6 +38,9 @@ from fluxnet.studies.solution import (
 )
 from fluxnet.studies.telling import tell_fit, tell_infeasible, tell_violations
 from fluxnet.studies.units import rate_unit
+
+if TYPE_CHECKING:
+    from fluxnet.studies.plan_target import Target
 
 __all__ = ["fit_run"]
 
@@ -43,12 +54,19 @@ _TELLING = 0.5
 _ROUNDING = 1e-12
 
 
-def fit_run(network: Network, run: Run | None, *, suspects: bool = False) -> FluxSolution:
+def fit_run(
+    network: Network,
+    run: Run | None,
+    *,
+    suspects: bool = False,
+    plan: tuple[Target, float] | None = None,
+) -> FluxSolution:
     """Fit fluxes to one run (None: to the measured limits of the model alone).
 
     A run that the balances accept but whose fit a limit holds back beyond chance
     (p below 5 %) is inconsistent as well. What could be wrong is looked for where the balances
-    reject a run, and with ``suspects`` always.
+    reject a run, and with ``suspects`` always. ``plan`` asks what to measure next: what is to
+    be known better, and the relative error of what would be measured anew.
     """
     fit = fit_fluxes(network, run)
     frame = FluxSolution(
@@ -87,6 +105,12 @@ def fit_run(network: Network, run: Run | None, *, suspects: bool = False) -> Flu
         from fluxnet.studies.suspects_solve import seek_flux_suspects
 
         solution = replace(solution, suspects=seek_flux_suspects(fit, frame.unit))
+    if plan is not None:
+        from fluxnet.studies.plan import plan_measurements
+
+        target, error = plan
+        told = plan_measurements(fit, network, run, target, error, frame.unit)
+        solution = replace(solution, plan=told)
     if solution.status is SolveStatus.INCONSISTENT:
         from fluxnet.solving.least_change import least_change
         from fluxnet.studies.conflicts import explain_conflicts
@@ -133,6 +157,8 @@ def _tell_bound(bound: PressingBound) -> str:
 
 def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
     network = fit.built.network
+    sources = find_sources(fit)
+    shares = shares_of(sources, slopes_of(fit, np.eye(len(fit.reactions)), {}))
     fluxes = tuple(
         FluxEstimate(
             reaction=reaction.name,
@@ -145,6 +171,7 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
             best_low=float(fit.best_low[j]),
             best_high=float(fit.best_high[j]),
             kind=fit.kinds[j],
+            shares=() if np.isnan(fit.flux_sd[j]) else shares[j],
         )
         for j, reaction in enumerate(network.reactions)
     )
@@ -154,7 +181,8 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
 
     def spans(rows: Array, drift: Mapping[str, Array]) -> Span:
         intervals = spans_of(fit, rows, dict(drift))
-        return Span(intervals.sd, intervals.low, intervals.high)
+        shares = shares_of(sources, slopes_of(fit, rows, drift))
+        return Span(intervals.sd, intervals.low, intervals.high, shares)
 
     account = keep_account(fit.built, fit.fluxes, spans)
     return replace(
@@ -163,6 +191,8 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
         rates=tuple(_rate(row, frame.unit, rounding, fit.built.run) for row in rates),
         relations=_telling_relations(fit),
         moved=tuple(MovedParameter(m.name, m.value, m.sd, m.moved, m.moved_sd) for m in fit.moved),
+        correlated_numbers=correlated_numbers(fit),
+        correlated_fluxes=correlated_fluxes(fit),
         ledger=account.ledger,
         equations=account.equations,
         yields=account.yields,

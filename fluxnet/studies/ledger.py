@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
 from fluxnet.network.model import Network
+from fluxnet.studies.shares import Share
 
 __all__ = ["LedgerLine", "LedgerPlace", "keep_ledger", "ledger_places", "ledger_rows"]
 
@@ -28,7 +31,7 @@ class LedgerLine:
 
     ``net`` is ``made - spent``; over all compartments the nets of a carrier add up to zero.
     ``sd`` is that of the net where the net is determined, else None; ``low`` and ``high``
-    bound the net as they bound a flux.
+    bound the net as they bound a flux, and ``shares`` say where its error comes from.
     """
 
     carrier: str
@@ -39,6 +42,7 @@ class LedgerLine:
     sd: float | None = None
     low: float | None = None
     high: float | None = None
+    shares: tuple[Share, ...] = ()
 
 
 def ledger_places(network: Network, matrix: Stoichiometry) -> tuple[LedgerPlace, ...]:
@@ -74,6 +78,7 @@ def keep_ledger(
     sds: Array | None = None,
     lows: Array | None = None,
     highs: Array | None = None,
+    shares: Sequence[tuple[Share, ...]] = (),
 ) -> tuple[LedgerLine, ...]:
     """The ledger at given fluxes.
 
@@ -95,6 +100,7 @@ def keep_ledger(
                 sd,
                 None if lows is None else float(lows[k]),
                 None if highs is None else float(highs[k]),
+                shares[k] if shares and sd is not None else (),
             )
         )
     return tuple(lines)

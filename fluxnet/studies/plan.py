@@ -17,14 +17,13 @@ from fluxnet.solving.outlook import Slopes, sd_after
 from fluxnet.solving.sources import Sources, find_sources
 from fluxnet.studies.plan_candidates import Candidate, better_ones, inside_ones, new_ones
 from fluxnet.studies.plan_gauge import Gauge, Reading, gauge_at
-from fluxnet.studies.plan_result import Option, Plan, Share
+from fluxnet.studies.plan_result import Option, Plan
 from fluxnet.studies.plan_target import Target
 from fluxnet.studies.plan_words import tell_plan
+from fluxnet.studies.shares import shares_of
 from fluxnet.studies.units import rate_unit
 
-__all__ = ["plan_measurements", "shares_of"]
-
-_LEAST_SHARE = 5e-4
+__all__ = ["plan_measurements"]
 
 
 def plan_measurements(
@@ -78,25 +77,6 @@ def plan_measurements(
     if today is None and all(option.sd is None for option in found):
         plan = _with_needed(plan, reading.hidden, [*new, *inside])
     return tell_plan(plan)
-
-
-def shares_of(sources: Sources, gradients: np.ndarray) -> tuple[tuple[Share, ...], ...]:
-    """The sources of each functional's variance, the largest first; what is nothing left out.
-
-    Parameters
-    ----------
-    gradients
-        Functionals x u.
-    """
-    found: list[tuple[Share, ...]] = []
-    for row in sources.shares(gradients):
-        parts = [
-            Share(member.name, float(part))
-            for member, part in zip(sources.members, row, strict=True)
-            if abs(part) >= _LEAST_SHARE
-        ]
-        found.append(tuple(sorted(parts, key=lambda share: -share.share)))
-    return tuple(found)
 
 
 @record

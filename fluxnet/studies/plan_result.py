@@ -5,8 +5,9 @@ from __future__ import annotations
 from enum import Enum
 
 from fluxnet.ground.record import record
+from fluxnet.studies.shares import Share
 
-__all__ = ["How", "Option", "Plan", "Share", "Step"]
+__all__ = ["How", "Option", "Plan", "Step"]
 
 
 class How(Enum):
@@ -42,14 +43,6 @@ class Option:
     steps: tuple[Step, ...]
     sd: float | None
     of_today: float | None
-
-
-@record
-class Share:
-    """Which part of a variance comes from which source."""
-
-    source: str
-    share: float
 
 
 @record

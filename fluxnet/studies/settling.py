@@ -11,6 +11,7 @@ from fluxnet.ground.record import record
 from fluxnet.solving.build import Built
 from fluxnet.studies.equations import NetEquation, add_implied, find_equations
 from fluxnet.studies.ledger import LedgerLine, keep_ledger, ledger_places, ledger_rows
+from fluxnet.studies.shares import Share
 from fluxnet.studies.yields import Yield, find_yields
 
 __all__ = ["Account", "Array", "Span", "Spans", "keep_account"]
@@ -23,11 +24,13 @@ class Span:
     """What is known of functionals of the fluxes, one number each.
 
     ``sd`` is NaN where a functional is not determined; ``low`` and ``high`` may be infinite.
+    ``shares`` say where its error comes from, where that was asked for.
     """
 
     sd: Array
     low: Array
     high: Array
+    shares: tuple[tuple[Share, ...], ...] = ()
 
 
 Spans = Callable[[Array, Mapping[str, Array]], Span]
@@ -70,7 +73,7 @@ def keep_account(built: Built, fluxes: Array, spans: Spans) -> Account:
     whole = add_implied(equations[-1], network)
     releases = {t.species: t.coefficient for t in whole.terms if not t.implied}
     return Account(
-        keep_ledger(places, rows, fluxes, span.sd, span.low, span.high),
+        keep_ledger(places, rows, fluxes, span.sd, span.low, span.high, span.shares),
         (*equations[:-1], whole),
         find_yields(network, releases),
     )

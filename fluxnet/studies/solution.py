@@ -12,6 +12,7 @@ from fluxnet.solving.flux_fit import FluxKind, FluxRelation, RateKind
 from fluxnet.studies.bill import Bill
 from fluxnet.studies.equations import NetEquation
 from fluxnet.studies.ledger import LedgerLine
+from fluxnet.studies.shares import Correlated, Share
 from fluxnet.studies.yields import Yield
 
 if TYPE_CHECKING:
@@ -20,6 +21,7 @@ if TYPE_CHECKING:
     from fluxnet.solving.unbounded import Unbounded
     from fluxnet.studies.aims import Aim
     from fluxnet.studies.conflicts import ToldConflict
+    from fluxnet.studies.plan_result import Plan
     from fluxnet.studies.suspect_result import Suspects
 
 __all__ = [
@@ -57,7 +59,7 @@ class FluxEstimate:
     ``value`` is the representative shown (of an undetermined flux: that of the least total
     flux); ``sd`` is None where it is not determined. ``low`` to ``high`` is what 95 % of the
     evidence allows, ``best_low`` to ``best_high`` the range at the best fit or optimum;
-    infinities mark open ends.
+    infinities mark open ends. ``shares`` say where the variance of a determined one comes from.
     """
 
     reaction: str
@@ -69,6 +71,7 @@ class FluxEstimate:
     best_low: float
     best_high: float
     kind: FluxKind
+    shares: tuple[Share, ...] = ()
 
 
 @record
@@ -181,7 +184,8 @@ class FluxSolution:
     errors; ``fraction`` the share of the optimum at which fluxes and ranges are given.
     Measured values are held within ``within`` sds and could be within ``smallest_within``.
     ``proof`` is that of the status (None: none is asked for, in a fit), ``bill`` the optimum's.
-    ``suspects`` are what could be wrong in a fit (None: not looked for).
+    ``suspects`` are what could be wrong in a fit (None: not looked for); ``plan`` what to
+    measure next (None: not asked). What is ``correlated`` the data tell only together.
     """
 
     run: str | None
@@ -209,6 +213,9 @@ class FluxSolution:
     suspects: Suspects | None = None
     relations: tuple[FluxRelation, ...] = ()
     moved: tuple[MovedParameter, ...] = ()
+    correlated_numbers: tuple[Correlated, ...] = ()
+    correlated_fluxes: tuple[Correlated, ...] = ()
+    plan: Plan | None = None
     conflicts: tuple[ToldConflict, ...] = ()
     least_change: LeastChange | None = None
     unbounded: Unbounded | None = None

@@ -26,6 +26,8 @@ def solve_network(
     within: float = 2.0,
     fraction: float = 1.0,
     suspects: bool = False,
+    plan: str | None = None,
+    plan_error: float = 0.05,
 ) -> Solution:
     """Solve the fluxes of each run.
 
@@ -44,6 +46,11 @@ def solve_network(
         The share of the optimum at which the ranges of the fluxes are searched.
     suspects
         Without an aim, look for what could be wrong in sound runs, too.
+    plan
+        Without an aim, tell what to measure next to know this better, as
+        :func:`fluxnet.studies.plan_target.read_target` reads it.
+    plan_error
+        The relative error of what would be measured anew.
 
     Raises
     ------
@@ -60,14 +67,24 @@ def solve_network(
         raise MisuseError(f"{within:g} sd hold nothing: leave the rates out, or take up to 1e6")
     if not 0 <= fraction <= 1:
         raise MisuseError("a fraction of the optimum lies between 0 and 1")
+    if plan is not None and (maximise is not None or minimise is not None):
+        raise MisuseError("a plan is for measured rates: leave the aim out")
+    if not 0 < plan_error < 1:
+        raise MisuseError("the error of a new measurement lies between 0 and 100 %")
     runs: tuple[Run | None, ...] = (None,) if table is None else table.runs
     wanted = minimise if maximise is None else maximise
     # Each of the two ways imports what it needs when it is gone.
     if wanted is None:
         from fluxnet.studies.fitting import fit_run
 
+        wanted_for = None
+        if plan is not None:
+            from fluxnet.studies.plan_target import read_target
+
+            wanted_for = (read_target(plan, network), plan_error)
+
         def fit_one(network: Network, run: Run | None) -> FluxSolution:
-            return fit_run(network, run, suspects=suspects)
+            return fit_run(network, run, suspects=suspects, plan=wanted_for)
 
         return Solution(network, tuple(_with_cause(network, fit_one, run) for run in runs))
     from fluxnet.studies.aims import Sense, read_aim
