@@ -18,9 +18,11 @@ from scipy.optimize import linprog
 from fluxnet.network.model import Basis, Direction, Quantity, QuantityKind, Role
 from fluxnet.rates.measured import MeasuredRate, Run
 from fluxnet.reading.model import read_model
+from fluxnet.solving.alter import hard_part
 from fluxnet.solving.build import Built, build_problem
 from fluxnet.solving.conflict import find_conflict, find_conflicts
 from fluxnet.solving.farkas import find_contradiction
+from fluxnet.solving.least_change import least_change
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.proof import exact_programme, exact_sums
 from fluxnet.studies.bill import BillSide
@@ -31,8 +33,8 @@ NAMES = ("amino-acid", "heterolactic", "mixed-acid", "solvent", "yeast")
 EACH = 8
 
 
-def holds(problem: Problem, members=None) -> bool:
-    """Whether some members (or everything) can hold together, by scipy."""
+def least(problem: Problem, cost, members=None):
+    """The least cost under some members (or everything), by scipy; None where nothing holds."""
     rows = range(len(problem.rows)) if members is None else [i for m in members for i in m.rows]
     rows = sorted(rows)
     columns = range(len(problem.columns)) if members is None else {m.column for m in members}
@@ -43,7 +45,7 @@ def holds(problem: Problem, members=None) -> bool:
     matrix, low, high = problem.matrix[rows], problem.row_low[rows], problem.row_high[rows]
     upper, lower = np.isfinite(high), np.isfinite(low)
     answer = linprog(
-        np.zeros(len(problem.columns)),
+        cost,
         A_ub=np.vstack([matrix[upper], -matrix[lower]]),
         b_ub=np.concatenate([high[upper], -low[lower]]),
         bounds=bounds,
@@ -51,7 +53,12 @@ def holds(problem: Problem, members=None) -> bool:
         options={"presolve": False},
     )
     assert answer.status in (0, 2), answer.message
-    return bool(answer.status == 0)
+    return answer.fun if answer.status == 0 else None
+
+
+def holds(problem: Problem, members=None) -> bool:
+    """Whether some members (or everything) can hold together, by scipy."""
+    return least(problem, np.zeros(len(problem.columns)), members) is not None
 
 
 def lifted(problem: Problem, members) -> Problem:
@@ -156,3 +163,28 @@ def test_conflicts_share_nothing_and_nothing_is_left_without_them(built):
     given = [m for c in conflicts for m in c.given]
     assert len({(m.kind, m.rows) for m in given}) == len(given)
     assert holds(lifted(built.problem, given))
+
+
+def test_no_other_values_are_a_smaller_change(built):
+    # the sum of squares is convex: its slope at the least change points away from all others
+    problem = built.problem
+    change = least_change(problem)
+    hard = hard_part(problem)
+    assert change.possible is holds(hard)
+    if not change.possible:
+        return
+    rows = [problem.matrix[i] for i in built.measured]
+    sds = [problem.rows[i].sd for i in built.measured]
+    moves = [c.in_sd if abs(c.in_sd) > 1e-5 else 0.0 for c in change.changes]
+    slope = [2 * move / sd for move, sd in zip(moves, sds, strict=True)]
+    here = sum(s * c.changed for s, c in zip(slope, change.changes, strict=True))
+    size = sum(abs(s * c.changed) for s, c in zip(slope, change.changes, strict=True))
+    cost = sum((s * row for s, row in zip(slope, rows, strict=True)), np.zeros(len(rows[0])))
+    near = replace(  # rounding in the slope makes no difference in a box
+        hard,
+        column_low=np.maximum(hard.column_low, -1e2),
+        column_high=np.minimum(hard.column_high, 1e2),
+    )
+    assert least(near, cost) == pytest.approx(here, abs=1e-6 * (1 + size))
+    assert sum(c.in_sd**2 for c in change.changes) == pytest.approx(change.total, rel=1e-9)
+    assert change.common_k <= max(abs(c.in_sd) for c in change.changes) * (1 + 1e-9)
