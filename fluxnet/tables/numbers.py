@@ -55,6 +55,9 @@ def read_cell(cell: Cell, decimal: Decimal, title: str, *, is_sd: bool = False) 
         return Number(fault=cell_fault(Name.UNREADABLE_CELL, cell, title, words))
     if cell.number is not None:
         return Number(cell.number, percent=cell.text.endswith("%"))
+    alone = read_number(cell.text, decimal)
+    if alone is not None:
+        return Number(alone)
     if is_infinite(cell.text):
         words, mend = f"`{cell.text}` is no measured value", "leave the cell blank: not measured"
         return Number(fault=cell_fault(Name.NOT_A_NUMBER, cell, title, words, mend))

@@ -46,7 +46,8 @@ _PATTERNS = {
     )
     for d in Decimal
 }
-_PLAIN = re.compile(r"[+-]?(?:\d+|(?P<point>\d+\.(?:\d{1,2}|\d{4,})))", re.ASCII)
+_PLAIN = re.compile(r"[+-]?(?P<whole>\d+)(?:\.(?P<fraction>\d+))?", re.ASCII)
+_LONGEST_PLAIN = 300  # more digits may be beyond what a float holds
 _MOST_KEPT = 1 << 16
 _INFINITE = re.compile(r"[+-]?(nan|inf|infinity|∞)", re.IGNORECASE)
 
@@ -89,7 +90,7 @@ def read_number(text: str, decimal: Decimal) -> float | None:
     >>> read_number("1.234,5", Decimal.COMMA), read_number("1.234,5", Decimal.POINT)
     (1234.5, None)
     """
-    if decimal is Decimal.POINT and _PLAIN.fullmatch(text) and len(text) < 300:
+    if decimal is Decimal.POINT and len(text) < _LONGEST_PLAIN and _PLAIN.fullmatch(text):
         return float(text)
     text = text.replace("\u2212", "-").strip()
     found = _PATTERNS[decimal].fullmatch(text)
@@ -102,6 +103,8 @@ def read_number(text: str, decimal: Decimal) -> float | None:
 
 
 _POINT_ALONE = frozenset({Decimal.POINT})
+_EITHER = frozenset(Decimal)
+_NEITHER: frozenset[Decimal] = frozenset()
 
 
 def is_infinite(text: str) -> bool:
@@ -120,8 +123,13 @@ def possible_decimals(text: str) -> frozenset[Decimal]:
     (['COMMA'], frozenset())
     """
     plain = _PLAIN.fullmatch(text)
-    if plain is not None and len(text) < 300:
-        return _POINT_ALONE if plain["point"] else frozenset()
+    if plain is not None and len(text) < _LONGEST_PLAIN:
+        whole, fraction = plain["whole"], plain["fraction"]
+        if fraction is None:
+            return _NEITHER
+        # a sign between thousands has three digits behind it, and one to three before it
+        grouped = len(fraction) == 3 and len(whole) <= 3 and whole[0] != "0"
+        return _EITHER if grouped else _POINT_ALONE
     values = {d: read_number(text, d) for d in Decimal}
     readable = {d: v for d, v in values.items() if v is not None}
     if len(readable) == 2 and len(set(readable.values())) == 1:

@@ -168,14 +168,16 @@ def _of(what: str, bad: BadUnit) -> str:
 def _factor(
     unit: RateUnit | None, reading: Reading, target: Target, known: KnownFactors
 ) -> Factor | BadUnit:
-    """The factor of a unit; found once for all runs of a table that need the same."""
-    written = None if unit is None or unit.unit is None else unit.unit.text
-    kind = None if unit is None else unit.kind
-    into = (target.basis, target.shown, target.concentration)
-    key = (written, kind, reading.quantity, *into)
-    if key not in known:
-        known[key] = factor_to(unit, reading.quantity, reading.species, target)
-    return known[key]
+    """The factor of a unit; found once for all runs of a table that need the same.
+
+    Units and quantities are told apart by being the same object, which is sooner seen than
+    that they are equal; the readings of a table share them, and outlive ``known``.
+    """
+    key = (id(unit), id(reading.quantity), target.shown, target.concentration, id(target.biomass))
+    found = known.get(key)
+    if found is None:
+        found = known[key] = factor_to(unit, reading.quantity, reading.species, target)
+    return found
 
 
 def _rates(
@@ -186,8 +188,10 @@ def _rates(
     rule: SdRule,
 ) -> tuple[list[MeasuredRate], list[str]]:
     """The rates with an sd each, and the names of those whose sd was assumed."""
-    weights = [carbon_weight(s.reading.quantity, s.reading.species, target) for s in scaled]
-    guesses = assume_sds([s.value or 0.0 for s in scaled], weights, rule)
+    guesses: Sequence[float] = [0.0] * len(scaled)
+    if any(_lacks_sd(s) for s in scaled):
+        weights = [carbon_weight(s.reading.quantity, s.reading.species, target) for s in scaled]
+        guesses = assume_sds([s.value or 0.0 for s in scaled], weights, rule)
     rates: list[MeasuredRate] = []
     assumed: list[str] = []
     for one, guess in zip(scaled, guesses, strict=True):
@@ -195,12 +199,11 @@ def _rates(
         sd, relative, source = one.sd, one.relative, SdSource.GIVEN
         if one.value is None:
             sd = relative = None
-        elif relative is not None and (one.value != 0 or relative == 0):
-            sd, source = relative * abs(one.value), SdSource.RELATIVE
-        elif sd is None:
-            # 5 % of nothing would be exact: a rate of 0 has the floor as its sd
+        elif _lacks_sd(one):
             sd, relative, source = guess or rule.floor, None, SdSource.ASSUMED
             assumed.append(str(quantity))
+        elif relative is not None and (one.value != 0 or relative == 0):
+            sd, source = relative * abs(one.value), SdSource.RELATIVE
         own: float | None = None
         if sd and one.value is not None and shared_error and _shares(quantity, biomass):
             # a typed 0 stays exact: it has no part in the shared error either
@@ -219,6 +222,13 @@ def _rates(
             )
         )
     return rates, assumed
+
+
+def _lacks_sd(one: _Scaled) -> bool:
+    """Whether an sd is to be assumed: 5 % of nothing would be exact, so a rate of 0 has none."""
+    if one.value is None or one.sd is not None:
+        return False
+    return one.relative is None or (one.value == 0 and one.relative != 0)
 
 
 def _with_covariance(

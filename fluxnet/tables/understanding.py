@@ -146,7 +146,8 @@ def _biomass(readings: Readings, vocabulary: Vocabulary) -> tuple[Species | None
     if known or vocabulary.network is not None:
         return (known[0] if len(known) == 1 else None), ()
     named = [s for s in readings.species if s.role is Role.BIOMASS]
-    rows = [str(r.quantity) for r in readings.readings if _needs_biomass(r)]
+    once = {id(r.quantity): r for r in readings.readings}  # the rows of a quantity share it
+    rows = [str(r.quantity) for r in once.values() if _needs_biomass(r)]
     return (named[0] if named else assumed_biomass()), tuple(dict.fromkeys(rows))
 
 

@@ -9,7 +9,7 @@ from hypothesis import strategies as st
 from fluxnet.rates.covariance import covariance_at, is_possible, run_covariance
 from fluxnet.tables.decoding import decode
 from fluxnet.tables.delimited import split_lines, split_text
-from fluxnet.tables.numerals import Decimal, read_number
+from fluxnet.tables.numerals import Decimal, possible_decimals, read_number
 from fluxnet.tables.rates_table import RatesReading, read_rates_bytes, read_rates_text
 from fluxnet.tables.writer import write_rates_text
 
@@ -163,3 +163,25 @@ def test_a_number_written_in_full_is_read_as_itself(number):
 def test_text_in_any_encoding_is_text_again(text):
     for codec in ("utf-8", "utf-8-sig", "utf-16"):
         assert decode(text.encode(codec)).text == text
+
+
+@given(st.from_regex(r"[+-]?[0-9]{1,5}(\.[0-9]{1,5})?", fullmatch=True))
+def test_a_number_tells_as_much_with_a_point_as_with_a_comma(text: str) -> None:
+    """Numbers with a point are recognised by a quicker way than those with a comma."""
+    other = {Decimal.POINT: Decimal.COMMA, Decimal.COMMA: Decimal.POINT}
+    turned = text.replace(".", ",")
+    assert possible_decimals(text) == {other[d] for d in possible_decimals(turned)}
+    for decimal in Decimal:
+        assert read_number(text, decimal) == read_number(turned, other[decimal])
+
+
+CELL = r"[ \t]*[^\s\",;#]{0,4}[ \t]*"
+
+
+@given(st.from_regex(f"{CELL}(;{CELL}){{0,4}}", fullmatch=True))
+def test_a_line_without_quotes_is_cut_as_one_with_them(line: str) -> None:
+    """Such lines are cut by a quicker way; a quoted cell behind them makes it the other."""
+    rows = split_text((line,), ";", "f").rows
+    (longer,) = split_text((line + ';"q"',), ";", "f").rows
+    first = rows[0].cells if rows else ()
+    assert first == longer.cells[: len(first)]
