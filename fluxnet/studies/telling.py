@@ -176,7 +176,7 @@ def tell_unbounded(aim: Aim, reason: Unbounded) -> str:
 def tell_violations(problem: Problem) -> tuple[str, ...]:
     """The limits that a measured value of the same quantity passes by more than two sds."""
     return tuple(
-        f"{v.limit.name} is passed by {v.measured.name}, measured {v.measured.value:.4g}, "
+        f"{v.limit.name} is passed by {v.measured.name}, measured {v.value:.4g}, "
         f"by {v.in_sd:.1f} sd"
         for v in find_violations(problem)
     )

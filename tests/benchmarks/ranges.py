@@ -4,8 +4,7 @@ Run it as a script: ``python tests/benchmarks/ranges.py``. All three give the sa
 (compared first, to 1e-8): ours, which builds its model and checks every answer; a loop over
 ``scipy.optimize.linprog``; and a bare highspy loop on a model that stands ready, with cost
 changes and runs only. Prints the ratios of the medians of alternating repeats: linprog over
-ours should be above 6, ours over the bare loop below 1.5. Then the time of a conflict among
-measured rates of the same network, which should be below 0.5 s.
+ours should be above 6, ours over the bare loop below 1.5.
 """
 
 from __future__ import annotations
@@ -22,23 +21,12 @@ from scipy.optimize import linprog
 
 from fluxnet.reading.model import read_model
 from fluxnet.solving.build import build_problem
-from fluxnet.solving.conflict import find_conflict
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.ranges import find_ranges
-from fluxnet.tables.rates_table import read_rates_text
 
 Array = NDArray[np.float64]
 REPEATS = 7
 MODEL = Path(__file__).with_name("sixty.flux")
-RATES = """run,species,direction,rate,sd,unit
-first,glucose,in,4,0.2,mmol/g/h
-first,xylose,in,0,0,mmol/g/h
-first,oxygen,in,3,0.1,mmol/g/h
-first,mu,,0.45,0.01,1/h
-first,ethanol,out,1,0.1,mmol/g/h
-first,acetate,out,2,0.1,mmol/g/h
-first,CO2,out,8,0.5,mmol/g/h
-"""
 
 
 def by_linprog(problem: Problem) -> Array:
@@ -129,14 +117,7 @@ def main() -> int:
     faster, slower = middle["linprog"] / middle["ours"], middle["ours"] / middle["bare"]
     print(f"linprog / ours {faster:6.1f}   (above 6)")
     print(f"ours / bare    {slower:6.2f}   (below 1.5)")
-    table = read_rates_text(RATES, network=network).table
-    assert table is not None
-    measured = build_problem(network, table.runs[0], within=2).problem
-    start = perf_counter()
-    conflict = find_conflict(measured)
-    spent = perf_counter() - start
-    print(f"a conflict of {len(conflict.members)} members: {1000 * spent:.0f} ms (below 500)")
-    return int(not (worst < 1e-8 and faster > 6 and slower < 1.5 and spent < 0.5))
+    return int(not (worst < 1e-8 and faster > 6 and slower < 1.5))
 
 
 if __name__ == "__main__":

@@ -265,3 +265,21 @@ def test_a_measured_ratio_over_a_rate_that_must_be_zero_is_no_fault(make_network
         (ratio, upkeep) = change.changes
         assert ratio.changed == pytest.approx(1.2)
         assert upkeep.changed == pytest.approx(1.0)  # two ATP a glucose, all of it to lactate
+
+
+def test_a_measured_ratio_beyond_a_limit_on_it_is_named(make_network, make_run):
+    network = make_network(CELL, ("CO2 out / oxygen <= 1.1", "lactate / glucose >= 0.5"))
+    run = make_run(network, "CO2 out / oxygen in 1.3 ± 0.05", "lactate out / glucose in 0.45 ± 0.1")
+    found = find_violations(build_problem(network, run).problem)
+    assert [v.limit.name for v in found] == ["limit CO2 out / oxygen <= 1.1"]
+    assert found[0].in_sd == pytest.approx(4)
+    assert found[0].value == 1.3
+
+
+def test_violations_are_the_same_with_an_aim_and_without(make_network, make_run):
+    network = make_network(CELL, ("oxygen <= 1", "CO2 out / oxygen <= 1.1"))
+    run = make_run(network, "oxygen in 2 ± 0.1", "CO2 out / oxygen in 1.3 ± 0.05")
+    problems = [build_problem(network, run, within=k).problem for k in (None, 2.0)]
+    told = [[(v.limit.name, v.in_sd) for v in find_violations(p)] for p in problems]
+    assert told[0] == told[1]
+    assert len(told[0]) == 2
