@@ -85,8 +85,12 @@ def exact_sums(
     """
     numbers = exact_numbers(built)
     species = exact_species(built.stoichiometry, numbers)
+    balances = dict(zip(built.stoichiometry.species, species, strict=True))
     rows = tuple(
-        exact_row(built, form_of_row(built, row), species, numbers) for row in built.problem.rows
+        balances[row.name]
+        if row.quantity is None
+        else exact_row(built, form_of_row(built, row), species, numbers)
+        for row in built.problem.rows
     )
     found: list[SparseRow] = []
     for terms in sums:
@@ -198,7 +202,9 @@ def _words(found: ExactSolution, verified: bool, gap: float) -> str:
 
 
 def _bound(value: float) -> Fraction | None:
-    return as_fraction(value) if isfinite(value) else None
+    if not isfinite(value):
+        return None
+    return Fraction(int(value)) if value.is_integer() else as_fraction(value)
 
 
 def _row_bounds(
