@@ -21,8 +21,9 @@ __all__ = [
 # A cell that begins like this would run as a formula in a spreadsheet.
 _FORMULA_STARTS = ("=", "+", "-", "@", "\t", "\r")
 
-# A cell of a workbook holds no more letters.
+# A cell of a workbook holds no more letters, a sheet no more rows.
 _LONGEST = 32_767
+_MOST_ROWS = 1_048_576
 
 
 def write_text(path: Path, text: str, *, force: bool = False) -> None:
@@ -70,9 +71,16 @@ def write_workbook(tables: Sequence[Table], path: Path, *, force: bool = False) 
     Raises
     ------
     MisuseError
-        Where the file exists and ``force`` is not given, or xlsxwriter is not installed.
+        Where the file exists and ``force`` is not given, xlsxwriter is not installed, or a
+        table has more rows than a sheet.
     """
     refuse_workbook(path, force=force)
+    for table in tables:
+        if len(table.rows) + 2 > _MOST_ROWS:
+            raise MisuseError(
+                f"{path}: the table {table.key} has {len(table.rows):,} rows, and a sheet holds "
+                f"{_MOST_ROWS:,}; --csv DIR writes any number"
+            )
     import xlsxwriter
 
     stream = io.BytesIO()

@@ -117,3 +117,11 @@ def test_an_end_without_a_limit_is_a_blank_cell(tmp_path: Path) -> None:
     cells = book.get_sheet_by_name("ranges").to_python(skip_empty_area=False)
     assert cells[2:4] == [["burn", "", ""], ["upkeep", "", 2.0]]
     assert cells[4][0] == "x" * 32_767
+
+
+def test_a_table_with_more_rows_than_a_sheet_is_refused_whole(tmp_path: Path) -> None:
+    rows = ((1.0,),) * 1_048_575
+    table = Table("long", "long", (Column("a", "a"),), rows)
+    with pytest.raises(MisuseError, match="a sheet holds 1,048,576"):
+        write_workbook([table], tmp_path / "book.xlsx")
+    assert not (tmp_path / "book.xlsx").exists()
