@@ -7,6 +7,7 @@ from collections.abc import Callable
 import numpy as np
 
 from fluxnet.ground.errors import InputError, MisuseError
+from fluxnet.ground.progress import Progress, silent
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import RatesTable, Run
 from fluxnet.studies.solution import FluxSolution, Solution
@@ -28,6 +29,7 @@ def solve_network(
     suspects: bool = False,
     plan: str | None = None,
     plan_error: float = 0.05,
+    progress: Progress = silent,
 ) -> Solution:
     """Solve the fluxes of each run.
 
@@ -93,7 +95,9 @@ def solve_network(
     aim = read_aim(wanted, Sense.MINIMISE if maximise is None else Sense.MAXIMISE, network)
 
     def best_of(network: Network, run: Run | None) -> FluxSolution:
-        return optimise(network, run, aim, within=within, fraction=fraction)
+        return optimise(
+            network, run, aim, within=within, fraction=fraction, progress=progress
+        )
 
     return Solution(network, tuple(_with_cause(network, best_of, run) for run in runs))
 
