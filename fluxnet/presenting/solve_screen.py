@@ -89,7 +89,7 @@ def _run_blocks(run: FluxSolution, with_bill: bool, everything: bool) -> tuple[B
         *doubt_blocks(run),
         *_assumptions(run),
         *_suspects(run, everything=everything),
-        *conflict_blocks(run),
+        *conflict_blocks(run, prices=with_bill),
         *unbounded_blocks(run),
     ]
     if run.fluxes:

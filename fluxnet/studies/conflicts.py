@@ -2,18 +2,21 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from math import inf
+
 from fluxnet.ground.record import record
 from fluxnet.solving.alternatives import Alternative, find_alternatives
 from fluxnet.solving.build import Built
 from fluxnet.solving.conflict import Conflict, find_conflicts, without_members
 from fluxnet.solving.farkas import find_contradiction
 from fluxnet.solving.problem import Problem
-from fluxnet.solving.proof import exact_programme, exact_sums
+from fluxnet.solving.proof import Proof, exact_programme, exact_sums
 from fluxnet.studies.bill import Bill
 from fluxnet.studies.bill_conflict import BillPrice, make_bill, price_species
 from fluxnet.studies.bill_unit import choose_coin
 
-__all__ = ["MOST_CONFLICTS", "ToldConflict", "explain_conflicts"]
+__all__ = ["MOST_CONFLICTS", "ToldConflict", "explain_conflicts", "proof_of"]
 
 MOST_CONFLICTS = 3
 """So many conflicts at most are looked for."""
@@ -72,3 +75,11 @@ def explain_conflicts(
         bill, prices = make_bill(built, proof, coin, unit), price_species(built, proof, coin)
         told.append(ToldConflict(conflict, bill, coin.is_surplus, prices, ways))
     return tuple(told)
+
+
+def proof_of(conflicts: Sequence[ToldConflict]) -> Proof:
+    """Whether conflicts prove in exact arithmetic that nothing is feasible: one bill is enough."""
+    if any(told.bill is not None and told.bill.verified for told in conflicts):
+        return Proof(True, 0.0, "Proven in exact arithmetic")
+    words = "Not proven: no combination of what is in conflict excludes all fluxes"
+    return Proof(False, inf, words)

@@ -85,7 +85,7 @@ def fit_run(
     )
     if fit.status is FitStatus.INFEASIBLE:
         from fluxnet.solving.least_change import least_change
-        from fluxnet.studies.conflicts import explain_conflicts
+        from fluxnet.studies.conflicts import explain_conflicts, proof_of
 
         conflicts = explain_conflicts(fit.built, fit.built.problem, frame.unit)
         change = least_change(fit.built.problem)
@@ -94,6 +94,7 @@ def fit_run(
             status=SolveStatus.INFEASIBLE,
             conflicts=conflicts,
             least_change=change,
+            proof=proof_of(conflicts),
             words=tell_infeasible(conflicts, change),
         )
     test = _test(fit)
