@@ -16,7 +16,13 @@ __all__ = ["tell_one_way_carriers"]
 def tell_one_way_carriers(
     network: Network, dead_ends: Collection[DeadEnd]
 ) -> tuple[Diagnostic, ...]:
-    """A warning for each carrier among the dead ends: it can neither leave nor pile up."""
+    """A warning for each carrier among the dead ends: it can neither leave nor pile up.
+
+    Parameters
+    ----------
+    dead_ends
+        Those of :func:`fluxnet.checks.graph.find_dead_ends`: what they tell is not told again.
+    """
     told: list[Diagnostic] = []
     for end in dead_ends:
         carrier = network.find_species(end.species)

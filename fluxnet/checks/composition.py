@@ -57,7 +57,7 @@ class CompositionResult:
 
 
 def find_compositions(network: Network) -> CompositionResult:
-    """Work out what species without a formula must hold, or which reactions forbid any content.
+    r"""Work out what species without a formula must hold, or which reactions forbid any content.
 
     Every balance of a line (C, N, S, P, other elements, electrons) is one linear equation for
     the unknown contents. They are solved exactly; counts of atoms must not be negative, and a
@@ -73,6 +73,16 @@ def find_compositions(network: Network) -> CompositionResult:
     -------
     CompositionResult
         Implied contents, and irreducible contradictions that have no reaction in common.
+
+    Examples
+    --------
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> more = "inside middle\ncompartment c\n    one : pyruvate -> middle + CO2\n"
+    >>> more += "    two : middle + NADH -> ethanol\n"
+    >>> found = find_compositions(read_model_text(MODEL + more).network)
+    >>> [(i.species, dict(i.contents)) for i in found.implied]
+    [('middle', {'C': Fraction(2, 1), 'electrons': Fraction(10, 1)})]
     """
     contents = contents_of_network(network)
     unknown = [n for n, content in contents.by_species.items() if content is None]

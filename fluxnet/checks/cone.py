@@ -60,6 +60,17 @@ def exact_rows(network: Network, stoich: Stoichiometry) -> tuple[dict[int, Fract
     """The rows of all species as {reaction: coefficient}, the parameters at their values.
 
     A coefficient that is zero at these values is left out.
+
+    Examples
+    --------
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(MODEL).network
+    >>> stoich = stoichiometry(network)
+    >>> atp = exact_rows(network, stoich)[stoich.row("ATP")]
+    >>> {network.reactions[j].name: str(amount) for j, amount in atp.items()}
+    {'glycolysis': '2', 'burn': '1', 'oxphos': '7/5', 'growth': '-9/5', 'upkeep': '-1'}
     """
     values = parameter_values(network)
     rows: list[dict[int, Fraction]] = [{} for _ in stoich.species]
@@ -74,13 +85,24 @@ def exact_rows(network: Network, stoich: Stoichiometry) -> tuple[dict[int, Fract
 def flux_cone(
     network: Network, stoich: Stoichiometry, *, uptake: Collection[str] | None = None
 ) -> Cone:
-    """The cone of a network's fluxes.
+    r"""The cone of a network's fluxes.
 
     Parameters
     ----------
     uptake
         The boundary species that may be taken up; None opens every uptake that the roles
         allow, an empty collection closes them all.
+
+    Examples
+    --------
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> more = "limit ethanol <= 0\n"
+    >>> network = read_model_text(MODEL + more).network
+    >>> cone = flux_cone(network, stoichiometry(network))
+    >>> [form.name for form in cone.sides if form.kind is FormKind.LIMIT]
+    ['limit ethanol <= 0']
     """
     rows = exact_rows(network, stoich)
     row_of = dict(zip(stoich.species, rows, strict=True))
@@ -110,7 +132,23 @@ def flux_cone(
 
 
 def without(cone: Cone, *forms: Form) -> Cone:
-    """The wider cone in which some forms are no longer held."""
+    """The wider cone in which some forms are no longer held.
+
+    Parameters
+    ----------
+    forms
+        Forms of this cone, the very ones: they are told by identity.
+
+    Examples
+    --------
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(MODEL).network
+    >>> cone = flux_cone(network, stoichiometry(network))
+    >>> len(cone.sides) - len(without(cone, cone.sides[0]).sides)
+    1
+    """
     lifted = set(map(id, forms))
     return replace(
         cone,
@@ -129,6 +167,13 @@ def quantity_form(
 
     A rate stands in its own direction, in moles; mu is the release of biomass, of several
     species weighed by their mass per mole. Of a ratio the numerator is taken.
+
+    Parameters
+    ----------
+    rows
+        The exact row of each species by name, as of :func:`exact_rows`.
+    quantity
+        What is asked for.
     """
     match quantity.kind:
         case QuantityKind.RATE | QuantityKind.SURPLUS:

@@ -63,7 +63,16 @@ class MostEnergy:
 
 
 def energy_carrier(network: Network) -> Species | None:
-    """The carrier named ATP where it carries energy, else the first that does."""
+    """The carrier named ATP where it carries energy, else the first that does.
+
+    Examples
+    --------
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(MODEL).network
+    >>> energy_carrier(network).name
+    'ATP'
+    """
     carriers = [
         s for s in network.carriers if s.cargo is not None and s.cargo.kind is CargoKind.ENERGY
     ]
@@ -75,6 +84,16 @@ def find_most_energy(network: Network, stoich: Stoichiometry) -> tuple[MostEnerg
 
     What holds no more electrons than CO2, water and ammonia (oxygen, nitrate, CO2) may be
     taken up beside it. Limits count by their signs only.
+
+    Examples
+    --------
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(MODEL).network
+    >>> most = find_most_energy(network, stoichiometry(network))
+    >>> [(m.substrate, m.carrier, float(m.amount)) for m in most]
+    [('glucose', 'ATP', 20.8)]
     """
     carrier = energy_carrier(network)
     if carrier is None:

@@ -44,11 +44,21 @@ class Part:
 
 
 def find_dead_ends(network: Network, stoich: Stoichiometry) -> tuple[DeadEnd, ...]:
-    """Balanced species that are only made or only used, each with the reactions it closes.
+    r"""Balanced species that are only made or only used, each with the reactions it closes.
 
     A species that only one reaction touches is a dead end even where that runs both ways.
     Those that become dead ends only because another has closed their reactions are told with
     that other, not again.
+
+    Examples
+    --------
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> more = "inside lactate\ncompartment c\n    ldh : pyruvate + NADH -> lactate\n"
+    >>> network = read_model_text(MODEL + more).network
+    >>> [(end.species, end.blocked) for end in find_dead_ends(network, stoichiometry(network))]
+    [('lactate', ('ldh',))]
     """
     makers, users = _neighbours(network, stoich)
     balanced = [s.name for s in network.balanced if makers[s.name] | users[s.name]]
@@ -109,9 +119,20 @@ def find_parts(network: Network, stoich: Stoichiometry) -> tuple[Part, ...]:
 
 
 def tell_dead_ends(network: Network, dead_ends: Collection[DeadEnd]) -> tuple[Diagnostic, ...]:
-    """A warning for each dead end, with the reactions that can carry no flux because of it.
+    r"""A warning for each dead end, with the reactions that can carry no flux because of it.
 
     Carriers are told by :func:`fluxnet.checks.carriers.tell_one_way_carriers`.
+
+    Examples
+    --------
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> more = "inside lactate\ncompartment c\n    ldh : pyruvate + NADH -> lactate\n"
+    >>> network = read_model_text(MODEL + more).network
+    >>> ends = find_dead_ends(network, stoichiometry(network))
+    >>> [told.message for told in tell_dead_ends(network, ends)]
+    ['lactate is made by ldh, but nothing uses it']
     """
     told: list[Diagnostic] = []
     for end in dead_ends:

@@ -92,7 +92,13 @@ class Interior:
 
 
 def without_noise(price: float) -> float:
-    """The price of a scaled row or column, zero where the solver only nearly left it there."""
+    """The price of a scaled row or column, zero where the solver only nearly left it there.
+
+    Examples
+    --------
+    >>> without_noise(1e-12), without_noise(0.25)
+    (0.0, 0.25)
+    """
     return float(price) if abs(price) > _NOISE else 0.0
 
 
@@ -172,7 +178,20 @@ def open_most(cone: Cone, wanted: Sequence[int] | None = None) -> Opening:
 
 
 def find_interior(cone: Cone) -> Interior:
-    """What is zero throughout a cone, and the space that its vectors fill."""
+    r"""What is zero throughout a cone, and the space that its vectors fill.
+
+    Examples
+    --------
+    >>> from fluxnet.checks.cone import flux_cone
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> more = "limit ethanol <= 0\n"
+    >>> network = read_model_text(MODEL + more).network
+    >>> interior = find_interior(flux_cone(network, stoichiometry(network)))
+    >>> interior.blocked, interior.verified
+    (('ferment',), True)
+    """
     opening = open_most(cone)
     closed = tuple(s for k, s in enumerate(cone.sides) if k not in opening.open)
     count = len(cone.reactions)

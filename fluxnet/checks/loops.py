@@ -92,7 +92,14 @@ def exact_vertex(
 
 
 def whole_numbers(values: Sequence[Fraction]) -> tuple[Fraction, ...]:
-    """The values in smallest whole numbers of the same proportions, unless these are huge."""
+    """The values in smallest whole numbers of the same proportions, unless these are huge.
+
+    Examples
+    --------
+    >>> from fractions import Fraction
+    >>> whole_numbers([Fraction(1, 2), Fraction(3, 4)])
+    (Fraction(2, 1), Fraction(3, 1))
+    """
     factor = lcm(*(v.denominator for v in values))
     whole = [int(v * factor) for v in values]
     shared = gcd(*whole) or 1

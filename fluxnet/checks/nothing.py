@@ -75,7 +75,19 @@ class FromNothing:
 
 
 def find_from_nothing(network: Network, stoich: Stoichiometry) -> FromNothing:
-    """Everything that the network can make while it takes nothing up."""
+    r"""Everything that the network can make while it takes nothing up.
+
+    Examples
+    --------
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> more = "compartment c\n    slip : nothing -> ATP\n"
+    >>> network = read_model_text(MODEL + more).network
+    >>> found = find_from_nothing(network, stoichiometry(network))
+    >>> [(loop.species, loop.reactions) for loop in found.loops]
+    [('ATP', ('slip',))]
+    """
     cone = _closed_cone(network, stoich)
     wanted = [
         k for k, s in enumerate(cone.sides) if s.kind in (FormKind.BALANCE, FormKind.ROLE)
@@ -100,7 +112,19 @@ def find_from_nothing(network: Network, stoich: Stoichiometry) -> FromNothing:
 
 
 def tell_from_nothing(network: Network, loops: Sequence[Loop]) -> tuple[Diagnostic, ...]:
-    """An error for each loop, at the reaction that makes it; the others stand beside that."""
+    r"""An error for each loop, at the reaction that makes it; the others stand beside that.
+
+    Examples
+    --------
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> more = "compartment c\n    slip : nothing -> ATP\n"
+    >>> network = read_model_text(MODEL + more).network
+    >>> found = find_from_nothing(network, stoichiometry(network))
+    >>> [told.message for told in tell_from_nothing(network, found.loops)]
+    ['reaction slip makes ATP out of nothing']
+    """
     told: list[Diagnostic] = []
     for loop in loops:
         members = [r for r in network.reactions if r.name in loop.reactions]

@@ -16,7 +16,18 @@ __all__ = ["check_twins"]
 
 
 def check_twins(network: Network, stoich: Stoichiometry) -> tuple[Diagnostic, ...]:
-    """Reactions that are the same, or the same in multiples or opposite directions."""
+    r"""Reactions that are the same, or the same in multiples or opposite directions.
+
+    Examples
+    --------
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> more = "compartment c\n    again : 2 pyruvate + 2 NADH -> 2 ethanol + 2 CO2\n"
+    >>> network = read_model_text(MODEL + more).network
+    >>> [told.message for told in check_twins(network, stoichiometry(network))]
+    ['reaction again does the same as ferment, times 2']
+    """
     columns: list[dict[int, Expression]] = [{} for _ in stoich.reactions]
     for i, j, coefficient in stoich.entries:
         columns[j][i] = coefficient

@@ -12,10 +12,19 @@ __all__ = ["check_substrates", "check_unused"]
 
 
 def check_unused(network: Network) -> tuple[Diagnostic, ...]:
-    """Species that no reaction uses, of the base model or of any variant.
+    r"""Species that no reaction uses, of the base model or of any variant.
 
     Where a variant is applied nothing is told: what it leaves out is meant to be. Parameters
     without use are told where the file is read.
+
+    Examples
+    --------
+    >>> from fluxnet.cli.new import MODEL
+    >>> from fluxnet.reading.model import read_model_text
+    >>> more = "inside citrate\n"
+    >>> network = read_model_text(MODEL + more).network
+    >>> [told.message for told in check_unused(network)]
+    ['citrate is declared, but no reaction uses it']
     """
     if network.variant != "base":
         return ()
@@ -34,7 +43,15 @@ def check_unused(network: Network) -> tuple[Diagnostic, ...]:
 
 
 def check_substrates(network: Network) -> tuple[Diagnostic, ...]:
-    """A warning where nothing with carbon can be taken up; CO2 as an exchange is no food."""
+    r"""A warning where nothing with carbon can be taken up; CO2 as an exchange is no food.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> text = "carrier ATP\ncompartment c\n    idle : ATP -> nothing\n"
+    >>> [(told.message, told.span.line) for told in check_substrates(read_model_text(text).network)]
+    [('no species with carbon can be taken up', 2)]
+    """
     if any(_is_food(s) for s in network.boundary):
         return ()
     places = [thing.span for thing in network.boundary]

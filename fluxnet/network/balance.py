@@ -26,7 +26,7 @@ __all__ = ["check_balances"]
 def check_balances(
     network: Network, reactions: Iterable[Reaction] | None = None
 ) -> tuple[Diagnostic, ...]:
-    """Say which reactions do not balance, and what would mend them.
+    r"""Say which reactions do not balance, and what would mend them.
 
     Parameters
     ----------
@@ -40,6 +40,16 @@ def check_balances(
     tuple of Diagnostic
         ``unbalanced-line`` for a gap, ``rounding-gap`` for one that the rounding of the written
         numbers explains, ``balance-not-checked`` for each cause that forbids a check.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(
+    ...     "substrate glucose\nproduct ethanol, CO2\ncompartment c\n"
+    ...     "    ferment : glucose -> 2 ethanol + 2 CO2\n"
+    ... ).network
+    >>> check_balances(network)
+    ()
     """
     chosen = network.reactions if reactions is None else tuple(reactions)
     contents = contents_of_network(network, chosen)

@@ -17,7 +17,13 @@ __all__ = [
 
 
 def join(parts: Sequence[str], last: str = "and") -> str:
-    """A list in words: ``a, b and c``."""
+    """A list in words: ``a, b and c``.
+
+    Examples
+    --------
+    >>> join(["C", "N", "electrons"]), join(["C"])
+    ('C, N and electrons', 'C')
+    """
     if len(parts) < 2:
         return "".join(parts)
     return f"{', '.join(parts[:-1])} {last} {parts[-1]}"
@@ -33,7 +39,24 @@ def amount_words(balance: ElementBalance, size: Expression) -> str:
 
 
 def gap_words(line: LineBalance) -> str:
-    """One sentence that says what a reaction makes or uses in excess."""
+    r"""One sentence that says what a reaction makes or uses in excess.
+
+    Examples
+    --------
+    >>> from fluxnet.network.line_balance import balance_line, contents_of_network
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(
+    ...     "substrate glucose\nproduct ethanol, CO2\ncompartment c\n"
+    ...     "    ferment : glucose -> 2 ethanol + 2 CO2\n"
+    ... ).network
+    >>> from dataclasses import replace
+    >>> from fluxnet.network.expression import constant
+    >>> good = network.reactions[0]
+    >>> bad = replace(good, right=(good.right[0], replace(good.right[1], coefficient=constant(3))))
+    >>> line = balance_line(bad, contents_of_network(network, (bad,)))
+    >>> gap_words(line)
+    'reaction ferment makes 1 C more than it uses'
+    """
     return f"reaction {line.reaction.name} {_excess(_gaps(line))}"
 
 

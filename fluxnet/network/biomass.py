@@ -10,7 +10,15 @@ __all__ = ["biomass_mass", "biomass_mass_sd", "biomasses", "growth_factor"]
 
 
 def biomasses(network: Network) -> tuple[Species, ...]:
-    """The biomass species of a network; mu is the sum over them."""
+    """The biomass species of a network; mu is the sum over them.
+
+    Examples
+    --------
+    >>> from fluxnet.network.model import Basis, Network
+    >>> species = (Species("X", Role.BIOMASS), Species("CO2", Role.EXCHANGE))
+    >>> [s.name for s in biomasses(Network("", Basis.AMOUNT, species, (), (), ()))]
+    ['X']
+    """
     return tuple(s for s in network.species if s.role is Role.BIOMASS)
 
 
@@ -64,6 +72,16 @@ def growth_factor(species: Species, basis: Basis) -> float | None:
     ------
     MisuseError
         If the species has no formula.
+
+    Examples
+    --------
+    >>> from fractions import Fraction
+    >>> from fluxnet.chemistry.reader import read_formula
+    >>> cell = Species("X", Role.BIOMASS, read_formula("CH1.8O0.5N0.2"), ash=Fraction(8, 100))
+    >>> round(growth_factor(cell, Basis.SPECIFIC), 5)
+    0.02677
+    >>> growth_factor(cell, Basis.VOLUMETRIC) is None
+    True
     """
     if basis is Basis.SPECIFIC:
         return biomass_mass(species) / 1000.0

@@ -24,7 +24,7 @@ _REACH = 10**30
 def check_coefficients(
     network: Network, reactions: Iterable[Reaction] | None = None
 ) -> tuple[Diagnostic, ...]:
-    """Check the coefficients as written; those solved for ``?`` are judged where solved.
+    r"""Check the coefficients as written; those solved for ``?`` are judged where solved.
 
     Parameters
     ----------
@@ -40,6 +40,15 @@ def check_coefficients(
         ``divides-by-zero-in-range`` and ``coefficient-changes-sign`` within their ranges,
         ``wide-coefficients`` for a reaction whose coefficients differ by more than ten
         decades; ``unreadable-line`` for a coefficient that cannot be computed with.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> reading = read_model_text(
+    ...     "substrate glucose\nproduct ethanol, CO2\nparameter a = 1 in [0, 3]\ncompartment c\n"
+    ...     "    ferment : (2 - a) glucose -> (4 - 2*a) ethanol + (4 - 2*a) CO2\n")
+    >>> [d.name.value for d in check_coefficients(reading.network)]
+    ['coefficient-changes-sign', 'coefficient-changes-sign']
     """
     parameters = {p.name: p for p in network.parameters}
     found: list[Diagnostic] = []

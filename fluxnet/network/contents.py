@@ -44,7 +44,15 @@ PHOSPHATE = Content({"P": Fraction(1), "O": Fraction(4), "H": Fraction(3)}, {})
 
 
 def content_of_formula(formula: Formula) -> Content:
-    """The content of one mole of a composition."""
+    """The content of one mole of a composition.
+
+    Examples
+    --------
+    >>> from fluxnet.chemistry.reader import read_formula
+    >>> content = content_of_formula(read_formula("C2H3O2 charge -1"))
+    >>> {name: int(amount) for name, amount in content.amounts.items()}
+    {'C': 2, 'H': 3, 'O': 2, 'charge': -1, 'electrons': 8}
+    """
     amounts = dict(formula.counts)
     if formula.charge:
         amounts[CHARGE] = formula.charge
@@ -59,7 +67,17 @@ def content_of_formula(formula: Formula) -> Content:
 
 
 def content_of(species: Species) -> Content | None:
-    """The content of one mole of a species, of a carrier its cargo; None where none is known."""
+    """The content of one mole of a species, of a carrier its cargo; None where none is known.
+
+    Examples
+    --------
+    >>> from fluxnet.network.model import Cargo, Role
+    >>> nadh = Species("NADH", Role.CARRIER, cargo=Cargo(CargoKind.ELECTRONS, Fraction(2)))
+    >>> content_of(nadh).amounts
+    {'electrons': Fraction(2, 1)}
+    >>> content_of(Species("pool", Role.INSIDE)) is None
+    True
+    """
     if species.cargo is not None:
         if species.cargo.kind is CargoKind.ENERGY:
             return NOTHING
@@ -103,7 +121,13 @@ class Functional:
 
 
 def in_order_of_balances(amounts: Iterable[str]) -> list[str]:
-    """Carbon, nitrogen, sulfur, phosphorus, the other elements, water, charge, electrons."""
+    """Carbon, nitrogen, sulfur, phosphorus, the other elements, water, charge, electrons.
+
+    Examples
+    --------
+    >>> in_order_of_balances({"electrons", "O", "Fe", "N", "C"})
+    ['C', 'N', 'Fe', 'O', 'electrons']
+    """
     found = set(amounts)
     middle = sorted(found.difference(_FIRST, _LAST))
     return [a for a in (*_FIRST, *middle, *_LAST) if a in found]
@@ -114,6 +138,13 @@ def without_free(amounts: Sequence[str], free: Iterable[Content]) -> tuple[Funct
 
     ``amounts`` are in the order of balances. A free species that holds one of them alone takes
     that balance away; another joins balances, the rarest amount of it being taken out.
+
+    Examples
+    --------
+    >>> from fluxnet.chemistry.reader import read_formula
+    >>> ammonia = content_of_formula(read_formula("NH3"))
+    >>> [f.name for f in without_free(["C", "N", "electrons"], [ammonia])]
+    ['C', 'electrons']
     """
     vectors = [[content.amounts.get(a, _ZERO) for a in amounts] for content in free]
     vectors = [v for v in vectors if any(v)]

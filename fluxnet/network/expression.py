@@ -217,12 +217,24 @@ ONE = Expression(_UNIT)
 
 
 def constant(value: Fraction | int) -> Expression:
-    """The expression that is one exact number."""
+    """The expression that is one exact number.
+
+    Examples
+    --------
+    >>> constant(Fraction(1, 4)).number
+    Fraction(1, 4)
+    """
     return Expression(_Polynomial.of({(): Fraction(value)}))
 
 
 def parameter(name: str) -> Expression:
-    """The expression that is one parameter."""
+    """The expression that is one parameter.
+
+    Examples
+    --------
+    >>> str(constant(2) * parameter("PO"))
+    '2*PO'
+    """
     return Expression(_Polynomial((((((name, 1),)), Fraction(1)),)))
 
 

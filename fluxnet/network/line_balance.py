@@ -146,7 +146,7 @@ def line_functionals(
 
 
 def balance_line(reaction: Reaction, contents: Contents) -> LineBalance:
-    """Balance one reaction whose ``?`` coefficients are solved, exactly.
+    r"""Balance one reaction whose ``?`` coefficients are solved, exactly.
 
     C, N, S and every other element but H and O, and electrons; P only where the model
     balances phosphate; O and charge only where water and protons are written and can be
@@ -154,6 +154,21 @@ def balance_line(reaction: Reaction, contents: Contents) -> LineBalance:
     whichever form the line closes. Carriers count their cargo.
     A solved ``?`` follows the other numbers, so it does not excuse a gap and is not to blame
     for one: rounding is judged by the balances in which no solved species counts.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(
+    ...     "substrate glucose\nproduct ethanol, CO2\ncompartment c\n"
+    ...     "    ferment : glucose -> 2 ethanol + 2 CO2\n"
+    ... ).network
+    >>> from dataclasses import replace
+    >>> from fluxnet.network.expression import constant
+    >>> good = network.reactions[0]
+    >>> bad = replace(good, right=(good.right[0], replace(good.right[1], coefficient=constant(3))))
+    >>> line = balance_line(bad, contents_of_network(network, (bad,)))
+    >>> line.verdict, [(b.name, str(b.gap)) for b in line.balances]
+    (<Verdict.OPEN: 'does not close'>, [('C', '1'), ('electrons', '0')])
     """
     names = dict.fromkeys(term.species for _, term in reaction.terms)
     unknown = tuple(n for n in names if contents.by_species.get(n) is None)

@@ -16,7 +16,7 @@ __all__ = ["frame_of", "matrix_of"]
 
 
 def matrix_of(network: Network) -> NDArray[np.float64]:
-    """Species x reactions in the file's order, moles made per unit of flux.
+    r"""Species x reactions in the file's order, moles made per unit of flux.
 
     The parameters stand at their values; the array is read-only.
 
@@ -24,6 +24,16 @@ def matrix_of(network: Network) -> NDArray[np.float64]:
     ------
     MisuseError
         Where a ``?`` is not solved, or a reaction names a species that is not there.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(
+    ...     "substrate glucose\nproduct ethanol, CO2\ncompartment c\n"
+    ...     "    ferment : glucose -> 2 ethanol + 2 CO2\n"
+    ... ).network
+    >>> matrix_of(network).tolist()
+    [[-1.0], [2.0], [2.0]]
     """
     import numpy as np  # whoever asks for no matrix should not wait for it
 
@@ -42,7 +52,21 @@ def matrix_of(network: Network) -> NDArray[np.float64]:
 
 
 def frame_of(network: Network) -> pd.DataFrame:
-    """The matrix as a frame: a row a species, a column a reaction."""
+    r"""The matrix as a frame: a row a species, a column a reaction.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(
+    ...     "substrate glucose\nproduct ethanol, CO2\ncompartment c\n"
+    ...     "    ferment : glucose -> 2 ethanol + 2 CO2\n"
+    ... ).network
+    >>> frame_of(network)
+             ferment
+    glucose     -1.0
+    ethanol      2.0
+    CO2          2.0
+    """
     import pandas as pd
 
     return pd.DataFrame(

@@ -53,7 +53,7 @@ class Mend:
 def find_mends(
     line: LineBalance, contents: Contents, directions: Directions | None = None
 ) -> tuple[Mend, ...]:
-    """All repairs of one term that close every balance of a line, the likeliest first.
+    r"""All repairs of one term that close every balance of a line, the likeliest first.
 
     Parameters
     ----------
@@ -70,6 +70,24 @@ def find_mends(
         Changes of a written coefficient before moves and additions; among equals whole
         numbers before decimals before fractions, then the smallest change. Empty where no
         single term repairs the line.
+
+    Examples
+    --------
+    >>> from fluxnet.network.line_balance import balance_line, contents_of_network
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(
+    ...     "substrate glucose\nproduct ethanol, CO2\ncompartment c\n"
+    ...     "    ferment : glucose -> 2 ethanol + 2 CO2\n"
+    ... ).network
+    >>> from dataclasses import replace
+    >>> from fluxnet.network.expression import constant
+    >>> good = network.reactions[0]
+    >>> bad = replace(good, right=(good.right[0], replace(good.right[1], coefficient=constant(3))))
+    >>> from fluxnet.network.directions import Directions
+    >>> contents = contents_of_network(network, (bad,))
+    >>> mends = find_mends(balance_line(bad, contents), contents, Directions.of(contents))
+    >>> [(m.species, str(m.coefficient)) for m in mends]
+    [('CO2', '2')]
     """
     values = {p.name: p.value for p in contents.network.parameters}
     found = [m for m in _changes(line, contents) if _is_written(m, values)]

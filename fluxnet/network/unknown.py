@@ -38,7 +38,7 @@ class _Unknown:
 def solve_unknowns(
     network: Network, reactions: Iterable[Reaction] | None = None
 ) -> tuple[Network, tuple[Diagnostic, ...]]:
-    """Solve every ``?`` of a network.
+    r"""Solve every ``?`` of a network.
 
     The balances of a line are linear in its ``?``. Where they are more than the ``?``, the
     first independent ones are solved, in the order carbon, nitrogen, sulfur, phosphorus, the
@@ -59,6 +59,18 @@ def solve_unknowns(
         that comes out as zero stays in its line with the value 0.
     tuple of Diagnostic
         ``coefficient-free``, ``-contradicts``, ``-negative``, ``-changes-sign``, ``-zero``.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(
+    ...     "substrate glucose\nproduct ethanol, CO2\ncompartment c\n"
+    ...     "    ferment : glucose -> ? ethanol + ? CO2\n"
+    ... ).network
+    >>> [str(term.coefficient) for term in network.reactions[0].right]
+    ['2', '2']
+    >>> solve_unknowns(network)[1]
+    ()
     """
     wanted = network.reactions if reactions is None else tuple(reactions)
     contents = contents_of_network(network, wanted)

@@ -19,7 +19,14 @@ _STEPS = 8
 
 
 def range_of(parameter: Parameter) -> tuple[Fraction, Fraction]:
-    """Where a parameter may lie: its range, else two sds to each side, else its value."""
+    """Where a parameter may lie: its range, else two sds to each side, else its value.
+
+    Examples
+    --------
+    >>> low, high = range_of(Parameter("a", Fraction(2), sd=Fraction(1, 4)))
+    >>> float(low), float(high)
+    (1.5, 2.5)
+    """
     spread = 2 * (parameter.sd or Fraction(0))
     low = parameter.value - spread if parameter.low is None else parameter.low
     high = parameter.value + spread if parameter.high is None else parameter.high
@@ -29,7 +36,16 @@ def range_of(parameter: Parameter) -> tuple[Fraction, Fraction]:
 def pole_within(
     coefficient: Expression, parameters: Mapping[str, Parameter]
 ) -> Pole | None:
-    """A place within the parameters' ranges where a coefficient divides by zero."""
+    """A place within the parameters' ranges where a coefficient divides by zero.
+
+    Examples
+    --------
+    >>> from fluxnet.network.expression import ONE, parameter
+    >>> b = Parameter("b", Fraction(2, 5), sd=Fraction(1, 10))
+    >>> half = ONE.scaled(Fraction(1, 2))
+    >>> pole_within(ONE / (half - parameter("b")), {"b": b}).place
+    {'b': Fraction(1, 2)}
+    """
     if coefficient.denominator.number is not None:
         return None
     return find_pole(coefficient, {n: range_of(parameters[n]) for n in coefficient.parameters})
@@ -43,6 +59,13 @@ def changes_sign(
     The corners of the ranges are tried, which decides it where each parameter enters linearly;
     where one enters by a higher power or in a denominator, also points between them, on a grid
     of eight steps. It should have no pole there (see :func:`pole_within`).
+
+    Examples
+    --------
+    >>> from fluxnet.network.expression import ONE, parameter
+    >>> a = Parameter("a", Fraction(1, 2), low=Fraction(0), high=Fraction(3))
+    >>> changes_sign(ONE - parameter("a"), {"a": a})
+    ({'a': Fraction(3, 1)}, Fraction(-2, 1))
     """
     names = sorted(coefficient.parameters)
     linear = coefficient.denominator.number is not None and all(

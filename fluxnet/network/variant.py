@@ -27,7 +27,7 @@ BASE = "base"
 def apply_variant(
     network: Network, names: str
 ) -> tuple[Network | None, tuple[Diagnostic, ...]]:
-    """The network with the changes of one variant or of a product of variants.
+    r"""The network with the changes of one variant or of a product of variants.
 
     ``limit`` replaces the limit on the same quantity and direction, ``set`` keeps sd and range
     unless they are given, ``drop`` takes away, and a dropped reaction takes its own limit
@@ -55,6 +55,19 @@ def apply_variant(
     ------
     MisuseError
         If the network is a variant already.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text(
+    ...     "substrate glucose\nproduct ethanol, CO2\ncompartment c\n"
+    ...     "    ferment : glucose -> 2 ethanol + 2 CO2\nvariant slow\n    limit glucose <= 1\n"
+    ... ).network
+    >>> slow, told = apply_variant(network, "slow")
+    >>> slow.variant, str(slow.limits[0].quantity), slow.limits[0].high, told
+    ('slow', 'glucose in', Fraction(1, 1), ())
+    >>> [d.message for d in apply_variant(network, "slwo")[1]]
+    ['the model has no variant slwo']
     """
     if network.variant != BASE:
         raise MisuseError(f"the network is the variant {network.variant}; apply to the base")

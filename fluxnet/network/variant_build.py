@@ -199,7 +199,17 @@ def _still_used(
 
 
 def same_network(one: Network, other: Network) -> bool:
-    """Whether two networks hold the same, wherever it stands in the text."""
+    r"""Whether two networks hold the same, wherever it stands in the text.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> text = "substrate glucose\nproduct ethanol, CO2\n"
+    >>> text += "compartment c\n    ferment : glucose -> 2 ethanol + 2 CO2\n"
+    >>> one, other = (read_model_text(t).network for t in (text, "# moved\n" + text))
+    >>> same_network(one, other), one == other
+    (True, False)
+    """
     first: tuple[Thing, ...] = (*one.species, *one.parameters, *one.reactions, *one.limits)
     second: tuple[Thing, ...] = (
         *other.species, *other.parameters, *other.reactions, *other.limits,

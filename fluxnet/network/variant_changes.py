@@ -86,7 +86,13 @@ NO_DOUBT = Doubt()
 
 
 def keys_of_quantity(quantity: Quantity) -> tuple[Key, ...]:
-    """The keys that a quantity stands for: a rate without a direction stands for both."""
+    """The keys that a quantity stands for: a rate without a direction stands for both.
+
+    Examples
+    --------
+    >>> [str(k) for k in keys_of_quantity(Quantity(QuantityKind.RATE, "CO2"))]
+    ['limit CO2 in', 'limit CO2 out']
+    """
     if quantity.kind is QuantityKind.RATE and quantity.direction is None:
         return tuple(
             Key(ChangeKind.LIMIT, quantity=replace(quantity, direction=d)) for d in Direction
@@ -95,7 +101,17 @@ def keys_of_quantity(quantity: Quantity) -> tuple[Key, ...]:
 
 
 def keys_of_limit(limit: Limit) -> tuple[Key, ...]:
-    """The keys that a limit sets: ``between in 1 and out 5`` sets both directions."""
+    """The keys that a limit sets: ``between in 1 and out 5`` sets both directions.
+
+    Examples
+    --------
+    >>> from fractions import Fraction
+    >>> from fluxnet.network.model import Relation
+    >>> gas = Quantity(QuantityKind.RATE, "CO2", Direction.OUT)
+    >>> span = Limit(gas, Relation.BETWEEN, Fraction(-1), Fraction(5))
+    >>> [str(key) for key in keys_of_limit(span)]
+    ['limit CO2 in', 'limit CO2 out']
+    """
     quantity = limit.quantity
     if quantity.kind is QuantityKind.RATE and limit.low is not None and limit.low < 0:
         return keys_of_quantity(replace(quantity, direction=None))
@@ -107,6 +123,18 @@ def changes_of(variant: Variant, context: frozenset[str]) -> Iterator[Change]:
 
     ``context`` are the names of species that are there before it: a dropped name among them is
     a species, any other a reaction.
+
+    Parameters
+    ----------
+    context
+        The species that are there before it, by name.
+
+    Examples
+    --------
+    >>> from fluxnet.network.model import Drop
+    >>> lean = Variant("lean", drops=(Drop("oxphos"), Drop("formate")))
+    >>> [(str(c.key), c.key.kind.value) for c in changes_of(lean, frozenset({"formate"}))]
+    [('oxphos', 'reaction'), ('formate', 'species')]
     """
     for drop in variant.drops:
         if drop.quantity is not None:
@@ -127,7 +155,15 @@ def changes_of(variant: Variant, context: frozenset[str]) -> Iterator[Change]:
 
 
 def plain(thing: Thing | None) -> object:
-    """What two equal things have in common: all but where they stand in the text."""
+    """What two equal things have in common: all but where they stand in the text.
+
+    Examples
+    --------
+    >>> from fractions import Fraction
+    >>> one = Parameter("a", Fraction(1), span=Span("core.flux", 3))
+    >>> plain(one) == plain(Parameter("a", Fraction(1)))
+    True
+    """
     if isinstance(thing, Reaction):
         terms = tuple(
             (sign, t.species, None if t.solved else t.coefficient, t.half_unit)

@@ -55,6 +55,12 @@ def parents_first(variants: Mapping[str, Variant]) -> tuple[str, ...]:
     """The variants in the order of the file, but each behind all that it builds on.
 
     Those that build on an unknown one or, in a circle, on themselves are left out.
+
+    Examples
+    --------
+    >>> lines = {"a": ("b",), "b": (), "c": ("nobody",), "d": ("a", "b")}
+    >>> parents_first({name: Variant(name, parents=parents) for name, parents in lines.items()})
+    ('b', 'a', 'd')
     """
     place = {name: i for i, name in enumerate(variants)}
     left = {name: {p for p in v.parents if p != "base"} for name, v in variants.items()}

@@ -28,12 +28,26 @@ class Water:
 
 
 def is_water(formula: Formula | None) -> bool:
-    """Whether a composition is water."""
+    """Whether a composition is water.
+
+    Examples
+    --------
+    >>> from fluxnet.chemistry.reader import read_formula
+    >>> is_water(read_formula("H2O")), is_water(read_formula("H2O2")), is_water(None)
+    (True, False, False)
+    """
     return formula is not None and _is(formula, {"H": 2, "O": 1}, 0)
 
 
 def is_proton(formula: Formula | None) -> bool:
-    """Whether a composition is the proton."""
+    """Whether a composition is the proton.
+
+    Examples
+    --------
+    >>> from fluxnet.chemistry.reader import read_formula
+    >>> is_proton(read_formula("H charge +1")), is_proton(read_formula("H2"))
+    (True, False)
+    """
     return formula is not None and _is(formula, {"H": 1}, 1)
 
 
@@ -64,6 +78,15 @@ def form_at_ph_seven(species: Species) -> Formula | None:
 
     The catalogue's form where the model takes the catalogue's formula; a formula of the
     model's own stands as written, and so do carbon dioxide and biomass.
+
+    Examples
+    --------
+    >>> from fluxnet.network.model import Role
+    >>> from fluxnet.chemistry.reader import read_formula
+    >>> acid = Species("acetate", Role.PRODUCT, read_formula("C2H4O2"), entry="acetate")
+    >>> form = form_at_ph_seven(acid)
+    >>> form.count("H"), form.charge
+    (Fraction(3, 1), Fraction(-1, 1))
     """
     if species.formula is None or species.entry is None or species.cargo is not None:
         return species.formula
@@ -90,7 +113,15 @@ def at_ph_seven(
 
 
 def free_forms(network: Network) -> tuple[tuple[str, Content], ...]:
-    """The free species of a network by name, in their forms at pH 7."""
+    """The free species of a network by name, in their forms at pH 7.
+
+    Examples
+    --------
+    >>> from fluxnet.network.model import Basis
+    >>> network = Network("", Basis.SPECIFIC, (), (), (), (), free=("sulfate",))
+    >>> [name for name, _ in free_forms(network)]
+    ['phosphate', 'sulfate']
+    """
     from fluxnet.chemistry.catalogue import load_catalogue
 
     found = [] if network.balance_phosphate else [("phosphate", _phosphate_ion())]

@@ -56,7 +56,15 @@ _ONLY_IN_VARIANT = (s.SettingLine, s.DropLine, s.AdditionLine)
 def place_statements(
     lines: Iterable[tuple[LogicalLine, s.Statement | Unparsed]], findings: Findings
 ) -> tuple[tuple[Placed, ...], tuple[Rejected, ...]]:
-    """Put every statement into its block, and say which lines were rejected."""
+    """Put every statement into its block, and say which lines were rejected.
+
+    Parameters
+    ----------
+    lines
+        The lines of one file with what the parser made of them.
+    findings
+        Takes what is wrong.
+    """
     listed = list(lines)
     base = min((line.indentation for line, _ in listed), default=0)
     blocks: list[_Block] = []

@@ -19,7 +19,19 @@ __all__ = ["cargo_of", "formula_of"]
 def formula_of(
     role: Role, entry: s.Entry, line: LogicalLine, scope: Scope
 ) -> tuple[Formula | None, str | None]:
-    """The formula of a species that is no carrier, and the catalogue entry it matches."""
+    """The formula of a species that is no carrier, and the catalogue entry it matches.
+
+    Parameters
+    ----------
+    role
+        The role that the entry is declared with.
+    entry
+        Name, formula and ash as typed.
+    line
+        The logical line, for places.
+    scope
+        The names that the line sees; its findings take what is wrong.
+    """
     compound = _compound(entry.name.text)
     if role is Role.BIOMASS:
         return _biomass_formula(entry, compound, line, scope), None
@@ -142,6 +154,17 @@ def cargo_of(
     """What a carrier carries, and the catalogue entry it matches.
 
     Where the model balances phosphate the catalogue's energy carriers carry HPO3.
+
+    Parameters
+    ----------
+    entry
+        Name and cargo as typed.
+    line
+        The logical line, for places.
+    scope
+        The names that the line sees; its findings take what is wrong.
+    phosphate
+        Whether the model balances phosphate: ATP then carries it.
     """
     compound = _compound(entry.name.text)
     if compound is not None and not compound.kind.is_carrier:

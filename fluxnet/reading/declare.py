@@ -26,7 +26,19 @@ REACH = "numbers lie between 1e-30 and 1e30"
 def declare_species(
     placed: Placed, said: s.SpeciesLine, scope: Scope, *, phosphate: bool = False
 ) -> tuple[Species, ...]:
-    """The species of one declaration; ``phosphate``: whether the model balances phosphate."""
+    """The species of one declaration; ``phosphate``: whether the model balances phosphate.
+
+    Parameters
+    ----------
+    placed
+        The statement with its line, compartment and variant.
+    said
+        The declaration as parsed.
+    scope
+        The names that the line sees; its findings take what is wrong.
+    phosphate
+        Whether the model balances phosphate.
+    """
     found: list[Species] = []
     line = placed.line
     for entry in said.entries:
@@ -79,7 +91,17 @@ def _ash(
 
 
 def declare_parameter(placed: Placed, said: s.ParameterLine, scope: Scope) -> Parameter | None:
-    """The parameter of one line."""
+    """The parameter of one line.
+
+    Parameters
+    ----------
+    placed
+        The statement with its line, compartment and variant.
+    said
+        The declaration as parsed.
+    scope
+        The names that the line sees; its findings take what is wrong.
+    """
     name = said.assignment.name
     if not claim(scope, Kind.PARAMETER, placed.line, name):
         return None
@@ -108,6 +130,17 @@ def read_assignment(
 
     A setting without sd or range keeps those of its parameter: the value is held against the
     range that it keeps.
+
+    Parameters
+    ----------
+    line
+        The logical line, for places.
+    said
+        Name, value, error and range as parsed.
+    findings
+        Takes what is wrong.
+    base
+        The parameters that a variant's line changes: their sd and range are kept.
     """
     span = line.span(said.name.start, said.name.end)
     error = said.error.number if said.error is not None else None
@@ -159,7 +192,17 @@ def _range(
 
 
 def in_reach(line: LogicalLine, number: s.NumberText, findings: Findings) -> bool:
-    """Whether a number can be computed with; else say so."""
+    """Whether a number can be computed with; else say so.
+
+    Parameters
+    ----------
+    line
+        The logical line, for places.
+    number
+        The number as typed.
+    findings
+        Takes what is wrong.
+    """
     size = abs(number.value)
     if size == 0 or 1 <= size * _REACH <= _REACH * _REACH:
         return True

@@ -28,7 +28,24 @@ _CARGO = re.compile(r"(?P<n>\d+(?:\.\d+)?)?\s*(?P<word>e-?|el\w*|electrons?|ener
 
 
 def declaration_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
-    """All faults of a declaration; its first word ends at ``start``."""
+    """All faults of a declaration; its first word ends at ``start``.
+
+    Parameters
+    ----------
+    word
+        The first word of the line.
+    text
+        The whole logical line.
+    start, end
+        The stretch of it to look at: one past the first word, and one past the last character.
+
+    Examples
+    --------
+    >>> text = "product lactate; CO2"
+    >>> for fault in declaration_faults("product", text, 7, len(text)):
+    ...     print(text[fault.start : fault.end], "|", fault.message)
+    ; | `;` cannot stand in a name
+    """
     body = text[start:end]
     if not body.strip():
         return [unreadable(f"`{word}` names nothing", 0, start, f"write a name behind `{word}`")]
@@ -222,7 +239,24 @@ def _cargo_faults(text: str, name: re.Match[str], behind: int, end: int) -> list
 
 
 def list_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
-    """What is wrong with a list of names behind a word (``drop``, ``free``, ``balance``)."""
+    """What is wrong with a list of names behind a word (``drop``, ``free``, ``balance``).
+
+    Parameters
+    ----------
+    word
+        The first word of the line.
+    text
+        The whole logical line.
+    start, end
+        The stretch of it to look at: one past the first word, and one past the last character.
+
+    Examples
+    --------
+    >>> text = "free sulfate phosphate"
+    >>> for fault in list_faults("free", text, 4, len(text)):
+    ...     print(text[fault.start : fault.end], "|", fault.message)
+    sulfate phosphate | no comma stands between sulfate and phosphate
+    """
     if not text[start:end].strip():
         return [unreadable(f"`{word}` names nothing", 0, start, f"write a name behind `{word}`")]
     names = list(re.compile(NAME).finditer(text, start, end))

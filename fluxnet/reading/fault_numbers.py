@@ -25,7 +25,24 @@ _FORM = "write: parameter PO = 1.4 ± 0.2 in [0.5, 2.5]"
 
 
 def parameter_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
-    """All faults of a ``parameter`` or ``set`` line; its first word ends at ``start``."""
+    """All faults of a ``parameter`` or ``set`` line; its first word ends at ``start``.
+
+    Parameters
+    ----------
+    word
+        The first word of the line.
+    text
+        The whole logical line.
+    start, end
+        The stretch of it to look at: one past the first word, and one past the last character.
+
+    Examples
+    --------
+    >>> text = "parameter PO : 1.4"
+    >>> for fault in parameter_faults("parameter", text, 9, len(text)):
+    ...     print(text[fault.start : fault.end], "|", fault.message)
+    : | `:` stands for =
+    """
     commas = _range_commas(text, start, end)
     if commas:
         return commas
@@ -126,7 +143,22 @@ _WORDS = {"uptake": "in", "consumption": "in", "release": "out", "production": "
 
 
 def limit_faults(text: str, start: int, end: int) -> list[Fault]:
-    """All faults of a ``limit`` line; the word ends at ``start``."""
+    """All faults of a ``limit`` line; the word ends at ``start``.
+
+    Parameters
+    ----------
+    text
+        The whole logical line.
+    start, end
+        The stretch of it to look at: one past its first word, and one past the last character.
+
+    Examples
+    --------
+    >>> text = "limit oxygen at most 8"
+    >>> for fault in limit_faults(text, 5, len(text)):
+    ...     print(text[fault.start : fault.end], "|", fault.message)
+    at most | `at most` is told by a sign
+    """
     if not text[start:end].strip():
         return [_wrong("the limit says nothing", 0, start, _LIMIT_FORM)]
     commas = decimal_commas(text, start, end)

@@ -18,7 +18,24 @@ __all__ = ["acceptance_faults", "block_faults", "head_faults", "use_faults"]
 
 
 def block_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
-    """What is wrong with a ``compartment``, ``variant`` or ``add to`` line."""
+    """What is wrong with a ``compartment``, ``variant`` or ``add to`` line.
+
+    Parameters
+    ----------
+    word
+        The first word of the line.
+    text
+        The whole logical line.
+    start, end
+        The stretch of it to look at: one past the first word, and one past the last character.
+
+    Examples
+    --------
+    >>> text = "add catabolism"
+    >>> for fault in block_faults("add", text, 3, len(text)):
+    ...     print(text[fault.start : fault.end], "|", fault.message)
+    add | `to` is missing behind `add`
+    """
     found: list[Fault] = []
     if word == "add":
         to = re.compile(r"\s+to\b").match(text, start, end)
@@ -75,7 +92,22 @@ def _variant_faults(text: str, name: re.Match[str], end: int) -> list[Fault]:
 
 
 def use_faults(text: str, start: int, end: int) -> list[Fault]:
-    """What is wrong with a ``use`` line."""
+    """What is wrong with a ``use`` line.
+
+    Parameters
+    ----------
+    text
+        The whole logical line.
+    start, end
+        The stretch of it to look at: one past its first word, and one past the last character.
+
+    Examples
+    --------
+    >>> text = "use core.flux"
+    >>> for fault in use_faults(text, 3, len(text)):
+    ...     print(text[fault.start : fault.end], "|", fault.message)
+    core.flux | the path of a used file stands in quotation marks
+    """
     begin = start + len(text[start:end]) - len(text[start:end].lstrip())
     path = text[begin:end].strip("'\" ")
     if not path:
@@ -85,7 +117,24 @@ def use_faults(text: str, start: int, end: int) -> list[Fault]:
 
 
 def head_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
-    """What is wrong with a ``model`` or ``basis`` line."""
+    """What is wrong with a ``model`` or ``basis`` line.
+
+    Parameters
+    ----------
+    word
+        The first word of the line.
+    text
+        The whole logical line.
+    start, end
+        The stretch of it to look at: one past the first word, and one past the last character.
+
+    Examples
+    --------
+    >>> text = "basis : mmol/g/h"
+    >>> for fault in head_faults("basis", text, 5, len(text)):
+    ...     print(text[fault.start : fault.end], "|", fault.message)
+    : | no `:` stands behind `basis`
+    """
     sign = re.compile(r"\s*([:=])\s*").match(text, start, end)
     if sign:
         return [unreadable(f"no `{sign[1]}` stands behind `{word}`", sign.start(1), sign.end(1),
@@ -97,7 +146,15 @@ def head_faults(word: str, text: str, start: int, end: int) -> list[Fault]:
 
 
 def acceptance_faults(text: str) -> list[Fault]:
-    """What is wrong with an ``accept`` at the end of a line."""
+    """What is wrong with an ``accept`` at the end of a line.
+
+    Examples
+    --------
+    >>> text = "inside citrate accept dead-end"
+    >>> for fault in acceptance_faults(text):
+    ...     print(text[fault.start : fault.end], "|", fault.message)
+    accept dead-end | an acceptance gives its reason
+    """
     bare = re.compile(r"(?<=\s)accept(?:\s+([\w-]+))?\s*:?\s*$").search(text)
     if bare is None:
         comma = re.compile(r"(?<=\s)accept\s+([\w-]+(?:\s*,\s*[\w-]+)+)\s*:").search(text)

@@ -24,12 +24,35 @@ _LABEL = re.compile(rf"\s*({NAME})\s*:")
 
 
 def has_arrow(text: str) -> bool:
-    """Whether anything in a text looks like an arrow."""
+    """Whether anything in a text looks like an arrow.
+
+    Examples
+    --------
+    >>> has_arrow("pdh : pyruvate => CO2"), has_arrow("product CO2")
+    (True, False)
+    """
     return _ARROW.search(text) is not None
 
 
 def reaction_faults(text: str, end: int, known: Known) -> list[Fault]:
-    """All faults of a reaction that can be told apart; ``end`` is where its text ends."""
+    """All faults of a reaction that can be told apart; ``end`` is where its text ends.
+
+    Parameters
+    ----------
+    end
+        One past the last character of the reaction in ``text``.
+    known
+        The species and parameters that readable lines declare.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.fault_record import Known
+    >>> text = "pdh : pyruvate => CO2 NADH"
+    >>> for fault in reaction_faults(text, len(text), Known(frozenset({"CO2", "NADH"}))):
+    ...     print(text[fault.start : fault.end], "|", fault.message, "|", fault.mend)
+    => | `=>` is no arrow | write ->
+    CO2 NADH | no + stands between CO2 and NADH | write CO2 + NADH
+    """
     found, start = _label_faults(text, end, known)
     arrows = list(_ARROW.finditer(text, start, end))
     good = [a for a in arrows if a[0] in _GOOD]

@@ -45,12 +45,25 @@ class Known(NamedTuple):
 
 
 def put_in(place: int, text: str) -> Change:
-    """Text put in between."""
+    """Text put in between.
+
+    Examples
+    --------
+    >>> put_in(8, ",")
+    Change(start=8, end=8, text=',')
+    """
     return Change(place, place, text)
 
 
 def replace_by(match: re.Match[str], text: str, group: int = 0) -> Change:
-    """Text in the place of a match."""
+    """Text in the place of a match.
+
+    Examples
+    --------
+    >>> import re
+    >>> replace_by(re.search("=>", "A => B"), "->")
+    Change(start=2, end=4, text='->')
+    """
     return Change(match.start(group), match.end(group), text)
 
 
@@ -64,7 +77,23 @@ def unreadable(
 def decimal_commas(
     text: str, start: int, end: int, pattern: re.Pattern[str] = DECIMAL_COMMA
 ) -> list[Fault]:
-    """Numbers with a decimal comma in a stretch of a text."""
+    """Numbers with a decimal comma in a stretch of a text.
+
+    Parameters
+    ----------
+    text
+        The whole logical line.
+    start, end
+        The stretch of it to look at: one past its first word, and one past the last character.
+    pattern
+        What a number with a comma looks like there.
+
+    Examples
+    --------
+    >>> text = "limit oxygen <= 2,5"
+    >>> [(text[f.start : f.end], f.mend) for f in decimal_commas(text, 5, len(text))]
+    [('2,5', 'write 2.5')]
+    """
     found: list[Fault] = []
     for match in pattern.finditer(text, start, end):
         comma = match.start() + match[0].index(",")

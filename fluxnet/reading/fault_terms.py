@@ -44,7 +44,13 @@ class Token(NamedTuple):
 
 
 def tokens_of(text: str, start: int, end: int) -> list[Token]:
-    """The pieces of a stretch."""
+    """The pieces of a stretch.
+
+    Examples
+    --------
+    >>> [(token.kind, token.text) for token in tokens_of("2 NADH + ? CO2", 0, 14)]
+    [('n', '2'), ('w', 'NADH'), ('+', '+'), ('u', '?'), ('w', 'CO2')]
+    """
     found: list[Token] = []
     for match in _TOKEN.finditer(text, start, end):
         kind = match.lastgroup or "o"
@@ -53,7 +59,13 @@ def tokens_of(text: str, start: int, end: int) -> list[Token]:
 
 
 def split_terms(tokens: list[Token]) -> list[list[Token]]:
-    """The tokens between plus signs."""
+    """The tokens between plus signs.
+
+    Examples
+    --------
+    >>> [[t.text for t in run] for run in split_terms(tokens_of("2 NADH + ? CO2", 0, 14))]
+    [['2', 'NADH'], ['?', 'CO2']]
+    """
     runs: list[list[Token]] = [[]]
     for token in tokens:
         if token.kind == "+":
@@ -64,7 +76,25 @@ def split_terms(tokens: list[Token]) -> list[list[Token]]:
 
 
 def term_faults(text: str, run: list[Token], known: Known) -> list[Fault]:
-    """What is wrong with one term; an empty list where it is sound."""
+    """What is wrong with one term; an empty list where it is sound.
+
+    Parameters
+    ----------
+    text
+        The whole logical line.
+    run
+        The tokens of one term.
+    known
+        The species and parameters that readable lines declare.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.fault_record import Known
+    >>> text = "2*a CO2"
+    >>> for fault in term_faults(text, tokens_of(text, 0, 7), Known(parameters=frozenset({"a"}))):
+    ...     print(text[fault.start : fault.end], "|", fault.message, "|", fault.mend)
+    2*a | a product as a coefficient stands in brackets | write (2*a) CO2
+    """
     kinds = "".join(t.kind for t in run)
     strange = next((t for t in run if t.kind == "o"), None)
     if strange is not None:

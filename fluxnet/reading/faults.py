@@ -52,7 +52,19 @@ _ARROW = re.compile(r"[-=]+>|→|⇌|<-")
 def explain_line(
     line: LogicalLine, failure: Unparsed, known: Known, findings: Findings
 ) -> None:
-    """Tell what is wrong with a line that could not be read."""
+    """Tell what is wrong with a line that could not be read.
+
+    Parameters
+    ----------
+    line
+        The logical line, for places.
+    failure
+        How far the parser came.
+    known
+        The species and parameters that readable lines declare.
+    findings
+        Takes what is wrong.
+    """
     faults = acceptance_faults(line.text) or _faults(line.text, known)
     if not faults:
         faults = [_where_it_stopped(line.text, failure)]

@@ -107,6 +107,12 @@ def nearest_names(name: str, candidates: Iterable[str], most: int = 3) -> tuple[
 
 
 def only_case_differs(name: str, candidates: Iterable[str]) -> str | None:
-    """The candidate that is the same but for upper and lower case."""
+    """The candidate that is the same but for upper and lower case.
+
+    Examples
+    --------
+    >>> only_case_differs("Glucose", ["glucose", "CO2"])
+    'glucose'
+    """
     lower = name.casefold()
     return next((c for c in candidates if c.casefold() == lower and c != name), None)

@@ -32,7 +32,13 @@ class Head(NamedTuple):
 
 
 def read_basis(text: str) -> Basis | None:
-    """The basis that a unit means, or None."""
+    """The basis that a unit means, or None.
+
+    Examples
+    --------
+    >>> read_basis("mmol/L/h"), read_basis("furlong") is None
+    (<Basis.VOLUMETRIC: 'mmol/L/h'>, True)
+    """
     return _SPELLINGS.get("".join(text.split()).casefold())
 
 

@@ -27,7 +27,23 @@ class Cells(NamedTuple):
 
 
 def lay_out(statement: s.Statement, text: str) -> Cells:
-    """The cells of a statement, whose logical line is ``text``."""
+    """The cells of a statement, whose logical line is ``text``.
+
+    Parameters
+    ----------
+    statement
+        What :func:`fluxnet.reading.parsing.parse_statement` made of the line.
+    text
+        The logical line, from which coefficients and formulas are taken as typed.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.parsing import parse_statement
+    >>> text = "pdh:pyruvate->CO2+2 NADH"
+    >>> cells = lay_out(parse_statement(text), text)
+    >>> cells.name, cells.rest
+    ('pdh', ': pyruvate -> CO2 + 2 NADH')
+    """
     cells = _cells(statement.line, text)
     for accept in statement.acceptances:
         said = f"accept {accept.name.text}: {accept.reason.text.strip()}"

@@ -19,6 +19,18 @@ def compare_limits(limits: Sequence[Limit]) -> list[Diagnostic]:
 
     Uptake and release of one species are one axis: at least 1 in and at least 1 out cannot
     both hold.
+
+    Examples
+    --------
+    >>> from fractions import Fraction
+    >>> from fluxnet.network.model import Relation
+    >>> oxygen = Quantity(QuantityKind.RATE, "oxygen", Direction.IN)
+    >>> most = Limit(oxygen, Relation.AT_MOST, None, Fraction(2))
+    >>> least = Limit(oxygen, Relation.AT_LEAST, Fraction(3), None)
+    >>> [d.name.value for d in compare_limits([most, least])]
+    ['contradictory-limits']
+    >>> [d.name.value for d in compare_limits([most, most])]
+    ['limit-repeated']
     """
     found: list[Diagnostic] = []
     seen: dict[tuple[Quantity, bool, str], Limit] = {}

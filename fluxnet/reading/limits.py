@@ -18,7 +18,17 @@ _LEAST = Fraction(1, 10**9)
 
 
 def resolve_limit(line: LogicalLine, said: s.LimitLine, scope: Scope) -> Limit | None:
-    """The limit of one line, or None where it makes no sense (told)."""
+    """The limit of one line, or None where it makes no sense (told).
+
+    Parameters
+    ----------
+    line
+        The logical line, for places.
+    said
+        Quantity and bound as parsed.
+    scope
+        The names that the line sees; its findings take what is wrong.
+    """
     limit = _limit(line, said, scope)
     if limit is None:
         single = (said.quantity.top, said.quantity.bottom)

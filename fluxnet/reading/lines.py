@@ -87,7 +87,14 @@ def _column(piece: _Piece, offset: int) -> int:
 
 
 def logical_lines(source: Source) -> tuple[LogicalLine, ...]:
-    """All statements of a text, as logical lines."""
+    """All statements of a text, as logical lines.
+
+    Examples
+    --------
+    >>> source = Source("core.flux", ("pdh : pyruvate ->", "    CO2  # gas", "inside pyruvate"))
+    >>> [(line.number, line.text) for line in logical_lines(source)]
+    [(1, 'pdh : pyruvate -> CO2'), (3, 'inside pyruvate')]
+    """
     found: list[LogicalLine] = []
     number = 1
     while number <= len(source.lines):
@@ -143,17 +150,35 @@ def _following(source: Source, number: int) -> tuple[int, str] | None:
 
 
 def indentation_of(raw: str) -> int:
-    """The columns of blanks with which a line begins; a tab counts as four."""
+    r"""The columns of blanks with which a line begins; a tab counts as four.
+
+    Examples
+    --------
+    >>> indentation_of("\tpdh"), indentation_of("  pdh")
+    (4, 2)
+    """
     return sum(TAB if letter == "\t" else 1 for letter in raw[: len(raw) - len(raw.lstrip())])
 
 
 def starts_statement(text: str) -> bool:
-    """Whether a text plainly starts a statement, so that it carries no other line on."""
+    """Whether a text plainly starts a statement, so that it carries no other line on.
+
+    Examples
+    --------
+    >>> starts_statement("inside pyruvate"), starts_statement("+ CO2")
+    (True, False)
+    """
     return _STARTS.match(text) is not None
 
 
 def without_comment(raw: str) -> str:
-    """A line up to its comment; a ``#`` between two quotation marks starts none."""
+    """A line up to its comment; a ``#`` between two quotation marks starts none.
+
+    Examples
+    --------
+    >>> without_comment('use "a#b.flux"  # a file')
+    'use "a#b.flux"  '
+    """
     if "#" not in raw:
         return raw
     if '"' not in raw:

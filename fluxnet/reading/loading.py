@@ -52,7 +52,19 @@ class Loaded:
 
 
 def load_statements(source: Source, path: Path | None, place: Place, findings: Findings) -> Loaded:
-    """The statements of a text and of all files that it uses, each file once."""
+    """The statements of a text and of all files that it uses, each file once.
+
+    Parameters
+    ----------
+    source
+        The text of the model itself.
+    path
+        Its file; None for a text.
+    place
+        Where used files may lie.
+    findings
+        Takes what is wrong.
+    """
     loaded = Loaded()
     chain: tuple[Path, ...] = ()
     if path is not None:

@@ -85,7 +85,14 @@ def read_model_text(
 def read_model_bytes(
     data: bytes, *, file: str = "standard input", large: bool = False
 ) -> ModelReading:
-    """Read a model given as bytes, in any encoding that a file may have."""
+    r"""Read a model given as bytes, in any encoding that a file may have.
+
+    Examples
+    --------
+    >>> reading = read_model_bytes("product CO₂\n".encode("utf-16"))
+    >>> [d.name.value for d in reading.diagnostics]
+    ['no-reaction']
+    """
     source, told = source_of_bytes(data, file, large=large)
     if source is None:
         return ModelReading(None, told)

@@ -65,7 +65,15 @@ class Unparsed(NamedTuple):
 
 
 def parse_statement(text: str) -> s.Statement | Unparsed:
-    """The statement of a logical line, or where it stops to be one."""
+    """The statement of a logical line, or where it stops to be one.
+
+    Examples
+    --------
+    >>> parse_statement("drop oxphos").line
+    DropLine(items=(Word(text='oxphos', start=5, end=11),))
+    >>> parse_statement("drop ->")
+    Unparsed(position=5)
+    """
     try:
         return cast("s.Statement", _parser().parse(text))
     except lark.exceptions.UnexpectedToken as error:
@@ -78,7 +86,13 @@ def parse_statement(text: str) -> s.Statement | Unparsed:
 
 
 def expected_terminals(text: str) -> tuple[str, ...]:
-    """The names of the terminals that could stand where a line cannot be read on."""
+    """The names of the terminals that could stand where a line cannot be read on.
+
+    Examples
+    --------
+    >>> expected_terminals("basis")
+    ('COLON', 'TEXT')
+    """
     try:
         _parser().parse(text)
     except lark.exceptions.UnexpectedToken as error:

@@ -24,7 +24,17 @@ _GLUED = re.compile(r"(\d+)(?=[^\W\d])")
 
 
 def resolve_reaction(placed: Placed, said: s.ReactionLine, scope: Scope) -> Reaction | None:
-    """The reaction of one line, or None where it has a fault (told)."""
+    """The reaction of one line, or None where it has a fault (told).
+
+    Parameters
+    ----------
+    placed
+        The statement with its line, compartment and variant.
+    said
+        The reaction as parsed.
+    scope
+        The names that the line sees; its findings take what is wrong.
+    """
     line, findings = placed.line, scope.findings
     if not said.left and not said.right:
         findings.add(

@@ -37,6 +37,13 @@ def resolve_network(loaded: Loaded, scope: Scope) -> Network:
     """The network that the statements describe; the scope's findings tell what is wrong.
 
     Reactions with a fault are left out of it.
+
+    Parameters
+    ----------
+    loaded
+        The statements of the model's file and of those it uses.
+    scope
+        The names that the line sees; its findings take what is wrong.
     """
     base = [p for p in loaded.placed if p.variant is None]
     head = resolve_head(loaded, scope.findings)

@@ -98,7 +98,13 @@ _LETTERS = re.compile(r"[^\W\d]\w*")
 
 
 def words_of(texts: Iterable[str]) -> set[str]:
-    """All words of some lines, also those that digits touch."""
+    """All words of some lines, also those that digits touch.
+
+    Examples
+    --------
+    >>> sorted(words_of(["limit CO2 << 3x"]))
+    ['3x', 'CO2', 'limit', 'x']
+    """
     listed = tuple(texts)
     names = {match[0] for text in listed for match in _NAMES.finditer(text)}
     return names | {match[0] for text in listed for match in _LETTERS.finditer(text)}
@@ -123,7 +129,19 @@ def names_lost(texts: Iterable[str]) -> set[str]:
 
 
 def claim(scope: Scope, kind: Kind, line: LogicalLine, word: Word) -> bool:
-    """Whether a name is free to be declared; else say why not."""
+    """Whether a name is free to be declared; else say why not.
+
+    Parameters
+    ----------
+    scope
+        The names that the line sees; its findings take what is wrong.
+    kind
+        What the name is to stand for.
+    line
+        The logical line, for places.
+    word
+        The name as typed.
+    """
     name = word.text
     if name in RESERVED:
         scope.findings.add(

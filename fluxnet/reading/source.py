@@ -56,7 +56,21 @@ def _beside(path: Path) -> str | None:
 def source_of_bytes(
     data: bytes, name: str, *, large: bool = False
 ) -> tuple[Source | None, tuple[Diagnostic, ...]]:
-    """The text that bytes hold, and what is wrong with them."""
+    """The text that bytes hold, and what is wrong with them.
+
+    Parameters
+    ----------
+    name
+        What the text is called in findings.
+    large
+        Whether more than 20,000 lines are meant.
+
+    Examples
+    --------
+    >>> source, told = source_of_bytes("# 5 µM".encode("latin-1"), "core.flux")
+    >>> source.lines, [d.name.value for d in told]
+    (('# 5 µM',), ['wrong-encoding'])
+    """
     notes: list[Diagnostic] = []
     span = Span(name, 0)
     if len(data) > MOST_BYTES:
@@ -89,7 +103,21 @@ def source_of_bytes(
 def source_of_text(
     text: str, name: str, *, large: bool = False
 ) -> tuple[Source | None, tuple[Diagnostic, ...]]:
-    """A text cut into lines, and what is wrong with it as a whole."""
+    r"""A text cut into lines, and what is wrong with it as a whole.
+
+    Parameters
+    ----------
+    name
+        What the text is called in findings.
+    large
+        Whether more than 20,000 lines are meant.
+
+    Examples
+    --------
+    >>> source, told = source_of_text("product CO2\nsubstrate glucose", "core.flux")
+    >>> source.line(2), told
+    ('substrate glucose', ())
+    """
     lines = split_lines(text)
     span = Span(name, 0)
     if len(lines) > MOST_LINES and not large:
@@ -108,7 +136,13 @@ def source_of_text(
 
 
 def split_lines(text: str) -> tuple[str, ...]:
-    """The lines of a text, as an editor counts them."""
+    r"""The lines of a text, as an editor counts them.
+
+    Examples
+    --------
+    >>> split_lines("one\r\ntwo\n")
+    ('one', 'two')
+    """
     lines = _LINE_END.split(text.removeprefix("\ufeff"))
     if len(lines) > 1 and not lines[-1]:
         lines.pop()

@@ -45,7 +45,17 @@ class _Block:
 def resolve_variants(
     placed: Sequence[Placed], scope: Scope, *, phosphate: bool
 ) -> tuple[Variant, ...]:
-    """All variants of a model, in the order of the file."""
+    """All variants of a model, in the order of the file.
+
+    Parameters
+    ----------
+    placed
+        All statements, those of variants among them.
+    scope
+        The names that the line sees; its findings take what is wrong.
+    phosphate
+        Whether the model balances phosphate.
+    """
     blocks = _blocks(placed, scope)
     _check_parents(blocks, scope)
     found: dict[str, Variant] = {}
