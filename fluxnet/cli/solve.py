@@ -21,6 +21,7 @@ EXAMPLES = """What did the cell do; who made and who spent the ATP and the NADH?
 
   fluxnet solve model.flux rates.csv                      fluxes nearest to the rates
   fluxnet solve model.flux rates.csv --run A              one run of the table
+  fluxnet solve model.flux rates.csv --plan "ATP upkeep"  what to measure next, to know that
   fluxnet solve model.flux --maximise ethanol             the best that the model allows
   fluxnet solve model.flux --variant anaerobic --maximise mu
   fluxnet solve model.flux rates.csv --maximise ATP --within 1
@@ -55,8 +56,25 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         "--suspects", action="store_true",
         help="without an aim, say what could be wrong in every run, not only in rejected ones",
     )  # fmt: skip
+    parser.add_argument(
+        "--plan", metavar="X",
+        help="what to measure next, to know X: a flux, a rate, mu, a yield `ethanol / glucose`, "
+        "or a line of the ledger `ATP growth`",
+    )  # fmt: skip
+    parser.add_argument(
+        "--plan-error", metavar="PERCENT", type=per_cent, default=5.0,
+        help="the error of what would be measured anew, in per cent (5)",
+    )  # fmt: skip
+    parser.add_argument(
+        "--shares", action="store_true", help="show where the error of every flux comes from"
+    )
     add_table_options(parser)
     add_output_options(parser)
+
+
+def per_cent(text: str) -> float:
+    """A number of per cent, with or without its sign."""
+    return float(text.removesuffix("%"))
 
 
 def run(arguments: argparse.Namespace) -> int:
@@ -93,6 +111,8 @@ def run(arguments: argparse.Namespace) -> int:
             within=arguments.within,
             fraction=arguments.fraction,
             suspects=arguments.suspects,
+            plan=arguments.plan,
+            plan_error=arguments.plan_error / 100,
         )
     except InputError as fault:
         texts = {source.file: source for source in model.sources}
@@ -106,6 +126,8 @@ def run(arguments: argparse.Namespace) -> int:
     give_findings(arguments, [d for d in in_order(diagnostics) if d.accepted is None])
     return give_screen(
         arguments, Document.SOLVE, inputs, diagnostics, solve_record(solution),
-        solve_screen(solution, with_bill=arguments.proof, everything=arguments.all),
+        solve_screen(
+            solution, with_bill=arguments.proof, everything=arguments.all, shares=arguments.shares
+        ),
         sound=solution.is_sound,
     )  # fmt: skip

@@ -6,6 +6,7 @@ from typing import Any
 
 from fluxnet.presenting.conflict_record import conflict_record
 from fluxnet.presenting.optimum_record import limits_record, prices_record, proof_record
+from fluxnet.presenting.plan_record import correlated_record, plan_record, shares_record
 from fluxnet.presenting.quantity_record import quantity_record
 from fluxnet.presenting.records import diagnostic_record
 from fluxnet.presenting.suspect_record import suspect_keys
@@ -49,6 +50,7 @@ def _run(run: FluxSolution) -> Record:
                 "best_low": f.best_low,
                 "best_high": f.best_high,
                 "kind": f.kind.value,
+                "shares": shares_record(f.shares),
             }
             for f in run.fluxes
         ],
@@ -92,6 +94,7 @@ def _run(run: FluxSolution) -> Record:
                 "sd": line.sd,
                 "low": line.low,
                 "high": line.high,
+                "shares": shares_record(line.shares),
             }
             for line in run.ledger
         ],
@@ -160,6 +163,9 @@ def _run(run: FluxSolution) -> Record:
             }
             for m in run.moved
         ],
+        "correlated_parameters": correlated_record(run.correlated_numbers),
+        "correlated_fluxes": correlated_record(run.correlated_fluxes),
+        "plan": None if run.plan is None else plan_record(run.plan),
         "extras": dict(run.extras),
         "notes": [diagnostic_record(note) for note in run.notes],
     }

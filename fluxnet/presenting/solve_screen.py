@@ -2,15 +2,21 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from math import ceil, log10
+from typing import TYPE_CHECKING
 
 from fluxnet.ground.table import Align, Column, Table
 from fluxnet.presenting.conflict_blocks import conflict_blocks, unbounded_blocks
 from fluxnet.presenting.numbers import format_number, format_p
 from fluxnet.presenting.optimum_tables import doubt_blocks, proof_blocks
-from fluxnet.presenting.screen import Block, Heading, Mood, Sentence, blocks_of_run
+from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence, blocks_of_run
+from fluxnet.presenting.share_blocks import share_blocks
 from fluxnet.presenting.solve_tables import solve_tables
 from fluxnet.studies.solution import FluxSolution, FluxTest, Solution, SolveStatus
+
+if TYPE_CHECKING:
+    from fluxnet.studies.plan_result import Plan
 
 __all__ = ["solve_screen"]
 
@@ -24,7 +30,7 @@ _MOODS = {
 
 
 def solve_screen(
-    solution: Solution, *, with_bill: bool = False, everything: bool = False
+    solution: Solution, *, with_bill: bool = False, everything: bool = False, shares: bool = False
 ) -> tuple[Block, ...]:
     """Everything that is shown of a solve: an overview of several runs, then each.
 
@@ -34,10 +40,12 @@ def solve_screen(
         Show the bill that proves each optimum, too.
     everything
         Show all suspects, rare and impossible ones too.
+    shares
+        Show where the error of every flux comes from.
     """
     blocks: list[Block] = [_overview(solution)]
     for run in solution.runs:
-        blocks += blocks_of_run(_run_blocks(run, with_bill, everything), run.run)
+        blocks += blocks_of_run(_run_blocks(run, with_bill, everything, shares), run.run)
     return tuple(blocks)
 
 
@@ -75,7 +83,9 @@ def _overview(solution: Solution) -> Table:
     return Table("overview", f"{len(rows)} runs", columns, rows)
 
 
-def _run_blocks(run: FluxSolution, with_bill: bool, everything: bool) -> tuple[Block, ...]:
+def _run_blocks(
+    run: FluxSolution, with_bill: bool, everything: bool, shares: bool
+) -> tuple[Block, ...]:
     what = f"run {run.run}" if run.run is not None else "no measured rates"
     if run.extras:
         what += f" ({', '.join(f'{name} {value}' for name, value in run.extras)})"
@@ -92,8 +102,11 @@ def _run_blocks(run: FluxSolution, with_bill: bool, everything: bool) -> tuple[B
         *conflict_blocks(run, prices=with_bill),
         *unbounded_blocks(run),
     ]
+    if run.plan is not None:
+        return (*blocks, *_planned(run, run.plan))
     if run.fluxes:
         blocks += solve_tables(run)
+        blocks += share_blocks(run, shown=shares)
         blocks.append(
             Sentence(
                 f"Every balance holds to {_as_good_as(run.residual)} of its terms (recomputed).",
@@ -105,6 +118,20 @@ def _run_blocks(run: FluxSolution, with_bill: bool, everything: bool) -> tuple[B
         # The verdict has scrolled away by now; nobody should read the tables without it.
         blocks.append(Sentence(f"{heading[0].upper()}{heading[1:]}; not to be trusted.", mood))
     return tuple(blocks)
+
+
+def _planned(run: FluxSolution, plan: Plan) -> list[Block]:
+    """The answer that was asked for; the fluxes stand behind it as data."""
+    from fluxnet.presenting.plan_blocks import plan_blocks
+
+    def tables() -> tuple[Table, ...]:
+        blocks = (*solve_tables(run), *share_blocks(run, shown=False))
+        return tuple(replace(b, run=run.run) for b in blocks if isinstance(b, Table))
+
+    blocks: list[Block] = [Data(tables), *plan_blocks(plan)]
+    if not run.status.is_sound:
+        blocks.append(Sentence("It rests on a fit that is not to be trusted.", Mood.BAD))
+    return blocks
 
 
 def _as_good_as(residual: float) -> str:

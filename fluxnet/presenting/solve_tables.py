@@ -13,6 +13,7 @@ from fluxnet.presenting.optimum_tables import (
     prices_table,
 )
 from fluxnet.presenting.screen import Block
+from fluxnet.presenting.share_blocks import correlated_words, share_notes
 from fluxnet.studies.ledger import LedgerLine
 from fluxnet.studies.solution import FluxKind, FluxSolution, RateEstimate, SolveStatus
 
@@ -41,6 +42,7 @@ def solve_tables(run: FluxSolution) -> list[Block]:
         blocks += _equations(run)
     if run.moved:
         blocks.append(_moved(run))
+    blocks += correlated_words(run)
     return blocks
 
 
@@ -233,6 +235,7 @@ def _ledger(run: FluxSolution) -> list[Block]:
     notes = (
         "made and spent are sums inside a compartment; a carrier's nets add up to 0",
         *price_notes(run, tuple(by_carrier)),
+        *share_notes(run),
     )
     title = _title(run, "Carrier ledger: who made and who spent")
     keys = ("carrier", "compartment", "made", "spent", "net", "sd", "low", "high", "unit")

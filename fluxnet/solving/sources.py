@@ -145,7 +145,7 @@ def find_sources(fit: FluxFit) -> Sources:
         name = str(row.quantity or row.name)
         members.append(Source(kind, name, sd / size if is_ratio else sd, row.quantity))
     if shared.any() and run is not None and run.shared_error:
-        members.append(Source(SourceKind.SHARED, "biomass, shared error", run.shared_error))
+        members.append(Source(SourceKind.SHARED, "shared error", run.shared_error))
     sds = np.array([u.sd for u in built.uncertain])
     members += [Source(SourceKind.PARAMETER, u.name, u.sd) for u in built.uncertain]
     free = len(region.point.z)

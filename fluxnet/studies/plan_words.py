@@ -24,7 +24,7 @@ def step_words(step: Step, error: float) -> str:
 
 def _determined(plan: Plan) -> str:
     if not plan.sd:
-        return f"{plan.quantity} is known exactly: nothing need be measured for it."
+        return f"Nothing need be measured for {plan.quantity}: it is known exactly."
     best = next((o for o in plan.options if o.of_today is not None), None)
     if best is None or best.of_today is None or best.of_today > _WORTH:
         return (
@@ -38,16 +38,16 @@ def _determined(plan: Plan) -> str:
 
 
 def _undetermined(plan: Plan) -> str:
-    now = f"{plan.quantity} is not determined by what is measured"
+    now = f"What is measured does not determine {plan.quantity}"
     best = next((o for o in (*plan.options, plan.pair) if o is not None and o.sd is not None), None)
     if best is not None:
-        return f"{now}; {_told(best, plan)} would determine it."
+        return f"{now}; {_told(best, plan)} would."
     if plan.needed:
-        return f"{now}; it takes {_listed(plan.needed)} together to determine it."
+        return f"{now}; it takes {_listed(plan.needed)} together."
     inside = next((o for o in plan.inside if o.sd is not None), None)
     if inside is not None:
-        return f"{now}; only a flux inside would determine it: {_told(inside, plan)}."
-    return f"{now}, and nothing else that could be measured determines it."
+        return f"{now}; only a flux inside would: {_told(inside, plan)}."
+    return f"{now}, and nothing else that could be measured does."
 
 
 def _told(option: Option, plan: Plan) -> str:
