@@ -12,6 +12,8 @@ from fluxnet.studies.suspect_result import Standing, Suspect, SuspectKind, Suspe
 __all__ = ["suspect_blocks"]
 
 _MOST_ROWS = 12
+_MOST_READ = 3
+_MOST_READINGS = 2
 _SAME = "="
 _PLAUSIBLE = (Standing.MEASURED, Standing.MODEL, Standing.COMMON)
 
@@ -35,7 +37,7 @@ def suspect_blocks(
         blocks.append(_table(suspects, everything=everything))
     else:
         blocks.append(_pairs(suspects))
-    blocks += [Sentence(text) for text in _advice(suspects, more)]
+    blocks += [Sentence(text) for text in (*_readings(suspects), *_advice(suspects, more))]
     return [*blocks, Data(lambda: (_data(suspects, run),))]
 
 
@@ -159,6 +161,15 @@ def _pairs(suspects: Suspects) -> Table:
     notes = [f"and {suspects.pairs_left} pairs that do as well"] if suspects.pairs_left else []
     notes.append("each of the two is needed beside the other")
     return Table("", "Pairs of suspects", columns, rows, tuple(notes))
+
+
+def _readings(suspects: Suspects) -> list[str]:
+    """What in the laboratory may have made the first rates wrong by so much."""
+    rates = [s for s in suspects.group if s.readings][:_MOST_READ]
+    return [
+        f"{s.label}, possible causes: {'; or '.join(r.words for r in s.readings[:_MOST_READINGS])}."
+        for s in rates
+    ]
 
 
 def _advice(suspects: Suspects, more: str) -> list[str]:

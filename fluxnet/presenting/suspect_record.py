@@ -57,6 +57,17 @@ def _suspect(suspect: Suspect) -> Record:
         "standing": suspect.standing.value,
         "group": suspect.group,
         "twins": list(suspect.twins),
-        "readings": [],
+        "readings": [
+            {
+                "cause": reading.cause.value,
+                "words": reading.words,
+                "factor_low": reading.factor_low,
+                "factor_high": reading.factor_high,
+                "weight": reading.weight,
+                "expected": reading.expected,
+                "unit": reading.unit,
+            }
+            for reading in suspect.readings
+        ],
         "words": suspect_words(suspect),
     }

@@ -6,6 +6,7 @@ from enum import Enum
 
 from fluxnet.ground.record import record
 from fluxnet.network.model import Direction
+from fluxnet.studies.readings import Reading
 
 __all__ = ["MissingContent", "Standing", "Suspect", "SuspectKind", "SuspectPair", "Suspects"]
 
@@ -51,7 +52,8 @@ class Suspect:
     ``separation`` the distance to the nearest suspect of another direction in sds (None where
     there is no other). ``direction_number`` is the same for those that these measurements can
     never tell apart: each of them has the others as its ``twins``. ``group`` is 1 for those
-    that cannot be told from the best one at 5 %, 2 for the others.
+    that cannot be told from the best one at 5 %, 2 for the others. ``readings`` are causes in
+    the laboratory that make such an error, the most plausible first.
     """
 
     kind: SuspectKind
@@ -71,6 +73,7 @@ class Suspect:
     would_be_sd: float | None = None
     why_not: str | None = None
     twins: tuple[str, ...] = ()
+    readings: tuple[Reading, ...] = ()
 
     @property
     def possible(self) -> bool:

@@ -7,7 +7,7 @@ without the rate, but for what that one would make of its sds.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from fractions import Fraction
 from math import inf
 
@@ -17,13 +17,14 @@ from numpy.typing import NDArray
 from fluxnet.exact.linear import kernel
 from fluxnet.ground.record import record
 from fluxnet.network.contents import ELECTRONS
-from fluxnet.network.model import Basis, Network, QuantityKind, Role
+from fluxnet.network.model import Basis, Network, QuantityKind, Role, Species
 from fluxnet.studies.closure_batch import ClosureArrays
 from fluxnet.studies.closure_errors import Errors, Independent
 from fluxnet.studies.closure_passes import PreparedRuns
 from fluxnet.studies.closure_plan import BalanceSystem, ClosurePlan
 from fluxnet.studies.closure_rows import ClosureRow
 from fluxnet.studies.suspect_plan import Hypothesis, SuspectPlan, plan_suspects
+from fluxnet.studies.suspect_readings import with_readings
 from fluxnet.studies.suspect_result import SuspectKind, Suspects
 from fluxnet.studies.suspect_species import find_candidates
 from fluxnet.studies.suspects import (
@@ -41,14 +42,20 @@ _EITHER_WAY = ("CO2", "hydrogen", "bicarbonate")
 
 @record
 class SoughtSuspects:
-    """The suspects of one run of several that were weighed together."""
+    """The suspects of one run of several that were weighed together.
+
+    ``species`` are those of the rates by their names, ``columns`` what the run carries.
+    """
 
     judged: JudgedSuspects
     place: int
+    species: Mapping[str, Species]
+    columns: Mapping[str, str]
 
     def tell(self) -> Suspects:
         """The suspects as records."""
-        return tell_suspects(self.judged, self.place)
+        told = tell_suspects(self.judged, self.place)
+        return with_readings(told, self.species, self.columns)
 
 
 def seek_suspects(
@@ -83,7 +90,12 @@ def seek_suspects(
             batch.values[some], _covariances(arrays.errors, some), batch.given[some], factors
         ),
     )
-    return {place: SoughtSuspects(judged, k) for k, place in enumerate(some)}
+    known = {s.name: s for s in batch.rows.species}
+    species = {row.name: known[row.species] for row in plan.measured if row.species in known}
+    return {
+        place: SoughtSuspects(judged, k, species, dict(batch.runs[place].extras))
+        for k, place in enumerate(some)
+    }
 
 
 def plan_closure_suspects(

@@ -18,7 +18,7 @@ from numpy.typing import NDArray
 
 from fluxnet.exact.sparse import null_space
 from fluxnet.ground.record import record
-from fluxnet.network.model import QuantityKind, Role, Species
+from fluxnet.network.model import Network, QuantityKind, Role, Species
 from fluxnet.solving.applying import applies, is_same, may_reverse
 from fluxnet.solving.build import Built, rebuild
 from fluxnet.solving.descent import fit_equalities
@@ -28,6 +28,7 @@ from fluxnet.solving.forms import as_fraction, exact_numbers, form_of_row, growt
 from fluxnet.solving.problem import Row, RowKind
 from fluxnet.solving.quantities import ash_key, default_direction
 from fluxnet.studies.suspect_plan import Hypothesis, SuspectPlan, plan_suspects
+from fluxnet.studies.suspect_readings import with_readings
 from fluxnet.studies.suspect_result import Standing, SuspectKind, Suspects
 from fluxnet.studies.suspect_species import crosses
 from fluxnet.studies.suspects import MeasuredValues, judge_suspects, tell_suspects
@@ -82,7 +83,16 @@ def seek_flux_suspects(fit: FluxFit, unit: str) -> Suspects | None:
             [[1 / (row.denominator or 1.0) for row in soft], np.ones(len(names))]
         )[None, :],
     )
-    return tell_suspects(judge_suspects(plan, measured), 0)
+    told = tell_suspects(judge_suspects(plan, measured), 0)
+    run = built.run
+    return with_readings(told, _species(built.network), dict(run.extras) if run else {})
+
+
+def _species(network: Network) -> dict[str, Species]:
+    """The species of rates by the names that these have; mu is the growth of the one biomass."""
+    named = {s.name: s for s in network.boundary}
+    biomass = [s for s in network.boundary if s.role is Role.BIOMASS]
+    return named | ({"mu": biomass[0]} if len(biomass) == 1 else {})
 
 
 def _given(row: Row) -> float:
