@@ -110,12 +110,17 @@ def find_conflicts(problem: Problem, *, most: int = 3, unit: str = "") -> tuple[
     """Conflicts that share no limit and no measurement; ``most`` of them at most.
 
     After each the limits and measurements among its members are lifted, and the rest is asked
-    again; where it has none, nothing can be lifted and the search ends.
+    again. The search ends where there are none to lift, or the solver cannot tell of the rest.
 
     Returns
     -------
     tuple of Conflict
         Empty where the problem has a solution.
+
+    Raises
+    ------
+    ArithmeticError
+        Where the solver could not tell of the first.
 
     Examples
     --------
@@ -129,7 +134,12 @@ def find_conflicts(problem: Problem, *, most: int = 3, unit: str = "") -> tuple[
     """
     found: list[Conflict] = []
     while len(found) < most:
-        conflict = find_conflict(problem, unit=unit)
+        try:
+            conflict = find_conflict(problem, unit=unit)
+        except ArithmeticError:
+            if not found:
+                raise
+            break
         if conflict.members:
             found.append(conflict)
         if not conflict.given:

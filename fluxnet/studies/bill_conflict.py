@@ -111,6 +111,8 @@ def _name(weight: Weight, problem: Problem) -> str:
     if value is None or not sd:
         return f"{name}, exactly {number_words(end)}"
     away = (end - value) / sd
+    if abs(away) < 1e-9:
+        return f"{name}, measured {number_words(value)}"
     return f"{name}, {number_words(value)} {'+' if away > 0 else '-'} {abs(away):.3g} sd"
 
 

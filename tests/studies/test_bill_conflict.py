@@ -128,3 +128,11 @@ def test_amounts_have_no_time_in_their_unit(explain):
     assert told.bill.unit.startswith("mmol ")
     assert "/" not in told.bill.unit
     assert {x.unit for x in told.bill.lines} == {"mmol"}
+
+
+def test_values_held_as_they_stand_are_told_without_sds(read_run):
+    network = read_model_text(CELL + "limit glucose <= 1\n").network
+    run = read_run(network, {"glucose in": 2}, sd="5 %", unit="mmol/g/h")
+    built = build_problem(network, run, within=0.0)
+    (told,) = explain_conflicts(built, built.problem, "mmol/g/h", 0.0)
+    assert [x.name for x in told.bill.lines] == ["glucose in, measured 2", "limit glucose <= 1"]
