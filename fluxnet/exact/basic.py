@@ -1,67 +1,19 @@
-"""Solutions x >= 0 of A x = b, exactly, by pivoting from one basis to the next.
+"""Solutions x >= 0 of A x = b, exactly: whether there is one, and how large an unknown can be.
 
-The dual simplex without a cost finds one or proves that there is none; the primal one then
-moves to where a single unknown is largest. Both take the smallest index among equals, so that
-they end (Bland 1977; from memory). Meant for the few unknowns that elimination leaves.
+Both are small programmes of :mod:`fluxnet.exact.simplex`, begun without any guess. Meant for
+the few unknowns that elimination leaves.
 """
 
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 from fractions import Fraction
 
-from fluxnet.exact.linear import Row, echelon
+from fluxnet.exact.linear import Row
+from fluxnet.exact.programme import make_programme
+from fluxnet.exact.simplex import End, ExactSolution, Place, solve_from
 
 __all__ = ["find_nonnegative", "largest"]
-
-
-@dataclass(slots=True, eq=False, repr=False)
-class _Basis:
-    """A tableau: rows of coefficients with the right side last, and each row's basic column."""
-
-    rows: list[list[Fraction]]
-    basic: list[int]
-    columns: int
-
-    def pivot(self, place: int, column: int) -> None:
-        """Make a column basic in a row."""
-        row = self.rows[place]
-        factor = row[column]
-        row = [v / factor for v in row]
-        self.rows[place] = row
-        for k, other in enumerate(self.rows):
-            if k != place and other[column]:
-                share = other[column]
-                self.rows[k] = [v - share * w for v, w in zip(other, row, strict=True)]
-        self.basic[place] = column
-
-    def solution(self) -> tuple[Fraction, ...]:
-        """The basic solution."""
-        values = [Fraction(0)] * self.columns
-        for row, column in zip(self.rows, self.basic, strict=True):
-            values[column] = row[-1]
-        return tuple(values)
-
-
-def _feasible(
-    rows: Sequence[Row], rights: Sequence[Fraction | int], columns: int
-) -> _Basis | None:
-    joined = [[*row, right] for row, right in zip(rows, rights, strict=True)]
-    form = echelon(joined, columns + 1)
-    if columns in form.pivots:
-        return None
-    basis = _Basis([list(row) for row in form.rows], list(form.pivots), columns)
-    while True:
-        below = [k for k, row in enumerate(basis.rows) if row[-1] < 0]
-        if not below:
-            return basis
-        place = min(below, key=lambda k: basis.basic[k])
-        row = basis.rows[place]
-        entering = next((j for j in range(columns) if row[j] < 0), None)
-        if entering is None:
-            return None
-        basis.pivot(place, entering)
 
 
 def find_nonnegative(
@@ -76,8 +28,8 @@ def find_nonnegative(
     >>> find_nonnegative([[1, 1]], [-1], 2) is None
     True
     """
-    basis = _feasible(rows, rights, columns)
-    return None if basis is None else basis.solution()
+    found = _solve(rows, rights, columns, {})
+    return None if found.end is End.INFEASIBLE else found.fluxes
 
 
 def largest(
@@ -95,27 +47,22 @@ def largest(
     >>> largest([[1, 1]], [3], 2, 0), largest([[1, -1]], [0], 2, 0)
     (Fraction(3, 1), None)
     """
-    basis = _feasible(rows, rights, columns)
-    if basis is None:
+    found = _solve(rows, rights, columns, {unknown: Fraction(-1)})
+    if found.end is End.INFEASIBLE:
         raise ValueError("no x >= 0 meets the equations")
-    while True:
-        gains = _gains(basis, unknown)
-        entering = next((j for j in range(columns) if gains[j] > 0), None)
-        if entering is None:
-            return basis.solution()[unknown]
-        ratios = [
-            (row[-1] / row[entering], basis.basic[k], k)
-            for k, row in enumerate(basis.rows)
-            if row[entering] > 0
-        ]
-        if not ratios:
-            return None
-        basis.pivot(min(ratios)[2], entering)
+    return None if found.end is End.UNBOUNDED else -found.objective
 
 
-def _gains(basis: _Basis, unknown: int) -> list[Fraction]:
-    """By column: how much the unknown grows when that column's value grows by one."""
-    if unknown in basis.basic:
-        row = basis.rows[basis.basic.index(unknown)]
-        return [Fraction(0) if j in basis.basic else -row[j] for j in range(basis.columns)]
-    return [Fraction(int(j == unknown)) for j in range(basis.columns)]
+def _solve(
+    rows: Sequence[Row], rights: Sequence[Fraction | int], columns: int,
+    costs: dict[int, Fraction],
+) -> ExactSolution:
+    """Pivots end by themselves (Bland), however many they are."""
+    programme = make_programme(
+        columns,
+        [{j: Fraction(v) for j, v in enumerate(row) if v} for row in rows],
+        [(Fraction(right), Fraction(right)) for right in rights],
+        [(Fraction(0), None)] * columns,
+        costs,
+    )
+    return solve_from(programme, [Place.LOW] * columns + [Place.BASIC] * len(rows), None)

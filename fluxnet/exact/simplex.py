@@ -66,7 +66,7 @@ class ExactSolution:
 
 
 def solve_from(
-    programme: ExactProgramme, places: Sequence[Place], most_pivots: int = _MOST_PIVOTS
+    programme: ExactProgramme, places: Sequence[Place], most_pivots: int | None = _MOST_PIVOTS
 ) -> ExactSolution:
     """Prove the optimum at a basis, or pivot from it to one that can be proven.
 
@@ -74,6 +74,8 @@ def solve_from(
     ----------
     places
         Of the columns first, then of the rows; one that makes no basis is mended.
+    most_pivots
+        None: until an end is proven.
 
     Examples
     --------
@@ -89,11 +91,11 @@ def solve_from(
     costs, pivots = programme.costs, 0
     simplex.refresh(costs)
     below = simplex.first_outside()
-    while pivots < most_pivots:
+    while most_pivots is None or pivots < most_pivots:
         if below is not None:
             # Without costs every basis has prices of the right signs.
             held = costs if simplex.first_gain() is None else {}
-            while below is not None and pivots < most_pivots:
+            while below is not None and (most_pivots is None or pivots < most_pivots):
                 weights = simplex.pull_inside(below, held)
                 if weights is not None:
                     return simplex.told(End.INFEASIBLE, costs, pivots, weights=weights)
