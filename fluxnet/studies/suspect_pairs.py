@@ -6,6 +6,7 @@ from math import sqrt
 from typing import TYPE_CHECKING
 
 import numpy as np
+from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
 from fluxnet.solving.statistics import chi_squared_quantile
@@ -16,13 +17,14 @@ from fluxnet.studies.suspect_result import (
     Suspect,
     SuspectPair,
 )
-from fluxnet.studies.suspects import make_suspect, rank_standings
+from fluxnet.studies.suspects import RunNumbers, make_suspect, numbers_of, rank_standings
 
 if TYPE_CHECKING:
     from fluxnet.studies.suspects import JudgedSuspects
 
 __all__ = ["find_missing", "tell_pairs"]
 
+Array = NDArray[np.float64]
 _SHOWN = 6
 _STANDINGS = tuple(Standing)
 
@@ -34,6 +36,7 @@ def tell_pairs(judged: JudgedSuspects, run: int) -> tuple[tuple[SuspectPair, ...
     with one that is not possible are left out.
     """
     plan = judged.plan
+    numbers = numbers_of(judged, run)
     first = [plan.members(number)[0] for number in range(plan.distinct)]
     found = weigh_pairs(judged.whitened, run, plan.directions, first)
     classes = rank_standings(with_model=plan.with_model)
@@ -43,7 +46,10 @@ def tell_pairs(judged: JudgedSuspects, run: int) -> tuple[tuple[SuspectPair, ...
         if reach is not None and left > reach:
             break
         pair = [
-            _beside(judged, run, int(place), float(found.sizes[k, side]), float(found.sds[k, side]))
+            _beside(
+                numbers, judged.factors[run], int(place),
+                float(found.sizes[k, side]), float(found.sds[k, side]),
+            )
             for side, place in enumerate((found.first[k], found.second[k]))
         ]
         if not all(one.possible for one in pair):
@@ -58,19 +64,22 @@ def tell_pairs(judged: JudgedSuspects, run: int) -> tuple[tuple[SuspectPair, ...
     return pairs, len(told) - len(pairs)
 
 
-def _beside(judged: JudgedSuspects, run: int, place: int, size: float, sd: float) -> Suspect:
+def _beside(
+    numbers: RunNumbers, factors: Array, place: int, size: float, sd: float
+) -> Suspect:
     """The most plausible suspect of a direction at the size that it has beside another one.
 
-    ``size`` and ``sd`` are those of the suspect at ``place``, as they enter the relations.
+    ``size`` and ``sd`` are those of the suspect at ``place``, as they enter the relations;
+    ``factors`` turn them into what is told.
     """
-    plan = judged.plan
+    plan = numbers.plan
     members = plan.members(plan.classes[place])
     own = plan.directions[place]
     best: Suspect | None = None
     for i in members:
         other = plan.directions[i]
-        factor = float(own @ other) / float(other @ other) * float(judged.factors[run, i])
-        one = make_suspect(judged, run, i, (size * factor, sd * abs(factor)))
+        factor = float(own @ other) / float(other @ other) * float(factors[i])
+        one = make_suspect(numbers, i, (size * factor, sd * abs(factor)))
         if best is None or _STANDINGS.index(one.standing) < _STANDINGS.index(best.standing):
             best = one
     if best is None:

@@ -25,8 +25,8 @@ from fluxnet.studies.suspect_plan import Hypothesis, SuspectPlan
 from fluxnet.studies.suspect_result import Standing, Suspect, SuspectKind, Suspects
 
 __all__ = [
-    "JudgedSuspects", "MeasuredValues", "judge_suspects", "make_suspect", "rank_standings",
-    "tell_suspects",
+    "JudgedSuspects", "MeasuredValues", "RunNumbers", "judge_suspects", "make_suspect",
+    "numbers_of", "rank_standings", "tell_suspects",
 ]  # fmt: skip
 
 Array = NDArray[np.float64]
@@ -66,6 +66,22 @@ class JudgedSuspects:
     would_be_sd: Array
     standing: NDArray[np.intp]
     group: NDArray[np.bool_]
+
+
+@record
+class RunNumbers:
+    """What was found of each suspect in one run; ``labels`` are names with directions."""
+
+    plan: SuspectPlan
+    sizes: list[float]
+    sds: list[float]
+    h_left: list[float]
+    p: list[float]
+    separation: list[float]
+    given: list[float]
+    would_be_sd: list[float]
+    group: list[bool]
+    labels: tuple[str, ...]
 
 
 def judge_suspects(plan: SuspectPlan, measured: MeasuredValues) -> JudgedSuspects:
@@ -117,12 +133,12 @@ def tell_suspects(judged: JudgedSuspects, run: int) -> Suspects:
     """
     from fluxnet.studies.suspect_pairs import find_missing, tell_pairs
 
-    plan, arrays = judged.plan, judged.arrays
+    plan, arrays, numbers = judged.plan, judged.arrays, numbers_of(judged, run)
     places = _ranked(judged, run)
-    group = [i for i in places if judged.group[run, i]]
+    group = [i for i in places if numbers.group[i]]
     others = [
         i for i in places
-        if not judged.group[run, i]
+        if not numbers.group[i]
         and plan.hypotheses[i].kind in (SuspectKind.MEASURED_RATE, SuspectKind.PARAMETER)
     ]  # fmt: skip
     possible = judged.standing[run] != _STANDINGS.index(Standing.IMPOSSIBLE)
@@ -133,8 +149,8 @@ def tell_suspects(judged: JudgedSuspects, run: int) -> Suspects:
     return Suspects(
         h=float(arrays.h[run]),
         dof=dof,
-        group=tuple(make_suspect(judged, run, i) for i in group),
-        others=tuple(make_suspect(judged, run, i) for i in others),
+        group=tuple(make_suspect(numbers, i) for i in group),
+        others=tuple(make_suspect(numbers, i) for i in others),
         left=len(plan.hypotheses) - len(group),
         tried=len(plan.hypotheses),
         distinct=plan.distinct,
@@ -153,24 +169,28 @@ def _ranked(judged: JudgedSuspects, run: int) -> list[int]:
     classes = rank_standings(with_model=judged.plan.with_model)
     # what twins leave differs by rounding only
     digits = np.round(left / (1 + judged.arrays.h[run]), 9)
-    return [int(i) for i in np.lexsort((standing, digits, classes[standing]))]
+    places: list[int] = np.lexsort((standing, digits, classes[standing])).tolist()
+    return places
 
 
 def rank_standings(*, with_model: bool) -> NDArray[np.intp]:
     """By the place of each standing: in which class it is put."""
-    order = {
-        Standing.MEASURED: 0,
-        Standing.MODEL: 0,
-        Standing.COMMON: 1 if with_model else 0,
-        Standing.RARE: 2,
-        Standing.IMPOSSIBLE: 3,
-    }
-    return np.array([order[s] for s in _STANDINGS], dtype=np.intp)
+    return np.array([0, 0, 1 if with_model else 0, 2, 3], dtype=np.intp)
 
 
-def make_suspect(
-    judged: JudgedSuspects, run: int, i: int, beside: tuple[float, float] | None = None
-) -> Suspect:
+def numbers_of(judged: JudgedSuspects, run: int) -> RunNumbers:
+    """One run's numbers taken out of the arrays of all, once for all its suspects."""
+    arrays, plan = judged.arrays, judged.plan
+    sizes = arrays.sizes[run].tolist()
+    labels = tuple(_label(h, size) for h, size in zip(plan.hypotheses, sizes, strict=True))
+    return RunNumbers(
+        plan, sizes, arrays.sds[run].tolist(), arrays.h_left[run].tolist(),
+        arrays.p[run].tolist(), arrays.separation[run].tolist(), judged.given[run].tolist(),
+        judged.would_be_sd[run].tolist(), judged.group[run].tolist(), labels,
+    )  # fmt: skip
+
+
+def make_suspect(told: RunNumbers, i: int, beside: tuple[float, float] | None = None) -> Suspect:
     """One suspect of a run as a record.
 
     Parameters
@@ -178,23 +198,19 @@ def make_suspect(
     beside
         Its size and sd where it does not stand alone.
     """
-    plan, arrays = judged.plan, judged.arrays
-    one, number = plan.hypotheses[i], plan.classes[i]
-    alone = float(arrays.sizes[run, i]), float(arrays.sds[run, i])
-    size, sd = alone if beside is None else beside
+    one, number = told.plan.hypotheses[i], told.plan.classes[i]
+    size, sd = (told.sizes[i], told.sds[i]) if beside is None else beside
     is_rate = one.row is not None
-    would_be_sd = float(judged.would_be_sd[run, i])
+    would_be, would_be_sd = told.given[i] - size, told.would_be_sd[i]
     if beside is not None and is_rate:
         # what its size shares with its value is the same beside another one
-        would_be_sd = sqrt(max(0.0, sd**2 - alone[1] ** 2 + would_be_sd**2))
-    would_be = float(judged.given[run, i]) - size
+        would_be_sd = sqrt(max(0.0, sd**2 - told.sds[i] ** 2 + would_be_sd**2))
     standing = one.positive if size >= 0 else one.negative
     if is_rate and not _fits(one, would_be, would_be_sd):
         standing = Standing.IMPOSSIBLE
     direction, shown = one.direction, size
     if one.kind is SuspectKind.UNMEASURED_SPECIES:
         direction, shown = Direction.OUT if size >= 0 else Direction.IN, abs(size)
-    apart = float(arrays.separation[run, i])
     return Suspect(
         kind=one.kind,
         name=one.name,
@@ -202,17 +218,17 @@ def make_suspect(
         size=shown,
         sd=sd,
         unit=one.unit,
-        h_left=float(arrays.h_left[run, i]),
-        p=float(arrays.p[run, i]),
-        separation=apart if isfinite(apart) else None,
+        h_left=told.h_left[i],
+        p=told.p[i],
+        separation=told.separation[i] if isfinite(told.separation[i]) else None,
         standing=standing,
-        group=1 if judged.group[run, i] else 2,
+        group=1 if told.group[i] else 2,
         direction_number=number,
-        measured=float(judged.given[run, i]) if is_rate else None,
+        measured=told.given[i] if is_rate else None,
         would_be=would_be if is_rate else None,
         would_be_sd=would_be_sd if is_rate else None,
         why_not=_why_not(one, size, would_be) if standing is Standing.IMPOSSIBLE else None,
-        twins=tuple(_name_of(judged, run, k) for k in plan.members(number) if k != i),
+        twins=tuple(told.labels[k] for k in told.plan.members(number) if k != i),
     )
 
 
@@ -221,11 +237,10 @@ def _fits(one: Hypothesis, would_be: float, sd: float) -> bool:
     return one.low - _LIKELY * sd <= would_be <= one.high + _LIKELY * sd
 
 
-def _name_of(judged: JudgedSuspects, run: int, i: int) -> str:
-    """How a twin is named: with the direction that its size tells."""
-    one = judged.plan.hypotheses[i]
+def _label(one: Hypothesis, size: float) -> str:
+    """How a suspect is named among twins: with the direction that its size tells."""
     if one.kind is SuspectKind.UNMEASURED_SPECIES:
-        return f"{one.name} {'out' if judged.arrays.sizes[run, i] >= 0 else 'in'}"
+        return f"{one.name} {'out' if size >= 0 else 'in'}"
     return one.name if one.direction is None else f"{one.name} {one.direction.value}"
 
 
