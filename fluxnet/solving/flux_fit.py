@@ -168,7 +168,7 @@ class FluxFit:
 
     Where ``status`` is INFEASIBLE arrays hold NaN, and ``contradictions`` are the names of
     exact values and limits that contradict one another, where that was seen at once. ``task``
-    and ``region`` are what :func:`fluxnet.solving.least_squares.spans_of` asks.
+    and ``region`` are what :func:`fluxnet.solving.spans.spans_of` asks.
     """
 
     status: FitStatus

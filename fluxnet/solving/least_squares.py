@@ -11,7 +11,6 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
-from fluxnet.ground.errors import MisuseError
 from fluxnet.network.model import Network, Quantity, QuantityKind
 from fluxnet.rates.measured import Run
 from fluxnet.solving.bound_test import chance_of_bounds
@@ -34,6 +33,7 @@ from fluxnet.solving.functionals import Drifting, Joined, Placed
 from fluxnet.solving.intervals import Intervals, find_intervals
 from fluxnet.solving.pulls import pressing_bounds
 from fluxnet.solving.quantities import has_mu
+from fluxnet.solving.ratio_scale import find_scale, is_met
 from fluxnet.solving.region import Region
 from fluxnet.solving.relations import Relation, find_relations
 from fluxnet.solving.representative import take_least_flux
@@ -43,15 +43,13 @@ from fluxnet.solving.task import Task
 from fluxnet.solving.weighing import Weighed, fit_weighed, weigh_again
 from fluxnet.solving.weightless import without_weightless
 
-__all__ = ["fit_fluxes", "spans_of"]
+__all__ = ["fit_fluxes"]
 
 Vector = NDArray[np.float64]
 
 _PRESSES = 1e-9
 """What bounds add to h below this part of it is rounding."""
 _GUESSES = 3
-_CANCELS = 1e-9
-"""What is left of a sum below this part of its terms is rounding."""
 
 
 def fit_fluxes(network: Network, run: Run | None = None, *, built: Built | None = None) -> FluxFit:
@@ -111,9 +109,17 @@ def fit_fluxes(network: Network, run: Run | None = None, *, built: Built | None 
             break
         weighed = weigh_again(weighed, region.point)
         region = _bounded(weighed) or region
+    held = None
+    for place in weighed.built.estimated:
+        if region is None or is_met(weighed, region.point, place):
+            continue
+        scaled = find_scale(weighed, place)
+        if scaled is not None:
+            weighed, region, held = scaled.weighed, scaled.region, scaled.held
     if region is None:
         return _nothing(weighed.built, ())
-    return _told(weighed, structure, region, mu_place=len(built.problem.rows) if extra else None)
+    mu_place = len(built.problem.rows) if extra else None
+    return _told(weighed, structure, region, held or region, mu_place)
 
 
 def _bounded(weighed: Weighed) -> Region | None:
@@ -122,61 +128,10 @@ def _bounded(weighed: Weighed) -> Region | None:
     return None if bounded is None else take_least_flux(weighed.task, bounded[1])
 
 
-def spans_of(
-    fit: FluxFit, rows: Vector, drift: dict[str, Vector] | None = None
-) -> Intervals:
-    """Values, sds and ranges of any rows over the fluxes, as those of the fluxes themselves.
-
-    Parameters
-    ----------
-    fit
-        A fit that is not infeasible.
-    rows
-        Functionals x fluxes, at the fitted values of parameters and ash.
-    drift
-        The derivatives of ``rows`` by each uncertain number, by its name; those that are not
-        named have none. Rows are taken to change in proportion to the numbers.
-
-    Returns
-    -------
-    Intervals
-        sd is NaN where a functional is not determined.
-
-    Raises
-    ------
-    MisuseError
-        Where the fit is infeasible, or the shapes do not fit.
-    """
-    task, region = fit.task, fit.region
-    if task is None or region is None:
-        raise MisuseError("an infeasible fit has no values to ask for")
-    rows = np.atleast_2d(np.asarray(rows, dtype=np.float64))
-    if rows.shape[1] != len(fit.reactions) or np.isnan(rows).any():
-        raise MisuseError("each functional needs one number for every flux")
-    slopes = np.zeros((task.numbers, *rows.shape))
-    for k, name in enumerate(task.rows.names):
-        if drift is not None and name in drift:
-            slopes[k] = drift[name]
-    # What no measurement sees cancels in a determined row, up to the rounding of its terms.
-    free = np.where(task.open_fluxes[:, None], region.point.tangent @ region.unseen, 0.0)
-    terms = np.abs(rows) @ np.abs(free)
-    determined = np.asarray(np.all(np.abs(rows @ free) <= _CANCELS * terms, axis=1), dtype=bool)
-    # Multiples of a single flux are known already.
-    known = (np.count_nonzero(rows, axis=1) == 1) & ~slopes.any(axis=(0, 2))
-    places = np.abs(rows[known]).argmax(axis=1)
-    fluxes = Intervals(
-        region.point.fluxes, fit.flux_sd, fit.low, fit.high, fit.best_low, fit.best_high
-    )
-    asked = Drifting(rows[~known], slopes[:, ~known], region.point.numbers)
-    return fluxes.times(places, rows[known, places]).among(
-        find_intervals(task, region, asked, determined[~known]), known
-    )
-
-
 def _told(
-    weighed: Weighed, structure: Structure, region: Region, mu_place: int | None
+    weighed: Weighed, structure: Structure, region: Region, held: Region, mu_place: int | None
 ) -> FluxFit:
-    """All that a fit tells."""
+    """All that a fit tells; what bounds add by chance is asked of the region ``held``."""
     task, best, point = weighed.task, weighed.best, region.point
     numbers = dict(zip(task.rows.names, point.numbers.tolist(), strict=True))
     built = rebuild(weighed.built, numbers)
@@ -215,7 +170,7 @@ def _told(
         limit=limit,
         closes=closes,
         bound_h=added if presses else 0.0,
-        bound_p=chance_of_bounds(region, added) if presses else None,
+        bound_p=chance_of_bounds(held, added) if presses else None,
         bounds=pressing_bounds(built, task, region, structure) if presses else (),
         moved=parameter_moves(task, best, point, adjustments, spread.covariance),
         rows=fitted_rows(

@@ -119,6 +119,7 @@ def find_least_distance(rows: Vector, bounds: Vector) -> LeastDistance:
     weights, residual = solve_nonnegative(stacked, np.r_[np.zeros(count), 1.0])
     if np.linalg.norm(residual) < 1e-9:
         return LeastDistance(None, weights)
-    # The sign: the residual is (-G' w, 1 - g w), and the point is G' w over 1 - g w.
-    point = -size * residual[:count] / residual[count]
-    return LeastDistance(point, weights * size / residual[count])
+    # The residual is (-G' w, 1 - g w), and the point is G' w over 1 - g w. That is the square
+    # of the residual's norm (it stands upright on what was fitted), which cancels nothing.
+    left = float(residual @ residual)
+    return LeastDistance(-size * residual[:count] / left, weights * size / left)

@@ -19,8 +19,9 @@ from fluxnet.solving.flux_fit import (
     FluxRelation,
     PressingBound,
 )
-from fluxnet.solving.least_squares import fit_fluxes, spans_of
+from fluxnet.solving.least_squares import fit_fluxes
 from fluxnet.solving.sources import find_sources
+from fluxnet.solving.spans import spans_of
 from fluxnet.studies.settling import Array, Span, keep_account
 from fluxnet.studies.shares import (
     correlated_fluxes,

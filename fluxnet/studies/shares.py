@@ -68,7 +68,7 @@ def slopes_of(fit: FluxFit, rows: Vector, drift: Mapping[str, Vector]) -> Vector
     Parameters
     ----------
     rows, drift
-        As :func:`fluxnet.solving.least_squares.spans_of` takes them.
+        As :func:`fluxnet.solving.spans.spans_of` takes them.
     """
     if fit.region is None or fit.task is None:
         return np.zeros((len(rows), 0))

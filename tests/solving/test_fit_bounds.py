@@ -10,7 +10,8 @@ import pytest
 
 from fluxnet.ground.errors import MisuseError
 from fluxnet.solving.flux_fit import BoundKind, FitStatus
-from fluxnet.solving.least_squares import fit_fluxes, spans_of
+from fluxnet.solving.least_squares import fit_fluxes
+from fluxnet.solving.spans import spans_of
 
 sys.path.insert(0, str(Path(__file__).resolve().parent))
 

@@ -11,7 +11,8 @@ import pytest
 from fluxnet.solving.flux_fit import FitStatus, FluxKind
 from fluxnet.solving.functionals import Drifting
 from fluxnet.solving.intervals import find_intervals
-from fluxnet.solving.least_squares import fit_fluxes, spans_of
+from fluxnet.solving.least_squares import fit_fluxes
+from fluxnet.solving.spans import spans_of
 
 sys.path.insert(0, str(Path(__file__).resolve().parent))
 
