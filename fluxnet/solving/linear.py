@@ -110,12 +110,12 @@ class Programme:
         self._row_low, self._row_high = problem.row_low.copy(), problem.row_high.copy()
         self._column_low = problem.column_low.copy()
         self._column_high = problem.column_high.copy()
-        self._sizes = np.abs(problem.matrix)
+        sizes = np.abs(problem.matrix)
         self._entries = Entries.of(problem.matrix)
         self._costs = np.zeros(len(problem.columns))
         self._cost_scale = 1.0
-        self._row_scale, self._column_scale = find_scales(problem, self._sizes)
-        self._is_spread = is_spread(self._sizes)
+        self._row_scale, self._column_scale = find_scales(problem, sizes)
+        self._is_spread = is_spread(sizes)
         self._highs = load_model(problem, self._entries, self._row_scale, self._column_scale)
         self._set_method(*_ATTEMPTS[0])
 
@@ -260,14 +260,14 @@ class Programme:
         if outcome is Outcome.INFEASIBLE:
             weights = self.dual_ray()
             return outcome, weights is not None and is_contradiction(
-                problem.matrix, self._sizes, weights, *bounds
+                self._entries, weights, *bounds
             )
         if outcome is Outcome.UNBOUNDED:
             ray = self.primal_ray()
             if ray is None:  # it has none for a problem without rows
                 return outcome, not problem.rows
             gain = float(self._costs @ (ray / self._column_scale))
-            return outcome, gain < 0 and is_ray(problem.matrix, ray, *bounds)
+            return outcome, gain < 0 and is_ray(self._entries, ray, *bounds)
         if outcome is Outcome.OPTIMAL:
             self._fluxes = np.array(self._highs.getSolution().col_value) * self._column_scale
             self.residual = violation_of(self._entries, self._fluxes, *bounds)

@@ -34,6 +34,11 @@ class Entries:
         total = np.bincount(self.row, weights=terms, minlength=self.rows)
         return np.asarray(total, dtype=np.float64)
 
+    def add_columns(self, terms: Vector, columns: int) -> Vector:
+        """The sum of each column's terms, of so many columns."""
+        total = np.bincount(self.column, weights=terms, minlength=columns)
+        return np.asarray(total, dtype=np.float64)
+
 
 def worst_violation(problem: Problem, fluxes: Vector) -> float:
     """How far fluxes leave the bounds of a problem, relative to what is added up.
@@ -62,7 +67,7 @@ def violation_of(entries: Entries, fluxes: Vector, rows: Pair, columns: Pair) ->
     return float(max(0.0, row.max(initial=0.0), column.max(initial=0.0)))
 
 
-def is_ray(matrix: Vector, ray: Vector, rows: Pair, columns: Pair) -> bool:
+def is_ray(entries: Entries, ray: Vector, rows: Pair, columns: Pair) -> bool:
     """Whether a direction can be followed for ever: it approaches no finite bound.
 
     Bounds of rows are judged relative to the sum of the absolute values of the terms, those
@@ -71,9 +76,9 @@ def is_ray(matrix: Vector, ray: Vector, rows: Pair, columns: Pair) -> bool:
     largest = float(np.abs(ray).max(initial=0.0))
     if largest == 0:
         return False
-    slack = 1e-7 * (np.abs(matrix) @ np.abs(ray))
+    terms = entries.value * ray[entries.column]
     for values, (low, high), room in (
-        (matrix @ ray, rows, slack),
+        (entries.add(terms), rows, 1e-7 * entries.add(np.abs(terms))),
         (ray, columns, np.full(len(ray), 1e-9 * largest)),
     ):
         if (np.isfinite(low) & (values < -room)).any():
@@ -83,9 +88,7 @@ def is_ray(matrix: Vector, ray: Vector, rows: Pair, columns: Pair) -> bool:
     return True
 
 
-def is_contradiction(
-    matrix: Vector, sizes: Vector, weights: Vector, rows: Pair, columns: Pair
-) -> bool:
+def is_contradiction(entries: Entries, weights: Vector, rows: Pair, columns: Pair) -> bool:
     """Whether weights of the rows prove that no fluxes meet all bounds (Farkas).
 
     The weighted sum of the rows, y' A v, must lie between the ends that the bounds of the rows
@@ -95,8 +98,9 @@ def is_contradiction(
     if largest == 0:
         return False
     kept = np.where(np.abs(weights) > 1e-11 * largest, weights, 0.0)
-    pull = kept @ matrix
-    pull = np.where(np.abs(pull) > 1e-11 * (np.abs(kept) @ sizes), pull, 0.0)
+    terms, count = entries.value * kept[entries.row], len(columns[0])
+    pull, sizes = (entries.add_columns(t, count) for t in (terms, np.abs(terms)))
+    pull = np.where(np.abs(pull) > 1e-11 * sizes, pull, 0.0)
     row_low, row_high, row_size = _reach(kept, *rows)
     low, high, size = _reach(pull, *columns)
     room = 1e-9 * (row_size + size)
