@@ -34,9 +34,9 @@ ALWAYS_WRITTEN = {
 
 NAMES_OF_TABLES = frozenset({
     "alternatives", "balances", "bill", "bill_prices", "catalogue", "compound", "conflict",
-    "equations", "findings", "fluxes",
-    "least_change", "ledger", "limits", "most_energy", "overview", "parameters", "prices", "rates",
-    "spread", "unbounded", "yields",
+    "equations", "findings", "fluxes", "least_change", "ledger", "limits", "most_energy",
+    "overview", "parameters", "plan", "prices", "rates", "relations", "shares", "spread",
+    "suspects", "unbounded", "yields",
 })  # fmt: skip
 """Every table that some command writes."""
 

@@ -34,6 +34,7 @@ def limits_record(run: FluxSolution) -> list[Record]:
             "worth": x.worth,
             "worth_up": x.worth_up,
             "worth_down": x.worth_down,
+            "unit": x.unit,
         }
         for x in run.limits
     ]

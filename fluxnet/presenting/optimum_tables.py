@@ -21,9 +21,10 @@ _IMPOSSIBLE = "impossible"
 def limits_table(run: FluxSolution) -> Table:
     """Each limit that holds the aim, and what the aim changes by when it moves either way."""
     columns = (
-        Column("what holds it back", "name", wrap=44),
+        Column("what holds it back", "name", wrap=24),
         Column("one more gives", "", align=Align.RIGHT),
         Column("one less", "", align=Align.RIGHT),
+        Column("in", "unit", wrap=24),
         Column("", "worth"),
         Column("", "worth_up"),
         Column("", "worth_down"),
@@ -34,6 +35,7 @@ def limits_table(run: FluxSolution) -> Table:
             limit.name,
             _change(limit.worth_up),
             _change(-limit.worth_down),
+            limit.unit,
             limit.worth,
             limit.worth_up,
             limit.worth_down,

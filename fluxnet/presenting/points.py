@@ -9,7 +9,7 @@ from math import floor, log10
 __all__ = ["align_points", "common_decimals"]
 
 _CELL = re.compile(
-    r"(?P<whole>-?\d+)(?P<rest>\.\d+)?"
+    r"(?P<whole>[+-]?\d+)(?P<rest>\.\d+)?"
     r"(?:(?P<between> ± | \+- | to )(?P<whole2>-?\d+)(?P<rest2>\.\d+)?|(?P<tail> [a-z ]+))?"
 )
 _MISSING = ("–", "-")

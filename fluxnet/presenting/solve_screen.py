@@ -163,7 +163,8 @@ def _assumptions(run: FluxSolution) -> list[Block]:
         lines.append(
             Sentence(
                 f"Measured values are held within {run.within:g} sd; the least within which they "
-                f"can hold together is {format_number(run.smallest_within, 3)}."
+                f"can hold together is {format_number(run.smallest_within, 3)}. The optimum lies "
+                "at a corner of what these errors allow: the best case, no estimate."
             )
         )
     if run.left_free and run.run is not None:

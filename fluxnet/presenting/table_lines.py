@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from unicodedata import combining, east_asian_width
 
 from fluxnet.presenting.points import align_points
@@ -82,19 +82,21 @@ def _fitted(
 ) -> list[int]:
     """The widths of columns whose texts are broken where the table is too wide."""
     total = sum(widths) + len(_BETWEEN) * (len(widths) - 1)
-    for k, least in enumerate(breaks):
-        if least is not None and total > text_width:
-            broken = max(widths[k] - (total - text_width), min(least, widths[k]))
-            total -= widths[k] - broken
-            widths[k] = broken
-    texts = [k for k, right in enumerate(rights) if not right]
-    while total > width and texts:
-        widest = max(texts, key=lambda k: widths[k])
-        if widths[widest] <= _LEAST:
-            break
-        widths[widest] -= 1
-        total -= 1
+    leasts = {k: least for k, least in enumerate(breaks) if least is not None}
+    total = _narrowed(widths, leasts, total, text_width)
+    _narrowed(widths, {k: _LEAST for k, right in enumerate(rights) if not right}, total, width)
     return widths
+
+
+def _narrowed(widths: list[int], leasts: Mapping[int, int], total: int, width: int) -> int:
+    """Narrow the widest of some columns, down to its least, until all fit; the total then."""
+    while total > width:
+        wide = [k for k, least in leasts.items() if widths[k] > least]
+        if not wide:
+            break
+        widths[max(wide, key=lambda k: widths[k])] -= 1
+        total -= 1
+    return total
 
 
 def _lines(cells: Sequence[str], widths: Sequence[int], rights: Sequence[bool]) -> list[str]:

@@ -29,6 +29,7 @@ from fluxnet.studies.optimum_span import span_optimum
 from fluxnet.studies.settling import Array, Span, keep_account
 from fluxnet.studies.solution import FluxEstimate, FluxSolution, SolveStatus
 from fluxnet.studies.telling import (
+    open_substrates,
     tell_infeasible,
     tell_optimum,
     tell_unbounded,
@@ -87,7 +88,10 @@ def optimise(
     if best.outcome is Outcome.UNBOUNDED:
         reason = explain_unbounded(problem, cost if aim.sense is Sense.MAXIMISE else -cost)
         return replace(
-            frame, status=SolveStatus.UNBOUNDED, unbounded=reason, words=tell_unbounded(aim, reason)
+            frame,
+            status=SolveStatus.UNBOUNDED,
+            unbounded=reason,
+            words=tell_unbounded(aim, reason, network),
         )
     if best.outcome is Outcome.FAILED:
         raise ArithmeticError("the solver could not tell what is best")
@@ -104,7 +108,9 @@ def optimise(
             smallest_within=change.common_k,
             words=tell_infeasible(conflicts, change, within),
         )
-    prices, limits = find_worths(problem, cost, proven, aim, within, progress=progress)
+    prices, limits = find_worths(
+        problem, cost, proven, aim, frame.unit, within, progress=progress
+    )
     frame = replace(
         frame,
         prices=prices,
@@ -161,7 +167,7 @@ def _at_optimum(
         yields=account.yields,
         residual=max(best.residual, ranges.residual, worst_violation(at_best, fluxes)),
     )
-    return replace(solution, words=tell_optimum(solution))
+    return replace(solution, words=tell_optimum(solution, open_substrates(problem, solution)))
 
 
 def _smallest_within(built: Built, problem: Problem) -> float | None:

@@ -18,6 +18,7 @@ from fluxnet.solving.words import quantity_words
 from fluxnet.studies.aims import Aim, Sense
 from fluxnet.studies.settling import Array
 from fluxnet.studies.solution import BindingLimit, SpeciesPrice
+from fluxnet.studies.units import gain_unit
 
 __all__ = ["as_proven", "find_worths", "prove_aim", "row_words"]
 
@@ -78,6 +79,7 @@ def find_worths(
     cost: Array,
     proven: Proven,
     aim: Aim,
+    unit: str,
     within: float,
     *,
     progress: Progress = silent,
@@ -102,7 +104,8 @@ def find_worths(
             ends = (price.value + gift, price.low + gift, price.high + gift)
             species.append(SpeciesPrice(row.name, *ends))
         elif any((price.value, price.low, price.high)):
-            limits.append(_limit(problem, proven, i, price, sign, within))
+            gained = "" if row.quantity is None else gain_unit(aim.terms, row.quantity, unit)
+            limits.append(_limit(problem, proven, i, price, sign, gained, within))
     return tuple(species), tuple(sorted(limits, key=lambda limit: -_weight(limit)))
 
 
@@ -113,7 +116,7 @@ def _weight(limit: BindingLimit) -> float:
 
 
 def _limit(
-    problem: Problem, proven: Proven, i: int, price: Price, sign: int, within: float
+    problem: Problem, proven: Proven, i: int, price: Price, sign: int, unit: str, within: float
 ) -> BindingLimit:
     fluxes = np.array([float(v) for v in proven.solution.fluxes])
     value = float(problem.matrix[i] @ fluxes) + 0.0
@@ -123,6 +126,7 @@ def _limit(
         sign * price.value + 0.0,
         sign * price.high + 0.0,
         sign * price.low + 0.0,
+        unit,
     )
 
 

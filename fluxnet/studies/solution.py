@@ -135,7 +135,8 @@ class BindingLimit:
     ``worth`` is the change of the aim per unit by which the bound is raised, at the prices that
     prove the optimum; ``worth_up`` that of the first bit by which it is raised, ``worth_down``
     that per unit of the first bit by which it is lowered: both the same unless other bounds
-    hold there, too. Infinite where the bound cannot move that way at all.
+    hold there, too. Infinite where the bound cannot move that way at all. ``unit`` is that of
+    the worths.
     """
 
     name: str
@@ -143,6 +144,7 @@ class BindingLimit:
     worth: float
     worth_up: float
     worth_down: float
+    unit: str
 
 
 @record

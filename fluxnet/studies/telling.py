@@ -6,10 +6,12 @@ from collections.abc import Sequence
 from math import isclose, isinf
 from typing import TYPE_CHECKING
 
-from fluxnet.network.model import Direction
-from fluxnet.solving.problem import Problem
+from fluxnet.network.model import Direction, Network, Quantity, QuantityKind
+from fluxnet.solving.problem import Problem, RowKind
 from fluxnet.solving.violations import find_violations
+from fluxnet.solving.words import quantity_words
 from fluxnet.studies.solution import FluxKind, FluxSolution, FluxTest, OptimumSpan, RateKind
+from fluxnet.studies.yields import ALL_CARBON
 
 if TYPE_CHECKING:
     from fluxnet.solving.conflict import LeastChange
@@ -17,7 +19,10 @@ if TYPE_CHECKING:
     from fluxnet.studies.aims import Aim
     from fluxnet.studies.conflicts import ToldConflict
 
-__all__ = ["tell_fit", "tell_infeasible", "tell_optimum", "tell_unbounded", "tell_violations"]
+__all__ = [
+    "open_substrates", "tell_fit", "tell_infeasible", "tell_optimum", "tell_unbounded",
+    "tell_violations",
+]  # fmt: skip
 
 
 def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
@@ -86,8 +91,32 @@ def _largest_spender(solution: FluxSolution) -> str:
     return ""
 
 
-def tell_optimum(solution: FluxSolution) -> str:
-    """What an aim's best value is, per what, and what holds it back."""
+def open_substrates(problem: Problem, solution: FluxSolution) -> tuple[str, ...]:
+    """The carbon substrates that a solution takes up and no limit or measurement bounds.
+
+    Those that the aim itself names are left out.
+    """
+    bounded = {
+        row.quantity.name
+        for row, low, high in zip(problem.rows, problem.row_low, problem.row_high, strict=True)
+        if row.kind is not RowKind.ROLE
+        and row.quantity is not None
+        and row.quantity.kind is QuantityKind.RATE
+        and not isinf(low if row.quantity.direction is Direction.OUT else high)
+    }
+    asked = {q.name for _, q in solution.aim.terms} if solution.aim is not None else set()
+    taken = dict.fromkeys(line.substrate for line in solution.yields)
+    return tuple(s for s in taken if s not in bounded | asked and s != ALL_CARBON)
+
+
+def tell_optimum(solution: FluxSolution, unbounded: tuple[str, ...] = ()) -> str:
+    """What an aim's best value is, per what, and what holds it back.
+
+    ``unbounded`` are the substrates without a limit (:func:`open_substrates`).
+    """
+    from fluxnet.studies.aims import Sense
+
+    is_maximum = solution.aim is not None and solution.aim.sense is Sense.MAXIMISE
     value = f"{solution.optimum:.4g} {_aim_unit(solution)}"
     words = f"The best that the network allows, {solution.aim}: {value}{_share(solution)}. "
     if solution.span is not None:
@@ -99,6 +128,12 @@ def tell_optimum(solution: FluxSolution) -> str:
     if solution.unheld is not None:
         free = "there is no end to it" if isinf(solution.unheld) else f"it is {solution.unheld:.4g}"
         words += f" Without its own measurement {free}."
+    if unbounded and is_maximum:
+        words += (
+            f" No limit is set on {_listed([f'{name} in' for name in unbounded])}: this is the "
+            "largest rate that the other limits allow, and the yield that goes with it need not "
+            "be the largest."
+        )
     return words
 
 
@@ -167,10 +202,15 @@ def _first_conflict(conflicts: Sequence[ToldConflict]) -> str:
     return words
 
 
-def tell_unbounded(aim: Aim, reason: Unbounded) -> str:
-    """Why an aim has no best value."""
+def tell_unbounded(aim: Aim, reason: Unbounded, network: Network) -> str:
+    """Why an aim has no best value, and the lines that would mend it."""
     words = str(aim)
-    return f"{words[:1].upper()}{words[1:]}: there is no end to it: {reason.words}."
+    told = f"{words[:1].upper()}{words[1:]}: there is no end to it: {reason.words}."
+    uptakes = [Quantity(QuantityKind.RATE, name, Direction.IN) for name in reason.missing]
+    lines = [f"`limit {quantity_words(uptake, network)} <= 10`" for uptake in uptakes]
+    if not lines:
+        return told
+    return f"{told} Write {_listed(lines)} into the model, with your own number."
 
 
 def tell_violations(problem: Problem) -> tuple[str, ...]:

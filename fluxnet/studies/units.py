@@ -1,10 +1,13 @@
-"""The unit of a quantity beside the unit of the rates."""
+"""Units of quantities and of gains beside the unit of the rates."""
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+from fractions import Fraction
+
 from fluxnet.network.model import Quantity, QuantityKind
 
-__all__ = ["rate_unit"]
+__all__ = ["gain_unit", "rate_unit"]
 
 
 def rate_unit(quantity: Quantity, unit: str) -> str:
@@ -18,3 +21,32 @@ def rate_unit(quantity: Quantity, unit: str) -> str:
     if quantity.kind is QuantityKind.MU:
         return "1/h"
     return "" if quantity.kind is QuantityKind.RATIO else unit
+
+
+def gain_unit(terms: Sequence[tuple[Fraction, Quantity]], limited: Quantity, unit: str) -> str:
+    """What a weighted sum gains per unit of a limit, in units.
+
+    The time and what rates are given per cancel, except where one of the two is mu.
+
+    Examples
+    --------
+    >>> ethanol = Quantity(QuantityKind.RATE, "ethanol")
+    >>> oxygen, mu = Quantity(QuantityKind.RATE, "oxygen"), Quantity(QuantityKind.MU)
+    >>> gain_unit([(Fraction(1), ethanol)], oxygen, "mmol/g/h")
+    'mmol ethanol per mmol oxygen'
+    >>> gain_unit([(Fraction(1), mu)], oxygen, "mmol/g/h")
+    '1/h per mmol/g/h oxygen'
+    """
+    below = limited if limited.numerator is None else limited.numerator
+    quantities = [quantity for _, quantity in terms]
+    cancels = all(rate_unit(quantity, unit) == unit for quantity in (*quantities, below))
+    shown = unit.partition("/")[0] if cancels else unit
+    if len(terms) == 1 and abs(terms[0][0]) == 1:
+        gain = _part(quantities[0], shown)
+    else:
+        gain = f"{shown} of the sum"
+    return f"{gain} per {_part(below, shown)}"
+
+
+def _part(quantity: Quantity, unit: str) -> str:
+    return "1/h" if quantity.kind is QuantityKind.MU else f"{unit} {quantity.name}"

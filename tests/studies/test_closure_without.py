@@ -159,7 +159,7 @@ def test_a_run_that_lacks_the_row_is_closed_as_it_is() -> None:
 @pytest.mark.parametrize(
     ("name", "mend"),
     [
-        ("acetat", "did you mean acetate?"),
+        ("acettate", "did you mean acetate?"),
         ("CO2 in", "the rows are"),
         ("lactate", "the rows are"),
         ("CO2 / oxigen", "did you mean CO2 out / oxygen in?"),

@@ -1,5 +1,7 @@
 from __future__ import annotations
 
+import re
+
 import pytest
 
 from fluxnet.ground.errors import MisuseError
@@ -151,3 +153,31 @@ def test_a_measured_ratio_over_a_rate_that_nothing_determines_is_not_trusted() -
 
     assert "weighed by a guess of glucose in" in alone.words
     assert "guess" not in held.words
+
+
+def test_what_an_aim_gains_by_a_limit_has_a_unit(network: Network) -> None:
+    run = best(network, maximise="ethanol")
+
+    assert [limit.unit for limit in run.limits] == ["mmol ethanol per mmol glucose"]
+
+
+def test_an_optimum_without_a_limit_on_the_sugar_says_so() -> None:
+    text = TEXT.replace("limit glucose <= 10", "limit lactate <= 3\nlimit ethanol <= 8")
+    network = read_model_text(text).network
+    assert network is not None
+    ethanol, glucose = best(network, maximise="ethanol"), best(network, minimise="glucose")
+
+    assert "No limit is set on glucose in" in ethanol.words
+    assert "No limit is set" not in glucose.words
+
+
+def test_an_aim_without_an_end_is_mended_by_the_line_that_is_told() -> None:
+    text = TEXT.replace("limit glucose <= 10", "")
+    network = read_model_text(text).network
+    assert network is not None
+    told = best(network, maximise="ethanol").words
+    (line,) = re.findall(r"`(limit [^`]+)`", told)
+    mended = read_model_text(text + line + "\n").network
+    assert mended is not None
+
+    assert best(mended, maximise="ethanol").status is SolveStatus.OPTIMAL
