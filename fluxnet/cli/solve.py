@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 import argparse
+import sys
 from dataclasses import replace
 
 from fluxnet.cli.inputs import load_model, load_rates
 from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
 from fluxnet.cli.output import give_faults, give_findings, give_screen, refuse_outputs
+from fluxnet.cli.progress import progress_on
 from fluxnet.ground.diagnostic import in_order
 from fluxnet.ground.errors import InputError, MisuseError
 from fluxnet.ground.names import Name
@@ -103,17 +105,19 @@ def run(arguments: argparse.Namespace) -> int:
             return give_faults(arguments, Document.SOLVE, inputs, told)
         table = aligned.table
     try:
-        solution = solve_network(
-            model.network,
-            table,
-            maximise=arguments.maximise,
-            minimise=arguments.minimise,
-            within=arguments.within,
-            fraction=arguments.fraction,
-            suspects=arguments.suspects,
-            plan=arguments.plan,
-            plan_error=arguments.plan_error / 100,
-        )
+        with progress_on(sys.stderr) as progress:
+            solution = solve_network(
+                model.network,
+                table,
+                maximise=arguments.maximise,
+                minimise=arguments.minimise,
+                within=arguments.within,
+                fraction=arguments.fraction,
+                suspects=arguments.suspects,
+                plan=arguments.plan,
+                plan_error=arguments.plan_error / 100,
+                progress=progress,
+            )
     except InputError as fault:
         texts = {source.file: source for source in model.sources}
         told = tuple(

@@ -92,7 +92,8 @@ def _run_blocks(
     variant = "" if run.variant == "base" else f", variant {run.variant}"
     aim = f", {run.aim}" if run.aim is not None else ""
     heading = f"{what}{variant}{aim}: {run.status.value}"
-    mood = _MOODS[run.status]
+    unproven = run.proof is not None and not run.proof.verified
+    mood = Mood.BAD if unproven else _MOODS[run.status]
     blocks: list[Block] = [
         Heading(heading),
         Sentence(run.words, mood, verdict=True),

@@ -123,7 +123,7 @@ def tell_optimum(solution: FluxSolution, unbounded: tuple[str, ...] = ()) -> str
         words += _span_words(solution.span, _aim_unit(solution))
     if solution.limits:
         words += f"It is held back by {_listed([limit.name for limit in solution.limits[:3]])}."
-    else:
+    elif solution.proof is None or solution.proof.verified:
         words += "No limit of the model holds it back, only the balances."
     if solution.unheld is not None:
         free = "there is no end to it" if isinf(solution.unheld) else f"it is {solution.unheld:.4g}"
