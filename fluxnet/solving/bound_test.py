@@ -25,10 +25,12 @@ SEED = int.from_bytes(sha256(b"what bounds add by chance").digest()[:8], "big")
 class Pressure:
     """A bound that presses on the best fit.
 
-    ``source`` is its place: see :class:`fluxnet.solving.region.Bounds`. ``shift`` is how far
-    it moves the fit, in the coordinates u.
+    ``place`` is that among the region's bounds, ``source`` that in the task: see
+    :class:`fluxnet.solving.region.Bounds`. ``shift`` is how far it moves the fit, in the
+    coordinates u.
     """
 
+    place: int
     source: int
     shift: Vector
 
@@ -44,7 +46,7 @@ def find_pressures(region: Region) -> tuple[Pressure, ...]:
         return ()
     sources, rows = region.bounds.sources, region.bounds.rows[:, : region.dimension]
     return tuple(
-        Pressure(int(sources[i]), -found.prices[i] * rows[i]) for i in found.active
+        Pressure(i, int(sources[i]), -found.prices[i] * rows[i]) for i in found.active
     )
 
 

@@ -12,6 +12,7 @@ from fluxnet.network.model import Direction, Network, Quantity, QuantityKind, Ro
 from fluxnet.rates.kinds import RateKind
 from fluxnet.solving.applying import is_same
 from fluxnet.solving.build import Built
+from fluxnet.solving.chart import Point
 from fluxnet.solving.classify import Structure
 from fluxnet.solving.flux_fit import FittedRow
 from fluxnet.solving.forms import exact_numbers, exact_row, exact_species, form_of
@@ -55,7 +56,7 @@ def measured_places(weighed: Weighed) -> MeasuredPlaces:
 
 def fitted_rows(
     weighed: Weighed, structure: Structure, places: MeasuredPlaces, ranges: Intervals,
-    adjustments: Vector,
+    point: Point, adjustments: Vector, pressing: bool,
 ) -> tuple[FittedRow, ...]:
     """Every measured row, in the order of the problem.
 
@@ -63,8 +64,12 @@ def fitted_rows(
     ----------
     ranges
         Those of ``places``, plain values first.
+    point
+        The fit that is shown.
     adjustments
         The sd of measured less fitted, one a soft row, in the unit of the row.
+    pressing
+        Whether bounds press: then they test rows too that nothing else tests.
     """
     rows = weighed.built.problem.rows
     order = [*places.plain, *(place for place, _, _ in places.ratios)]
@@ -80,8 +85,7 @@ def fitted_rows(
         if row.ratio is not None:
             measured, sd = row.ratio, row.sd / (row.denominator or 1.0)
         sure = adjusted.get(place, 0.0)
-        # As the balances alone adjust it: a bound's push is no error of the measurement.
-        gap = row.value - float(weighed.best.values[place])
+        gap = row.value - float(point.values[place])
         found.append(
             FittedRow(
                 quantity=row.quantity,
@@ -95,7 +99,7 @@ def fitted_rows(
                 best_high=float(ranges.best_high[k]),
                 measured=measured,
                 sd=sd,
-                z=gap / sure if sure > 0 and tested[place] else None,
+                z=gap / sure if sure > 0 and (tested[place] or pressing) else None,
                 of_model=row.kind is RowKind.MEASURED_LIMIT,
                 span=row.span,
             )

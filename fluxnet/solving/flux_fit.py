@@ -61,7 +61,8 @@ class FittedRow:
     used (a relative sd is taken of the reconciled value). ``value`` stands in the direction of
     ``quantity``: below zero it is reversed. ``value_sd`` is None where nothing determines the
     value: then ``value`` is a representative, and the ranges tell what is known. ``z`` is
-    measured less fitted over the sd of that difference, None where none is possible. ``low``
+    measured less ``value`` over the sd of that difference, bounds that press being held as
+    equalities are; None where no difference is possible. ``low``
     and ``high`` hold all values with h - h_min <= 3.84, ``best_low`` and ``best_high`` those
     at h_min; infinite where nothing bounds them. ``of_model`` marks a measured limit of the
     model.

@@ -147,7 +147,7 @@ def _told(
         task, region, structure, places, rates, relations
     )
     spread = find_spread(weighed.built, task, region, structure.determined)
-    adjustments = find_adjustments(task, best)
+    adjustments = find_adjustments(task, region, presses)
     names = built.problem.columns
     return FluxFit(
         status=FitStatus.INCONSISTENT if closes is False else FitStatus.SOLVED,
@@ -172,9 +172,9 @@ def _told(
         bound_h=added if presses else 0.0,
         bound_p=chance_of_bounds(held, added) if presses else None,
         bounds=pressing_bounds(built, task, region, structure) if presses else (),
-        moved=parameter_moves(task, best, point, adjustments, spread.covariance),
+        moved=parameter_moves(task, point, adjustments, spread.covariance),
         rows=fitted_rows(
-            weighed, structure, places, measured, adjustments[: len(task.soft)]
+            weighed, structure, places, measured, point, adjustments[: len(task.soft)], presses
         ),
         rates=calculated_rates(built.network, rates, unmeasured),
         relations=tuple(

@@ -6,6 +6,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
+from fluxnet.solving.bound_test import find_pressures
 from fluxnet.solving.build import Built
 from fluxnet.solving.chart import Point
 from fluxnet.solving.flux_fit import ParameterMove
@@ -16,6 +17,8 @@ __all__ = ["Spread", "find_adjustments", "find_spread", "parameter_moves"]
 
 Vector = NDArray[np.float64]
 
+_SAME = 1e-9
+"""Directions of norm 1 that differ by less than this are the same."""
 _NONE = 1e-9
 """An adjustment whose variance is below this part of the measured one cannot be."""
 
@@ -63,20 +66,26 @@ def find_spread(
     return Spread(covariance, directions, (*names, *task.rows.names), shares)
 
 
-def find_adjustments(task: Task, best: Point) -> Vector:
+def find_adjustments(task: Task, region: Region, pressing: bool) -> Vector:
     """The sd of measured less fitted, one a soft row, then one an uncertain number.
 
     In their own units; 0 where the fit cannot differ from the value. With W the whitening and
-    Q an orthonormal basis of the seen part of the whitened design the covariance of the
-    adjustments is W^-1 (1 - Q Q') W^-1'.
+    Q an orthonormal basis of what the whitened design can reach the covariance of the
+    adjustments is W^-1 (1 - Q Q') W^-1'. Bounds that press are held as equalities are: a value
+    that a bound fixes is off by its whole error.
 
     Parameters
     ----------
-    best
-        The fit under the equalities alone.
+    region
+        That of the fit as it is shown.
+    pressing
+        Whether bounds press on it.
     """
-    rank = task.seen + task.numbers
-    basis = np.linalg.svd(best.design, full_matrices=False)[0][:, :rank]
+    basis = region.point.design @ region.seen
+    if pressing:
+        held = [pressure.place for pressure in find_pressures(region)]
+        free = _kernel(region.bounds.rows[held])[: region.dimension]
+        basis = _span(basis @ free)
     factor = _errors(task)[1]
     hat = np.eye(len(factor)) - basis @ basis.T
     left = np.maximum(np.diag(factor @ hat @ factor.T), 0.0)
@@ -84,16 +93,22 @@ def find_adjustments(task: Task, best: Point) -> Vector:
     return np.sqrt(np.where(left > _NONE * given, left, 0.0))
 
 
-def parameter_moves(
-    task: Task, best: Point, point: Point, adjustments: Vector, covariance: Vector
-) -> tuple[ParameterMove, ...]:
-    """The uncertain numbers, given and fitted.
+def _kernel(rows: Vector) -> Vector:
+    """An orthonormal basis of the steps that leave all rows as they are, as columns."""
+    _, sizes, right = np.linalg.svd(rows, full_matrices=True)
+    return np.asarray(right[int((sizes > _SAME).sum()) :].T, dtype=np.float64)
 
-    Parameters
-    ----------
-    best, point
-        The fits without and with bounds.
-    """
+
+def _span(columns: Vector) -> Vector:
+    """An orthonormal basis of what some columns of size about 1 span."""
+    left, sizes, _ = np.linalg.svd(columns, full_matrices=False)
+    return np.asarray(left[:, sizes > _SAME], dtype=np.float64)
+
+
+def parameter_moves(
+    task: Task, point: Point, adjustments: Vector, covariance: Vector
+) -> tuple[ParameterMove, ...]:
+    """The uncertain numbers, given and fitted with the bounds kept."""
     soft, count = len(task.soft), task.rows.count
     sds = np.sqrt(np.diag(covariance)[count:])
     return tuple(
@@ -103,7 +118,7 @@ def parameter_moves(
             sd=float(task.sd[k]),
             moved=float(point.numbers[k]),
             moved_sd=float(sds[k]),
-            z=_over(float(task.rows.start[k] - best.numbers[k]), float(adjustments[soft + k])),
+            z=_over(float(task.rows.start[k] - point.numbers[k]), float(adjustments[soft + k])),
         )
         for k, name in enumerate(task.rows.names)
     )

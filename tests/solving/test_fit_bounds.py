@@ -116,3 +116,14 @@ def test_limits_that_leave_one_point_are_feasible(make_network, make_run):
     assert fit.status is FitStatus.SOLVED
     assert fit.fluxes == pytest.approx([0.4, 0.3, 0.1], abs=1e-8)
     assert (fit.low[1], fit.high[1]) == pytest.approx((0.3, 0.3), abs=1e-7)
+
+
+def test_z_is_the_shown_change_over_its_sd_also_beside_a_bound(make_network, make_run):
+    network = make_network(FERMENT, limits=("glucose <= 4",))
+    (held,) = fit_fluxes(network, make_run(network, "glucose in 4.3 ± 0.1")).rows
+    # the bound fixes the value: the change is the whole error of the measurement
+    assert held.value == pytest.approx(4)
+    assert held.z == pytest.approx(3.0)
+
+    (free,) = fit_fluxes(network, make_run(network, "glucose in 3.9 ± 0.1")).rows
+    assert free.z is None
