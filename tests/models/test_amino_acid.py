@@ -2,7 +2,7 @@
 
 All answers are per mol of glucose in a run in amounts; PO stands at 1.3. No published set of
 measured rates with its errors was at hand for such a producer, so none is reproduced; the yield
-of 0.75 is a published number (entry 7.2, a textbook's page 77, read by the collector).
+of 0.75 is a published number (a textbook's page 77, read in print).
 """
 
 from __future__ import annotations

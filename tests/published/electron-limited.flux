@@ -1,7 +1,7 @@
-# Published entry 7.1. Electron-limited yields from glucose without oxygen: all electrons of the
+# Electron-limited yields from glucose without oxygen: all electrons of the
 # sugar into the product, carbon made up by CO2 (released or fixed).
 # Source   Computed from degrees of reduction; ethanol 0.511 g/g, isobutanol 0.41 g/g and succinate
-#          1.71 mol/mol = 1.12 g/g were also read in print (by the collector of the values).
+#          1.71 mol/mol = 1.12 g/g were also read in print.
 model      One line a product, glucose
 basis      mmol
 

@@ -1,14 +1,14 @@
-# Published entries 4.7, 5.1 and 5.2. Dry weight formed per mole of ATP, and ATP per dry weight.
-# Source   4.7: Verduyn, Stouthamer, Scheffers & van Dijken 1991, Antonie van Leeuwenhoek 59:49,
-#          abstract: 20.8, 28.1 and 16 g/mol (read by the collector of the values; the quotients
+# Dry weight formed per mole of ATP, and ATP per dry weight.
+# Source   Verduyn, Stouthamer, Scheffers & van Dijken 1991, Antonie van Leeuwenhoek 59:49,
+#          abstract: 20.8, 28.1 and 16 g/mol (read in print; the quotients
 #          were computed).
-#          5.1: Bauchop & Elsden 1960, as quoted in Nature 1964, 202:1135: mean 10.5, from 8.3 to
-#          12.6 g/mol (read by the collector).
-#          5.2: Stouthamer 1973, Antonie van Leeuwenhoek 39:545, abstract: 31.9 with preformed
-#          monomers, 26.4 where acetate has to be supplied, 28.8 on glucose and salts (read by the
-#          collector; the quotients were computed).
+#          Bauchop & Elsden 1960, as quoted in Nature 1964, 202:1135: mean 10.5, from 8.3 to
+#          12.6 g/mol (read in print).
+#          Stouthamer 1973, Antonie van Leeuwenhoek 39:545, abstract: 31.9 with preformed
+#          monomers, 26.4 where acetate has to be supplied, 28.8 on glucose and salts (read in
+#          print; the quotients were computed).
 # Growth is lumped: the cells' substance is there, and only the ATP for making cells of it counts.
-# 24.626 g is the mass of a mole of the biomass, as entry 1.3 has it.
+# 24.626 g is the mass of a mole of the biomass, published as 24.6.
 model      Growth from preformed monomers
 basis      mmol/g/h
 

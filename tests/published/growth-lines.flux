@@ -1,6 +1,6 @@
-# Published entry 7.9. Aerobic growth with two thirds of the carbon in the cells.
+# Aerobic growth with two thirds of the carbon in the cells.
 # Source   Shuler & Kargi, Bioprocess Engineering, example 7.1. Glucose: the numbers 0.909, 3.85, 2
-#          and 1.47 were read in print (by the collector of the values). Hexadecane: from memory
+#          and 1.47 were read in print. Hexadecane: from memory
 #          (90 %), and computed.
 model      Growth on glucose and on hexadecane
 basis      mmol

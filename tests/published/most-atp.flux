@@ -1,7 +1,7 @@
-# Published entries 10.3 and 10.4. The most ATP per glucose, with and without oxygen.
-# Source   10.3: 38 and 30 to 32 are textbook values (from memory, 99 %); the others were computed.
-#          10.4: "4 mol H2 per mol glucose" was read in Bielen et al. 2013, Life 3:52, abstract (by
-#          the collector of the values); the others were computed.
+# The most ATP per glucose, with and without oxygen.
+# Source   With oxygen: 38 and 30 to 32 are textbook values (from memory, 99 %); the others were computed.
+#          Without: "4 mol H2 per mol glucose" was read in Bielen et al. 2013, Life 3:52,
+#          abstract; the others were computed.
 model      ATP from glucose
 basis      mmol
 

@@ -1,7 +1,7 @@
-# Published entry 3.11. The propionic fermentation by the way of succinate (randomising route):
+# The propionic fermentation by the way of succinate (randomising route):
 #     3 glucose -> 4 propionate + 2 acetate + 2 CO2   12 ATP
 #     3 lactate -> 2 propionate +   acetate +   CO2    1 ATP
-# Source   Stoichiometry and ATP as printed in textbooks (read by the collector of the values; the
+# Source   Stoichiometry and ATP as printed in textbooks (read in print; the
 #          network here is general biochemistry, from memory). The two printed ATP figures rest on
 #          different assumptions: 12 needs one ATP per fumarate reduced, 1 needs none (computed).
 model      Propionic fermentation

@@ -1,4 +1,4 @@
-# Published entry 7.10. Growth on hexadecane at a measured respiratory quotient of 0.43.
+# Growth on hexadecane at a measured respiratory quotient of 0.43.
 # Source   Doran, Bioprocess Engineering Principles, example 4.7: O2 12.5, NH3 2.13, X 10.6, CO2
 #          5.37, H2O 11.4 (from memory, 92 %), and computed.
 model      Growth on hexadecane, respiratory quotient given

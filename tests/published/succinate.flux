@@ -1,6 +1,6 @@
-# Published entry 7.3. Succinate from glucose without air in four networks.
+# Succinate from glucose without air in four networks.
 # Source   "Improved succinate production by metabolic engineering", BioMed Res Int 2013:538790,
-#          table 2 (read by the collector of the values): 1, 1.33, 1.2 and 1.71 mol/mol; the exact
+#          table 2 (read in print): 1, 1.33, 1.2 and 1.71 mol/mol; the exact
 #          values were computed again from the lumped network below.
 model      Succinate without air
 basis      mmol

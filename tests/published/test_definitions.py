@@ -1,10 +1,10 @@
 """Electrons and masses by definition, through the commands.
 
-Entries 1.1 to 1.3: degree of reduction by Roels 1983 and Erickson, Minkevich & Eroshin 1978
+Degree of reduction by Roels 1983 and Erickson, Minkevich & Eroshin 1978
 (definition; values computed from it); with N2 as reference Villadsen, Nielsen & Liden,
-Bioreaction Engineering Principles, 2nd ed., Table 4.3 (4.80, 3 and 6 read by the collector of
-these values, the others recalled); the mass of a C-mol is published as 24.6 g (read by the
-collector) and computed from C 12.011, H 1.008, O 15.999, N 14.007.
+Bioreaction Engineering Principles, 2nd ed., Table 4.3 (4.80, 3 and 6 read in
+print, the others recalled); the mass of a C-mol is published as 24.6 g (read in
+print) and computed from C 12.011, H 1.008, O 15.999, N 14.007.
 """
 
 from __future__ import annotations

@@ -1,4 +1,4 @@
-"""Published entries on the degree of reduction and on the mass of a C-mol."""
+"""Published values of the degree of reduction and of the mass of a C-mol."""
 
 from __future__ import annotations
 
@@ -29,7 +29,7 @@ def formula(name: str) -> Formula:
         ("oxalic acid", 2), ("urea", 0), (CELLS, 4.2),
     ],
 )  # fmt: skip
-def test_entry_1_1_electrons_per_mole_with_ammonia_as_reference(
+def test_electrons_per_mole_with_ammonia_as_reference(
     name: str, electrons: float
 ) -> None:
     """Definition of Roels (1983) and of Erickson, Minkevich and Eroshin (1978); values computed.
@@ -56,7 +56,7 @@ def test_entry_1_1_electrons_per_mole_with_ammonia_as_reference(
         ("acetone", 5.33),
     ],
 )  # fmt: skip
-def test_entry_1_2_electrons_per_carbon_with_nitrogen_gas_as_reference(
+def test_electrons_per_carbon_with_nitrogen_gas_as_reference(
     name: str, per_carbon: float
 ) -> None:
     """Villadsen, Nielsen, Liden, Bioreaction Engineering Principles, 2nd ed., Table 4.3, p. 104.
@@ -70,7 +70,7 @@ def test_entry_1_2_electrons_per_carbon_with_nitrogen_gas_as_reference(
     assert float(gamma / carbon) == pytest.approx(per_carbon, abs=0.005)
 
 
-def test_entry_1_2_biomass_under_each_nitrogen_reference() -> None:
+def test_biomass_under_each_nitrogen_reference() -> None:
     """4.2 and 5.8 from a chapter by Heijnen in an encyclopedia of bioprocess technology."""
     cells = read_formula(CELLS)
     found = {r: degree_of_reduction(cells, r) for r in NitrogenReference}
@@ -83,7 +83,7 @@ def test_entry_1_2_biomass_under_each_nitrogen_reference() -> None:
     )
 
 
-def test_entry_1_3_mass_of_a_c_mol_of_biomass() -> None:
+def test_mass_of_a_c_mol_of_biomass() -> None:
     """24.626 g/C-mol computed from C 12.011, H 1.008, O 15.999, N 14.007; published as 24.6."""
     assert molar_mass(read_formula(CELLS)) == pytest.approx(24.626, abs=0.001)
     assert molar_mass(read_formula(CELLS)) == pytest.approx(24.6, abs=0.03)

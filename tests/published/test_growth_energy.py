@@ -1,4 +1,4 @@
-"""Entries 4.7, 5.1 and 5.2: ATP per dry weight. Sources stand in growth-energy.flux.
+"""ATP per dry weight (Verduyn 1991, Bauchop 1960, Stouthamer 1973): see growth-energy.flux.
 
 The ledger tells how much ATP growth spends; the price of ATP at the most growth tells the
 same the other way round: one mole of it is worth Y_ATP grams.
@@ -12,7 +12,7 @@ import pytest
 
 MODEL = Path(__file__).parent / "growth-energy.flux"
 
-ENTRIES = [
+PUBLISHED = [
     ("base", 10.5, 95.2),
     ("bauchop-least", 8.3, 120.5),
     ("bauchop-most", 12.6, 79.4),
@@ -30,7 +30,7 @@ def atp_per_gram(run) -> float:
     return spent / run.optimum
 
 
-@pytest.mark.parametrize(("variant", "grams", "atp"), ENTRIES, ids=[e[0] for e in ENTRIES])
+@pytest.mark.parametrize(("variant", "grams", "atp"), PUBLISHED, ids=[e[0] for e in PUBLISHED])
 def test_growth_spends_the_published_atp_per_gram(ask, variant, grams, atp):
     run = ask(MODEL, variant=variant, maximise="mu")
     digits = len(str(atp).partition(".")[2])
@@ -40,7 +40,7 @@ def test_growth_spends_the_published_atp_per_gram(ask, variant, grams, atp):
     assert run.proof.verified
 
 
-@pytest.mark.parametrize(("variant", "grams", "atp"), ENTRIES, ids=[e[0] for e in ENTRIES])
+@pytest.mark.parametrize(("variant", "grams", "atp"), PUBLISHED, ids=[e[0] for e in PUBLISHED])
 def test_one_mole_of_atp_is_worth_the_published_grams(ask, variant, grams, atp):
     run = ask(MODEL, variant=variant, maximise="mu")
     (price,) = (p for p in run.prices if p.species == "ATP")

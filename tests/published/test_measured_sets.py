@@ -1,4 +1,5 @@
-"""Entries 3.1, 3.3, 3.5, 4.4 and 4.5 through the networks in models/.
+"""Measured sets of Duncan 2004, Wood 1961, Gottschalk, Schulze 1995 and Lindberg 2013 through
+the networks in models/.
 
 Each table beside this file names its source and how the values were got. In amounts there is no
 time and so no upkeep: ATP tests nothing, and what is tested are carbon and the electrons.

@@ -1,4 +1,4 @@
-"""Entries 10.3 and 10.4: the most ATP per glucose. Sources stand in most-atp.flux."""
+"""The most ATP per glucose, with and without oxygen. Sources stand in most-atp.flux."""
 
 from __future__ import annotations
 

@@ -1,7 +1,7 @@
-"""Entries 7.1 to 7.3 and 7.5: the most product per substrate.
+"""The most product per substrate.
 
 The sources, and how each value was got, stand in the headers of the models beside this file.
-Tolerances: 1e-4 as the entries state for printed values; exact fractions to the solver's 1e-9.
+Tolerances: 1e-4 for printed values; exact fractions to the solver's 1e-9.
 """
 
 from __future__ import annotations
@@ -50,8 +50,8 @@ def test_electron_limited_yield_on_glucose(ask, product):
 
 
 def test_lysine_by_its_pathway_stays_below_the_electron_limit(ask):
-    # Entry 7.2: 6/7 C-mol/C-mol from the redox balance, 0.75 by the true pathway. A textbook's
-    # page 77 (read by the collector); the network is models/amino-acid.flux.
+    # 6/7 C-mol/C-mol from the redox balance, 0.75 by the true pathway. A textbook's
+    # page 77 (read in print); the network is models/amino-acid.flux.
     black_box = ask(HERE / "electron-limited.flux", maximise="lysine")
     assert black_box.optimum == pytest.approx(6 / 7, abs=1e-9)
     pathway = ask("amino-acid", {"glucose in": 1}, maximise="lysine")
@@ -59,7 +59,7 @@ def test_lysine_by_its_pathway_stays_below_the_electron_limit(ask):
     assert found.per_carbon == pytest.approx(0.75, abs=1e-9)
 
 
-# variant: succinate, acetate, ethanol, net CO2 (where the entry states it), all per glucose
+# variant: succinate, acetate, ethanol, net CO2 (where it is printed), all per glucose
 SUCCINATE = {
     "pts * reductive": (1.0, None, None, None),
     "glk * reductive": (4 / 3, 2 / 3, 0.0, -2 / 3),

@@ -1,4 +1,5 @@
-"""Entries 3.11, 7.9 and 7.10: whole stoichiometries. Sources stand in the models' headers."""
+"""Whole stoichiometries: propionic fermentation (textbooks), growth on glucose and hexadecane
+(Shuler & Kargi, example 7.1; Doran, example 4.7). Sources stand in the models' headers."""
 
 from __future__ import annotations
 

