@@ -204,3 +204,16 @@ def test_a_price_on_a_bound_that_is_not_there_never_passes() -> None:
     better, left = polish(programme, x, prices)
     assert better == pytest.approx([1.0, 0.0])
     assert left.tolist() == [0.0, 0.0]
+
+
+def test_a_contradiction_by_a_hair_is_weighed_without_a_wrong_sign():
+    rng = np.random.default_rng(10)
+    for _ in range(100):
+        rows = rng.normal(size=(3, int(rng.integers(2, 8))))
+        rows /= np.linalg.norm(rows, axis=1)[:, None]
+        hair = 10.0 ** -rng.uniform(6, 10)
+        bounds = np.concatenate([np.ones(3), np.full(3, hair - 1.0)])
+        with np.errstate(all="raise"):
+            found = find_least_distance(np.vstack([rows, -rows]), bounds)
+        assert (found.multipliers >= 0).all()
+        assert np.isfinite(found.multipliers).all()
