@@ -23,7 +23,9 @@ NEEDS = BillTitles("needed", "can come from", "missing")
 SURPLUS = BillTitles("has to go somewhere", "can go to", "left over")
 
 
-def bill_tables(bill: Bill, title: str, titles: BillTitles = NEEDS) -> tuple[Table, Table]:
+def bill_tables(
+    bill: Bill, title: str, titles: BillTitles = NEEDS, digits: int = 3
+) -> tuple[Table, Table]:
     """The bill for the screen, and for files.
 
     On the screen the column of worths adds up, and every worth is the product of its amount
@@ -36,7 +38,7 @@ def bill_tables(bill: Bill, title: str, titles: BillTitles = NEEDS) -> tuple[Tab
         Column("x price", "", align=Align.RIGHT),
         Column("= worth", "", align=Align.RIGHT),
     )
-    printed = print_bill(bill)
+    printed = print_bill(bill, digits)
     texts = list(zip(bill.lines, printed.lines, strict=True))
     units = {line.unit for line in bill.lines}
     shown = {BillSide.DEMAND: printed.demand, BillSide.SUPPLY: printed.supply}

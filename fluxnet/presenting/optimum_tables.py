@@ -15,6 +15,7 @@ __all__ = [
 ]  # fmt: skip
 
 _BILL = BillTitles("what has to be paid", "supplied by", "left over")
+_DIGITS = 5  # one more than the optimum is told with
 _IMPOSSIBLE = "impossible"
 
 
@@ -112,7 +113,8 @@ def proof_blocks(run: FluxSolution, *, with_bill: bool) -> tuple[Block, ...]:
     bill = run.bill
     if not bill.verified:
         return (Sentence("The bill does not add up in exact arithmetic.", Mood.BAD),)
-    tables = bill_tables(bill, f"Bill of the optimum [{bill.unit}]", _BILL) if bill.lines else ()
+    title = f"Bill of the optimum [{bill.unit}]"
+    tables = bill_tables(bill, title, _BILL, _DIGITS) if bill.lines else ()
     told = (
         f"{run.proof.words}: {bill.words[:1].lower()}{bill.words[1:]} As fractions the two sides "
         "are equal; their difference is 0."

@@ -30,8 +30,8 @@ class PrintedBill:
     multiplies: bool
 
 
-def print_bill(bill: Bill) -> PrintedBill:
-    """Round a bill: three digits of its sums and two of what is missing, at the least.
+def print_bill(bill: Bill, digits: int = 3) -> PrintedBill:
+    """Round a bill: some digits of its sums and two of what is missing, at the least.
 
     Where the rounded worths do not add up to the rounded sums one decimal more is tried; then
     those nearest to the next number are rounded the other way. Amount and price keep as many
@@ -45,7 +45,7 @@ def print_bill(bill: Bill) -> PrintedBill:
     >>> printed.lines, printed.shortfall
     ((('3.2', '1', '3.20'), ('1.2', '2.4', '2.88')), '0.32')
     """
-    least = _decimals(bill)
+    least = _decimals(bill, digits)
     decimals = least if _adds_up(bill, least) or not _adds_up(bill, least + 1) else least + 1
     supply, demand = _rounded(bill.supply, decimals), _rounded(bill.demand, decimals)
     worths = _worths(bill, decimals)
@@ -59,10 +59,10 @@ def print_bill(bill: Bill) -> PrintedBill:
     )
 
 
-def _decimals(bill: Bill) -> int:
-    """Behind the point: three digits of the larger sum, two of the shortfall."""
+def _decimals(bill: Bill, digits: int) -> int:
+    """Behind the point: so many digits of the larger sum, two of the shortfall."""
     largest = max(abs(bill.supply), abs(bill.demand))
-    needed = [2 - math.floor(math.log10(largest))] if largest > 0 else [2]
+    needed = [digits - 1 - math.floor(math.log10(largest))] if largest > 0 else [digits - 1]
     if abs(bill.shortfall) > 1e-9 * largest:
         needed.append(1 - math.floor(math.log10(abs(bill.shortfall))))
     return max(0, *needed)

@@ -5,12 +5,12 @@ from __future__ import annotations
 from fractions import Fraction
 
 from fluxnet.exact.programme import to_fraction
-from fluxnet.solving.problem import Problem
+from fluxnet.solving.problem import Problem, Row
 from fluxnet.solving.proof import Proven
-from fluxnet.solving.words import number_words
+from fluxnet.solving.words import number_words, quantity_words
 from fluxnet.studies.aims import Aim
 from fluxnet.studies.bill import Bill, BillLine, BillSide
-from fluxnet.studies.optimum_proof import row_words, sign_of
+from fluxnet.studies.optimum_proof import sign_of
 from fluxnet.studies.units import rate_unit
 
 __all__ = ["make_optimum_bill"]
@@ -60,7 +60,7 @@ def make_optimum_bill(
             own = unit
         else:
             row = problem.rows[k - count]
-            name = row_words(problem, k - count, float(bound), within)
+            name = _row_name(row, float(bound), within)
             own = rate_unit(row.quantity, unit) if row.quantity is not None else unit
         add(name, bound, own, prices[k], bound * prices[k] < 0)
     own_name = str(aim).removeprefix(f"{aim.sense.value} ")
@@ -77,6 +77,16 @@ def make_optimum_bill(
         words=_words(sign, float(solution.objective)),
         verified=supply == demand,
     )
+
+
+def _row_name(row: Row, bound: float, within: float) -> str:
+    """A limit as it is written; of a measured value the end of its reach that counts."""
+    if not row.sd or row.value is None or row.ratio is not None or row.quantity is None:
+        return row.name
+    name = quantity_words(row.quantity)
+    if bound == row.value:
+        return f"{name}, as measured"
+    return f"{name}, {row.value:.4g} {'-' if bound < row.value else '+'} {within:g} sd"
 
 
 def _aim_unit(aim: Aim, unit: str) -> str:

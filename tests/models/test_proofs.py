@@ -78,7 +78,7 @@ def test_the_printed_worths_add_up_by_hand(answers) -> None:
     for run in answers:
         if run.bill is None or not run.bill.lines:
             continue
-        printed = print_bill(run.bill)
+        printed = print_bill(run.bill, 5)
         for side, total in ((BillSide.SUPPLY, printed.supply), (BillSide.DEMAND, printed.demand)):
             worths = [
                 Fraction(worth)

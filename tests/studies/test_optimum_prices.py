@@ -138,8 +138,8 @@ def test_the_bill_is_shown_when_it_is_asked_for(tmp_path, capsys) -> None:
     told = " ".join(capsys.readouterr().out.split())
     assert "Proven in exact arithmetic; --proof shows the bill." in plain
     assert "Bill of the optimum" not in plain
-    assert "limit oxygen <= 3 3 1 3.00" in told
-    assert "acetate out 3 1 3.00" in told
+    assert "limit oxygen <= 3 3 1 3.0000" in told
+    assert "acetate out 3 1 3.0000" in told
     assert "As fractions the two sides are equal; their difference is 0." in told
 
 
