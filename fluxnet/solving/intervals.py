@@ -11,6 +11,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.progress import Progress, silent
 from fluxnet.ground.record import record
 from fluxnet.solving.chart import flux_scale, point_at
 from fluxnet.solving.curve import Curve, End, follow_curve
@@ -93,6 +94,7 @@ def find_intervals(
     region: Region,
     functionals: Functionals,
     determined: NDArray[np.bool_] | None = None,
+    progress: Progress = silent,
 ) -> Intervals:
     """The sd and ranges of functionals around a fit.
 
@@ -128,7 +130,9 @@ def find_intervals(
         curved=functionals.curved | (task.numbers > 0),
         ends=np.tile(values[:, None], (1, 4)),
     )
-    for members in _alike(search, ~constant & np.isfinite(values)):
+    groups = _alike(search, ~constant & np.isfinite(values))
+    for done, members in enumerate(groups):
+        progress("intervals", done, len(groups))
         _fill(search, members)
     ends = search.ends
     # What is left of a zero is told as zero.

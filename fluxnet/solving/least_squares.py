@@ -11,6 +11,7 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
+from fluxnet.ground.progress import Progress, silent
 from fluxnet.network.model import Network, Quantity, QuantityKind
 from fluxnet.rates.measured import Run
 from fluxnet.solving.bound_test import chance_of_bounds
@@ -52,7 +53,13 @@ _PRESSES = 1e-9
 _GUESSES = 3
 
 
-def fit_fluxes(network: Network, run: Run | None = None, *, built: Built | None = None) -> FluxFit:
+def fit_fluxes(
+    network: Network,
+    run: Run | None = None,
+    *,
+    built: Built | None = None,
+    progress: Progress = silent,
+) -> FluxFit:
     """Fit the fluxes of a network to the measured rates of a run.
 
     Parameters
@@ -119,7 +126,7 @@ def fit_fluxes(network: Network, run: Run | None = None, *, built: Built | None 
     if region is None:
         return _nothing(weighed.built, ())
     mu_place = len(built.problem.rows) if extra else None
-    return _told(weighed, structure, region, held or region, mu_place)
+    return _told(weighed, structure, region, held or region, mu_place, progress)
 
 
 def _bounded(weighed: Weighed) -> Region | None:
@@ -129,7 +136,8 @@ def _bounded(weighed: Weighed) -> Region | None:
 
 
 def _told(
-    weighed: Weighed, structure: Structure, region: Region, held: Region, mu_place: int | None
+    weighed: Weighed, structure: Structure, region: Region, held: Region, mu_place: int | None,
+    progress: Progress,
 ) -> FluxFit:
     """All that a fit tells; what bounds add by chance is asked of the region ``held``."""
     task, best, point = weighed.task, weighed.best, region.point
@@ -144,7 +152,7 @@ def _told(
     rates = unmeasured_rates(built, structure, mu_place)
     relations = find_relations(structure)
     fluxes, measured, unmeasured, sums = _all_ranges(
-        task, region, structure, places, rates, relations
+        task, region, structure, places, rates, relations, progress
     )
     spread = find_spread(weighed.built, task, region, structure.determined)
     adjustments = find_adjustments(task, region, presses)
@@ -201,6 +209,7 @@ def _all_ranges(
     places: MeasuredPlaces,
     rates: UnmeasuredRates,
     relations: tuple[Relation, ...],
+    progress: Progress,
 ) -> tuple[Intervals, Intervals, Intervals, Intervals]:
     """The ranges of fluxes, measured rows, other rates and relations: what is alike once."""
     count = task.rows.count
@@ -219,7 +228,7 @@ def _all_ranges(
             rates.fixed,
         ]
     )
-    found = find_intervals(task, region, Joined(parts), determined)
+    found = find_intervals(task, region, Joined(parts), determined, progress)
     measured = count + len(relations)
     others = measured + len(places.plain) + len(places.ratios)
     return (

@@ -6,6 +6,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.progress import Progress, silent
 from fluxnet.solving.flux_fit import FluxFit
 from fluxnet.solving.functionals import Drifting
 from fluxnet.solving.intervals import Intervals, find_intervals
@@ -19,7 +20,10 @@ _CANCELS = 1e-9
 
 
 def spans_of(
-    fit: FluxFit, rows: Vector, drift: dict[str, Vector] | None = None
+    fit: FluxFit,
+    rows: Vector,
+    drift: dict[str, Vector] | None = None,
+    progress: Progress = silent,
 ) -> Intervals:
     """Values, sds and ranges of any rows over the fluxes, as those of the fluxes themselves.
 
@@ -65,5 +69,5 @@ def spans_of(
     )
     asked = Drifting(rows[~known], slopes[:, ~known], region.point.numbers)
     return fluxes.times(places, rows[known, places]).among(
-        find_intervals(task, region, asked, determined[~known]), known
+        find_intervals(task, region, asked, determined[~known], progress), known
     )

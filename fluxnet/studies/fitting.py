@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from fluxnet.ground.progress import Progress, silent
 from fluxnet.network.biomass import biomasses
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import Run
@@ -61,6 +62,7 @@ def fit_run(
     *,
     suspects: bool = False,
     plan: tuple[Target, float] | None = None,
+    progress: Progress = silent,
 ) -> FluxSolution:
     """Fit fluxes to one run (None: to the measured limits of the model alone).
 
@@ -69,7 +71,7 @@ def fit_run(
     reject a run, and with ``suspects`` always. ``plan`` asks what to measure next: what is to
     be known better, and the relative error of what would be measured anew.
     """
-    fit = fit_fluxes(network, run)
+    fit = fit_fluxes(network, run, progress=progress)
     frame = FluxSolution(
         run=run.name if run else None,
         variant=network.variant,
@@ -100,7 +102,7 @@ def fit_run(
         )
     test = _test(fit)
     solution = replace(
-        _account(frame, fit), test=test, status=_status(fit, test), residual=fit.residual
+        _account(frame, fit, progress), test=test, status=_status(fit, test), residual=fit.residual
     )
     solution = replace(solution, words=tell_fit(solution, test))
     if suspects or test.closes is False:
@@ -157,7 +159,7 @@ def _tell_bound(bound: PressingBound) -> str:
     return bound.name if kind in bound.name else f"{kind} of {bound.name}"
 
 
-def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
+def _account(frame: FluxSolution, fit: FluxFit, progress: Progress) -> FluxSolution:
     network = fit.built.network
     sources = find_sources(fit)
     shares = shares_of(sources, slopes_of(fit, np.eye(len(fit.reactions)), {}))
@@ -182,7 +184,7 @@ def _account(frame: FluxSolution, fit: FluxFit) -> FluxSolution:
     rates = (*fit.rows, *(row for row in fit.rates if row.quantity not in measured))
 
     def spans(rows: Array, drift: Mapping[str, Array]) -> Span:
-        intervals = spans_of(fit, rows, dict(drift))
+        intervals = spans_of(fit, rows, dict(drift), progress)
         shares = shares_of(sources, slopes_of(fit, rows, drift))
         return Span(intervals.sd, intervals.low, intervals.high, shares)
 

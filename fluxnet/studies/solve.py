@@ -86,7 +86,9 @@ def solve_network(
             wanted_for = (read_target(plan, network), plan_error)
 
         def fit_one(network: Network, run: Run | None) -> FluxSolution:
-            return fit_run(network, run, suspects=suspects, plan=wanted_for)
+            return fit_run(
+                network, run, suspects=suspects, plan=wanted_for, progress=progress
+            )
 
         return Solution(network, tuple(_with_cause(network, fit_one, run) for run in runs))
     from fluxnet.studies.aims import Sense, read_aim

@@ -123,3 +123,13 @@ def test_an_end_that_is_seen_at_once_is_the_one_found_by_going_on(
 
     assert at_once.low == pytest.approx(by_going_on.low, rel=1e-8, abs=1e-10)
     assert at_once.high == pytest.approx(by_going_on.high, rel=1e-8, abs=1e-10)
+
+
+def test_long_fits_tell_how_far_they_are(make_network, make_run):
+    told = []
+    network = make_network(YEAST)
+    run = make_run(network, *RATES)
+    fit_fluxes(network, run, progress=lambda what, done, total: told.append((what, done, total)))
+
+    assert {what for what, _, _ in told} == {"intervals"}
+    assert [done for _, done, _ in told] == list(range(told[0][2]))
