@@ -164,13 +164,26 @@ class Catalogue:
 
 
 def find_compound(name: str) -> Compound | None:
-    """The compound of that name in the catalogue, or None."""
+    """The compound of that name in the catalogue, or None.
+
+    Examples
+    --------
+    >>> compound = find_compound("acetic acid")
+    >>> compound.name, compound.formula.written, find_compound("Essigsäure") is compound
+    ('acetate', 'C2H4O2', True)
+    """
     return load_catalogue().find(name)
 
 
 @cache
 def load_catalogue() -> Catalogue:
-    """The catalogue. It is read once; a compound is made when it is first asked for."""
+    """The catalogue. It is read once; a compound is made when it is first asked for.
+
+    Examples
+    --------
+    >>> len(load_catalogue()) > 150
+    True
+    """
     with Path(__file__).with_name("catalogue.csv").open(encoding="utf-8", newline="") as file:
         lines = tuple(csv.DictReader(file))
     keys: dict[str, int] = {}

@@ -57,7 +57,13 @@ EMPTY = Formula()
 
 
 def composition(counts: Mapping[str, Fraction | int], charge: Fraction | int = 0) -> Formula:
-    """Make a formula from counts, leaving zeros out."""
+    """Make a formula from counts, leaving zeros out.
+
+    Examples
+    --------
+    >>> composition({"O": Fraction(1), "C": Fraction(2), "H": Fraction(6)}).count("C")
+    Fraction(2, 1)
+    """
     return Formula(
         tuple((e, Fraction(n)) for e, n in counts.items() if n != 0), Fraction(charge)
     )
@@ -89,5 +95,11 @@ def degree_of_reduction(
 
 
 def molar_mass(formula: Formula) -> float:
-    """Molar mass [g/mol]; the electrons of a charge are not weighed."""
+    """Molar mass [g/mol]; the electrons of a charge are not weighed.
+
+    Examples
+    --------
+    >>> round(molar_mass(composition({"C": Fraction(2), "H": Fraction(6), "O": Fraction(1)})), 3)
+    46.069
+    """
     return float(sum(float(n) * ATOMIC_WEIGHT[element] for element, n in formula.counts))

@@ -61,7 +61,14 @@ class Acceptance:
 
 
 def has_errors(diagnostics: Iterable[Diagnostic]) -> bool:
-    """Whether any finding forbids an answer."""
+    """Whether any finding forbids an answer.
+
+    Examples
+    --------
+    >>> from fluxnet.ground.names import Name
+    >>> has_errors([Diagnostic(Name.UNBALANCED_LINE, "it makes carbon", Span("m.flux", 3, 1, 2))])
+    True
+    """
     return any(d.severity is Severity.ERROR and d.accepted is None for d in diagnostics)
 
 

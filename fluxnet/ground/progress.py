@@ -11,4 +11,9 @@ Progress = Callable[[str, int, int], None]
 
 
 def silent(what: str, done: int, total: int) -> None:
-    """Tell nobody."""
+    """Tell nobody.
+
+    Examples
+    --------
+    >>> silent("ranges", 1, 10)
+    """

@@ -16,6 +16,11 @@ def resource_folder(name: str) -> Path:
     ------
     FileNotFoundError
         Where neither is there: the installation is broken.
+
+    Examples
+    --------
+    >>> (resource_folder("models") / "yeast.flux").is_file()
+    True
     """
     for folder in (_PACKAGE / "_packed" / name, _PACKAGE.parent / name):
         if folder.is_dir():

@@ -90,6 +90,23 @@ def stoichiometry(network: Network) -> Stoichiometry:
     ------
     ValueError
         Where a ``?`` is left: a network with errors in its lines has no matrix.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> matrix = stoichiometry(network)
+    >>> matrix.species, matrix.floats({}).tolist()
+    (('glucose', 'lactate', 'ATP'), [[-1.0, 0.0], [2.0, 0.0], [2.0, -1.0]])
     """
     rows = {s.name: i for i, s in enumerate(network.species)}
     entries: list[tuple[int, int, Expression]] = []

@@ -34,7 +34,17 @@ def equation_text(equation: NetEquation, scale: float = 1.0, digits: int = 3) ->
 
 
 def equation_lines(equation: NetEquation, unit: str) -> tuple[tuple[str, str], ...]:
-    """The equation per mol of substrate and, below it, in the unit of the rates."""
+    """The equation per mol of substrate and, below it, in the unit of the rates.
+
+    Examples
+    --------
+    >>> from fluxnet.studies.equations import EquationTerm
+    >>> terms = (EquationTerm("glucose", -2.0), EquationTerm("ethanol", 4.0))
+    >>> for name, text in equation_lines(NetEquation(None, terms, "glucose", 2.0), "mmol/g/h"):
+    ...     print(name, text.replace(GLUE, " "), sep=" | ")
+    whole cell | glucose -> 2 ethanol
+      mmol/g/h | 2 glucose -> 4 ethanol
+    """
     name = equation.compartment or "whole cell"
     amount = equation.per_amount
     lines = [(name, _glued(equation_text(equation, 1 / amount if amount else 1.0)))]

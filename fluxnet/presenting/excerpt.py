@@ -30,7 +30,13 @@ def seen(text: str) -> str:
 
 
 def place_of(span: Span) -> str:
-    """A place in words; only the file where nothing in it is meant."""
+    """A place in words; only the file where nothing in it is meant.
+
+    Examples
+    --------
+    >>> place_of(Span("m.flux", 3, 7, 9))
+    'm.flux, line 3, column 7'
+    """
     return f"{span.file}, line {span.line}, column {span.column}" if span.line else span.file
 
 

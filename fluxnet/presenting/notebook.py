@@ -5,8 +5,8 @@ from __future__ import annotations
 from html import escape
 
 from fluxnet.ground.table import Align, Table
+from fluxnet.presenting.cells import table_cells
 from fluxnet.presenting.screen import Block, Heading, Sentence
-from fluxnet.presenting.terminal import table_cells
 
 __all__ = ["screen_html"]
 

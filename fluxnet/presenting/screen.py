@@ -49,7 +49,13 @@ Block = Heading | Sentence | Table | Data
 
 
 def blocks_of_run(blocks: Iterable[Block], run: str | None) -> tuple[Block, ...]:
-    """The blocks with their tables marked as those of one run."""
+    """The blocks with their tables marked as those of one run.
+
+    Examples
+    --------
+    >>> blocks_of_run([Table("t", "", (), ())], "A")[0].run
+    'A'
+    """
     return tuple(replace(b, run=run) if isinstance(b, Table) else b for b in blocks)
 
 
@@ -57,6 +63,13 @@ def screen_tables(screen: tuple[Block, ...]) -> tuple[Table, ...]:
     """The tables of a screen as data: those of several runs as one, with a column ``run``.
 
     Columns and tables without a key are for the screen only.
+
+    Examples
+    --------
+    >>> table = Table("t", "", (Column("rate", "rate"),), ((1.0,),))
+    >>> (joined,) = screen_tables(blocks_of_run([table], "A") + blocks_of_run([table], "B"))
+    >>> [column.key for column in joined.columns], joined.rows
+    (['run', 'rate'], (('A', 1.0), ('B', 1.0)))
     """
     groups: dict[str, list[Table]] = {}
     for block in screen:

@@ -17,7 +17,13 @@ _LEAST = 12
 
 
 def cell_width(text: str) -> int:
-    """The number of terminal cells that a text takes."""
+    """The number of terminal cells that a text takes.
+
+    Examples
+    --------
+    >>> cell_width("CO2"), cell_width("±"), cell_width("日本")
+    (3, 1, 4)
+    """
     if text.isascii():
         return len(text)
     return sum(

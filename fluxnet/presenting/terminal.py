@@ -4,18 +4,15 @@ from __future__ import annotations
 
 import os
 import sys
-from dataclasses import replace
 from io import StringIO
-from math import isfinite
 from typing import TYPE_CHECKING, NoReturn, TextIO
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Severity
 from fluxnet.ground.record import record
-from fluxnet.ground.table import Align, Cell, Column, Table
+from fluxnet.ground.table import Align, Table
+from fluxnet.presenting.cells import table_cells
 from fluxnet.presenting.excerpt import excerpt_lines, place_of, seen
-from fluxnet.presenting.numbers import format_measured, format_number
-from fluxnet.presenting.points import common_decimals
 from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence
 from fluxnet.presenting.table_lines import lay_out
 
@@ -23,7 +20,7 @@ if TYPE_CHECKING:
     from rich.console import Console
     from rich.text import Text
 
-__all__ = ["Terminal", "diagnostic_lines", "rich_text", "table_cells"]
+__all__ = ["Terminal", "diagnostic_lines", "rich_text"]
 
 _STYLE = {
     Mood.PLAIN: "",
@@ -181,7 +178,13 @@ class Terminal:
 
 
 def rich_text(screen: tuple[Block, ...], width: int) -> Text:
-    """A screen as rich prints it in a console of that width: brackets are units, not markup."""
+    r"""A screen as rich prints it in a console of that width: brackets are units, not markup.
+
+    Examples
+    --------
+    >>> rich_text((Heading("run A"), Sentence("It closes.")), 80).plain
+    'run A\nIt closes.'
+    """
     from rich.text import Text
 
     stream = StringIO()
@@ -200,66 +203,18 @@ def _verdicts(screen: tuple[Block, ...]) -> tuple[Block, ...]:
     )
 
 
-def table_cells(table: Table) -> tuple[tuple[Column, ...], tuple[tuple[str, ...], ...]]:
-    """The columns and cells of a table as shown: a value and its sd stand together.
-
-    A column without any cell is left out.
-    """
-    partner = {c.sd_of: k for k, c in enumerate(table.columns) if c.sd_of is not None}
-    shown = [
-        (k, c)
-        for k, c in enumerate(table.columns)
-        if c.sd_of is None
-        and c.title
-        and (not table.rows or any(row[k] not in (None, "") for row in table.rows))
-    ]
-    cells = [
-        _column_cells(
-            column,
-            [row[k] for row in table.rows],
-            [row[partner[column.key]] for row in table.rows] if column.key in partner else None,
-            says_exact=column.key not in partner or table.columns[partner[column.key]].says_exact,
-        )
-        for k, column in shown
-    ]
-    rows = tuple(zip(*cells, strict=True)) if cells else ((),) * len(table.rows)
-    return tuple(c for _, c in shown), rows
-
-
-def _column_cells(
-    column: Column, values: list[Cell], sds: list[Cell] | None, *, says_exact: bool
-) -> list[str]:
-    """The cells of one column as shown."""
-    known = [None] * len(values) if sds is None else sds
-    given = [None if sd == 0 and not says_exact else sd for sd in known]
-    if column.even:
-        alone = [
-            float(value)
-            for value, sd in zip(values, given, strict=True)
-            if sd is None and isinstance(value, (int, float)) and isfinite(value)
-        ]
-        column = replace(column, decimals=common_decimals(alone, column.digits))
-    return [_cell(value, sd, column) for value, sd in zip(values, given, strict=True)]
-
-
-def _cell(value: Cell, sd: Cell, column: Column) -> str:
-    if value is None:
-        return "" if column.align is Align.LEFT else "–"
-    if isinstance(value, bool):
-        return "yes" if value else "no"
-    if isinstance(value, str):
-        return value
-    if isinstance(sd, (int, float)):
-        return format_measured(float(value), float(sd))
-    if column.decimals is not None and isfinite(value) and (value or not column.even):
-        return f"{round(value, column.decimals) + 0.0:.{column.decimals}f}"
-    return format_number(float(value), column.digits)
-
-
 def diagnostic_lines(diagnostic: Diagnostic) -> tuple[str, ...]:
     """A finding as lines: the sentence with its place, the source, because, mend.
 
     The exact words are marked in the line below the source line.
+
+    Examples
+    --------
+    >>> from fluxnet.ground.names import Name
+    >>> from fluxnet.ground.source import Span
+    >>> span = Span("m.flux", 3, 1, 2)
+    >>> diagnostic_lines(Diagnostic(Name.UNBALANCED_LINE, "it makes carbon", span))
+    ('m.flux, line 3, column 1: it makes carbon (unbalanced-line)',)
     """
     place = place_of(diagnostic.span)
     head = f"{place}: " if place else ""

@@ -61,6 +61,24 @@ def read_aim(text: str, sense: Sense, network: Network) -> Aim:
     ------
     MisuseError
         Where a name is none of the network's, with the nearest.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> str(read_aim("2 lactate - in glucose", Sense.MAXIMISE, network))
+    'maximise 2 lactate out - glucose in'
+    >>> str(read_aim("ATP", Sense.MAXIMISE, network))
+    'maximise surplus of ATP'
     """
     first, *others = _SIGN.split(text)
     signs = (1, *(-1 if sign == "-" else 1 for sign in others[::2]))

@@ -52,7 +52,24 @@ class NetEquation:
 
 
 def reference_substrate(network: Network, releases: Mapping[str, float]) -> str | None:
-    """The first substrate declared that is taken up and holds carbon."""
+    """The first substrate declared that is taken up and holds carbon.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> reference_substrate(network, {"glucose": -10.0, "lactate": 20.0})
+    'glucose'
+    """
     for species in network.boundary:
         if (
             releases.get(species.name, 0.0) < 0
@@ -74,6 +91,27 @@ def find_equations(
     ``coefficients`` is the stoichiometric matrix, species x reactions. An inside species that
     one compartment passes to another stands in both equations; in the whole cell's only
     boundary species are left.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> matrix = stoichiometry(network)
+    >>> for equation in find_equations(network, matrix, matrix.floats({}), np.array([10.0, 20.0])):
+    ...     print(equation.compartment, {t.species: t.coefficient for t in equation.terms})
+    a {'glucose': -10.0, 'lactate': 20.0, 'ATP': 20.0}
+    b {'ATP': -20.0}
+    None {'glucose': -10.0, 'lactate': 20.0}
     """
     parts = coefficients * fluxes
     boundary = [matrix.species[i] for i in matrix.boundary]
@@ -101,6 +139,24 @@ def add_implied(whole: NetEquation, network: Network) -> NetEquation:
 
     The base is what neutralises the protons; the ammonium that the cell takes up leaves one
     each, so that ammonia fed as base is counted in it (:mod:`fluxnet.network.implied`).
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> terms = (EquationTerm("glucose", -10.0), EquationTerm("lactate", 20.0))
+    >>> whole = add_implied(NetEquation(None, terms, "glucose", 10.0), network)
+    >>> [(t.species, t.coefficient) for t in whole.terms if t.implied], whole.base
+    ([('H+', 20.0)], 20.0)
     """
     releases = {t.species: t.coefficient for t in whole.terms if not t.implied}
     if not releases:

@@ -70,6 +70,23 @@ def fit_run(
     (p below 5 %) is inconsistent as well. What could be wrong is looked for where the balances
     reject a run, and with ``suspects`` always. ``plan`` asks what to measure next: what is to
     be known better, and the relative error of what would be measured anew.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> fit = fit_run(network, None)
+    >>> fit.status.value, [(flux.reaction, flux.low, flux.high) for flux in fit.fluxes]
+    ('solved', [('lump', 0.0, 10.0), ('upkeep', 0.0, 20.0)])
     """
     fit = fit_fluxes(network, run, progress=progress)
     frame = FluxSolution(

@@ -46,7 +46,25 @@ class LedgerLine:
 
 
 def ledger_places(network: Network, matrix: Stoichiometry) -> tuple[LedgerPlace, ...]:
-    """The carriers by compartment, both in the order of the file, where any reaction has one."""
+    """The carriers by compartment, both in the order of the file, where any reaction has one.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> [(p.carrier, p.compartment) for p in ledger_places(network, stoichiometry(network))]
+    [('ATP', 'a'), ('ATP', 'b')]
+    """
     compartment_of = [r.compartment for r in network.reactions]
     touched = {(matrix.species[i], compartment_of[j]) for i, j, _ in matrix.entries}
     return tuple(
@@ -63,6 +81,25 @@ def ledger_rows(
     """The net of each place as a row over the fluxes (places x reactions).
 
     ``coefficients`` is the stoichiometric matrix, species x reactions.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> from fluxnet.matrices.stoichiometry import stoichiometry
+    >>> matrix = stoichiometry(network)
+    >>> places = ledger_places(network, matrix)
+    >>> ledger_rows(network, matrix, matrix.floats({}), places).tolist()
+    [[2.0, 0.0], [0.0, -1.0]]
     """
     rows = np.zeros((len(places), len(matrix.reactions)))
     for k, place in enumerate(places):
@@ -84,6 +121,15 @@ def keep_ledger(
 
     ``rows`` are those of :func:`ledger_rows`; ``sds``, ``lows`` and ``highs`` belong to the
     nets, one a place (NaN in ``sds`` where the net is not determined).
+
+    Examples
+    --------
+    >>> places = (LedgerPlace("ATP", "a"), LedgerPlace("ATP", "b"))
+    >>> rows = np.array([[2.0, -1.0, 0.0], [0.0, 0.0, -1.0]])
+    >>> for line in keep_ledger(places, rows, np.array([10.0, 5.0, 15.0])):
+    ...     print(line.compartment, line.made, line.spent, line.net)
+    a 20.0 5.0 15.0
+    b 0.0 15.0 -15.0
     """
     lines: list[LedgerLine] = []
     for k, place in enumerate(places):

@@ -59,6 +59,24 @@ def optimise(
     -------
     FluxSolution
         With status OPTIMAL, INFEASIBLE or UNBOUNDED.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> from fluxnet.studies.aims import read_aim
+    >>> best = optimise(network, None, read_aim("ATP", Sense.MAXIMISE, network))
+    >>> best.optimum, [(flux.reaction, flux.value) for flux in best.fluxes]
+    (20.0, [('lump', 10.0), ('upkeep', 0.0)])
     """
     built = build_problem(network, run, within=within)
     problem = open_carriers(built, aim)

@@ -30,7 +30,13 @@ _OUTCOMES = {
 
 
 def sign_of(sense: Sense) -> int:
-    """1 where the aim is the cost, -1 where its negative is."""
+    """1 where the aim is the cost, -1 where its negative is.
+
+    Examples
+    --------
+    >>> sign_of(Sense.MAXIMISE), sign_of(Sense.MINIMISE)
+    (-1, 1)
+    """
     return -1 if sense is Sense.MAXIMISE else 1
 
 

@@ -21,7 +21,13 @@ __all__ = ["estimate_rates", "is_point"]
 
 
 def is_point(low: float, high: float) -> bool:
-    """Whether a range is as narrow as the solver's own tolerance leaves it."""
+    """Whether a range is as narrow as the solver's own tolerance leaves it.
+
+    Examples
+    --------
+    >>> is_point(2.0, 2.0), is_point(2.0, 2.1)
+    (True, False)
+    """
     return high - low <= 1e-6 * max(1.0, abs(low), abs(high))
 
 

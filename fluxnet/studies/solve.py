@@ -60,6 +60,23 @@ def solve_network(
         Where both aims are given, an aim names nothing, or a number makes no sense.
     InputError
         Where numbers of the model or a run lie too far apart to be computed with.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> (run,) = solve_network(network, maximise="lactate").runs
+    >>> run.status.value, run.optimum, [limit.name for limit in run.limits]
+    ('optimal', 20.0, ['limit glucose <= 10'])
     """
     if maximise is not None and minimise is not None:
         raise MisuseError("one aim at a time: maximise or minimise")

@@ -203,7 +203,27 @@ def _first_conflict(conflicts: Sequence[ToldConflict]) -> str:
 
 
 def tell_unbounded(aim: Aim, reason: Unbounded, network: Network) -> str:
-    """Why an aim has no best value, and the lines that would mend it."""
+    """Why an aim has no best value, and the lines that would mend it.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> from fluxnet.solving.unbounded import Unbounded
+    >>> from fluxnet.studies.aims import Sense, read_aim
+    >>> reason = Unbounded((), ("glucose",), ("glucose",), "nothing limits glucose in")
+    >>> tell_unbounded(read_aim("lactate", Sense.MAXIMISE, network), reason, network)[-69:]
+    'in. Write `limit glucose <= 10` into the model, with your own number.'
+    """
     words = str(aim)
     told = f"{words[:1].upper()}{words[1:]}: there is no end to it: {reason.words}."
     uptakes = [Quantity(QuantityKind.RATE, name, Direction.IN) for name in reason.missing]

@@ -35,6 +35,23 @@ def find_yields(network: Network, releases: Mapping[str, float]) -> tuple[Yield,
 
     One entry for each released species on each carbon substrate that is taken up, and on all
     their carbon together where there are several.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> (line,) = find_yields(network, {"glucose": -10.0, "lactate": 18.0})
+    >>> line.product, line.substrate, line.per_mole, round(line.per_mass, 3), line.per_carbon
+    ('lactate', 'glucose', 1.8, 0.9, 0.9)
     """
     taken = [s for s in network.boundary if releases.get(s.name, 0.0) < 0 and _carbon(s) > 0]
     made = [s for s in network.boundary if releases.get(s.name, 0.0) > 0]
