@@ -84,8 +84,10 @@ def share_blocks(run: FluxSolution, *, shown: bool) -> list[Block]:
         for name, _, _, shares in _all(run)
         for share in shares
     )
-    keys = tuple(Column("", key) for key in ("name", "source", "share"))
-    return [*blocks, Table("shares", "Shares of the variance", keys, data)]
+    if data:
+        keys = tuple(Column("", key) for key in ("name", "source", "share"))
+        blocks.append(Table("shares", "Shares of the variance", keys, data))
+    return blocks
 
 
 def _all(run: FluxSolution) -> Iterable[tuple[str, float, float | None, tuple[Share, ...]]]:
