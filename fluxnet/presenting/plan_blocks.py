@@ -55,7 +55,7 @@ def _helps(option: Option) -> bool:
 
 def _table(plan: Plan, shown: list[tuple[str, Option]]) -> Table:
     columns = (
-        Column("measure", ""),
+        Column("what", ""),
         Column("how", ""),
         Column("with error", "", align=Align.RIGHT),
         Column(f"then ± [{plan.unit}]" if plan.unit else "then ±", "", align=Align.RIGHT),
@@ -69,10 +69,10 @@ def _table(plan: Plan, shown: list[tuple[str, Option]]) -> Table:
             sd = format_number(option.sd, 2) if last else ""
             part = f"{option.of_today:.0%}" if last and option.of_today is not None else ""
             rows.append((name, _how(step, where), _error(step), sd, part))
-    notes = [
-        f"new: at {100 * plan.error:.3g} %, and at least 0.5 % of the run's largest rate in C-mol",
-        "predicted from the slopes of this fit, the new values being as expected",
-    ]
+    notes = ["predicted from the slopes of this fit, the new values being as expected"]
+    if any(step.how is How.NEW for _, option in shown for step in option.steps):
+        percent = f"{100 * plan.error:.3g} %"
+        notes.insert(0, f"new: at {percent}, at least 0.5 % of the largest rate in C-mol")
     if plan.without_bounds:
         notes.append("bounds press on this fit, which the prediction does not know")
     title = f"What would make {plan.quantity} surer"

@@ -38,6 +38,7 @@ SCREENS = {
     "check-broken": ["check", "broken.flux"],
     "closure": ["closure", "rates.csv", "--model", "tw4.flux"],
     "solve": ["solve", "tw4.flux", "rates.csv", "--run", "W15"],
+    "plan": ["solve", "tw4.flux", "rates.csv", "--run", "W15", "--plan", "ATP anabolism"],
     "inconsistent": ["solve", "tw4.flux", "rates.csv", "--run", "W11"],
     "infeasible": ["solve", "tw4.flux", "rates.csv", "--run", "W14", "--maximise", "mu"],
     "optimum": ["solve", "tw4.flux", "rates.csv", "--run", "W15", "--maximise", "2,3-butanediol"],
