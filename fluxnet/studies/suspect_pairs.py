@@ -8,7 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 from numpy.typing import NDArray
 
-from fluxnet.ground.errors import MisuseError
+from fluxnet.ground.record import record
 from fluxnet.solving.statistics import chi_squared_quantile
 from fluxnet.solving.suspects import weigh_pairs
 from fluxnet.studies.suspect_result import (
@@ -17,7 +17,7 @@ from fluxnet.studies.suspect_result import (
     Suspect,
     SuspectPair,
 )
-from fluxnet.studies.suspects import RunNumbers, make_suspect, numbers_of, rank_standings
+from fluxnet.studies.suspects import LIKELY, make_suspect, numbers_of, rank_standings
 
 if TYPE_CHECKING:
     from fluxnet.studies.suspects import JudgedSuspects
@@ -27,64 +27,87 @@ __all__ = ["find_missing", "tell_pairs"]
 Array = NDArray[np.float64]
 _SHOWN = 6
 _STANDINGS = tuple(Standing)
+_IMPOSSIBLE = _STANDINGS.index(Standing.IMPOSSIBLE)
 
 
 def tell_pairs(judged: JudgedSuspects, run: int) -> tuple[tuple[SuspectPair, ...], int]:
     """The pairs that do best, the most plausible first, and how many more do as well.
 
-    One suspect stands for each direction, the most plausible one for the sign of its size. Pairs
-    with one that is not possible are left out.
+    One suspect stands for each direction: the most plausible one that the size allows. Pairs
+    with a direction that allows none are left out.
     """
-    plan = judged.plan
-    numbers = numbers_of(judged, run)
+    plan, numbers = judged.plan, numbers_of(judged, run)
     first = [plan.members(number)[0] for number in range(plan.distinct)]
     found = weigh_pairs(judged.whitened, run, plan.directions, first)
+    sides = [
+        _choose(judged, run, places, found.sizes[:, side], found.sds[:, side])
+        for side, places in enumerate((found.first, found.second))
+    ]
+    possible = np.flatnonzero((sides[0].place >= 0) & (sides[1].place >= 0))
+    if not len(possible):
+        return (), 0
+    reach = found.h_left[possible[0]] + chi_squared_quantile(0.95, 1)
+    near = possible[found.h_left[possible] <= reach]
     classes = rank_standings(with_model=plan.with_model)
-    reach = None
-    told: list[tuple[int, float, SuspectPair]] = []
-    for k, left in enumerate(found.h_left.tolist()):
-        if reach is not None and left > reach:
-            break
-        pair = [
-            _beside(
-                numbers, judged.factors[run], int(place),
-                float(found.sizes[k, side]), float(found.sds[k, side]),
-            )
-            for side, place in enumerate((found.first[k], found.second[k]))
-        ]
-        if not all(one.possible for one in pair):
-            continue
-        if reach is None:
-            reach = left + chi_squared_quantile(0.95, 1)
-        ranks = [int(classes[_STANDINGS.index(one.standing)]) for one in pair]
-        pair.sort(key=lambda one: classes[_STANDINGS.index(one.standing)])
-        told.append((sum(ranks), left, SuspectPair(pair[0], pair[1], left)))
-    told.sort(key=lambda entry: entry[:2])
-    pairs = tuple(pair for _, _, pair in told[:_SHOWN])
-    return pairs, len(told) - len(pairs)
+    ranks = np.array([classes[side.standing[near]] for side in sides])
+    best = near[np.lexsort((found.h_left[near], ranks.sum(axis=0)))]
+
+    def suspect(side: _Side, k: int) -> Suspect:
+        return make_suspect(
+            numbers, int(side.place[k]), (float(side.size[k]), float(side.sd[k]))
+        )
+
+    told: list[SuspectPair] = []
+    for k in best[:_SHOWN].tolist():
+        # the more plausible one of the two first
+        one, other = sorted(sides, key=lambda side: int(classes[side.standing[k]]))
+        told.append(SuspectPair(suspect(one, k), suspect(other, k), float(found.h_left[k])))
+    return tuple(told), len(best) - len(told)
 
 
-def _beside(
-    numbers: RunNumbers, factors: Array, place: int, size: float, sd: float
-) -> Suspect:
-    """The most plausible suspect of a direction at the size that it has beside another one.
+@record
+class _Side:
+    """One suspect of each of many pairs, at its size there; ``place`` is -1 for none."""
 
-    ``size`` and ``sd`` are those of the suspect at ``place``, as they enter the relations;
-    ``factors`` turn them into what is told.
+    place: NDArray[np.intp]
+    standing: NDArray[np.intp]
+    size: Array
+    sd: Array
+
+
+def _choose(
+    judged: JudgedSuspects, run: int, places: NDArray[np.intp], sizes: Array, sds: Array
+) -> _Side:
+    """The most plausible suspect of each direction at the size that it has in a pair.
+
+    ``sizes`` and ``sds`` are those of the suspects at ``places``, as they enter the relations.
     """
-    plan = numbers.plan
-    members = plan.members(plan.classes[place])
-    own = plan.directions[place]
-    best: Suspect | None = None
-    for i in members:
-        other = plan.directions[i]
-        factor = float(own @ other) / float(other @ other) * float(factors[i])
-        one = make_suspect(numbers, i, (size * factor, sd * abs(factor)))
-        if best is None or _STANDINGS.index(one.standing) < _STANDINGS.index(best.standing):
-            best = one
-    if best is None:
-        raise MisuseError("a direction without a suspect")
-    return best
+    plan = judged.plan
+    count = len(places)
+    chosen = np.full(count, -1, dtype=np.intp)
+    standing, size, sd = np.zeros(count, dtype=np.intp), np.zeros(count), np.zeros(count)
+    for place in np.unique(places).tolist():
+        own = plan.directions[place]
+        mine = np.flatnonzero(places == place)
+        for i in plan.members(plan.classes[place]):
+            one, other = plan.hypotheses[i], plan.directions[i]
+            factor = float(own @ other) / float(other @ other) * float(judged.factors[run, i])
+            here, its_sd = sizes[mine] * factor, sds[mine] * abs(factor)
+            stands = np.where(
+                here >= 0, _STANDINGS.index(one.positive), _STANDINGS.index(one.negative)
+            )
+            if one.row is not None:
+                alone = judged.arrays.sds[run, i] ** 2 - judged.would_be_sd[run, i] ** 2
+                slack = LIKELY * np.sqrt(np.maximum(its_sd**2 - alone, 0.0))
+                true = judged.given[run, i] - here
+                fits = (one.low - slack <= true) & (true <= one.high + slack)
+                stands = np.where(fits, stands, _IMPOSSIBLE)
+            known = chosen[mine] >= 0
+            better = (stands < _IMPOSSIBLE) & (~known | (stands < standing[mine]))
+            at = mine[better]
+            chosen[at], standing[at] = i, stands[better]
+            size[at], sd[at] = here[better], its_sd[better]
+    return _Side(chosen, standing, size, sd)
 
 
 def find_missing(judged: JudgedSuspects, run: int) -> MissingContent | None:

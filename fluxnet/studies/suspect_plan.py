@@ -71,6 +71,18 @@ class SuspectPlan:
         """The number of distinct directions."""
         return max(self.classes, default=-1) + 1
 
+    @property
+    def measured(self) -> NDArray[np.bool_]:
+        """Which suspects are errors of measured values or parameters."""
+        return np.array([one.row is not None for one in self.hypotheses], dtype=np.bool_)
+
+    def label(self, i: int, size: float) -> str:
+        """How a suspect of some size is named: with its direction."""
+        one = self.hypotheses[i]
+        if one.kind is SuspectKind.UNMEASURED_SPECIES:
+            return f"{one.name} {'out' if size >= 0 else 'in'}"
+        return one.name if one.direction is None else f"{one.name} {one.direction.value}"
+
     def members(self, number: int) -> tuple[int, ...]:
         """The suspects of one direction."""
         return self._twins[number]

@@ -25,13 +25,13 @@ from fluxnet.studies.suspect_plan import Hypothesis, SuspectPlan
 from fluxnet.studies.suspect_result import Standing, Suspect, SuspectKind, Suspects
 
 __all__ = [
-    "JudgedSuspects", "MeasuredValues", "RunNumbers", "judge_suspects", "make_suspect",
+    "LIKELY", "JudgedSuspects", "MeasuredValues", "RunNumbers", "judge_suspects", "make_suspect",
     "numbers_of", "rank_standings", "tell_suspects",
 ]  # fmt: skip
 
 Array = NDArray[np.float64]
 _STANDINGS = tuple(Standing)
-_LIKELY = 2.0
+LIKELY = 2.0
 """A value whose bound is so many sds away is not possible."""
 
 
@@ -70,7 +70,7 @@ class JudgedSuspects:
 
 @record
 class RunNumbers:
-    """What was found of each suspect in one run; ``labels`` are names with directions."""
+    """What was found of each suspect in one run."""
 
     plan: SuspectPlan
     sizes: list[float]
@@ -81,7 +81,6 @@ class RunNumbers:
     given: list[float]
     would_be_sd: list[float]
     group: list[bool]
-    labels: tuple[str, ...]
 
 
 def judge_suspects(plan: SuspectPlan, measured: MeasuredValues) -> JudgedSuspects:
@@ -114,7 +113,7 @@ def judge_suspects(plan: SuspectPlan, measured: MeasuredValues) -> JudgedSuspect
     )
     low = np.array([plan.hypotheses[i].low for i in of_rates])
     high = np.array([plan.hypotheses[i].high for i in of_rates])
-    reach = _LIKELY * would_be_sd[:, of_rates]
+    reach = LIKELY * would_be_sd[:, of_rates]
     outside = (would_be[:, of_rates] + reach < low) | (would_be[:, of_rates] - reach > high)
     impossible = _STANDINGS.index(Standing.IMPOSSIBLE)
     standing[:, of_rates] = np.where(outside, impossible, standing[:, of_rates])
@@ -135,12 +134,9 @@ def tell_suspects(judged: JudgedSuspects, run: int) -> Suspects:
 
     plan, arrays, numbers = judged.plan, judged.arrays, numbers_of(judged, run)
     places = _ranked(judged, run)
-    group = [i for i in places if numbers.group[i]]
-    others = [
-        i for i in places
-        if not numbers.group[i]
-        and plan.hypotheses[i].kind in (SuspectKind.MEASURED_RATE, SuspectKind.PARAMETER)
-    ]  # fmt: skip
+    held = judged.group[run][places]
+    group = places[held].tolist()
+    others = places[~held & plan.measured[places]].tolist()
     possible = judged.standing[run] != _STANDINGS.index(Standing.IMPOSSIBLE)
     best = arrays.h_left[run][possible].min(initial=np.inf)
     dof = plan.dof
@@ -162,15 +158,14 @@ def tell_suspects(judged: JudgedSuspects, run: int) -> Suspects:
     )
 
 
-def _ranked(judged: JudgedSuspects, run: int) -> list[int]:
+def _ranked(judged: JudgedSuspects, run: int) -> NDArray[np.intp]:
     """All suspects of a run, the first to think of first."""
     left = judged.arrays.h_left[run]
     standing = judged.standing[run]
     classes = rank_standings(with_model=judged.plan.with_model)
     # what twins leave differs by rounding only
     digits = np.round(left / (1 + judged.arrays.h[run]), 9)
-    places: list[int] = np.lexsort((standing, digits, classes[standing])).tolist()
-    return places
+    return np.lexsort((standing, digits, classes[standing]))
 
 
 def rank_standings(*, with_model: bool) -> NDArray[np.intp]:
@@ -181,12 +176,10 @@ def rank_standings(*, with_model: bool) -> NDArray[np.intp]:
 def numbers_of(judged: JudgedSuspects, run: int) -> RunNumbers:
     """One run's numbers taken out of the arrays of all, once for all its suspects."""
     arrays, plan = judged.arrays, judged.plan
-    sizes = arrays.sizes[run].tolist()
-    labels = tuple(_label(h, size) for h, size in zip(plan.hypotheses, sizes, strict=True))
     return RunNumbers(
-        plan, sizes, arrays.sds[run].tolist(), arrays.h_left[run].tolist(),
+        plan, arrays.sizes[run].tolist(), arrays.sds[run].tolist(), arrays.h_left[run].tolist(),
         arrays.p[run].tolist(), arrays.separation[run].tolist(), judged.given[run].tolist(),
-        judged.would_be_sd[run].tolist(), judged.group[run].tolist(), labels,
+        judged.would_be_sd[run].tolist(), judged.group[run].tolist(),
     )  # fmt: skip
 
 
@@ -228,20 +221,15 @@ def make_suspect(told: RunNumbers, i: int, beside: tuple[float, float] | None = 
         would_be=would_be if is_rate else None,
         would_be_sd=would_be_sd if is_rate else None,
         why_not=_why_not(one, size, would_be) if standing is Standing.IMPOSSIBLE else None,
-        twins=tuple(told.labels[k] for k in told.plan.members(number) if k != i),
+        twins=tuple(
+            told.plan.label(k, told.sizes[k]) for k in told.plan.members(number) if k != i
+        ),
     )
 
 
 def _fits(one: Hypothesis, would_be: float, sd: float) -> bool:
     """Whether a true value is within its bounds, or near enough."""
-    return one.low - _LIKELY * sd <= would_be <= one.high + _LIKELY * sd
-
-
-def _label(one: Hypothesis, size: float) -> str:
-    """How a suspect is named among twins: with the direction that its size tells."""
-    if one.kind is SuspectKind.UNMEASURED_SPECIES:
-        return f"{one.name} {'out' if size >= 0 else 'in'}"
-    return one.name if one.direction is None else f"{one.name} {one.direction.value}"
+    return one.low - LIKELY * sd <= would_be <= one.high + LIKELY * sd
 
 
 def _why_not(one: Hypothesis, size: float, would_be: float) -> str:
