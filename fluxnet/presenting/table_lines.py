@@ -42,8 +42,8 @@ def lay_out(
 ) -> tuple[str, str, tuple[str, ...]]:
     """The title line, the rule below it and the lines of a table.
 
-    Numbers are aligned at their points and never broken. A table that is too wide all the same
-    has its widest texts broken.
+    Numbers are aligned at their points where there is room, and never broken. A table that is
+    too wide all the same has its widest texts broken.
 
     Parameters
     ----------
@@ -61,15 +61,8 @@ def lay_out(
     ('rate  of', '---------', (' 1.5  CO2',))
     """
     columns = [list(column) for column in zip(*rows, strict=True)] or [[] for _ in titles]
-    columns = [
-        align_points(column) if right else column
-        for column, right in zip(columns, rights, strict=True)
-    ]
-    widths = [
-        max(cell_width(line) for cell in (title, *column) for line in (cell.split("\n") or [""]))
-        for title, column in zip(titles, columns, strict=True)
-    ]
-    widths = _fitted(titles, widths, rights, breaks, width, text_width or width)
+    columns, widths = _aligned(titles, columns, rights, text_width or width)
+    widths = _fitted(widths, rights, breaks, width, text_width or width)
     total = sum(widths) + len(_BETWEEN) * (len(widths) - 1)
     head, *more = _lines(titles, widths, rights)
     lines = [
@@ -78,8 +71,32 @@ def lay_out(
     return "\n".join([head, *more]), rule * total, tuple(lines)
 
 
+def _aligned(
+    titles: Sequence[str], columns: list[list[str]], rights: Sequence[bool], width: int
+) -> tuple[list[list[str]], list[int]]:
+    """The columns with their numbers aligned, and their widths.
+
+    Where that makes the table too wide, numbers are left as they are, those first whose
+    alignment takes most room.
+    """
+    plain = [_width(title, column) for title, column in zip(titles, columns, strict=True)]
+    laid = [
+        align_points(column) if right else column
+        for column, right in zip(columns, rights, strict=True)
+    ]
+    widths = [_width(title, column) for title, column in zip(titles, laid, strict=True)]
+    for k in sorted(range(len(widths)), key=lambda k: plain[k] - widths[k]):
+        if sum(widths) + len(_BETWEEN) * (len(widths) - 1) <= width or widths[k] == plain[k]:
+            break
+        laid[k], widths[k] = columns[k], plain[k]
+    return laid, widths
+
+
+def _width(title: str, column: Sequence[str]) -> int:
+    return max(cell_width(line) for cell in (title, *column) for line in cell.split("\n"))
+
+
 def _fitted(
-    titles: Sequence[str],
     widths: list[int],
     rights: Sequence[bool],
     breaks: Sequence[int | None],

@@ -21,6 +21,8 @@ Array = NDArray[np.float64]
 
 # A coefficient this small beside the terms that make it up is rounding, not chemistry.
 _ROUNDING = 1e-9
+# So is one this small beside the largest turnover: what is left of a flux that is zero.
+_DUST = 1e-11
 
 
 @record
@@ -115,7 +117,8 @@ def find_equations(
     """
     parts = coefficients * fluxes
     boundary = [matrix.species[i] for i in matrix.boundary]
-    totals = _sums(parts)
+    dust = _DUST * float(np.abs(parts).max(initial=0.0))
+    totals = _sums(parts, dust)
     releases = {name: totals[matrix.row(name)] for name in boundary}
     per = reference_substrate(network, releases)
     amount = -releases[per] if per is not None else None
@@ -127,10 +130,11 @@ def find_equations(
             range(len(matrix.species)),
             per,
             amount,
+            dust,
         )
         for compartment in network.compartments
     ]
-    equations.append(_equation(None, matrix, parts, matrix.boundary, per, amount))
+    equations.append(_equation(None, matrix, parts, matrix.boundary, per, amount, dust))
     return tuple(equations)
 
 
@@ -180,14 +184,15 @@ def _equation(
     rows: range | tuple[int, ...],
     per: str | None,
     amount: float | None,
+    dust: float,
 ) -> NetEquation:
-    sums = _sums(parts)
+    sums = _sums(parts, dust)
     terms = tuple(EquationTerm(matrix.species[i], float(sums[i])) for i in rows if sums[i] != 0)
     return NetEquation(compartment, terms, per, amount)
 
 
-def _sums(parts: Array) -> Array:
-    """Sums of rows in which what is only rounding is zero."""
+def _sums(parts: Array, dust: float) -> Array:
+    """Sums of rows in which what is only rounding, of the terms or of the fluxes, is zero."""
     sums: Array = parts.sum(axis=1)
-    sums[np.abs(sums) <= _ROUNDING * np.abs(parts).sum(axis=1)] = 0.0
+    sums[np.abs(sums) <= np.maximum(_ROUNDING * np.abs(parts).sum(axis=1), dust)] = 0.0
     return sums
