@@ -109,3 +109,18 @@ def test_a_variant_that_was_applied_is_written_as_a_model_of_its_own() -> None:
     assert [r.name for r in again.reactions] == [r.name for r in lean.reactions]
     assert again.find_reaction("back") is not None
     assert again.parameters[0].value == 1
+
+
+def test_limits_below_zero_are_written_as_they_are_read() -> None:
+    text = "substrate glucose\nproduct ethanol, CO2\ncompartment c\n"
+    text += "    r : glucose <-> 2 ethanol + 2 CO2\nlimit r between -2 and -0.5\n"
+    network = read_model_text(text + "variant v\n    limit r = -1.5 ± 0.2\n").network
+    assert network is not None
+    written = write_model(network)
+    again = read_model_text(written).network
+
+    assert again is not None
+    assert "r between -2 and -0.5" in written
+    assert "r = -1.5 ± 0.2" in written
+    assert [(m.low, m.high) for m in again.limits] == [(-2, Fraction(-1, 2))]
+    assert again.variants[0].limits[0].low == Fraction(-3, 2)
