@@ -138,12 +138,13 @@ def _alternatives(told: ToldConflict, number: str) -> list[Block]:
         told.alternatives, key=lambda a: (a.in_sd is None, abs(a.in_sd or 0.0))
     )
     listed = "; or ".join(alternative_words(a) for a in ranked)
+    which = "Any one of these" if len(ranked) > 1 else "This one"
     keys = ("quantity", "is_ceiling", "needed", "stated", "in_sd")
     rows = tuple(
         (str(a.quantity), a.is_ceiling, a.needed, a.stated, a.in_sd) for a in ranked
     )
     return [
-        Sentence(f"Any one of these alone {ends} (all else as it stands): {listed}."),
+        Sentence(f"{which} alone {ends} (all else as it stands): {listed}."),
         Table("alternatives", "", tuple(Column("", key) for key in keys), rows),
     ]
 
