@@ -18,6 +18,9 @@ from fluxnet.cli.new import MODEL
 SPECIES = {"glucose": "in", "oxygen": "in", "CO2": "out", "ethanol": "out", "ammonia": "in"}
 AIMS = ("mu", "ethanol", "in CO2", "ATP", "NADH", "oxphos", "in glucose", "2 ethanol - X")
 
+PLANS = ("mu", "in CO2", "oxphos", "ethanol / glucose", "CO2 / oxygen", "mu / glucose",
+         "ATP catabolism", "NADH anabolism")  # fmt: skip
+
 sizes = st.one_of(
     st.just(0.0), st.floats(1e-3, 100), st.floats(1e-9, 1e9), st.integers(0, 10).map(float)
 )
@@ -106,6 +109,20 @@ def test_showing_an_optimum_never_raises(
         rates = None if table is None else fx.read_rates_text(table, model)
         asked = {"maximise" if upward else "minimise": aim}
         return fx.solve(model, rates, within=within, fraction=fraction, **asked)
+
+    show(ask)
+
+
+@given(st.one_of(st.none(), tables()), limits, st.sampled_from(PLANS),
+       st.sampled_from([0.05, 1e-6, 0.99]))  # fmt: skip
+@settings(max_examples=100, suppress_health_check=[HealthCheck.too_slow], deadline=None)
+def test_showing_a_plan_never_raises(
+    table: str | None, lines: list[str], wanted: str, error: float
+) -> None:
+    def ask() -> fx.Answer[Any]:
+        model = fx.read_model_text("\n".join([MODEL, *lines]) + "\n")
+        rates = None if table is None else fx.read_rates_text(table, model)
+        return fx.solve(model, rates, plan=wanted, plan_error=error)
 
     show(ask)
 
