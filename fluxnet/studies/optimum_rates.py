@@ -12,7 +12,7 @@ from fluxnet.solving.build import Built
 from fluxnet.solving.classify import classify
 from fluxnet.solving.equalities import find_equalities
 from fluxnet.solving.problem import Row
-from fluxnet.solving.quantities import default_direction, quantity_row
+from fluxnet.solving.quantities import default_direction, frame_at
 from fluxnet.studies.settling import Array, Spans
 from fluxnet.studies.solution import RateEstimate
 from fluxnet.studies.units import rate_unit
@@ -44,15 +44,11 @@ def estimate_rates(
         *(q for q in measured if q is not None and q.kind is not QuantityKind.RATIO),
         *(q for q in boundary if not _is_measured(q, measured)),
     ]
-    rows = np.array(
-        [
-            quantity_row(built.network, built.stoichiometry, q, built.values, basis=built.basis)
-            for q in asked
-        ]
-    ).reshape(len(asked), len(fluxes))
+    frame = frame_at(built.network, built.stoichiometry, built.values, built.basis)
+    rows = np.array([frame.row(q) for q in asked]).reshape(len(asked), len(fluxes))
     span = spans(rows, {})
     values = rows @ fluxes
-    tested = _tested(built)
+    tested = _tested(built) if measured else set()
     estimates: list[RateEstimate] = []
     for k, quantity in enumerate(asked):
         row = measured.get(quantity)
