@@ -211,9 +211,10 @@ def _row_bounds(
     row: Row, low: float, high: float, within: float | None
 ) -> tuple[Fraction | None, Fraction | None]:
     """Bounds at the decimals as written; of a measured value, value -+ within sds of these."""
-    if within is None or row.value is None or not row.sd or row.ratio is not None:
+    reach = within if within is not None and isfinite(within) else None
+    if reach is None or row.value is None or not row.sd or row.ratio is not None:
         return _bound(low), _bound(high)
-    value, room = as_fraction(row.value), as_fraction(within) * as_fraction(row.sd)
+    value, room = as_fraction(row.value), as_fraction(reach) * as_fraction(row.sd)
     size = 1e-12 * abs(row.value)
     lower, upper = (
         end if isclose(bound, end, rel_tol=1e-12, abs_tol=size) else _bound(bound)

@@ -12,6 +12,7 @@ from fluxnet.reading.model import read_model_text
 from fluxnet.studies.bill import BillSide
 from fluxnet.studies.solution import FluxSolution, SolveStatus
 from fluxnet.studies.solve import solve_network
+from fluxnet.tables.rates_table import read_rates_text
 
 # Acetate makes NADH, which leaves by oxygen (two each) or by lactate. With g glucose:
 # pyruvate 2 g = a + l, NADH 2 g + a = l + 2 o; so acetate equals oxygen, whatever g is.
@@ -112,6 +113,19 @@ def test_a_limit_that_cannot_move_at_all_has_no_end_there() -> None:
     # All the glucose goes into lactate: more of it is impossible.
     assert run.optimum == 0
     assert worth(run, "limit lactate")[0] == -float("inf")
+
+
+@pytest.mark.parametrize("within", [0.0, 0.5, 2.0, float("inf")])
+def test_measured_rates_are_held_exactly_within_so_many_sds(within: float) -> None:
+    model = network(AMPLE)
+    table = read_rates_text(
+        "species,direction,rate,sd,unit\nacetate,out,2.1,0.3,mmol/g/h\n", network=model
+    ).table
+    (run,) = solve_network(model, table, maximise="acetate", within=within).runs
+
+    assert run.proof is not None
+    assert run.proof.verified
+    assert run.optimum == {0.0: 2.1, 0.5: 2.25, 2.0: 2.7}.get(within, 3.0)
 
 
 def notes(text: str, **options: str) -> str:
