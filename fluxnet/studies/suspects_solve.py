@@ -16,13 +16,13 @@ from math import inf
 import numpy as np
 from numpy.typing import NDArray
 
-from fluxnet.exact.sparse import null_space
+from fluxnet.exact.sparse import SparseRow, null_space
 from fluxnet.ground.record import record
 from fluxnet.network.model import Network, QuantityKind, Role, Species
 from fluxnet.solving.applying import applies, is_same, may_reverse
 from fluxnet.solving.build import Built, rebuild
 from fluxnet.solving.descent import fit_equalities
-from fluxnet.solving.equalities import Equality, find_equalities
+from fluxnet.solving.equalities import ExactRows, find_equalities
 from fluxnet.solving.flux_fit import FluxFit
 from fluxnet.solving.forms import as_fraction, exact_numbers, form_of_row, growth_weights
 from fluxnet.solving.problem import Row, RowKind
@@ -42,11 +42,10 @@ Columns = dict[int, dict[int, Fraction]]
 
 @record
 class _Lifted:
-    """An equality that a suspect breaks: what one unit of it adds on the left."""
+    """A suspect that breaks equalities: by their places, what one unit of it adds on the left."""
 
-    place: int
     hypothesis: Hypothesis
-    amount: Fraction
+    amounts: dict[int, Fraction]
 
 
 def seek_flux_suspects(fit: FluxFit, unit: str) -> Suspects | None:
@@ -125,14 +124,15 @@ def _plan(built: Built, fluxes: Array, unit: str) -> SuspectPlan:
     ]
     lifted = [
         found
-        for k, equality in enumerate(exact.equalities)
-        for found in _of_equality(equality, k, built, unit)
+        for k in range(len(equal))
+        for found in _of_equality(exact, k, built, unit)
     ]
     equations: list[list[Fraction]] = []
     for k in range(space.dimension):
         weights = [row.get(k, Fraction(0)) for row in space.rows]
         equations.append([
-            *weights[len(equal) :], *(-one.amount * weights[one.place] for one in lifted)
+            *weights[len(equal) :],
+            *(sum((-a * weights[p] for p, a in x.amounts.items()), Fraction(0)) for x in lifted),
         ])  # fmt: skip
     return plan_suspects(
         equations, [False] * width, [*hypotheses, *(one.hypothesis for one in lifted)],
@@ -164,18 +164,16 @@ def _of_row(row: Row, place: int, built: Built, unit: str) -> Hypothesis:
     )  # fmt: skip
 
 
-def _of_equality(
-    equality: Equality, place: int, built: Built, unit: str
-) -> Iterator[_Lifted]:
+def _of_equality(exact: ExactRows, k: int, built: Built, unit: str) -> Iterator[_Lifted]:
     """What leaves or enters beside what the reactions have, or against a limit that closes it."""
-    rows, network = built.problem.rows, built.network
+    rows, network, equality = built.problem.rows, built.network, exact.equalities[k]
     if equality.place >= len(rows) or equality.is_measured:
         return
     row = rows[equality.place]
     if row.kind is RowKind.BALANCE:
         species = network.find_species(row.name)
         if species is not None:
-            yield _Lifted(place, _of_species(species, unit), Fraction(1))
+            yield _Lifted(_of_species(species, unit), {k: Fraction(1)})
         return
     quantity = row.quantity
     if quantity is None or quantity.kind is not QuantityKind.RATE or equality.value:
@@ -188,7 +186,21 @@ def _of_equality(
         SuspectKind.UNMEASURED_SPECIES, closed.name, unit, (Fraction(1),),
         positive=_allowed(closed, Role.SUBSTRATE), negative=_allowed(closed, Role.PRODUCT),
     )  # fmt: skip
-    yield _Lifted(place, one, Fraction(direction.sign))
+    # what is closed closes the reaction that alone takes part in it, which is an equality as well
+    own = exact.rows[equality.place]
+    yield _Lifted(one, {
+        other: direction.sign * factor
+        for other, also in enumerate(exact.equalities)
+        if (factor := _multiple(exact.rows[also.place], own)) is not None
+    })  # fmt: skip
+
+
+def _multiple(row: SparseRow, other: SparseRow) -> Fraction | None:
+    """The factor by which one row is another; None where it is not."""
+    if row.keys() != other.keys() or not row:
+        return None
+    factors = {value / other[j] for j, value in row.items()}
+    return factors.pop() if len(factors) == 1 else None
 
 
 def _allowed(species: Species, against: Role) -> Standing:
