@@ -28,6 +28,10 @@ _STEPS: tuple[tuple[str, tuple[str, ...]], ...] = (
         ("closure", "rates.csv", "--model", "tw4.flux", "--quiet"),
     ),
     (
+        "The week that does not: what could be wrong with it?",
+        ("closure", "rates.csv", "--model", "tw4.flux", "--run", "W11"),
+    ),
+    (
         "A week that closes: what did the cells do, and who made and spent the carriers?",
         ("solve", "tw4.flux", "rates.csv", "--run", "W15"),
     ),

@@ -151,12 +151,16 @@ def _usual_unit(suspects: Suspects) -> str:
 def _pairs(suspects: Suspects) -> Table:
     """Pairs of suspects, where none by itself explains it."""
     columns = (
-        Column("two at once", "", wrap=62),
+        Column("two at once", "", wrap=66),
         Column("h left", "", align=Align.RIGHT, digits=2),
     )
     rows = tuple(
-        (f"{suspect_words(pair.first)}; {suspect_words(pair.second)}", pair.h_left)
+        row
         for pair in suspects.pairs
+        for row in (
+            (suspect_words(pair.first), pair.h_left),
+            (f"  and {suspect_words(pair.second)}", ""),
+        )
     )
     notes = [f"and {suspects.pairs_left} pairs that do as well"] if suspects.pairs_left else []
     notes.append("each of the two is needed beside the other")
@@ -183,7 +187,9 @@ def _advice(suspects: Suspects, more: str) -> list[str]:
     best = next((s for s in suspects.group if s.possible), None)
     if suspects.explained and best is not None:
         told.append(_what_to_do(best, suspects))
-    if suspects.dof == 2:
+    if not suspects.explained:
+        told.append(_of_two(suspects))
+    if suspects.dof == 2 and suspects.explained:
         told.append(
             "Two relations test the rates, and the size of a suspect uses up one of them: that it "
             f"fits well is no evidence.{' ' if more else ''}{more}"
@@ -197,6 +203,26 @@ def _advice(suspects: Suspects, more: str) -> list[str]:
             f"{format_number(missing.high, 2)}; sugars and acetate 4, ethanol 6)."
         )
     return told
+
+
+def _of_two(suspects: Suspects) -> str:
+    """What to do where no single error explains a run."""
+    if suspects.dof < 3:
+        return (
+            "Two errors at once explain any two relations fully, so that no two can be told from "
+            "others by this run: look for a slip that meets several rates (units, dilution, time)."
+        )
+    if not suspects.pairs:
+        return (
+            "No two at once explain it either: look for a slip that meets several rates (units, "
+            "dilution, time)."
+        )
+    first = suspects.pairs[0]
+    names = [
+        f"{one.label} once more" if one.measured is not None else one.name
+        for one in (first.first, first.second)
+    ]
+    return f"To do: look into {and_words(names)}."
 
 
 def _what_to_do(best: Suspect, suspects: Suspects) -> str:
@@ -215,7 +241,11 @@ def _what_to_do(best: Suspect, suspects: Suspects) -> str:
         if other:
             return f"{text}, and {and_words(other[:3])} come next."
         return f"{text}." if len(numbers) == 1 else f"{text}, and look further down the table."
-    return f"To do: measure {best.name}; {suspect_words(best)} would explain it."
+    what = {
+        SuspectKind.CARRIER: "look for a reaction that the model lacks",
+        SuspectKind.PARAMETER: f"look into {best.name} of the model",
+    }.get(best.kind, f"measure {best.name}")
+    return f"To do: {what}; {suspect_words(best)} would explain it."
 
 
 def _data(suspects: Suspects, run: str | None) -> Table:

@@ -79,6 +79,30 @@ def test_the_run_whose_oxygen_is_wrong_does_not_close(rates, model):
     assert closes == {"W09": True, "W11": False, "W14": True, "W15": True}
 
 
+def test_the_suspects_of_the_wrong_run_point_at_the_oxygen(rates, model):
+    closed = next(r for r in fx.closure(rates, model).runs if r.run == "W11").suspects
+    solved = next(r for r in fx.solve(model, rates).runs if r.run == "W11").suspects
+    for suspects in (closed, solved):
+        first = suspects.group[0]
+        assert first.name == "oxygen"
+        # the cell showed 18 % too little
+        assert abs(first.would_be - first.measured / 0.82) < 2 * first.would_be_sd
+    # two balances leave the diol under suspicion; that of the carriers clears it
+    assert closed.find("2,3-butanediol").group == 1
+    assert solved.find("2,3-butanediol").group == 2
+    for name in ("glucose", "acetate", "lactate", "mu"):
+        assert closed.find(name).group == solved.find(name).group == 2
+
+
+def test_the_suspects_of_the_cold_run_point_at_the_upkeep(rates, model):
+    # it was 1.2 and not 4.0; nothing tells it from a wrong growth requirement
+    suspects = next(r for r in fx.solve(model, rates).runs if r.run == "W14").suspects
+    first = suspects.group[0]
+    assert first.name == "flux upkeep"
+    assert abs(first.would_be - 1.2) < 2 * first.would_be_sd
+    assert {"K_X", "PO"} <= set(first.twins)
+
+
 def test_the_wrong_run_cannot_be_told_by_eye(rates, model):
     # each balance of the wrong run by itself lies within two sd, and its carbon closes better than
     # that of a run that is right

@@ -188,7 +188,8 @@ def test_oxygen_that_leaks_in_is_told_as_taken_up():
     text = MODEL.format(po="", kx="", ash="5", more="\nlimit oxygen <= 0")
     which = fx.read_model_text(text)
     rows = "A,glucose,in,10,0.2,mmol/g/h\nA,CO2,out,19,0.2,mmol/g/h\n"
-    rows += "A,ethanol,out,15.5,0.2,mmol/g/h\nA,lactate,out,2,0.1,mmol/g/h\nA,acetate,out,1.4,0.1,mmol/g/h\n"
+    rows += "A,ethanol,out,15.5,0.2,mmol/g/h\nA,lactate,out,2,0.1,mmol/g/h\n"
+    rows += "A,acetate,out,1.4,0.1,mmol/g/h\n"
     leak = look(which, fx.read_rates_text(HEAD + rows, which).runs[0]).find("oxygen")
     assert leak.kind is SuspectKind.UNMEASURED_SPECIES
     assert leak.direction is Direction.IN
