@@ -12,7 +12,6 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.checks.cone import Cone, Form, FormKind, exact_rows, flux_cone
-from fluxnet.checks.gibbs import conversion_energy
 from fluxnet.checks.interior import ConeRows, cone_rows, exact_weights, without_noise
 from fluxnet.checks.loops import exact_vertex
 from fluxnet.checks.words import equation
@@ -22,6 +21,7 @@ from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
 from fluxnet.matrices.stoichiometry import Stoichiometry
+from fluxnet.network.free_energy import find_free_energy
 from fluxnet.network.model import CargoKind, Network, Role, Species
 from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.problem import Problem
@@ -187,7 +187,7 @@ def _most(
         carrier.name,
         amount,
         conversion if amount else (),
-        conversion_energy(network, conversion) if amount else None,
+        find_free_energy(network, dict(conversion)).value if amount else None,
         bound == amount,
     )
 

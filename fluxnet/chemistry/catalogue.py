@@ -22,8 +22,7 @@ from fluxnet.chemistry.reader import read_formula
 from fluxnet.ground.record import record
 
 __all__ = [
-    "Catalogue", "Compound", "CompoundKind", "Gibbs", "Plausibility", "find_compound",
-    "load_catalogue",
+    "Catalogue", "Compound", "CompoundKind", "Plausibility", "find_compound", "load_catalogue",
 ]  # fmt: skip
 
 
@@ -71,18 +70,6 @@ class Plausibility(Enum):
 
 
 @record
-class Gibbs:
-    """A Gibbs energy of formation [kJ/mol], 25 °C, aqueous at 1 mol/kg unless the source differs.
-
-    ``charge`` tells the form: 0 the neutral one, else the ion at pH 7.
-    """
-
-    charge: int
-    energy: float
-    source: str
-
-
-@record
 class Compound:
     """One compound of the catalogue.
 
@@ -102,7 +89,6 @@ class Compound:
     combustion_kJ: float | None = None  # noqa: N815
     combustion_state: str | None = None
     combustion_source: str | None = None
-    gibbs: tuple[Gibbs, ...] = ()
 
     @property
     def charge(self) -> int:
@@ -211,11 +197,6 @@ def _compound(place: int) -> Compound:
         combustion_kJ=float(combustion) if combustion else None,
         combustion_state=line["combustion_state"] or None,
         combustion_source=line["combustion_source"] or None,
-        gibbs=tuple(
-            Gibbs(form, float(line[column]), line["gibbs_source"])
-            for form, column in ((0, "gibbs_kJ"), (charge, "gibbs_ph7_kJ"))
-            if line[column]
-        ),
     )
 
 

@@ -1,12 +1,13 @@
-"""Heats of combustion: measured where the catalogue has one, else from the electrons."""
+"""Heats of combustion: measured where one is known, else by Hess, else from the electrons."""
 
 from __future__ import annotations
 
 from fluxnet.chemistry.catalogue import Compound
+from fluxnet.chemistry.formation import combustion_by_hess, find_formation
 from fluxnet.chemistry.formula import Formula, NitrogenReference, degree_of_reduction
 from fluxnet.ground.record import record
 
-__all__ = ["HEAT_PER_ELECTRON", "HeatOfCombustion", "heat_of_combustion"]
+__all__ = ["HEAT_PER_ELECTRON", "HeatOfCombustion", "heat_in_water", "heat_of_combustion"]
 
 HEAT_PER_ELECTRON = 115.0
 """Heat of combustion per electron with N2 as nitrogen reference [kJ/mol]: the mean over many
@@ -17,7 +18,8 @@ compounds, sd 6 to 8 (Roels 1983; from memory)."""
 class HeatOfCombustion:
     """The heat given off on combustion to CO2(g), H2O(l) and N2(g) [kJ/mol], positive.
 
-    ``estimated`` where no measured value is known; ``source`` says from what.
+    Sulfur ends as sulfate, phosphorus as phosphate, both in water. ``estimated`` where no
+    measured value is known; ``source`` says from what.
     """
 
     value: float
@@ -28,10 +30,12 @@ class HeatOfCombustion:
 def heat_of_combustion(
     formula: Formula, compound: Compound | None = None
 ) -> HeatOfCombustion | None:
-    """The heat of combustion of a species.
+    """The heat of combustion of a species as a pure compound.
 
-    The compound's measured value; else 115 kJ x (gamma + 3 N), gamma with ammonia as
-    reference. None where the formula holds an element without a reference.
+    The compound's measured value; else that of the form dissolved in water, by Hess; else
+    115 kJ x (gamma + 3 N), gamma with ammonia as reference, and nothing where a compound has
+    no electrons to give (what it takes from oxygen is small beside 115 kJ). None where the
+    formula holds an element without a reference.
 
     Examples
     --------
@@ -42,10 +46,40 @@ def heat_of_combustion(
     >>> heat_of_combustion(ethanol.formula).value
     1380.0
     """
-    if compound is not None and compound.combustion_kJ is not None:
-        return HeatOfCombustion(compound.combustion_kJ, False, compound.combustion_source or "")
+    if compound is not None:
+        if compound.combustion_kJ is not None:
+            source = compound.combustion_source or ""
+            return HeatOfCombustion(compound.combustion_kJ, False, source)
+        dissolved = heat_in_water(compound.formula_ph7, compound)
+        if dissolved is not None:
+            return dissolved
     electrons = degree_of_reduction(formula, NitrogenReference.NITROGEN)
     if electrons is None:
         return None
+    if electrons <= 0:
+        burnt = not electrons or set(formula.elements) == {"O"}
+        return HeatOfCombustion(0.0, not burnt, "no electrons to give")
     value = HEAT_PER_ELECTRON * float(electrons)
     return HeatOfCombustion(value, True, "estimated: 115 kJ per electron, N2 as reference")
+
+
+def heat_in_water(form: Formula, compound: Compound) -> HeatOfCombustion | None:
+    """The heat of combustion of a form as it stands in a culture, gases as gas, by Hess.
+
+    None where the enthalpy of formation of the form is not known.
+
+    Examples
+    --------
+    >>> from fluxnet.chemistry.catalogue import find_compound
+    >>> lactate = find_compound("lactate")
+    >>> round(heat_in_water(lactate.formula_ph7, lactate).value, 1)
+    1351.5
+    """
+    formation = find_formation(compound.name, int(form.charge))
+    if formation is None:
+        return None
+    value = combustion_by_hess(form, formation)
+    if value is None:
+        return None
+    state = formation.state.value
+    return HeatOfCombustion(value, False, f"by Hess, state {state}: {formation.source}")

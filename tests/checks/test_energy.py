@@ -8,9 +8,9 @@ from fractions import Fraction
 import pytest
 
 from fluxnet.checks.energy import MostEnergy, find_most_energy, tell_too_much_energy
-from fluxnet.checks.gibbs import conversion_energy
 from fluxnet.ground.names import Name
 from fluxnet.matrices.stoichiometry import stoichiometry
+from fluxnet.network.free_energy import find_free_energy
 from fluxnet.network.model import Network
 
 Read = Callable[[str], Network]
@@ -128,19 +128,25 @@ def test_a_coefficient_too_large_is_found_where_no_loop_shows_it(read: Read) -> 
 def test_conversions_give_the_published_energies(
     read: Read, conversion: dict[str, int], energy: float, tolerance: float
 ) -> None:
-    network = read(BASE)
-    terms = [(name, Fraction(n)) for name, n in conversion.items()]
+    terms = {name: Fraction(n) for name, n in conversion.items()}
 
-    assert conversion_energy(network, terms) == pytest.approx(energy, abs=tolerance)
+    found = find_free_energy(read(BASE), terms)
+
+    assert found.value == pytest.approx(energy, abs=tolerance)
+    assert not found.missing
 
 
 def test_a_conversion_that_does_not_close_has_no_energy(read: Read) -> None:
-    network = read(BASE)
+    found = find_free_energy(read(BASE), {"glucose": Fraction(-1), "CO2": Fraction(5)})
 
-    assert conversion_energy(network, [("glucose", Fraction(-1)), ("CO2", Fraction(5))]) is None
+    assert found.value is None
+    assert found.missing == ()
 
 
 def test_a_compound_without_gibbs_energy_leaves_it_open(read: Read) -> None:
     network = read(BASE.replace("product   ethanol", "product   oil C5H8, ethanol"))
 
-    assert conversion_energy(network, [("oil", Fraction(-1)), ("CO2", Fraction(5))]) is None
+    found = find_free_energy(network, {"oil": Fraction(-1), "CO2": Fraction(5)})
+
+    assert found.value is None
+    assert found.missing == ("oil",)

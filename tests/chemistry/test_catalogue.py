@@ -21,6 +21,7 @@ from fluxnet.chemistry.compare import (
     compare_with_compound,
     free_form,
 )
+from fluxnet.chemistry.formation import find_formations
 from fluxnet.chemistry.formula import NitrogenReference, degree_of_reduction
 from fluxnet.chemistry.reader import read_formula
 
@@ -116,8 +117,9 @@ def test_every_value_has_a_source() -> None:
         if compound.combustion_kJ is not None:
             assert compound.combustion_source
             assert compound.combustion_state in {"s", "l", "g"}
-        for value in compound.gibbs:
-            assert value.source
+        for form in find_formations(compound.name):
+            assert form.source
+            assert form.charge in (0, compound.charge)
 
 
 def test_energy_carriers_hold_nothing() -> None:
