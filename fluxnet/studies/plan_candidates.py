@@ -23,6 +23,7 @@ __all__ = ["Candidate", "better_ones", "inside_ones", "new_ones"]
 Vector = NDArray[np.float64]
 
 _ALIKE = 1e-9
+_NOTHING = 1e-9
 
 
 @record
@@ -59,10 +60,12 @@ def new_ones(gauge: Gauge, error: float, unit: str) -> list[Candidate]:
         if reading is None or reading.is_constant or _is_told(reading, [c.reading for c in found]):
             continue
         size = sd or error * abs(reading.value)
-        if size:
-            step = Step(str(quantity), How.NEW, size, rate_unit(quantity, unit), reading.value,
-                        quantity.kind.value)  # fmt: skip
-            found.append(Candidate(step, reading, shift=_shift(gauge, quantity, reading)))
+        if size <= _NOTHING * gauge.scale:
+            # 5 % of nothing would be exact: as in a table it has the floor as its sd
+            size = SdRule().floor
+        step = Step(str(quantity), How.NEW, size, rate_unit(quantity, unit), reading.value,
+                    quantity.kind.value)  # fmt: skip
+        found.append(Candidate(step, reading, shift=_shift(gauge, quantity, reading)))
     return found
 
 
@@ -88,7 +91,6 @@ def inside_ones(
         What crosses the boundary, what is measured, and what the plan is for.
     """
     fit = gauge.fit
-    largest = float(np.abs(fit.fluxes).max(initial=0.0))
     found: list[Candidate] = []
     for j, name in enumerate(fit.reactions):
         quantity = Quantity(QuantityKind.FLUX, name)
@@ -98,8 +100,7 @@ def inside_ones(
         if _is_told(reading, [*told, *(c.reading for c in found)]):
             continue
         size = _size(float(fit.fluxes[j]), float(fit.best_low[j]), float(fit.best_high[j]))
-        sd = error * (largest if size is None else size)
-        sd = max(sd, SdRule().floor * largest)
+        sd = max(error * (gauge.scale if size is None else size), SdRule().floor * gauge.scale)
         step = Step(str(quantity), How.NEW, sd, unit, reading.value, quantity.kind.value)
         found.append(Candidate(step, reading, shift=_shift(gauge, quantity, reading)))
     return found
@@ -129,14 +130,13 @@ def _errors(
     fit = gauge.fit
     network = fit.built.network
     target = Target(fit.built.basis, unit, unit, biomass=next(iter(biomasses(network)), None))
-    largest = float(np.abs(fit.fluxes).max(initial=0.0))
     known = [row for row in fit.rows if row.quantity.kind is not QuantityKind.RATIO]
     values = [row.value for row in known]
     weights = [carbon_weight(r.quantity, _species(network, r.quantity), target) for r in known]
     sds: list[float] = []
     for quantity, size in zip(quantities, sizes, strict=True):
         is_ratio = quantity.kind is QuantityKind.RATIO
-        value = 0.0 if is_ratio else largest if size is None else size
+        value = 0.0 if is_ratio else gauge.scale if size is None else size
         weight = carbon_weight(quantity, _species(network, quantity), target)
         sds.append(assume_sds([*values, value], [*weights, weight], SdRule(error))[-1])
     return sds

@@ -15,6 +15,7 @@ from fluxnet.ground.record import record
 from fluxnet.network.model import Network, Quantity, QuantityKind
 from fluxnet.rates.measured import Run
 from fluxnet.solving.build import Built, build_problem
+from fluxnet.solving.chart import flux_scale
 from fluxnet.solving.classify import Structure, classify
 from fluxnet.solving.equalities import find_equalities
 from fluxnet.solving.flux_fit import FluxFit
@@ -27,6 +28,9 @@ __all__ = ["Gauge", "Reading", "gauge_at"]
 
 Vector = NDArray[np.float64]
 _Row = dict[int, Fraction]
+
+_NOTHING = 1e-9
+"""A denominator below this part of the largest flux is rounding."""
 
 
 @record
@@ -99,7 +103,7 @@ class Gauge:
             frames = [_in_moles(frame) for frame in (self.frame, *self.drifts)]
             gauge = replace(self, frame=frames[0], drifts=tuple(frames[1:]))
         first, second = gauge._read_plain(over), gauge._read_plain(below)
-        if abs(second.value) <= 1e-9 * float(np.abs(self.fit.fluxes).max(initial=0.0)):
+        if abs(second.value) <= _NOTHING * self.scale:
             return None
         ratio = first.value / second.value
         return Reading(
@@ -145,6 +149,13 @@ class Gauge:
         if not hidden:
             unseen = np.zeros_like(unseen)
         return Reading(float(row @ point.fluxes), seen, unseen, hidden)
+
+    @property
+    def scale(self) -> float:
+        """The size of the largest flux; of a usual one where all are zero."""
+        if self.fit.task is None:
+            raise MisuseError("an infeasible fit has no values to ask for")
+        return flux_scale(self.fit.task, self._region.point)
 
     @property
     def _region(self) -> Region:
