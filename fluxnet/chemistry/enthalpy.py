@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
-from fluxnet.chemistry.catalogue import Compound
+from fluxnet.chemistry.catalogue import Compound, find_compound
 from fluxnet.chemistry.formation import combustion_by_hess, find_formation
 from fluxnet.chemistry.formula import Formula, NitrogenReference, degree_of_reduction
 from fluxnet.ground.record import record
 
-__all__ = ["HEAT_PER_ELECTRON", "HeatOfCombustion", "heat_in_water", "heat_of_combustion"]
+__all__ = [
+    "HEAT_PER_ELECTRON", "HeatOfCombustion", "heat_in_water", "heat_of_biomass",
+    "heat_of_combustion",
+]  # fmt: skip
 
 HEAT_PER_ELECTRON = 115.0
 """Heat of combustion per electron with N2 as nitrogen reference [kJ/mol]: the mean over many
@@ -83,3 +86,25 @@ def heat_in_water(form: Formula, compound: Compound) -> HeatOfCombustion | None:
         return None
     state = formation.state.value
     return HeatOfCombustion(value, False, f"by Hess, state {state}: {formation.source}")
+
+
+def heat_of_biomass(formula: Formula) -> HeatOfCombustion | None:
+    """The heat of combustion of dry biomass: measured per C-mol of CH1.8O0.5N0.2.
+
+    Another composition is estimated from its electrons.
+
+    Examples
+    --------
+    >>> from fluxnet.chemistry.reader import read_formula
+    >>> heat_of_biomass(read_formula("C6H10.8O3N1.2")).value
+    3360.0
+    >>> round(heat_of_biomass(read_formula("CH1.83O0.56N0.17")).value, 1)
+    541.6
+    """
+    measured, carbon = find_compound("biomass"), formula.count("C")
+    if measured is not None and measured.combustion_kJ is not None and carbon:
+        shares = {element: count / carbon for element, count in formula.counts}
+        if shares == dict(measured.formula.counts):
+            value = measured.combustion_kJ * float(carbon)
+            return HeatOfCombustion(value, False, measured.combustion_source or "")
+    return heat_of_combustion(formula)
