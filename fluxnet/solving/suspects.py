@@ -29,6 +29,7 @@ __all__ = [
 
 Array = NDArray[np.float64]
 Classes = NDArray[np.intp]
+_ROUNDING = 1e-13
 _CHUNK = 2_000_000
 """So many correlations of directions are held at once."""
 
@@ -37,8 +38,8 @@ _CHUNK = 2_000_000
 class Whitened:
     """Residuals as independent numbers of sd 1: ``residuals`` (runs x relations).
 
-    ``factor`` (runs x relations x relations) does this: it is the inverse of the Cholesky
-    factor of the covariance.
+    ``factor`` (runs x relations x relations) does this: it is the inverse of a Cholesky factor
+    of the covariance.
     """
 
     residuals: Array
@@ -105,31 +106,36 @@ def number_directions(vectors: Sequence[Sequence[Fraction]]) -> tuple[int, ...]:
     return tuple(found)
 
 
-def whiten_residuals(residuals: Array, covariance: Array) -> Whitened:
+def whiten_residuals(residuals: Array, roots: Array) -> Whitened:
     """Make residuals independent, with sd 1.
 
     Parameters
     ----------
     residuals
         Runs x relations.
-    covariance
-        Relations x relations, for all runs, or runs x relations x relations.
+    roots
+        Relations x sources, for all runs, or runs x relations x sources: F with P = F F', such
+        as the relations times the root of the errors' covariance. P itself, which would square
+        how far sds differ, is never formed: the triangle of F' = Q T is its Cholesky factor.
 
     Raises
     ------
     MisuseError
-        Where a covariance is not positive definite, or something is no number.
+        Where a relation has no error of its own, or something is no number.
     """
     e = np.asarray(residuals, dtype=np.float64)
-    P = np.broadcast_to(covariance, (*e.shape, e.shape[1]))
-    if not (np.isfinite(e).all() and np.isfinite(P).all()):
-        raise MisuseError("residuals and their covariance must be finite numbers")
-    scale = np.sqrt(np.einsum("nii->ni", P))
-    try:
-        with np.errstate(divide="ignore", invalid="ignore"):
-            lower = np.linalg.cholesky(P / (scale[:, :, None] * scale[:, None, :]))
-    except np.linalg.LinAlgError:
-        raise MisuseError("the covariance of the residuals is not positive definite") from None
+    F = np.broadcast_to(roots, (*e.shape, np.shape(roots)[-1]))
+    if not (np.isfinite(e).all() and np.isfinite(F).all()):
+        raise MisuseError("residuals and their errors must be finite numbers")
+    scale = np.sqrt(np.square(F).sum(axis=2))
+    if not (scale > 0).all():
+        raise MisuseError("a relation has no error")
+    triangle = np.asarray(np.linalg.qr((F / scale[:, :, None]).transpose(0, 2, 1), mode="r"))
+    lower = triangle.transpose(0, 2, 1)
+    if lower.shape[1] != lower.shape[2] or not (
+        np.abs(np.einsum("nii->ni", lower)) > _ROUNDING
+    ).all():
+        raise MisuseError("the errors leave a combination of relations without any")
     factor = np.linalg.inv(lower) / scale[:, None, :]
     return Whitened((factor @ e[:, :, None])[:, :, 0], factor)
 
@@ -148,8 +154,8 @@ def weigh_suspects(whitened: Whitened, directions: Array, classes: Sequence[int]
     --------
     Ethanol and CO2 should each be twice the glucose; 10.0, 18.6 and 19.6 were measured.
 
-    >>> covariance = np.array([[0.32, 0.16], [0.16, 0.32]])
-    >>> white = whiten_residuals(np.array([[-1.4, -0.4]]), covariance)
+    >>> roots = np.array([[-2.0, 1, 0], [-2, 0, 1]]) * [0.2, 0.4, 0.4]
+    >>> white = whiten_residuals(np.array([[-1.4, -0.4]]), roots)
     >>> found = weigh_suspects(white, np.array([[-2.0, -2.0], [1, 0], [0, 1]]), [0, 1, 2])
     >>> round(float(white.h[0]), 6), found.sizes.round(6).tolist()
     (6.5, [[0.45, -1.2, 0.3]])

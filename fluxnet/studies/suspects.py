@@ -37,7 +37,9 @@ LIKELY = 2.0
 
 @record
 class MeasuredValues:
-    """What was measured in some runs: arrays of runs x values, ``covariance`` square over them.
+    """What was measured in some runs: arrays of runs x values.
+
+    ``covariance`` is square over the values, ``roots`` (values x sources) is its root: V = F F'.
 
     ``values`` are those that enter the relations; ``given`` those that are told, one unit of
     an error in the first being ``factors`` in the second (a ratio A / B enters as A - r B).
@@ -45,6 +47,7 @@ class MeasuredValues:
 
     values: Array
     covariance: Array
+    roots: Array
     given: Array
     factors: Array
 
@@ -87,7 +90,7 @@ def judge_suspects(plan: SuspectPlan, measured: MeasuredValues) -> JudgedSuspect
     """Weigh all suspects of some runs, and see which of them are possible."""
     R, V = plan.relations, measured.covariance
     across = R @ V
-    whitened = whiten_residuals(measured.values @ R.T, across @ R.T)
+    whitened = whiten_residuals(measured.values @ R.T, R @ measured.roots)
     arrays = weigh_suspects(whitened, plan.directions, plan.classes)
     rows = [h.row for h in plan.hypotheses]
     of_rates = np.array([i for i, row in enumerate(rows) if row is not None], dtype=np.intp)

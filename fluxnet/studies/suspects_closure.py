@@ -36,6 +36,8 @@ from fluxnet.studies.suspects import (
 
 __all__ = ["SoughtSuspects", "plan_closure_suspects", "seek_suspects"]
 
+Array = NDArray[np.float64]
+
 _EITHER_WAY = ("CO2", "hydrogen", "bicarbonate")
 """Gases that cells release or take up; other rates keep their direction."""
 
@@ -87,7 +89,7 @@ def seek_suspects(
     judged = judge_suspects(
         suspects,
         MeasuredValues(
-            batch.values[some], _covariances(arrays.errors, some), batch.given[some], factors
+            batch.values[some], *_covariances(arrays.errors, some), batch.given[some], factors
         ),
     )
     known = {s.name: s for s in batch.rows.species}
@@ -199,9 +201,16 @@ def _combined(
     )
 
 
-def _covariances(errors: Errors, some: Sequence[int]) -> NDArray[np.float64]:
-    """The errors of some runs as covariances."""
+def _covariances(errors: Errors, some: Sequence[int]) -> tuple[Array, Array]:
+    """The errors of some runs as covariances, and the roots of these."""
+    variances = errors.variances[list(some)]
+    sds = np.sqrt(variances)
+    whole = np.eye(variances.shape[1])
     if isinstance(errors, Independent):
-        variances = errors.variances[list(some)]
-        return np.asarray(variances[:, :, None] * np.eye(variances.shape[1]))
-    return errors.matrix[list(some)]
+        return variances[:, :, None] * whole, sds[:, :, None] * whole
+    covariances = errors.matrix[list(some)]
+    # exact values have no error; beside them correlations keep the matrix positive
+    divisor = np.where(sds > 0, sds, 1.0)
+    correlations = covariances / (divisor[:, :, None] * divisor[:, None, :])
+    exact = (sds == 0)[:, :, None] * whole
+    return covariances, np.linalg.cholesky(correlations + exact) * sds[:, :, None]

@@ -68,15 +68,16 @@ def seek_flux_suspects(fit: FluxFit, unit: str) -> Suspects | None:
     rows = built.problem.rows
     soft = [rows[i] for i in built.measured]
     errors = np.linalg.inv(task.whitening) if len(soft) else np.zeros((0, 0))
-    covariance = np.zeros((len(soft) + len(names),) * 2)
-    covariance[: len(soft), : len(soft)] = errors @ errors.T
-    covariance[len(soft) :, len(soft) :] = np.diag(np.square(task.sd))
+    roots = np.zeros((len(soft) + len(names),) * 2)
+    roots[: len(soft), : len(soft)] = errors
+    roots[len(soft) :, len(soft) :] = np.diag(task.sd)
     start = task.rows.start
     measured = MeasuredValues(
         values=np.concatenate(
             [task.measured - best.values[task.soft], start - best.numbers]
         )[None, :],
-        covariance=covariance[None, :, :],
+        covariance=(roots @ roots.T)[None, :, :],
+        roots=roots[None, :, :],
         given=np.concatenate([[_given(row) for row in soft], start])[None, :],
         factors=np.concatenate(
             [[1 / (row.denominator or 1.0) for row in soft], np.ones(len(names))]

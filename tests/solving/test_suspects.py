@@ -24,6 +24,10 @@ def seed_of(name: str) -> int:
     return int.from_bytes(sha256(name.encode()).digest()[:8], "big")
 
 
+def root_of(P):
+    return np.linalg.cholesky(P)
+
+
 def left_by_search(e, P, g):
     """The least h with a free size of one suspect, found by a general minimiser."""
     inverse = np.linalg.inv(P)
@@ -55,7 +59,7 @@ def example(request):
 
 def test_a_suspect_leaves_the_least_h_that_any_size_of_it_can(example):
     e, P, G = example
-    found = weigh_suspects(whiten_residuals(e[None], P), G, range(7))
+    found = weigh_suspects(whiten_residuals(e[None], root_of(P)), G, range(7))
     for i, g in enumerate(G):
         left, size = left_by_search(e, P, g)
         assert found.h_left[0, i] == pytest.approx(left, rel=1e-8)
@@ -65,7 +69,7 @@ def test_a_suspect_leaves_the_least_h_that_any_size_of_it_can(example):
 
 def test_the_gain_of_a_suspect_is_its_size_in_sds_squared(example):
     e, P, G = example
-    found = weigh_suspects(whiten_residuals(e[None], P), G, range(7))
+    found = weigh_suspects(whiten_residuals(e[None], root_of(P)), G, range(7))
     gain = found.h[:, None] - found.h_left
     assert gain == pytest.approx(np.square(found.sizes / found.sds))
 
@@ -74,7 +78,7 @@ def test_p_is_that_of_the_best_of_all_distinct_directions(example):
     e, P, G = example
     twice = np.vstack([G, -3 * G[2]])
     classes = [*range(7), 2]
-    found = weigh_suspects(whiten_residuals(e[None], P), twice, classes)
+    found = weigh_suspects(whiten_residuals(e[None], root_of(P)), twice, classes)
     for k in range(8):
         alone = chi_squared_tail(float((found.h - found.h_left[:, k])[0]), 1)
         assert found.p[0, k] == pytest.approx(1 - (1 - alone) ** 7)
@@ -92,14 +96,14 @@ def test_chance_gives_the_best_suspect_its_p(request):
 def test_the_separation_is_what_h_would_rise_by_with_the_nearest_other(example):
     _, P, G = example
     truth = 2.5 * G[3]  # without noise h left of another suspect is the square of the distance
-    found = weigh_suspects(whiten_residuals(truth[None], P), G, range(7))
+    found = weigh_suspects(whiten_residuals(truth[None], root_of(P)), G, range(7))
     others = [k for k in range(7) if k != 3]
     assert found.separation[0, 3] ** 2 == pytest.approx(found.h_left[0, others].min())
 
 
 def test_twins_do_not_count_as_near(example):
     e, P, G = example
-    white = whiten_residuals(e[None], P)
+    white = whiten_residuals(e[None], root_of(P))
     alone = weigh_suspects(white, G, range(7))
     with_twin = weigh_suspects(white, np.vstack([G, 5 * G[1]]), [*range(7), 1])
     assert with_twin.separation[0, :7] == pytest.approx(alone.separation[0])
@@ -109,18 +113,18 @@ def test_twins_do_not_count_as_near(example):
 
 def test_a_lone_direction_has_no_neighbour(example):
     e, P, G = example
-    assert np.isinf(weigh_suspects(whiten_residuals(e[None], P), G[:1], [0]).separation).all()
+    white = whiten_residuals(e[None], root_of(P))
+    assert np.isinf(weigh_suspects(white, G[:1], [0]).separation).all()
 
 
 def test_runs_at_once_are_the_runs_one_by_one(request):
     random = np.random.default_rng(seed_of(request.node.name))
     e = random.standard_normal((5, 3))
     roots = random.standard_normal((5, 3, 3))
-    P = roots @ roots.transpose(0, 2, 1)
     G = random.standard_normal((6, 3))
-    together = weigh_suspects(whiten_residuals(e, P), G, range(6))
+    together = weigh_suspects(whiten_residuals(e, roots), G, range(6))
     for run in range(5):
-        alone = weigh_suspects(whiten_residuals(e[run : run + 1], P[run]), G, range(6))
+        alone = weigh_suspects(whiten_residuals(e[run : run + 1], roots[run]), G, range(6))
         for name in ("h", "sizes", "sds", "h_left", "p", "separation"):
             assert getattr(together, name)[run] == pytest.approx(getattr(alone, name)[0]), name
 
@@ -129,8 +133,8 @@ def test_scaling_and_mixing_the_relations_changes_nothing(request, example):
     e, P, G = example
     random = np.random.default_rng(seed_of(request.node.name))
     mix = random.standard_normal((4, 4)) * [[1e-5], [1], [1e4], [3]]
-    before = weigh_suspects(whiten_residuals(e[None], P), G, range(7))
-    after = weigh_suspects(whiten_residuals((mix @ e)[None], mix @ P @ mix.T), G @ mix.T, range(7))
+    before = weigh_suspects(whiten_residuals(e[None], root_of(P)), G, range(7))
+    after = weigh_suspects(whiten_residuals((mix @ e)[None], mix @ root_of(P)), G @ mix.T, range(7))
     for name in ("h", "sizes", "sds", "h_left", "separation"):
         assert getattr(after, name) == pytest.approx(getattr(before, name), rel=1e-6), name
 
@@ -140,10 +144,10 @@ def test_a_pair_leaves_the_least_h_of_any_two_sizes(request):
     root = random.standard_normal((4, 4))
     P, G = root @ root.T, random.standard_normal((6, 4))
     e = 6 * root @ random.standard_normal(4)
-    pairs = weigh_pairs(whiten_residuals(e[None], P), 0, G, range(6))
+    pairs = weigh_pairs(whiten_residuals(e[None], root_of(P)), 0, G, range(6))
     assert len(pairs.first)
     assert (np.diff(pairs.h_left) >= 0).all()
-    single = weigh_suspects(whiten_residuals(e[None], P), G, range(6)).h_left[0]
+    single = weigh_suspects(whiten_residuals(e[None], root_of(P)), G, range(6)).h_left[0]
     for i, j, sizes, left in zip(
         pairs.first, pairs.second, pairs.sizes, pairs.h_left, strict=True
     ):
@@ -184,9 +188,11 @@ def test_where_nothing_is_possible_the_best_of_all_counts():
     assert first_group(left, np.zeros((1, 3), dtype=bool)).tolist() == [[True, True, False]]
 
 
-def test_a_covariance_that_is_none_is_refused():
+def test_errors_that_leave_a_relation_without_any_are_refused():
     with pytest.raises(MisuseError):
-        whiten_residuals(np.ones((1, 2)), np.array([[1.0, 2.0], [2.0, 1.0]]))
+        whiten_residuals(np.ones((1, 2)), np.array([[1.0, 2.0], [2.0, 4.0]]))
+    with pytest.raises(MisuseError):
+        whiten_residuals(np.ones((1, 2)), np.array([[1.0, 2.0], [0.0, 0.0]]))
     with pytest.raises(MisuseError):
         whiten_residuals(np.array([[1.0, np.nan]]), np.eye(2))
 
@@ -194,3 +200,13 @@ def test_a_covariance_that_is_none_is_refused():
 def test_a_suspect_without_effect_is_refused():
     with pytest.raises(MisuseError):
         weigh_suspects(whiten_residuals(np.ones((1, 2)), np.eye(2)), np.zeros((1, 2)), [0])
+
+
+def test_sds_that_differ_by_ten_decades_keep_their_digits():
+    # two relations share an error that is huge beside what each has of its own
+    shared, own = 1e6, np.array([1e-4, 2e-4])
+    roots = np.array([[shared, own[0], 0.0], [shared, 0.0, own[1]]])
+    found = weigh_suspects(whiten_residuals(np.array([[3e-4, 0.0]]), roots), np.eye(2), [0, 1])
+    # their difference alone is known: 3e-4 with a variance of 5e-8
+    assert found.h[0] == pytest.approx(9e-8 / 5e-8, rel=1e-5)
+    assert found.sizes[0] == pytest.approx([3e-4, -3e-4], rel=1e-5)
