@@ -146,7 +146,7 @@ class Pivoting:
     def follow(self, entering: int, costs: dict[int, Any]) -> list[Any] | None:
         """Let a variable enter (primal step); where nothing stops it, the direction."""
         way = _ONE if self.worth[entering] < 0 else -_ONE
-        steps = self._steps(entering, way)
+        steps = self.steps_of(entering, way)
         low, high = self.programme.low[entering], self.programme.high[entering]
         best: tuple[Any, int, Place] | None = None
         if low is not None and high is not None:
@@ -165,8 +165,8 @@ class Pivoting:
         self._exchange(entering, best[1], best[2], costs)
         return None
 
-    def _steps(self, entering: int, way: Any) -> list[Any]:
-        """By variable: what it changes by when one outside the basis moves by one."""
+    def steps_of(self, entering: int, way: Any) -> list[Any]:
+        """By variable: what it changes by when one outside the basis moves by ``way``."""
         programme, count = self.programme, self.programme.columns
         steps = [_ZERO] * len(self.places)
         steps[entering] = way
