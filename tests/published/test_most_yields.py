@@ -92,3 +92,17 @@ def test_xylose_gives_as_much_ethanol_by_mass_as_glucose(ask):
     assert run.optimum == pytest.approx(5 / 3, abs=1e-9)
     found = next(y for y in run.yields if y.product == "ethanol")
     assert found.per_mass == pytest.approx(0.51, abs=0.005)
+
+
+def test_acetate_of_a_strain_that_makes_nothing_else(ask):
+    # 572 mM of 333 mM glucose; each hexose gives two acetyl-CoA, two CO2 and two acetate at most.
+    made = {"glucose in": 333, "acetate out": 572}
+    run = ask(HERE / "homoacetate.flux", made)
+    found = next(y for y in run.yields if y.product == "acetate" and y.substrate == "glucose")
+    assert found.per_mole == pytest.approx(1.718, abs=5e-4)
+    assert found.per_carbon == pytest.approx(0.573, abs=5e-4)
+    most = ask(HERE / "homoacetate.flux", {"glucose in": 333}, maximise="acetate")
+    assert most.optimum == pytest.approx(666, abs=1e-6)
+    assert run.rate("acetate") / most.optimum == pytest.approx(0.859, abs=5e-4)
+    # 24 - 2 x 8 electrons a hexose go to air
+    assert most.rate("oxygen") == pytest.approx(666, abs=1e-6)
