@@ -15,7 +15,7 @@ FLOOR = {
     "chemistry": 1, "exact": 1,
     "network": 2, "rates": 2,
     "reading": 3, "tables": 3, "matrices": 3,
-    "solving": 4,
+    "solving": 4, "modes": 4,
     "checks": 5, "cultivation": 5,
     "studies": 6,
     "presenting": 7,
@@ -43,8 +43,8 @@ ROOMS = {
     "xlsxwriter": {"presenting"},
     "scipy": set[str](),
     "numpy": {
-        "network/matrix.py", "network/model.py", "rates", "tables", "matrices", "solving", "checks",
-        "studies", "presenting", "api",
+        "network/matrix.py", "network/model.py", "rates", "tables", "matrices", "solving", "modes",
+        "checks", "studies", "presenting", "api",
     },
 }
 

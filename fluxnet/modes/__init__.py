@@ -1,0 +1,1 @@
+"""Elementary flux modes: the smallest sets of reactions that can run in a steady state."""
