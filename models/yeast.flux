@@ -99,3 +99,21 @@ variant acetate-nadh "acetate beyond what NADPH is needed for, by the mitochondr
 variant no-glycerol "without the redox valve growth stops: for trying out conflicts" from anaerobic
     limit  glycerol <= 0
     limit  succinate <= 0
+
+variant xylose-isomerase "xylose by way of an isomerase: no redox carrier takes part"
+    substrate  xylose
+    inside     xylulose
+    add to sugar
+        xi  : xylose -> xylulose
+        xks : xylulose + ATP -> pentose-P
+
+variant xylose-reductase "xylose by way of xylitol: each turns an NADPH into an NADH"
+    substrate  xylose
+    product    xylitol
+    inside     xylulose
+    inside     xylitol-in  C5H12O5
+    add to sugar
+        xr      : xylose + NADPH -> xylitol-in
+        xdh     : xylitol-in -> xylulose + NADH
+        xit-out : xylitol-in -> xylitol
+        xks     : xylulose + ATP -> pentose-P

@@ -92,3 +92,43 @@ def test_most_biomass_with_air(ask):
     # glucose = 0.15333 + r = 0.278229: 0.599 C-mol X per C-mol glucose.
     run = ask("yeast", {"glucose in": 1}, maximise="X")
     assert run.optimum == pytest.approx(1 / 0.27822916667, rel=1e-9)
+
+
+XYLOSE = {"glucose in": 0, "xylose in": 1}
+
+
+@pytest.mark.parametrize("aeration", ["", " * anaerobic"], ids=["air", "no-air"])
+def test_xylose_by_the_isomerase_ferments_like_glucose(ask, aeration):
+    # 5/3 triose of a xylose, each with a NADH for its ethanol; ATP xks -1, pfk -2/3, lower 10/3.
+    variant = "xylose-isomerase" + aeration
+    run = ask("yeast", XYLOSE, variant=variant, maximise="ethanol")
+    assert run.optimum == pytest.approx(5 / 3, abs=1e-9)
+    made = XYLOSE | {"ethanol out": 5 / 3, "CO2 out": 5 / 3}
+    run = ask("yeast", made, variant=variant, maximise="upkeep")
+    assert run.optimum == pytest.approx(5 / 3, abs=1e-9)
+
+
+def test_xylose_by_the_reductase_leaves_a_nadh_that_air_can_take(ask):
+    # The NADPH of xr is half a turn of zwf, a CO2: 5 - 1/2 = 3 x 3/2 trioses; the NADH of xdh takes
+    # half an oxygen.
+    run = ask("yeast", XYLOSE, variant="xylose-reductase", maximise="ethanol")
+    assert run.optimum == pytest.approx(3 / 2, abs=1e-9)
+    assert run.rate("oxygen") == pytest.approx(1 / 2, abs=1e-9)
+
+
+def test_without_air_that_nadh_costs_a_triose(ask):
+    # It ends in glycerol, or in succinate, which takes one NADH more than pyruvate made as well:
+    # 3/2 - 1 trioses are left for ethanol.
+    variant = "xylose-reductase * anaerobic"
+    run = ask("yeast", XYLOSE, variant=variant, maximise="ethanol")
+    assert run.optimum == pytest.approx(1 / 2, abs=1e-9)
+    sinks = run.rate("glycerol") + run.rate("succinate")
+    assert sinks == pytest.approx(1, abs=1e-9)
+
+
+def test_xylose_respired(ask):
+    # isomerase: substrate level 5/3 and 5/3 of kgd, quinol 10 x PO = 1. The reductase turns two
+    # electrons from NADPH to NADH, and the CO2 of zwf was never a triose: 3/2 x 2 - 1/2 - 1 + 3/2.
+    for variant, level in (("xylose-isomerase", 10 / 3), ("xylose-reductase", 3)):
+        run = ask("yeast", XYLOSE, variant=variant, maximise="upkeep")
+        assert run.optimum == pytest.approx(level + 10, abs=1e-9)
