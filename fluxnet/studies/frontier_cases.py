@@ -1,0 +1,87 @@
+"""The networks of a trade-off: combinations of variants, and the quantities in each."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from itertools import product
+
+from fluxnet.ground.diagnostic import Diagnostic, has_errors
+from fluxnet.ground.errors import InputError, MisuseError
+from fluxnet.ground.names import Name
+from fluxnet.network.model import Network
+from fluxnet.network.variant import BASE, apply_variant
+from fluxnet.studies.frontier_axis import Axis, read_axis
+from fluxnet.studies.frontier_over import find_moved_limit
+
+__all__ = ["Cases", "find_cases", "first_that_knows", "read_axes"]
+
+Cases = tuple[tuple[str, str, Network], ...]
+"""Name, label and network of each combination of variants."""
+
+_MOST_CURVES = 200
+
+
+def find_cases(
+    network: Network, across: Sequence[str]
+) -> tuple[Cases, tuple[tuple[str, str], ...]]:
+    """All combinations of variants: name, label and network; and those that make none."""
+    if not across:
+        return ((BASE, "", network),), ()
+    lists = [[part.strip() for part in text.split("|")] for text in across]
+    if any(not name for names in lists for name in names):
+        raise MisuseError(f"a variant's name is missing in --across {' '.join(across)!r}")
+    combinations = list(product(*lists))
+    if len(combinations) > _MOST_CURVES:
+        raise MisuseError(
+            f"{len(combinations)} combinations are more than a figure can show: take at most "
+            f"{_MOST_CURVES}"
+        )
+    found: list[tuple[str, str, Network]] = []
+    skipped: list[tuple[str, str]] = []
+    faults: list[Diagnostic] = []
+    for names in combinations:
+        parts = dict.fromkeys(p.strip() for n in names for p in n.split("*") if p.strip() != BASE)
+        label = " * ".join(parts) or BASE
+        changed, told = apply_variant(network, label)
+        unknown = [d for d in told if d.name is Name.UNKNOWN_VARIANT]
+        if unknown:
+            raise InputError(tuple(unknown))
+        if changed is None:
+            errors = [d for d in told if has_errors([d])]
+            faults += errors
+            skipped.append((label, "; ".join(d.message for d in errors)))
+        elif label not in [known for known, _, _ in found]:
+            found.append((label, label, changed))
+    if not found:
+        raise InputError(tuple(dict.fromkeys(faults)))
+    return tuple(found), tuple(dict.fromkeys(skipped))
+
+
+def first_that_knows(cases: Cases, over: str) -> Network:
+    """The first network that knows what is to be moved; else the first, which says so."""
+    for _, _, network in cases:
+        if any(p.name == over.strip() for p in network.parameters):
+            return network
+        try:
+            find_moved_limit(over, network)
+        except MisuseError:
+            continue
+        return network
+    return cases[0][2]
+
+
+def read_axes(cases: Cases, texts: Sequence[str]) -> tuple[Axis, ...]:
+    """The quantities, as the first network that has them all reads them.
+
+    Raises
+    ------
+    MisuseError
+        Where none has: what the first one says.
+    """
+    fault: MisuseError | None = None
+    for _, _, network in cases:
+        try:
+            return tuple(read_axis(text, network) for text in texts)
+        except MisuseError as told:
+            fault = fault or told
+    raise fault or MisuseError("there is no network")
