@@ -1,5 +1,5 @@
 # Organism     Baker's yeast (Saccharomyces cerevisiae) on glucose, ammonia and air; with the variant
-#              anaerobic also without air.
+#              anaerobic also without air, with two others on xylose.
 # Sources      General biochemistry, from memory. The biomass formula is the usual mean of textbooks.
 #              NADPH need of growth: 0.19 mol per C-mol, about 8 mmol/g (6.6 to 9.4 mmol/g are quoted
 #              for yeasts; from memory).
