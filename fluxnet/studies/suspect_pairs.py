@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from math import sqrt
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -26,6 +26,7 @@ __all__ = ["find_missing", "tell_pairs"]
 
 Array = NDArray[np.float64]
 _SHOWN = 6
+_FEW = 200
 _STANDINGS = tuple(Standing)
 _IMPOSSIBLE = _STANDINGS.index(Standing.IMPOSSIBLE)
 
@@ -36,21 +37,31 @@ def tell_pairs(judged: JudgedSuspects, run: int) -> tuple[tuple[SuspectPair, ...
     One suspect stands for each direction: the most plausible one that the size allows. Pairs
     with a direction that allows none are left out.
     """
-    plan, numbers = judged.plan, numbers_of(judged, run)
+    plan = judged.plan
     first = [plan.members(number)[0] for number in range(plan.distinct)]
     found = weigh_pairs(judged.whitened, run, plan.directions, first)
-    sides = [
-        _choose(judged, run, places, found.sizes[:, side], found.sds[:, side])
-        for side, places in enumerate((found.first, found.second))
-    ]
-    possible = np.flatnonzero((sides[0].place >= 0) & (sides[1].place >= 0))
-    if not len(possible):
+    # the best come first; how many are needed shows when one is met that is possible
+    count, near = 0, np.zeros(0, dtype=np.intp)
+    sides: tuple[_Side, ...] = ()
+    while count < len(found.h_left):
+        count = min(len(found.h_left), max(_FEW, 8 * count))
+        sides = tuple(
+            _choose(judged, run, places[:count], found.sizes[:count, k], found.sds[:count, k])
+            for k, places in enumerate((found.first, found.second))
+        )
+        possible = np.flatnonzero((sides[0].place >= 0) & (sides[1].place >= 0))
+        if len(possible):
+            reach = found.h_left[possible[0]] + chi_squared_quantile(0.95, 1)
+            near = possible[found.h_left[possible] <= reach]
+            if found.h_left[count - 1] > reach:
+                break
+    if not len(near):
         return (), 0
-    reach = found.h_left[possible[0]] + chi_squared_quantile(0.95, 1)
-    near = possible[found.h_left[possible] <= reach]
     classes = rank_standings(with_model=plan.with_model)
     ranks = np.array([classes[side.standing[near]] for side in sides])
     best = near[np.lexsort((found.h_left[near], ranks.sum(axis=0)))]
+    shown = {int(side.place[k]) for side in sides for k in best[:_SHOWN]}
+    numbers = numbers_of(judged, run, sorted(shown))
 
     def suspect(side: _Side, k: int) -> Suspect:
         return make_suspect(
@@ -80,34 +91,40 @@ def _choose(
 ) -> _Side:
     """The most plausible suspect of each direction at the size that it has in a pair.
 
-    ``sizes`` and ``sds`` are those of the suspects at ``places``, as they enter the relations.
+    ``places`` are the first suspects of their directions; ``sizes`` and ``sds`` are those of
+    them, as they enter the relations.
     """
-    plan = judged.plan
-    count = len(places)
-    chosen = np.full(count, -1, dtype=np.intp)
-    standing, size, sd = np.zeros(count, dtype=np.intp), np.zeros(count), np.zeros(count)
-    for place in np.unique(places).tolist():
-        own = plan.directions[place]
-        mine = np.flatnonzero(places == place)
-        for i in plan.members(plan.classes[place]):
-            one, other = plan.hypotheses[i], plan.directions[i]
-            factor = float(own @ other) / float(other @ other) * float(judged.factors[run, i])
-            here, its_sd = sizes[mine] * factor, sds[mine] * abs(factor)
-            stands = np.where(
-                here >= 0, _STANDINGS.index(one.positive), _STANDINGS.index(one.negative)
-            )
-            if one.row is not None:
-                alone = judged.arrays.sds[run, i] ** 2 - judged.would_be_sd[run, i] ** 2
-                slack = LIKELY * np.sqrt(np.maximum(its_sd**2 - alone, 0.0))
-                true = judged.given[run, i] - here
-                fits = (one.low - slack <= true) & (true <= one.high + slack)
-                stands = np.where(fits, stands, _IMPOSSIBLE)
-            known = chosen[mine] >= 0
-            better = (stands < _IMPOSSIBLE) & (~known | (stands < standing[mine]))
-            at = mine[better]
-            chosen[at], standing[at] = i, stands[better]
-            size[at], sd[at] = here[better], its_sd[better]
-    return _Side(chosen, standing, size, sd)
+    plan, hypotheses = judged.plan, judged.plan.hypotheses
+    classes, directions = np.array(plan.classes, dtype=np.intp), plan.directions
+    longest = max(len(plan.members(number)) for number in range(plan.distinct))
+    table = np.full((plan.distinct, longest), -1, dtype=np.intp)
+    for number in range(plan.distinct):
+        members = plan.members(number)
+        table[number, : len(members)] = members
+    # parallel directions: a size of the first one as that of each other
+    first = directions[table[classes, 0]]
+    factors = (first * directions).sum(axis=1) / np.square(directions).sum(axis=1)
+    factors *= judged.factors[run]
+    candidates = table[classes[places]]
+    there = candidates >= 0
+    size, sd = sizes[:, None] * factors[candidates], sds[:, None] * np.abs(factors[candidates])
+    positive = np.array([_STANDINGS.index(h.positive) for h in hypotheses], dtype=np.intp)
+    negative = np.array([_STANDINGS.index(h.negative) for h in hypotheses], dtype=np.intp)
+    standing = np.where(size >= 0, positive[candidates], negative[candidates])
+    alone = np.square(judged.arrays.sds[run]) - np.square(judged.would_be_sd[run])
+    slack = LIKELY * np.sqrt(np.maximum(np.square(sd) - alone[candidates], 0.0))
+    true = judged.given[run][candidates] - size
+    low, high = (np.array([getattr(h, end) for h in hypotheses]) for end in ("low", "high"))
+    outside = (true + slack < low[candidates]) | (true - slack > high[candidates])
+    standing[~there | (judged.measured[candidates] & outside)] = _IMPOSSIBLE
+    best = standing.argmin(axis=1)[:, None]
+
+    def taken(of: NDArray[Any]) -> NDArray[Any]:
+        return np.take_along_axis(of, best, axis=1)[:, 0]
+
+    possible = taken(standing) < _IMPOSSIBLE
+    place = np.where(possible, taken(candidates), -1)
+    return _Side(place, taken(standing), taken(size), taken(sd))
 
 
 def find_missing(judged: JudgedSuspects, run: int) -> MissingContent | None:

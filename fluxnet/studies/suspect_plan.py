@@ -60,6 +60,7 @@ class SuspectPlan:
     probes: Array | None = None
     with_model: bool = False
     _twins: tuple[tuple[int, ...], ...] = field(default=(), repr=False)
+    _labels: tuple[tuple[str, str], ...] = field(default=(), repr=False)
 
     @property
     def dof(self) -> int:
@@ -71,17 +72,9 @@ class SuspectPlan:
         """The number of distinct directions."""
         return max(self.classes, default=-1) + 1
 
-    @property
-    def measured(self) -> NDArray[np.bool_]:
-        """Which suspects are errors of measured values or parameters."""
-        return np.array([one.row is not None for one in self.hypotheses], dtype=np.bool_)
-
     def label(self, i: int, size: float) -> str:
         """How a suspect of some size is named: with its direction."""
-        one = self.hypotheses[i]
-        if one.kind is SuspectKind.UNMEASURED_SPECIES:
-            return f"{one.name} {'out' if size >= 0 else 'in'}"
-        return one.name if one.direction is None else f"{one.name} {one.direction.value}"
+        return self._labels[i][size < 0]
 
     def members(self, number: int) -> tuple[int, ...]:
         """The suspects of one direction."""
@@ -155,7 +148,16 @@ def plan_suspects(
         _scaled([tuple(row[j] for row in tested) for j in probed], scale) if is_sound else None,
         with_model,
         tuple(map(tuple, twins)),
+        tuple(map(_labels, kept)),
     )
+
+
+def _labels(one: Hypothesis) -> tuple[str, str]:
+    """The names of a suspect of positive and of negative size."""
+    if one.kind is SuspectKind.UNMEASURED_SPECIES:
+        return f"{one.name} out", f"{one.name} in"
+    name = one.name if one.direction is None else f"{one.name} {one.direction.value}"
+    return name, name
 
 
 def _scaled(vectors: Sequence[Sequence[Fraction]], scale: Sequence[Fraction]) -> Array:

@@ -5,6 +5,7 @@ All runs with the same rows are weighed at once; records are made of one run at 
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 from math import isfinite, sqrt
 
@@ -58,7 +59,7 @@ class JudgedSuspects:
 
     ``standing`` has the place of each one's :class:`Standing`. ``given`` and ``would_be_sd``
     are NaN for what is no measured value; ``factors`` turn a size as it enters the relations
-    into what is told.
+    into what is told. ``measured`` (suspects) marks errors of values and parameters.
     """
 
     plan: SuspectPlan
@@ -69,21 +70,16 @@ class JudgedSuspects:
     would_be_sd: Array
     standing: NDArray[np.intp]
     group: NDArray[np.bool_]
+    measured: NDArray[np.bool_]
 
 
 @record
 class RunNumbers:
-    """What was found of each suspect in one run."""
+    """What was found of some suspects in one run, by their numbers; ``sizes`` are those of all."""
 
     plan: SuspectPlan
     sizes: list[float]
-    sds: list[float]
-    h_left: list[float]
-    p: list[float]
-    separation: list[float]
-    given: list[float]
-    would_be_sd: list[float]
-    group: list[bool]
+    found: dict[int, tuple[float, ...]]
 
 
 def judge_suspects(plan: SuspectPlan, measured: MeasuredValues) -> JudgedSuspects:
@@ -123,6 +119,7 @@ def judge_suspects(plan: SuspectPlan, measured: MeasuredValues) -> JudgedSuspect
     return JudgedSuspects(
         plan, whitened, arrays, given, factors, would_be_sd, standing,
         first_group(arrays.h_left, standing != impossible),
+        np.array([row is not None for row in rows], dtype=np.bool_),
     )  # fmt: skip
 
 
@@ -135,11 +132,12 @@ def tell_suspects(judged: JudgedSuspects, run: int) -> Suspects:
     """
     from fluxnet.studies.suspect_pairs import find_missing, tell_pairs
 
-    plan, arrays, numbers = judged.plan, judged.arrays, numbers_of(judged, run)
+    plan, arrays = judged.plan, judged.arrays
     places = _ranked(judged, run)
     held = judged.group[run][places]
     group = places[held].tolist()
-    others = places[~held & plan.measured[places]].tolist()
+    others = places[~held & judged.measured[places]].tolist()
+    numbers = numbers_of(judged, run, [*group, *others])
     possible = judged.standing[run] != _STANDINGS.index(Standing.IMPOSSIBLE)
     best = arrays.h_left[run][possible].min(initial=np.inf)
     dof = plan.dof
@@ -176,14 +174,16 @@ def rank_standings(*, with_model: bool) -> NDArray[np.intp]:
     return np.array([0, 0, 1 if with_model else 0, 2, 3], dtype=np.intp)
 
 
-def numbers_of(judged: JudgedSuspects, run: int) -> RunNumbers:
-    """One run's numbers taken out of the arrays of all, once for all its suspects."""
-    arrays, plan = judged.arrays, judged.plan
-    return RunNumbers(
-        plan, arrays.sizes[run].tolist(), arrays.sds[run].tolist(), arrays.h_left[run].tolist(),
-        arrays.p[run].tolist(), arrays.separation[run].tolist(), judged.given[run].tolist(),
-        judged.would_be_sd[run].tolist(), judged.group[run].tolist(),
+def numbers_of(judged: JudgedSuspects, run: int, places: Sequence[int]) -> RunNumbers:
+    """One run's numbers of some suspects, taken out of the arrays of all at once."""
+    arrays = judged.arrays
+    some = list(places)
+    columns = (
+        arrays.sds, arrays.h_left, arrays.p, arrays.separation, judged.given,
+        judged.would_be_sd, judged.group,
     )  # fmt: skip
+    rows = zip(*(column[run][some].tolist() for column in columns), strict=True)
+    return RunNumbers(judged.plan, arrays.sizes[run].tolist(), dict(zip(some, rows, strict=True)))
 
 
 def make_suspect(told: RunNumbers, i: int, beside: tuple[float, float] | None = None) -> Suspect:
@@ -195,12 +195,13 @@ def make_suspect(told: RunNumbers, i: int, beside: tuple[float, float] | None = 
         Its size and sd where it does not stand alone.
     """
     one, number = told.plan.hypotheses[i], told.plan.classes[i]
-    size, sd = (told.sizes[i], told.sds[i]) if beside is None else beside
+    alone, h_left, p, separation, given, would_be_sd, group = told.found[i]
+    size, sd = (told.sizes[i], alone) if beside is None else beside
     is_rate = one.row is not None
-    would_be, would_be_sd = told.given[i] - size, told.would_be_sd[i]
+    would_be = given - size
     if beside is not None and is_rate:
         # what its size shares with its value is the same beside another one
-        would_be_sd = sqrt(max(0.0, sd**2 - told.sds[i] ** 2 + would_be_sd**2))
+        would_be_sd = sqrt(max(0.0, sd**2 - alone**2 + would_be_sd**2))
     standing = one.positive if size >= 0 else one.negative
     if is_rate and not _fits(one, would_be, would_be_sd):
         standing = Standing.IMPOSSIBLE
@@ -214,13 +215,13 @@ def make_suspect(told: RunNumbers, i: int, beside: tuple[float, float] | None = 
         size=shown,
         sd=sd,
         unit=one.unit,
-        h_left=told.h_left[i],
-        p=told.p[i],
-        separation=told.separation[i] if isfinite(told.separation[i]) else None,
+        h_left=h_left,
+        p=p,
+        separation=separation if isfinite(separation) else None,
         standing=standing,
-        group=1 if told.group[i] else 2,
+        group=1 if group else 2,
         direction_number=number,
-        measured=told.given[i] if is_rate else None,
+        measured=given if is_rate else None,
         would_be=would_be if is_rate else None,
         would_be_sd=would_be_sd if is_rate else None,
         why_not=_why_not(one, size, would_be) if standing is Standing.IMPOSSIBLE else None,

@@ -84,8 +84,8 @@ def seek_suspects(
     for k, ratio in enumerate(plan.ratios):
         if ratio.row is not None:
             below = arrays.denominator[some, k]
-            with np.errstate(divide="ignore"):
-                factors[:, ratio.row] = np.where(below != 0, 1 / below, np.nan)
+            # a ratio to nothing has no other value that it could have
+            factors[:, ratio.row] = np.where(below != 0, 1 / np.where(below != 0, below, 1.0), 0.0)
     judged = judge_suspects(
         suspects,
         MeasuredValues(
