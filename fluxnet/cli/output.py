@@ -34,7 +34,7 @@ ALWAYS_WRITTEN = {
 
 NAMES_OF_TABLES = frozenset({
     "alternatives", "balances", "bill", "bill_prices", "catalogue", "compound", "conflict",
-    "equations", "findings", "fluxes", "least_change", "ledger", "limits", "most_energy",
+    "equations", "findings", "fluxes", "heat", "least_change", "ledger", "limits", "most_energy",
     "overview", "parameters", "plan", "prices", "rates", "relations", "shares", "spread",
     "suspects", "unbounded", "yields",
 })  # fmt: skip

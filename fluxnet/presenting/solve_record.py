@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import Any
 
 from fluxnet.presenting.conflict_record import conflict_record
+from fluxnet.presenting.heat_record import heat_record
 from fluxnet.presenting.optimum_record import limits_record, prices_record, proof_record
 from fluxnet.presenting.plan_record import correlated_record, plan_record, shares_record
 from fluxnet.presenting.quantity_record import quantity_record
@@ -125,6 +126,7 @@ def _run(run: FluxSolution) -> Record:
             }
             for y in run.yields
         ],
+        "heat": heat_record(run.heat),
         "relations": [
             {
                 "words": relation.words,

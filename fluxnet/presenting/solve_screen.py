@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 
 from fluxnet.ground.table import Align, Column, Table
 from fluxnet.presenting.conflict_blocks import conflict_blocks, unbounded_blocks
+from fluxnet.presenting.heat_blocks import heat_caution
 from fluxnet.presenting.numbers import format_number, format_p
 from fluxnet.presenting.optimum_tables import doubt_blocks, proof_blocks
 from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence, blocks_of_run
@@ -46,7 +47,7 @@ def solve_screen(
     blocks: list[Block] = [_overview(solution)]
     for run in solution.runs:
         blocks += blocks_of_run(_run_blocks(run, with_bill, everything, shares), run.run)
-    return tuple(blocks)
+    return (*blocks, *heat_caution(solution.runs))
 
 
 def _overview(solution: Solution) -> Table:

@@ -5,6 +5,7 @@ from __future__ import annotations
 from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.network.model import QuantityKind
 from fluxnet.presenting.equation_text import equation_lines
+from fluxnet.presenting.heat_blocks import heat_blocks
 from fluxnet.presenting.numbers import format_range
 from fluxnet.presenting.optimum_tables import (
     limits_table,
@@ -40,6 +41,7 @@ def solve_tables(run: FluxSolution) -> list[Block]:
         blocks.append(_relations(run))
     if any(equation.terms for equation in run.equations):
         blocks += _equations(run)
+    blocks += heat_blocks(run)
     if run.moved:
         blocks.append(_moved(run))
     blocks += correlated_words(run)

@@ -217,6 +217,7 @@ def _account(frame: FluxSolution, fit: FluxFit, progress: Progress) -> FluxSolut
         ledger=account.ledger,
         equations=account.equations,
         yields=account.yields,
+        heat=account.heat,
     )
 
 

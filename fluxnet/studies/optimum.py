@@ -183,6 +183,7 @@ def _at_optimum(
         ledger=account.ledger,
         equations=account.equations,
         yields=account.yields,
+        heat=account.heat,
         residual=max(best.residual, ranges.residual, worst_violation(at_best, fluxes)),
     )
     return replace(solution, words=tell_optimum(solution, open_substrates(problem, solution)))

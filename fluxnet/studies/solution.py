@@ -11,6 +11,7 @@ from fluxnet.network.model import Limit, Network, Quantity
 from fluxnet.solving.flux_fit import FluxKind, FluxRelation, RateKind
 from fluxnet.studies.bill import Bill
 from fluxnet.studies.equations import NetEquation
+from fluxnet.studies.heat_run import RunHeat
 from fluxnet.studies.ledger import LedgerLine
 from fluxnet.studies.shares import Correlated, Share
 from fluxnet.studies.yields import Yield
@@ -208,6 +209,7 @@ class FluxSolution:
     ledger: tuple[LedgerLine, ...] = ()
     equations: tuple[NetEquation, ...] = ()
     yields: tuple[Yield, ...] = ()
+    heat: RunHeat | None = None
     limits: tuple[BindingLimit, ...] = ()
     prices: tuple[SpeciesPrice, ...] = ()
     proof: Proof | None = None
