@@ -22,11 +22,12 @@ if TYPE_CHECKING:
     from fluxnet.rates.measured import RatesTable, Run
     from fluxnet.studies.check import CheckResult
     from fluxnet.studies.closure_result import Closure
+    from fluxnet.studies.frontier_result import Frontier
     from fluxnet.studies.solution import Solution
 
 __all__ = [
     "Answer", "Model", "Network", "Rates", "check", "closure", "read_model", "read_model_text",
-    "read_rates", "read_rates_text", "solve", "write_model",
+    "frontier", "read_rates", "read_rates_text", "solve", "write_model",
 ]
 
 @dataclass(frozen=True)
@@ -259,6 +260,42 @@ def solve(
     screen = (*solve_screen(result), *accepted_blocks(told))
     record = solve_record(result)
     return Answer(result, Document.SOLVE, screen, record, "fluxes", told)
+
+
+def frontier(
+    network: Model | Network,
+    x: str,
+    y: str | None = None,
+    *,
+    figure: str | Path | None = None,
+    **options: Any,
+) -> Answer[Frontier]:
+    r"""The most (or least) y for each x: all break points, exact.
+
+    ``options`` are those of :func:`fluxnet.studies.frontier.find_frontier`: ``across``,
+    ``least``, ``over``, ``start``, ``stop``. ``figure`` is a file that it is drawn into; one
+    that exists is overwritten.
+
+    Examples
+    --------
+    >>> from fluxnet.cli.new import MODEL
+    >>> model = read_model_text(MODEL + "limit glucose <= 10\n")
+    >>> found = frontier(model, "mu", "ethanol")
+    >>> [(round(p.x, 3), round(p.y, 2)) for p in found.curves[0].points]
+    [(0.0, 1.6), (0.243, 16.67), (0.259, 16.45), (1.015, 0.0)]
+    """
+    from fluxnet.presenting.frontier_record import frontier_record
+    from fluxnet.presenting.frontier_screen import frontier_screen
+    from fluxnet.studies.frontier import find_frontier
+
+    result = find_frontier(_network(network), x, y, **options)
+    if figure is not None:
+        from fluxnet.presenting.frontier_figure import draw_frontier
+
+        draw_frontier(result, Path(figure), force=True)
+    told = in_order(_told(network))
+    screen = (*frontier_screen(result), *accepted_blocks(told))
+    return Answer(result, Document.FRONTIER, screen, frontier_record(result), "points", told)
 
 
 def _told(network: Model | Network | None) -> tuple[Diagnostic, ...]:

@@ -41,6 +41,7 @@ ROOMS = {
     "pint": {"chemistry/units.py", "chemistry"},
     "rich": {"presenting/terminal.py", "cli"},
     "xlsxwriter": {"presenting"},
+    "matplotlib": {"presenting/figures.py", "presenting/frontier_figure.py"},
     "scipy": set[str](),
     "numpy": {
         "network/matrix.py", "network/model.py", "rates", "tables", "matrices", "solving", "modes",

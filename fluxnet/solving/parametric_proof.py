@@ -140,7 +140,7 @@ def prove_path(
     except Unproven as fault:
         words = f"Not proven: {fault}"
         return ProvenPath(_unproven(path), (), (), Proof(False, 0.0, words))
-    words = f"All {len(breaks)} points are proven in exact arithmetic"
+    words = f"The {len(breaks)} points are proven in exact arithmetic"
     if len(breaks) == 1:
         words = "The point is proven in exact arithmetic"
     return ProvenPath(breaks, low_holds, high_holds, Proof(True, 0.0, words))

@@ -119,7 +119,8 @@ def find_frontier(
     lower = frame[0]
     if len(frame) == 1 and setting is not None:
         lower = Axis((), _setting_name(setting), setting.unit)
-    unit = slope_unit(upper, lower.name, lower.unit)
+    below = setting.name if setting is not None and len(frame) == 1 else lower.name
+    unit = slope_unit(upper, below, lower.unit)
     for k, (variant, label, case) in enumerate(cases):
         progress("curves", k, len(cases))
         try:

@@ -9,7 +9,7 @@ from fluxnet.network.model import Direction, Network
 from fluxnet.solving.parametric import Extreme
 from fluxnet.solving.parametric_proof import Break, Change, ChangeKind, Hold
 from fluxnet.solving.problem import Problem, RowKind
-from fluxnet.solving.words import number_words
+from fluxnet.solving.words import number_words, quantity_words
 from fluxnet.studies.frontier_result import Curve, CurveStatus, FrontierPoint
 
 __all__ = ["ROOM", "change_words", "hold_words", "tell_curve", "tell_curves"]
@@ -17,7 +17,8 @@ __all__ = ["ROOM", "change_words", "hold_words", "tell_curve", "tell_curves"]
 ROOM = "room"
 """The column of what is left up to a moved limit."""
 
-_LIMITS = (RowKind.LIMIT, RowKind.MEASURED_LIMIT, RowKind.MEASUREMENT)
+_MEASURED = (RowKind.MEASURED_LIMIT, RowKind.MEASUREMENT)
+_LIMITS = (RowKind.LIMIT, *_MEASURED)
 
 
 def change_words(changes: Sequence[Change], problem: Problem) -> tuple[str, ...]:
@@ -46,6 +47,10 @@ def _one_change(leaves: bool, hold: Hold, problem: Problem) -> str:
         return f"{name} {'leaves' if leaves else 'reaches'} {number_words(hold.bound)}"
     assert hold.row is not None
     row = problem.rows[hold.row]
+    if row.kind in _MEASURED and row.quantity is not None:
+        # held within some sds: which of the two ends it is has to be said
+        name = quantity_words(row.quantity)
+        return f"{name} {'leaves' if leaves else 'reaches'} {number_words(hold.bound)}"
     if row.kind in _LIMITS:
         return f"{row.name} {'no longer binds' if leaves else 'starts to bind'}"
     what = f"surplus of {row.name}"
@@ -57,10 +62,13 @@ def _one_change(leaves: bool, hold: Hold, problem: Problem) -> str:
 
 def hold_words(holds: Sequence[Hold], problem: Problem) -> str:
     """The limits among what holds an end of x."""
+    rows = [(problem.rows[h.row], h.bound) for h in holds if h.row is not None]
     names = [
-        problem.rows[hold.row].name
-        for hold in holds
-        if hold.row is not None and problem.rows[hold.row].kind in _LIMITS
+        f"{quantity_words(row.quantity)} {number_words(bound)}"
+        if row.kind in _MEASURED and row.quantity is not None
+        else row.name
+        for row, bound in rows
+        if row.kind in _LIMITS
     ]
     return ", ".join(dict.fromkeys(names))
 
@@ -84,6 +92,7 @@ def tell_curve(
             f"{_n(first.y)} {y_unit}".rstrip() + "."
         )
     parts: list[str] = []
+    is_told = False
     for k, (start, stop, slopes) in enumerate(_runs(breaks)):
         origin = f" from {_n(start.y)} {y_unit}".rstrip() + f" at {x} {_n(start.x)}"
         if not _way(start, stop):
@@ -91,7 +100,8 @@ def tell_curve(
             parts.append(f"{'stays there' if k else level} to {_n(stop.x)}")
             continue
         verb = "rises" if stop.y > start.y else "falls"
-        steep = f"{_n(slopes[0])} {slope_unit}"
+        steep = f"{_n(slopes[0])} {slope_unit if not is_told else ''}".rstrip()
+        is_told = True
         if _n(slopes[0]) != _n(slopes[-1]):
             steep += f" at first, {_n(slopes[-1])} at the end"
         end = f" to {_n(stop.y)} at {_n(stop.x)} ({steep})"
@@ -143,11 +153,13 @@ def tell_curves(curves: Sequence[Curve], x: str, y: str, network: Network, extre
     ranked = sorted(found, key=lambda c: end_of(c).y, reverse=is_most)
     first = end_of(ranked[0])
     alike = [c.label for c in ranked if abs(end_of(c).y - first.y) <= 1e-9 * max(1, abs(first.y))]
-    words = f"The {extreme.value} {y} of all, {_n(first.y)} at {x} {_n(first.x)}: {_listed(alike)}."
+    words = f"The {extreme.value} {y} of all, {_n(first.y)} at {x} {_n(first.x)}, is that of "
+    words += _listed(alike)
     farthest = max(c.points[-1].x for c in found)
     reach = [c.label for c in found if abs(c.points[-1].x - farthest) <= 1e-9 * max(1, farthest)]
-    if len(reach) < len(found) or len(alike) < len(found):
-        words += f" Farthest in {x}, to {_n(farthest)}: {_listed(reach)}."
+    if len(reach) < len(found):
+        words += f"; {x} goes farthest, to {_n(farthest)}, in {_listed(reach)}"
+    words += "."
     none = [c.label for c in curves if c.status not in (CurveStatus.TRACED, CurveStatus.POINT)]
     return words + (f" No curve: {_listed(none)}." if none else "")
 

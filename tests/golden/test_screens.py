@@ -43,6 +43,8 @@ SCREENS = {
     "infeasible": ["solve", "tw4.flux", "rates.csv", "--run", "W14", "--maximise", "mu"],
     "optimum": ["solve", "tw4.flux", "rates.csv", "--run", "W15", "--maximise", "2,3-butanediol"],
     "unbounded": ["solve", "tw4.flux", "--maximise", "2,3-butanediol"],
+    "frontier": ["frontier", "tw4.flux", "mu", "2,3-butanediol", "--over", "glucose",
+                 "--from", "2", "--to", "8"],
     "explain": ["explain", "unbalanced-line"],
     "catalogue": ["catalogue", "acetic", "acid"],
 }
