@@ -140,7 +140,7 @@ def test_molar_masses_agree_with_the_reference_package(compound: Compound) -> No
 
 @pytest.mark.parametrize(("compound", "heat"), BURNT)
 def test_combustion_heats_lie_near_115_kj_per_electron(compound: Compound, heat: float) -> None:
-    """115 kJ per electron with nitrogen as N2, sd 8 (published entry 6.2): within two of them.
+    """115 kJ per electron with nitrogen as N2, sd 8 (Roels 1983; from memory): within two of them.
 
     Hydrogen and carbon monoxide are known outliers (143 and 142 kJ per electron).
     """
