@@ -23,6 +23,7 @@ if TYPE_CHECKING:
         read_model_text,
         read_rates,
         read_rates_text,
+        routes,
         solve,
         write_model,
     )
@@ -46,6 +47,7 @@ __all__ = [
     "read_model_text",
     "read_rates",
     "read_rates_text",
+    "routes",
     "solve",
     "write_model",
 ]

@@ -23,11 +23,12 @@ if TYPE_CHECKING:
     from fluxnet.studies.check import CheckResult
     from fluxnet.studies.closure_result import Closure
     from fluxnet.studies.frontier_result import Frontier
+    from fluxnet.studies.routes_result import Routes
     from fluxnet.studies.solution import Solution
 
 __all__ = [
     "Answer", "Model", "Network", "Rates", "check", "closure", "read_model", "read_model_text",
-    "frontier", "read_rates", "read_rates_text", "solve", "write_model",
+    "frontier", "read_rates", "read_rates_text", "routes", "solve", "write_model",
 ]
 
 @dataclass(frozen=True)
@@ -296,6 +297,29 @@ def frontier(
     told = in_order(_told(network))
     screen = (*frontier_screen(result), *accepted_blocks(told))
     return Answer(result, Document.FRONTIER, screen, frontier_record(result), "points", told)
+
+
+def routes(network: Model | Network, **options: Any) -> Answer[Routes]:
+    r"""The elementary routes of a network: elementary flux modes, in whole numbers.
+
+    ``options`` are those of :func:`fluxnet.studies.routes.find_routes`: ``substrate``,
+    ``product``, ``best``, ``drain``, ``open_carriers``, ``keep_above``, ``memory``.
+
+    Examples
+    --------
+    >>> from fluxnet.cli.new import MODEL
+    >>> found = routes(read_model_text(MODEL), substrate="glucose", product="ethanol")
+    >>> found.count, float(found.groups[0].product_yield)
+    (4, 2.0)
+    """
+    from fluxnet.presenting.routes_record import routes_record
+    from fluxnet.presenting.routes_screen import routes_screen
+    from fluxnet.studies.routes import find_routes
+
+    result = find_routes(_network(network), **options)
+    told = in_order(_told(network))
+    screen = (*routes_screen(result), *accepted_blocks(told))
+    return Answer(result, Document.ROUTES, screen, routes_record(result), "routes", told)
 
 
 def _told(network: Model | Network | None) -> tuple[Diagnostic, ...]:

@@ -43,6 +43,8 @@ COMMANDS: tuple[Command, ...] = (
             "fluxnet solve model.flux --maximise ethanol"),
     Command("frontier", "frontier", "What does more of one thing cost of another?",
             "fluxnet frontier model.flux mu ethanol"),
+    Command("routes", "routes", "By which routes can it get there, and what would have to go?",
+            "fluxnet routes model.flux --from glucose --to ethanol"),
     Command("demo", "demo", "Show me the whole job on an example.", "fluxnet demo"),
     Command("new", "new", "Give me a folder to start from.", "fluxnet new my-strain"),
     Command("catalogue", "catalogue", "Which compounds does it know?",

@@ -29,15 +29,16 @@ ALWAYS_WRITTEN = {
     Document.SOLVE: ("overview",),
     Document.CATALOGUE: (),
     Document.CHECK: ("findings",),
+    Document.ROUTES: ("routes", "route_reactions"),
     Document.FRONTIER: ("points",),
 }
 """The tables that a command writes whatever its answer is."""
 
 NAMES_OF_TABLES = frozenset({
     "alternatives", "balances", "bill", "bill_prices", "catalogue", "compound", "conflict",
-    "equations", "findings", "fluxes", "heat", "least_change", "ledger", "limits", "most_energy",
-    "overview", "parameters", "plan", "points", "prices", "rates", "relations", "shares", "spread",
-    "suspects", "unbounded", "yields",
+    "cuts", "equations", "findings", "fluxes", "heat", "least_change", "ledger", "limits",
+    "most_energy", "overview", "parameters", "plan", "points", "prices", "rates", "relations",
+    "route_reactions", "routes", "shares", "spread", "suspects", "unbounded", "yields",
 })  # fmt: skip
 """Every table that some command writes."""
 

@@ -24,15 +24,11 @@ from fluxnet.ground.progress import Progress, silent
 from fluxnet.ground.record import record
 from fluxnet.modes.compression import SmallCone, compress
 from fluxnet.modes.cone import Cone
-from fluxnet.modes.pairs import small_unions
+from fluxnet.modes.pairs import room_for, small_unions
 from fluxnet.modes.subsets import holds_third, plant
 from fluxnet.modes.whole import Whole, combined, reduced, times, whole_rows
 
 __all__ = ["Ending", "Modes", "Step", "find_modes"]
-
-_SLACK = 64_000_000
-"""Bytes that portions of pairs and the tree take beside the rays."""
-
 
 class Ending(Enum):
     """How a search ended."""
@@ -121,7 +117,7 @@ class _Rays:
     def __init__(self, cone: Cone, small: SmallCone, memory: float | None) -> None:
         self.names = [cone.columns[g.members[0][0]] for g in small.groups]
         self.both_ways = np.array([g.both_ways for g in small.groups], dtype=bool)
-        self.memory, self.needed = memory, 0
+        self.memory, self.needed, self._room = memory, 0, 0
         self.steps: list[Step] = []
         self.waiting = [j for j in range(len(small.groups)) if j not in small.free]
         self._bits(small)
@@ -184,6 +180,9 @@ class _Rays:
         if len(up) and len(down):
             # Neighbours are zero together on all but two of the dimensions.
             most = 2 + len(self.steps)
+            self._room = room_for(len(up), len(down), self.words)
+            if not self._fits(kept):
+                return None
             tree = plant(self.patterns)
             portions = small_unions(self.patterns[up], self.patterns[down], most, self.turning)
             for some in portions:
@@ -199,7 +198,7 @@ class _Rays:
         """Whether so many rays can be held beside those at hand, and lifted at the end."""
         wide = self._wide * (5 if self.values.dtype == object else 1)
         step = wide * (len(self.values) + 2 * after) + 16 * after
-        self.needed = int(max(step, (wide + self._lifted) * after)) + _SLACK
+        self.needed = int(max(step, (wide + self._lifted) * after) + self._room)
         return self.memory is None or self.needed <= self.memory
 
     def _bits(self, small: SmallCone) -> None:

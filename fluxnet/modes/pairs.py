@@ -13,7 +13,7 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
 
-__all__ = ["Candidates", "small_unions", "sorted_order"]
+__all__ = ["Candidates", "room_for", "small_unions"]
 
 Patterns = NDArray[np.uint64]
 Places = NDArray[np.intp]
@@ -33,7 +33,14 @@ class Candidates:
     unions: Patterns
 
 
-def sorted_order(patterns: Patterns) -> Places:
+def room_for(left: int, right: int, words: int) -> int:
+    """About the bytes that looking at pairs of two such lists takes at most."""
+    blocks = (left // _BLOCK + 1) * (right // _BLOCK + 1)
+    at_once = min(left * right, _PORTION + _AT_ONCE * _BLOCK * _BLOCK)
+    return 20 * blocks + at_once * (40 + 24 * words)
+
+
+def _sorted_order(patterns: Patterns) -> Places:
     """Places in an order that puts like patterns side by side."""
     return np.lexsort(patterns.T)
 
@@ -52,7 +59,7 @@ def small_unions(
         Of each word the even bits that, with the next bit, are the two directions of one
         column: a union with both is left out.
     """
-    first, second = sorted_order(left), sorted_order(right)
+    first, second = _sorted_order(left), _sorted_order(right)
     blocks = [_blocks(left[first]), _blocks(right[second])]
     shared = [np.bitwise_and.reduce(b, axis=1) for b in blocks]
     count_type = np.uint8 if left.shape[1] < 4 else np.uint16

@@ -34,6 +34,7 @@ class Document(StrEnum):
     CLOSURE = "closure/1"
     SOLVE = "solve/1"
     CATALOGUE = "catalogue/1"
+    ROUTES = "routes/1"
     FRONTIER = "frontier/1"
 
 

@@ -44,7 +44,8 @@ class RouteSystem:
     ``turned`` marks reactions that can only run backwards: their column is minus the flux.
     ``releases`` are the releases of what crosses the boundary (opened and drained carriers
     too) by column; ``energy`` what is left over of carriers, by column. ``sizes`` are limits
-    that take no part, because they are about sizes.
+    that take no part, because they are about sizes. ``balances`` are those of the species that
+    have to balance; ``shut`` are reactions that limits, or the question itself, let not run.
     """
 
     network: Network
@@ -53,6 +54,8 @@ class RouteSystem:
     releases: tuple[tuple[str, SparseRow], ...]
     energy: tuple[tuple[str, SparseRow], ...]
     sizes: tuple[str, ...]
+    balances: tuple[tuple[str, SparseRow], ...]
+    shut: frozenset[int]
 
 
 def plain_spenders(network: Network, carrier: str) -> tuple[Reaction, ...]:
@@ -88,6 +91,9 @@ def route_system(network: Network, openings: Openings) -> RouteSystem:
     sides += [rows[name] for name in (openings.made,) if name]
     ways = _ways(len(network.reactions), sides)
     balances = [ways.of(row) for row in equal]
+    held = [f.row for f in whole.equal if f.kind is not FormKind.BALANCE]
+    shut = {j for row in held if len(row) == 1 for j in row}
+    shut |= {j for j, r in enumerate(network.reactions) if ways.shut[j] or r.name in halted}
     names = [r.name for r in network.reactions]
 
     def leave(row: SparseRow, name: str) -> SparseRow:
@@ -97,14 +103,14 @@ def route_system(network: Network, openings: Openings) -> RouteSystem:
         return {len(names) - 1: ONE}
 
     for row in sides:
-        held = ways.of(row)
-        if len(held) > 1 and not all(v > 0 and not ways.both[j] for j, v in held.items()):
-            if any(v > 0 or ways.both[j] for j, v in held.items()):
+        side = ways.of(row)
+        if len(side) > 1 and not all(v > 0 and not ways.both[j] for j, v in side.items()):
+            if any(v > 0 or ways.both[j] for j, v in side.items()):
                 leave(row, f"role {len(names) - len(network.reactions) + 1}")
             else:
-                balances.append(held)
-        elif len(held) == 1 and ways.shut[next(iter(held))]:
-            balances.append(held)
+                balances.append(side)
+        elif len(side) == 1 and ways.shut[next(iter(side))]:
+            balances.append(side)
     energy = [(name, leave(rows[name], f"{name} surplus")) for name in openings.drained]
     releases = [(s.name, ways.of(rows[s.name])) for s in network.boundary]
     releases += [(name, ways.of(rows[name])) for name in openings.opened]
@@ -122,6 +128,10 @@ def route_system(network: Network, openings: Openings) -> RouteSystem:
         tuple(releases),
         tuple(energy),
         tuple(limit_words(x, network) for x in network.limits if not _is_sign(x)),
+        tuple(
+            (s.name, ways.of(rows[s.name])) for s in network.balanced if s.name not in left_open
+        ),
+        frozenset(shut),
     )
 
 

@@ -10,23 +10,43 @@ _MOST = 4
 
 
 def why_none(system: RouteSystem) -> str:
-    """What keeps every reaction from running, as far as single balances tell."""
-    network, cone = system.network, system.cone
+    """What keeps every reaction from running, as far as single balances tell.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> from fluxnet.studies.routes_system import Openings, route_system
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... inside    pyruvate
+    ... carrier   ATP, NADH
+    ... compartment a
+    ...     lump : glucose -> 2 pyruvate + 2 ATP + 2 NADH
+    ...     burn : ATP -> nothing
+    ... ''').network
+    >>> why_none(route_system(network, Openings()))
+    'NADH is made (lump), and nothing uses it; pyruvate is made (lump), and nothing uses it.'
+    """
+    cone = system.cone
+    names = [r.name for r in system.network.reactions]
     told: list[str] = []
-    for species in network.balanced:
-        uses = [(r, sign) for r in network.reactions for sign, t in r.terms
-                if t.species == species.name]  # fmt: skip
-        ways = {sign for r, sign in uses} | {-sign for r, sign in uses if r.reversible}
-        if len({r.name for r, _ in uses}) == 1 or len(ways) == 1:
-            one = uses[0][0].name
-            how = "made" if ways == {1} else "used" if ways == {-1} else f"in {one} alone"
-            told.append(f"{species.name} is only {how}" if "alone" not in how else
-                        f"{species.name} stands {how}")  # fmt: skip
+    for name, row in system.balances:
+        open_ = {j: a for j, a in row.items() if j not in system.shut}
+        runs = ", ".join(names[j] for j in open_)
+        both = [j for j in open_ if cone.both_ways[j]]
+        if not open_ or (both and len(open_) > 1):
+            continue
+        if both:
+            told.append(f"{name} takes part in {runs} alone")
+        elif all(a > 0 for a in open_.values()):
+            told.append(f"{name} is made ({runs}), and nothing uses it")
+        elif all(a < 0 for a in open_.values()):
+            told.append(f"{name} is used ({runs}), and nothing makes it")
     if told:
-        more = f", and {len(told) - _MOST} more" if len(told) > _MOST else ""
-        return f"{'; '.join(told[:_MOST])}{more}."
-    if not cone.rows:
-        return "The model has no reaction that could run."
+        more = f"; so it is with {len(told) - _MOST} more" if len(told) > _MOST else ""
+        return f"{'; '.join(sorted(told)[:_MOST])}{more}."
+    if len(system.shut) == len(names):
+        return "Limits shut every reaction."
     return (
         "Every species is made and used somewhere, but no proportion of the reactions balances "
         "all of them: fluxnet check tells which reactions can carry no flux, and why."

@@ -45,6 +45,9 @@ SCREENS = {
     "unbounded": ["solve", "tw4.flux", "--maximise", "2,3-butanediol"],
     "frontier": ["frontier", "tw4.flux", "mu", "2,3-butanediol", "--over", "glucose",
                  "--from", "2", "--to", "8"],
+    "routes": [
+        "routes", "tw4.flux", "--from", "glucose", "--to", "2,3-butanediol", "--keep-above", "0.8",
+    ],
     "explain": ["explain", "unbalanced-line"],
     "catalogue": ["catalogue", "acetic", "acid"],
 }

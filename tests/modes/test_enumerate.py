@@ -124,11 +124,11 @@ def test_an_interrupted_search_keeps_what_it_found() -> None:
 
 
 def test_a_bound_on_memory_stops_the_search_before_it_is_passed() -> None:
-    modes = find_modes(wide_cone(16), memory=80e6)
+    modes = find_modes(wide_cone(16), memory=20e6)
 
     assert modes.ending is Ending.MEMORY
-    assert modes.needed > 80e6
-    assert modes.values.nbytes < 16e6
+    assert modes.needed > 20e6
+    assert modes.values.nbytes < 20e6
 
 
 @pytest.mark.parametrize(("rows", "found"), [((), [[1]]), (({0: ONE},), [])])
