@@ -67,16 +67,16 @@ class PathEnd(Enum):
 class Piece:
     """A straight piece: y at its two ends, its slope, and the bases that it passes through.
 
-    ``first`` and ``last`` are the places (fluxes, then rows, then the moved row) where it
-    begins and where it ends.
+    ``first`` and ``last`` are the places (fluxes, then rows, then the moved row; numbers of
+    :class:`fluxnet.exact.simplex.Place`) where it begins and where it ends.
     """
 
     start: float
     stop: float
     y_start: float
     slope: float
-    first: tuple[Place, ...]
-    last: tuple[Place, ...]
+    first: tuple[int, ...]
+    last: tuple[int, ...]
 
 
 @record
@@ -207,9 +207,7 @@ def _pieces(table: BasisTable, start: float, stop: float, sign: int) -> tuple[Pi
 def _add(
     pieces: list[Piece], start: float, stop: float, y: float, slope: float, held: NDArray[np.int_]
 ) -> None:
-    from fluxnet.exact.simplex import Place
-
-    places = tuple([Place(k) for k in held.tolist()])
+    places = tuple(held.tolist())
     before = pieces[-1] if pieces else None
     if before is not None and abs(before.slope - slope) <= _SAME * max(1.0, abs(slope)):
         pieces[-1] = Piece(before.start, stop, before.y_start, before.slope, before.first, places)

@@ -191,6 +191,13 @@ def _hold(programme: ExactProgramme, k: int, bound: Any) -> Hold | None:
     return Hold(k, None, value) if k < count else Hold(None, k - count, value)
 
 
+_PLACES = tuple(Place)
+
+
+def _places(numbers: Sequence[int]) -> tuple[Place, ...]:
+    return tuple([_PLACES[k] for k in numbers])
+
+
 def _proven(
     programme: ExactProgramme, path: Path, start: Any, stop: Any
 ) -> tuple[Break, ...]:
@@ -199,10 +206,12 @@ def _proven(
     try:
         if start == stop or path.end is PathEnd.POINT:
             raise Unproven("a single point")
-        lines = [prove_line(programme, piece.first, piece.last) for piece in path.pieces]
+        lines = [
+            prove_line(programme, _places(p.first), _places(p.last)) for p in path.pieces
+        ]
         corners = find_corners(programme, lines, start, stop)
     except Unproven:
-        lines = search_lines(programme, path.pieces[0].first, start, stop)
+        lines = search_lines(programme, _places(path.pieces[0].first), start, stop)
         corners = find_corners(programme, lines, start, stop)
     return _breaks(programme, path.extreme, lines, corners)
 

@@ -32,7 +32,8 @@ class BasisTable:
 
     ``outside`` are the variables at a bound, one a column of the table; ``table`` is what each
     variable changes by per unit of each of them; ``worth`` what the cost changes by. The moved
-    row has its present value ``at`` as both of its bounds.
+    row has its present value ``at`` as both of its bounds; ``column`` is its column, None while
+    it is in the basis, and ``rates`` is what each variable changes by while it rises by one.
     """
 
     def __init__(
@@ -48,6 +49,8 @@ class BasisTable:
         self.low[self.moved] = self.high[self.moved] = at
         self.outside = np.flatnonzero(self.places != _BASIC)
         self._pivots = 0
+        found = np.flatnonzero(self.outside == self.moved)
+        self.column = int(found[0]) if found.size else None
         self._make()
 
     def _make(self) -> None:
@@ -62,6 +65,17 @@ class BasisTable:
         self.table = self._all @ inverse
         self.worth = self._cost @ inverse
         self.values = self.table @ self._held()
+        self._turn()
+
+    def _turn(self) -> None:
+        """The rates at a new basis; traces are zero."""
+        if self.column is not None:
+            rates = self.table[:, self.column].copy()
+            rates[np.abs(rates) <= _NEAR * np.abs(rates).max()] = 0.0
+            rates[self.outside] = 0.0
+            self._up, self._down = np.flatnonzero(rates > 0), np.flatnonzero(rates < 0)
+            rates[self.moved] = 1.0
+            self.rates = rates
 
     def _held(self) -> Vector:
         """The values of what stands at a bound."""
@@ -70,42 +84,27 @@ class BasisTable:
         return np.where(places == _FREE, 0.0, held)
 
     @property
-    def column(self) -> int | None:
-        """The column of the moved row, None while it is in the basis."""
-        found = np.flatnonzero(self.outside == self.moved)
-        return int(found[0]) if found.size else None
-
-    @property
     def cost(self) -> float:
         """What the fluxes cost."""
         return float(self.worth @ self._held())
 
-    @property
-    def rates(self) -> Vector:
-        """What each variable changes by while the moved row rises by one; traces are zero."""
-        column = self.column
-        if column is None:
-            raise ValueError("the moved row is in the basis")
-        rates: Vector = self.table[:, column].copy()
-        rates[np.abs(rates) <= _NEAR * np.abs(rates).max()] = 0.0
-        return rates
-
     def stopped(self) -> tuple[int, bool] | None:
         """The first variable of the basis at a bound that it is about to pass, and if upwards."""
-        rates, room = self.rates, _NEAR * np.maximum(1.0, np.abs(self.values))
-        basic = self.places == _BASIC
-        over = basic & (rates > 0) & (self.values >= self.high - room)
-        under = basic & (rates < 0) & (self.values <= self.low + room)
-        found = np.flatnonzero(over | under)
-        return (int(found[0]), bool(over[found[0]])) if found.size else None
+        first: list[tuple[int, bool]] = []
+        for upwards, moving in ((True, self._up), (False, self._down)):
+            values = self.values[moving]
+            left = self.high[moving] - values if upwards else values - self.low[moving]
+            passed = moving[left <= _NEAR * np.maximum(1.0, np.abs(values))]
+            if passed.size:
+                first.append((int(passed[0]), upwards))
+        return min(first) if first else None
 
     def room(self) -> float:
         """How far the moved row can rise until some variable meets a bound."""
-        rates, basic = self.rates, self.places == _BASIC
-        up, down = basic & (rates > 0), basic & (rates < 0)
+        up, down = self._up, self._down
         steps = np.concatenate([
-            (self.high[up] - self.values[up]) / rates[up],
-            (self.low[down] - self.values[down]) / rates[down],
+            (self.high[up] - self.values[up]) / self.rates[up],
+            (self.low[down] - self.values[down]) / self.rates[down],
         ])  # fmt: skip
         return max(0.0, float(steps.min(initial=np.inf)))
 
@@ -153,6 +152,10 @@ class BasisTable:
         self.worth = self.worth - (self.worth[column] / pivot) * row
         self.table = self.table - np.outer(self.table[:, column] / pivot, row)
         self.outside[column] = leaving
+        if leaving == self.moved:
+            self.column = column
         self._pivots += 1
         if self._pivots % _FRESH == 0:
             self._make()
+        else:
+            self._turn()
