@@ -22,13 +22,14 @@ if TYPE_CHECKING:
     from fluxnet.rates.measured import RatesTable, Run
     from fluxnet.studies.check import CheckResult
     from fluxnet.studies.closure_result import Closure
+    from fluxnet.studies.compare_result import Comparison
     from fluxnet.studies.frontier_result import Frontier
     from fluxnet.studies.routes_result import Routes
     from fluxnet.studies.solution import Solution
 
 __all__ = [
-    "Answer", "Model", "Network", "Rates", "check", "closure", "read_model", "read_model_text",
-    "frontier", "read_rates", "read_rates_text", "routes", "solve", "write_model",
+    "Answer", "Model", "Network", "Rates", "check", "closure", "compare", "frontier", "read_model",
+    "read_model_text", "read_rates", "read_rates_text", "routes", "solve", "write_model",
 ]
 
 @dataclass(frozen=True)
@@ -261,6 +262,41 @@ def solve(
     screen = (*solve_screen(result), *accepted_blocks(told))
     record = solve_record(result)
     return Answer(result, Document.SOLVE, screen, record, "fluxes", told)
+
+
+def compare(
+    network: Model | Network,
+    product: str,
+    substrate: str,
+    across: tuple[str, ...] | list[str] = (),
+    reserve: str | list[str] | None = None,
+    *,
+    detail: tuple[str, ...] | list[str] = (),
+    **options: Any,
+) -> Answer[Comparison]:
+    r"""What each variant can make of a substrate at most, ranked.
+
+    ``options`` are those of :func:`fluxnet.studies.compare.compare`: ``uptake``, ``beside``,
+    ``staircase``, ``measured``, ``draws``. ``detail`` names variants that are shown in full.
+
+    Examples
+    --------
+    >>> from fluxnet.cli.new import MODEL
+    >>> more = "variant anaerobic\n    limit oxygen <= 0\n"
+    >>> found = compare(read_model_text(MODEL + more), "ethanol", "glucose", draws=0)
+    >>> [(a.name, a.rank, str(a.final.moles)) for a in found.abilities]
+    [('base', 1, '2'), ('anaerobic', 1, '2')]
+    """
+    from fluxnet.presenting.compare_record import compare_record
+    from fluxnet.presenting.compare_screen import compare_screen
+    from fluxnet.studies.compare import compare as compare_variants
+
+    result = compare_variants(
+        _network(network), product, substrate, across, reserve, **options
+    )
+    told = in_order(_told(network))
+    screen = (*compare_screen(result, detail=detail), *accepted_blocks(told))
+    return Answer(result, Document.COMPARE, screen, compare_record(result), "variants", told)
 
 
 def frontier(

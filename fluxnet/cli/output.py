@@ -29,16 +29,18 @@ ALWAYS_WRITTEN = {
     Document.SOLVE: ("overview",),
     Document.CATALOGUE: (),
     Document.CHECK: ("findings",),
-    Document.ROUTES: ("routes", "route_reactions"),
     Document.FRONTIER: ("points",),
+    Document.ROUTES: ("routes", "route_reactions"),
+    Document.COMPARE: ("variants",),
 }
 """The tables that a command writes whatever its answer is."""
 
 NAMES_OF_TABLES = frozenset({
-    "alternatives", "balances", "bill", "bill_prices", "catalogue", "compound", "conflict",
-    "cuts", "equations", "findings", "fluxes", "heat", "least_change", "ledger", "limits",
-    "most_energy", "overview", "parameters", "plan", "points", "prices", "rates", "relations",
-    "route_reactions", "routes", "shares", "spread", "suspects", "unbounded", "yields",
+    "alternatives", "balances", "bill", "bill_prices", "by_products", "carriers", "catalogue",
+    "compound", "conflict", "cuts", "destinations", "equations", "findings", "fluxes", "heat",
+    "holding", "least_change", "ledger", "limits", "mode_yields", "most_energy", "odds",
+    "overview", "parameters", "plan", "points", "prices", "rates", "relations", "route_reactions",
+    "routes", "shares", "spread", "staircase", "suspects", "unbounded", "variants", "yields",
 })  # fmt: skip
 """Every table that some command writes."""
 

@@ -34,8 +34,9 @@ class Document(StrEnum):
     CLOSURE = "closure/1"
     SOLVE = "solve/1"
     CATALOGUE = "catalogue/1"
-    ROUTES = "routes/1"
     FRONTIER = "frontier/1"
+    ROUTES = "routes/1"
+    COMPARE = "compare/1"
 
 
 @record

@@ -171,7 +171,8 @@ class Terminal:
             self._text_width(console),
             self._plain("─"),
         )
-        self._print_whole(console, head, "bold")
+        for line in head.split("\n"):
+            self._print_whole(console, line, "bold")
         print(rule, *lines, sep="\n", file=self.stream)
         for note in table.notes:
             self._print(console, "  " + note, "dim")

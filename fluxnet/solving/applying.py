@@ -92,7 +92,11 @@ def free_species(
 
     ``bounds`` are the rows with their low and high.
     """
-    known, rows = tuple(measured), tuple(bounds)
+    known = tuple(measured)
+    limited: dict[str, list[tuple[Quantity, float, float]]] = {}
+    for row, low, high in bounds:
+        if row.quantity is not None and row.quantity.kind is QuantityKind.RATE:
+            limited.setdefault(row.quantity.name, []).append((row.quantity, low, high))
     free: list[str] = []
     for species in network.boundary:
         way = default_direction(species.role)
@@ -100,14 +104,10 @@ def free_species(
         if any(is_same(own, q, network) for q in known):
             continue
         low, high = -inf, inf
-        for row, a, b in rows:
-            if row.quantity == own:
+        for quantity, a, b in limited.get(species.name, ()):
+            if quantity.direction is way:
                 low, high = max(low, a), min(high, b)
-            elif (
-                row.quantity is not None
-                and row.quantity.kind is QuantityKind.RATE
-                and row.quantity.name == species.name
-            ):
+            else:
                 low, high = max(low, -b), min(high, -a)
         if low < high:
             free.append(species.name)

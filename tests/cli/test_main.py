@@ -96,6 +96,8 @@ def test_check_loads_neither_scipy_nor_pandas_nor_matplotlib(folder: Path) -> No
         ["check", "missing.flux", "--tidy", "--json"],
         ["closure", "missing.csv", "--json"],
         ["solve", "missing.flux", "--json"],
+        ["compare", "missing.flux", "--product", "ethanol", "--from", "glucose", "--json"],
+        ["compare", "model.flux", "--product", "ethanol", "--from", "glucose", "--json"],
     ],
     ids=" ".join,
 )

@@ -17,6 +17,7 @@ COMMANDS = {
     Document.CLOSURE: ["closure", "rates.csv"],
     Document.SOLVE: ["solve", "model.flux", "rates.csv"],
     Document.CATALOGUE: ["catalogue"],
+    Document.COMPARE: ["compare", "model.flux", "--product", "ethanol", "--from", "glucose"],
 }
 
 
@@ -38,6 +39,7 @@ def nothing_is_read(monkeypatch: pytest.MonkeyPatch) -> None:
     for module in ("check", "closure", "solve"):
         monkeypatch.setattr(f"fluxnet.cli.{module}.load_model", refuse)
         monkeypatch.setattr(f"fluxnet.cli.{module}.load_rates", refuse)
+    monkeypatch.setattr("fluxnet.cli.compare.load_model", refuse)
     monkeypatch.setattr("fluxnet.cli.catalogue.load_catalogue", refuse)
 
 

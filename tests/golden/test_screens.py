@@ -45,6 +45,11 @@ SCREENS = {
     "unbounded": ["solve", "tw4.flux", "--maximise", "2,3-butanediol"],
     "frontier": ["frontier", "tw4.flux", "mu", "2,3-butanediol", "--over", "glucose",
                  "--from", "2", "--to", "8"],
+    "compare": [
+        "compare", "sw9.flux", "--product", "3-hydroxypropionate", "--from", "xylose",
+        "--across", "malonyl|aspartate|alanine|glycerol", "--across", "tank|stirred",
+        "--reserve", "mu=0.04", "--staircase", "--detail", "alanine * tank",
+    ],
     "routes": [
         "routes", "tw4.flux", "--from", "glucose", "--to", "2,3-butanediol", "--keep-above", "0.8",
     ],
@@ -60,7 +65,7 @@ def test_a_screen_is_as_it_was(
     monkeypatch: pytest.MonkeyPatch,
     capsys: pytest.CaptureFixture[str],
 ) -> None:
-    for source in (resource_folder("examples") / "1-four-weeks-of-a-diol").iterdir():
+    for source in resource_folder("examples").glob("*/*"):
         if source.suffix in (".flux", ".csv"):
             (tmp_path / source.name).write_bytes(source.read_bytes())
     (tmp_path / "broken.flux").write_text(BROKEN, encoding="utf-8")
