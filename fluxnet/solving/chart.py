@@ -15,13 +15,15 @@ each place, however large the network is.
 
 from __future__ import annotations
 
+from typing import Any
+
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
 from fluxnet.solving.task import Task
 
-__all__ = ["Chart", "Point", "chart_at", "flux_scale", "point_at"]
+__all__ = ["Chart", "Point", "chart_at", "flux_scale", "point_at", "points_at"]
 
 Vector = NDArray[np.float64]
 
@@ -109,7 +111,8 @@ class Point:
     ``tangent`` (fluxes x coordinates) is the derivative of the fluxes by z and the numbers;
     ``slopes`` (rows x coordinates) that of every row's value. ``residuals`` are the whitened
     distances of measured rows and numbers, ``design`` their negative derivative; ``h`` the sum
-    of their squares.
+    of their squares. Many points of one chart are one point whose arrays (but the chart's)
+    have one axis more, the first.
     """
 
     chart: Chart
@@ -127,6 +130,14 @@ class Point:
         """The weighted sum of squares."""
         return float(self.residuals @ self.residuals)
 
+    def some(self, wanted: NDArray[Any]) -> Point:
+        """Some of many points."""
+        return Point(
+            self.chart, self.z[wanted], self.numbers[wanted], self.fluxes[wanted],
+            self.values[wanted], self.tangent[wanted], self.slopes[wanted],
+            self.residuals[wanted], self.design[wanted],
+        )  # fmt: skip
+
 
 def point_at(task: Task, chart: Chart, z: Vector, numbers: Vector) -> Point:
     """The point of given coordinates.
@@ -136,34 +147,46 @@ def point_at(task: Task, chart: Chart, z: Vector, numbers: Vector) -> Point:
     ZeroDivisionError, numpy.linalg.LinAlgError
         Where the numbers are so far from the chart's that there is none.
     """
-    free, moved = len(z), task.numbers
+    return points_at(task, chart, z, numbers)
+
+
+def points_at(task: Task, chart: Chart, z: Vector, numbers: Vector) -> Point:
+    """Many points of one chart (the first axis of ``z`` and ``numbers``).
+
+    Raises
+    ------
+    ZeroDivisionError, numpy.linalg.LinAlgError
+        Where the numbers of one are so far from the chart's that there is none.
+    """
+    free, moved, many = z.shape[-1], task.numbers, z.shape[:-1]
     change = task.rows.change(numbers)
     core = change.core - chart.core
-    inner: Vector = chart.inner_kernel @ z + chart.inner_origin
-    turns: Vector = np.zeros((len(inner), free + moved))
-    turns[:, :free] = chart.inner_kernel
-    steps = np.zeros((core.shape[0], free + moved))
+    inner: Vector = z @ chart.inner_kernel.T + chart.inner_origin
+    turns: Vector = np.zeros((*inner.shape, free + moved))
+    turns[..., :free] = chart.inner_kernel
+    steps = np.zeros((*many, core.shape[-2], free + moved))
     if moved:
-        system = np.eye(len(inner)) + chart.inner_push @ core
-        inner = np.asarray(np.linalg.solve(system, inner), dtype=np.float64)
-        steps[:, free:] = (change.slopes @ inner).T
-        turns[:, free:] = -chart.inner_push @ steps[:, free:]
+        system = np.eye(inner.shape[-1]) + chart.inner_push @ core
+        inner = np.asarray(np.linalg.solve(system, inner[..., None])[..., 0], dtype=np.float64)
+        by_number = (change.slopes @ inner[..., None, :, None])[..., 0]
+        steps[..., free:] = by_number.swapaxes(-1, -2)
+        turns[..., free:] = -chart.inner_push @ steps[..., free:]
         turns = np.asarray(np.linalg.solve(system, turns), dtype=np.float64)
         steps += core @ turns
-    push = core @ inner
-    fluxes = chart.kernel @ z + chart.origin - chart.push @ push
-    values = chart.by_kernel @ z + chart.values + chart.by_core @ push
+    push = (core @ inner[..., None])[..., 0]
+    fluxes = z @ chart.kernel.T + chart.origin - push @ chart.push.T
+    values = z @ chart.by_kernel.T + chart.values + push @ chart.by_core.T
     tangent = -chart.push @ steps
-    tangent[:, :free] += chart.kernel
+    tangent[..., :free] += chart.kernel
     slopes = chart.by_core @ steps
-    slopes[:, :free] += chart.by_kernel
-    residuals = task.whitening @ (task.measured - values[task.soft])
-    design = task.whitening @ slopes[task.soft]
-    if moved:
-        residuals = np.concatenate([residuals, (task.rows.start - numbers) / task.sd])
-        own = np.zeros((moved, design.shape[1]))
-        own[:, free:] = np.diag(1 / task.sd)
-        design = np.vstack([design, own])
+    slopes[..., :free] += chart.by_kernel
+    soft = len(task.soft)
+    residuals = np.empty((*many, soft + moved))
+    residuals[..., :soft] = (task.measured - values[..., task.soft]) @ task.whitening.T
+    residuals[..., soft:] = (task.rows.start - numbers) / task.sd
+    design = np.zeros((*many, soft + moved, free + moved))
+    design[..., :soft, :] = task.whitening @ slopes[..., task.soft, :]
+    design[..., soft:, free:] = np.diag(1 / task.sd)
     return Point(chart, z, numbers, fluxes, values, tangent, slopes, residuals, design)
 
 

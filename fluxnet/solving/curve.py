@@ -25,9 +25,9 @@ Vector = NDArray[np.float64]
 
 _STEPS = 12
 _CLIMBS = 40
-_NEAR = 1e-4
+_NEAR = 1e-6
 """A step of this part of the way is the last: what it adds is added by the slope."""
-_LESS = 1e-6
+_LESS = 1e-12
 """So is one after which the next, that grows shorter at the same ratio, is this part of it."""
 _DUST = 1e-8
 """A step of this part of what one sd of the measurements brings is the solver's rounding."""

@@ -20,12 +20,13 @@ __all__ = ["Forces", "forces_of", "missing_at"]
 
 Vector = NDArray[np.float64]
 
-_LEFT, _UNBALANCED = 1e-4, 1e-4
+_LEFT, _UNBALANCED = 1e-6, 1e-6
 """How near h must be to its level, bounds to their values, forces to balance.
 
-Half the square of these, 5e-9, is about the part of the interval that an end may be wrong by.
+Where a functional is nearly held by bounds, their prices are large: with 1e-4 ends were seen to
+be wrong by 4e-4 of the interval.
 """
-_BEYOND, _UNSEEN = 1e-7, 1e-5
+_BEYOND, _UNSEEN = 1e-7, 1e-7
 """The same for bounds that do not press, and for forces that no slope of h can balance."""
 _STIFF = 1e3
 

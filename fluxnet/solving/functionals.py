@@ -28,9 +28,19 @@ class Placed:
         """Their derivatives by the point's coordinates."""
         return point.slopes[self.places]
 
+    def each(self, points: Point, wanted: Places) -> tuple[Vector, Vector]:
+        """Of many points, at each the value and slopes of one of them."""
+        rows, every = self.places[wanted], np.arange(len(wanted))
+        return points.values[every, rows], points.slopes[every, rows]
+
     def some(self, wanted: Places) -> Placed:
         """Those at some places among them, in rising order."""
         return Placed(self.places[wanted])
+
+    @property
+    def count(self) -> int:
+        """How many there are."""
+        return len(self.places)
 
     @property
     def curved(self) -> NDArray[np.bool_]:
@@ -58,9 +68,24 @@ class Ratios:
         slopes: Vector = top / np.where(below == 0, np.nan, below)[:, None]
         return slopes
 
+    def each(self, points: Point, wanted: Places) -> tuple[Vector, Vector]:
+        """Of many points, at each the value and slopes of one of them."""
+        over, below = self.over[wanted], self.below[wanted]
+        every = np.arange(len(wanted))
+        size = points.values[every, below]
+        size = np.where(size == 0, np.nan, size)
+        values = points.values[every, over] / size
+        top = points.slopes[every, over] - values[:, None] * points.slopes[every, below]
+        return values, top / size[:, None]
+
     def some(self, wanted: Places) -> Ratios:
         """Those at some places among them, in rising order."""
         return Ratios(self.over[wanted], self.below[wanted])
+
+    @property
+    def count(self) -> int:
+        """How many there are."""
+        return len(self.over)
 
     @property
     def curved(self) -> NDArray[np.bool_]:
@@ -99,9 +124,27 @@ class Drifting:
             slopes[:, len(point.z) :] += (self.drift @ point.fluxes).T
         return slopes
 
+    def each(self, points: Point, wanted: Places) -> tuple[Vector, Vector]:
+        """Of many points, at each the value and slopes of one of them."""
+        rows = self.rows[wanted]
+        if len(self.origin):
+            moved = points.numbers - self.origin
+            rows = rows + np.einsum("ek,kej->ej", moved, self.drift[:, wanted])
+        values = np.einsum("ej,ej->e", rows, points.fluxes)
+        slopes = (rows[:, None] @ points.tangent)[:, 0]
+        if len(self.origin):
+            own = np.einsum("kej,ej->ek", self.drift[:, wanted], points.fluxes)
+            slopes[:, points.z.shape[1] :] += own
+        return values, slopes
+
     def some(self, wanted: Places) -> Drifting:
         """Those at some places among them, in rising order."""
         return Drifting(self.rows[wanted], self.drift[:, wanted], self.origin)
+
+    @property
+    def count(self) -> int:
+        """How many there are."""
+        return len(self.rows)
 
     @property
     def curved(self) -> NDArray[np.bool_]:
@@ -123,16 +166,34 @@ class Joined:
         """Their derivatives by the point's coordinates."""
         return np.vstack([part.slopes(point) for part in self.parts])
 
+    def each(self, points: Point, wanted: Places) -> tuple[Vector, Vector]:
+        """Of many points, at each the value and slopes of one of them."""
+        values, slopes = np.empty(len(wanted)), np.empty((len(wanted), points.slopes.shape[2]))
+        start = 0
+        for part in self.parts:
+            stop = start + part.count
+            inside = np.flatnonzero((wanted >= start) & (wanted < stop))
+            if len(inside):
+                found = part.each(points.some(inside), wanted[inside] - start)
+                values[inside], slopes[inside] = found
+            start = stop
+        return values, slopes
+
     def some(self, wanted: Places) -> Joined:
         """Those at some places among them, in rising order."""
         parts, start = [], 0
         for part in self.parts:
-            stop = start + len(part.curved)
+            stop = start + part.count
             inside = wanted[(wanted >= start) & (wanted < stop)]
             if len(inside):
                 parts.append(part.some(inside - start))
             start = stop
         return Joined(tuple(parts))
+
+    @property
+    def count(self) -> int:
+        """How many there are."""
+        return sum(part.count for part in self.parts)
 
     @property
     def curved(self) -> NDArray[np.bool_]:

@@ -17,6 +17,7 @@ from fluxnet.solving.chart import flux_scale, point_at
 from fluxnet.solving.curve import Curve, End, follow_curve
 from fluxnet.solving.forces import missing_at
 from fluxnet.solving.functionals import Functionals
+from fluxnet.solving.joint_ends import joint_ends
 from fluxnet.solving.reach import Reach, reach_far, reach_flat
 from fluxnet.solving.region import Region
 from fluxnet.solving.statistics import chi_squared_quantile
@@ -131,10 +132,22 @@ def find_intervals(
         ends=np.tile(values[:, None], (1, 4)),
     )
     groups = _alike(search, ~constant & np.isfinite(values))
-    for done, members in enumerate(groups):
-        progress("intervals", done, len(groups))
-        _fill(search, members)
+    joint = joint_ends(task, region, functionals, gradients, hidden, search.level, groups)
     ends = search.ends
+    for up, sign in enumerate((-1.0, 1.0)):
+        known = joint.known[:, up]
+        reach = np.maximum(joint.far, joint.best)[known, up]
+        ends[known, up] = values[known] + sign * reach
+        ends[known, 2 + up] = values[known] + sign * joint.best[known, up]
+    for done, group in enumerate(groups):
+        progress("intervals", done, len(groups))
+        for sign in (-1.0, 1.0):
+            members = [
+                (i, factor) for i, factor in group
+                if not joint.known[i, int((factor < 0) ^ (sign > 0))]
+            ]
+            if members:
+                _fill(search, members, sign)
     # What is left of a zero is told as zero.
     ends[np.abs(ends) <= _DUST * sizes[:, None]] = 0.0
     values = np.where(np.abs(values) <= _DUST * sizes, 0.0, values)
@@ -159,47 +172,53 @@ def _alike(search: _Search, wanted: NDArray[np.bool_]) -> list[list[tuple[int, f
     return list(groups.values())
 
 
-def _fill(search: _Search, members: list[tuple[int, float]]) -> None:
-    """The ends of the intervals of functionals that go up and down together."""
+def _fill(search: _Search, members: list[tuple[int, float]], way: float) -> None:
+    """The ends of the intervals of functionals that go up and down together.
+
+    Parameters
+    ----------
+    way
+        The sign of the way that those with a positive factor are to go.
+    """
     first, lead = members[0]
     origin = np.zeros(search.gradients.shape[1])
     places = np.array([i for i, _ in members], dtype=np.intp)
     functionals = search.functionals.some(places) if search.curved[first] else None
-    for sign in (-1.0, 1.0):
-        best, least = origin, 0.0
-        if search.hidden[first]:
-            flat = _flat_end(search, first, sign)
-            _note(search, members, 2, sign, flat.value)
-            if flat.place is None:
-                _note(search, members, 0, sign, np.inf)
-                continue
-            best, least = flat.place, flat.value
-        end = _end(search, first, sign, best)
-        # What the best fit allows, 95 % allows too.
-        reach = max(end.value, least)
-        _note(search, members, 0, sign, reach)
-        there = end.point
-        if there is None or functionals is None or len(members) == 1:
+    sign = way if lead > 0 else -way
+    best, least = origin, 0.0
+    if search.hidden[first]:
+        flat = _flat_end(search, first, sign)
+        _note(search, members, 2, sign, flat.value)
+        if flat.place is None:
+            _note(search, members, 0, sign, np.inf)
+            return
+        best, least = flat.place, flat.value
+    end = _end(search, first, sign, best)
+    # What the best fit allows, 95 % allows too.
+    reach = max(end.value, least)
+    _note(search, members, 0, sign, reach)
+    there = end.point
+    if there is None or functionals is None or len(members) == 1:
+        return
+    values = functionals.values(there) - search.values[places]
+    slopes = functionals.slopes(there)
+    for k, (i, other) in enumerate(members[1:], start=1):
+        factor = other / lead
+        size = float(np.abs(slopes[k]).max(initial=0.0))
+        differs = np.abs(slopes[k] - factor * slopes[0]).max() > 1e-6 * size
+        if not differs and abs(values[k] - factor * values[0]) <= 1e-6 * abs(values[k]):
             continue
-        values = functionals.values(there) - search.values[places]
-        slopes = functionals.slopes(there)
-        for k, (i, other) in enumerate(members[1:], start=1):
-            factor = other / lead
-            size = float(np.abs(slopes[k]).max(initial=0.0))
-            differs = np.abs(slopes[k] - factor * slopes[0]).max() > 1e-6 * size
-            if not differs and abs(values[k] - factor * values[0]) <= 1e-6 * abs(values[k]):
-                continue
-            turn = sign if factor > 0 else -sign
-            missing = None
-            if end.forces is not None:
-                missing = missing_at(
-                    search.task, end.forces, there, search.level, turn * slopes[k]
-                )
-            own = (
-                _end(search, i, turn, best).value if missing is None
-                else turn * float(values[k]) + missing
+        turn = sign if factor > 0 else -sign
+        missing = None
+        if end.forces is not None:
+            missing = missing_at(
+                search.task, end.forces, there, search.level, turn * slopes[k]
             )
-            _note(search, [(i, 1.0)], 0, turn, max(own, abs(factor) * least))
+        own = (
+            _end(search, i, turn, best).value if missing is None
+            else turn * float(values[k]) + missing
+        )
+        _note(search, [(i, 1.0)], 0, turn, max(own, abs(factor) * least))
 
 
 def _note(

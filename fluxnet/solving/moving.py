@@ -90,6 +90,9 @@ class MovingRows:
     def change(self, numbers: Vector) -> Change:
         """The core and its slopes at other values of the uncertain numbers.
 
+        Many values (the first axis) give as many cores; slopes that are the same at all values
+        are told once.
+
         Raises
         ------
         ZeroDivisionError
@@ -99,6 +102,9 @@ class MovingRows:
         core = np.tensordot(numbers - self.start, self.linear, axes=1)
         if not self.bends and not self.masses:
             return Change(core, slopes)
+        if numbers.ndim > 1:
+            each = [self.change(some) for some in numbers]
+            return Change(np.array([c.core for c in each]), np.array([c.slopes for c in each]))
         values = dict(self.values) | dict(zip(self.names, numbers.tolist(), strict=True))
         for bend in self.bends:
             core[bend.place] += bend.entry.at(values) - bend.start
