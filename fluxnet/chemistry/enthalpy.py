@@ -53,7 +53,7 @@ def heat_of_combustion(
         if compound.combustion_kJ is not None:
             source = compound.combustion_source or ""
             return HeatOfCombustion(compound.combustion_kJ, False, source)
-        dissolved = heat_in_water(compound.formula_ph7, compound)
+        dissolved = heat_in_water(compound, compound.charge)
         if dissolved is not None:
             return dissolved
     electrons = degree_of_reduction(formula, NitrogenReference.NITROGEN)
@@ -66,21 +66,21 @@ def heat_of_combustion(
     return HeatOfCombustion(value, True, "estimated: 115 kJ per electron, N2 as reference")
 
 
-def heat_in_water(form: Formula, compound: Compound) -> HeatOfCombustion | None:
-    """The heat of combustion of a form as it stands in a culture, gases as gas, by Hess.
+def heat_in_water(compound: Compound, charge: int) -> HeatOfCombustion | None:
+    """The heat of combustion of a compound as it stands in a culture, gases as gas, by Hess.
 
-    None where the enthalpy of formation of the form is not known.
+    None where the enthalpy of formation of the form with that charge is not known.
 
     Examples
     --------
     >>> from fluxnet.chemistry.catalogue import find_compound
-    >>> lactate = find_compound("lactate")
-    >>> round(heat_in_water(lactate.formula_ph7, lactate).value, 1)
+    >>> round(heat_in_water(find_compound("lactate"), -1).value, 1)
     1351.5
     """
-    formation = find_formation(compound.name, int(form.charge))
+    formation = find_formation(compound.name, charge)
     if formation is None:
         return None
+    form = compound.formula if charge == compound.formula.charge else compound.formula_ph7
     value = combustion_by_hess(form, formation)
     if value is None:
         return None

@@ -15,7 +15,7 @@ from fluxnet.network.implied import find_implied
 from fluxnet.network.model import Network, Role, Species
 from fluxnet.network.water import form_at_ph_seven, is_proton, is_water
 
-__all__ = ["PROTON_ENERGY", "FreeEnergy", "find_free_energy"]
+__all__ = ["PROTON_ENERGY", "FreeEnergy", "find_free_energy", "formation_energy"]
 
 _GAS_CONSTANT = 8.314462618e-3
 """kJ/(mol K), CODATA 2018 (from memory)."""
@@ -97,11 +97,28 @@ def _formation(species: Species | None, name: str) -> tuple[float | None, bool]:
         return None, False
     if species is not None and species.role is Role.BIOMASS:
         return biomass_formation(form)
-    compound = find_compound(name if species is None else species.entry or name)
+    return formation_energy(name if species is None else species.entry, form), False
+
+
+def formation_energy(entry: str | None, form: Formula) -> float | None:
+    """The Gibbs energy of formation of a catalogue entry in a form of just that composition.
+
+    Examples
+    --------
+    >>> from fluxnet.chemistry.reader import read_formula
+    >>> formation_energy("acetate", read_formula("C2H3O2(-)"))
+    -369.32
+    >>> formation_energy("acetate", read_formula("C2H6O3")) is None  # with water in it
+    True
+    """
+    compound = find_compound(entry) if entry is not None else None
     if compound is None:
-        return None, False
+        return None
+    known = (compound.formula, compound.formula_ph7)
+    if all(dict(form.counts) != dict(k.counts) or form.charge != k.charge for k in known):
+        return None
     found = find_formation(compound.name, int(form.charge))
-    return (None if found is None else found.gibbs), False
+    return None if found is None else found.gibbs
 
 
 def _form(species: Species | None, name: str) -> Formula | None:

@@ -12,12 +12,10 @@ from __future__ import annotations
 from collections.abc import Mapping
 from math import exp
 
-from fluxnet.chemistry.catalogue import find_compound
 from fluxnet.chemistry.electron_energy import biomass_formation, half_reaction
-from fluxnet.chemistry.formation import find_formation
 from fluxnet.chemistry.formula import degree_of_reduction
 from fluxnet.ground.record import record
-from fluxnet.network.free_energy import find_free_energy
+from fluxnet.network.free_energy import find_free_energy, formation_energy
 from fluxnet.network.model import Network, Role, Species
 from fluxnet.network.water import form_at_ph_seven
 
@@ -187,9 +185,7 @@ def _held(species: Species) -> _Held | None:
     if species.role is Role.BIOMASS:
         formation, _ = biomass_formation(form)
     else:
-        compound = find_compound(species.entry) if species.entry is not None else None
-        found = None if compound is None else find_formation(compound.name, int(form.charge))
-        formation = None if found is None else found.gibbs
+        formation = formation_energy(species.entry, form)
     half = None if formation is None else half_reaction(form, formation)
     if half is None or half.electrons <= 0:
         return None

@@ -170,7 +170,7 @@ def _term(name: str, network: Network, *, in_water: bool) -> HeatTerm | None:
     if compound is not None and not _is_same(form, compound):
         compound = None
     if in_water and compound is not None:
-        dissolved = heat_in_water(form, compound)
+        dissolved = heat_in_water(compound, int(form.charge))
         if dissolved is not None:
             return _told(name, dissolved, pure=False)
     heat = heat_of_combustion(form, compound)

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+from typing import Any
 
 import pytest
 
@@ -87,7 +88,7 @@ compartment all
 """
 
 
-def growing(source: str, carbons: int, celsius: float = 25, rate: float = 1):
+def growing(source: str, carbons: int, celsius: float = 25, rate: float = 1) -> Any:
     """Half of the carbon becomes biomass, the rest CO2; as solve tells it."""
     model = fx.read_model_text(GROWTH.format(source=source, half=carbons / 2))
     rates = fx.read_rates_text(

@@ -7,6 +7,7 @@ Principles, 2nd ed., Table 4.3, as quoted. Every number goes through the catalog
 from __future__ import annotations
 
 import statistics
+from typing import Any
 
 import pytest
 from chemicals import reaction
@@ -20,7 +21,7 @@ from fluxnet.cli.main import run as command
 COMBUSTION = "substrate {name}, oxygen\nexchange CO2\ncompartment all\n    burn : {line}\n"
 
 
-def burnt(name: str, line: str):
+def burnt(name: str, line: str) -> Any:
     """One mole of a substrate burnt, as solve tells it."""
     model = fx.read_model_text(COMBUSTION.format(name=name, line=line))
     rates = fx.read_rates_text(f"species,direction,rate,unit\n{name},in,1,mmol\n", model)
