@@ -78,3 +78,5 @@ variant on-glucose
     limit  xylose <= 0
 variant on-xylose
     limit  glucose <= 0
+variant growing
+    limit  mu >= 0.04

@@ -6,10 +6,13 @@ leave glycolysis (two ATP and a NADH each).
 
 from __future__ import annotations
 
+import json
 import re
 from pathlib import Path
 
 import pytest
+
+from fluxnet.cli.main import Exit, run
 
 FOLDER = Path(__file__).resolve().parents[2] / "examples" / "2-four-ways-to-one-acid"
 MODEL = FOLDER / "sw9.flux"
@@ -69,6 +72,34 @@ def test_yield_by_alanine_in_the_tank(most, sugar):
     # 30 = p / 2 + 3 T, 34.8 = 6.5 p. The pump of xylose takes ATP that was left over.
     made = 34.8 / 6.5 / SUGARS[sugar][0]
     assert most("alanine", sugar, vessel="tank") == pytest.approx(made, abs=1e-9)
+
+
+def test_the_trade_off_of_oxygen_and_acid(capsys):
+    # By alanine, as above: T = 2 p - 2 x, 30 = p / 2 + 3 T, so 60 / 13 and 12 / 13 more for each
+    # oxygen; without ethanol T = p, 60 / 7 at half as much oxygen. Then what is burnt is lost.
+    asked = ["frontier", str(MODEL), "oxygen", P, "--across", "alanine", "--across", "on-xylose"]
+    assert run([*asked, "--json"]) == Exit.SOUND
+    (curve,) = json.loads(capsys.readouterr().out)["curves"]
+    points = [(point["x_exact"], point["y_exact"]) for point in curve["points"]]
+    assert points == [("0", "60/13"), ("30/7", "60/7"), ("30", "0")]
+    assert curve["points"][0]["slope_after"] == pytest.approx(12 / 13, rel=1e-12)
+
+
+def test_where_the_curves_bend_and_cross(capsys):
+    # what the answer says of spargers: the knee of alanine on xylose, in mmol per litre as well
+    ways = ["--across", "alanine|glycerol", "--across", "on-glucose|on-xylose"]
+    asked = ["frontier", str(MODEL), "oxygen", P, *ways, "--across", "growing", "--to", "6"]
+    assert run([*asked, "--json"]) == Exit.SOUND
+    curves = {c["variant"]: c["points"] for c in json.loads(capsys.readouterr().out)["curves"]}
+    start, knee, top, _ = curves["alanine * on-xylose * growing"]
+    assert knee["x"] == pytest.approx(1.03, abs=0.005)
+    assert knee["x"] * 20 == pytest.approx(21, abs=0.5)
+    assert knee["y"] / 6 * 3 / 5 == pytest.approx(0.49, abs=0.005)
+    assert start["slope_after"] == pytest.approx(3.04, abs=0.005)
+    assert knee["slope_after"] == pytest.approx(12 / 13, rel=1e-9)
+    assert top["x"] * 20 == pytest.approx(88, abs=0.5)
+    tank = start["y"] + 0.8 * start["slope_after"]
+    assert tank / 6 * 3 / 5 == pytest.approx(TABLE["alanine", "xylose", "tank"], abs=6e-4)
 
 
 def _table() -> dict[tuple[str, str, str], float]:

@@ -2,9 +2,12 @@
 
 from __future__ import annotations
 
+import json
 from pathlib import Path
 
 import pytest
+
+from fluxnet.cli.main import Exit, run
 
 MODEL = Path(__file__).parent / "most-atp.flux"
 
@@ -26,6 +29,15 @@ def test_most_atp_when_oxygen_is_scarce(ask, oxygen, atp):
     # computed; at 3 and 2 ATP per oxygen atom
     run = ask(MODEL, {"glucose in": 1, "oxygen in": oxygen}, maximise="ATP")
     assert run.optimum == pytest.approx(atp, abs=1e-8)
+
+
+def test_the_line_of_scarce_oxygen_has_one_break(capsys):
+    # computed: acetate and hydrogen stop at 2, where the cycle starts; 38 is from memory (99 %)
+    assert run(["frontier", str(MODEL), "oxygen", "ATP", "--json"]) == Exit.SOUND
+    (curve,) = json.loads(capsys.readouterr().out)["curves"]
+    points = [(point["x_exact"], point["y_exact"]) for point in curve["points"]]
+    assert points == [("0", "4"), ("2", "16"), ("6", "38")]
+    assert [point["slope_after"] for point in curve["points"]] == [6, 5.5, None]
 
 
 @pytest.mark.parametrize(
