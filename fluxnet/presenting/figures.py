@@ -118,8 +118,13 @@ def styled() -> Iterator[None]:
         yield
 
 
-def new_figure(title: str, finding: str, footnote: str) -> tuple[Figure, Axes]:
-    """A figure with its title, one sentence that says what is seen, and a note at its foot."""
+def new_figure(
+    title: str, finding: str, footnote: str, gutter: float = 0.0
+) -> tuple[Figure, Axes]:
+    """A figure with its title, one sentence that says what is seen, and a note at its foot.
+
+    ``gutter`` is the part of its width that is kept free beside the axes.
+    """
     from matplotlib.figure import Figure
 
     figure = Figure(figsize=(_WIDTH, _HEIGHT))
@@ -127,7 +132,7 @@ def new_figure(title: str, finding: str, footnote: str) -> tuple[Figure, Axes]:
     lines = told.count("\n") + 1
     top = 0.955 - 0.045 * lines
     bottom = 0.165 + 0.032 * foot.count("\n")
-    axes = figure.add_axes((0.105, bottom, 0.86, top - 0.055 - bottom))
+    axes = figure.add_axes((0.105, bottom, 0.86 - gutter, top - 0.055 - bottom))
     figure.text(0.02, 0.975, title, fontsize=12.5, fontweight="bold", va="top")
     figure.text(0.02, 0.915, told, fontsize=9, color=INK, va="top", linespacing=1.35)
     figure.text(0.02, 0.02, foot, fontsize=7.2, color=QUIET, va="bottom", linespacing=1.3)

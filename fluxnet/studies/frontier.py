@@ -21,7 +21,7 @@ from fluxnet.solving.unbounded import explain_unbounded
 from fluxnet.studies.aim_problem import aim_cost, open_carriers
 from fluxnet.studies.aims import Aim, Sense
 from fluxnet.studies.frontier_axis import Axis, read_axis, refuse_same, slope_unit
-from fluxnet.studies.frontier_cases import find_cases, first_that_knows, read_axes
+from fluxnet.studies.frontier_cases import common_parts, find_cases, first_that_knows, read_axes
 from fluxnet.studies.frontier_over import find_moved_limit, read_setting, set_to, with_room
 from fluxnet.studies.frontier_result import (
     Curve,
@@ -97,6 +97,7 @@ def find_frontier(
     if y is None and over is None:
         raise MisuseError("name two quantities, or one and what is moved: --over LIMIT")
     cases, skipped = find_cases(network, across)
+    common = " * ".join(common_parts(cases))
     setting = None
     if over is not None:
         setting = read_setting(over, first_that_knows(cases, over), start, stop)
@@ -134,7 +135,7 @@ def find_frontier(
         else:
             curve = _trade(case, axes[0], axes[-1], extreme, start, stop, unit)
         curves.append(replace(curve, variant=variant, label=label or variant))
-    words = tell_curves(curves, lower.name, upper.name, network, extreme)
+    words = tell_curves(curves, lower.name, upper.name, extreme, common)
     return Frontier(lower, upper, extreme, setting, tuple(curves), unit, words, skipped)
 
 

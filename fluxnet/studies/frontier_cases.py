@@ -13,7 +13,7 @@ from fluxnet.network.variant import BASE, apply_variant
 from fluxnet.studies.frontier_axis import Axis, read_axis
 from fluxnet.studies.frontier_over import find_moved_limit
 
-__all__ = ["Cases", "find_cases", "first_that_knows", "read_axes"]
+__all__ = ["Cases", "common_parts", "find_cases", "first_that_knows", "read_axes"]
 
 Cases = tuple[tuple[str, str, Network], ...]
 """Name, label and network of each combination of variants."""
@@ -52,9 +52,23 @@ def find_cases(
             skipped.append((label, "; ".join(d.message for d in errors)))
         elif label not in [known for known, _, _ in found]:
             found.append((label, label, changed))
+    if len(found) > 1:
+        found = [(name, _shortened(name, common_parts(found)), there) for name, _, there in found]
     if not found:
         raise InputError(tuple(dict.fromkeys(faults)))
     return tuple(found), tuple(dict.fromkeys(skipped))
+
+
+def common_parts(cases: Sequence[tuple[str, str, Network]]) -> tuple[str, ...]:
+    """The variants that all of several combinations have."""
+    parts = [name.split(" * ") for name, _, _ in cases]
+    if len(parts) < 2:
+        return ()
+    return tuple(p for p in parts[0] if p != BASE and all(p in other for other in parts))
+
+
+def _shortened(name: str, common: Sequence[str]) -> str:
+    return " * ".join(p for p in name.split(" * ") if p not in common) or BASE
 
 
 def first_that_knows(cases: Cases, over: str) -> Network:

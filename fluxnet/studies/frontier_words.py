@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 from itertools import pairwise
 
-from fluxnet.network.model import Direction, Network
+from fluxnet.network.model import Direction
 from fluxnet.solving.parametric import Extreme
 from fluxnet.solving.parametric_proof import Break, Change, ChangeKind, Hold
 from fluxnet.solving.problem import Problem, RowKind
@@ -138,8 +138,13 @@ def _n(value: float) -> str:
     return number_words(float(f"{value:.4g}")) if abs(value) > 1e-12 else "0"
 
 
-def tell_curves(curves: Sequence[Curve], x: str, y: str, network: Network, extreme: Extreme) -> str:
-    """Which of several curves reaches farthest, in y and in x."""
+def tell_curves(
+    curves: Sequence[Curve], x: str, y: str, extreme: Extreme, common: str = ""
+) -> str:
+    """Which of several curves reaches farthest, in y and in x.
+
+    ``common`` are the variants that all of them have.
+    """
     found = [c for c in curves if c.points]
     if not found:
         return f"There is no curve of {y} over {x}: {curves[0].words}"
@@ -160,9 +165,13 @@ def tell_curves(curves: Sequence[Curve], x: str, y: str, network: Network, extre
     if len(reach) < len(found):
         words += f"; {x} goes farthest, to {_n(farthest)}, in {_listed(reach)}"
     words += "."
+    if common:
+        words = f"With {common}: {words[:1].lower()}{words[1:]}"
     none = [c.label for c in curves if c.status not in (CurveStatus.TRACED, CurveStatus.POINT)]
     return words + (f" No curve: {_listed(none)}." if none else "")
 
 
 def _listed(words: Sequence[str]) -> str:
+    if len(words) > 3:
+        words = (*words[:2], f"{len(words) - 2} more")
     return words[0] if len(words) == 1 else f"{', '.join(words[:-1])} and {words[-1]}"
