@@ -72,14 +72,17 @@ def small_unions(
     for start in range(0, len(rows), _AT_ONCE):
         some = slice(start, start + _AT_ONCE)
         a, b = blocks[0][rows[some]], blocks[1][columns[some]]
-        count = np.zeros((len(a), _BLOCK, _BLOCK), dtype=count_type)
-        for word in range(left.shape[1]):
+        count = np.bitwise_count(a[:, :, None, 0] | b[:, None, :, 0]).astype(count_type, copy=False)
+        for word in range(1, left.shape[1]):
             count += np.bitwise_count(a[:, :, None, word] | b[:, None, :, word])
-        k, i, j = np.nonzero(count <= most)
+        near_by = np.flatnonzero(count.reshape(-1) <= most)
+        k, inside = np.divmod(near_by, _BLOCK * _BLOCK)
+        i, j = np.divmod(inside, _BLOCK)
         unions = a[k, i] | b[k, j]
-        i, j = rows[some][k] * _BLOCK + i, columns[some][k] * _BLOCK + j
+        i += rows[some][k] * _BLOCK
+        j += columns[some][k] * _BLOCK
         both = (unions & (unions >> np.uint64(1)) & turning).any(axis=1)
-        real = (i < len(left)) & (j < len(right)) & ~both
+        real = np.flatnonzero((i < len(left)) & (j < len(right)) & ~both)
         portion.append(Candidates(i[real], j[real], unions[real]))
         held += len(portion[-1].left)
         if held >= _PORTION:
