@@ -43,11 +43,11 @@ def fraction_text(value: Fraction | None) -> str:
     return text if len(text) <= _LONGEST else ""
 
 
-def interval_text(one: ModeYield) -> str:
-    """The interval of a yield; the yield alone where it does not move."""
+def interval_text(one: ModeYield, times: Fraction | int = 1) -> str:
+    """The interval of a yield times a number; the yield alone where it does not move."""
     if one.low is None or one.high is None:
-        return "" if one.moles is None else format_number(float(one.moles))
-    return format_range(one.low, one.high)
+        return "" if one.moles is None else format_number(float(one.moles * times))
+    return format_range(one.low * float(times), one.high * float(times))
 
 
 def _yields(ability: Ability) -> Table:

@@ -112,6 +112,8 @@ def _ranking(comparison: Comparison, shown: Sequence[Ability]) -> Table:
 def _yields_note(comparison: Comparison) -> str:
     """What the yields are, and what each of them has to bear."""
     words = f"mol {comparison.product} per mol of substrate"
+    if comparison.counts_carbon:
+        words = f"C-mol of {comparison.product} per C-mol of substrate"
     more = {
         Mode.ALONE: "alone: nothing else is made",
         Mode.KEPT: "upkeep: with the ATP of maintenance",
@@ -142,9 +144,9 @@ def _left_words(comparison: Comparison) -> str:
 
 def _row(comparison: Comparison, ability: Ability) -> tuple[Cell, ...]:
     facts, share = ability.facts, ability.final.share
-    yields: list[Cell] = [
-        None if y.moles is None else float(y.moles) for y in ability.yields
-    ]
+    by_carbon = comparison.counts_carbon
+    told = (y.carbon if by_carbon else y.moles for y in ability.yields)
+    yields: list[Cell] = [None if value is None else float(value) for value in told]
     mark = "*" if ability.is_best_of_all and len(comparison.abilities) > 1 else ""
     if facts is None:
         return (f"{ability.rank}{mark}", ability.name, *yields, _percent(share), "", None, None,
@@ -200,7 +202,8 @@ def _forced(best: Ability) -> str:
     """The by-products that no optimum goes without, and whether growth is needed."""
     facts = best.facts
     forced = [b for b in facts.by_products if b.least > 0] if facts is not None else []
-    words = "".join(f"; beside it at least {b.least:.3g} mol {b.species}" for b in forced)
+    parts = " and ".join(f"{b.least:.3g} mol {b.species}" for b in forced)
+    words = f"; beside it at least {parts}" if parts else ""
     if best.without_growth is None:
         return words
     if not best.without_growth:
@@ -217,6 +220,7 @@ def _how_sure(comparison: Comparison) -> list[Block]:
             return []
         names = ", ".join(comparison.uncertain)
         return [Sentence(f"The errors of {names} move no yield.", Mood.QUIET)]
+    by_carbon = comparison.counts_carbon
     odds = {o.worse: o.probability for o in comparison.odds}
     columns = (
         Column("variant", "", wrap=20),
@@ -226,7 +230,7 @@ def _how_sure(comparison: Comparison) -> list[Block]:
     rows = tuple(
         (
             a.name,
-            *(interval_text(y) for y in a.yields),
+            *(interval_text(y, a.carbon_per_mole if by_carbon else 1) for y in a.yields),
             f"{odds[a.name]:.2f}" if a.name in odds else "",
         )
         for a in comparison.abilities[:_MOST]

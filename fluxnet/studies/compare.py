@@ -176,10 +176,13 @@ def _order(case: Case, cases: Sequence[Case]) -> int:
 def _odds(ranked: Sequence[Ability], drawn: Drawn) -> tuple[Odds, ...]:
     """How probable it is that the best yields more than each other one."""
     found: list[Odds] = []
-    values = [drawn.last(a.name) for a in ranked]
-    for other, own in zip(ranked[1:], values[1:], strict=True):
-        if values[0] is not None and own is not None and ranked[0].substrate == other.substrate:
-            found.append(Odds(ranked[0].name, other.name, beats(values[0], own)))
+    first = drawn.last(ranked[0].name)
+    each = float(ranked[0].carbon_per_mole)
+    for other in ranked[1:]:
+        own = drawn.last(other.name)
+        if first is not None and own is not None:
+            chance = beats(first * each, own * float(other.carbon_per_mole))
+            found.append(Odds(ranked[0].name, other.name, chance))
     return tuple(found)
 
 

@@ -8,6 +8,7 @@ from fractions import Fraction
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.record import record
 from fluxnet.network.model import Network, Quantity, QuantityKind
+from fluxnet.solving.quantities import has_mu
 from fluxnet.studies.aims import name_quantity
 
 __all__ = ["Reserve", "read_reserve"]
@@ -53,6 +54,11 @@ def read_reserve(text: str, network: Network) -> Reserve:
     parts = [part.split() for part in found["what"].split(" / ")]
     value = Fraction(found["value"])
     named = [name_quantity(words, network, "a reserve") for words in parts]
+    if any(q.kind is QuantityKind.MU for q in named) and not has_mu(network, network.basis):
+        raise MisuseError(
+            f"there is no mu without biomass, or with rates in {network.basis.value}: reserve a "
+            "ratio of the biomass to the substrate"
+        )
     if len(named) > 2 or any(q.kind is QuantityKind.SURPLUS for q in named):
         raise MisuseError(f"a reserve is of a rate, mu, a flux or a ratio of two, not {text!r}")
     quantity = named[0]

@@ -143,6 +143,14 @@ class Ability:
         return self.yields[-1]
 
     @property
+    def carbon_per_mole(self) -> Fraction:
+        """C-mol/C-mol for each mol/mol of its yields; 1 where they have no carbon to count."""
+        for one in self.yields:
+            if one.carbon is not None and one.moles:
+                return one.carbon / one.moles
+        return Fraction(1)
+
+    @property
     def worth(self) -> Fraction:
         """What it is ranked by: C-mol yields where there are any, else shares or moles."""
         final = self.final
@@ -181,6 +189,13 @@ class Comparison:
     seed: int
     words: str
     second: str
+
+    @property
+    def counts_carbon(self) -> bool:
+        """Whether yields are told in C-mol/C-mol: on several substrates moles say nothing."""
+        known = [a for a in self.abilities if a.final.moles]
+        several = len({a.substrate for a in self.abilities}) > 1
+        return several and all(a.final.carbon is not None for a in known)
 
     @property
     def is_sound(self) -> bool:

@@ -30,9 +30,11 @@ def tell_comparison(comparison: Comparison) -> str:
         share = f", {_percent(float(final.share))} of what electrons allow"
     names = _listed([best.name, *best.tied])
     tie = f" (exactly the same: {final.moles})" if best.tied else ""
+    several = len({a.substrate for a in comparison.abilities}) > 1
+    source = "" if several else f" of {best.substrate}"
     held = f"; held back by {holding_words(best.facts.holding)}" if best.facts else ""
     return (
-        f"Most {comparison.product} of {best.substrate} {final.mode.value}: {names}{tie}, "
+        f"Most {comparison.product}{source} {final.mode.value}: {names}{tie}, "
         f"{parts[0]} ({', '.join(parts[1:])}){share}{held}."
     ).replace(" ()", "")
 

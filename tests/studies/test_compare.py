@@ -9,11 +9,13 @@ import pytest
 
 from fluxnet.ground.errors import InputError, MisuseError
 from fluxnet.network.model import Network
+from fluxnet.network.variant import apply_variant
 from fluxnet.reading.model import read_model_text
 from fluxnet.studies.compare import compare
 from fluxnet.studies.compare_modes import Mode
 from fluxnet.studies.compare_result import Ability, Comparison, Limiting
 from fluxnet.studies.compare_words import holding_words
+from fluxnet.studies.solve import solve_network
 from tests.studies.pathways import ACETATE, CITRATE, ETHANOL, GLYCEROL, LACTATE
 
 
@@ -253,6 +255,77 @@ def test_growth_is_told_not_to_be_needed_where_atp_can_be_spent() -> None:
 
     assert ability.without_growth == pytest.approx(2)
     assert ability.final.moles == 2
+
+
+# --- other bases, other roles ---------------------------------------------------------------
+
+
+def test_rates_per_carbon_give_the_same_yields_and_prices() -> None:
+    text = GLYCEROL + "limit glucose <= 12\nlimit upkeep >= 4\n"
+    per_mole = best(text.replace("<= 12", "<= 2"), "glycerol")
+    per_carbon = best("basis C-mol/C-mol/h\n" + text, "glycerol")
+
+    assert per_carbon.final.moles == per_mole.final.moles
+    assert per_carbon.facts is not None
+    assert per_mole.facts is not None
+    assert gains(per_carbon) == pytest.approx(gains(per_mole))
+    assert per_carbon.facts.oxygen == pytest.approx(per_mole.facts.oxygen)
+
+
+def test_a_gas_that_goes_either_way_can_be_the_substrate() -> None:
+    text = """\
+substrate  hydrogen
+product    acetate
+exchange   CO2
+carrier    ATP   carries energy
+carrier    NADH  carries 2 electrons
+compartment c
+    hyd : hydrogen -> NADH
+    wl  : 2 CO2 + 4 NADH -> acetate
+"""
+    found = compare(read(text), "acetate", "CO2", beside=["hydrogen"])
+
+    assert found.abilities[0].final.moles == Fraction(1, 2)
+    assert found.abilities[0].ceiling is None
+    assert compare(read(text), "acetate", "hydrogen").abilities[0].final.moles == Fraction(1, 4)
+
+
+def test_biomass_can_be_the_product() -> None:
+    ability = best(GROWING, "X")
+
+    assert ability.final.moles is not None
+    assert ability.most_growth == pytest.approx(float(ability.final.moles))
+    assert ability.without_growth == 0
+
+
+def test_one_name_for_two_species_makes_two_programmes_and_one_ranking() -> None:
+    text = ETHANOL
+    for name, formula, line in (
+        ("acid", "C3H6O3", "pyruvate + NADH -> aroma"),
+        ("alcohol", "C2H6O", "pyruvate + NADH -> aroma + CO2"),
+    ):
+        text += f"variant {name}\n    product aroma {formula}\n    add to c\n        r : {line}\n"
+    found = compare(read(text), "aroma", "glucose", ["alcohol|acid"])
+
+    assert [(a.name, a.final.moles, a.final.carbon) for a in found.abilities] == [
+        ("acid", 2, 1), ("alcohol", 2, Fraction(2, 3)),
+    ]  # fmt: skip
+
+
+@pytest.mark.parametrize("product", ["ethanol", "succinate", "acetate", "2,3-butanediol"])
+def test_every_variant_reaches_what_a_solve_of_it_finds(product: str) -> None:
+    from tests.conftest import MODELS
+
+    text = (MODELS / "mixed-acid.flux").read_text(encoding="utf-8")
+    text = text.replace("limit      upkeep = 3 ± 1.5", "limit glucose = 1")
+    network = read(text)
+    across = ["base|anaerobic", "base|glucokinase", "base|diol"]
+    for ability in compare(network, product, "glucose", across, draws=0).abilities:
+        changed, _ = apply_variant(network, ability.variant)
+        assert changed is not None
+        (run,) = solve_network(changed, maximise=product).runs
+
+        assert run.optimum == pytest.approx(float(ability.final.moles or 0), abs=1e-9)
 
 
 # --- uncertain numbers ------------------------------------------------------------------
