@@ -2,16 +2,19 @@
 
 ``@record`` gives what ``@dataclass(frozen=True, slots=True)`` gives. That one writes and compiles
 six methods for each class while its module is imported; with some hundred classes a command
-spent more time on them than on its answer. A record's methods are closures over the names of its
-fields, and its ``__init__`` alone is compiled, when the first one is made.
+spent more time on them than on its answer. Here all records share their methods but
+``__init__``, whose code is compiled once for all records with as many fields and then given
+their names. What the standard library tells of fields is made when it is asked for.
 """
 
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import MISSING, Field, FrozenInstanceError, dataclass, field, fields
+from dataclasses import MISSING, Field, FrozenInstanceError, dataclass, field
+from functools import cache
 from operator import attrgetter
-from typing import Any, NoReturn, TypeVar, dataclass_transform
+from types import CodeType, FunctionType
+from typing import Any, NoReturn, TypeVar, cast, dataclass_transform
 
 __all__ = ["record"]
 
@@ -24,8 +27,9 @@ _put = object.__setattr__
 def record(cls: type[Made]) -> type[Made]:
     """Make a class a frozen dataclass with slots.
 
-    Its fields may have all options of :func:`dataclasses.field`. Methods of its own stay, such as
-    ``__eq__``, and ``__post_init__`` is called. No other dataclass may be its base.
+    Its fields may have the options ``default``, ``default_factory``, ``init``, ``repr`` and
+    ``compare`` of :func:`dataclasses.field`. Methods of its own stay, such as ``__eq__``, and
+    ``__post_init__`` is called. No other dataclass may be its base.
 
     Examples
     --------
@@ -39,75 +43,131 @@ def record(cls: type[Made]) -> type[Made]:
     >>> Place(3) == Place(3, 1), len({Place(3), Place(3)})
     (True, 1)
     """
-    made = dataclass(init=False, repr=False, eq=False, slots=True)(cls)
-    own = fields(made)  # type: ignore[arg-type]
-    compared = _reader(tuple(f.name for f in own if f.compare))
-
-    def start(self: Made, *values: Any, **named: Any) -> None:
-        """Compile ``__init__`` in this one's place, and use it."""
-        made.__init__ = _initialiser(made, own)  # type: ignore[method-assign]
-        made.__init__(self, *values, **named)
-
-    def equal(self: Made, other: object) -> Any:
-        if other.__class__ is not self.__class__:
-            return NotImplemented
-        return compared(self) == compared(other)
-
-    def digest(self: Made) -> int:
-        return hash(compared(self))
-
-    def shown(self: Made) -> str:
-        told = ", ".join(f"{f.name}={getattr(self, f.name)!r}" for f in own if f.repr)
-        return f"{type(self).__qualname__}({told})"
-
-    def state(self: Made) -> list[Any]:
-        return [getattr(self, f.name) for f in own]
-
-    def restore(self: Made, values: list[Any]) -> None:
-        for one, value in zip(own, values, strict=True):
-            _put(self, one.name, value)
-
-    methods: dict[str, Callable[..., Any]] = {
-        "__init__": start, "__eq__": equal, "__hash__": digest, "__repr__": shown,
-        "__getstate__": state, "__setstate__": restore,
-        "__setattr__": _refuse, "__delattr__": _refuse,
-    }  # fmt: skip
-    for name, method in methods.items():
-        if name not in cls.__dict__:
-            setattr(made, name, method)
-    return made
+    own = dict(cls.__dict__)
+    types: dict[str, Any] = own.get("__annotations__") or cls.__annotations__
+    names = tuple(types)
+    given = {name: own.pop(name) for name in names if name in own}
+    options = {name: some for name, some in given.items() if isinstance(some, Field)}
+    compared = tuple(n for n in names if n not in options or options[n].compare)
+    taken = tuple(n for n in names if n not in options or options[n].init)
+    body = {
+        **_SHARED,
+        "__match_args__": taken,
+        "__dataclass_fields__": _Fields(types, given),
+        "_compared": _reader(compared),
+        "_shown": tuple(n for n in names if n not in options or options[n].repr),
+        **own,
+        "__slots__": names,
+        "__qualname__": cls.__qualname__,
+    }
+    if "__init__" not in own:
+        body["__init__"] = _initialiser(cls, taken, given)
+    for name in ("__dict__", "__weakref__"):
+        body.pop(name, None)
+    made = type(cls)(cls.__name__, cls.__bases__, body)  # type: ignore[misc]
+    return cast(type[Made], made)
 
 
-def _reader(names: tuple[str, ...]) -> Callable[[object], tuple[Any, ...]]:
-    """Gives the values of attributes as a tuple."""
-    if len(names) > 1:
-        return attrgetter(*names)
-    return lambda value: tuple(getattr(value, name) for name in names)
+class _Fields:
+    """What :mod:`dataclasses` tells of a class with these fields, made when first asked for."""
+
+    def __init__(self, types: dict[str, Any], given: dict[str, Any]) -> None:
+        self.types, self.given = types, given
+
+    def __get__(self, value: object, owner: type) -> Any:
+        """The fields by name; from then on they are an attribute of the class."""
+        twin = type(owner.__name__, (), {"__annotations__": self.types, **self.given})
+        twin.__module__, twin.__doc__ = owner.__module__, ""
+        twin = dataclass(init=False, repr=False, eq=False)(twin)
+        told = twin.__dataclass_fields__  # type: ignore[attr-defined]
+        owner.__dataclass_fields__ = told  # type: ignore[attr-defined]
+        return told
+
+
+def _equal(self: Any, other: Any) -> Any:
+    if other.__class__ is not self.__class__:
+        return NotImplemented
+    compared = self.__class__._compared
+    return compared(self) == compared(other)
+
+
+def _digest(self: Any) -> int:
+    return hash(self.__class__._compared(self))
+
+
+def _tell(self: Any) -> str:
+    told = ", ".join(f"{name}={getattr(self, name)!r}" for name in self._shown)
+    return f"{type(self).__qualname__}({told})"
+
+
+def _state(self: Any) -> list[Any]:
+    return [getattr(self, name) for name in self.__slots__]
+
+
+def _restore(self: Any, values: list[Any]) -> None:
+    for name, value in zip(self.__slots__, values, strict=True):
+        _put(self, name, value)
 
 
 def _refuse(self: object, name: str, value: object = None) -> NoReturn:
     raise FrozenInstanceError(f"cannot change field {name!r} of {type(self).__name__}")
 
 
-def _initialiser(made: type, own: tuple[Field[Any], ...]) -> Callable[..., None]:
-    """The compiled ``__init__`` of a record."""
-    names: dict[str, Any] = {"put": _put, "MISSING": MISSING}
-    heads, lines = ["self"], []
-    for one in own:
-        if one.init and one.default_factory is not MISSING:
-            names[f"new_{one.name}"] = one.default_factory
-            heads.append(f"{one.name}=MISSING")
-            lines.append(f"if {one.name} is MISSING: {one.name} = new_{one.name}()")
-        elif one.init and one.default is not MISSING:
-            names[f"usual_{one.name}"] = one.default
-            heads.append(f"{one.name}=usual_{one.name}")
-        elif one.init:
-            heads.append(one.name)
-        if one.init:
-            lines.append(f"put(self, {one.name!r}, {one.name})")
-    if hasattr(made, "__post_init__"):
-        lines.append("self.__post_init__()")
-    exec(f"def __init__({', '.join(heads)}):\n    " + "\n    ".join(lines or ["pass"]), names)
-    compiled: Callable[..., None] = names["__init__"]
-    compiled.__qualname__ = f"{made.__qualname__}.__init__"
-    return compiled
+_SHARED: dict[str, Any] = {
+    "__eq__": _equal, "__hash__": _digest, "__repr__": _tell,
+    "__getstate__": _state, "__setstate__": _restore,
+    "__setattr__": _refuse, "__delattr__": _refuse,
+}  # fmt: skip
+
+
+def _reader(names: tuple[str, ...]) -> Any:
+    """Gives the values of attributes as a tuple."""
+    if len(names) > 1:
+        return attrgetter(*names)
+    return staticmethod(lambda value: tuple(getattr(value, name) for name in names))
+
+
+def _initialiser(
+    cls: type, taken: tuple[str, ...], given: dict[str, Any]
+) -> Callable[..., None]:
+    """The ``__init__`` of a record with these fields, some of them with defaults."""
+    usual, makers = [], {}
+    for k, name in enumerate(taken):
+        default = given.get(name, MISSING)
+        if isinstance(default, Field):
+            if default.default_factory is not MISSING:
+                makers[f"new{k}"] = default.default_factory
+                default = None if default.default is MISSING else default.default
+                usual.append(MISSING)
+                continue
+            default = default.default
+        if default is not MISSING:
+            usual.append(default)
+        elif usual:
+            raise TypeError(f"field {name!r} without a default follows one with a default")
+    places = tuple(int(name[3:]) for name in makers)
+    code = _template(len(taken), places, hasattr(cls, "__post_init__"))
+    words = {f"a{k}": name for k, name in enumerate(taken)}
+    code = code.replace(
+        co_varnames=tuple(words.get(name, name) for name in code.co_varnames),
+        co_consts=tuple(words.get(c, c) if isinstance(c, str) else c for c in code.co_consts),
+        co_qualname=f"{cls.__qualname__}.__init__",
+    )
+    around = {"put": _put, "MISSING": MISSING, **makers}
+    return FunctionType(code, around, "__init__", tuple(usual))
+
+
+@cache
+def _template(count: int, makers: tuple[int, ...], afterwards: bool) -> CodeType:
+    """The code of an ``__init__`` of so many fields, called a0, a1, ...
+
+    ``makers`` are the places of those that are made anew where they are not given.
+    """
+    lines = [f"if a{k} is MISSING: a{k} = new{k}()" for k in makers]
+    lines += [f"put(self, 'a{k}', a{k})" for k in range(count)]
+    lines += ["self.__post_init__()"] if afterwards else []
+    heads = ", ".join(["self", *(f"a{k}" for k in range(count))])
+    made: dict[str, Any] = {}
+    exec(f"def __init__({heads}):\n    " + "\n    ".join(lines or ["pass"]), made)
+    code: CodeType = made["__init__"].__code__
+    return code
