@@ -65,7 +65,7 @@ def record(cls: type[Made]) -> type[Made]:
     for name in ("__dict__", "__weakref__"):
         body.pop(name, None)
     made = type(cls)(cls.__name__, cls.__bases__, body)  # type: ignore[misc]
-    return cast(type[Made], made)
+    return cast("type[Made]", made)
 
 
 class _Fields:
