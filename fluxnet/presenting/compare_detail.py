@@ -7,11 +7,15 @@ from fractions import Fraction
 from fluxnet.ground.table import Align, Column, Table
 from fluxnet.presenting.numbers import format_number, format_range
 from fluxnet.presenting.screen import Block, Heading, Sentence
+from fluxnet.studies.compare_modes import Mode
 from fluxnet.studies.compare_result import Ability, Comparison, Facts, ModeYield
 
-__all__ = ["detail_blocks", "fraction_text", "interval_text"]
+__all__ = ["MODE_TITLES", "detail_blocks", "fraction_text", "interval_text"]
 
-_LONGEST = 18
+MODE_TITLES = {Mode.ALONE: "alone", Mode.KEPT: "upkeep", Mode.RESERVED: "reserve"}
+"""The modes in one short word each; notes tell what they mean."""
+
+_LONGEST = 13
 
 
 def detail_blocks(comparison: Comparison, ability: Ability) -> tuple[Block, ...]:
@@ -62,7 +66,7 @@ def _yields(ability: Ability) -> Table:
     )
     rows = tuple(
         (
-            y.mode.value,
+            MODE_TITLES[y.mode],
             None if y.moles is None else float(y.moles),
             fraction_text(y.moles),
             None if y.carbon is None else float(y.carbon),

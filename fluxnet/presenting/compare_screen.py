@@ -5,7 +5,12 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from fluxnet.ground.table import Align, Cell, Column, Table
-from fluxnet.presenting.compare_detail import detail_blocks, fraction_text, interval_text
+from fluxnet.presenting.compare_detail import (
+    MODE_TITLES,
+    detail_blocks,
+    fraction_text,
+    interval_text,
+)
 from fluxnet.presenting.compare_tables import compare_data
 from fluxnet.presenting.numbers import format_number
 from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence
@@ -22,7 +27,6 @@ CAUTION = (
     "review, local codes and licensed engineers."
 )
 
-_TITLES = {Mode.ALONE: "alone", Mode.KEPT: "upkeep", Mode.RESERVED: "reserve"}
 _MOST = 40
 
 
@@ -84,10 +88,10 @@ def _ranking(comparison: Comparison, shown: Sequence[Ability]) -> Table:
     """The one table: yields of each mode, and what the last of them takes and gives off."""
     columns = (
         Column("#", ""),
-        Column("variant", "", wrap=12),
-        *(Column(_TITLES[m], "", align=Align.RIGHT, decimals=3) for m in comparison.modes),
+        Column("variant", "", wrap=9),
+        *(Column(MODE_TITLES[m], "", align=Align.RIGHT, decimals=3) for m in comparison.modes),
         Column("share", "", align=Align.RIGHT),
-        Column("held back by", "", wrap=10),
+        Column("held back by", "", wrap=9),
         Column("O2", "", align=Align.RIGHT, digits=3),
         # A third yield takes its place.
         Column("CO2" if len(comparison.modes) < len(Mode) else "", "", align=Align.RIGHT, digits=3),
@@ -224,7 +228,7 @@ def _how_sure(comparison: Comparison) -> list[Block]:
     odds = {o.worse: o.probability for o in comparison.odds}
     columns = (
         Column("variant", "", wrap=20),
-        *(Column(_TITLES[m], "", wrap=14) for m in comparison.modes),
+        *(Column(MODE_TITLES[m], "", wrap=14) for m in comparison.modes),
         Column("beaten", "", align=Align.RIGHT),
     )
     rows = tuple(

@@ -134,7 +134,6 @@ class Ability:
     rank: int = 0
     tied: tuple[str, ...] = ()
     is_best_of_all: bool = False
-    odds: float | None = None
     staircase: Staircase | None = None
 
     @property
