@@ -72,7 +72,7 @@ class Modes:
 
 
 def find_modes(
-    cone: Cone, *, memory: float | None = None, progress: Progress = silent
+    cone: Cone, *, memory: float | None = None, beside: int = 0, progress: Progress = silent
 ) -> Modes:
     """All elementary modes, or, where the search is stopped, those found until then.
 
@@ -80,6 +80,8 @@ def find_modes(
     ----------
     memory
         The most bytes that rays and modes may take; None is no bound.
+    beside
+        The bytes that whoever asks will need for each mode.
     progress
         Told the columns imposed, with the number of rays. Ctrl-C ends the search with what it
         has.
@@ -94,7 +96,7 @@ def find_modes(
     ([[0, 1, -2], [1, 0, 1], [2, 1, 0]], 'complete')
     """
     small = compress(cone)
-    rays = _Rays(cone, small, memory)
+    rays = _Rays(cone, small, memory, beside)
     ending = Ending.COMPLETE
     try:
         while rays.waiting:
@@ -114,7 +116,9 @@ def find_modes(
 class _Rays:
     """The rays of the columns imposed so far: fluxes of the groups, and patterns of bits."""
 
-    def __init__(self, cone: Cone, small: SmallCone, memory: float | None) -> None:
+    def __init__(
+        self, cone: Cone, small: SmallCone, memory: float | None, beside: int = 0
+    ) -> None:
         self.names = [cone.columns[g.members[0][0]] for g in small.groups]
         self.both_ways = np.array([g.both_ways for g in small.groups], dtype=bool)
         self.memory, self.needed, self._room = memory, 0, 0
@@ -126,7 +130,7 @@ class _Rays:
         for j in small.free:
             self._mark(self.values, self.patterns, j)
         self._wide = 8 * (len(small.groups) + self.words)
-        self._lifted = 16 * len(cone.columns)
+        self._lifted = 16 * len(cone.columns) + beside
 
     def progress(self) -> tuple[int, int]:
         """Columns imposed, and all columns."""

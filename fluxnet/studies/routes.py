@@ -25,6 +25,10 @@ __all__ = ["MEMORY", "find_routes"]
 MEMORY = 2e9
 """The usual bound on memory, in bytes."""
 
+_TOLD = 2_000
+"""Bytes that a route takes at most when it is told (measured: 1,900 where none shares its net
+equation)."""
+
 
 def find_routes(
     network: Network,
@@ -89,7 +93,7 @@ def find_routes(
     )
     if best is not None and taken is not None and made is not None:
         return find_best(system, taken, made, best, progress)
-    found = find_modes(system.cone, memory=memory, progress=progress)
+    found = find_modes(system.cone, memory=memory, beside=_TOLD, progress=progress)
     groups = group_routes(system, found.values, taken, made)
     routes = Routes(
         network.title, network.variant, taken, made, system, found.values, groups, found.ending,

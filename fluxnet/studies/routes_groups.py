@@ -10,9 +10,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.exact.sparse import SparseRow
-from fluxnet.ground.record import record
 from fluxnet.modes.whole import Whole, reduced, times
-from fluxnet.studies.equations import reference_substrate
+from fluxnet.network.model import Network
 from fluxnet.studies.routes_result import Energy, RouteGroup
 from fluxnet.studies.routes_system import RouteSystem
 
@@ -29,18 +28,38 @@ def group_routes(
     if not len(values):
         return ()
     releases, divisor = numbers_of(values, [form for _, form in system.releases])
-    numbers = _Numbers(
-        releases.astype(np.float64) / divisor,
-        _energies(system, values),
-        (values[:, : len(system.turned)] != 0).sum(axis=1),
-    )
+    amounts = releases.astype(np.float64) / divisor
+    left = _energies(system, values)
+    sizes = (values[:, : len(system.turned)] != 0).sum(axis=1)
     equations, member = _distinct(reduced(releases))
-    order = np.lexsort((numbers.sizes, member))
+    order = np.lexsort((sizes, member))
     starts = np.searchsorted(member[order], np.arange(len(equations) + 1))
-    groups = [
-        _group(system, equation, order[starts[k] : starts[k + 1]], numbers, substrate, product)
-        for k, equation in enumerate(equations)
-    ]
+    names = [name for name, _ in system.releases]
+    per = _per(system.network, names, equations, substrate)
+    taken = -amounts[order, per[member[order]]]
+    with np.errstate(divide="ignore", invalid="ignore"):
+        spare = left[order] / taken[:, None]
+    low = np.minimum.reduceat(spare, starts[:-1], axis=0).tolist()
+    high = np.maximum.reduceat(spare, starts[:-1], axis=0).tolist()
+    shortest = sizes[order[starts[:-1]]].tolist()
+    groups = []
+    for k, (equation, place) in enumerate(zip(equations.tolist(), per.tolist(), strict=True)):
+        told = place >= 0
+        name = names[place] if told else None
+        gain = None
+        if product is not None and told and name == substrate:
+            gain = Fraction(equation[names.index(product)], -equation[place])
+        energy = zip((c for c, _ in system.energy), low[k], high[k], strict=True) if told else ()
+        groups.append(
+            RouteGroup(
+                tuple((n, v) for n, v in zip(names, equation, strict=True) if v),
+                name,
+                gain,
+                tuple(Energy(*ends) for ends in energy),
+                order[starts[k] : starts[k + 1]],
+                shortest[k],
+            )
+        )
     return tuple(sorted(groups, key=lambda group: _rank(group, substrate)))
 
 
@@ -63,15 +82,6 @@ def numbers_of(values: Whole, forms: Sequence[SparseRow]) -> tuple[Whole, int]:
     return times(values, matrix), shared
 
 
-@record
-class _Numbers:
-    """Of each route the releases and what is left of carriers as floats, and its length."""
-
-    releases: Array
-    energies: Array
-    sizes: NDArray[np.intp]
-
-
 def _energies(system: RouteSystem, values: Whole) -> Array:
     if not system.energy:
         return np.zeros((len(values), 0))
@@ -79,44 +89,32 @@ def _energies(system: RouteSystem, values: Whole) -> Array:
     return numbers.astype(np.float64) / divisor
 
 
-def _distinct(rows: Whole) -> tuple[list[tuple[int, ...]], NDArray[np.intp]]:
+def _distinct(rows: Whole) -> tuple[Whole, NDArray[np.intp]]:
     """The different rows, and which of them each row is."""
     if rows.dtype != object:
         found, member = np.unique(rows, axis=0, return_inverse=True)
-        return [tuple(row) for row in found.tolist()], member.reshape(-1)
+        return found, member.reshape(-1)
     places: dict[tuple[int, ...], int] = {}
     listed = [places.setdefault(tuple(row), len(places)) for row in rows.tolist()]
-    return list(places), np.array(listed, dtype=np.intp)
+    return np.array(list(places), dtype=object), np.array(listed, dtype=np.intp)
 
 
-def _group(
-    system: RouteSystem,
-    equation: tuple[int, ...],
-    members: NDArray[np.intp],
-    numbers: _Numbers,
-    substrate: str | None,
-    product: str | None,
-) -> RouteGroup:
-    names = [name for name, _ in system.releases]
-    terms = tuple((name, v) for name, v in zip(names, equation, strict=True) if v)
-    amounts = dict(terms)
-    per = substrate if substrate is not None and amounts.get(substrate, 0) < 0 else None
-    gain = None
-    if per is not None and product is not None:
-        gain = Fraction(amounts.get(product, 0), -amounts[per])
-    if per is None:
-        per = reference_substrate(system.network, {name: float(v) for name, v in terms})
-    told: list[Energy] = []
-    if per is not None:
-        taken = -numbers.releases[members, names.index(per)]
-        for k, (name, _) in enumerate(system.energy):
-            left = numbers.energies[members, k] / taken
-            told.append(Energy(name, float(left.min()), float(left.max())))
-    return RouteGroup(terms, per, gain, tuple(told), members, int(numbers.sizes[members[0]]))
+def _per(
+    network: Network, names: list[str], equations: Whole, substrate: str | None
+) -> NDArray[np.intp]:
+    """The column of what each equation is told per; -1 where nothing with carbon is taken up."""
+    found = np.full(len(equations), -1, dtype=np.intp)
+    foods = [
+        s.name for s in network.boundary if s.formula is not None and s.formula.count("C") > 0
+    ]
+    for name in (*reversed(foods), *([substrate] if substrate is not None else [])):
+        place = names.index(name)
+        found[equations[:, place] < 0] = place
+    return found
 
 
-def _rank(group: RouteGroup, substrate: str | None) -> tuple[bool, Fraction, bool, int, int]:
+def _rank(group: RouteGroup, substrate: str | None) -> tuple[bool, float, bool, int, int]:
     """Routes from the substrate first, the best yield first, the shortest first."""
-    from_it = substrate is None or group.product_yield is not None or group.substrate == substrate
-    best = -(group.product_yield or Fraction(0))
-    return not from_it, best, group.substrate is None, group.shortest, -group.count
+    elsewhere = substrate is not None and group.substrate != substrate
+    best = -float(group.product_yield or 0)
+    return elsewhere, best, group.substrate is None, group.shortest, -group.count

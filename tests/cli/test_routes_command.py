@@ -119,7 +119,7 @@ def test_ctrl_c_keeps_what_was_found(
     found = search.find_modes
     monkeypatch.setattr(
         "fluxnet.studies.routes.find_modes",
-        lambda cone, memory=None, progress=silent: found(cone, memory=memory, progress=stop),
+        lambda cone, progress=silent, **bounds: found(cone, **bounds, progress=stop),
     )
     assert run(TO_ETHANOL) == Exit.INTERRUPTED
     shown = capsys.readouterr().out
