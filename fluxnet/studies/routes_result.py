@@ -128,10 +128,6 @@ class Routes:
         """Whether routes were found, and all that were asked for."""
         return self.count > 0 and self.ending is Ending.COMPLETE
 
-    def find_group(self, k: int) -> int:
-        """The place of the group of a route."""
-        return next(g for g, group in enumerate(self.groups) if k in group.members)
-
     def route(self, k: int, group: RouteGroup) -> Route:
         """One route of a group, by its place in ``values``."""
         system = self.system

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from fractions import Fraction
 from pathlib import Path
 
@@ -170,6 +171,31 @@ def test_the_best_are_those_of_a_full_search(
     assert len(set(found)) == len(found)
     if len(found) < count:
         assert best.words == f"No other route from {substrate} makes {product}."
+
+
+def test_the_order_of_the_lines_and_the_size_of_a_reaction_change_no_route() -> None:
+    net = model("mixed-acid")
+    turned = replace(net, reactions=net.reactions[::-1])
+    doubled = network(
+        "\n".join(line.replace("pyruvate + NADH <-> lactate", "2 pyruvate + 2 NADH <-> 2 lactate")
+                  for line in SMALL.splitlines() if "xyl" not in line)
+    )  # fmt: skip
+
+    def told(routes: Routes) -> set:
+        return {(tuple(sorted(g.terms)), g.product_yield, g.count) for g in routes.groups}
+
+    options = {"substrate": "glucose", "product": "ethanol"}
+    assert told(find_routes(net, **options)) == told(find_routes(turned, **options))
+    assert told(find_routes(small(), **options)) == told(find_routes(doubled, **options))
+
+
+def test_an_exchange_species_goes_the_way_that_the_question_names() -> None:
+    net = model("mixed-acid")
+    made = find_routes(net, substrate="glucose", product="CO2")
+    every = find_routes(net)
+
+    assert any(dict(g.terms).get("CO2", 0) < 0 for g in every.groups)
+    assert all(dict(g.terms).get("CO2", 0) >= 0 for g in made.groups)
 
 
 def test_a_yield_that_another_substrate_lifts_without_end_is_told() -> None:
