@@ -24,10 +24,13 @@ def count_words(routes: Routes) -> str:
         done = routes.ending is Ending.COMPLETE
         return "No route." if done else "The search was not ended; no route was found until then."
     if routes.wanted is not None:
-        share = "The one route" if routes.count == 1 else f"The {routes.count} routes"
+        what = f"of the largest yield of {routes.product} on {routes.substrate}"
+        if routes.count == 1:
+            return f"The route {what}: {_best(routes)} mol/mol, proven."
+        least = min(g.product_yield or 0 for g in routes.groups)
         return (
-            f"{share} of the largest yield of {routes.product} on {routes.substrate}, in their "
-            f"order: {_best(routes)} mol/mol at most. The order is proven."
+            f"The {routes.count} routes {what}: {_best(routes)} to {format_number(float(least))} "
+            "mol/mol. That there are no better ones is proven."
         )
     begun = "" if routes.ending is Ending.COMPLETE else "Not all routes: "
     words = f"{begun}{many(routes.count, 'route')} with {many(len(routes.groups), 'net equation')}."

@@ -18,7 +18,7 @@ from fluxnet.studies.routes_cuts import find_cuts
 from fluxnet.studies.routes_groups import group_routes
 from fluxnet.studies.routes_result import Routes
 from fluxnet.studies.routes_system import Openings, route_system
-from fluxnet.studies.routes_words import why_none
+from fluxnet.studies.routes_words import why_no_product, why_none
 
 __all__ = ["MEMORY", "find_routes"]
 
@@ -101,6 +101,11 @@ def find_routes(
     )  # fmt: skip
     if not groups and found.ending is Ending.COMPLETE:
         routes = replace(routes, words=why_none(system))
+    making = [g for g in groups if dict(g.terms).get(made or "", 0) > 0]
+    ours = any(g.product_yield for g in making)
+    if groups and taken is not None and made is not None and not ours:
+        words = why_no_product(system, taken, made, made_elsewhere=bool(making))
+        routes = replace(routes, words=words if found.ending is Ending.COMPLETE else "")
     if keep_above is not None and found.ending is Ending.COMPLETE:
         above = Fraction(str(keep_above))
         routes = replace(routes, cuts=find_cuts(routes, above, progress))

@@ -11,6 +11,7 @@ from fluxnet.studies.routes_groups import group_routes
 from fluxnet.studies.routes_result import Routes
 from fluxnet.studies.routes_search import Search
 from fluxnet.studies.routes_system import RouteSystem
+from fluxnet.studies.routes_words import why_no_product
 
 __all__ = ["find_best"]
 
@@ -45,7 +46,11 @@ def find_best(
             "the other substrates (limit OTHER <= 0)."
         )
     elif len(found) < count and ending is Ending.COMPLETE:
-        words = f"No other route from {substrate} makes {product}."
+        words = (
+            f"No other route from {substrate} makes {product}."
+            if found
+            else why_no_product(system, substrate, product, made_elsewhere=False)
+        )
     values = whole_rows(found, len(system.cone.columns))
     groups = group_routes(system, values, substrate, product)
     return Routes(

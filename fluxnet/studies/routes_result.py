@@ -125,8 +125,9 @@ class Routes:
 
     @property
     def is_sound(self) -> bool:
-        """Whether routes were found, and all that were asked for."""
-        return self.count > 0 and self.ending is Ending.COMPLETE
+        """Whether all routes were found that were asked for, and one makes the product."""
+        makes = self.product is None or any(group.product_yield for group in self.groups)
+        return self.count > 0 and makes and self.ending is Ending.COMPLETE
 
     def route(self, k: int, group: RouteGroup) -> Route:
         """One route of a group, by its place in ``values``."""

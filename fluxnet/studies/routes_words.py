@@ -1,10 +1,11 @@
-"""Why a network has no route."""
+"""Why a network has no route, or none to a product."""
 
 from __future__ import annotations
 
+from fluxnet.studies.compare_obstacles import tell_obstacle
 from fluxnet.studies.routes_system import RouteSystem
 
-__all__ = ["why_none"]
+__all__ = ["why_no_product", "why_none"]
 
 _MOST = 4
 
@@ -51,3 +52,24 @@ def why_none(system: RouteSystem) -> str:
         "Every species is made and used somewhere, but no proportion of the reactions balances "
         "all of them: fluxnet check tells which reactions can carry no flux, and why."
     )
+
+
+def why_no_product(
+    system: RouteSystem, substrate: str, product: str, *, made_elsewhere: bool
+) -> str:
+    """Why no route from the substrate makes the product, as far as it can be told.
+
+    Parameters
+    ----------
+    made_elsewhere
+        Whether routes that do without the substrate make it.
+    """
+    head = f"No route from {substrate} makes {product}"
+    if made_elsewhere:
+        return f"{head}; routes that take up something else do."
+    named = {name for name, _ in system.releases}
+    opened = any(species.name in named for species in system.network.carriers)
+    why = "" if opened else tell_obstacle(system.network, product)
+    if not why or why.startswith("the limits and demands"):
+        return f"{head}."
+    return f"{head}: {why}."

@@ -174,6 +174,35 @@ def test_a_network_without_a_route_says_why(
     assert "nothing uses it" in shown
 
 
+def test_a_product_that_no_route_makes_is_told_with_what_is_in_the_way(
+    folder: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    (folder / "short.flux").write_text(
+        """
+substrate  glucose
+product    ethanol, succinate
+exchange   CO2
+carrier    ATP, NADH
+inside     pyruvate
+inside     OAA  C4H4O5
+compartment catabolism
+    glycolysis : glucose -> 2 pyruvate + 2 ATP + 2 NADH
+    pdc        : pyruvate + NADH -> ethanol + CO2
+    pyc        : pyruvate + CO2 + ATP -> OAA
+    frd        : OAA + 2 NADH -> succinate
+compartment maintenance
+    upkeep     : ATP -> nothing
+""",
+        encoding="utf-8",
+    )
+    for more in ([], ["--best", "3"]):
+        assert run(["routes", "short.flux", "--to", "succinate", *more]) == Exit.FINDING
+        shown = " ".join(capsys.readouterr().out.split())
+        assert "No route from glucose makes succinate: frd, which makes it, cannot run" in shown
+        assert "NADH" in shown
+    assert run(["routes", "short.flux", "--to", "succinate", "--open", "NADH"]) == Exit.SOUND
+
+
 def test_python_has_the_same_routes(capsys: pytest.CaptureFixture[str]) -> None:
     answer = fx.routes(fx.read_model("mixed-acid.flux"), substrate="glucose", product="ethanol")
     found = document(TO_ETHANOL, capsys)

@@ -16,7 +16,7 @@ from fluxnet.modes.enumerate import find_modes
 from fluxnet.studies.routes_search import Search
 
 sys.path.insert(0, str(Path(__file__).resolve().parents[1] / "modes"))
-from small_cones import cones  # noqa: E402
+from small_cones import cones
 
 ONE = Fraction(1)
 
