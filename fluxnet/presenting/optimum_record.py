@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
-from fluxnet.studies.bill import Bill
-from fluxnet.studies.solution import FluxSolution
+if TYPE_CHECKING:
+    from fluxnet.studies.bill import Bill
+    from fluxnet.studies.solution import FluxSolution
 
 __all__ = ["bill_lines", "limits_record", "prices_record", "proof_record"]
 

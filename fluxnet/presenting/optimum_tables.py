@@ -5,7 +5,6 @@ from __future__ import annotations
 from math import isinf
 
 from fluxnet.ground.table import Align, Column, Table
-from fluxnet.presenting.bill_table import BillTitles, bill_tables
 from fluxnet.presenting.numbers import format_number, format_range
 from fluxnet.presenting.screen import Block, Mood, Sentence
 from fluxnet.studies.solution import FluxSolution, SolveStatus
@@ -14,7 +13,6 @@ __all__ = [
     "doubt_blocks", "limits_table", "price_notes", "price_words", "prices_table", "proof_blocks",
 ]  # fmt: skip
 
-_BILL = BillTitles("what has to be paid", "supplied by", "left over")
 _DIGITS = 5  # one more than the optimum is told with
 _IMPOSSIBLE = "impossible"
 
@@ -114,7 +112,10 @@ def proof_blocks(run: FluxSolution, *, with_bill: bool) -> tuple[Block, ...]:
     if not bill.verified:
         return (Sentence("The bill does not add up in exact arithmetic.", Mood.BAD),)
     title = f"Bill of the optimum [{bill.unit}]"
-    tables = bill_tables(bill, title, _BILL, _DIGITS) if bill.lines else ()
+    from fluxnet.presenting.bill_table import BillTitles, bill_tables
+
+    titles = BillTitles("what has to be paid", "supplied by", "left over")
+    tables = bill_tables(bill, title, titles, _DIGITS) if bill.lines else ()
     told = (
         f"{run.proof.words}: {bill.words[:1].lower()}{bill.words[1:]} As fractions the two sides "
         "are equal; their difference is 0."

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
-from fluxnet.studies.plan_result import Option, Plan
-from fluxnet.studies.shares import Correlated, Share
+if TYPE_CHECKING:
+    from fluxnet.studies.plan_result import Option, Plan
+    from fluxnet.studies.shares import Correlated, Share
 
 __all__ = ["correlated_record", "plan_record", "shares_record"]
 

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from typing import Any
 
-from fluxnet.presenting.conflict_record import conflict_record
 from fluxnet.presenting.heat_record import heat_record
 from fluxnet.presenting.optimum_record import limits_record, prices_record, proof_record
 from fluxnet.presenting.plan_record import correlated_record, plan_record, shares_record
@@ -140,7 +139,7 @@ def _run(run: FluxSolution) -> Record:
         ],
         "prices": prices_record(run),
         "limits": limits_record(run),
-        "conflict": conflict_record(run),
+        "conflict": _conflict(run),
         "unbounded": None
         if run.unbounded is None
         else {
@@ -171,3 +170,12 @@ def _run(run: FluxSolution) -> Record:
         "extras": dict(run.extras),
         "notes": [diagnostic_record(note) for note in run.notes],
     }
+
+
+def _conflict(run: FluxSolution) -> Record | None:
+    """Why it cannot be, where it cannot."""
+    if not run.conflicts:
+        return None
+    from fluxnet.presenting.conflict_record import conflict_record
+
+    return conflict_record(run)

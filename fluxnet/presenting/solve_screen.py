@@ -7,7 +7,6 @@ from math import ceil, log10
 from typing import TYPE_CHECKING
 
 from fluxnet.ground.table import Align, Column, Table
-from fluxnet.presenting.conflict_blocks import conflict_blocks, unbounded_blocks
 from fluxnet.presenting.heat_blocks import heat_caution
 from fluxnet.presenting.numbers import format_number, format_p
 from fluxnet.presenting.optimum_tables import doubt_blocks, proof_blocks
@@ -101,8 +100,7 @@ def _run_blocks(
         *doubt_blocks(run),
         *_assumptions(run),
         *_suspects(run, everything=everything),
-        *conflict_blocks(run, prices=with_bill),
-        *unbounded_blocks(run),
+        *_obstacles(run, prices=with_bill),
     ]
     if run.plan is not None:
         return (*blocks, *_planned(run, run.plan))
@@ -120,6 +118,15 @@ def _run_blocks(
         # The verdict has scrolled away by now; nobody should read the tables without it.
         blocks.append(Sentence(f"{heading[0].upper()}{heading[1:]}; not to be trusted.", mood))
     return tuple(blocks)
+
+
+def _obstacles(run: FluxSolution, *, prices: bool) -> tuple[Block, ...]:
+    """Why it cannot be, or what has no end."""
+    if not run.conflicts and run.least_change is None and run.unbounded is None:
+        return ()
+    from fluxnet.presenting.conflict_blocks import conflict_blocks, unbounded_blocks
+
+    return (*conflict_blocks(run, prices=prices), *unbounded_blocks(run))
 
 
 def _planned(run: FluxSolution, plan: Plan) -> list[Block]:

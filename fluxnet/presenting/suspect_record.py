@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
-from fluxnet.presenting.suspect_text import suspect_words
-from fluxnet.studies.suspect_result import Suspect, Suspects
+if TYPE_CHECKING:
+    from fluxnet.studies.suspect_result import Suspect, Suspects
 
 __all__ = ["suspect_keys"]
 
@@ -39,6 +39,8 @@ def suspect_keys(suspects: Suspects | None) -> Record:
 
 
 def _suspect(suspect: Suspect) -> Record:
+    from fluxnet.presenting.suspect_text import suspect_words
+
     return {
         "kind": suspect.kind.value,
         "species": suspect.name,

@@ -5,7 +5,6 @@ The solver's own model is made by :mod:`fluxnet.solving.solver_model`.
 
 from __future__ import annotations
 
-from enum import Enum
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -14,6 +13,7 @@ from numpy.typing import NDArray
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.record import record
 from fluxnet.solving.basis_proof import Basis, is_best, is_spread
+from fluxnet.solving.outcome import Outcome
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.residuals import (
     Entries,
@@ -44,15 +44,6 @@ _ATTEMPTS = (
     (_DUAL, 1e-7),
     (_PRIMAL, 1e-7),
 )
-
-
-class Outcome(Enum):
-    """How a solve ended. ``FAILED``: the solver gave up; nothing may be concluded."""
-
-    OPTIMAL = "optimal"
-    INFEASIBLE = "infeasible"
-    UNBOUNDED = "unbounded"
-    FAILED = "failed"
 
 
 @record

@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.record import record
 from fluxnet.solving.careful import approach, is_unbounded, nearest_to
-from fluxnet.solving.linear import Outcome
+from fluxnet.solving.outcome import Outcome
 from fluxnet.solving.small_programme import FEASIBLE, SmallProgramme, ask, polish
 
 __all__ = ["Outcome", "QuadraticSolution", "solve_quadratic", "solve_scaled"]

@@ -9,7 +9,6 @@ from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.record import record
 from fluxnet.network.model import Limit, Network, Quantity
 from fluxnet.solving.flux_fit import FluxKind, FluxRelation, RateKind
-from fluxnet.studies.bill import Bill
 from fluxnet.studies.equations import NetEquation
 from fluxnet.studies.heat_run import RunHeat
 from fluxnet.studies.ledger import LedgerLine
@@ -21,6 +20,7 @@ if TYPE_CHECKING:
     from fluxnet.solving.proof import Proof
     from fluxnet.solving.unbounded import Unbounded
     from fluxnet.studies.aims import Aim
+    from fluxnet.studies.bill import Bill
     from fluxnet.studies.conflicts import ToldConflict
     from fluxnet.studies.plan_result import Plan
     from fluxnet.studies.suspect_result import Suspects
