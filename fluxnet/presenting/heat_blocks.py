@@ -15,8 +15,8 @@ from fluxnet.studies.solution import FluxSolution, SolveStatus
 __all__ = ["heat_blocks", "heat_caution"]
 
 _CAUTION = (
-    "Heat is an estimate for planning: cooling, oxygen supply and off-gas are sized with the site's own "
-    "safety review, local codes and licensed engineers."
+    "Heat is an estimate for planning: cooling, oxygen supply and off-gas are sized with the "
+    "site's own safety review, local codes and licensed engineers."
 )
 
 # A heat whose range is no wider than this part of it is as good as known.
