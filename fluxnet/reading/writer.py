@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 from fractions import Fraction
 from itertools import groupby
 
@@ -31,11 +31,12 @@ from fluxnet.reading.tidy import tidy_text
 __all__ = ["write_model"]
 
 
-def write_model(network: Network) -> str:
+def write_model(network: Network, comments: Mapping[str, str] | None = None) -> str:
     r"""The text of a network: reading it gives the network again, up to places.
 
     Solved ``?`` are written as ``?``. A number without an exact decimal, which only a network
-    that was made by hand can hold, is written as a fraction in brackets.
+    that was made by hand can hold, is written as a fraction in brackets. ``comments``, by the
+    name of a reaction, stand behind its line.
 
     Examples
     --------
@@ -50,10 +51,10 @@ def write_model(network: Network) -> str:
     compartment c
         a : formate + 0.5 oxygen -> CO2
     """
-    return tidy_text("\n".join(_lines(network)))
+    return tidy_text("\n".join(_lines(network, comments or {})))
 
 
-def _lines(network: Network) -> Iterator[str]:
+def _lines(network: Network, comments: Mapping[str, str]) -> Iterator[str]:
     accepts = _Accepts(
         [*network.acceptances, *(a for v in network.variants for a in v.acceptances)]
     )
@@ -72,7 +73,7 @@ def _lines(network: Network) -> Iterator[str]:
     yield ""
     for parameter in network.parameters:
         yield f"parameter {_assignment(parameter)}{accepts.at(parameter.span)}"
-    yield from _compartments(network.compartments, network.reactions, accepts)
+    yield from _compartments(network.compartments, network.reactions, accepts, comments)
     yield ""
     for limit in network.limits:
         yield f"limit {_limit(limit, roles)}{accepts.at(limit.span)}"
@@ -174,7 +175,10 @@ def _assignment(parameter: Parameter) -> str:
 
 
 def _compartments(
-    compartments: Sequence[Compartment], reactions: Sequence[Reaction], accepts: _Accepts
+    compartments: Sequence[Compartment],
+    reactions: Sequence[Reaction],
+    accepts: _Accepts,
+    comments: Mapping[str, str],
 ) -> Iterator[str]:
     """The compartments in their order, with the reactions in theirs."""
     waiting = {c.name: c for c in compartments}
@@ -191,7 +195,8 @@ def _compartments(
                 current = reaction.compartment
                 yield ""
                 yield f"compartment {current}"
-        yield f"    {_reaction(reaction)}{accepts.at(reaction.span)}"
+        comment = f"  # {comments[reaction.name]}" if reaction.name in comments else ""
+        yield f"    {_reaction(reaction)}{accepts.at(reaction.span)}{comment}"
     for name, compartment in waiting.items():
         yield ""
         yield f"compartment {name}{accepts.at(compartment.span)}"
