@@ -20,6 +20,7 @@ from fluxnet.reading.lines import LONGEST, LogicalLine, logical_lines
 from fluxnet.reading.parsing import Unparsed, parse_statement
 from fluxnet.reading.scope import words_of
 from fluxnet.reading.source import read_source
+from fluxnet.reading.statement_cache import keep_statements, kept_statements, statement_file
 
 __all__ = ["Loaded", "Place", "load_statements"]
 
@@ -80,7 +81,7 @@ def _load(
     findings: Findings, loaded: Loaded,
 ) -> None:
     loaded.sources.append(source)
-    parsed = [(line, _parse(line, findings)) for line in logical_lines(source)]
+    parsed = _parse_all(logical_lines(source), chain[-1] if chain else None, findings)
     known = _known(parsed)
     for line, said in parsed:
         if isinstance(said, Unparsed) and len(line.text) <= LONGEST:
@@ -95,6 +96,19 @@ def _load(
             _use(one.line, use, folder, chain, place, findings, loaded)
         else:
             loaded.placed.append(one)
+
+
+def _parse_all(
+    lines: Iterable[LogicalLine], path: Path | None, findings: Findings
+) -> list[tuple[LogicalLine, s.Statement | Unparsed]]:
+    """What each line says; of a file's lines those are parsed that it did not hold before."""
+    file = None if path is None else statement_file(path)
+    kept = {} if file is None else kept_statements(file)
+    parsed = [(line, kept.get(line.text) or _parse(line, findings)) for line in lines]
+    said = {line.text: one for line, one in parsed if isinstance(one, s.Statement)}
+    if file is not None and said.keys() != kept.keys():
+        keep_statements(said, file)
+    return parsed
 
 
 def _parse(line: LogicalLine, findings: Findings) -> s.Statement | Unparsed:
