@@ -77,7 +77,8 @@ class _Fields:
     def __get__(self, value: object, owner: type) -> Any:
         """The fields by name; from then on they are an attribute of the class."""
         twin = type(owner.__name__, (), {"__annotations__": self.types, **self.given})
-        twin.__module__, twin.__doc__ = owner.__module__, ""
+        # Without a text of its own it would be given its signature, at ten times the cost.
+        twin.__module__, twin.__doc__ = owner.__module__, owner.__name__
         twin = dataclass(init=False, repr=False, eq=False)(twin)
         told = twin.__dataclass_fields__  # type: ignore[attr-defined]
         owner.__dataclass_fields__ = told  # type: ignore[attr-defined]
@@ -124,7 +125,10 @@ def _reader(names: tuple[str, ...]) -> Any:
     """Gives the values of attributes as a tuple."""
     if len(names) > 1:
         return attrgetter(*names)
-    return staticmethod(lambda value: tuple(getattr(value, name) for name in names))
+    if not names:
+        return staticmethod(lambda value: ())
+    only = attrgetter(*names)
+    return staticmethod(lambda value: (only(value),))
 
 
 def _initialiser(
