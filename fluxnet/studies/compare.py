@@ -133,10 +133,10 @@ def compare(
         reserve=", ".join(r.words for r in reserves),
         abilities=ranked,
         skipped=cases.skipped,
-        notes=cases.notes,
+        notes=(*cases.notes, *_cut_short(drawn, draws)),
         uncertain=drawn.names,
         odds=_odds(ranked, drawn),
-        draws=draws if drawn.names else 0,
+        draws=drawn.count,
         seed=seed,
         words="",
         second="",
@@ -144,6 +144,12 @@ def compare(
     return replace(
         comparison, words=tell_comparison(comparison), second=tell_second(comparison)
     )
+
+
+def _cut_short(drawn: Drawn, draws: int) -> tuple[str, ...]:
+    if drawn.names and drawn.count < draws:
+        return (f"interrupted: the intervals are of {drawn.count} draws, not {draws}",)
+    return ()
 
 
 def _positive(value: Fraction | float | str, what: str) -> Fraction:

@@ -225,11 +225,15 @@ def _case(
 
 
 def _feeds(species: Species) -> bool:
-    """Whether a substrate brings carbon or electrons."""
-    if species.role is not Role.SUBSTRATE or species.formula is None:
+    """Whether a species brings carbon or electrons when it is taken up.
+
+    Of those that go either way carbon without electrons stays open: it is CO2 as a rule.
+    """
+    if species.role not in (Role.SUBSTRATE, Role.EXCHANGE) or species.formula is None:
         return False
-    electrons = degree_of_reduction(species.formula)
-    return species.formula.count("C") > 0 or (electrons is not None and electrons > 0)
+    electrons = degree_of_reduction(species.formula) or 0
+    carbon = species.role is Role.SUBSTRATE and species.formula.count("C") > 0
+    return carbon or electrons > 0
 
 
 def _shut_by(network: Network, substrate: str) -> str | None:

@@ -50,10 +50,11 @@ class Asked:
 
 @record
 class Drawn:
-    """Yields [mol/mol] at draws of the numbers of some ``names``, by case and mode."""
+    """Yields [mol/mol] at ``count`` draws of the numbers of some ``names``, by case and mode."""
 
     names: tuple[str, ...]
     values: Mapping[tuple[str, Mode], Array]
+    count: int = 0
 
     def of(self, name: str, mode: Mode, otherwise: Array | None = None) -> Array | None:
         """The draws of a case's yield in one mode."""
@@ -76,7 +77,7 @@ def draw_all(
     """The yields at draws of all numbers with ± that any of them rests on.
 
     Where nothing is feasible at a draw, such as a maintenance that cannot be met, the yield
-    counts as 0.
+    counts as 0. An interruption keeps the draws that are done.
     """
     names = _uncertain(families, asked)
     if not names or not draws:
@@ -87,21 +88,32 @@ def draw_all(
         for name in names
     }
     groups = [[k for k, one in enumerate(asked) if one.family == f] for f in range(len(families))]
-    for d in range(draws):
-        progress("draws", d, draws)
-        at = {name: float(level[d]) for name, level in levels.items()}
-        for family, own in zip(families, groups, strict=True):
-            questions = [(asked[k].member, _question(asked[k], at)) for k in own]
-            if not own:
-                continue
-            matrix = _matrix(family, at)
-            solved = scan(family, questions, asked[own[0]].product, matrix, places=False)
-            for k, one in zip(own, solved, strict=True):
-                if one.solution.outcome is Outcome.OPTIMAL:
-                    found[k, d] = one.solution.objective * _per_mole(asked[k])
-    return Drawn(
-        names, {(one.name, one.mode): row for one, row in zip(asked, found, strict=True)}
-    )
+    done = 0
+    try:
+        for d in range(draws):
+            progress("draws", d, draws)
+            at = {name: float(level[d]) for name, level in levels.items()}
+            for family, own in zip(families, groups, strict=True):
+                if own:
+                    found[own, d] = _one_draw(family, [asked[k] for k in own], at)
+            done = d + 1
+    except KeyboardInterrupt:
+        if not done:
+            raise
+    rows = zip(asked, found[:, :done], strict=True)
+    return Drawn(names, {(one.name, one.mode): row for one, row in rows}, done)
+
+
+def _one_draw(family: Family, asked: Sequence[Asked], at: Mapping[str, float]) -> list[float]:
+    """The yields of one family's questions at a draw."""
+    questions = [(one.member, _question(one, at)) for one in asked]
+    solved = scan(family, questions, asked[0].product, _matrix(family, at), places=False)
+    return [
+        each.solution.objective * _per_mole(one)
+        if each.solution.outcome is Outcome.OPTIMAL
+        else 0.0
+        for one, each in zip(asked, solved, strict=True)
+    ]
 
 
 def _uncertain(families: Sequence[Family], asked: Sequence[Asked]) -> tuple[str, ...]:

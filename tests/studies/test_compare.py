@@ -381,6 +381,20 @@ def test_one_number_in_two_variants_is_drawn_once_for_both() -> None:
     assert found.odds[0].probability == 1
 
 
+def test_an_interruption_keeps_the_draws_that_are_done() -> None:
+    def stop(what: str, done: int, total: int) -> None:
+        if what == "draws" and done == 30:
+            raise KeyboardInterrupt
+
+    found = compare(read(TWO_WAYS), "glycogen", "glucose", ["first|second"], progress=stop)
+    whole = compare(read(TWO_WAYS), "glycogen", "glucose", ["first|second"], draws=30)
+
+    assert found.draws == 30
+    assert found.notes == ("interrupted: the intervals are of 30 draws, not 200",)
+    assert whole.draws == 30
+    assert found.abilities[0].final.low is not None
+
+
 # --- bad input --------------------------------------------------------------------------
 
 
@@ -440,10 +454,15 @@ def test_an_aim_without_an_end_names_the_missing_limit() -> None:
     text = text.replace("compartment c\n",
                         "compartment c\n    hyd : hydrogen -> NADH\n"
                         "    fix : 2 CO2 + 6 NADH -> ethanol\n")  # fmt: skip
-    ability = best(text, "ethanol")
+    network = read(text)
+    (ability,) = compare(network, "ethanol", "glucose", beside=["hydrogen"]).abilities
+    alone = compare(network, "ethanol", "glucose")
 
     assert ability.final.moles is None
     assert ability.reason.startswith("there is no end to it: nothing limits CO2 in")
+    # what could be taken up beside the substrate is not, and that is told
+    assert alone.abilities[0].final.moles == 2
+    assert "not taken up beside the substrate: hydrogen" in alone.notes[0]
 
 
 @pytest.mark.parametrize("text", ["mu", "mu < 3", "X / glucose / oxygen = 1", "nobody = 1"])
