@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import re
 import unicodedata
 from dataclasses import dataclass
 from enum import Enum
@@ -10,6 +9,7 @@ from fractions import Fraction
 
 from fluxnet.chemistry.elements import ATOMIC_WEIGHT
 from fluxnet.chemistry.formula import Formula
+from fluxnet.ground.pattern import pattern_of
 
 __all__ = ["FormulaError", "FormulaFault", "read_formula"]
 
@@ -35,11 +35,11 @@ class FormulaError(ValueError):
         self.end = max(end, position + 1)
 
 
-_NUMBER = re.compile(r"\d+(?:\.\d+)?|\.\d+")
-_SYMBOL = re.compile(r"[A-Z][a-z]?")
-_WORD = re.compile(r"[A-Za-z]+")
-_CHARGE_WORD = re.compile(r"\s+charge(?:\s+|(?=[+-]))([+-]?)\s*(\d+(?:\.\d+)?|\.\d+)\s*$")
-_CHARGE_BRACKET = re.compile(r"\s*\((?:(\d*\.?\d*)([+-])|([+-])(\d+\.?\d*))\)\s*$")
+_NUMBER = pattern_of(r"\d+(?:\.\d+)?|\.\d+")
+_SYMBOL = pattern_of(r"[A-Z][a-z]?")
+_WORD = pattern_of(r"[A-Za-z]+")
+_CHARGE_WORD = pattern_of(r"\s+charge(?:\s+|(?=[+-]))([+-]?)\s*(\d+(?:\.\d+)?|\.\d+)\s*$")
+_CHARGE_BRACKET = pattern_of(r"\s*\((?:(\d*\.?\d*)([+-])|([+-])(\d+\.?\d*))\)\s*$")
 _ZERO = Fraction(0)
 
 

@@ -14,7 +14,7 @@ from fluxnet.ground.record import record
 if TYPE_CHECKING:
     import pint
 
-__all__ = ["CONCENTRATIONS", "MARKS", "WORDS", "Dimension", "Word", "look_up"]
+__all__ = ["CONCENTRATIONS", "MARKS", "WORDS", "Dimension", "Word", "look_up", "registry"]
 
 
 class Dimension(Enum):
@@ -106,8 +106,8 @@ _PLACES = {
 
 
 @cache
-def _registry() -> pint.UnitRegistry[float]:
-    """Loaded once: it takes a third of a second."""
+def registry() -> pint.UnitRegistry[float]:
+    """All units that pint knows. Loaded once: it takes a third of a second."""
     import pint
 
     return pint.UnitRegistry()
@@ -125,15 +125,15 @@ def look_up(word: str) -> Word | None:
     """
     if not word.isalpha():  # pint would take a sign for a sum
         return None
-    registry = _registry()
+    units = registry()
     try:
-        if word not in registry:
+        if word not in units:
             return None
-        quantity = registry.Quantity(1, word)
+        quantity = units.Quantity(1, word)
     except ValueError:  # a word for a number, such as nan
         return None
     for dimension, base in _PLACES.items():
-        if quantity.check(registry.Unit(base).dimensionality):
+        if quantity.check(units.Unit(base).dimensionality):
             # twelve digits: definitions have fewer, and the rest is noise of the conversion
             return Word(dimension, Fraction(f"{float(quantity.to(base).magnitude):.12g}"))
     return Word(Dimension.OTHER, Fraction(1))

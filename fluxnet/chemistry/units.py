@@ -14,9 +14,10 @@ from fractions import Fraction
 
 from fluxnet.chemistry.unit_words import CONCENTRATIONS, MARKS, WORDS, Dimension, Word, look_up
 from fluxnet.chemistry.weighed import FREE, WeighedForm, split_form
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 
-__all__ = ["Dimension", "Unit", "UnitError", "UnitFault", "parse_unit"]
+__all__ = ["Dimension", "Factor", "Unit", "UnitError", "UnitFault", "parse_unit", "read_factors"]
 
 
 class UnitFault(Enum):
@@ -65,7 +66,7 @@ class Unit:
         return self.amount is None and self.per == (Dimension.TIME,)
 
 
-_TOKEN = re.compile(
+_TOKEN = pattern_of(
     r"(?P<number>\d+(?:\.\d+)?)|(?P<slash>/)|(?P<times>[*·×])|(?P<open>\()|(?P<close>\))"
     r"|(?P<word>(?:[kmunµμ]?[Ce]-)?[A-Za-zµμ]+)(?P<power>\^?[+-]?\d+)?|(?P<blank>\s+)"
 )
@@ -79,7 +80,9 @@ _JOINS = ("slash", "times")
 
 
 @record
-class _Factor:
+class Factor:
+    """A word of a unit with its power, as it was written."""
+
     word: Word
     power: int
     written: str
@@ -110,7 +113,7 @@ def parse_unit(text: str) -> Unit:
     body = re.sub(r"\bper\b", "/", body)
     if not body.strip():
         raise UnitError(UnitFault.UNKNOWN, "there is no unit", text)
-    scale, factors = _read_factors(body)
+    scale, factors = read_factors(body)
     amount: Dimension | None = None
     below: list[Dimension] = []
     for factor in factors:
@@ -140,10 +143,10 @@ def parse_unit(text: str) -> Unit:
     return Unit(plain, amount, scale, tuple(below), form)
 
 
-def _read_factors(body: str) -> tuple[Fraction, list[_Factor]]:
-    """The number before a unit and its words with their powers."""
+def read_factors(body: str) -> tuple[Fraction, list[Factor]]:
+    """The number before a unit and its words with their powers, whatever they measure."""
     scale = Fraction(1)
-    factors: list[_Factor] = []
+    factors: list[Factor] = []
     sign, inside = 1, False  # below the line for the next factor, or for a whole bracket
     place, before = 0, ""
     while place < len(body):
@@ -177,11 +180,11 @@ def _read_factors(body: str) -> tuple[Fraction, list[_Factor]]:
                 continue  # "g DW": tells what the grams are of
             if match["word"] in CONCENTRATIONS:
                 amount = WORDS[CONCENTRATIONS[match["word"]]]
-                factors.append(_Factor(amount, sign * power, match[0]))
-                factors.append(_Factor(WORDS["L"], -sign * power, match[0]))
+                factors.append(Factor(amount, sign * power, match[0]))
+                factors.append(Factor(WORDS["L"], -sign * power, match[0]))
             else:
                 word, power = _word(match["word"], power)
-                factors.append(_Factor(word, sign * power, match[0]))
+                factors.append(Factor(word, sign * power, match[0]))
             sign = sign if inside else 1
     if inside or before in _JOINS:
         raise UnitError(UnitFault.UNKNOWN, f"`{body.strip()}` is not finished", body)

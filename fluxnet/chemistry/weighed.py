@@ -10,6 +10,7 @@ from fractions import Fraction
 from fluxnet.chemistry.compare import free_form
 from fluxnet.chemistry.elements import ATOMIC_WEIGHT
 from fluxnet.chemistry.formula import Formula
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 
 __all__ = ["FREE", "Substance", "WeighedAs", "WeighedForm", "split_form", "weighed_mass"]
@@ -68,13 +69,13 @@ _WATERS: dict[str, int | Fraction] = {
     "hemi": Fraction(1, 2), "mono": 1, "sesqui": Fraction(3, 2), "di": 2, "tri": 3, "tetra": 4,
     "penta": 5, "hexa": 6, "hepta": 7, "octa": 8, "deca": 10, "dodeca": 12,
 }  # fmt: skip
-_SALT = re.compile(
+_SALT = pattern_of(
     rf"\s+as\s+(?P<times>mono|di|tri)?(?P<cation>{'|'.join(_CATIONS)})(?:\s+salt)?$"
     rf"|\s+as\s+(?P<anion>{'|'.join(_ANIONS)})(?:\s+salt)?$"
     r"|\s+as\s+(?P<ion>ion|anion|cation)$|\s+as\s+(?P<free>free\s+(?:acid|base)|acid|base)$",
     re.IGNORECASE,
 )
-_HYDRATE = re.compile(
+_HYDRATE = pattern_of(
     rf"\s+(?:as\s+)?(?:(?P<number>{'|'.join(_WATERS)})hydrate|(?P<none>anhydrous))$", re.IGNORECASE
 )
 

@@ -11,6 +11,7 @@ from itertools import islice
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.source import Span
 
 __all__ = ["find_model_instead", "find_table_instead"]
@@ -21,9 +22,9 @@ _LOOKED_AT = 60
 _SEPARATORS = "\t;,"
 _NAMES = frozenset({"species", "quantity", "compound", "substance"})
 _RATES = frozenset({"rate", "value", "amount", "measured", "specific rate", "q"})
-_MARKED = re.compile(r".*\S\s*\[[^\[\]]+\]|.*\S[ _](?:in|out|uptake|released?)", re.IGNORECASE)
-_ARROW = re.compile(r"<->|->|→|⇌|=>")
-_STATEMENT = re.compile(
+_MARKED = pattern_of(r".*\S\s*\[[^\[\]]+\]|.*\S[ _](?:in|out|uptake|released?)", re.IGNORECASE)
+_ARROW = pattern_of(r"<->|->|→|⇌|=>")
+_STATEMENT = pattern_of(
     r"(?:model|basis|substrate|product|exchange|biomass|carrier|inside|parameter|compartment|limit"
     r"|variant|use|balance|free|add|set|drop)\s"
 )

@@ -2,15 +2,14 @@
 
 from __future__ import annotations
 
-import re
-
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.presenting.numbers import format_number
 from fluxnet.presenting.table_lines import GLUE
 from fluxnet.studies.equations import NetEquation
 
 __all__ = ["equation_lines", "equation_text"]
 
-_SIGN = re.compile(f"{GLUE}(\\+|->){GLUE}")
+_SIGN = pattern_of(f"{GLUE}(\\+|->){GLUE}")
 
 
 def equation_text(equation: NetEquation, scale: float = 1.0, digits: int = 3) -> str:

@@ -2,16 +2,15 @@
 
 from __future__ import annotations
 
-import re
-
 from fluxnet.ground.diagnostic import Diagnostic
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.source import Span
 from fluxnet.presenting.table_lines import cell_width
 
 __all__ = ["excerpt_lines", "place_of", "seen"]
 
 # Control characters, and those that turn the direction of writing.
-_UNSEEN = re.compile("[\x00-\x1f\x7f-\x9f\u200e\u200f\u202a-\u202e\u2066-\u2069\ud800-\udfff]")
+_UNSEEN = pattern_of("[\x00-\x1f\x7f-\x9f\u200e\u200f\u202a-\u202e\u2066-\u2069\ud800-\udfff]")
 _WIDEST = 240
 _BEFORE = 80
 

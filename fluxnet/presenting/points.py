@@ -2,13 +2,14 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Sequence
 from math import floor, log10
 
+from fluxnet.ground.pattern import pattern_of
+
 __all__ = ["align_points", "common_decimals"]
 
-_CELL = re.compile(
+_CELL = pattern_of(
     r"(?P<whole>[+-]?\d+)(?P<rest>\.\d+)?"
     r"(?:(?P<between> ± | \+- | to )(?P<whole2>-?\d+)(?P<rest2>\.\d+)?|(?P<tail> [a-z ]+))?"
 )

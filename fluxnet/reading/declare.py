@@ -7,6 +7,7 @@ from collections.abc import Mapping
 from fractions import Fraction
 
 from fluxnet.ground.names import Name
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.network.model import Parameter, Role, Species
 from fluxnet.reading import syntax as s
 from fluxnet.reading.blocks import Placed
@@ -17,7 +18,7 @@ from fluxnet.reading.scope import Kind, Scope, claim
 
 __all__ = ["REACH", "declare_parameter", "declare_species", "in_reach", "read_assignment"]
 
-_PARAMETER = re.compile(r"[A-Za-z][A-Za-z0-9_]*")
+_PARAMETER = pattern_of(r"[A-Za-z][A-Za-z0-9_]*")
 _ZERO = Fraction(0)
 _REACH = 10**30
 REACH = "numbers lie between 1e-30 and 1e30"

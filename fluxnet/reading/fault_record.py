@@ -6,6 +6,7 @@ import re
 from typing import NamedTuple
 
 from fluxnet.ground.names import Name
+from fluxnet.ground.pattern import pattern_of
 
 __all__ = [
     "DECIMAL_COMMA", "NAME", "NUMBER", "Change", "Fault", "Known", "decimal_commas",
@@ -14,7 +15,7 @@ __all__ = [
 
 NAME = r"(?:\d+(?:[,']\d+)+-)?(?=(?:\w+-)*\w*[^\W\d_])\w+(?:-\w+)*\+?"
 NUMBER = r"(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d{1,3})?(?![\w.,])"
-DECIMAL_COMMA = re.compile(r"(?<![\w,.'])\d+,\d+(?!\d*[,'-])")
+DECIMAL_COMMA = pattern_of(r"(?<![\w,.'])\d+,\d+(?!\d*[,'-])")
 
 
 class Change(NamedTuple):

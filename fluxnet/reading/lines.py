@@ -6,12 +6,12 @@ knows the column of the user's own line from which it comes.
 
 from __future__ import annotations
 
-import re
 import unicodedata
 from bisect import bisect_right
 from collections.abc import Sequence
 from typing import NamedTuple
 
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.source import Source, Span
 
 __all__ = [
@@ -23,14 +23,14 @@ TAB = 4
 LONGEST = 5_000
 """A longer line is no statement, and is not looked into."""
 
-_CLOSED_QUOTE = re.compile(r'"[^"]*"')
+_CLOSED_QUOTE = pattern_of(r'"[^"]*"')
 _MINUS = dict.fromkeys(map(ord, "\u2010\u2011\u2012\u2013\u2212"), "-")
 _ALIKE = {**_MINUS, ord("\u201c"): '"', ord("\u201d"): '"', ord("\u201e"): '"',
           ord("\u200b"): "", ord("\ufeff"): "", ord("\u2060"): ""}
-_TITLE = re.compile(r"\s*model\b(?!\s*:)")
-_REASON = re.compile(r"\baccept\s+[\w-]+\s*:")
-_GOES_ON = re.compile(r"(?:(?:^|\s)\+|,|->|→|⇌|[-=<>]+>)$")
-_STARTS = re.compile(
+_TITLE = pattern_of(r"\s*model\b(?!\s*:)")
+_REASON = pattern_of(r"\baccept\s+[\w-]+\s*:")
+_GOES_ON = pattern_of(r"(?:(?:^|\s)\+|,|->|→|⇌|[-=<>]+>)$")
+_STARTS = pattern_of(
     r"\s*(?:[\w,'-]+\+?\s*:"
     r"|(?:model|basis|substrate|product|exchange|biomass|carrier|inside|parameter|compartment"
     r"|limit|variant|add|set|drop|use|free|balance)\s+[\w\"])"

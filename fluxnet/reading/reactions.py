@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-import re
 from fractions import Fraction
 
 from fluxnet.ground.names import Name
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.network.expression import ONE, Expression, constant, parameter
 from fluxnet.network.model import Reaction, Term
 from fluxnet.reading import syntax as s
@@ -19,8 +19,8 @@ __all__ = ["resolve_reaction"]
 _ZERO = Fraction(0)
 _LONGEST = 300
 _MOST_MONOMIALS = 2000
-_POWER_OF_TEN = re.compile(r"\d+[eE][+-]?\d+")
-_GLUED = re.compile(r"(\d+)(?=[^\W\d])")
+_POWER_OF_TEN = pattern_of(r"\d+[eE][+-]?\d+")
+_GLUED = pattern_of(r"(\d+)(?=[^\W\d])")
 
 
 def resolve_reaction(placed: Placed, said: s.ReactionLine, scope: Scope) -> Reaction | None:

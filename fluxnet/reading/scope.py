@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Iterable
 from dataclasses import dataclass, field
 from enum import Enum
 from typing import NamedTuple
 
 from fluxnet.ground.names import Name
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.source import Span
 from fluxnet.network.model import Parameter, Reaction, Species
 from fluxnet.network.variant_changes import Doubt
@@ -90,11 +90,11 @@ class Scope:
             self.unknown.setdefault(word.text, []).append(Mention(line, word))
 
 
-_NAMES = re.compile(NAME)
-_LABEL = re.compile(rf"\s*({NAME})\s*:")
-_ARROW = re.compile(r"->|=>|→|⇌|<-")
+_NAMES = pattern_of(NAME)
+_LABEL = pattern_of(rf"\s*({NAME})\s*:")
+_ARROW = pattern_of(r"->|=>|→|⇌|<-")
 _DECLARE_NOTHING = (["limit"], ["drop"], ["set"])
-_LETTERS = re.compile(r"[^\W\d]\w*")
+_LETTERS = pattern_of(r"[^\W\d]\w*")
 
 
 def words_of(texts: Iterable[str]) -> set[str]:

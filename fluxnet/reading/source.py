@@ -2,11 +2,11 @@
 
 from __future__ import annotations
 
-import re
 from pathlib import Path
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.source import Source, Span
 
 __all__ = ["MOST_BYTES", "MOST_LINES", "read_source", "source_of_bytes", "source_of_text",
@@ -18,7 +18,7 @@ MOST_LINES = 20_000
 MOST_BYTES = 50_000_000
 """No more of a file is read: it may have no end."""
 
-_LINE_END = re.compile("\r\n|\r|\n")
+_LINE_END = pattern_of("\r\n|\r|\n")
 
 
 def read_source(

@@ -28,7 +28,7 @@ from fluxnet.network.model import (
 )
 from fluxnet.reading.tidy import tidy_text
 
-__all__ = ["write_model"]
+__all__ = ["write_model", "write_reaction"]
 
 
 def write_model(network: Network, comments: Mapping[str, str] | None = None) -> str:
@@ -196,13 +196,14 @@ def _compartments(
                 yield ""
                 yield f"compartment {current}"
         comment = f"  # {comments[reaction.name]}" if reaction.name in comments else ""
-        yield f"    {_reaction(reaction)}{accepts.at(reaction.span)}{comment}"
+        yield f"    {write_reaction(reaction)}{accepts.at(reaction.span)}{comment}"
     for name, compartment in waiting.items():
         yield ""
         yield f"compartment {name}{accepts.at(compartment.span)}"
 
 
-def _reaction(reaction: Reaction) -> str:
+def write_reaction(reaction: Reaction) -> str:
+    """A reaction as a line of the language, without its block's indentation."""
     sign = "<->" if reaction.reversible else "->"
     return f"{reaction.name} : {_side(reaction.left)} {sign} {_side(reaction.right)}"
 
@@ -269,7 +270,7 @@ def _variant(
     for compartment, group in groupby(variant.reactions, lambda r: r.compartment):
         yield f"    add to {compartment}"
         for reaction in group:
-            yield f"        {_reaction(reaction)}{accepts.at(reaction.span)}"
+            yield f"        {write_reaction(reaction)}{accepts.at(reaction.span)}"
     for limit in variant.limits:
         yield f"    limit {_limit(limit, roles)}{accepts.at(limit.span)}"
     for drop in variant.drops:

@@ -11,6 +11,7 @@ from collections.abc import Mapping
 from math import isfinite
 
 from fluxnet.chemistry.catalogue import find_compound
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 
 __all__ = ["Conditions", "read_conditions"]
@@ -21,10 +22,10 @@ _GAS = 8.314462618  # J/mol/K (CODATA 2018, exact)
 _AMBIENT_C = 20.0
 """A gas volume without a reference condition is taken at this temperature and 1 atm."""
 
-_TITLE = re.compile(r"(?P<name>[^\[(]*)(?:[\[(](?P<unit>[^\])]*)[\])])?\s*")
-_CELL = re.compile(r"(?P<number>[+-]?\d+(?:[.,]\d+)?(?:[eE][+-]?\d+)?)\s*(?P<unit>.*)")
-_AT = re.compile(r"\bat\s+(?P<celsius>-?\d+(?:\.\d+)?)\s*°?\s*C\b.*", re.IGNORECASE)
-_CONCENTRATION = re.compile(r"(?P<species>.+?)[ _]conc(?:entration|\.)?", re.IGNORECASE)
+_TITLE = pattern_of(r"(?P<name>[^\[(]*)(?:[\[(](?P<unit>[^\])]*)[\])])?\s*")
+_CELL = pattern_of(r"(?P<number>[+-]?\d+(?:[.,]\d+)?(?:[eE][+-]?\d+)?)\s*(?P<unit>.*)")
+_AT = pattern_of(r"\bat\s+(?P<celsius>-?\d+(?:\.\d+)?)\s*°?\s*C\b.*", re.IGNORECASE)
+_CONCENTRATION = pattern_of(r"(?P<species>.+?)[ _]conc(?:entration|\.)?", re.IGNORECASE)
 
 _NAMES = {
     **dict.fromkeys(("temperature", "temp"), "temperature"),

@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 import codecs
-import re
 
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 
 __all__ = ["Decoded", "decode"]
@@ -14,7 +14,7 @@ _MARKS = (
     (codecs.BOM_UTF16_LE, "utf-16-le", "UTF-16"),
     (codecs.BOM_UTF16_BE, "utf-16-be", "UTF-16"),
 )
-_CONTROL = re.compile("[\x00-\x08\x0e-\x1f]")
+_CONTROL = pattern_of("[\x00-\x08\x0e-\x1f]")
 
 
 @record

@@ -8,13 +8,14 @@ from __future__ import annotations
 
 import re
 
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.source import Source, Span
 from fluxnet.tables.grid import Cell, Grid, Row
 
 __all__ = ["declared_separator", "split_lines", "split_text"]
 
-_DECLARED = re.compile(r"sep=(.)\s*$", re.IGNORECASE)
-_LINE_END = re.compile(r"\r\n|\r|\n")
+_DECLARED = pattern_of(r"sep=(.)\s*$", re.IGNORECASE)
+_LINE_END = pattern_of(r"\r\n|\r|\n")
 
 
 def split_lines(text: str) -> tuple[str, ...]:

@@ -4,26 +4,27 @@ from __future__ import annotations
 
 import re
 
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 from fluxnet.tables.numerals import Decimal, read_number
 
 __all__ = ["NoNumber", "explain_no_number"]
 
-_BELOW = re.compile(r"[<≤]\s*=?\s*(?P<limit>\S.*)")
+_BELOW = pattern_of(r"[<≤]\s*=?\s*(?P<limit>\S.*)")
 _ABSENT = frozenset({
     "-", "–", "—", "--", ".", "/", "?", "nd", "n.d", "n.d.", "n/d", "na", "n.a", "n.a.", "n/a",
     "nb", "n.b.", "nn", "n.n.", "k.a.", "bd", "b.d.", "bdl", "lod", "loq", "tr", "tr.", "trace",
     "traces", "none", "null", "nil", "missing", "blank", "<lod", "<loq", "nwg", "<nwg", "<bg",
 })  # fmt: skip
 _MONTHS = "jan|feb|m[aä]r|apr|ma[iy]|jun|jul|aug|sep|o[ck]t|nov|de[cz]"
-_DATE = re.compile(
+_DATE = pattern_of(
     rf"\d{{4}}-\d\d-\d\d.*|\d{{1,2}}\.\s?\d{{1,2}}\.(?:\d{{2,4}})?|\d{{1,2}}/\d{{1,2}}/\d{{2,4}}"
     rf"|\d{{1,2}}[.\- ]+(?:{_MONTHS})\w*\.?(?:[\- ]\d{{2,4}})?|(?:{_MONTHS})\w*\.?[\- ]\d{{1,4}}",
     re.IGNORECASE,
 )
-_FAILED = re.compile(r"#[\w/ÄÖÜ]+[!?]?", re.IGNORECASE)
-_BRACKETED = re.compile(r"(?P<value>[^()\s]+)\s*\((?P<error>[^()\s]+\s*%?)\)")
-_WITH_WORDS = re.compile(r"(?P<before>[~≈=]|ca\.?|approx\.?)?\s*(?P<value>[\d.,]+)\s*(?P<after>.*)")
+_FAILED = pattern_of(r"#[\w/ÄÖÜ]+[!?]?", re.IGNORECASE)
+_BRACKETED = pattern_of(r"(?P<value>[^()\s]+)\s*\((?P<error>[^()\s]+\s*%?)\)")
+_WITH_WORDS = pattern_of(r"(?P<before>[~≈=]|ca\.?|approx\.?)?\s*(?P<value>[\d.,]+)\s*(?P<after>.*)")
 
 
 @record

@@ -11,6 +11,7 @@ from collections.abc import Iterable
 from enum import Enum
 from functools import lru_cache
 
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 from fluxnet.tables.grid import Cell
 
@@ -39,17 +40,17 @@ class Decimal(Enum):
 
 _BLANKS = " \u00a0\u2009\u202f'\u2019"
 _PATTERNS = {
-    d: re.compile(
+    d: pattern_of(
         rf"[+-]?(?:(?P<whole>\d+)|(?P<grouped>[1-9]\d{{0,2}}(?:(?P<sign>[{re.escape(d.thousands)}{_BLANKS}])\d{{3}})"
         rf"(?:(?P=sign)\d{{3}})*))?(?:{re.escape(d.value)}(?P<fraction>\d*))?(?:[eE][+-]?\d+)?",
         re.ASCII,
     )
     for d in Decimal
 }
-_PLAIN = re.compile(r"[+-]?(?P<whole>\d+)(?:\.(?P<fraction>\d+))?", re.ASCII)
+_PLAIN = pattern_of(r"[+-]?(?P<whole>\d+)(?:\.(?P<fraction>\d+))?", re.ASCII)
 _LONGEST_PLAIN = 300  # more digits may be beyond what a float holds
 _MOST_KEPT = 1 << 16
-_INFINITE = re.compile(r"[+-]?(nan|inf|infinity|∞)", re.IGNORECASE)
+_INFINITE = pattern_of(r"[+-]?(nan|inf|infinity|∞)", re.IGNORECASE)
 
 
 @record

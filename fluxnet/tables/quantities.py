@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 import difflib
-import re
 from collections.abc import Mapping
 from dataclasses import field, replace
 
 from fluxnet.ground.names import Name
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Quantity, QuantityKind, Role, Species
 from fluxnet.tables.reckoned import names_total
@@ -24,7 +24,7 @@ from fluxnet.tables.vocabulary import (
 
 __all__ = ["QuantityFault", "QuantityReading", "is_quantity_name", "read_quantity", "settle_ratio"]
 
-_SYMBOL = re.compile(r"[qrQR]_?(?:[SPX]|s|p|x|sub|prod)")
+_SYMBOL = pattern_of(r"[qrQR]_?(?:[SPX]|s|p|x|sub|prod)")
 """Specific rates of the substrate and the product, as textbooks write them."""
 
 

@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-import re
 from enum import Enum
 from fractions import Fraction
 
 from fluxnet.chemistry.unit_words import MARKS, WORDS, Dimension
 from fluxnet.chemistry.units import Unit, UnitError, UnitFault, parse_unit
 from fluxnet.ground.names import Name
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 
 __all__ = ["BadUnit", "RateUnit", "UnitKind", "is_rate_unit", "is_unit", "read_rate_unit"]
@@ -37,8 +37,8 @@ _TIMED = {
     (Dimension.VOLUME,): (UnitKind.VOLUMETRIC, "mmol/L/h"),
     (): (UnitKind.WHOLE, "mmol/h"),
 }
-_COUNT = re.compile(r"(?:/|\bper\b)\s*\(?\s*(\d+)\s*(?=[A-Za-zµμ])")
-_WORD = re.compile(r"(?:[CeN]-)?[A-Za-zµμ]+3?")
+_COUNT = pattern_of(r"(?:/|\bper\b)\s*\(?\s*(\d+)\s*(?=[A-Za-zµμ])")
+_WORD = pattern_of(r"(?:[CeN]-)?[A-Za-zµμ]+3?")
 
 
 @record

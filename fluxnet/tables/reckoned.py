@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import re
 
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.tables.grid import Row
 
 __all__ = ["MOST_BELOW", "label_of", "names_mean", "names_total"]
@@ -11,7 +12,7 @@ __all__ = ["MOST_BELOW", "label_of", "names_mean", "names_total"]
 MOST_BELOW = 4
 """So many rows at the end of a table may be reckoned from those above."""
 
-_TOTAL = re.compile(
+_TOTAL = pattern_of(
     r"(?:grand |sub)?totals?\b.*|sum\b.*|summe\b.*|gesamt(?:summe)?\b.*"
     r"|(?:sd|s\.d\.|stdev|std\.? ?dev\.?|std|st\.dev\.?|standard deviation"
     r"|standardabweichung|stabw|rsd|cv"
@@ -19,7 +20,7 @@ _TOTAL = re.compile(
     r"(?: ?[\[(]?%[\])]?)?",
     re.IGNORECASE,
 )
-_MEAN = re.compile(
+_MEAN = pattern_of(
     r"(?:mean|average|avg|ave|mittelwert|mw|median|durchschnitt)\b.*", re.IGNORECASE
 )
 

@@ -23,6 +23,7 @@ from fluxnet.chemistry.catalogue import find_compound
 from fluxnet.chemistry.reader import FormulaError, FormulaFault, read_formula
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import Role, Species
@@ -33,19 +34,19 @@ __all__ = ["Statements", "joined", "read_statement"]
 _ROLES = {r.value: r for r in (Role.SUBSTRATE, Role.PRODUCT, Role.EXCHANGE, Role.BIOMASS)}
 _ROLES["species"] = Role.EXCHANGE
 _NUMBER = r"\d+(?:[.,]\d+)?|\.\d+"
-_DECLARATION = re.compile(
+_DECLARATION = pattern_of(
     rf"(?P<role>{'|'.join(_ROLES)})\s+(?P<name>\S+)\s+(?P<formula>[A-Z(]\S*(?:\s+charge\s+\S+)?)"
     rf"(?:\s+ash\s+(?P<ash>{_NUMBER})(?:\s*(?:±|\+-)\s*(?P<ash_sd>{_NUMBER}))?\s*%)?"
 )
-_SHARED = re.compile(r"shared\s+errors?\b(?P<rest>.*)", re.IGNORECASE)
-_SHARED_REST = re.compile(
+_SHARED = pattern_of(r"shared\s+errors?\b(?P<rest>.*)", re.IGNORECASE)
+_SHARED_REST = pattern_of(
     rf"\s*(?:of\s+)?(?P<what>[A-Za-z]*)\s*[:=]?\s*(?P<number>{_NUMBER})\s*%", re.IGNORECASE
 )
-_CONCENTRATION = re.compile(
+_CONCENTRATION = pattern_of(
     r"biomass\s+concentration\s*[:=]?\s*(?P<number>[^A-Za-zµμ]*?)\s*(?P<unit>[A-Za-zµμ].*)?",
     re.IGNORECASE,
 )
-_NITROGEN = re.compile(r"nitrogen\s+source\s*[:=]?\s*(?P<name>.+)", re.IGNORECASE)
+_NITROGEN = pattern_of(r"nitrogen\s+source\s*[:=]?\s*(?P<name>.+)", re.IGNORECASE)
 
 
 @record

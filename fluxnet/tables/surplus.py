@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-import re
 from collections.abc import Sequence
 from dataclasses import replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 from fluxnet.tables.grid import Cell, Row, column_letters
 from fluxnet.tables.layout import Layout
@@ -16,9 +16,9 @@ from fluxnet.tables.quantities import is_quantity_name
 
 __all__ = ["Surplus", "find_surplus", "untitled_words"]
 
-_WHOLE = re.compile(r"[+\-\u2212]?\d+")
-_FRACTION = re.compile(r"\d+(?:\s*(?:±|\+/?-)\s*\d+)?\s*%?")
-_OPEN = re.compile(r".*(?:±|\+/?-)\s*\d+")
+_WHOLE = pattern_of(r"[+\-\u2212]?\d+")
+_FRACTION = pattern_of(r"\d+(?:\s*(?:±|\+/?-)\s*\d+)?\s*%?")
+_OPEN = pattern_of(r".*(?:±|\+/?-)\s*\d+")
 
 
 @record

@@ -6,6 +6,7 @@ import re
 from dataclasses import replace
 from enum import Enum
 
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 from fluxnet.tables.grid import Cell
 from fluxnet.tables.rate_units import is_unit
@@ -51,14 +52,14 @@ _WORDS = {
     "biomass concentration": Key.CONCENTRATION,
 }  # fmt: skip
 _MEANS = frozenset({"mean", "average", "mittelwert"})
-_BRACKETS = re.compile(r"(?P<name>.*?)\s*(?:\[(?P<square>[^\[\]]*)\]|\((?P<round>[^()]*)\))\s*")
-_SD_END = re.compile(
+_BRACKETS = pattern_of(r"(?P<name>.*?)\s*(?:\[(?P<square>[^\[\]]*)\]|\((?P<round>[^()]*)\))\s*")
+_SD_END = pattern_of(
     r"(?P<name>.*\S)[\s_]+(?:sd|s\.d\.|stdev|std|±|\+/?-|standard deviation|error)", re.I
 )
-_SD_START = re.compile(
+_SD_START = pattern_of(
     r"(?:sd|s\.d\.|stdev|std|±|\+/?-|standard deviation)(?:[\s_]+of)?[\s_]+(?P<name>.+)", re.I
 )
-_LIKE_UNIT = re.compile(
+_LIKE_UNIT = pattern_of(
     r"[^\W\d]{2,}[\w-]*(?:\s*/\s*\(?[\w-]+\)?)+|[^\W\d]+(?:[ *·][^\W\d]+\^?[-\u2212]\d)+"
 )
 

@@ -8,6 +8,7 @@ import unicodedata
 
 from fluxnet.chemistry.catalogue import CompoundKind, load_catalogue
 from fluxnet.chemistry.reader import read_formula
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 from fluxnet.network.model import Direction, Network, Role, Species
 
@@ -32,7 +33,7 @@ _DIRECTIONS = {
         "bildung", "produktion",
     ), Direction.OUT),
 }  # fmt: skip
-_TAIL = re.compile(
+_TAIL = pattern_of(
     rf"(?P<name>.+?)[\s_]+(?P<direction>{'|'.join(sorted(_DIRECTIONS, key=len, reverse=True))})",
     re.IGNORECASE,
 )
