@@ -47,8 +47,9 @@ class NullSpace:
         total: dict[int, Fraction] = {}
         for j, a in row.items():
             for k, b in self.rows[j].items():
+                term = b if a == 1 else a * b
                 before = total.get(k)
-                total[k] = a * b if before is None else before + a * b
+                total[k] = term if before is None else before + term
         return {k: v for k, v in total.items() if v}
 
     def point(self, coordinates: Sequence[Fraction]) -> tuple[Fraction, ...]:
@@ -82,19 +83,30 @@ def null_space(rows: Sequence[SparseRow], columns: int) -> NullSpace:
         pivots.extend(_dense(list(active.values())))
     taken = {column for column, _ in pivots}
     free = tuple(j for j in range(columns) if j not in taken)
-    found: list[dict[int, Fraction]] = [{} for _ in range(columns)]
+    # In whole numbers over one denominator a row: fractions take ten times as long.
+    found: list[_Whole] = [{} for _ in range(columns)]
+    below = [1] * columns
     for k, j in enumerate(free):
-        found[j] = {k: Fraction(1)}
+        found[j] = {k: 1}
     for column, row in reversed(pivots):
-        total: dict[int, Fraction] = {}
+        common = lcm(*(below[j] for j in row))
+        total: _Whole = {}
         for j, a in row.items():
             if j != column:
+                factor = a * (common // below[j])
                 for k, b in found[j].items():
-                    before = total.get(k)
-                    total[k] = a * b if before is None else before + a * b
-        divisor = -row[column]
-        found[column] = {k: v / divisor for k, v in total.items() if v}
-    return NullSpace(free, tuple(found))
+                    total[k] = total.get(k, 0) + factor * b
+        divisor = -row[column] * common
+        content = gcd(divisor, *total.values()) * (1 if divisor > 0 else -1)
+        found[column] = {k: v // content for k, v in total.items() if v}
+        below[column] = divisor // content
+    return NullSpace(
+        free,
+        tuple(
+            {k: Fraction(v, under) if under != 1 else Fraction(v) for k, v in form.items()}
+            for form, under in zip(found, below, strict=True)
+        ),
+    )
 
 
 def point_near(space: NullSpace, guess: Sequence[float]) -> tuple[Fraction, ...]:

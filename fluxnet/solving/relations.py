@@ -50,7 +50,9 @@ def find_relations(structure: Structure) -> tuple[Relation, ...]:
     """
     exact = structure.exact
     zeros = [exact.rows[e.place] for e in exact.equalities if not e.value]
-    plain = null_space(zeros, exact.columns)
+    plain = structure.space
+    if len(zeros) < len(exact.equalities):
+        plain = null_space(zeros, exact.columns)
     found = sorted(_readable(_leaders(structure, plain)), key=lambda relation: relation.effort)
     used = sorted({j for relation in found for j, _ in relation.terms})
     forms = _common(used, plain.rows)
