@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import hashlib
-import json
 import math
 from collections.abc import Mapping, Sequence
 from enum import StrEnum
@@ -37,6 +36,7 @@ class Document(StrEnum):
     FRONTIER = "frontier/1"
     ROUTES = "routes/1"
     COMPARE = "compare/1"
+    LUMP = "lump/1"
 
 
 @record
@@ -84,6 +84,8 @@ def document_text(
 
 
 def _json(value: Any, indent: int | None = None) -> str:
+    import json  # most answers are shown, not written
+
     return json.dumps(_finite(value), ensure_ascii=False, allow_nan=False, indent=indent)
 
 

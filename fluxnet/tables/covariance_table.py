@@ -17,7 +17,6 @@ independent. Lines above the header and lines that start with # are remarks.
 
 from __future__ import annotations
 
-import difflib
 from collections.abc import Mapping, Sequence
 
 from fluxnet.ground.diagnostic import Diagnostic
@@ -119,7 +118,9 @@ def _side(
         for quantity in known:
             if named is not None and _is_same(named, quantity):
                 return quantity
-    near = difflib.get_close_matches(cell.text, [str(q) for q in known], 3, 0.5)
+    from difflib import get_close_matches
+
+    near = get_close_matches(cell.text, [str(q) for q in known], 3, 0.5)
     return cell_fault(
         Name.UNKNOWN_QUANTITY,
         cell,

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import difflib
 from collections.abc import Mapping
 from dataclasses import field, replace
 
@@ -120,7 +119,9 @@ def _flux(
                 "give the model, or leave the row out",
             )
         known = [r.name for r in vocabulary.network.reactions]
-        near = difflib.get_close_matches(bare, known, 3, 0.5)
+        from difflib import get_close_matches
+
+        near = get_close_matches(bare, known, 3, 0.5)
         mend = f"did you mean {' or '.join('flux ' + n for n in near)}?" if near else None
         return _faulty(Name.UNKNOWN_QUANTITY, f"the model has no reaction {bare}", mend)
     if direction:

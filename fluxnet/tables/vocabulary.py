@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import difflib
 import re
 import unicodedata
 
@@ -149,5 +148,7 @@ def assumed_biomass() -> Species:
 def nearest_names(name: str, vocabulary: Vocabulary) -> tuple[str, ...]:
     """Up to three names that a misspelt one may have meant."""
     own = [s.name for s in boundary_species(vocabulary)]
-    near = difflib.get_close_matches(name, own, 3, 0.6)
+    from difflib import get_close_matches
+
+    near = get_close_matches(name, own, 3, 0.6)
     return tuple(near) if near else tuple(load_catalogue().nearest(name))[:3]
