@@ -15,8 +15,9 @@ if TYPE_CHECKING:
     from fluxnet.rates.measured import Run
     from fluxnet.studies.solution import FluxSolution
 
-# The seed of a random test is the hash of its name: a failure can be had again.
-settings.register_profile("by name", derandomize=True)
+# The seed of a random test is the hash of its name: a failure can be had again. How long an
+# example takes is the machine's affair: no deadline.
+settings.register_profile("by name", derandomize=True, deadline=None)
 settings.load_profile("by name")
 
 MODELS = Path(__file__).resolve().parent.parent / "models"

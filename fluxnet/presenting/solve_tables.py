@@ -73,7 +73,7 @@ def _rates(run: FluxSolution) -> Table:
         Column("", "low"),
         Column("", "high"),
         Column("" if at_best else "z", "z", align=Align.RIGHT, decimals=1),
-        Column("" if at_best else "kind", "kind"),
+        Column("" if at_best else "kind", "kind", wrap=10),
         Column("", "unit"),
     )
     notes: list[str] = []

@@ -30,7 +30,8 @@ def shown(name: str, rates: str | None, **options: Any) -> str:
 
 @pytest.fixture(scope="module", params=MODELS)
 def screen(request: pytest.FixtureRequest) -> str:
-    return shown(request.param, "a,glucose,in,10,10 %,mmol/g/h\na,X,out,2,10 %,mmol/g/h\n")
+    substrate = "methanol" if request.param == "methylotroph" else "glucose"
+    return shown(request.param, f"a,{substrate},in,10,10 %,mmol/g/h\na,X,out,2,10 %,mmol/g/h\n")
 
 
 def test_no_number_has_an_exponent(screen: str) -> None:
