@@ -101,7 +101,10 @@ def _equations(routes: Routes, shown: Sequence[tuple[int, RouteGroup]]) -> Table
         )  # fmt: skip
     notes = []
     if has_yield:
-        notes.append(f"yield: mol {routes.product} per mol {routes.substrate}")
+        too = ""
+        if any(routes.takes_more(group) for _, group in shown):
+            too = ", other substrates not counted"
+        notes.append(f"yield: mol {routes.product} per mol {routes.substrate}{too}")
     if energy:
         per = routes.substrate or "substrate"
         notes.append(f"{', '.join(energy)}: mol to spare per mol {per}")

@@ -45,7 +45,12 @@ def count_words(routes: Routes) -> str:
     if not making:
         return f"{words}, and none of these makes {routes.product}."
     verb = "makes" if making == 1 else "make"
-    return f"{words}, of these {making:,} {verb} {routes.product}: at most {_best(routes)} mol/mol."
+    words += f", of these {making:,} {verb} {routes.product}: at most {_best(routes)} mol/mol"
+    making_alone = (g.product_yield for g in ours if g.product_yield and not routes.takes_more(g))
+    alone = next(making_alone, 0)  # the best yield comes first
+    if format_number(float(alone)) == _best(routes):
+        return f"{words}."
+    return f"{words} beside other substrates, {format_number(float(alone))} without them."
 
 
 def ending_words(routes: Routes) -> str:

@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 from fluxnet.ground.record import record
 from fluxnet.modes.enumerate import Ending
 from fluxnet.modes.whole import Whole
+from fluxnet.network.model import Role
 from fluxnet.studies.routes_system import RouteSystem
 
 __all__ = ["Cut", "Cuts", "Energy", "Route", "RouteGroup", "Routes"]
@@ -128,6 +129,14 @@ class Routes:
         """Whether all routes were found that were asked for, and one makes the product."""
         makes = self.product is None or any(group.product_yield for group in self.groups)
         return self.count > 0 and makes and self.ending is Ending.COMPLETE
+
+    def takes_more(self, group: RouteGroup) -> bool:
+        """Whether a group takes up a substrate with carbon beside the one asked for."""
+        foods = {
+            s.name for s in self.system.network.boundary
+            if s.role is Role.SUBSTRATE and s.formula is not None and s.formula.count("C") > 0
+        }  # fmt: skip
+        return any(n < 0 and name in foods - {self.substrate} for name, n in group.terms)
 
     def route(self, k: int, group: RouteGroup) -> Route:
         """One route of a group, by its place in ``values``."""

@@ -88,6 +88,16 @@ def test_the_screen_is_readable_at_eighty_columns(
     assert "ethanol" in shown
 
 
+def test_a_yield_beside_another_substrate_is_marked(capsys: pytest.CaptureFixture[str]) -> None:
+    words = ["routes", "heterolactic.flux", "--from", "glucose", "--to", "lactate"]
+    assert run(words) == Exit.SOUND
+    shown = " ".join(capsys.readouterr().out.split())
+    assert "at most 24.71 mol/mol beside other substrates, 1 without them." in shown
+    assert "yield: mol lactate per mol glucose, other substrates not counted" in shown
+    assert run(TO_ETHANOL) == Exit.SOUND
+    assert "other substrates" not in capsys.readouterr().out
+
+
 def test_quiet_keeps_the_verdicts(capsys: pytest.CaptureFixture[str]) -> None:
     assert run([*TO_ETHANOL, "--quiet", "--keep-above", "1.5"]) == Exit.SOUND
 
