@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from fluxnet.studies.compare_obstacles import tell_obstacle
 from fluxnet.studies.routes_system import RouteSystem
 
 __all__ = ["why_no_product", "why_none"]
@@ -64,6 +63,8 @@ def why_no_product(
     made_elsewhere
         Whether routes that do without the substrate make it.
     """
+    from fluxnet.studies.compare_obstacles import tell_obstacle  # graphs, for this answer alone
+
     head = f"No route from {substrate} makes {product}"
     if made_elsewhere:
         return f"{head}; routes that take up something else do."
