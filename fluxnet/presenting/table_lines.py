@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from unicodedata import combining, east_asian_width
 
+from fluxnet.ground.pattern import pattern_of
 from fluxnet.presenting.points import align_points
 
 __all__ = ["GLUE", "cell_width", "lay_out"]
@@ -14,6 +15,8 @@ GLUE = "\N{NO-BREAK SPACE}"
 
 _BETWEEN = "  "
 _LEAST = 12
+# Beside these Latin letters, signs and lines a letter may be wide, or take no place.
+_UNUSUAL = pattern_of(r"[^\x00-\u02ff\u2010-\u2027\u2190-\u22ff\u2500-\u257f]")
 
 
 def cell_width(text: str) -> int:
@@ -24,7 +27,7 @@ def cell_width(text: str) -> int:
     >>> cell_width("CO2"), cell_width("±"), cell_width("日本")
     (3, 1, 4)
     """
-    if text.isascii():
+    if text.isascii() or not _UNUSUAL.search(text):
         return len(text)
     return sum(
         0 if combining(letter) else 2 if east_asian_width(letter) in "WF" else 1 for letter in text

@@ -10,6 +10,8 @@ from typing import Any
 
 import pytest
 
+from fluxnet.ground.resources import resource_folder
+
 START = [sys.executable, "-c", "from fluxnet.__main__ import main; main()"]
 MODEL = "substrate A C\nproduct B C\ncompartment all\n    r : A -> B\n"
 
@@ -76,3 +78,25 @@ def test_a_reader_that_has_gone_is_no_fault(
 
     assert done.returncode == 0
     assert done.stderr == ""
+
+
+def test_solving_measured_rates_loads_few_modules(tmp_path: Path) -> None:
+    """What conflicts, proofs, aims and suspects need is loaded where there are any."""
+    (tmp_path / "rates.csv").write_text(
+        "run,species,direction,rate,sd,unit\n1,glucose,in,4.0,3 %,mmol/g/h\n", encoding="utf-8"
+    )
+    model = resource_folder("models") / "amino-acid.flux"
+    code = (
+        "import sys; from fluxnet.cli.main import run; "
+        f"assert run(['solve', {str(model)!r}, 'rates.csv']) == 0;"
+        "print(*(m for m in sys.modules if m.startswith('fluxnet')), file=sys.stderr)"
+    )
+    done = subprocess.run(
+        [sys.executable, "-c", code], capture_output=True, text=True, check=True, cwd=tmp_path
+    )
+    loaded = done.stderr.strip().splitlines()[-1].split()
+
+    assert 100 < len(loaded) <= 220
+    rooms = ("conflict", "proof", "bill", "suspect", "aims", "programme", "simplex", "linear")
+    assert [m for m in loaded if m.split(".")[-1] in rooms] == ["fluxnet.exact.linear"]
+    assert not [m for m in loaded if ".fault_" in m and not m.endswith("fault_record")]

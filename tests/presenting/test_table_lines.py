@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import io
+from unicodedata import combining, east_asian_width
 
 from hypothesis import given
 from hypothesis import strategies as st
@@ -96,3 +97,12 @@ def test_widths_are_those_of_terminal_cells() -> None:
     laid = lay_out(["x", "y"], [["日本", "1"], ["e\u0301", "2"]], [False, True], [None, None], 80)
 
     assert laid[2] == ("日本  1", "e\u0301     2")
+
+
+def test_every_letter_takes_the_cells_that_unicode_gives_it() -> None:
+    for number in range(0x3000):
+        letter = chr(number)
+        if combining(letter):
+            assert cell_width(letter) == 0, hex(number)
+        else:
+            assert cell_width(letter) == (2 if east_asian_width(letter) in "WF" else 1)
