@@ -24,12 +24,15 @@ if TYPE_CHECKING:
     from fluxnet.studies.closure_result import Closure
     from fluxnet.studies.compare_result import Comparison
     from fluxnet.studies.frontier_result import Frontier
+    from fluxnet.studies.lump_overall import Overalls
+    from fluxnet.studies.lump_result import Lumped
     from fluxnet.studies.routes_result import Routes
     from fluxnet.studies.solution import Solution
 
 __all__ = [
-    "Answer", "Model", "Network", "Rates", "check", "closure", "compare", "frontier", "read_model",
-    "read_model_text", "read_rates", "read_rates_text", "routes", "solve", "write_model",
+    "Answer", "Model", "Network", "Rates", "check", "closure", "compare", "frontier", "lump",
+    "overall", "read_model", "read_model_text", "read_rates", "read_rates_text", "routes", "solve",
+    "write_model",
 ]
 
 @dataclass(frozen=True)
@@ -356,6 +359,57 @@ def routes(network: Model | Network, **options: Any) -> Answer[Routes]:
     told = in_order(_told(network))
     screen = (*routes_screen(result), *accepted_blocks(told))
     return Answer(result, Document.ROUTES, screen, routes_record(result), "routes", told)
+
+
+def lump(
+    network: Model | Network, keep: tuple[str, ...] | list[str], *, variants: bool = True
+) -> Answer[Lumped]:
+    r"""A smaller model with the same net conversions of what is kept, compartment by compartment.
+
+    ``keep`` are species, and reactions, that must stay; ``variants`` as in
+    :func:`fluxnet.studies.lump.lump_network`. The answer's ``text`` is the model as a file,
+    its ``network`` the same as a network.
+
+    Examples
+    --------
+    >>> from fluxnet.cli.new import MODEL
+    >>> short = lump(read_model_text(MODEL), keep=["ethanol"])
+    >>> short.eliminated, len(short.network.reactions), short.proof.verified
+    (('pyruvate',), 5, True)
+    """
+    from fluxnet.presenting.lump_record import lump_record
+    from fluxnet.presenting.lump_screen import lump_screen
+    from fluxnet.studies.lump import lump_network
+
+    result = lump_network(_network(network), keep, variants=variants)
+    told = in_order(_told(network))
+    screen = (*lump_screen(result), *accepted_blocks(told))
+    return Answer(result, Document.LUMP, screen, lump_record(result), "lumped", told)
+
+
+def overall(
+    network: Model | Network, compartment: str, rates: Rates | None = None, **options: Any
+) -> Answer[Overalls]:
+    r"""The one reaction that a compartment makes at solved fluxes, per mol of substrate.
+
+    ``options`` are those of :func:`solve`.
+
+    Examples
+    --------
+    >>> from fluxnet.cli.new import MODEL
+    >>> model = read_model_text(MODEL + "limit glucose <= 2\n")
+    >>> overall(model, "maintenance", maximise="mu").runs[0].text
+    'maintenance : 0.2 ATP -> nothing'
+    """
+    from fluxnet.presenting.lump_record import overall_record
+    from fluxnet.presenting.lump_screen import overall_screen
+    from fluxnet.studies.lump_overall import find_overall
+
+    solved = solve(network, rates, **options)
+    result = find_overall(solved.result, compartment)
+    screen = (*overall_screen(result), *accepted_blocks(solved.told))
+    record = overall_record(result)
+    return Answer(result, Document.LUMP, screen, record, "overall", solved.told)
 
 
 def _told(network: Model | Network | None) -> tuple[Diagnostic, ...]:

@@ -48,6 +48,8 @@ COMMANDS: tuple[Command, ...] = (
             "fluxnet routes model.flux --from glucose --to ethanol"),
     Command("frontier", "frontier", "What does more of one thing cost of another?",
             "fluxnet frontier model.flux mu ethanol"),
+    Command("lump", "lump", "Which shorter list does the same?",
+            "fluxnet lump model.flux --keep pyruvate,ethanol -o short.flux"),
     Command("demo", "demo", "Show me the whole job on an example.", "fluxnet demo"),
     Command("new", "new", "Give me a folder to start from.", "fluxnet new my-strain"),
     Command("catalogue", "catalogue", "Which compounds does it know?",

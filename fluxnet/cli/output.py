@@ -32,15 +32,17 @@ ALWAYS_WRITTEN = {
     Document.FRONTIER: ("points",),
     Document.ROUTES: ("routes", "route_reactions"),
     Document.COMPARE: ("variants",),
+    Document.LUMP: (),
 }
 """The tables that a command writes whatever its answer is."""
 
 NAMES_OF_TABLES = frozenset({
     "alternatives", "balances", "bill", "bill_prices", "by_products", "carriers", "catalogue",
-    "compound", "conflict", "cuts", "destinations", "equations", "findings", "fluxes", "heat",
-    "holding", "least_change", "ledger", "limits", "mode_yields", "most_energy", "odds",
-    "overview", "parameters", "plan", "points", "prices", "rates", "relations", "route_reactions",
-    "routes", "shares", "spread", "staircase", "suspects", "unbounded", "variants", "yields",
+    "compound", "conflict", "cuts", "destinations", "equations", "findings", "fluxes", "gone",
+    "heat", "holding", "kept", "least_change", "ledger", "limits", "lumped", "mode_yields",
+    "most_energy", "odds", "overall", "overview", "parameters", "plan", "points", "prices",
+    "rates", "relations", "route_reactions", "routes", "shares", "spread", "staircase",
+    "suspects", "unbounded", "variants", "yields",
 })  # fmt: skip
 """Every table that some command writes."""
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import replace
 from fractions import Fraction
 from math import gcd, lcm
 
@@ -11,10 +12,10 @@ from fluxnet.network.expression import Expression
 from fluxnet.network.line_balance import Contents, Verdict, balance_line
 from fluxnet.network.model import Network, Reaction, Role, Term
 from fluxnet.network.variant import BASE
-from fluxnet.studies.lump_bundle import Bundle
+from fluxnet.studies.lump_bundle import Bundle, Net
 from fluxnet.studies.lump_result import Why
 
-__all__ = ["line_of", "refusal_of", "size_of"]
+__all__ = ["line_of", "refusal_of", "side_terms", "size_of"]
 
 _WIDEST = 10**9
 _LARGEST = 24
@@ -85,20 +86,31 @@ def line_of(
     >>> [(sign, t.species, str(t.coefficient)) for sign, t in line.terms]
     [(-1, 'glucose', '1'), (1, 'ethanol', '2'), (1, 'CO2', '2')]
     """
-    order = _reading_order(network)
-    names = sorted(bundle.net, key=order.__getitem__)
     factor = size_of(bundle, network, values) if factor is None else factor
+    net = {species: amount.scaled(factor) for species, amount in bundle.net.items()}
+    left, right = (
+        tuple(replace(t, written=_written(t.coefficient)) for t in side)
+        for side in side_terms(net, network, values)
+    )
+    return Reaction(name, bundle.compartment, left, right, bundle.reversible)
+
+
+def side_terms(
+    net: Net, network: Network, values: Values
+) -> tuple[tuple[Term, ...], tuple[Term, ...]]:
+    """What a conversion uses and what it makes, in the order in which it is read."""
     left: list[Term] = []
     right: list[Term] = []
-    for species in names:
-        amount = bundle.net[species].scaled(factor)
-        side = left if amount.exact(values) < 0 else right
-        side.append(_term(species, -amount if side is left else amount))
-    return Reaction(name, bundle.compartment, tuple(left), tuple(right), bundle.reversible)
+    for species in sorted(net, key=_reading_order(network).__getitem__):
+        if net[species].exact(values) < 0:
+            left.append(Term(species, -net[species]))
+        else:
+            right.append(Term(species, net[species]))
+    return tuple(left), tuple(right)
 
 
-def _term(species: str, amount: Expression) -> Term:
-    return Term(species, amount, written="" if amount.number == 1 else coefficient_text(amount))
+def _written(amount: Expression | None) -> str:
+    return "" if amount is None or amount.number == 1 else coefficient_text(amount)
 
 
 def _reading_order(network: Network) -> dict[str, tuple[int, int]]:

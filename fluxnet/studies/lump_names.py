@@ -57,7 +57,7 @@ def _plain(bundle: Bundle, network: Network, values: Mapping[str, Fraction]) -> 
         species = network.find_species(name)
         if species is not None and species.role is Role.BIOMASS and amount.exact(values) > 0:
             return f"making-{_fit(name)}"
-    sides: tuple[list[tuple[tuple[bool, bool, Fraction], str]], ...] = ([], [])
+    sides: tuple[list[tuple[tuple[bool, bool, bool, Fraction], str]], ...] = ([], [])
     for name, amount in bundle.net.items():
         species, value = network.find_species(name), amount.exact(values)
         carbon = Fraction(0)
@@ -67,7 +67,7 @@ def _plain(bundle: Bundle, network: Network, values: Mapping[str, Fraction]) -> 
             carbon = species.formula.count("C") if species.formula else Fraction(0)
             carbon = Fraction(1) if role is Role.INSIDE and not carbon else carbon
         own = bool(carbon) and role not in (Role.CARRIER, Role.EXCHANGE)
-        rank = (own, role is Role.CARRIER, carbon * abs(value))
+        rank = (own, bool(carbon), role is Role.CARRIER, carbon * abs(value))
         sides[value > 0].append((rank, name))
     ends = [_fit(max(side)[1]) if side else "nothing" for side in sides]
     return "-to-".join(ends)

@@ -145,6 +145,8 @@ def _compare(
     for line in lumped.reactions:
         net = net_of(line)
         weights = stands_for.get(line.name, {line.name: ONE})
+        if not weights.keys() <= columns.keys():
+            raise _FaultError(f"it is not said what {line.name} stands for")
         if not same_net(_sum(columns, weights), net):
             raise _FaultError(f"{line.name} is not what it stands for")
         for name in one_way & weights.keys():

@@ -85,7 +85,8 @@ class Elimination:
         users = self._users(species)
         if not users and not written:
             return Kept(species, Why.UNUSED, "no reaction uses it")
-        places = list(dict.fromkeys(b.compartment for b in users))
+        found = {b.compartment for b in users}
+        places = [c.name for c in self.network.compartments if c.name in found]
         if len(places) > 1:
             return Kept(species, Why.CROSSES, f"passed between {join(places)}")
         for name in (n for b in users for n in b.weights):

@@ -53,6 +53,8 @@ SCREENS = {
     "routes": [
         "routes", "tw4.flux", "--from", "glucose", "--to", "2,3-butanediol", "--keep-above", "0.8",
     ],
+    "lump": ["lump", "sw9.flux", "--keep", "pyruvate,acetate", "--variant", "base"],
+    "overall": ["lump", "tw4.flux", "rates.csv", "--run", "W15", "--overall", "products"],
     "explain": ["explain", "unbalanced-line"],
     "catalogue": ["catalogue", "acetic", "acid"],
 }

@@ -17,7 +17,10 @@ from fluxnet.reading.model import read_model, read_model_text
 from fluxnet.reading.writer import write_model
 from fluxnet.studies.check import check_network
 from fluxnet.studies.lump import lump_network
-from fluxnet.studies.lump_result import Fate, Lumped, Why
+from fluxnet.studies.lump_holds import find_holds
+from fluxnet.studies.lump_proof import prove
+from fluxnet.studies.lump_result import Eliminated, Fate, Lumped, Why
+from fluxnet.studies.lump_steps import Elimination
 from fluxnet.studies.solve import solve_network
 
 ROOT = Path(__file__).resolve().parents[2]
@@ -276,3 +279,93 @@ def test_a_named_reaction_and_a_named_species_are_kept() -> None:
 def test_what_cannot_be_kept_is_refused(keep: list[str], said: str) -> None:
     with pytest.raises(MisuseError, match=said):
         lump_network(network_of(HEAD + TAIL), keep)
+
+
+def test_a_coefficient_that_would_change_its_sign_in_a_variant_keeps_its_species() -> None:
+    text = """\
+substrate  glucose, oxygen
+product    lactate
+carrier    ATP carries energy
+carrier    NADH
+inside     pyruvate
+parameter  a = 3
+compartment way
+    upper  : glucose -> 2 pyruvate + 2 NADH + 4 ATP
+    lower  : pyruvate + NADH + a ATP <-> lactate
+compartment rest
+    upkeep : ATP <-> nothing
+variant cheap
+    set a = 1
+"""
+    lumped = lump_network(network_of(text), ["lactate"])
+    alone = lump_network(network_of(text), ["lactate"], variants=False)
+
+    assert [(k.species, k.why) for k in lumped.kept] == [("pyruvate", Why.SIGN)]
+    assert "in the variant cheap" in lumped.kept[0].words
+    assert alone.eliminated == ("pyruvate",)
+    assert "glucose + (2*a - 4) ATP -> 2 lactate" in alone.text
+
+
+def test_a_coefficient_that_would_be_zero_keeps_its_species() -> None:
+    text = HEAD.replace("-> 2 pyruvate + 2 ATP", "-> 2 pyruvate + (2*PO) ATP") + """\
+    ldh    : pyruvate + NADH + 1.4 ATP -> lactate
+""" + TAIL
+    lumped = lump_network(network_of(text), ["lactate"])
+
+    assert ("pyruvate", Why.SIGN) in [(k.species, k.why) for k in lumped.kept]
+
+
+def test_a_line_that_balances_by_its_rounding_keeps_its_species() -> None:
+    text = HEAD + """\
+    split  : pyruvate -> 0.667 lactate + 0.999 CO2 + 1.0 NADH
+    ldh    : pyruvate + NADH -> lactate
+""" + TAIL
+    network = network_of(text)
+    lumped = lump_network(network, ["CO2"])
+
+    assert ("pyruvate", Why.BALANCE) in [(k.species, k.why) for k in lumped.kept]
+    (words,) = [k.words for k in lumped.kept if k.why is Why.BALANCE]
+    assert "split" in words
+
+
+def test_a_hub_that_would_make_far_too_many_reactions_is_kept() -> None:
+    makers = "".join(f"    in{k} : {k + 1} ATP -> hub\n" for k in range(12))
+    users = "".join(f"    out{k} : hub -> {k + 2} GTP\n" for k in range(12))
+    text = ("substrate glucose\nproduct lactate\ncarrier ATP carries energy\n"
+            "carrier GTP carries energy\ninside hub\ncompartment way\n"
+            f"    base : glucose -> 2 lactate\n{makers}{users}")  # fmt: skip
+    lumped = lump_network(network_of(text), ["lactate"])
+
+    assert [(k.species, k.why) for k in lumped.kept] == [("hub", Why.GROWTH)]
+    assert "144" in lumped.kept[0].words
+
+
+def test_the_proof_refuses_what_was_tampered_with() -> None:
+    text = HEAD + """\
+    pdc    : pyruvate -> acetaldehyde + CO2
+    pdh    : pyruvate -> acetyl-CoA + CO2 + NADH
+    adh    : acetaldehyde + NADH -> ethanol
+    ack    : acetyl-CoA -> acetate + ATP
+    ldh    : pyruvate + NADH -> lactate
+""" + TAIL
+    network = network_of(text)
+    work = Elimination(network, find_holds(network, ["CO2"]))
+    work.run()
+    lumped = lump_network(network, ["CO2"])
+    good = prove(network, lumped.network, work.events, lumped.lumps, frozenset())
+    one = next(e for e in work.events if isinstance(e, Eliminated) and len(e.after) > 1)
+    short = replace(one, after=one.after[:-1])
+    cases = [
+        (work.events[:-1], lumped.lumps, frozenset()),
+        ([short if e is one else e for e in work.events], lumped.lumps, frozenset()),
+        (work.events, lumped.lumps[1:], frozenset()),
+        (work.events, lumped.lumps, frozenset({"ldh"})),
+    ]
+
+    assert good.verified
+    for events, lumps, held in cases:
+        assert not prove(network, lumped.network, events, lumps, held).verified
+    fewer = replace(lumped.network, reactions=lumped.network.reactions[1:])
+    assert "no line stands for" in prove(
+        network, fewer, work.events, lumped.lumps, frozenset()
+    ).fault
