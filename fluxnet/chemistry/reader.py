@@ -36,6 +36,8 @@ class FormulaError(ValueError):
 
 
 _NUMBER = pattern_of(r"\d+(?:\.\d+)?|\.\d+")
+_PLAIN = pattern_of(r"(?:[A-Z][a-z]?[0-9]{0,9})+")
+_ELEMENT = pattern_of(r"([A-Z][a-z]?)([0-9]*)")
 _SYMBOL = pattern_of(r"[A-Z][a-z]?")
 _WORD = pattern_of(r"[A-Za-z]+")
 _CHARGE_WORD = pattern_of(r"\s+charge(?:\s+|(?=[+-]))([+-]?)\s*(\d+(?:\.\d+)?|\.\d+)\s*$")
@@ -82,6 +84,9 @@ def read_formula(text: str) -> Formula:
     Fraction(1, 20)
     """
     written = text.strip()
+    plain = _read_plain(written)
+    if plain is not None:
+        return plain
     normal = unicodedata.normalize("NFKC", text).replace("\u2212", "-").replace("\u00d7", "*")
     body, charge = _take_charge(normal)
     lead = len(body) - len(body.lstrip())
@@ -96,6 +101,20 @@ def read_formula(text: str) -> Formula:
         raise FormulaError(FormulaFault.BAD, "every count is zero", lead, len(body))
     halves = tuple((e, a.half) for e, a in total.items() if a.count and a.half)
     return Formula(counts, charge, halves, written)
+
+
+def _read_plain(written: str) -> Formula | None:
+    """A formula of elements with whole numbers alone, as most are; None of any other text."""
+    if not _PLAIN.fullmatch(written):
+        return None
+    counts: dict[str, int] = {}
+    for symbol, number in _ELEMENT.findall(written):
+        if symbol not in ATOMIC_WEIGHT:
+            return None
+        counts[symbol] = counts.get(symbol, 0) + int(number or 1)
+    if not all(counts.values()):
+        return None
+    return Formula(tuple((e, Fraction(n)) for e, n in counts.items()), _ZERO, (), written)
 
 
 def _take_charge(text: str) -> tuple[str, Fraction]:

@@ -8,6 +8,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
+from fluxnet.chemistry import reader
 from fluxnet.chemistry.elements import ATOMIC_WEIGHT, VALENCE
 from fluxnet.chemistry.formula import degree_of_reduction, molar_mass
 from fluxnet.chemistry.reader import FormulaError, FormulaFault, read_formula
@@ -128,3 +129,22 @@ def test_an_element_without_a_reference_gives_no_degree_of_reduction() -> None:
 def test_molar_mass_weighs_no_charge() -> None:
     assert molar_mass(read_formula("C6H12O6")) == pytest.approx(180.156, abs=1e-9)
     assert molar_mass(read_formula("C2H3O2(-)")) == pytest.approx(59.044, abs=1e-9)
+
+
+PIECES = st.sampled_from(
+    ["C", "H", "O", "N", "Na", "Cl", "Xx", "0", "1", "2", "12", "(", ")", ".", " "]
+)
+
+
+@given(st.lists(PIECES, max_size=8).map("".join))
+def test_a_plain_formula_is_read_as_the_longer_way_reads_it(text: str) -> None:
+    def read(text: str) -> object:
+        try:
+            return read_formula(text)
+        except FormulaError as error:
+            return str(error), error.kind, error.position, error.end
+
+    with pytest.MonkeyPatch.context() as patch:
+        quick = read(text)
+        patch.setattr(reader, "_read_plain", lambda text: None)
+        assert read(text) == quick
