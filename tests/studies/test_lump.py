@@ -5,6 +5,7 @@ from __future__ import annotations
 import random
 from dataclasses import replace
 from fractions import Fraction
+from functools import cache
 from pathlib import Path
 
 import pytest
@@ -54,6 +55,7 @@ def network_of(text: str) -> Network:
     return reading.network
 
 
+@cache
 def lumped_case(path: Path, variant: str | None) -> tuple[Network, Lumped]:
     network = read_model(path).network
     assert network is not None
@@ -113,7 +115,7 @@ def _bounded(network: Network, dice: random.Random) -> tuple[Limit, ...]:
     return tuple(found)
 
 
-AIMS_EACH = 5
+AIMS_EACH = 3
 
 
 @pytest.mark.parametrize(("path", "variant"), CASES, ids=lambda v: getattr(v, "stem", str(v)))
