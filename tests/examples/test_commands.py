@@ -36,6 +36,7 @@ EXPECTED: dict[str, tuple[tuple[Exit, tuple[str, ...]], ...]] = {
         (Exit.SOUND, ("at most 1.542 mol/mol", "80 alanine", "85 glycerol")),
         (Exit.SOUND, ("pyr-ly and pyr-ox 2 1.06 to 1.43",)),
         (Exit.SOUND, ("optimal", "0.7044 mol per mol xylose")),
+        (Exit.SOUND, ("16 reactions have become", "Nothing is lost")),
     ),
 }
 

@@ -102,6 +102,18 @@ def test_where_the_curves_bend_and_cross(capsys):
     assert tank / 6 * 3 / 5 == pytest.approx(TABLE["alanine", "xylose", "tank"], abs=6e-4)
 
 
+@pytest.mark.parametrize("vessel", VESSELS)
+def test_the_short_list_makes_as_much(ask, most, vessel, tmp_path):
+    short = tmp_path / "short.flux"
+    applied = f"alanine * on-xylose * {vessel}"
+    asked = ["lump", str(MODEL), "--variant", applied, "--keep", "pyruvate"]
+    assert run([*asked, "-o", str(short)]) == Exit.SOUND
+    found = ask(short, {"mu": 0.04}, maximise=P, unit="mmol/g/h")
+    expected = 6 * most("alanine", "xylose", vessel=vessel, mu=0.04)
+    assert found.optimum == pytest.approx(expected, rel=1e-9)
+    assert len(found.fluxes) < 16
+
+
 def _table() -> dict[tuple[str, str, str], float]:
     lines = [
         [cell.strip(" *") for cell in line.strip("|").split("|")]
