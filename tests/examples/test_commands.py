@@ -49,7 +49,7 @@ def commands(example: str) -> list[list[str]]:
 
 def test_every_example_has_its_commands_tested():
     found = {p.name for p in EXAMPLES.iterdir() if (p / "README.md").is_file()}
-    assert found == set(EXPECTED)
+    assert found == set(EXPECTED), "an example has a line of EXPECTED for each of its commands"
     for name, expected in EXPECTED.items():
         assert len(commands(name)) == len(expected), name
 
