@@ -6,6 +6,7 @@ from fluxnet.ground.table import Align, Column, Table
 from fluxnet.presenting.bill_table import NEEDS, SURPLUS, bill_tables
 from fluxnet.presenting.numbers import format_number
 from fluxnet.presenting.screen import Block, Mood, Sentence
+from fluxnet.presenting.suspect_text import and_words, would_be_words
 from fluxnet.solving.alternatives import Alternative
 from fluxnet.solving.least_change import LeastChange
 from fluxnet.studies.conflicts import MOST_CONFLICTS, ToldConflict
@@ -38,6 +39,8 @@ def conflict_blocks(run: FluxSolution, *, prices: bool = False) -> tuple[Block, 
         blocks += _least_change(run.least_change)
     for place, told in enumerate(run.conflicts):
         blocks += _alternatives(told, f" {place + 1}" if several else "")
+    if not several:
+        blocks += _which_to_use(run)
     return tuple(blocks)
 
 
@@ -134,17 +137,22 @@ def _alternatives(told: ToldConflict, number: str) -> list[Block]:
     ends = f"ends conflict{number}" if number else "mends it"
     if not told.alternatives:
         return [Sentence(f"No limit or measured value {ends} by giving way alone.")]
-    ranked = sorted(
-        told.alternatives, key=lambda a: (a.in_sd is None, abs(a.in_sd or 0.0))
-    )
+    ranked = sorted(told.alternatives, key=lambda a: a.ease)
     listed = "; or ".join(alternative_words(a) for a in ranked)
     which = "Any one of these" if len(ranked) > 1 else "This one"
     keys = ("quantity", "is_ceiling", "needed", "stated", "in_sd")
     rows = tuple(
         (str(a.quantity), a.is_ceiling, a.needed, a.stated, a.in_sd) for a in ranked
     )
+    more = ""
+    if told.beyond:
+        names = and_words([_bare(a) for a in told.beyond])
+        more = (
+            f" What is missing in the bill is not all that {names} would have to give: on the "
+            "way other lines come to hold."
+        )
     return [
-        Sentence(f"{which} alone {ends} (all else as it stands): {listed}."),
+        Sentence(f"{which} alone {ends} (all else as it stands): {listed}.{more}"),
         Table("alternatives", "", tuple(Column("", key) for key in keys), rows),
     ]
 
@@ -155,10 +163,48 @@ def alternative_words(alternative: Alternative) -> str:
     needed = format_number(a.needed)
     if not a.member.kind.is_measured:
         return f"{a.member.name} {'lowered' if a.is_ceiling else 'raised'} to {needed}"
-    sds = "" if a.in_sd is None else f" ({a.in_sd:+.1f} sd)"
-    name = str(a.quantity).removeprefix("flux ")
-    bound = "at most" if a.is_ceiling else "at least"
-    return f"{name} {bound} {needed} instead of {format_number(a.stated)}{sds}"
+    stated = format_number(a.stated)
+    away = f"instead of {stated}"
+    if a.in_sd is not None:
+        away = f"({a.in_sd:+.1f} sd from the value {stated})"
+    return f"{_bare(a)} {'at most' if a.is_ceiling else 'at least'} {needed} {away}"
+
+
+def _which_to_use(run: FluxSolution) -> list[Block]:
+    """Of all values shown of the one that gives way most easily, what each is good for."""
+    ways = [a for told in run.conflicts for a in told.alternatives if a.in_sd is not None]
+    if not ways or run.within is None:
+        return []
+    way = min(ways, key=lambda a: a.ease)
+    name, stated = _bare(way), format_number(way.stated)
+    told = [
+        f"{'At most' if way.is_ceiling else 'At least'} {format_number(way.needed)} with every "
+        f"other measured value stretched to {run.within:g} sd in its favour, parameters as written."
+    ]
+    found = run.suspects.group if run.suspects is not None else ()
+    alone = len({one.direction_number for one in found if one.possible}) == 1
+    chance = "" if alone else ", if it is the one that is wrong"
+    for one in found:
+        is_it = one.measured is not None and str(way.quantity) in (one.label, one.name)
+        if is_it and one.possible and run.suspects is not None and run.suspects.explained:
+            told.insert(
+                0,
+                f"Best estimate without the {stated}{chance}: {would_be_words(one)} (parameters "
+                "may move).",
+            )
+    if run.aim is not None:
+        told.append("Solved without an aim, the run's suspects give a best estimate.")
+    fitted = next((r for r in run.rates if r.quantity == way.quantity), None)
+    if fitted is not None and fitted.reconciled is not None and len(told) > 1:
+        told.append(
+            f"The solved {format_number(fitted.reconciled, 3)} is drawn towards the {stated}, and "
+            "not to be used."
+        )
+    return [Sentence(f"Which value of {name} to use? {' '.join(told)}")]
+
+
+def _bare(alternative: Alternative) -> str:
+    return str(alternative.quantity).removeprefix("flux ")
 
 
 def unbounded_blocks(run: FluxSolution) -> tuple[Block, ...]:

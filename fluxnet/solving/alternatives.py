@@ -36,6 +36,11 @@ class Alternative:
     stated: float
     in_sd: float | None
 
+    @property
+    def ease(self) -> tuple[bool, float]:
+        """A key to sort by: the fewest sds first, what has none behind."""
+        return self.in_sd is None, abs(self.in_sd or 0.0)
+
 
 def find_alternatives(problem: Problem, members: Iterable[Member]) -> tuple[Alternative, ...]:
     """Each of some members that could give way alone, by as little as is possible.

@@ -19,8 +19,8 @@ from fluxnet.solving.members import Member, list_members
 from fluxnet.solving.problem import Problem
 
 __all__ = [
-    "Change", "Conflict", "LeastChange", "find_conflict", "find_conflicts", "least_change",
-    "without_members",
+    "Change", "Conflict", "LeastChange", "find_conflict", "find_conflicts", "is_irreducible",
+    "least_change", "without_members",
 ]
 
 Vector = NDArray[np.float64]
@@ -103,7 +103,7 @@ def find_conflict(problem: Problem, *, unit: str = "") -> Conflict:
         sieve.lift(m for m in given if m not in kept)
     kept += sieve.filter(making[::-1])
     chosen = tuple(m for m in members if m in kept)
-    return Conflict(chosen, is_hard, _is_irreducible(problem, chosen))
+    return Conflict(chosen, is_hard, is_irreducible(problem, chosen))
 
 
 def find_conflicts(problem: Problem, *, most: int = 3, unit: str = "") -> tuple[Conflict, ...]:
@@ -221,7 +221,7 @@ class _Sieve:
             waiting[:] = [m for m in waiting if m not in idle]
 
 
-def _is_irreducible(problem: Problem, members: tuple[Member, ...]) -> bool:
+def is_irreducible(problem: Problem, members: tuple[Member, ...]) -> bool:
     """Whether members cannot hold together, and can without any one; from a cold start."""
     sieve = _Sieve(problem)
     sieve.lift(m for m in list_members(problem) if not _is_among(m, members))

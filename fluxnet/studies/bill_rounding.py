@@ -12,6 +12,7 @@ from fluxnet.studies.bill import Bill, BillLine, BillSide
 __all__ = ["PrintedBill", "print_bill"]
 
 _MOST_DIGITS = 12
+_MORE_DECIMALS = 1
 
 
 @record
@@ -33,9 +34,10 @@ class PrintedBill:
 def print_bill(bill: Bill, digits: int = 3) -> PrintedBill:
     """Round a bill: some digits of its sums and two of what is missing, at the least.
 
-    Where the rounded worths do not add up to the rounded sums one decimal more is tried; then
-    those nearest to the next number are rounded the other way. Amount and price keep as many
-    digits as it takes for their product to be the worth.
+    Where the rounded worths do not add up to the rounded sums, or these do not differ by the
+    rounded shortfall, one decimal more is tried; then those nearest to the next number are
+    rounded the other way. Amount and price keep as many digits as it takes for their product
+    to be the worth.
 
     Examples
     --------
@@ -46,7 +48,9 @@ def print_bill(bill: Bill, digits: int = 3) -> PrintedBill:
     ((('3.2', '1', '3.20'), ('1.2', '2.4', '2.88')), '0.32')
     """
     least = _decimals(bill, digits)
-    decimals = least if _adds_up(bill, least) or not _adds_up(bill, least + 1) else least + 1
+    tried = range(least, least + 1 + _MORE_DECIMALS)
+    agreeing = [more for more in tried if _differ_by_shortfall(bill, more)] or [least]
+    decimals = next((more for more in agreeing if _adds_up(bill, more)), agreeing[0])
     supply, demand = _rounded(bill.supply, decimals), _rounded(bill.demand, decimals)
     worths = _worths(bill, decimals)
     lines = [_line(x, w, decimals) for x, w in zip(bill.lines, worths, strict=True)]
@@ -70,6 +74,12 @@ def _decimals(bill: Bill, digits: int) -> int:
 
 def _sums(bill: Bill) -> dict[BillSide, float]:
     return {BillSide.SUPPLY: bill.supply, BillSide.DEMAND: bill.demand}
+
+
+def _differ_by_shortfall(bill: Bill, decimals: int) -> bool:
+    """Whether the rounded sums differ by the rounded shortfall."""
+    supply, demand = _rounded(bill.supply, decimals), _rounded(bill.demand, decimals)
+    return demand - supply == _rounded(bill.shortfall, decimals)
 
 
 def _adds_up(bill: Bill, decimals: int) -> bool:
@@ -101,10 +111,13 @@ def _worths(bill: Bill, decimals: int) -> list[Decimal]:
 def _line(line: BillLine, worth: Decimal, decimals: int) -> tuple[tuple[str, str, str], bool]:
     """The texts of a line, and whether the product is the worth."""
     texts: Sequence[Decimal] = ()
+    step = Decimal(1).scaleb(-decimals)
     for digits in range(4, _MOST_DIGITS + 1):
         amount, price = _significant(line.amount, digits), _significant(line.price, digits)
         fits = _rounded(float(amount * price), decimals) == worth
-        texts = texts or (amount, price)
+        off = abs(_rounded(float(amount * price), decimals) - worth)
+        if not texts and (off <= step or digits == _MOST_DIGITS):
+            texts = amount, price
         if fits:
             return (_plain(amount), _plain(price), f"{worth:f}"), True
     return (_plain(texts[0]), _plain(texts[1]), f"{worth:f}"), False

@@ -61,5 +61,11 @@ def test_a_last_digit_gives_way_where_the_column_would_not_add_up():
 
 
 def test_few_digits_are_enough_where_they_multiply():
-    printed = print_bill(bill_of([(0.04940180000001, 90.0050)], [(1.25951, 2.4)]))
+    printed = print_bill(bill_of([(0.04940180000001, 90.0050)], [(1.26151, 2.4)]))
     assert printed.lines[0][:2] == ("0.0494", "90")
+
+
+def test_the_sums_differ_by_what_is_missing_as_it_would_be_rounded_itself():
+    # 7.5222 - 5.5162: with two decimals 7.52 - 5.52 is 2.00, and not 2.01
+    printed = print_bill(bill_of([(7.5222, 1.0)], [(5.5162, 1.0)]))
+    assert (printed.demand, printed.supply, printed.shortfall) == ("7.522", "5.516", "2.006")
