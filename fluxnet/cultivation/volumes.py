@@ -147,9 +147,9 @@ def read_flow(
     return Flow(series.title, series.kind, total, own * factor, common * total, share)
 
 
-def broth(start: Array, flows: Sequence[tuple[SeriesKind, Array]]) -> Array:
+def broth(start: Array, flows: Sequence[tuple[SeriesKind, Array]], nodes: int) -> Array:
     """Broth at the nodes: trials x nodes, from that at the first one and cumulated streams."""
-    total = np.repeat(start[:, None], flows[0][1].shape[1], axis=1) if flows else start[:, None]
+    total = np.repeat(start[:, None], nodes, axis=1)
     for kind, moved in flows:
         total = total - moved if kind.is_removal else total + moved
     return np.asarray(total)

@@ -461,3 +461,60 @@ class Name(Enum):
     LIMIT_REPLACED = (
         "limit-replaced", _N, "a row of the table replaces a measured value of the model",
         "One quantity has one measured value.", "Take the limit away if that is not meant.")
+
+    # --- raw data of a cultivation ---------------------------------------------------
+    NO_BIOMASS_DATA = (
+        "no-biomass-data", _E, "there is no dry weight, and no optical density with a calibration",
+        "Without biomass there is no specific rate; optical density alone is no mass.",
+        "Add a column of dry weight, or pairs of optical density and dry weight.")
+    BROTH_UNKNOWN = (
+        "broth-unknown", _E, "nothing says how much broth there was",
+        "Amounts are concentration times volume.",
+        "Give the volume or mass at inoculation as a setting.")
+    FLOW_WITHOUT_REFERENCE = (
+        "flow-without-reference", _E, "a gas flow in litres has no reference temperature",
+        "Litres at 0 °C and at 20 °C differ by 7.3 %, and every gas rate with them.",
+        "Write the unit as NL/h (0 °C) or give the reference temperature as a setting.")
+    IMPOSSIBLE_GAS = (
+        "impossible-gas", _E, "gas fractions lie below 0 or above 100 %",
+        "No gas is like that; the unit or the column is wrong.", "Correct the unit or the column.")
+    PHASE_WITHOUT_SAMPLES = (
+        "phase-without-samples", _E, "a phase holds fewer samples than a rate needs",
+        "A rate is a difference over time.", "Make the phase longer, or leave it out.")
+    STREAM_IMPOSSIBLE = (
+        "stream-impossible", _E, "streams leave no broth, or their flow is unknown",
+        "Every amount rests on the account of the broth.", "Correct the stream that is named.")
+    NOT_STEADY = (
+        "not-steady", _W, "a chemostat still changes over its last residence times",
+        "What piles up or is washed out counts as made or used.",
+        "Wait for five residence times, or choose a later stretch.")
+    BEYOND_CALIBRATION = (
+        "beyond-calibration", _W, "optical densities lie outside the calibrated range",
+        "Dense broth reads too low, and by how much only a calibration tells.",
+        "Dilute before reading, or calibrate further.")
+    RATIO_UNUSABLE = (
+        "ratio-unusable", _W, "RQ is not known: the oxygen difference is below three of its sds",
+        "A ratio over what cannot be told from nothing says nothing.",
+        "Lower the gas flow, calibrate on the inlet gas, or wait for more biomass.")
+    ANALYSER_DRIFTS = (
+        "analyser-drifts", _W, "an analyser drifted while nothing grew",
+        "The drift may have gone on, and it looks like respiration.",
+        "Calibrate once more at the end, and let the analyser warm up before.")
+    TOTALISER_RESET = (
+        "totaliser-reset", _W, "a total falls: it was set back, or a bottle was changed",
+        "Taken as it stands it would be a negative flow.",
+        "Nothing, where the reset was meant: the total goes on from there.")
+    RATE_NOT_CONSTANT = (
+        "rate-not-constant", _W, "samples scatter about one rate by more than their errors",
+        "The rate changed in this phase, or an error is larger than given; its sd was widened.",
+        "Split the phase, or look at the rate over time.")
+    BROTH_NOT_CLOSED = (
+        "broth-not-closed", _W, "the broth that was found is not what the streams leave",
+        "Every amount is off by as much.", "Look for evaporation, samples or a balance that slipped.")
+    GAS_TAKEN_AS_INERT = (
+        "gas-taken-as-inert", _N, "all gas but oxygen and CO2 is taken as inert",
+        "Hydrogen, methane or nitrogen that is made or taken up would spoil every gas rate.",
+        "Measure them, or give the outlet flow.")
+    SPECIES_UNKNOWN = (
+        "species-unknown", _E, "a measured species has no formula here, and stands in grams",
+        "Rates count moles.", "Declare its formula, or give it in mol/L.")
