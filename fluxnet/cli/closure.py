@@ -12,6 +12,7 @@ from fluxnet.cli.main import Exit
 from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
 from fluxnet.cli.output import give_faults, give_findings, give_screen, refuse_outputs
 from fluxnet.cli.progress import progress_on
+from fluxnet.cli.table_files import refuse_table, write_table
 from fluxnet.ground.diagnostic import Diagnostic, in_order
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.names import Name
@@ -89,7 +90,7 @@ def run(arguments: argparse.Namespace) -> int:
         return Exit.MISUSE if asked and wrong else status
     give_findings(arguments, [d for d in diagnostics if d.accepted is None])
     if rates.table is not None and arguments.table is not None:
-        _write_table(arguments, rates.table)
+        write_table(rates.table, arguments.table, force=arguments.force)
     body = closure_record(closure) if arguments.json else {}
     if undone:
         body["undone"] = undone
@@ -106,33 +107,10 @@ def run(arguments: argparse.Namespace) -> int:
 
 def _refuse_table(arguments: argparse.Namespace) -> None:
     """Refuse a file for the rates that could not be written, or is the one that is read."""
-    from fluxnet.presenting.files import refuse_file
-
     table: Path = arguments.table
     if arguments.rates != "-" and table.resolve() == Path(arguments.rates).resolve():
         raise MisuseError(f"--table would write over {table}, which is read")
-    for path in (table, _beside(table)):
-        refuse_file(path, force=arguments.force)
-
-
-def _write_table(arguments: argparse.Namespace, table: RatesTable) -> None:
-    """Write the rates, and beside them the correlations of their errors where there are any."""
-    from fluxnet.presenting.files import write_text
-    from fluxnet.tables.writer import write_covariance_text, write_rates_text
-
-    path, beside = arguments.table, _beside(arguments.table)
-    pairs = write_covariance_text(table)
-    if not pairs and beside.exists():
-        raise MisuseError(f"{beside} would be taken for the correlations of {path}; take it away")
-    write_text(path, write_rates_text(table), force=arguments.force)
-    if pairs:
-        write_text(beside, pairs, force=arguments.force)
-    print(f"wrote {path}{f' and {beside}' if pairs else ''}", file=sys.stderr)
-
-
-def _beside(table: Path) -> Path:
-    """Where a rates table's correlations are looked for."""
-    return table.with_name(f"{table.stem}.covariance.csv")
+    refuse_table(table, force=arguments.force)
 
 
 def _close(
