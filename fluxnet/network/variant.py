@@ -45,8 +45,8 @@ def apply_variant(
     Returns
     -------
     Network or None
-        The changed network, its ``variant`` the names in the order of the file; None where
-        there are errors.
+        The changed network, its ``variant`` the names in the order asked; None where there are
+        errors.
     tuple of Diagnostic
         ``unknown-variant``, ``variant-circle``, ``variant-target``, ``variant-clash``,
         ``still-used``, ``variant-empty``, and what is found in added or changed reactions.
@@ -137,10 +137,11 @@ def _changed(
 ) -> tuple[Network, list[Diagnostic], tuple[Reaction, ...]]:
     """The network with some variants applied, what is wrong with them, and what to look at."""
     network = lineage.network
-    chosen = [n for n in lineage.variants if n in set(asked)]
+    asked = tuple(asked)
+    chosen = [n for n in lineage.variants if n in asked]
     members = lineage.family(chosen)
     merged = merge_variants(lineage, members)
-    label = " * ".join(chosen)
+    label = " * ".join(asked)
     changed, faults = build_variant(network, merged, label, lineage.doubt)
     own = tuple(a for n in members for a in lineage.variants[n].acceptances)
     changed = replace(changed, acceptances=(*network.acceptances, *own))

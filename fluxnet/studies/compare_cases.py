@@ -110,7 +110,7 @@ def find_cases(
     members: list[Case] = []
     skipped: list[Skipped] = []
     notes: dict[str, None] = {}
-    seen: set[str] = set()
+    seen: set[frozenset[str]] = set()
     closed: dict[str, None] = {}
     for label in _labels(network, across):
         changed, told = apply_variant(network, label)
@@ -120,9 +120,10 @@ def find_cases(
         if changed is None:
             skipped.append(Skipped(label, _reason(told)))
             continue
-        if changed.variant in seen:
+        names = frozenset(changed.variant.split(" * "))
+        if names in seen:
             continue
-        seen.add(changed.variant)
+        seen.add(names)
         notes |= dict.fromkeys(
             f"variant {changed.variant} changes nothing: it can what base can"
             for d in told

@@ -50,7 +50,7 @@ def find_cases(
             errors = [d for d in told if has_errors([d])]
             faults += errors
             skipped.append((label, "; ".join(d.message for d in errors)))
-        elif label not in [known for known, _, _ in found]:
+        elif set(parts) not in [set(known.split(" * ")) - {BASE} for known, _, _ in found]:
             found.append((label, label, changed))
     if len(found) > 1:
         found = [(name, _shortened(name, common_parts(found)), there) for name, _, there in found]

@@ -381,6 +381,14 @@ def test_one_number_in_two_variants_is_drawn_once_for_both() -> None:
     assert found.odds[0].probability == 1
 
 
+def test_one_combination_typed_in_two_orders_is_compared_once() -> None:
+    text = f"{TWO_WAYS}variant cold\n    limit glucose <= 1\n"
+    asked = ["first * cold | cold * first | cold * second"]
+    found = compare(read(text), "glycogen", "glucose", asked)
+
+    assert {a.variant for a in found.abilities} == {"first * cold", "cold * second"}
+
+
 def test_an_interruption_keeps_the_draws_that_are_done() -> None:
     def stop(what: str, done: int, total: int) -> None:
         if what == "draws" and done == 30:

@@ -202,8 +202,8 @@ def test_the_break_of_a_moved_parameter_stands_where_the_slopes_say() -> None:
     assert [p.y for p in curve.points] == pytest.approx([100, 100, 400 / 3], abs=1e-6)
 
 
-def two_ways() -> Network:
-    network = read_model_text(TWO_WAYS).network
+def two_ways(more: str = "") -> Network:
+    network = read_model_text(TWO_WAYS + more).network
     assert network is not None
     return network
 
@@ -217,6 +217,15 @@ def test_two_products_trade_at_their_exact_price() -> None:
         (0, 20), (30, 0), (0, 40), (60, 0),
     ]  # fmt: skip
     assert Fraction(found.curves[0].points[0].y_exact or "0") == 20
+
+
+def test_one_combination_typed_in_two_orders_makes_one_curve() -> None:
+    found = find_frontier(
+        two_ways("variant few\n    limit acetate <= 1\n"), "acetate", "ethanol",
+        across=("more * few | few * more",),
+    )  # fmt: skip
+
+    assert [c.variant for c in found.curves] == ["more * few"]
 
 
 def test_the_least_of_y_is_another_side() -> None:
