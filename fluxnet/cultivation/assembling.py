@@ -78,7 +78,7 @@ def assemble(
     """
     by_mass = counts_mass(raw)
     density = broth_density(raw, told)
-    start = start_of(raw, by_mass=by_mass, density=density, faults=faults)
+    start = start_of(raw, by_mass=by_mass, density=density, told=told, faults=faults)
     biomass = read_biomass(raw, by_mass=by_mass, density=density, told=told, faults=faults)
     species = read_species(
         raw, network, by_mass=by_mass, density=density, told=told, faults=faults
@@ -129,7 +129,7 @@ def _check_level(data: RawData, faults: list[Diagnostic]) -> None:
         ))  # fmt: skip
 
 
-def _temperature(raw: Cultivation, told: list[Assumption]) -> float | None:
+def _temperature(raw: Cultivation) -> float | None:
     found = raw.setting(SettingKind.TEMPERATURE)
     series = raw.find(SeriesKind.TEMPERATURE)
     if found is not None:
@@ -143,7 +143,7 @@ def _held(
     if line is None or "CO2" not in line.fractions:
         return None
     ph, series = raw.setting(SettingKind.PH), raw.find(SeriesKind.PH)
-    celsius = _temperature(raw, told)
+    celsius = _temperature(raw)
     if (ph is None and series is None) or celsius is None:
         told.append(Assumption("CO2 held in the broth", "not counted", Origin.ASSUMED,
                                "it needs pH and temperature"))  # fmt: skip
@@ -164,8 +164,14 @@ def _lost(
     raw: Cultivation, line: GasLine | None, species: tuple[Sampled, ...], density: float,
     told: list[Assumption],
 ) -> Mapping[str, float]:
-    celsius = _temperature(raw, told)
+    celsius = _temperature(raw)
+    volatile = [s.name for s in species if stripped_per_mole(s.name, 25.0) is not None]
     if line is None or celsius is None:
+        told.extend(
+            Assumption(f"{name} carried away by the gas", "not counted", Origin.ASSUMED,
+                       "it needs gas readings and the temperature")
+            for name in volatile
+        )  # fmt: skip
         return {}
     found: dict[str, float] = {}
     for one in species:

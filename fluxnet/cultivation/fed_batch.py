@@ -78,13 +78,15 @@ def rate_courses(data: RawData, whole: PhaseFit) -> tuple[Course, ...]:
     return tuple(courses)
 
 
-def gas_courses(line: GasLine, volume: Array) -> tuple[Course, ...]:
-    """OUR and CER [mmol/L/h] and RQ at every bin of the gas line.
+def gas_courses(line: GasLine, volume: Array, unit: str = "L") -> tuple[Course, ...]:
+    """OUR and CER [mmol/L/h, or per kg] and RQ at every bin of the gas line.
 
     Parameters
     ----------
     volume
-        Broth at each bin [L, or kg: then rates are per kg].
+        Broth at each bin.
+    unit
+        Of the broth: ``L`` or ``kg``.
 
     Notes
     -----
@@ -100,15 +102,15 @@ def gas_courses(line: GasLine, volume: Array) -> tuple[Course, ...]:
     rates = gas_rates(trials, line, edges)
     columns: list[tuple[str, str, Array]] = []
     if "oxygen" in names:
-        columns.append(("OUR", "mmol/L/h", 1000.0 * rates.uptake / volume))
+        columns.append(("OUR", f"mmol/{unit}/h", 1000.0 * rates.uptake / volume))
     if "CO2" in names:
-        columns.append(("CER", "mmol/L/h", 1000.0 * rates.released["CO2"] / volume))
+        columns.append(("CER", f"mmol/{unit}/h", 1000.0 * rates.released["CO2"] / volume))
     if {"oxygen", "CO2"} <= set(names):
         with np.errstate(divide="ignore", invalid="ignore"):
             ratio = rates.released["CO2"] / rates.uptake
         columns.append(("RQ", "mol/mol", ratio))
     courses: list[Course] = []
-    for name, unit, all_trials in columns:
+    for name, shown, all_trials in columns:
         with np.errstate(invalid="ignore", over="ignore"):
             shifts = (all_trials[1:] - all_trials[:1]) / _SMALL
             sd = np.sqrt((shifts**2).sum(axis=0))
@@ -117,7 +119,7 @@ def gas_courses(line: GasLine, volume: Array) -> tuple[Course, ...]:
             uptake = 1000.0 * rates.uptake / volume
             noise = np.sqrt((((uptake[1:] - uptake[:1]) / _SMALL) ** 2).sum(axis=0))
             kept &= uptake[0] > 3 * noise
-        courses.append(Course(name, unit, line.time[kept], all_trials[0][kept], sd[kept]))
+        courses.append(Course(name, shown, line.time[kept], all_trials[0][kept], sd[kept]))
     return tuple(courses)
 
 

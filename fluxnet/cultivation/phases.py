@@ -31,17 +31,26 @@ def propose_phases(raw: Cultivation, time: Array, logs: Array, sd: Array) -> tup
     time, logs, sd
         Biomass samples: time [h], ln(X V), relative sd.
     """
+    if raw.mode is Mode.CHEMOSTAT:
+        return (_steady(time),)
     if time.size < 2:
         return ()
-    if raw.mode is Mode.CHEMOSTAT:
-        return (Phase("steady state", float(time[0]), float(time[-1])),)
     feed = _feed_start(raw)
     if raw.mode is Mode.FED_BATCH and feed is not None:
         before = time <= feed + 1e-9
-        cut = float(time[before][-1]) if before.any() else float(time[0])
+        if before.sum() < _FEWEST:
+            return (Phase("feed", float(time[0]), float(time[-1])),)
         ahead = propose_stretches(time[before], logs[before], sd[before])
-        return (*ahead, Phase("feed", cut, float(time[-1])))
+        return (*ahead, Phase("feed", float(time[before][-1]), float(time[-1])))
     return propose_stretches(time, logs, sd)
+
+
+def _steady(time: Array) -> Phase:
+    """All samples of a chemostat; of a single one, the hour before it."""
+    first, last = float(time[0]), float(time[-1])
+    if last > first:
+        return Phase("steady state", first, last)
+    return Phase("steady state", max(first - 1.0, 0.0), max(first, 1.0))
 
 
 def _feed_start(raw: Cultivation) -> float | None:

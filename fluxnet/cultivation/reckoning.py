@@ -24,6 +24,7 @@ from fluxnet.cultivation.result import (
     PhaseRates,
 )
 from fluxnet.cultivation.runs import table_of
+from fluxnet.cultivation.streams import counts_mass
 from fluxnet.cultivation.volumes import Account
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
 from fluxnet.ground.names import Name
@@ -64,6 +65,10 @@ def rates_of(
     if data is None or has_errors(faults):
         return empty
     chosen = tuple(phases or raw.phases) or proposed_phases(raw, data)
+    if not chosen:
+        faults.append(Diagnostic(
+            Name.PHASE_WITHOUT_SAMPLES, "there is one sample of biomass, and a rate needs two"
+        ))  # fmt: skip
     found: list[PhaseRates] = []
     for phase in chosen:
         rates = (
@@ -127,7 +132,10 @@ def _steady(
     fit = fit_steady(data, phase)
     if fit is None:
         return None
-    trends = judge_steadiness(data, phase)
+    gas = [] if data.line is None else [
+        (f"{a.name} in the gas", a.time, a.value - a.inlet, a.sd) for a in data.line.analysers
+    ]  # fmt: skip
+    trends = judge_steadiness(data, phase, gas)
     return steady_rates(raw, data, network, fit, many, propagate_steady(data, fit), trends)
 
 
@@ -158,7 +166,7 @@ def _over_time(
         accounts.extend([] if carbon is None else [carbon])
     if data.line is not None:
         volume = np.interp(data.line.time, data.nodes, level)
-        courses.extend(gas_courses(data.line, volume))
+        courses.extend(gas_courses(data.line, volume, "kg" if counts_mass(raw) else "L"))
     return tuple(accounts), tuple(courses)
 
 

@@ -16,7 +16,7 @@ from fluxnet.cultivation.gas_amounts import integration
 from fluxnet.cultivation.gas_line import GasLine
 from fluxnet.cultivation.result import Assumption, Origin
 from fluxnet.cultivation.samples import formula_of, own_name
-from fluxnet.cultivation.volumes import WATER, Flow, read_flow, resets
+from fluxnet.cultivation.volumes import PUMP_SD, WATER, Flow, read_flow, resets
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.network.model import Network
@@ -40,8 +40,10 @@ _CONTENT_SD = 0.01
 """Relative sd of what a feed or base holds, weighed in (assumed)."""
 
 _EVAPORATION_SD = 0.2
+_START_SD = 0.005
+"""Relative sd of the broth at inoculation (assumed)."""
+
 _WATER_KG = 0.018015
-_TELLING = 0.02
 
 
 def counts_mass(raw: Cultivation) -> bool:
@@ -61,7 +63,8 @@ def broth_density(raw: Cultivation, told: list[Assumption]) -> float:
 
 
 def start_of(
-    raw: Cultivation, *, by_mass: bool, density: float, faults: list[Diagnostic]
+    raw: Cultivation, *, by_mass: bool, density: float, told: list[Assumption],
+    faults: list[Diagnostic],
 ) -> tuple[float, float] | None:
     """Broth at inoculation in the unit of the account, with its sd."""
     for kind in (SettingKind.MASS, SettingKind.VOLUME) if by_mass else (
@@ -70,7 +73,10 @@ def start_of(
         found = raw.setting(kind)
         if found is not None and found.value > 0:
             factor = _to_account(kind is SettingKind.MASS, by_mass, density)
-            sd = 0.005 * found.value if found.sd is None else found.sd
+            sd = _START_SD * found.value if found.sd is None else found.sd
+            if found.sd is None:
+                told.append(Assumption("sd of the broth at the start", f"{_START_SD:.1%}",
+                                       Origin.ASSUMED))  # fmt: skip
             return found.value * factor, sd * factor
     level = raw.find(SeriesKind.BROTH)
     if level is not None:
@@ -116,6 +122,11 @@ def read_streams(
                                    if given is None else ""))  # fmt: skip
             sd = 0.02 if given is None else sd
         whole = _mended(series, faults)
+        if series.sd is None and series.common is None:
+            error = f"{PUMP_SD:.0%}, all alike" if series.form is Form.RATE else "1 g, or 1 mL"
+            told.append(Assumption(f"sd of {series.title}", error, Origin.ASSUMED,
+                                   "usual for a pump" if series.form is Form.RATE
+                                   else "usual for a balance"))  # fmt: skip
         flow = read_flow(whole, nodes, by_mass=by_mass, density=value, density_sd=sd)
         flows.append(replace(flow, name=_stream_name(series)))
     if SeriesKind.EVAPORATION not in kinds:

@@ -88,7 +88,7 @@ def cumulated(series: Series, nodes: Array) -> tuple[Array, Array]:
 
 
 def _events(series: Series, nodes: Array) -> tuple[Array, Array]:
-    slack = 1e-9 * max(float(np.ptp(nodes)), 1e-9)
+    slack = 2e-6  # h: sample times are rounded to a millionth
     inside = (series.time >= nodes[0] - slack) & (series.time < nodes[-1] - slack)
     time, size = series.time[inside], series.value[inside]
     place = np.searchsorted(nodes - slack, time, side="right") - 1

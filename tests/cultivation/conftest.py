@@ -19,7 +19,10 @@ from fluxnet.rates.cultivation import (
     make_series,
 )
 
-MU, GLUCOSE, ACETATE, OXYGEN, CO2 = 0.30, -3.2, 1.1, -4.5, 4.9
+MU, GLUCOSE, ACETATE = 0.30, -3.2, 1.1
+# of biomass CH1.8O0.5N0.2 (24.626 g/C-mol, 4.2 electrons): carbon and electrons close
+CO2 = 6 * 3.2 - 1000 * 0.30 / 24.626 - 2 * 1.1
+OXYGEN = -(24 * 3.2 - 4.2 * 1000 * 0.30 / 24.626 - 8 * 1.1) / 4
 
 
 @dataclass(frozen=True)
