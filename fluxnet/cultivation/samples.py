@@ -184,15 +184,20 @@ def read_species(
                 f"{CONTENT_SD:.0%} of the value, and {FLOOR_SD:.1%} of the largest",
                 Origin.ASSUMED,
             ))  # fmt: skip
+        modes: list[Mode] = []
         if series.below is not None and series.below.any():
+            # what hides below the limit is alike in all samples: a mean of many knows no more
+            hidden = np.where(series.below, value / np.sqrt(12), 0.0)
+            modes.append(Mode(f"{name}, below its limit", hidden))
             own = np.where(series.below, value / np.sqrt(12), own)
             value = np.where(series.below, value / 2, value)
             told.append(Assumption(
                 f"{name} below its limit", "half the limit, sd limit / sqrt(12)", Origin.ASSUMED,
                 f"{int(series.below.sum())} samples: anything from 0 to the limit is as likely",
             ))  # fmt: skip
-        scale = (Mode(f"{name}, calibration", series.common * value),) if series.common else ()
-        found.append(Sampled(name, series.time, Block(name, value, own, scale)))
+        if series.common:
+            modes.append(Mode(f"{name}, calibration", series.common * value))
+        found.append(Sampled(name, series.time, Block(name, value, own, tuple(modes))))
     return tuple(found)
 
 
