@@ -9,9 +9,9 @@ numpy, daqp and rich, with an aim highspy as well, and neither scipy, pandas, ne
 nor matplotlib. `--help` loads no library.
 
 Command and bare import are started in turn, as installed: with compiled byte code, a parser and
-the statements of a model that was read before, all in a folder of this benchmark. A model read
-for the first time since it was changed takes the time of parsing the changed lines more. Printed are medians of two
-measures and their ratios: the time that passes, and the processor time that the process takes
+the statements of a model that was read before, all in a folder of this benchmark. (A model read
+for the first time takes the parsing of its lines more.) Printed are medians of two measures and
+their ratios: the time that passes, and the processor time that the process takes
 (user and system), which is the steadier one on a machine that does other work. A command starts
 no threads of numpy, a bare import does: that is part of what is measured.
 """

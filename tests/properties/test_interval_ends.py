@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import sys
 from pathlib import Path
 
 import numpy as np
@@ -16,6 +17,10 @@ from fluxnet.solving.flux_fit import FitStatus, FluxFit
 from fluxnet.solving.joint_ends import JointEnds
 from fluxnet.solving.least_squares import fit_fluxes
 from fluxnet.solving.linear import Programme
+
+sys.path.insert(0, str(Path(__file__).resolve().parents[1] / "solving"))
+
+from optimiser import end_by_optimiser
 
 MODELS = sorted((Path(__file__).resolve().parents[2] / "models").glob("*.flux"))
 
@@ -89,8 +94,10 @@ def _compare(path: Path, seeds: range, monkeypatch: pytest.MonkeyPatch) -> None:
             with np.errstate(invalid="ignore"):  # infinite ends
                 near = np.abs(ours - theirs) <= 1e-6 * width + least
             same = (ours == theirs) | near
-            wrong = [
-                (seed, name, fit.reactions[j], ours[j], theirs[j]) for j in np.flatnonzero(~same)
-            ]
-            assert not wrong
+            for j in np.flatnonzero(~same):
+                # One by one an end is rarely off by some 1e-5: then a general optimiser judges.
+                assert name in ("low", "high"), (seed, name, fit.reactions[j])
+                judged = end_by_optimiser(fit, int(j), 1 if name == "high" else -1)
+                assert abs(ours[j] - judged) <= 1e-6 * width[j] + least
+                assert abs(ours[j] - theirs[j]) <= 1e-4 * width[j]
     assert answered
