@@ -21,6 +21,8 @@ __all__ = ["catalogue_name", "read_gas_line"]
 Array = NDArray[np.float64]
 
 _AIR = {"oxygen": AIR_O2, "CO2": AIR_CO2}
+_INERT = {"N2": 0.7809, "argon": 0.0093, "Ar": 0.0093}
+"""What a mass spectrometer shows of air beside them (handbook, from memory)."""
 
 
 def catalogue_name(name: str) -> str:
@@ -34,6 +36,11 @@ def read_gas_line(
 ) -> GasLine | None:
     """The gas line, or None where there is none or it cannot be used; both lists are added to."""
     series = {catalogue_name(s.name): s for s in raw.of_kind(SeriesKind.GAS_OUT)}
+    if raw.find(SeriesKind.GAS_FLOW_OUT) is None:
+        for name in [n for n in series if n in _INERT]:
+            told.append(Assumption(f"{name} in the gas", "inert", Origin.ASSUMED,
+                                   "it counts only where the outlet flow is measured too"))
+            del series[name]
     if not series:
         return None
     before = len(faults)
@@ -185,7 +192,7 @@ def _inlet(raw: Cultivation, name: str, told: list[Assumption]) -> float:
     else:
         setting = next((s for s in raw.settings if s.kind is SettingKind.INLET
                         and catalogue_name(s.of) == name), None)  # fmt: skip
-        value = _AIR.get(name, 0.0) if setting is None else setting.value
+        value = {**_AIR, **_INERT}.get(name, 0.0) if setting is None else setting.value
         origin = Origin.ASSUMED if setting is None else Origin.GIVEN
     told.append(Assumption(f"{name} in the inlet gas", f"{100 * value:.2f} %", origin,
                            "dry air" if origin is Origin.ASSUMED and name in _AIR else ""))

@@ -9,7 +9,16 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import NDArray
 
-from fluxnet.rates.cultivation import Cultivation, Form, Mode, Phase, SeriesKind
+from fluxnet.cultivation.volumes import cumulated
+from fluxnet.rates.cultivation import (
+    Cultivation,
+    Form,
+    Mode,
+    Phase,
+    Series,
+    SeriesKind,
+    SettingKind,
+)
 
 __all__ = ["propose_phases"]
 
@@ -21,6 +30,15 @@ _STILL = 0.15
 """Of the fastest growth: below it nothing grows."""
 
 _FAST = 0.6
+_WASHED = 3.0
+"""Residence times after a change of flow that are not called steady."""
+
+_GRID = 121
+_FLOW_SCATTER = 0.002
+"""Of all that was fed: how far a total may lie off a straight line."""
+
+_SAME = 0.05
+"""Flows that differ by less are one."""
 
 
 def propose_phases(raw: Cultivation, time: Array, logs: Array, sd: Array) -> tuple[Phase, ...]:
@@ -32,7 +50,7 @@ def propose_phases(raw: Cultivation, time: Array, logs: Array, sd: Array) -> tup
         Biomass samples: time [h], ln(X V), relative sd.
     """
     if raw.mode is Mode.CHEMOSTAT:
-        return (_steady(time),)
+        return steady_stretches(raw, time) or (_steady(time),)
     if time.size < 2:
         return ()
     feed = _feed_start(raw)
@@ -43,6 +61,50 @@ def propose_phases(raw: Cultivation, time: Array, logs: Array, sd: Array) -> tup
         ahead = propose_stretches(time[before], logs[before], sd[before])
         return (*ahead, Phase("feed", float(time[before][-1]), float(time[-1])))
     return propose_stretches(time, logs, sd)
+
+
+def steady_stretches(raw: Cultivation, time: Array) -> tuple[Phase, ...]:
+    """The steady states of a chemostat: what is left of each flow after three residence times.
+
+    Flows are told apart by the straight stretches of what was fed; a flow too short for three
+    residence times gets its last third. Empty where no feed or no volume is told as a series.
+    """
+    size = raw.setting(SettingKind.VOLUME) or raw.setting(SettingKind.MASS)
+    feeds = raw.of_kind(SeriesKind.FEED)
+    if size is None or not feeds or float(time[-1]) <= float(time[0]):
+        return ()
+    found: list[tuple[float, float]] = []
+    for start, end, flow in _flows(feeds[0], float(time[-1])):
+        away = start + _WASHED * size.value / flow
+        begin = away if away < end else end - (end - start) / 3
+        inside = time[(time >= begin - 1e-9) & (time <= end + 1e-9)]
+        if inside.size:
+            first = float(inside[0]) if inside.size > 1 else begin
+            found.append((first, float(inside[-1])))
+    found = [(a, b) for a, b in found if b > a]
+    names = ["steady state"] if len(found) == 1 else [
+        f"steady state {i + 1}" for i in range(len(found))
+    ]  # fmt: skip
+    return tuple(Phase(name, a, b) for name, (a, b) in zip(names, found, strict=True))
+
+
+def _flows(feed: Series, end: float) -> list[tuple[float, float, float]]:
+    """Stretches of one flow: start, end, flow; those without feed left out."""
+    grid = np.linspace(max(float(feed.time[0]), 0.0), end, _GRID)
+    total, _ = cumulated(feed, grid)
+    if total[-1] <= 0:
+        return []
+    sd = np.full(grid.size, _FLOW_SCATTER * float(total[-1]))
+    cost, slopes = _all_lines(grid, total, sd)
+    joined: list[tuple[float, float, float]] = []
+    for i, j in _cheapest(cost, 3 * float(np.log(grid.size))):
+        flow = float(slopes[i, j])
+        if joined and abs(flow - joined[-1][2]) < _SAME * flow:
+            joined[-1] = (joined[-1][0], float(grid[j]), flow)
+        else:
+            joined.append((float(grid[i]), float(grid[j]), flow))
+    most = max(flow for *_, flow in joined)
+    return [(a, b, flow) for a, b, flow in joined if flow > _SAME * most]
 
 
 def _steady(time: Array) -> Phase:
@@ -83,11 +145,7 @@ def propose_stretches(time: Array, logs: Array, sd: Array) -> tuple[Phase, ...]:
         return ()
     if count < 2 * _FEWEST - 1:
         return (Phase("growth", float(time[0]), float(time[-1])),)
-    cost = np.full((count, count), np.inf)
-    slopes = np.zeros((count, count))
-    for i in range(count):
-        for j in range(i + _FEWEST - 1, count):
-            cost[i, j], slopes[i, j] = _line(time[i : j + 1], logs[i : j + 1], sd[i : j + 1])
+    cost, slopes = _all_lines(time, logs, sd)
     cuts = _cheapest(cost, 3 * float(np.log(count)))
     rates = [float(slopes[i, j]) for i, j in cuts]
     fastest = max(rates)
@@ -111,6 +169,17 @@ def _name(rate: float, fastest: float, *, is_before: bool) -> str:
     if is_before:
         return "lag"
     return "stationary" if rate > -_STILL * fastest else "decline"
+
+
+def _all_lines(time: Array, values: Array, sd: Array) -> tuple[Array, Array]:
+    """Cost and slope of the line from each point to each later one."""
+    count = time.size
+    cost, slopes = np.full((count, count), np.inf), np.zeros((count, count))
+    for i in range(count):
+        for j in range(i + _FEWEST - 1, count):
+            part = slice(i, j + 1)
+            cost[i, j], slopes[i, j] = _line(time[part], values[part], sd[part])
+    return cost, slopes
 
 
 def _line(t: Array, y: Array, s: Array) -> tuple[float, float]:

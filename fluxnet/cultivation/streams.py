@@ -236,6 +236,13 @@ def read_contents(
             told.append(Assumption(f"sd of {setting.of} in {setting.stream}", f"{sd:.0%}",
                                    Origin.ASSUMED))  # fmt: skip
         found.append(Content(own_name(setting.of, network), hits[0].name, value, sd))
+    sampled = {own_name(s.name, network) for s in raw.of_kind(SeriesKind.CONCENTRATION)}
+    for content in found:
+        if content.species not in sampled and content.species != "CO2":
+            told.append(Assumption(
+                f"{content.species} in {content.stream}", "no rate", Origin.ASSUMED,
+                "it is fed, and nobody measured what is left of it in the broth",
+            ))  # fmt: skip
     fed = {c.stream for c in found}
     for flow in flows:
         if flow.kind is SeriesKind.FEED and flow.name not in fed:
