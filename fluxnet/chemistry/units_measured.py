@@ -84,7 +84,9 @@ _FRACTIONS = {
 }  # fmt: skip
 _PARTS_OF_BROTH = {
     **dict.fromkeys(("%w/v", "%(w/v)", "%m/v", "g/100ml", "g/dl"), "10 g/L"),
-    **dict.fromkeys(("%w/w", "%(w/w)", "%m/m", "wt%", "wt.%", "wt.-%", "gew.-%", "gew%"), "10 g/kg"),
+    **dict.fromkeys((
+        "%w/w", "%(w/w)", "%m/m", "wt%", "wt.%", "wt.-%", "gew.-%", "gew%",
+    ), "10 g/kg"),
 }  # fmt: skip
 _NUMBERS = frozenset({"1", "-", "–", "au", "a.u.", "od", "ph", "rel.", "dimensionless"})
 _FLOWS = {"lpm": "L/min", "lph": "L/h", "ccm": "mL/min", "cfm": "cubic_foot/min"}

@@ -518,3 +518,70 @@ class Name(Enum):
     SPECIES_UNKNOWN = (
         "species-unknown", _E, "a measured species has no formula here, and stands in grams",
         "Rates count moles.", "Declare its formula, or give it in mol/L.")
+
+    # --- tables of raw data ----------------------------------------------------------
+    NO_RAW_DATA = (
+        "no-raw-data", _E, "nothing that was given is a table over time",
+        "Rates come from values with their times.", "Give a table with a column of time.")
+    UNCLOSED_QUOTE = (
+        "unclosed-quote", _E, "a quote is opened and never closed",
+        "All rows behind it would become one cell.", "Close the quote, or take it away.")
+    UNIT_MISSING = (
+        "unit-missing", _E, "a column or a setting has no unit",
+        "A unit that is assumed is a factor that is guessed.",
+        "Write it in brackets in the title, in a row under it, or in columns.csv.")
+    COLUMN_NOT_UNDERSTOOD = (
+        "column-not-understood", _W, "a column of concentrations names nothing that is known",
+        "What it holds would be missing from every balance.",
+        "Say in columns.csv what it means, or `ignore`.")
+    COLUMN_REPEATED = (
+        "column-repeated", _E, "two columns mean the same",
+        "Which one holds would depend on their order.", "Mark one of them `ignore` in columns.csv.")
+    BAD_MAPPING = (
+        "bad-mapping", _E, "a line of columns.csv means nothing",
+        "The column would be read by its title, against what was meant.",
+        "Write one of the words that the list of columns shows.")
+    MAPPING_UNUSED = (
+        "mapping-unused", _W, "a line of columns.csv meets no column",
+        "The column that it was written for is read by its title again.",
+        "Write the title as it stands in the table.")
+    CELLS_LEFT_OUT = (
+        "cells-left-out", _W, "cells held something that is no value, and were left out",
+        "What is left out is not zero; a rate rests on the samples that remain.",
+        "Correct the cells, or leave them blank.")
+    AMBIGUOUS_DATE = (
+        "ambiguous-date", _E, "dates may begin with the day or with the month",
+        "A week would become seven months.", "Write a line `dates; day first` above the table.")
+    TIME_BACKWARDS = (
+        "time-backwards", _E, "time runs backwards from one row to the next",
+        "A typed time or the order of the rows is wrong, and nothing tells which.",
+        "Correct the time, or put the rows in order.")
+    DOUBLED_TIME = (
+        "doubled-time", _W, "several values stand at one time",
+        "They may be replicates, or rows that were copied.",
+        "Nothing for replicates: their mean is taken. Otherwise correct the times.")
+    CLOCK_CHANGED = (
+        "clock-changed", _W, "a clock was set to or from summer time",
+        "An hour would be missing, or counted twice.",
+        "Nothing: the hour is mended. Look at tables that another clock wrote.")
+    CLOCKS_DIFFER = (
+        "clocks-differ", _W, "two tables' clocks do not agree",
+        "Samples would be compared with gas of another time.", "Correct one of the clocks.")
+    CLOCKS_UNTIED = (
+        "clocks-untied", _E, "one table tells a clock, another process time, and nothing ties them",
+        "Their rows cannot be put beside each other.", "Say when the cultivation was inoculated.")
+    INOCULATION_ASSUMED = (
+        "inoculation-assumed", _W, "nothing tells when the cultivation was inoculated",
+        "Rows from before it would count as growth.",
+        "Write a line `inoculation; 2026-03-02 09:30` above the table.")
+    BEFORE_INOCULATION = (
+        "before-inoculation", _N, "samples were taken before inoculation",
+        "They tell of the medium, not of the cells.", "Nothing, where this was meant.")
+    NEGATIVE_CONCENTRATION = (
+        "negative-concentration", _W, "a concentration is negative",
+        "None is; a blank was taken off, or the cell is wrong. It is kept, never made 0.",
+        "Leave the cell blank, or write the limit: <0.05.")
+    MODE_GUESSED = (
+        "mode-guessed", _N, "nothing names the mode of the cultivation",
+        "Chemostat, batch and fed-batch are reckoned differently.",
+        "Write a line `mode; fed-batch` above the table.")

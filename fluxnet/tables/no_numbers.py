@@ -8,10 +8,10 @@ from fluxnet.ground.pattern import pattern_of
 from fluxnet.ground.record import record
 from fluxnet.tables.numerals import Decimal, read_number
 
-__all__ = ["NoNumber", "explain_no_number"]
+__all__ = ["ABSENT", "NoNumber", "explain_no_number"]
 
 _BELOW = pattern_of(r"[<≤]\s*=?\s*(?P<limit>\S.*)")
-_ABSENT = frozenset({
+ABSENT = frozenset({
     "-", "–", "—", "--", ".", "/", "?", "nd", "n.d", "n.d.", "n/d", "na", "n.a", "n.a.", "n/a",
     "nb", "n.b.", "nn", "n.n.", "k.a.", "bd", "b.d.", "bdl", "lod", "loq", "tr", "tr.", "trace",
     "traces", "none", "null", "nil", "missing", "blank", "<lod", "<loq", "nwg", "<nwg", "<bg",
@@ -45,7 +45,7 @@ def explain_no_number(text: str, decimal: Decimal, *, is_sd: bool) -> NoNumber:
     """
     blank = "leave the cell blank" + (": an sd is assumed" if is_sd else ": not measured")
     below = _BELOW.fullmatch(text)
-    if "".join(text.lower().split()) in _ABSENT:
+    if "".join(text.lower().split()) in ABSENT:
         return NoNumber(f"`{text}` is no number", blank if is_sd else _unseen(None, decimal))
     if below is not None and not is_sd:
         return NoNumber(f"`{text}` is a limit, no number", _unseen(below["limit"], decimal))

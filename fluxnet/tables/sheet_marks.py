@@ -16,7 +16,7 @@ from xml.etree import ElementTree
 
 from fluxnet.ground.record import record
 
-__all__ = ["SheetMarks", "read_marks"]
+__all__ = ["SheetMarks", "percent_styles", "place_of", "read_marks", "sheet_path"]
 
 _BUILT_IN_PERCENT = frozenset({9, 10})
 _ADDRESS = re.compile(r"([A-Z]+)(\d+)")
@@ -41,15 +41,15 @@ def read_marks(archive: zipfile.ZipFile, sheet: str) -> SheetMarks:
 
     A fault is a pair: what stands in the cell, and why it is no value.
     """
-    path = _sheet_path(archive, sheet)
+    path = sheet_path(archive, sheet)
     if path is None:
         return SheetMarks()
-    percent_styles = _percent_styles(archive)
+    percent = percent_styles(archive)
     faults: dict[tuple[int, int], tuple[str, str]] = {}
     percents: set[tuple[int, int]] = set()
     height = width = 0
     for cell in _cells(archive.read(path)):
-        place = _place(cell.get("r", ""))
+        place = place_of(cell.get("r", ""))
         if place is None:
             continue
         if len(cell):
@@ -60,7 +60,7 @@ def read_marks(archive: zipfile.ZipFile, sheet: str) -> SheetMarks:
             faults[place] = (value or "an error", "is an error of the spreadsheet")
         elif not value and kind != "str" and any(_tag(c) == "f" for c in cell):
             faults[place] = ("", "a formula stands there without a stored value")
-        elif kind == "n" and cell.get("s", "0") in percent_styles:
+        elif kind == "n" and cell.get("s", "0") in percent:
             percents.add(place)
     return SheetMarks(faults, frozenset(percents), height, width)
 
@@ -73,7 +73,7 @@ def _cells(xml: bytes) -> Iterator[ElementTree.Element]:
             element.clear()
 
 
-def _sheet_path(archive: zipfile.ZipFile, sheet: str) -> str | None:
+def sheet_path(archive: zipfile.ZipFile, sheet: str) -> str | None:
     """The member of the archive that holds a sheet."""
     names = set(archive.namelist())
     if not {"xl/workbook.xml", "xl/_rels/workbook.xml.rels"} <= names:
@@ -95,7 +95,7 @@ def _sheet_path(archive: zipfile.ZipFile, sheet: str) -> str | None:
     return path if path in names else None
 
 
-def _percent_styles(archive: zipfile.ZipFile) -> frozenset[str]:
+def percent_styles(archive: zipfile.ZipFile) -> frozenset[str]:
     """The indices of the cell styles that show a number in per cent."""
     if "xl/styles.xml" not in archive.namelist():
         return frozenset()
@@ -116,7 +116,8 @@ def _percent_styles(archive: zipfile.ZipFile) -> frozenset[str]:
     )
 
 
-def _place(address: str) -> tuple[int, int] | None:
+def place_of(address: str) -> tuple[int, int] | None:
+    """Row and column, both from 0, of an address such as ``C12``."""
     found = _ADDRESS.fullmatch(address)
     if found is None:
         return None

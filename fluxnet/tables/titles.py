@@ -12,7 +12,10 @@ from fluxnet.tables.grid import Cell
 from fluxnet.tables.rate_units import is_unit
 from fluxnet.tables.vocabulary import is_growth_rate, read_direction, split_direction
 
-__all__ = ["Key", "Title", "is_header_part", "is_like_unit", "read_title", "settle_keys"]
+__all__ = [
+    "SD_END", "SD_START", "Key", "Title", "is_header_part", "is_like_unit", "read_title",
+    "settle_keys",
+]  # fmt: skip
 
 
 class Key(Enum):
@@ -53,10 +56,10 @@ _WORDS = {
 }  # fmt: skip
 _MEANS = frozenset({"mean", "average", "mittelwert"})
 _BRACKETS = pattern_of(r"(?P<name>.*?)\s*(?:\[(?P<square>[^\[\]]*)\]|\((?P<round>[^()]*)\))\s*")
-_SD_END = pattern_of(
+SD_END = pattern_of(
     r"(?P<name>.*\S)[\s_]+(?:sd|s\.d\.|stdev|std|±|\+/?-|standard deviation|error)", re.I
 )
-_SD_START = pattern_of(
+SD_START = pattern_of(
     r"(?:sd|s\.d\.|stdev|std|±|\+/?-|standard deviation)(?:[\s_]+of)?[\s_]+(?P<name>.+)", re.I
 )
 _LIKE_UNIT = pattern_of(
@@ -111,7 +114,7 @@ def read_title(cell: Cell, below: tuple[str, ...] = ()) -> Title:
         return Title(cell, "", unit=unit, bracketed=bracketed, key=key, is_sd=True)
     if key is not None:
         return Title(cell, text, unit=unit, bracketed=bracketed, key=key)
-    sd = _SD_END.fullmatch(text) or _SD_START.fullmatch(text)
+    sd = SD_END.fullmatch(text) or SD_START.fullmatch(text)
     if sd is not None and _WORDS.get(sd["name"].lower()) is Key.CONCENTRATION:
         return Title(cell, sd["name"], "", unit, bracketed, Key.CONCENTRATION, is_sd=True)
     name, direction = split_direction(sd["name"] if sd else text)

@@ -21,9 +21,9 @@ from fluxnet.ground.source import Source, Span
 from fluxnet.tables.grid import Cell, Grid, Row
 from fluxnet.tables.sheet_marks import SheetMarks, read_marks
 
-__all__ = ["Workbook", "read_workbook"]
+__all__ = ["DAMAGE", "LARGEST", "MOST_CELLS", "Workbook", "read_workbook"]
 
-_DAMAGE = (
+DAMAGE = (
     zipfile.BadZipFile,
     zlib.error,
     ElementTree.ParseError,
@@ -36,10 +36,10 @@ _DAMAGE = (
 )
 """What unpacking a damaged archive raises."""
 
-_LARGEST = 400_000_000
+LARGEST = 400_000_000
 """Bytes that a workbook may unpack to; more is no table of rates."""
 
-_MOST_CELLS = 20_000_000
+MOST_CELLS = 20_000_000
 """Cells of the area that a sheet fills: the reader makes room for all, the blank ones too."""
 
 
@@ -60,10 +60,10 @@ def read_workbook(data: bytes, file: str) -> Workbook:
         with zipfile.ZipFile(BytesIO(data)) as archive:
             if "xl/workbook.xml" not in archive.namelist():
                 return _refused(file, "is packed, but is no XLSX workbook", "save it as XLSX")
-            if sum(i.file_size for i in archive.infolist()) > _LARGEST:
+            if sum(i.file_size for i in archive.infolist()) > LARGEST:
                 return _refused(file, "unpacks to more than 400 MB", "keep only the table")
             return _read_sheets(data, archive, file)
-    except _DAMAGE as fault:
+    except DAMAGE as fault:
         return _refused(file, f"cannot be unpacked as a workbook ({fault})", "save it again")
 
 
@@ -87,7 +87,7 @@ def _read_sheets(data: bytes, archive: zipfile.ZipFile, file: str) -> Workbook:
         for sheet in sorted(book.sheets_metadata, key=lambda one: one.visible != seen):
             name = sheet.name
             marks = read_marks(archive, name)
-            if marks.height * marks.width > _MOST_CELLS:
+            if marks.height * marks.width > MOST_CELLS:
                 words = f"reaches down to row {marks.height} and across {marks.width} columns"
                 return _refused(f"{file}!{name}", words, "delete what stands far from the table")
             values = book.get_sheet_by_name(name).to_python(skip_empty_area=False)

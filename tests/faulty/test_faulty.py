@@ -193,7 +193,7 @@ BY_CODE = {*OF_FILES, Name.LIMIT_REPLACED, Name.LIMIT_LEFT_OUT, Name.UNKNOWN_RUN
 def names_in_files() -> set[str]:
     """The names that the files of this folder expect."""
     models = "".join(p.read_text("utf-8") for p in HERE.rglob("*.flux"))
-    tables = "".join(p.read_text("utf-8") for p in HERE.glob("*.csv"))
+    tables = "".join(p.read_text("utf-8") for p in HERE.rglob("*.csv"))
     return set(re.findall(r"^\s*# expect: ([a-z-]+)", models, re.MULTILINE)) | set(
         re.findall(r"^#! ([a-z-]+)", tables, re.MULTILINE)
     )
