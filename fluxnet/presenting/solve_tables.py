@@ -61,7 +61,7 @@ def _at(run: FluxSolution) -> str:
 def _rates(run: FluxSolution) -> Table:
     at_best = run.aim is not None
     columns = (
-        Column("rate", ""),
+        Column("rate", "", wrap=17),
         Column("", "species"),
         Column("way", "direction"),
         Column("measured", "measured", align=Align.RIGHT),
@@ -73,7 +73,7 @@ def _rates(run: FluxSolution) -> Table:
         Column("", "low"),
         Column("", "high"),
         Column("" if at_best else "z", "z", align=Align.RIGHT, decimals=1),
-        Column("" if at_best else "kind", "kind", wrap=10),
+        Column("" if at_best else "kind", "kind", wrap=11),
         Column("", "unit"),
     )
     notes: list[str] = []

@@ -110,23 +110,41 @@ def fit_fluxes(
     mu = Quantity(QuantityKind.MU)
     extra = (form_of(built, mu),) if has_mu(network, built.basis) else ()
     weighed = fit_weighed(built, structure, extra)
-    region = _bounded(weighed)
+    region, known = _with_guesses(weighed)
     for _ in range(_GUESSES if weighed.built.estimated else 0):
         if region is None:
             break
         weighed = weigh_again(weighed, region.point)
-        region = _bounded(weighed) or region
+        better, known = _with_guesses(weighed)
+        region = better or region
     held = None
     for place in weighed.built.estimated:
-        if region is None or is_met(weighed, region.point, place):
+        if known and (region is None or is_met(weighed, region.point, place)):
             continue
         scaled = find_scale(weighed, place)
         if scaled is not None:
             weighed, region, held = scaled.weighed, scaled.region, scaled.held
+            known = True
+    if not known:
+        raise ArithmeticError("the fluxes that measured ratios leave without a size were not found")
     if region is None:
         return _nothing(weighed.built, ())
     mu_place = len(built.problem.rows) if extra else None
     return _told(weighed, structure, region, held or region, mu_place, progress)
+
+
+def _with_guesses(weighed: Weighed) -> tuple[Region | None, bool]:
+    """The region of the fit with bounds, and whether it is known.
+
+    Weighed by the guess of a denominator a fit can be best at rates without end, where no
+    solver's answer passes its check: :func:`find_scale` then holds the denominator.
+    """
+    try:
+        return _bounded(weighed), True
+    except ArithmeticError:
+        if not weighed.built.estimated:
+            raise
+        return None, False
 
 
 def _bounded(weighed: Weighed) -> Region | None:

@@ -71,7 +71,10 @@ def find_scale(weighed: Weighed, place: int) -> AtScale | None:
         return None
     tried: list[tuple[float, AtScale]] = []
     for factor in _SIZES:
-        found = _held_at(weighed, place, row.quantity.denominator, factor * row.denominator)
+        try:
+            found = _held_at(weighed, place, row.quantity.denominator, factor * row.denominator)
+        except ArithmeticError:
+            continue  # no answer at this size passed its check; the others tell
         if found is not None:
             tried.append((found.region.point.h, found))
     if not tried:

@@ -59,3 +59,36 @@ def test_a_ratio_that_the_network_cannot_make_is_told_to_be_held_back() -> None:
     share = growth.value / rate(found, "glucose in").reconciled
     assert best / 100 < share < 2 * best / 100
     assert rate(found, "mu / glucose in").reconciled < 0.1 - 3 * 0.01
+
+
+def test_a_ratio_whose_guess_leads_to_rates_without_end_is_weighed_at_a_size() -> None:
+    text = """model m
+substrate glucose, ammonia, oxygen
+product ethanol
+exchange CO2
+biomass X CH1.8O0.5N0.2
+carrier ATP carries energy
+carrier NADH carries 2 electrons
+inside pyruvate
+parameter PO = 1.4 ± 0.2 in [0.5, 2.5]
+parameter K_X = 1.8 ± 0.3
+compartment cell
+    glycolysis : glucose -> 2 pyruvate + 2 ATP + 2 NADH
+    ferment : pyruvate + NADH -> ethanol + CO2
+    burn : pyruvate -> 3 CO2 + 5 NADH + ATP
+    oxphos : NADH + 0.5 oxygen -> PO ATP
+    growth : ? glucose + 0.2 ammonia + K_X ATP -> X + 0.1 CO2 + ? NADH
+    upkeep : ATP -> nothing
+limit upkeep = 1.0 ± 0.3
+limit CO2 / oxygen = 1.05 ± 0.03
+limit mu >= 0.1
+limit ethanol >= 3
+"""
+    network = read_model_text(text).network
+    assert network is not None
+
+    (found,) = solve_network(network).runs
+
+    ratio = rate(found, "CO2 out / oxygen in")
+    assert ratio.measured == 1.05
+    assert abs(ratio.reconciled - 1.05) < 2 * 0.03
