@@ -37,7 +37,7 @@ def run(arguments: argparse.Namespace) -> int:
             line = f"{name.value:<{width}}  {name.severity.value:<7}  {name.headline}"
             print(_broken(line, " " * (width + 11)))
         return Exit.SOUND
-    wanted = " ".join(arguments.name).strip("()").replace("_", " ").lower()
+    wanted = " ".join(arguments.name).strip("()\"'").replace("_", " ").lower()
     found = next((name for name in Name if name.value == wanted.replace(" ", "-")), None)
     words = read_words()
     if found is not None:

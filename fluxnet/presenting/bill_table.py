@@ -24,12 +24,12 @@ SURPLUS = BillTitles("has to go somewhere", "can go to", "left over")
 
 
 def bill_tables(
-    bill: Bill, title: str, titles: BillTitles = NEEDS, digits: int = 3
+    bill: Bill, title: str, titles: BillTitles = NEEDS, digits: int = 3, note: str = ""
 ) -> tuple[Table, Table]:
     """The bill for the screen, and for files.
 
     On the screen the column of worths adds up, and every worth is the product of its amount
-    and price as printed; a note says so where a last digit is not.
+    and price as printed; a note says so where a last digit is not. ``note`` stands before it.
     """
     columns: tuple[Column, ...] = (
         Column(titles.demand, "", wrap=42),
@@ -53,7 +53,9 @@ def bill_tables(
         ]
         rows.append(("  together", "", "", "", shown[side]))
     rows.append((titles.between, "", "", "", printed.shortfall))
-    notes = () if printed.multiplies else ("a last digit is rounded so that the column adds up",)
+    notes = (note,) if note else ()
+    if not printed.multiplies:
+        notes = (*notes, "a last digit is rounded so that the column adds up")
     if len(units) == 1:
         columns = (*columns[:2], *columns[3:])
         rows = [(*row[:2], *row[3:]) for row in rows]

@@ -90,8 +90,8 @@ def _how_to_read(closure: Closure) -> str:
     shown = {rate.kind for run in closure.runs for rate in run.rates}
     kinds = [f"{_kind(kind)}: {words}" for kind, words in _MEANING.items() if kind in shown]
     return (
-        "± is one standard deviation (sd); z of a balance is its gap in sds, z of a rate its "
-        f"change in sds, positive where it was raised. {_capital('; '.join(kinds))}."
+        "± is one standard deviation (sd); z of a balance is its gap over its sd, z of a rate its "
+        f"change over its own sd, positive where it was raised. {_capital('; '.join(kinds))}."
     )
 
 

@@ -53,7 +53,18 @@ def _bill(run: FluxSolution, told: ToldConflict, number: str, *, is_told: bool) 
         head = f"Conflict{number}" if number else "Why the rates cannot hold together"
         blocks.append(Sentence(f"{head}: {within}{_lower(told.bill.words)}", Mood.BAD))
     titles = SURPLUS if told.is_surplus else NEEDS
-    return [*blocks, *bill_tables(told.bill, f"Bill{number} [{told.bill.unit}]", titles)]
+    title = f"Bill{number}, worth counted in {told.bill.unit}"
+    return [*blocks, *bill_tables(told.bill, title, titles, note=_on_prices(told))]
+
+
+def _on_prices(told: ToldConflict) -> str:
+    """That a line is not worth what it holds, where something inside has another price."""
+    unit = told.bill.unit if told.bill is not None else ""
+    others = [p.species for p in told.prices if f" {p.species}/" not in unit]
+    if not others:
+        return ""
+    name = next((name for name in others if name.startswith("NAD")), others[0])
+    return f"a price counts all that the line allows elsewhere, such as taking up {name}"
 
 
 def _lower(words: str) -> str:

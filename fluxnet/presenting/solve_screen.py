@@ -14,6 +14,7 @@ from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence, bloc
 from fluxnet.presenting.share_blocks import share_blocks
 from fluxnet.presenting.solve_tables import solve_tables
 from fluxnet.studies.solution import FluxSolution, FluxTest, Solution, SolveStatus
+from fluxnet.studies.units import unusual_words
 
 if TYPE_CHECKING:
     from fluxnet.studies.plan_result import Plan
@@ -179,6 +180,9 @@ def _assumptions(run: FluxSolution) -> list[Block]:
     if run.left_free and run.run is not None:
         lines.append(Sentence(f"Not measured, left free: {', '.join(run.left_free)}."))
     lines += [Sentence(f"Note: {note.message} ({note.name.value}).") for note in run.notes]
+    measured = ((str(r.quantity), r.measured) for r in run.rates if r.quantity.direction)
+    if unusual := unusual_words(measured, run.unit):
+        lines.append(Sentence(f"Note: {unusual}", Mood.DOUBTFUL))
     return lines
 
 

@@ -83,7 +83,7 @@ def _table(suspects: Suspects, *, everything: bool) -> Table:
         Column("measured", "", align=Align.RIGHT),
         Column("would have to be", "", align=Align.RIGHT),
         Column("h left", "", align=Align.RIGHT, digits=2),
-        Column("p", "", align=Align.RIGHT),
+        Column("by chance", "", align=Align.RIGHT),
         Column("apart [sd]", "", align=Align.RIGHT, decimals=1),
     )
     cells: list[tuple[Cell, ...]] = []
@@ -105,9 +105,9 @@ def _table(suspects: Suspects, *, everything: bool) -> Table:
             f"{_SAME} of any size, it cannot be told from the one above by these measurements"
         )
     notes.append(
-        "h left: the test value that remains; p: how often the best of "
-        f"{suspects.distinct} different suspects gains as much by chance; apart: how far off the "
-        "nearest different suspect is"
+        "h left: the test value that remains; by chance: how often the best of "
+        f"{suspects.distinct} different suspects would gain as much if nothing were wrong: small "
+        "speaks for it; apart: how far off the nearest different suspect is"
     )
     unit = _usual_unit(suspects)
     title = f"Suspects [{unit}]" if unit else "Suspects"
@@ -184,7 +184,8 @@ def _advice(suspects: Suspects, more: str) -> list[str]:
     cleared = [s.label for s in suspects.others if s.kind is SuspectKind.MEASURED_RATE]
     if suspects.explained and cleared and suspects.dof > 1:
         told.append(f"Not it alone (at 5 %): {and_words(cleared)}.")
-    best = next((s for s in suspects.group if s.possible), None)
+    best = next((s for s in suspects.group if s.is_declared), None)
+    best = best or next((s for s in suspects.group if s.possible), None)
     if suspects.explained and best is not None:
         told.append(_what_to_do(best, suspects))
     if not suspects.explained:
@@ -232,6 +233,18 @@ def _what_to_do(best: Suspect, suspects: Suspects) -> str:
         s for s in suspects.group
         if s.kind is SuspectKind.MEASURED_RATE and s.possible
     ]  # fmt: skip
+    if best.is_declared:
+        text = (
+            f"To do: {best.name} is a product of the model and has no row; measure it (it would "
+            f"have to be {would_be_words(best)} {best.unit})."
+        )
+        twins = [s.label for s in rates if s.direction_number == best.direction_number]
+        if twins:
+            text += (
+                f" {and_words(twins)} {'explains' if len(twins) == 1 else 'explain'} it equally "
+                "well."
+            )
+        return text
     if best.kind is SuspectKind.MEASURED_RATE:
         other = [s.label for s in rates if s is not best]
         text = (
@@ -239,7 +252,8 @@ def _what_to_do(best: Suspect, suspects: Suspects) -> str:
             f"near {format_number(best.measured)} it was not"
         )
         if other:
-            return f"{text}, and {and_words(other[:3])} come next."
+            come = "comes" if len(other) == 1 else "come"
+            return f"{text}, and {and_words(other[:3])} {come} next."
         return f"{text}." if len(numbers) == 1 else f"{text}, and look further down the table."
     what = {
         SuspectKind.CARRIER: "look for a reaction that the model lacks",

@@ -20,6 +20,7 @@ from fluxnet.studies.closure_plan import ClosurePlan
 from fluxnet.studies.closure_result import Balance, ClosedRate, ClosureTest, RunClosure
 from fluxnet.studies.closure_rows import ClosureRow, ClosureRows
 from fluxnet.studies.closure_words import verdict
+from fluxnet.studies.units import unusual_words
 
 __all__ = ["make_closures"]
 
@@ -59,6 +60,9 @@ def _closure(told: _Told, place: int) -> RunClosure:
     rates = tuple(ClosedRate(*cells) for cells in told.rates[place])
     if contradictions:
         rates = tuple(replace(r, reconciled=None, reconciled_sd=None, z=None) for r in rates)
+    unusual = unusual_words(
+        ((f"{r.species} {r.direction.value}", r.measured) for r in rates if r.direction), run.unit
+    ).removesuffix(".")
     return RunClosure(
         run=run.name,
         unit=run.unit,
@@ -71,7 +75,7 @@ def _closure(told: _Told, place: int) -> RunClosure:
         words=verdict(balances, test, contradictions),
         contradictions=contradictions,
         left_out=told.batch.rows.left_out,
-        notes=told.notes,
+        notes=(*told.notes, *([unusual] if unusual else ())),
         residual=told.residual[place],
         extras=run.extras,
     )

@@ -19,7 +19,7 @@ from fluxnet.network.model import Direction, Role, Species
 from fluxnet.studies.conditions import Conditions, read_conditions
 from fluxnet.studies.reading_sizes import Expected, carried_carbonate, evaporated_share, stripped
 
-__all__ = ["Cause", "Reading", "SuspectedRate", "readings_of"]
+__all__ = ["LEAST_WEIGHT", "Cause", "Reading", "SuspectedRate", "readings_of"]
 
 _WATER = 18.015
 _HYDRATES = {"glucose": 1, "lactose": 1, "maltose": 1, "rhamnose": 1, "citrate": 1,
@@ -27,7 +27,7 @@ _HYDRATES = {"glucose": 1, "lactose": 1, "maltose": 1, "rhamnose": 1, "citrate":
 _HYDRATE_WORDS = {1: "monohydrate", 2: "dihydrate", 5: "pentahydrate"}
 _VOLATILE_KINDS = (CompoundKind.ALCOHOL, CompoundKind.CARBONYL, CompoundKind.ESTER)
 _NOT_VOLATILE = ("1,3-propanediol", "2,3-butanediol", "1,4-butanediol", "1,2-propanediol")
-_LEAST_WEIGHT = 0.05
+LEAST_WEIGHT = 0.05
 _LEAST_SD = 0.005
 _HALF_TO_TWICE = (0.5, 2.0)
 
@@ -35,6 +35,7 @@ _HALF_TO_TWICE = (0.5, 2.0)
 class Cause(Enum):
     """What went wrong in the laboratory; of equal weight the first is told first."""
 
+    UNIT = "unit"
     HYDRATE = "hydrate"
     STRIPPED = "stripped"
     BICARBONATE = "bicarbonate"
@@ -130,7 +131,7 @@ def readings_of(
         for cause, words, low, high, expected in drafts(rate, conditions):
             weight = exp(-0.5 * (max(low - factor, factor - high, 0.0) / spread) ** 2)
             told = None if expected is None else expected.size
-            if weight >= _LEAST_WEIGHT:
+            if weight >= LEAST_WEIGHT:
                 found.append(Reading(cause, words, low, high, weight, told, rate.unit))
     order = list(Cause)
     found.sort(key=lambda r: (-round(r.weight, 2), r.expected is None, order.index(r.cause)))

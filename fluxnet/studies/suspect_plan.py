@@ -29,6 +29,7 @@ class Hypothesis:
     exactly; of a measured value with ``row`` it is empty, since its column tells. ``positive``
     and ``negative`` are how it stands where its size is positive (released, spent) or negative;
     of a measured value the bounds ``low`` and ``high`` of the true value decide.
+    ``is_declared``: the model itself says that it is released.
     """
 
     kind: SuspectKind
@@ -41,6 +42,7 @@ class Hypothesis:
     negative: Standing = Standing.MEASURED
     low: float = -inf
     high: float = inf
+    is_declared: bool = False
 
 
 @record

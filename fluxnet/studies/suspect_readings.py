@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import replace
 
 from fluxnet.network.model import Species
+from fluxnet.studies.reading_units import unit_readings
 from fluxnet.studies.readings import SuspectedRate, readings_of
 from fluxnet.studies.suspect_result import Suspect, SuspectKind, Suspects
 
@@ -33,6 +34,8 @@ def with_readings(
         rate = SuspectedRate(
             one.name, species[one.name], one.direction, one.measured, one.unit
         )
-        return replace(one, readings=readings_of(rate, one.size, one.sd, columns))
+        units = unit_readings(rate, one.would_be, one.would_be_sd)
+        found = readings_of(rate, one.size, one.sd, columns)
+        return replace(one, readings=(*units, *found))
 
     return replace(suspects, group=tuple(read(one) for one in suspects.group))

@@ -53,7 +53,8 @@ class Suspect:
     there is no other). ``direction_number`` is the same for those that these measurements can
     never tell apart: each of them has the others as its ``twins``. ``group`` is 1 for those
     that cannot be told from the best one at 5 %, 2 for the others. ``readings`` are causes in
-    the laboratory that make such an error, the most plausible first.
+    the laboratory that make such an error, the most plausible first. ``is_declared``: a
+    product of the model that has no row.
     """
 
     kind: SuspectKind
@@ -74,6 +75,7 @@ class Suspect:
     why_not: str | None = None
     twins: tuple[str, ...] = ()
     readings: tuple[Reading, ...] = ()
+    is_declared: bool = False
 
     @property
     def possible(self) -> bool:

@@ -48,12 +48,16 @@ _STANDING = {
 
 @record
 class Candidate:
-    """A species without a row: how its release stands, and its uptake."""
+    """A species without a row: how its release stands, and its uptake.
+
+    ``is_declared``: the model itself says that it is released.
+    """
 
     name: str
     formula: Formula
     released: Standing
     taken_up: Standing
+    is_declared: bool = False
 
 
 def find_candidates(taken: Collection[str], network: Network | None) -> tuple[Candidate, ...]:
@@ -124,6 +128,7 @@ def _of_model(network: Network | None) -> Iterator[tuple[Candidate, str]]:
                     species.name, species.formula,
                     Standing.MODEL if can_leave else Standing.IMPOSSIBLE,
                     Standing.MODEL if can_enter else Standing.IMPOSSIBLE,
+                    can_leave and species.role in (Role.PRODUCT, Role.EXCHANGE),
                 ),
                 identity(species.name, species.entry),
             )  # fmt: skip

@@ -128,7 +128,8 @@ def tell_suspects(judged: JudgedSuspects, run: int) -> Suspects:
 
     The order inside the group: measured values and what the model makes (without a model:
     common by-products), then other common by-products, then rare ones, at last what is not
-    possible; of equals the one that leaves the smaller h first.
+    possible; in each the one that leaves the smaller h first, and of twins a product of the
+    model that has no row.
     """
     from fluxnet.studies.suspect_pairs import find_missing, tell_pairs
 
@@ -166,7 +167,9 @@ def _ranked(judged: JudgedSuspects, run: int) -> NDArray[np.intp]:
     classes = rank_standings(with_model=judged.plan.with_model)
     # what twins leave differs by rounding only
     digits = np.round(left / (1 + judged.arrays.h[run]), 9)
-    return np.lexsort((standing, digits, classes[standing]))
+    declared = np.array([h.is_declared for h in judged.plan.hypotheses], dtype=np.bool_)
+    own = declared & (judged.arrays.sizes[run] >= 0) & (classes[standing] == 0)
+    return np.lexsort((standing, ~own, digits, classes[standing]))
 
 
 def rank_standings(*, with_model: bool) -> NDArray[np.intp]:
@@ -228,6 +231,7 @@ def make_suspect(told: RunNumbers, i: int, beside: tuple[float, float] | None = 
         twins=tuple(
             told.plan.label(k, told.sizes[k]) for k in told.plan.members(number) if k != i
         ),
+        is_declared=one.is_declared and size >= 0 and standing is Standing.MODEL,
     )
 
 

@@ -119,6 +119,7 @@ def plan_closure_suspects(
             SuspectKind.UNMEASURED_SPECIES, candidate.name, unit,
             tuple(-x / per_unit for x in released),
             positive=candidate.released, negative=candidate.taken_up,
+            is_declared=candidate.is_declared,
         ))  # fmt: skip
     probes = _probes(system)
     effects = [*(h.effect for h in species), *probes]

@@ -41,7 +41,7 @@ def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
         if not measured:
             return f"No rate is measured: the limits alone leave this; {known}.{spender}"
         return f"The rates fit the network, but none tests another; {known}.{spender}"
-    chance = "below 0.001" if test.p is not None and test.p < 0.001 else f"{test.p:.2g}"
+    chance = _chance(test.p)
     if test.closes is False:
         worst = _worst(solution)
         return (
@@ -49,6 +49,13 @@ def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
             f"probability {chance}; {worst}. Fluxes are given, and not to be trusted."
         )
     return f"The rates and the network agree (p = {chance}); {known}.{spender}"
+
+
+def _chance(p: float | None) -> str:
+    """A probability with the digits that it has everywhere else on the screen."""
+    if p is None:
+        return "unknown"
+    return "below 0.001" if p < 0.001 else f"{p:.3f}" if p < 0.1 else f"{p:.2f}"
 
 
 def _guessed_ratios(solution: FluxSolution) -> str:

@@ -2,12 +2,14 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 from fractions import Fraction
 
 from fluxnet.network.model import Quantity, QuantityKind
 
-__all__ = ["gain_unit", "rate_unit"]
+__all__ = ["gain_unit", "rate_unit", "unusual_words"]
+
+_UNUSUAL = 100.0  # mmol/g/h; few pass 50 (common practice)
 
 
 def rate_unit(quantity: Quantity, unit: str) -> str:
@@ -46,6 +48,29 @@ def gain_unit(terms: Sequence[tuple[Fraction, Quantity]], limited: Quantity, uni
     else:
         gain = f"{shown} of the sum"
     return f"{gain} per {_part(below, shown)}"
+
+
+def unusual_words(rates: Iterable[tuple[str, float | None]], unit: str) -> str:
+    """A sentence on specific rates that are larger than cells usually have; "" without any.
+
+    Parameters
+    ----------
+    rates
+        Names and measured values, in ``unit``.
+
+    Examples
+    --------
+    >>> unusual_words([("glucose in", 10200.0), ("mu", 0.2)], "mmol/g/h")[:33]
+    'glucose in is above 100 mmol/g/h,'
+    """
+    names = [name for name, value in rates if value is not None and abs(value) > _UNUSUAL]
+    if unit != "mmol/g/h" or not names:
+        return ""
+    verb = "is" if len(names) == 1 else "are"
+    return (
+        f"{', '.join(names)} {verb} above {_UNUSUAL:g} mmol/g/h, where 50 is rarely passed (common "
+        "practice): is mmol typed as mol, or a time or a mass mistaken?"
+    )
 
 
 def _part(quantity: Quantity, unit: str) -> str:

@@ -86,3 +86,11 @@ def test_each_word_that_a_solve_can_end_with_is_explained() -> None:
     assert {kind.value.replace("_", " ") for kind in RateKind} <= set(words)
     assert {kind.value for kind in FluxKind} <= set(words)
     assert all(len(meaning) > 10 for meaning in words.values())
+
+
+@pytest.mark.parametrize("word", ["suspect", "apart", "h left", "by chance", "bill", '"price"'])
+def test_the_words_of_suspects_and_bills_are_explained(
+    word: str, capsys: pytest.CaptureFixture[str]
+) -> None:
+    assert run(["explain", *word.split()]) == Exit.SOUND
+    assert capsys.readouterr().out.startswith(f"{word.strip(chr(34))}: ")

@@ -49,7 +49,7 @@ def shown(run, network) -> list[str]:
 
 
 def bill_of(lines: list[str]) -> list[str]:
-    start = next(k for k, line in enumerate(lines) if line.startswith("Bill ["))
+    start = next(k for k, line in enumerate(lines) if line.startswith("Bill, worth"))
     end = next(k for k, line in enumerate(lines) if line.startswith("missing"))
     return lines[start : end + 1]
 
@@ -85,7 +85,8 @@ def test_the_verdict_the_bill_and_the_way_out_fit_on_one_screen(asked):
     assert "The ATP that growth and upkeep need, 7.522, is more than" in text
     assert "can bring, 5.516 mmol ATP/g/h" in text
     assert "upkeep at most 1.194 (-7.0 sd from the value 4)" in text
-    order = [text.index(part) for part in ("Bill [", "Without any", "The least change", "alone")]
+    parts = ("Bill, worth", "Without any", "The least change", "alone")
+    order = [text.index(part) for part in parts]
     order.remove(order[2])  # the verdict tells of the least change, too
     assert order == sorted(order)
 

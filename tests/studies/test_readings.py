@@ -11,7 +11,9 @@ import pytest
 from fluxnet.chemistry.reader import read_formula
 from fluxnet.network.model import Direction, Role, Species
 from fluxnet.studies.conditions import read_conditions
+from fluxnet.studies.reading_units import unit_readings
 from fluxnet.studies.readings import Cause, Reading, SuspectedRate, readings_of
+from fluxnet.studies.units import unusual_words
 from fluxnet.tables.rates_table import read_rates_text
 
 COLUMNS = {
@@ -226,3 +228,36 @@ def test_readings_come_by_weight_and_a_size_that_is_known_first() -> None:
     found = readings_of(CO2, -0.12, 0.05, COLUMNS)
     assert [r.weight for r in found] == sorted((r.weight for r in found), reverse=True)
     assert found[0].cause is Cause.BICARBONATE
+
+
+@pytest.mark.parametrize(
+    ("measured", "would_be", "words"),
+    [
+        (10200.0, 8.92, "mmol typed as mol"),
+        (0.0102, 10.0, "mol typed as mmol"),
+        (0.17, 10.1, "per minute typed as per hour"),
+        (240.0, 10.1, "per day typed as per hour"),
+        (1801.6, 10.0, "mg typed as mmol"),
+        (60.0, 10.02, "C-mmol typed as mmol"),
+    ],
+)
+def test_a_unit_that_was_mistaken_is_told_by_its_factor(measured, would_be, words) -> None:
+    found = unit_readings(replace(GLUCOSE, measured=measured), would_be, 0.02 * would_be)
+    assert found[0].cause is Cause.UNIT
+    assert found[0].words.startswith(f"{words}? The rate times ")
+    assert found[0].factor_low * measured == pytest.approx(would_be, rel=0.15)
+
+
+def test_a_rate_that_is_off_by_no_known_factor_has_no_unit_mistaken() -> None:
+    assert unit_readings(replace(GLUCOSE, measured=40.0), 10.0, 0.1) == ()
+    assert unit_readings(replace(GLUCOSE, measured=10.0), -1.0, 0.1) == ()
+    # an sd of a third tells nothing of a factor
+    assert unit_readings(replace(GLUCOSE, measured=60.0), 10.0, 3.3) == ()
+    assert [r.words[:12] for r in unit_readings(replace(MU, measured=100.0), 0.1, 0.001)] == []
+
+
+def test_specific_rates_larger_than_cells_have_are_told() -> None:
+    assert unusual_words([("glucose in", 8.0), ("CO2 out", 99.0)], "mmol/g/h") == ""
+    assert unusual_words([("glucose in", 8920.0)], "mmol/L/h") == ""
+    told = unusual_words([("glucose in", 8920.0), ("lactate out", 17000.0)], "mmol/g/h")
+    assert told.startswith("glucose in, lactate out are above 100 mmol/g/h")

@@ -8,6 +8,9 @@ from pathlib import Path
 import pytest
 
 from fluxnet.network.model import Direction
+from fluxnet.presenting.screen import Sentence
+from fluxnet.presenting.suspect_blocks import suspect_blocks
+from fluxnet.presenting.suspect_text import would_be_words
 from fluxnet.rates.unmeasuring import leave_unmeasured
 from fluxnet.reading.model import read_model_text
 from fluxnet.studies.closure import close_rates
@@ -350,3 +353,51 @@ def test_runs_weighed_together_are_the_runs_by_themselves():
             assert a.size == pytest.approx(b.size)
 
 
+
+
+FORMATE = """
+basis mmol/g/h
+substrate glucose
+product lactate, acetate, ethanol, formate
+carrier ATP carries energy
+carrier NADH
+inside pyruvate, acetyl-CoA
+compartment all
+    glycolysis : glucose -> 2 pyruvate + 2 ATP + 2 NADH
+    ldh : pyruvate + NADH -> lactate
+    pfl : pyruvate -> acetyl-CoA + formate
+    adh : acetyl-CoA + 2 NADH -> ethanol
+    ack : acetyl-CoA -> acetate + ATP
+    upkeep : ATP -> nothing
+"""
+NO_ACETATE = """A,glucose,in,5,0.1,mmol/g/h
+A,lactate,out,2,0.05,mmol/g/h
+A,ethanol,out,4,0.1,mmol/g/h
+A,formate,out,8,0.2,mmol/g/h
+"""
+
+
+def test_a_product_of_the_model_without_a_row_is_thought_of_first():
+    network = read_model_text(FORMATE).network
+    told = look(NO_ACETATE, network=network)
+    first, *others = told.group
+    assert (first.name, first.standing, first.is_declared) == ("acetate", Standing.MODEL, True)
+    assert first.size == pytest.approx(4.0, abs=0.05)
+    assert {s.name for s in others if s.direction_number == first.direction_number} >= {
+        "glucose", "lactate",
+    }
+    assert not any(s.is_declared for s in others)
+    advice = next(
+        block.text
+        for block in suspect_blocks(told, "A")
+        if isinstance(block, Sentence) and block.text.startswith("To do")
+    )
+    assert advice == (
+        f"To do: acetate is a product of the model and has no row; measure it (it would have to "
+        f"be {would_be_words(first)} mmol/g/h). glucose in and lactate out explain it equally well."
+    )
+
+
+def test_without_a_model_no_product_is_declared():
+    told = look(NO_ACETATE)
+    assert not any(s.is_declared for s in told.all)
