@@ -156,7 +156,10 @@ def _draft(
 def _weigh(
     data: RawData, curve: GrowthCurve, drafts: Sequence[Regression]
 ) -> tuple[tuple[Regression, ...], dict[str, tuple[float, int, float]]]:
-    """Weights from the covariance of the samples about one rate, errors of the biomass included."""
+    """Weights from the covariance of the samples about one rate.
+
+    Errors of the biomass and of each reading of a stream are in it; what all share is not.
+    """
     found: list[Regression] = []
     tests: dict[str, tuple[float, int, float]] = {}
     if not drafts:
@@ -179,7 +182,7 @@ def _weigh(
     for draft in drafts:
         part = slice(start, start + draft.samples.size)
         start = part.stop
-        names = {own_error(BIOMASS), own_error(draft.name)}
+        names = {own_error(n) for n in (BIOMASS, draft.name, *(f.name for f in data.flows))}
         kept = [i for i, source in enumerate(spread.sources) if source in names]
         shifts = spread.jacobian[part][:, kept]
         covariance = shifts @ shifts.T
@@ -196,8 +199,8 @@ def _weigh(
 
 
 def _own_only(data: RawData) -> tuple[Block, ...]:
-    """The blocks with the errors of samples alone."""
-    names = {BIOMASS, *(s.name for s in data.species)}
+    """The blocks with the errors that each sample and each reading of a stream has alone."""
+    names = {BIOMASS, *(s.name for s in data.species), *(f.name for f in data.flows)}
     return tuple(
         replace(b, modes=(), own=b.own if b.name in names else np.zeros_like(b.own))
         for b in data.blocks

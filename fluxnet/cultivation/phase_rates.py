@@ -25,6 +25,9 @@ __all__ = ["judge", "steady_rates", "transient_rates"]
 
 Array = NDArray[np.float64]
 
+_FEW = 4
+"""Samples that any smooth curve could follow."""
+
 
 def transient_rates(
     raw: Cultivation, data: RawData, network: Network | None, fit: PhaseFit, many: bool,
@@ -71,7 +74,8 @@ def _other_ways(data: RawData) -> list[tuple[Method, RawData]]:
     if any(f.kind is not SeriesKind.FEED and f.total.any() for f in data.flows):
         flows = tuple(
             f if f.kind is SeriesKind.FEED else
-            replace(f, total=0.0 * f.total, own=0.0 * f.own, shift=0.0 * f.shift)
+            replace(f, total=0.0 * f.total, own=0.0 * f.own, shift=0.0 * f.shift,
+                    first=0.0)
             for f in data.flows
         )  # fmt: skip
         ways.append((Method.NAIVE, replace(data, flows=flows)))
@@ -153,6 +157,12 @@ def judge(rates: PhaseRates, faults: list[Diagnostic]) -> None:
                 f"phase {name}: {line.quantity.name or 'biomass'} {what} {line.widened:.2g} times "
                 "as much as its errors say; its sds were widened by that",
             ))  # fmt: skip
+    if rates.curve == "points" and rates.samples > _FEW:
+        faults.append(Diagnostic(
+            Name.RATE_NOT_CONSTANT,
+            f"phase {name}: ln(X V) follows no cubic within the errors of the biomass; straight "
+            "lines from sample to sample are taken, and mu is their mean",
+        ))  # fmt: skip
     for trend in rates.steadiness:
         if not trend.steady:
             faults.append(Diagnostic(

@@ -40,7 +40,8 @@ class Flow:
 
     ``share`` tells of what leaves at the later end of each interval between nodes which part
     had the composition of the earlier node (1: taken right after it). ``shift`` is the error
-    that all readings share, per one sd.
+    that all readings share, per one sd; ``first`` the sd of the reading at the first node, which
+    was taken from all later ones.
     """
 
     name: str
@@ -49,12 +50,23 @@ class Flow:
     own: Array
     shift: Array
     share: Array
+    first: float = 0.0
 
     @property
     def block(self) -> Block:
         """The totals as raw data with their errors."""
-        modes = (Mode(f"{self.name}, scale", self.shift),) if self.shift.any() else ()
-        return Block(self.name, self.total, self.own, modes)
+        later = np.full(self.total.size, -self.first)
+        later[0] = 0.0
+        scale = Mode(f"{self.name}, scale", self.shift)
+        start = Mode(f"{self.name}, first reading", later)
+        return Block(self.name, self.total, self.own, (scale, start))
+
+    @property
+    def variance(self) -> Array:
+        """Of the total at each node."""
+        later = np.full(self.total.size, self.first**2)
+        later[0] = 0.0
+        return np.asarray(self.own**2 + self.shift**2 + later)
 
 
 def cumulated(series: Series, nodes: Array) -> tuple[Array, Array]:
@@ -135,6 +147,7 @@ def read_flow(
         own = np.sqrt(moved - moved[0] + float(series.sd[0]) ** 2)
     if series.form is Form.RATE and series.sd is None:
         own = np.zeros(nodes.size)
+    first = float(own[0]) if series.form is Form.TOTAL else 0.0
     own[0] = 0.0
     common = series.common
     if common is None:
@@ -144,7 +157,8 @@ def read_flow(
         factor = density if by_mass else 1.0 / density
         common = float(np.hypot(common, density_sd / density))
     total = total * factor
-    return Flow(series.title, series.kind, total, own * factor, common * total, share)
+    return Flow(series.title, series.kind, total, own * factor, common * total, share,
+                first * factor)
 
 
 def broth(start: Array, flows: Sequence[tuple[SeriesKind, Array]], nodes: int) -> Array:
@@ -233,7 +247,7 @@ def close_account(
     for flow in flows:
         sign = -1.0 if flow.kind.is_removal else 1.0
         lines.append(AccountLine(flow.name, sign * flow.total))
-        variance = variance + flow.own**2 + flow.shift**2
+        variance = variance + flow.variance
     expected = np.asarray(sum(line.amount for line in lines))
     none = np.zeros(0)
     inside = none if found is None else (found.time >= nodes[0]) & (found.time <= nodes[-1])

@@ -108,13 +108,17 @@ def noisy(
         if total[-1]:
             shape = (np.exp(truth.mu * (fine - t[0])) - 1) / (np.exp(truth.mu * (t[-1] - t[0])) - 1)
             curve = np.interp(fine, t, total) if what is kind.EVAPORATION else total[-1] * shape
+            curve = draw(curve, 0.001)
             series.append(make_series(what, what.value, "L", fine, curve, 0.001, form=Form.TOTAL))
     if sample:
         series.append(make_series(kind.SAMPLE, "sample", "L", t, np.full(t.size, sample),
                                   np.full(t.size, 1e-4), form=Form.EVENT))
-    chosen = [Setting(SettingKind.VOLUME, start, "L", sd=0.001 * start)]
+    volume, strength = (
+        float(draw(np.array([v]), part * v)[0]) for v, part in ((start, 0.001), (content, 0.005))
+    )
+    chosen = [Setting(SettingKind.VOLUME, volume, "L", sd=0.001 * start)]
     if truth.fed[-1]:
-        chosen.append(Setting(SettingKind.CONTENT, content, "mmol/L", sd=0.005 * content,
+        chosen.append(Setting(SettingKind.CONTENT, strength, "mmol/L", sd=0.005 * content,
                               of="glucose", stream="feed"))
     return Cultivation("run", mode, (*series, *extra), (*chosen, *settings))
 

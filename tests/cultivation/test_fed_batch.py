@@ -8,6 +8,16 @@ from dataclasses import replace
 import numpy as np
 import pytest
 
+from fluxnet.cultivation.assembling import assemble
+from fluxnet.cultivation.batch import (
+    PhaseFit,
+    estimate_phase,
+    fit_phase,
+    names_of,
+    propagate_phase,
+    widened,
+)
+from fluxnet.cultivation.broth_state import RawData
 from fluxnet.cultivation.errors import draw_errors, propagate
 from fluxnet.cultivation.fed_batch import gas_courses
 from fluxnet.cultivation.gas_reading import read_gas_line
@@ -62,6 +72,48 @@ def test_the_yields_of_noisy_fed_batches_are_right_on_average(
 
     assert values.mean() == pytest.approx(0.30 / 3.2, rel=0.02)
     assert values.std(ddof=1) == pytest.approx(sds.mean(), rel=0.6)
+
+
+def fitted(raw: Cultivation) -> tuple[RawData, PhaseFit]:
+    data = assemble(raw, None, [], [])
+    assert data is not None
+    fit = fit_phase(data, WHOLE)
+    assert fit is not None
+    return widened(data, fit), replace(fit, spline=None)
+
+
+def test_a_monte_carlo_of_a_fed_batch_gives_its_propagated_covariance(
+    simulated: Callable[..., object], measured: Callable[..., Cultivation]
+) -> None:
+    truth, generator = simulated(TIME, **MOVES), np.random.default_rng(12)
+    raw = measured(truth, generator, mode=Mode.FED_BATCH, sample=EACH, common=0.02)
+    data, fit = fitted(raw)
+    found = propagate_phase(data, fit)
+    drawn = np.concatenate([
+        estimate_phase(draw_errors(data.blocks, 2000, generator), data, fit) for _ in range(10)
+    ])  # fmt: skip
+    covariance = np.cov(drawn.T)
+    scale = np.outer(*(2 * [np.sqrt(np.diag(covariance))]))
+
+    assert np.diag(found.covariance) == pytest.approx(np.diag(covariance), rel=0.05)
+    assert found.covariance / scale == pytest.approx(covariance / scale, abs=0.03)
+
+
+@pytest.mark.slow
+def test_intervals_of_a_thousand_fed_batches_cover_95_per_cent(
+    simulated: Callable[..., object], measured: Callable[..., Cultivation]
+) -> None:
+    """Samples, balances, feed and start volume drawn anew; every choice made anew."""
+    truth, generator = simulated(TIME, **MOVES), np.random.default_rng(13)
+    scores = []
+    for _ in range(1000):
+        data, fit = fitted(measured(truth, generator, mode=Mode.FED_BATCH, sample=EACH))
+        found = propagate_phase(data, fit)
+        true = [truth.mu, *(truth.rates[n] for n in names_of(fit)[1:])]
+        scores.append((found.value - true) / found.sd)
+    shares = (np.abs(np.array(scores)) < 1.959964).mean(axis=0)
+
+    assert ((shares >= 0.93) & (shares <= 0.97)).all(), shares
 
 
 def test_rates_over_time_lie_within_their_bands(fed: Cultivation) -> None:
