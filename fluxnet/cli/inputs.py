@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import argparse
 import sys
-from collections.abc import Iterable, Sequence
+from collections.abc import Collection, Iterable, Sequence
 from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -24,7 +24,10 @@ from fluxnet.reading.source import MOST_BYTES
 if TYPE_CHECKING:
     from fluxnet.rates.measured import RatesTable
 
-__all__ = ["ReadModel", "ReadRates", "exit_of", "load_model", "load_rates", "read_inputs"]
+__all__ = [
+    "ReadModel", "ReadRates", "exit_of", "load_model", "load_rates", "read_inputs",
+    "without_limits",
+]
 
 _SEPARATORS = {"comma": ",", "semicolon": ";", "tab": "\t"}
 
@@ -111,9 +114,15 @@ class ReadRates:
 
 
 def load_rates(
-    arguments: argparse.Namespace, network: Network | None, progress: Progress = silent
+    arguments: argparse.Namespace,
+    network: Network | None,
+    progress: Progress = silent,
+    limits: Collection[str] = (),
 ) -> ReadRates:
-    """Read the rates table that a command names, and keep the runs that it asks for."""
+    """Read the rates table that a command names, and keep the runs that it asks for.
+
+    ``limits`` are measured limits of the model that a command can leave unmeasured itself.
+    """
     # Imported here, so that `check` does not wait for the tables.
     from fluxnet.tables.inputs import MOST_BYTES as MOST_OF_A_TABLE
     from fluxnet.tables.numerals import Decimal
@@ -141,20 +150,29 @@ def load_rates(
         table, told = _choose_runs(table, arguments)
         diagnostics = (*told, *diagnostics)
     if table is not None and arguments.unmeasured:
-        table = _leave_unmeasured(table, arguments.unmeasured)
+        table = _leave_unmeasured(table, arguments.unmeasured, limits)
     return ReadRates(table, diagnostics, inputs)
 
 
-def _leave_unmeasured(table: RatesTable, asked: Sequence[str]) -> RatesTable:
+def without_limits(network: Network, asked: Collection[str]) -> Network:
+    """The model without those measured limits; a rate of the same name in a table is blank too."""
+    kept = tuple(x for x in network.limits if not (x.is_measured and str(x.quantity) in asked))
+    return network if len(kept) == len(network.limits) else replace(network, limits=kept)
+
+
+def _leave_unmeasured(
+    table: RatesTable, asked: Sequence[str], limits: Collection[str]
+) -> RatesTable:
     from difflib import get_close_matches
 
     from fluxnet.rates.unmeasuring import leave_unmeasured, measured_names
 
     known = measured_names(table)
     for name in asked:
-        if name not in known:
-            near = get_close_matches(name, known, 1, 0.6)
-            hint = f"the nearest is {near[0]}" if near else f"there are {', '.join(known)}"
+        if name not in known and name not in limits:
+            every = (*known, *limits)
+            near = get_close_matches(name, every, 1, 0.6)
+            hint = f"the nearest is {near[0]}" if near else f"there are {', '.join(every)}"
             raise MisuseError(f"no measured rate is called {name!r}; {hint}")
     return leave_unmeasured(table, asked)
 

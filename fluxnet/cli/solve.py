@@ -6,7 +6,7 @@ import argparse
 import sys
 from dataclasses import replace
 
-from fluxnet.cli.inputs import load_model, load_rates
+from fluxnet.cli.inputs import load_model, load_rates, without_limits
 from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
 from fluxnet.cli.output import give_faults, give_findings, give_screen, refuse_outputs
 from fluxnet.cli.progress import progress_on
@@ -93,7 +93,8 @@ def run(arguments: argparse.Namespace) -> int:
     table = None
     inputs, diagnostics = model.inputs, model.told
     if arguments.rates is not None:
-        rates = load_rates(arguments, model.network)
+        limits = tuple(str(x.quantity) for x in model.network.limits if x.is_measured)
+        rates = load_rates(arguments, model.network, limits=limits)
         inputs, diagnostics = (*inputs, *rates.inputs), (*diagnostics, *rates.diagnostics)
         if rates.table is None:
             return give_faults(arguments, Document.SOLVE, inputs, diagnostics)
@@ -104,10 +105,11 @@ def run(arguments: argparse.Namespace) -> int:
             told = (*kept, *aligned.diagnostics)
             return give_faults(arguments, Document.SOLVE, inputs, told)
         table = aligned.table
+    network = without_limits(model.network, arguments.unmeasured)
     try:
         with progress_on(sys.stderr) as progress:
             solution = solve_network(
-                model.network,
+                network,
                 table,
                 maximise=arguments.maximise,
                 minimise=arguments.minimise,

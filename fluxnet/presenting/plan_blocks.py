@@ -7,9 +7,9 @@ from math import inf
 
 from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.presenting.numbers import format_measured, format_number
-from fluxnet.presenting.screen import Block, Sentence
+from fluxnet.presenting.screen import Block, Mood, Sentence
 from fluxnet.presenting.share_blocks import share_words
-from fluxnet.studies.plan_result import How, Option, Plan, Step
+from fluxnet.studies.plan_result import How, Option, Plan, Step, TypedLimit
 
 __all__ = ["plan_blocks"]
 
@@ -19,11 +19,15 @@ _MOST_INSIDE = 3
 
 def plan_blocks(plan: Plan) -> list[Block]:
     """The plan as shown, and all of its options as data."""
-    blocks: list[Block] = [Sentence(f"What to measure next. {plan.words}", verdict=True)]
+    typed = plan.typed
+    if typed is not None:
+        plan = typed.without
+    blocks: list[Block] = [] if typed is None else [_typed(typed)]
+    blocks.append(Sentence(f"What to measure next. {plan.words}", verdict=True))
     if plan.sd:
-        today = f"{format_measured(plan.value, plan.sd)} {plan.unit}".strip()
+        when = "Today" if typed is None else "Without that limit"
         shares = f"; its error comes from {share_words(plan.shares)}" if plan.shares else ""
-        blocks.append(Sentence(f"Today {plan.quantity} is {today}{shares}."))
+        blocks.append(Sentence(f"{when} {plan.quantity} is {_value(plan)}{shares}."))
     shown = _shown(plan)
     if shown:
         blocks.append(_table(plan, shown))
@@ -33,6 +37,22 @@ def plan_blocks(plan: Plan) -> list[Block]:
         blocks.append(Sentence(f"{why}: {', '.join(idle)}."))
     blocks.append(_data(plan))
     return blocks
+
+
+def _typed(typed: TypedLimit) -> Sentence:
+    """That the answer is what was typed, and what the run itself says."""
+    without = typed.without
+    gives = f"gives {_value(without)}" if without.sd else "does not determine it"
+    return Sentence(
+        f"{100 * typed.share:.0f} % of the error of {without.quantity} is that of the limit "
+        f"{typed.limit} as typed; without it this run {gives}. What follows is told without that "
+        "limit.",
+        Mood.DOUBTFUL,
+    )
+
+
+def _value(plan: Plan) -> str:
+    return f"{format_measured(plan.value, plan.sd)} {plan.unit}".strip()
 
 
 def _shown(plan: Plan) -> list[tuple[str, Option]]:

@@ -29,6 +29,13 @@ def plan_record(plan: Plan) -> Record:
         "pair": None if plan.pair is None else _option(plan.pair),
         "needed": list(plan.needed),
         "without_bounds": plan.without_bounds,
+        "typed": None
+        if plan.typed is None
+        else {
+            "limit": plan.typed.limit,
+            "share": plan.typed.share,
+            "without": plan_record(plan.typed.without),
+        },
     }
 
 

@@ -127,10 +127,10 @@ def fit_run(
 
         solution = replace(solution, suspects=seek_flux_suspects(fit, frame.unit))
     if plan is not None:
-        from fluxnet.studies.plan import plan_measurements
+        from fluxnet.studies.plan_without import plan_beside_limits
 
         target, error = plan
-        told = plan_measurements(fit, network, run, target, error, frame.unit)
+        told = plan_beside_limits(fit, network, run, target, error, frame.unit, progress)
         solution = replace(solution, plan=told)
     if solution.status is SolveStatus.INCONSISTENT:
         from fluxnet.solving.least_change import least_change

@@ -7,7 +7,7 @@ from enum import Enum
 from fluxnet.ground.record import record
 from fluxnet.studies.shares import Share
 
-__all__ = ["How", "Option", "Plan", "Step"]
+__all__ = ["How", "Option", "Plan", "Step", "TypedLimit"]
 
 
 class How(Enum):
@@ -46,6 +46,18 @@ class Option:
 
 
 @record
+class TypedLimit:
+    """A measured limit that the wanted quantity comes from, and the plan without it.
+
+    ``limit`` is in words, ``share`` its part of the variance.
+    """
+
+    limit: str
+    share: float
+    without: Plan
+
+
+@record
 class Plan:
     """What would tell the wanted quantity better, the best first.
 
@@ -54,7 +66,8 @@ class Plan:
     that measure a flux inside, ``pair`` the best two of the former. ``needed`` is an
     irreducible set that determines a quantity which no one or two steps do. ``error`` is the
     relative error of what is new. ``without_bounds``: bounds press on this fit, which the
-    formula does not know.
+    formula does not know. ``typed`` is told where nearly all of the error is that of a limit
+    as typed: to know that one better would be to know the answer already.
     """
 
     quantity: str
@@ -69,3 +82,4 @@ class Plan:
     pair: Option | None = None
     needed: tuple[str, ...] = ()
     without_bounds: bool = False
+    typed: TypedLimit | None = None

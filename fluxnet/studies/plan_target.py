@@ -51,7 +51,19 @@ def read_target(text: str, network: Network) -> Target:
         return Target(None, _find_line(words[0], " ".join(words[1:]), network))
     if len(words) == 2 and words[1] in {c.name for c in network.compartments}:
         raise MisuseError(f"the model has no carrier {words[0]}{_near(words[0], carriers)}")
+    if any(c.name == text.strip() for c in network.compartments) and not _is_known(
+        text.strip(), network
+    ):
+        raise MisuseError(_of_compartment(text.strip(), network))
     return Target(_name(words, network))
+
+
+def _of_compartment(name: str, network: Network) -> str:
+    """What of a compartment can be asked for: a line of its ledger, or one of its fluxes."""
+    lines = [f'"{p.carrier} {name}"' for p in _lines(network) if p.compartment == name][:1]
+    fluxes = [r.name for r in network.reactions if r.compartment == name][:1]
+    ways = " or ".join(f"--plan {way}" for way in (*lines, *fluxes))
+    return f"{name} is a compartment; write {ways}" if ways else f"{name} is an empty compartment"
 
 
 def _is_known(name: str, network: Network) -> bool:

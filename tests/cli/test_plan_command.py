@@ -96,3 +96,40 @@ def test_shares_are_shown_when_they_are_asked_for(capsys: pytest.CaptureFixture[
     assert "± of ATP, anabolism, from: K_X 52%, PO 35%" in plain
     run([*SOLVE, "--shares"])
     assert "Where the errors come from" in capsys.readouterr().out
+
+
+def test_what_a_limit_tells_by_itself_is_planned_without_it(
+    capsys: pytest.CaptureFixture[str],
+) -> None:
+    assert run([*SOLVE, "--plan", "ATP maintenance", "--json"]) == Exit.SOUND
+    document = json.loads(capsys.readouterr().out)
+    schemas = Path(fluxnet.presenting.__file__).parent / "schemas"
+    jsonschema.validate(document, json.loads((schemas / "solve-1.json").read_text("utf-8")))
+    typed = document["runs"][0]["plan"]["typed"]
+    assert typed["limit"] == "upkeep = 4 ± 0.4"
+    assert typed["share"] > 0.9
+    assert run([*SOLVE, "--unmeasured", "flux upkeep", "--plan", "ATP maintenance", "--json"]) == 0
+    alone = json.loads(capsys.readouterr().out)["runs"][0]["plan"]
+    assert alone["typed"] is None
+    assert typed["without"] == alone
+    assert alone["sd"] > 4 * document["runs"][0]["plan"]["sd"]
+
+    assert run([*SOLVE, "--plan", "ATP maintenance"]) == Exit.SOUND
+    shown = " ".join(capsys.readouterr().out.split())
+    assert "97 % of the error of net ATP of maintenance is that of the limit" in shown
+    assert "without it this run gives -2.2 ± 2.2 mmol/g/h" in shown
+    assert "flux upkeep half its sd" not in shown
+
+
+def test_a_measured_limit_can_be_left_unmeasured(capsys: pytest.CaptureFixture[str]) -> None:
+    assert run([*SOLVE, "--unmeasured", "flux upkeep", "--json"]) == Exit.SOUND
+    (told,) = json.loads(capsys.readouterr().out)["runs"]
+    assert all(r["measured"] is None for r in told["rates"] if r["species"] == "flux upkeep")
+    assert run([*SOLVE, "--unmeasured", "flux upkep"]) == Exit.MISUSE
+    assert "the nearest is flux upkeep" in capsys.readouterr().err
+
+
+def test_a_compartment_is_told_as_one(capsys: pytest.CaptureFixture[str]) -> None:
+    assert run([*SOLVE, "--plan", "maintenance"]) == Exit.MISUSE
+    shown = capsys.readouterr().err
+    assert 'maintenance is a compartment; write --plan "ATP maintenance" or --plan upkeep' in shown
