@@ -15,9 +15,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.cultivation.errors import Block, Mode
-from fluxnet.cultivation.thinning import Thinned, thin
 from fluxnet.ground.record import record
 from fluxnet.rates.cultivation import Series
+from fluxnet.rates.thinning import Thinned, thin
 
 __all__ = ["DRIFT", "SPAN", "Analyser", "GasLine", "read_analyser"]
 
@@ -144,7 +144,9 @@ def read_analyser(
     thinned = thin(time, value, width) if time.size > _BINS else _as_it_is(time, value)
     span = SPAN.get(name, OTHER_SPAN) if series.common is None else series.common
     own = _row_sd(series, thinned)
-    sd = thinned.sd if series.sd is None else own / np.sqrt(thinned.count)
+    sd = thinned.sd
+    if series.sd is not None:  # what neighbours scatter is seen whatever was given
+        sd = np.maximum(sd, own / np.sqrt(thinned.count))
     offset, offset_sd = 0.0, span * float(np.median(value))
     drift, drifted, seen = None, 0.0, None
     if stretch.sum() >= _STRETCH:

@@ -5,7 +5,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from fluxnet.cultivation.thinning import thin
+from fluxnet.rates.thinning import thin
 
 
 def noisy(alike: float, rows: int, seed: int) -> np.ndarray:
