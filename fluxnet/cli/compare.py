@@ -48,6 +48,9 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         "--uptake", metavar="N", help="the uptake of the substrate, in the unit of the model"
     )
     parser.add_argument(
+        "--biomass", metavar="C", help='tell what the best takes per litre too: "20 g/L"'
+    )
+    parser.add_argument(
         "--beside", metavar="NAME", action="append", default=[],
         help="another source of carbon or electrons that may be taken up as well",
     )  # fmt: skip
@@ -91,6 +94,7 @@ def run(arguments: argparse.Namespace) -> int:
                 arguments.across,
                 arguments.reserve,
                 uptake=arguments.uptake,
+                biomass=arguments.biomass,
                 beside=arguments.beside,
                 staircase=named or bool(arguments.staircase),
                 measured=arguments.measured,

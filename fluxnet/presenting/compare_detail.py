@@ -5,6 +5,7 @@ from __future__ import annotations
 from fractions import Fraction
 
 from fluxnet.ground.table import Align, Column, Table
+from fluxnet.presenting.compare_supplies import supply_an_hour
 from fluxnet.presenting.numbers import format_number, format_range
 from fluxnet.presenting.screen import Block, Heading, Sentence
 from fluxnet.studies.compare_modes import Mode
@@ -32,6 +33,8 @@ def detail_blocks(comparison: Comparison, ability: Ability) -> tuple[Block, ...]
         blocks.append(_by_products(comparison, facts))
     blocks.append(_destinations(ability, facts))
     blocks += [Sentence(text) for text in _supplies(comparison, facts)]
+    if ability.supply is not None and ability is not comparison.abilities[0]:
+        blocks.append(Sentence(f"{supply_an_hour(comparison, ability, ability.supply)}."))
     return tuple(blocks)
 
 

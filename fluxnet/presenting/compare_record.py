@@ -5,7 +5,9 @@ from __future__ import annotations
 from fractions import Fraction
 from typing import Any
 
-from fluxnet.studies.compare_result import Ability, Comparison, Facts, ModeYield
+from fluxnet.presenting.compare_supplies import CAUTION
+from fluxnet.studies.compare_result import Ability, Comparison, Facts, ModeYield, Supply
+from fluxnet.studies.compare_supply import per_litre, units_of
 from fluxnet.studies.staircase import Staircase
 
 __all__ = ["compare_record"]
@@ -20,9 +22,11 @@ def compare_record(comparison: Comparison) -> Record:
         "unit": comparison.unit,
         "modes": [mode.value for mode in comparison.modes],
         "reserve": comparison.reserve or None,
+        "common": list(comparison.common),
+        "biomass": comparison.biomass,
         "words": comparison.words,
         "second": comparison.second or None,
-        "variants": [_ability(a) for a in comparison.abilities],
+        "variants": [_ability(a, comparison) for a in comparison.abilities],
         "skipped": [{"variant": s.variant, "words": s.words} for s in comparison.skipped],
         "notes": list(comparison.notes),
         "uncertain": list(comparison.uncertain),
@@ -32,13 +36,15 @@ def compare_record(comparison: Comparison) -> Record:
         ],
         "draws": comparison.draws,
         "seed": comparison.seed if comparison.draws else None,
+        "caution": CAUTION,
     }
 
 
-def _ability(a: Ability) -> Record:
+def _ability(a: Ability, comparison: Comparison) -> Record:
     return {
         "name": a.name,
         "variant": a.variant,
+        "parts": list(a.parts),
         "substrate": a.substrate,
         "rank": a.rank,
         "tied": list(a.tied),
@@ -51,7 +57,31 @@ def _ability(a: Ability) -> Record:
         "reason": a.reason or None,
         "left_out": list(a.left_out),
         "optimum": None if a.facts is None else _facts(a.facts),
+        "supply": None if a.supply is None else _supply(a.supply, comparison),
         "staircase": None if a.staircase is None else _staircase(a.staircase),
+    }
+
+
+def _supply(supply: Supply, comparison: Comparison) -> Record:
+    units = units_of(comparison.network.basis)
+    grams = comparison.biomass
+    litre = None if grams is None else per_litre(supply, grams)
+    return {
+        **_rates(supply, units.moles, units.heat),
+        "per_litre": None if litre is None else _rates(litre, "mmol/L/h", "W/L"),
+    }
+
+
+def _rates(supply: Supply, unit: str, heat_unit: str) -> Record:
+    return {
+        "unit": unit,
+        "uptake": supply.uptake,
+        "product": supply.product,
+        "oxygen": supply.oxygen,
+        "carbon_dioxide": supply.carbon_dioxide,
+        "base": supply.base,
+        "heat": supply.heat,
+        "heat_unit": heat_unit,
     }
 
 

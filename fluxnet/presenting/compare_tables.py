@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterable
 
 from fluxnet.ground.table import Cell, Column, Table
-from fluxnet.studies.compare_result import Ability, Comparison
+from fluxnet.studies.compare_result import Ability, Comparison, Supply
 from fluxnet.studies.compare_words import holding_words
 
 __all__ = ["compare_data"]
@@ -48,7 +48,8 @@ def compare_data(comparison: Comparison) -> tuple[Table, ...]:
 _VARIANTS = (
     "rank", "name", "variant", "substrate", "per_mole", "per_carbon", "per_mass", "share",
     "ceiling", "held_back_by", "oxygen", "oxygen_most", "carbon_dioxide", "heat_kJ", "base",
-    "without_growth", "most_growth", "forced", "best_of_all", "tied", "reason",
+    "without_growth", "most_growth", "forced", "best_of_all", "tied", "reason", "uptake_rate",
+    "product_rate", "oxygen_rate", "carbon_dioxide_rate", "base_rate", "heat_rate",
 )  # fmt: skip
 _CARRIERS = ("variant", "carrier", "price", "price_low", "price_high", "surplus")
 _YIELDS = (
@@ -79,7 +80,14 @@ def _variant(a: Ability) -> tuple[Cell, ...]:
         heat,
         facts.base if facts is not None else None,
         a.without_growth, a.most_growth, a.forced, a.is_best_of_all, ", ".join(a.tied), a.reason,
+        *_supply(a.supply),
     )  # fmt: skip
+
+
+def _supply(s: Supply | None) -> tuple[Cell, ...]:
+    if s is None:
+        return (None,) * 6
+    return s.uptake, s.product, s.oxygen, s.carbon_dioxide, s.base, s.heat
 
 
 def _yields(a: Ability) -> Iterable[tuple[Cell, ...]]:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from fluxnet.ground.table import Align, Cell, Column, Table
 from fluxnet.presenting.screen import Block, Mood, Sentence
 from fluxnet.studies.compare_result import Ability
-from fluxnet.studies.staircase import StepKind
+from fluxnet.studies.staircase import Step, StepKind
 
 __all__ = ["staircase_blocks"]
 
@@ -37,7 +37,7 @@ def staircase_blocks(product: str, ability: Ability) -> tuple[Block, ...]:
         )
 
     rows = [row("electrons allow", ceiling, "every electron in the product")]
-    rows += [row(f"- {s.kind.value}", -float(s.lost) + 0.0, s.words) for s in stairs.steps]
+    rows += [row(_title(s), -float(s.lost) + 0.0, s.words) for s in stairs.steps]
     is_measured = bool(stairs.steps) and stairs.steps[-1].kind is StepKind.UNEXPLAINED
     rows.append(row("measured" if is_measured else "can be reached", float(stairs.reached), ""))
     notes = (
@@ -55,3 +55,10 @@ def staircase_blocks(product: str, ability: Ability) -> tuple[Block, ...]:
                      "wrong.", Mood.BAD)
         )  # fmt: skip
     return tuple(told)
+
+
+def _title(step: Step) -> str:
+    """What a step is; one up can only be to a value that was measured."""
+    if step.lost < 0:
+        return "+ more than can be reached"
+    return f"- {step.kind.value}"

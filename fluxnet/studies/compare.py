@@ -2,15 +2,17 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import replace
 from fractions import Fraction
 
 from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.progress import Progress, silent
 from fluxnet.network.model import Network
+from fluxnet.network.variant import BASE
 from fluxnet.studies.compare_ability import Work, find_ability, solve_all
 from fluxnet.studies.compare_cases import Case, find_cases, split_names
+from fluxnet.studies.compare_cause import Cause, find_cause
 from fluxnet.studies.compare_draws import SEED, Asked, Drawn, beats, draw_all, interval
 from fluxnet.studies.compare_family import Family, gather
 from fluxnet.studies.compare_modes import DEMANDS, Mode, find_demands
@@ -18,7 +20,8 @@ from fluxnet.studies.compare_rank import rank
 from fluxnet.studies.compare_reserve import read_reserve
 from fluxnet.studies.compare_result import Ability, Comparison, ModeYield, Odds
 from fluxnet.studies.compare_staircase import find_staircase
-from fluxnet.studies.compare_words import tell_comparison, tell_second
+from fluxnet.studies.compare_supply import read_biomass
+from fluxnet.studies.compare_words import best_and_second, tell_comparison, tell_second
 from fluxnet.studies.staircase import Staircase
 
 __all__ = ["compare"]
@@ -33,6 +36,7 @@ def compare(
     *,
     uptake: Fraction | float | str | None = None,
     beside: Sequence[str] = (),
+    biomass: Fraction | float | str | None = None,
     staircase: Sequence[str] | bool = False,
     measured: Fraction | float | str | None = None,
     draws: int = 200,
@@ -55,6 +59,9 @@ def compare(
         Without any: the unchanged model and each variant by itself.
     reserve
         What has to be kept back: ``"mu = 0.05"``, ``"X / glucose = 0.1"``, one or several.
+    biomass
+        A concentration of biomass, ``"20 g/L"`` or a number of g/L: what the best takes and
+        gives off is told per litre too.
     staircase
         Show where the yield goes: of the best (True), or of those named.
     measured
@@ -98,8 +105,10 @@ def compare(
         model, product, substrates, across, reserves,
         uptake=None if uptake is None else _positive(uptake, "an uptake"), beside=beside,
     )  # fmt: skip
+    grams = None if biomass is None else read_biomass(biomass, model.basis)
     families = gather(cases.members)
-    works = _works(families, several=len(substrates) > 1)
+    common = _common([case.parts for case in cases.members])
+    works = _works(families, common, several=len(substrates) > 1)
     modes = tuple(m for m in Mode if any(m in w.demands.modes for w in works))
     abilities: dict[str, Ability] = {}
     asked: list[Asked] = []
@@ -140,10 +149,40 @@ def compare(
         seed=seed,
         words="",
         second="",
+        common=tuple(name for names in common.values() for name in names),
+        biomass=grams,
     )
     return replace(
-        comparison, words=tell_comparison(comparison), second=tell_second(comparison)
+        comparison,
+        words=tell_comparison(comparison),
+        second=tell_second(comparison, _cause(families, by_name, ranked, product)),
     )
+
+
+def _cause(
+    families: Sequence[Family], by_name: Mapping[str, Work], ranked: Sequence[Ability], product: str
+) -> Cause | None:
+    """What the pathway of the second takes more than that of the best."""
+    pair = best_and_second(ranked)
+    if pair is None:
+        return None
+    works = [by_name[a.name] for a in pair]
+    if works[0].family != works[1].family:
+        return None
+    first, second = (w.member for w in works)
+    return find_cause(families[works[0].family], (first, pair[0]), (second, pair[1]), product)
+
+
+def _common(choices: Sequence[tuple[str, ...]]) -> dict[int, tuple[str, ...]]:
+    """Which lists have one name in all cases, and that name; none where that goes for all."""
+    lists = [set(names) for names in zip(*choices, strict=True)]
+    if all(len(names) == 1 for names in lists):
+        return {}
+    return {
+        k: tuple(name for name in names if name != BASE)
+        for k, names in enumerate(lists)
+        if len(names) == 1
+    }
 
 
 def _cut_short(drawn: Drawn, draws: int) -> tuple[str, ...]:
@@ -162,17 +201,23 @@ def _positive(value: Fraction | float | str, what: str) -> Fraction:
     return number
 
 
-def _works(families: Sequence[Family], *, several: bool) -> list[Work]:
+def _works(
+    families: Sequence[Family], common: Mapping[int, tuple[str, ...]], *, several: bool
+) -> list[Work]:
     return [
-        Work(
-            f,
-            member,
-            find_demands(member),
-            f"{member.case.substrate}: {member.case.variant}" if several else member.case.variant,
-        )
+        Work(f, member, find_demands(member), _name(member.case, common, several=several))
         for f, family in enumerate(families)
         for member in family.members
     ]
+
+
+def _name(case: Case, common: Mapping[int, tuple[str, ...]], *, several: bool) -> str:
+    """A case's variant without what all have; of several substrates with its own."""
+    name = case.variant
+    if common:
+        own = [part for k, part in enumerate(case.parts) if k not in common and part != BASE]
+        name = " * ".join(own) or BASE
+    return f"{case.substrate}: {name}" if several else name
 
 
 def _order(case: Case, cases: Sequence[Case]) -> int:
@@ -209,12 +254,14 @@ def _asked_stairs(
     """The names whose staircase is wanted."""
     if isinstance(staircase, bool):
         return {ranked[0].name} if staircase or told else set()
-    known = [a.name for a in ranked]
+    wanted: set[str] = set()
     for name in staircase:
-        if name not in known:
-            there = ", ".join(known[:12])
+        found = next((a.name for a in ranked if a.is_called(name)), None)
+        if found is None:
+            there = ", ".join(a.name for a in ranked[:12])
             raise MisuseError(f"no variant compared is called {name!r}: there are {there}")
-    return set(staircase)
+        wanted.add(found)
+    return wanted
 
 
 def _stairs(

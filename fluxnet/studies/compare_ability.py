@@ -21,6 +21,7 @@ from fluxnet.studies.compare_modes import DEMANDS, Demands, Mode, Question, ask,
 from fluxnet.studies.compare_obstacles import tell_obstacle
 from fluxnet.studies.compare_result import Ability, ModeYield
 from fluxnet.studies.compare_scan import Best, find_best, scan, solve_again
+from fluxnet.studies.compare_supply import find_supply
 
 __all__ = ["Work", "find_ability", "solve_all"]
 
@@ -86,18 +87,24 @@ def find_ability(
         last = bests.get(mode, last)
         yields.append(_yield(case.network, product, case.substrate, mode, last, asked))
     grown = _growth(work, bests.get(Mode.KEPT, bests[Mode.ALONE]), product)
+    facts = find_facts(work.member, work.demands, last, product)
+    supply = None
+    if facts is not None and case.uptake is not None:
+        supply = find_supply(case.network, case.substrate, product, yields[-1], facts)
     return Ability(
         name=work.name,
         variant=case.variant,
         substrate=case.substrate,
         yields=tuple(yields),
         ceiling=ceiling_of(case.network, product, case.substrate),
-        facts=find_facts(work.member, work.demands, last, product),
+        facts=facts,
         without_growth=grown[0],
         most_growth=grown[1],
         forced=grown[2],
         reason=_reason(work, last, product, is_dead=bests[Mode.ALONE].amount is None),
         left_out=work.demands.left_out,
+        parts=case.parts,
+        supply=supply,
     )
 
 

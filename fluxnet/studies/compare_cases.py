@@ -38,7 +38,8 @@ class Case:
     ``network`` has the other sources of carbon or electrons closed and the reserves as limits.
     ``uptake`` is that of the substrate in the unit of the basis, None where nothing gives one:
     then the case is worked out per mole, and limits in absolute units take no part.
-    ``reserved`` are the quantities of the reserves, ``closed`` the species closed.
+    ``reserved`` are the quantities of the reserves, ``closed`` the species closed. ``parts``
+    are the names that were chosen, one from each list.
     """
 
     variant: str
@@ -47,6 +48,7 @@ class Case:
     uptake: Fraction | None
     reserved: frozenset[Quantity]
     closed: tuple[str, ...] = ()
+    parts: tuple[str, ...] = ()
 
 
 @record
@@ -112,7 +114,8 @@ def find_cases(
     notes: dict[str, None] = {}
     seen: set[frozenset[str]] = set()
     closed: dict[str, None] = {}
-    for label in _labels(network, across):
+    for parts in _choices(network, across):
+        label = " * ".join(parts)
         changed, told = apply_variant(network, label)
         unknown = tuple(d for d in told if d.name is Name.UNKNOWN_VARIANT)
         if unknown:
@@ -140,7 +143,7 @@ def find_cases(
                 skipped.append(Skipped(name, f"`{shutting}` closes the substrate"))
                 continue
             open_ = {substrate, *(kept - set(substrates))}
-            case = _case(changed, substrate, open_, reserves, uptake)
+            case = replace(_case(changed, substrate, open_, reserves, uptake), parts=parts)
             members.append(case)
             closed |= dict.fromkeys(case.closed)
     if not members:
@@ -148,8 +151,8 @@ def find_cases(
         raise MisuseError(f"no combination is left to compare ({reasons})")
     others = [name for name in closed if name not in substrates]
     if others:
-        told = f"not taken up beside the substrate: {', '.join(others)} (--beside leaves it open)"
-        notes[told] = None
+        listed = ", ".join(others)
+        notes[f"not taken up beside the substrate: {listed} (--beside leaves it open)"] = None
     return Cases(tuple(members), tuple(skipped), tuple(notes))
 
 
@@ -179,11 +182,11 @@ def _near(network: Network, name: str) -> str:
     return f"; near to it are {', '.join(near)}" if near else ""
 
 
-def _labels(network: Network, across: Sequence[str]) -> Iterator[str]:
-    """Each combination as one product of names."""
+def _choices(network: Network, across: Sequence[str]) -> Iterator[tuple[str, ...]]:
+    """Each combination as the names chosen, one from each list."""
     if not across:
-        yield BASE
-        yield from (v.name for v in network.variants)
+        yield (BASE,)
+        yield from ((v.name,) for v in network.variants)
         return
     lists = [split_names(text) for text in across]
     if any(not name for names in lists for name in names):
@@ -193,8 +196,7 @@ def _labels(network: Network, across: Sequence[str]) -> Iterator[str]:
         count *= len(names)
     if count > _MOST:
         raise MisuseError(f"{count} combinations are more than {_MOST}: ask for fewer at a time")
-    for names in combinations(*lists):
-        yield " * ".join(names)
+    yield from combinations(*lists)
 
 
 def _reason(told: Sequence[Diagnostic]) -> str:

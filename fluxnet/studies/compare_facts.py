@@ -128,6 +128,7 @@ def find_facts(member: Member, demands: Demands, best: Best, product: str) -> Fa
         ),
         destinations=_destinations(releases, member, product),
         releases=tuple(releases.items()),
+        fluxes=tuple(zip(problem.columns, (fluxes / amount).tolist(), strict=True)),
     )
 
 

@@ -16,7 +16,7 @@ from fluxnet.studies.staircase import Staircase
 
 __all__ = [
     "Ability", "ByProduct", "Comparison", "Destination", "Facts", "Holding", "Limiting",
-    "ModeYield", "Odds",
+    "ModeYield", "Odds", "Supply",
 ]  # fmt: skip
 
 
@@ -106,6 +106,23 @@ class Facts:
     surplus: tuple[tuple[str, float], ...]
     destinations: tuple[Destination, ...]
     releases: tuple[tuple[str, float], ...]
+    fluxes: tuple[tuple[str, float], ...] = ()
+
+
+@record
+class Supply:
+    """What an optimum takes and gives off an hour, at the uptake it was found at.
+
+    In the units that :func:`fluxnet.studies.compare_supply.units_of` tells. Carbon dioxide and
+    heat are given off; None is what is not known.
+    """
+
+    uptake: float
+    product: float
+    oxygen: float | None
+    carbon_dioxide: float | None
+    heat: float | None
+    base: float | None
 
 
 @record
@@ -117,7 +134,8 @@ class Ability:
     no other betters in yield, oxygen, heat and energy at once. ``without_growth`` is the most
     product [mol/mol] with no growth at all, ``most_growth`` the most biomass, ``forced`` the
     least product there (each None where the model has no biomass). ``reason`` tells why no
-    product can be made.
+    product can be made. ``parts`` are the variants chosen, one from each list; ``name`` leaves
+    out those that all have. ``supply`` is None where nothing gives the uptake.
     """
 
     name: str
@@ -135,6 +153,14 @@ class Ability:
     tied: tuple[str, ...] = ()
     is_best_of_all: bool = False
     staircase: Staircase | None = None
+    parts: tuple[str, ...] = ()
+    supply: Supply | None = None
+
+    def is_called(self, name: str) -> bool:
+        """Whether this is its name, with or without what all variants have."""
+        head = f"{self.substrate}: "
+        full = f"{head}{self.variant}" if self.name.startswith(head) else self.variant
+        return name in (self.name, full)
 
     @property
     def final(self) -> ModeYield:
@@ -171,7 +197,8 @@ class Comparison:
     """What each variant can do, the best first.
 
     ``draws`` of the ``uncertain`` numbers were made with ``seed`` (0 where none is uncertain).
-    ``second`` tells in one sentence why the second best is second.
+    ``second`` tells in one sentence why the second best is second. ``common`` are the variants
+    that all have; ``biomass`` is in g/L, None where it was not given.
     """
 
     network: Network
@@ -188,6 +215,8 @@ class Comparison:
     seed: int
     words: str
     second: str
+    common: tuple[str, ...] = ()
+    biomass: float | None = None
 
     @property
     def counts_carbon(self) -> bool:
@@ -203,5 +232,5 @@ class Comparison:
         return makes and all(y.proven for a in self.abilities for y in a.yields)
 
     def find(self, name: str) -> Ability | None:
-        """The one of that name."""
-        return next((a for a in self.abilities if a.name == name), None)
+        """The one of that name, with or without what all variants have."""
+        return next((a for a in self.abilities if a.is_called(name)), None)

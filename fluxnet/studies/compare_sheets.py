@@ -28,7 +28,8 @@ class Sheets:
         if any(limit.quantity.kind is QuantityKind.RATIO for limit in network.limits):
             return _laid(network)
         species = tuple(map(id, network.species))
-        rows, low, high = (list(part) for part in self._kept(network, species, None))
+        own = self._kept(network, species, None)
+        rows, low, high = list(own[0]), list(own[1]), list(own[2])
         for limit in network.limits:
             own = self._kept(network, species, limit)
             rows += own[0]

@@ -2,11 +2,13 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from fractions import Fraction
 
+from fluxnet.studies.compare_cause import Cause, tell_cause
 from fluxnet.studies.compare_result import Ability, Comparison, Facts, Holding, Limiting
 
-__all__ = ["holding_words", "tell_comparison", "tell_second"]
+__all__ = ["best_and_second", "holding_words", "tell_comparison", "tell_second"]
 
 _LEAST = 0.005
 
@@ -33,19 +35,26 @@ def tell_comparison(comparison: Comparison) -> str:
     several = len({a.substrate for a in comparison.abilities}) > 1
     source = "" if several else f" of {best.substrate}"
     held = f"; held back by {holding_words(best.facts.holding)}" if best.facts else ""
+    most = f"With {' * '.join(comparison.common)}, most" if comparison.common else "Most"
     return (
-        f"Most {comparison.product}{source} {final.mode.value}: {names}{tie}, "
+        f"{most} {comparison.product}{source} {final.mode.value}: {names}{tie}, "
         f"{parts[0]} ({', '.join(parts[1:])}){share}{held}."
     ).replace(" ()", "")
 
 
-def tell_second(comparison: Comparison) -> str:
-    """Why the second best is second; empty where there is none that makes product."""
-    able = [a for a in comparison.abilities if a.final.moles]
+def best_and_second(abilities: Sequence[Ability]) -> tuple[Ability, Ability] | None:
+    """The best, and the first below it that makes product."""
+    able = [a for a in abilities if a.final.moles]
     below = [a for a in able if a.rank > 1]
-    if not below:
+    return (able[0], below[0]) if below else None
+
+
+def tell_second(comparison: Comparison, cause: Cause | None = None) -> str:
+    """Why the second best is second; empty where there is none that makes product."""
+    pair = best_and_second(comparison.abilities)
+    if pair is None:
         return ""
-    best, second = able[0], below[0]
+    best, second = pair
     moles, others = best.final.moles, second.final.moles
     assert moles is not None
     assert others is not None
@@ -54,21 +63,22 @@ def tell_second(comparison: Comparison) -> str:
     else:
         assert second.final.carbon is not None
         gap = f"{float(best.final.carbon - second.final.carbon):.3g} C-mol/C-mol less"
-    reasons: list[str] = []
+    shared = [second.name, *second.tied]
+    one = "it" if len(shared) == 1 else "the first of them"
+    reasons = [] if cause is None else tell_cause(cause, one)
     if best.facts is not None and second.facts is not None:
         reasons += _destinations(best.facts, second.facts, second.substrate)
         reasons += _shortage(best, second, second.facts)
     why = f": {'; '.join(reasons)}" if reasons else ""
-    shared = [second.name, *second.tied]
     place = "second" if second.rank == 2 else "next"
     verb = "is" if len(shared) == 1 else "are"
     return f"{_listed(shared)} {verb} {place}, {gap} than {best.name}{why}."
 
 
 def _listed(names: list[str]) -> str:
-    """Some names; of many the first three."""
-    if len(names) > 5:
-        return f"{', '.join(names[:3])} and {len(names) - 3} more"
+    """Some names; of many the first two."""
+    if len(names) > 3:
+        return f"{', '.join(names[:2])} and {len(names) - 2} more"
     return " and ".join([*([", ".join(names[:-1])] if names[1:] else []), names[-1]])
 
 
@@ -85,8 +95,9 @@ def _destinations(best: Facts, second: Facts, substrate: str) -> list[str]:
     found: list[str] = []
     for gain, place in ranked:
         verb = "are burnt with oxygen" if _is_oxygen(place.name, second) else f"end in {place.name}"
-        found.append(f"{_percent(gain)} more of the electrons of {substrate} {verb}")
-    return found
+        what = "" if found else f" more of the electrons of {substrate}"
+        found.append(f"{_percent(gain)}{what} {verb}")
+    return [" and ".join(found)] if found else []
 
 
 def _is_oxygen(name: str, facts: Facts) -> bool:
@@ -107,7 +118,10 @@ def _shortage(best: Ability, second: Ability, facts: Facts) -> list[str]:
     gap = float(best.final.moles - second.final.moles) / first.gain
     if best.substrate != second.substrate or gap <= 0:
         return [f"held back by {first.name}, one more of which gives {first.gain:.3g} mol"]
-    return [f"it would need about {gap:.2g} {first.name} more per mol {second.substrate}"]
+    return [
+        f"about {gap:.2g} {first.name} more per mol {second.substrate}, as a gift, would make up "
+        "for it"
+    ]
 
 
 def holding_words(holding: tuple[Holding, ...], *, short: bool = False) -> str:

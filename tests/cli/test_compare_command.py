@@ -158,3 +158,73 @@ def test_the_python_face_shows_itself_and_gives_a_frame() -> None:
     assert list(answer.to_frame()["name"]) == ["base", "anaerobic"]
     assert answer.to_frame("by_products" if "by_products" in answer.tables else None) is not None
     assert "base, in detail" in str(answer)
+
+
+def test_what_the_reactor_supplies_is_told_an_hour_and_per_litre(
+    capsys: pytest.CaptureFixture[str],
+) -> None:
+    alone = [*ASK, "--across", "base"]
+    run(alone)
+    assert '(--biomass "20 g/L": per litre)' in " ".join(capsys.readouterr().out.split())
+    run([*alone, "--biomass", "20 g/L"])
+    shown = " ".join(capsys.readouterr().out.split())
+    assert "At glucose in 10 mmol/g/h: 15.6 mmol/g/h product, oxygen 5.4" in shown
+    assert "with 20 g/L of biomass 312 mmol/L/h product, oxygen 108" in shown
+    assert " W/L" in shown
+
+    (first, *_) = document([*alone, "--biomass", "20 g/L"], capsys)["variants"]  # type: ignore[misc]
+    assert first["supply"]["per_litre"]["oxygen"] == pytest.approx(108)
+
+
+def test_more_than_can_be_reached_is_called_so(capsys: pytest.CaptureFixture[str]) -> None:
+    run([*ASK, "--measured", "1.7"])
+    shown = capsys.readouterr().out
+
+    assert "+ more than can" in shown
+    assert "not explained" not in shown
+
+
+def test_a_name_is_known_with_what_all_have_and_without(
+    capsys: pytest.CaptureFixture[str],
+) -> None:
+    common = [*ASK, "--across", "base|airless", "--across", "leaky"]
+    for name in ("airless", "airless * leaky"):
+        assert run([*common, "--detail", name, "--staircase", name]) == Exit.SOUND
+        shown = capsys.readouterr().out
+        assert "With leaky, most glycerol" in " ".join(shown.split())
+        assert "airless, in detail" in shown
+        assert "Where the yield goes: airless" in shown
+
+
+def test_two_dozen_variants_are_answered_on_one_screen(
+    folder: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    example = Path(__file__).parents[2] / "examples" / "2-four-ways-to-one-acid" / "sw9.flux"
+    ask = [
+        "compare", str(example), "--product", "3-hydroxypropionate", "--from", "glucose|xylose",
+        "--across", "malonyl|aspartate|alanine|glycerol", "--across", "sealed|tank|stirred",
+        "--reserve", "mu=0.04", "--biomass", "20 g/L", "--draws", "20",
+    ]  # fmt: skip
+    assert run(ask) == Exit.SOUND
+    lines = capsys.readouterr().out.splitlines()
+
+    assert len(lines) <= 48
+    assert max(map(len, lines)) <= 80
+    assert sum(bool(re.match(r"\d+\*? +(glucose|xylose) ", line)) for line in lines) == 20
+    assert run([*ask, "--all"]) == Exit.SOUND
+    shown = capsys.readouterr().out
+    assert "How sure" in shown
+    assert "more: --all" not in shown
+
+
+def test_the_cause_is_told_with_what_leaves_beside(capsys: pytest.CaptureFixture[str]) -> None:
+    example = Path(__file__).parents[2] / "examples" / "2-four-ways-to-one-acid" / "sw9.flux"
+    ask = [
+        "compare", str(example), "--product", "3-hydroxypropionate", "--from", "xylose",
+        "--across", "alanine|aspartate", "--across", "tank", "--reserve", "mu=0.04",
+        "--draws", "0",
+    ]  # fmt: skip
+    second = document(ask, capsys)["second"]
+
+    assert "it spends 1 ATP more per mol 3-hydroxypropionate" in str(second)
+    assert "more ATP for that comes from ack, with acetate" in str(second)
