@@ -25,10 +25,10 @@ def is_point(low: float, high: float) -> bool:
 
     Examples
     --------
-    >>> is_point(2.0, 2.0), is_point(2.0, 2.1)
-    (True, False)
+    >>> is_point(2.0, 2.0), is_point(2.0, 2.1), is_point(0.0, float("inf"))
+    (True, False, False)
     """
-    return high - low <= 1e-6 * max(1.0, abs(low), abs(high))
+    return bool(np.isfinite(high - low)) and high - low <= 1e-6 * max(1.0, abs(low), abs(high))
 
 
 def estimate_rates(

@@ -181,3 +181,19 @@ def test_an_aim_without_an_end_is_mended_by_the_line_that_is_told() -> None:
     assert mended is not None
 
     assert best(mended, maximise="ethanol").status is SolveStatus.OPTIMAL
+
+
+def test_a_flux_without_an_end_is_not_determined_at_an_optimum() -> None:
+    # there and back go round beside free, so that all three can be of any size
+    text = TEXT.replace("inside pyruvate", "inside pyruvate, one, other").replace(
+        "compartment m",
+        "    there : one -> other\n    back : other -> one\n    free : one <-> other\ncompartment m",
+    )
+    circled = read_model_text(text).network
+    assert circled is not None
+
+    found = {flux.reaction: flux for flux in best(circled, maximise="ethanol").fluxes}
+
+    assert found["free"].kind.value == "undetermined"
+    assert found["there"].kind.value == "undetermined"
+    assert found["g"].kind.value == "determined"
