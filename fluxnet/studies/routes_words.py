@@ -63,7 +63,9 @@ def why_no_product(
     made_elsewhere
         Whether routes that do without the substrate make it.
     """
-    from fluxnet.studies.compare_obstacles import tell_obstacle  # graphs, for this answer alone
+    # graphs and a search, for this answer alone
+    from fluxnet.studies.compare_obstacles import tell_obstacle
+    from fluxnet.studies.routes_lacking import tell_lacking
 
     head = f"No route from {substrate} makes {product}"
     if made_elsewhere:
@@ -72,5 +74,5 @@ def why_no_product(
     opened = any(species.name in named for species in system.network.carriers)
     why = "" if opened else tell_obstacle(system.network, product)
     if not why or why.startswith("the limits and demands"):
-        return f"{head}."
-    return f"{head}: {why}."
+        why = tell_lacking(system, substrate, product)
+    return f"{head}: {why}." if why else f"{head}."

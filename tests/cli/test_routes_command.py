@@ -211,6 +211,15 @@ compartment maintenance
         assert "No route from glucose makes succinate: frd, which makes it, cannot run" in shown
         assert "NADH" in shown
     assert run(["routes", "short.flux", "--to", "succinate", "--open", "NADH"]) == Exit.SOUND
+    capsys.readouterr()
+    # ATP set free by --open or --drain does not help: it is NADH that no route makes enough of
+    for more in (["--open", "ATP"], ["--drain", "ATP"], ["--open", "ATP", "--best", "2"]):
+        assert run(["routes", "short.flux", "--to", "succinate", *more]) == Exit.FINDING
+        shown = " ".join(capsys.readouterr().out.split())
+        assert (
+            "No route from glucose makes succinate: NADH would have to be spent for it, and no "
+            "route makes any." in shown
+        )
 
 
 def test_python_has_the_same_routes(capsys: pytest.CaptureFixture[str]) -> None:
