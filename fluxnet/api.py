@@ -313,8 +313,8 @@ def frontier(
     r"""The most (or least) y for each x: all break points, exact.
 
     ``options`` are those of :func:`fluxnet.studies.frontier.find_frontier`: ``across``,
-    ``least``, ``over``, ``start``, ``stop``. ``figure`` is a file that it is drawn into; one
-    that exists is overwritten.
+    ``least``, ``over``, ``start``, ``stop``, ``only``. ``figure`` is a file that it is drawn
+    into; one that exists is overwritten.
 
     Examples
     --------

@@ -23,6 +23,7 @@ EXAMPLES = """What does more of one thing cost of another?
   fluxnet frontier model.flux mu ethanol --across "base | anaerobic"
   fluxnet frontier model.flux ethanol --over oxygen --from 0 --to 8
   fluxnet frontier model.flux mu --over PO --from 0.8 --to 1.6
+  fluxnet frontier model.flux mu ethanol --only glucose   no other carbon source is taken up
   fluxnet frontier model.flux mu ethanol --figure trade.svg
 """
 
@@ -48,6 +49,10 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         help="where NAME, or without --over X, begins",
     )  # fmt: skip
     parser.add_argument("--to", metavar="B", type=float, dest="stop", help="where it ends")
+    parser.add_argument(
+        "--only", metavar="SOURCE", action="append", default=[],
+        help="take up no carbon source but this; given twice, but these",
+    )  # fmt: skip
     parser.add_argument(
         "--figure", metavar="FILE", type=Path, help="draw it: FILE.svg, .png or .pdf"
     )
@@ -75,7 +80,7 @@ def run(arguments: argparse.Namespace) -> int:
             result = find_frontier(
                 model.network, arguments.x, arguments.y, across=arguments.across,
                 least=arguments.least, over=arguments.over, start=arguments.start,
-                stop=arguments.stop, progress=progress,
+                stop=arguments.stop, only=arguments.only, progress=progress,
             )  # fmt: skip
     except InputError as fault:
         told = (*model.diagnostics, *fault.diagnostics)

@@ -1,7 +1,8 @@
 """How every figure looks, and how it is written: the same bytes for the same input.
 
-Colours are those of Okabe & Ito (2008, from memory), which the colour-blind can tell apart;
-each comes with a dash and a marker of its own, so that colour is never the only sign.
+Colours are those of Okabe & Ito (2008, from memory), which the colour-blind can tell apart, with
+grey for their yellow; each comes with a dash and a marker of its own, so that colour is never
+the only sign.
 """
 
 from __future__ import annotations
@@ -11,7 +12,6 @@ from contextlib import contextmanager
 from enum import Enum
 from html import escape
 from pathlib import Path
-from textwrap import fill
 from typing import TYPE_CHECKING, Any
 
 from fluxnet.ground.errors import MisuseError
@@ -23,15 +23,19 @@ if TYPE_CHECKING:
     from matplotlib.figure import Figure
 
 __all__ = [
-    "INK", "QUIET", "Look", "look_of", "new_figure", "refuse_figure", "spread", "styled",
-    "write_figure",
+    "INK", "QUIET", "WIDTH", "Look", "inches_of", "look_of", "new_figure", "refuse_figure",
+    "size_of", "spread", "styled", "wrapped", "write_figure",
 ]  # fmt: skip
 
 INK, QUIET = "#222222", "#666666"
-_COLOURS = ("#0072B2", "#D55E00", "#009E73", "#CC79A7", "#E69F00", "#56B4E9", "#000000")
+_COLOURS = ("#0072B2", "#D55E00", "#009E73", "#CC79A7", "#E69F00", "#56B4E9", "#000000", "#7A7A7A")
 _DASHES = ("solid", (0, (6, 2)), (0, (2, 1.5)), (0, (7, 2, 1.5, 2)), (0, (1, 1)))
 _MARKERS = ("o", "s", "^", "D", "v", "P", "X")
-_WIDTH, _HEIGHT = 7.2, 4.8
+WIDTH, _HEIGHT = 7.2, 4.8
+_LEFT, _RIGHT, _EDGE = 0.756, 0.25, 0.144
+_LEAST_WIDTH, _LEAST_HEIGHT = 4.0, 2.9
+"""Inches: the figure as a rule; what stays free of the axes; and their least size."""
+_TITLE_SIZE, _TOLD_SIZE, _FOOT_SIZE = 12.5, 9, 7.2
 _STYLE: Any = {
     "font.family": "sans-serif",
     "font.sans-serif": ["DejaVu Sans"],
@@ -118,24 +122,72 @@ def styled() -> Iterator[None]:
         yield
 
 
-def new_figure(
-    title: str, finding: str, footnote: str, gutter: float = 0.0
-) -> tuple[Figure, Axes]:
-    """A figure with its title, one sentence that says what is seen, and a note at its foot.
+def inches_of(text: str, size: float, *, bold: bool = False) -> float:
+    """The width of a line of text in a figure."""
+    from matplotlib.font_manager import FontProperties
+    from matplotlib.textpath import TextPath
 
-    ``gutter`` is the part of its width that is kept free beside the axes.
+    if not text.strip():
+        return 0.0
+    font = FontProperties(family="DejaVu Sans", weight="bold" if bold else "normal")
+    return float(TextPath((0, 0), text, size=size, prop=font).get_extents().x1) / 72
+
+
+def wrapped(text: str, size: float, width: float, *, bold: bool = False) -> list[str]:
+    """A text in lines that are not wider than so many inches, but for a single longer word."""
+    lines: list[str] = []
+    for word in text.split():
+        longer = f"{lines[-1]} {word}" if lines else word
+        if lines and inches_of(longer, size, bold=bold) <= width:
+            lines[-1] = longer
+        else:
+            lines.append(word)
+    return lines
+
+
+def size_of(axes: Axes) -> tuple[float, float]:
+    """Width and height of the axes in inches."""
+    box = axes.get_position()
+    width, height = axes.get_figure().get_size_inches()  # type: ignore[union-attr]
+    return float(box.width * width), float(box.height * height)
+
+
+def new_figure(
+    title: str, finding: str, footnote: str, gutter: float = 0.0, height: float = 0.0
+) -> tuple[Figure, Axes]:
+    """A figure with its title, some sentences that say what is seen, and a note at its foot.
+
+    ``gutter`` is the part of the usual width that is kept free beside the axes, and ``height``
+    the least height of the axes [inches]: where they need more the figure is larger than usual.
     """
     from matplotlib.figure import Figure
 
-    figure = Figure(figsize=(_WIDTH, _HEIGHT))
-    told, foot = fill(finding, 108), fill(footnote, 126)
-    lines = told.count("\n") + 1
-    top = 0.955 - 0.045 * lines
-    bottom = 0.165 + 0.032 * foot.count("\n")
-    axes = figure.add_axes((0.105, bottom, 0.86 - gutter, top - 0.055 - bottom))
-    figure.text(0.02, 0.975, title, fontsize=12.5, fontweight="bold", va="top")
-    figure.text(0.02, 0.915, told, fontsize=9, color=INK, va="top", linespacing=1.35)
-    figure.text(0.02, 0.02, foot, fontsize=7.2, color=QUIET, va="bottom", linespacing=1.3)
+    gutter *= WIDTH
+    width = max(WIDTH, _LEFT + _LEAST_WIDTH + gutter + _RIGHT)
+    room = width - 2 * _EDGE
+    heads = wrapped(title, _TITLE_SIZE, room, bold=True)
+    told = wrapped(finding, _TOLD_SIZE, room)
+    foot = wrapped(footnote, _FOOT_SIZE, room)
+    above = _EDGE + 0.26 * len(heads) + 0.18 * len(told) + 0.2
+    below = 0.67 + 0.13 * len(foot)
+    tall = max(_HEIGHT, above + max(_LEAST_HEIGHT, height) + below)
+    figure = Figure(figsize=(width, tall))
+    axes = figure.add_axes((
+        _LEFT / width, below / tall, (width - _LEFT - gutter - _RIGHT) / width,
+        1 - (above + below) / tall,
+    ))  # fmt: skip
+    left = _EDGE / width
+    figure.text(
+        left, 1 - _EDGE / tall, "\n".join(heads), fontsize=_TITLE_SIZE, fontweight="bold", va="top"
+    )
+    figure.text(
+        left, 1 - (_EDGE + 0.26 * len(heads) + 0.03) / tall, "\n".join(told), fontsize=_TOLD_SIZE,
+        color=INK, va="top", linespacing=1.35,
+    )  # fmt: skip
+    figure.text(
+        left, 0.1 / tall, "\n".join(foot), fontsize=_FOOT_SIZE, color=QUIET, va="bottom",
+        linespacing=1.3,
+    )  # fmt: skip
     axes.grid(visible=True, color="#E4E4E4", linewidth=0.6)
     axes.set_axisbelow(True)
     return figure, axes

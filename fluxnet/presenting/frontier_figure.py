@@ -6,13 +6,8 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from fluxnet.presenting.figures import look_of, new_figure, styled, write_figure
-from fluxnet.presenting.frontier_labels import (
-    are_apart,
-    list_lines,
-    name_lines,
-    name_of,
-    note_breaks,
-)
+from fluxnet.presenting.frontier_labels import list_lines, note_breaks, room_of
+from fluxnet.studies.frontier_best import tell_stretches
 from fluxnet.studies.frontier_result import Curve, Frontier
 
 if TYPE_CHECKING:
@@ -30,18 +25,19 @@ def draw_frontier(result: Frontier, path: Path, *, force: bool = False) -> None:
         Where the file cannot be written (:func:`fluxnet.presenting.figures.refuse_figure`).
     """
     title = f"{result.extreme.value.capitalize()} {result.y.name} at each {result.x.name}"
+    common = " * ".join(result.common)
+    title += f", {common}" if common else ""
+    finding = _finding(result, common)
     foot = (
         f"Lines: the {result.extreme.value} {result.y.name} that the model allows at each "
         f"{result.x.name}; marks: break points, where what limits changes. Optima of the model "
         "as written: errors of its parameters are not shown."
     )
     groups = _alike([c for c in result.curves if c.points])
-    letters = max((len(line) for group in groups for line in name_of(group)), default=0)
     several = len(groups) > 1
-    apart = several and are_apart(groups)
     with styled():
-        gutter = 0.0 if apart or not several else 0.1 + 0.0118 * letters
-        figure, axes = new_figure(title, result.words, foot, gutter)
+        gutter, height = room_of(groups) if several else (0.0, 0.0)
+        figure, axes = new_figure(title, finding, foot, gutter, height)
         for k, group in enumerate(groups):
             look = look_of(k)
             xs, ys = zip(*group[0].line, strict=True)
@@ -53,16 +49,21 @@ def draw_frontier(result: Frontier, path: Path, *, force: bool = False) -> None:
                 linestyle="none", marker=look.marker, markersize=5.5, color=look.colour,
                 markeredgecolor="white", markeredgewidth=0.8, zorder=4, clip_on=False,
             )  # fmt: skip
-        _frame(axes, groups, 0.018 * letters if apart else 0.0)
-        if apart:
-            name_lines(axes, groups)
-        elif several:
+        _frame(axes, groups)
+        if several:
             list_lines(axes, groups)
         elif groups:
             note_breaks(axes, groups[0][0])
         axes.set_xlabel(result.x.titled)
         axes.set_ylabel(result.y.titled)
-        write_figure(figure, path, title, result.words, force=force)
+        write_figure(figure, path, title, finding, force=force)
+
+
+def _finding(result: Frontier, common: str) -> str:
+    """What is seen, without the variants that the title names, and which line is best where."""
+    words = result.words.removeprefix(f"With {common}: ")
+    choice = tell_stretches(result.stretches, result.x.name, result.x.unit, ties=False)
+    return f"{words[:1].upper()}{words[1:]} {choice}".rstrip()
 
 
 def _alike(curves: list[Curve]) -> list[list[Curve]]:
@@ -87,15 +88,16 @@ def _same(one: tuple[tuple[float, float], ...], other: tuple[tuple[float, float]
     )
 
 
-def _frame(axes: Axes, groups: list[list[Curve]], names: float) -> None:
-    """Both axes from zero where that wastes less than half of the room; room for the names."""
+def _frame(axes: Axes, groups: list[list[Curve]]) -> None:
+    """Both axes from zero where that wastes less than half of the room; x ends with the lines."""
     points = [p for group in groups for p in group[0].line]
     for values, set_ends, beyond in (
-        ([x for x, _ in points], axes.set_xlim, 0.04 + names),
+        ([x for x, _ in points], axes.set_xlim, 0.0),
         ([y for _, y in points], axes.set_ylim, 0.08),
     ):
         low, high = min(values), max(values)
         low = 0.0 if 0 < low < 0.6 * high else low
         high = 0.0 if low < 0 and 0.6 * low < high < 0 else high
         room = (high - low) or abs(high) or 1.0
+        beyond = beyond if high > low else 0.05
         set_ends(low - (0.0 if low == 0 else 0.05) * room, high + beyond * room)

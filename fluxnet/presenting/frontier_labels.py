@@ -2,48 +2,52 @@
 
 from __future__ import annotations
 
-from textwrap import wrap
 from typing import TYPE_CHECKING
 
 import numpy as np
 
-from fluxnet.presenting.figures import INK, QUIET, look_of, spread
+from fluxnet.presenting.figures import (
+    INK,
+    QUIET,
+    WIDTH,
+    inches_of,
+    look_of,
+    size_of,
+    spread,
+    wrapped,
+)
 from fluxnet.studies.frontier_result import Curve
 
 if TYPE_CHECKING:
     from matplotlib.axes import Axes
 
-__all__ = ["are_apart", "list_lines", "name_lines", "name_of", "note_breaks"]
+__all__ = ["list_lines", "name_of", "note_breaks", "room_of"]
 
 Group = list[Curve]
 """Curves that lie upon one another, drawn as one line."""
 
 _LINE = 0.05
 """The height of a line of text, as a part of the axes."""
-_LETTER = 0.019
-"""The width of a letter of a name."""
+_NAME_SIZE = 9
+_NAME_LINE, _NAME_GAP = 0.16, 0.11
+_WIDEST = 2.4
+_SAMPLE = 0.58
+"""Inches: a line of a name, what lies between two names, the widest name, and the piece of its
+line before it."""
 _MOST_NOTES = 6
 
 
 def name_of(group: Group) -> list[str]:
-    """The name of curves that are one line, broken into lines."""
-    return wrap(", ".join(c.label for c in group), 26, break_long_words=False) or [""]
+    """The name of curves that are one line, broken into lines behind commas and blanks."""
+    return wrapped(", ".join(c.label for c in group), _NAME_SIZE, _WIDEST, bold=True) or [""]
 
 
-def are_apart(groups: list[Group]) -> bool:
-    """Whether the ends of the lines leave room for a name beside each."""
-    points = np.array([point for group in groups for point in group[0].line])
-    size = np.ptp(points, axis=0)
-    size[size == 0] = 1.0
-    ends = np.array([group[0].line[-1] for group in groups]) / size
-    heights = [_LINE * (len(name_of(group)) + 0.4) for group in groups]
-    widths = [_LETTER * max(map(len, name_of(group))) + 0.04 for group in groups]
-    return all(
-        abs(ends[i][0] - ends[k][0]) > max(widths[i], widths[k])
-        or abs(ends[i][1] - ends[k][1]) > (heights[i] + heights[k]) / 2
-        for i in range(len(groups))
-        for k in range(i)
-    )
+def room_of(groups: list[Group]) -> tuple[float, float]:
+    """The room for the names beside the axes: part of a figure's usual width, height [inches]."""
+    names = [name_of(group) for group in groups]
+    widest = max(inches_of(line, _NAME_SIZE, bold=True) for name in names for line in name)
+    lines = sum(map(len, names))
+    return (_SAMPLE + widest) / WIDTH, lines * _NAME_LINE + len(names) * _NAME_GAP
 
 
 def _place(axes: Axes, x: float, y: float) -> tuple[float, float]:
@@ -52,41 +56,28 @@ def _place(axes: Axes, x: float, y: float) -> tuple[float, float]:
     return (x - left) / (right - left), (y - low) / (high - low)
 
 
-def name_lines(axes: Axes, groups: list[Group]) -> None:
-    """Each line's name beside its end."""
-    for k, group in enumerate(groups):
-        x, y = _place(axes, *group[0].line[-1])
-        height = min(max(_clear(axes, groups, k, x, y), 0.045), 0.97)
-        look = look_of(k)
-        axes.annotate(
-            "\n".join(name_of(group)), (x, y), (x + 0.018, height),
-            xycoords="axes fraction", textcoords="axes fraction",
-            color=look.colour, fontsize=9, va="center", fontweight="bold",
-            annotation_clip=False, linespacing=1.1,
-            bbox={"facecolor": "white", "edgecolor": "none", "alpha": 0.8, "pad": 0.8},
-        )  # fmt: skip
-
-
 def list_lines(axes: Axes, groups: list[Group]) -> None:
     """The lines' names in a column beside the axes, each with a piece of its line.
 
     They stand in the order in which the lines do where these are farthest apart.
     """
-    order = _order(groups)
-    height = 0.98
-    for k in order:
+    width, tall = size_of(axes)
+    top = tall
+    for k in _order(groups):
         look, words = look_of(k), name_of(groups[k])
-        middle = height - _LINE * len(words) / 2
+        middle = (top - _NAME_LINE * len(words) / 2) / tall
         axes.plot(
-            [1.03, 1.065, 1.1], [middle] * 3, transform=axes.transAxes, clip_on=False,
+            [1 + part / width for part in (0.14, 0.3, 0.46)], [middle] * 3,
+            transform=axes.transAxes, clip_on=False,
             color=look.colour, linestyle=look.dash, linewidth=1.8, marker=look.marker,
             markevery=[1], markersize=5.5, markeredgecolor="white", markeredgewidth=0.8,
         )  # fmt: skip
         axes.text(
-            1.12, middle, "\n".join(words), transform=axes.transAxes, color=look.colour,
-            fontsize=9, fontweight="bold", va="center", linespacing=1.1,
+            1 + _SAMPLE / width, middle, "\n".join(words), transform=axes.transAxes,
+            color=look.colour, fontsize=_NAME_SIZE, fontweight="bold", va="center",
+            linespacing=1.1,
         )  # fmt: skip
-        height -= _LINE * len(words) + 0.03
+        top -= _NAME_LINE * len(words) + _NAME_GAP
 
 
 def _order(groups: list[Group]) -> list[int]:
@@ -96,20 +87,6 @@ def _order(groups: list[Group]) -> list[int]:
     heights = np.array([np.interp(every, x, y, right=min(y)) for x, y in lines])
     at = int(np.argmax(heights.std(axis=0)))
     return sorted(range(len(groups)), key=lambda k: (-heights[k, at], k))
-
-
-def _clear(axes: Axes, groups: list[Group], own: int, x: float, height: float) -> float:
-    """The height of a label that would lie upon another line: then below, or above, that."""
-    width = 0.025 + _LETTER * max(map(len, name_of(groups[own])))
-    for group in (g for k, g in enumerate(groups) if k != own):
-        xs, ys = zip(*(_place(axes, *point) for point in group[0].line), strict=True)
-        across = np.linspace(x + 0.01, x + width, 12)
-        across = across[(across >= xs[0]) & (across <= xs[-1])]
-        passed = np.interp(across, xs, ys)
-        if passed.size and (np.abs(passed - height) < 0.045).any():
-            below = float(passed.min()) - 0.055
-            return below if below > 0.05 else float(passed.max()) + 0.055
-    return height
 
 
 def note_breaks(axes: Axes, curve: Curve) -> None:

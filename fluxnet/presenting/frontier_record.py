@@ -29,6 +29,20 @@ def frontier_record(result: Frontier) -> Record:
         },
         "slope_unit": result.slope_unit,
         "words": result.words,
+        "common": list(result.common),
+        "best": [
+            {
+                "from": s.low,
+                "to": s.high,
+                "from_exact": s.low_exact,
+                "to_exact": s.high_exact,
+                "labels": list(s.labels),
+                "alone": s.alone,
+            }
+            for s in result.stretches
+        ],
+        "choice": result.choice,
+        "notes": list(result.notes),
         "curves": [_curve(curve) for curve in result.curves],
         "skipped": [{"variant": name, "words": words} for name, words in result.skipped],
     }

@@ -17,6 +17,9 @@ def frontier_screen(result: Frontier) -> tuple[Block, ...]:
     found = [c for c in result.curves if c.points]
     mood = Mood.GOOD if result.is_sound else Mood.BAD
     blocks: list[Block] = [Sentence(result.words, mood, verdict=True)]
+    if result.choice:
+        blocks.append(Sentence(result.choice, mood))
+    blocks += [Sentence(note, Mood.DOUBTFUL) for note in result.notes]
     if len(result.curves) > 1:
         blocks += [_curve_words(curve) for curve in result.curves]
     blocks += [

@@ -18,10 +18,13 @@ from fluxnet.solving.parametric_proof import Break, prove_path
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.proof import Proof, exact_sums
 from fluxnet.solving.unbounded import explain_unbounded
+from fluxnet.solving.words import number_words
 from fluxnet.studies.aim_problem import aim_cost, open_carriers
 from fluxnet.studies.aims import Aim, Sense
 from fluxnet.studies.frontier_axis import Axis, read_axis, refuse_same, slope_unit
+from fluxnet.studies.frontier_best import find_stretches, tell_stretches
 from fluxnet.studies.frontier_cases import common_parts, find_cases, first_that_knows, read_axes
+from fluxnet.studies.frontier_notes import shut_others, tell_forced_uptake, tell_sources
 from fluxnet.studies.frontier_over import find_moved_limit, read_setting, set_to, with_room
 from fluxnet.studies.frontier_result import (
     Curve,
@@ -49,6 +52,7 @@ def find_frontier(
     over: str | None = None,
     start: float | None = None,
     stop: float | None = None,
+    only: Sequence[str] = (),
     progress: Progress = silent,
 ) -> Frontier:
     """The most (least) y for each x, as break points proven in exact arithmetic.
@@ -69,6 +73,8 @@ def find_frontier(
         there is one curve at each end of that range, and one in the middle.
     start, stop
         Without ``over``: the part of x that is asked for.
+    only
+        The carbon sources that may be taken up; all others are shut. Empty: as the model has it.
 
     Raises
     ------
@@ -96,8 +102,9 @@ def find_frontier(
     extreme = Extreme.LEAST if least else Extreme.MOST
     if y is None and over is None:
         raise MisuseError("name two quantities, or one and what is moved: --over LIMIT")
-    cases, skipped = find_cases(network, across)
-    common = " * ".join(common_parts(cases))
+    found, skipped = find_cases(network, across)
+    common = common_parts(found)
+    cases = tuple((name, label, shut_others(case, only)) for name, label, case in found)
     setting = None
     if over is not None:
         setting = read_setting(over, first_that_knows(cases, over), start, stop)
@@ -109,7 +116,7 @@ def find_frontier(
             raise MisuseError(f"the range from {start:g} to {stop:g} is empty")
     if setting is not None and len(frame) > 1:
         cases = tuple(
-            (variant, f"{label}, {words}" if label else words, there)
+            (variant, f"{label}, {words}" if len(found) > 1 else words, there)
             for variant, label, case in cases
             for value in (setting.start, (setting.start + setting.stop) / 2, setting.stop)
             for there, words in (set_to(case, setting, value),)
@@ -135,8 +142,16 @@ def find_frontier(
         else:
             curve = _trade(case, axes[0], axes[-1], extreme, start, stop, unit)
         curves.append(replace(curve, variant=variant, label=label or variant))
-    words = tell_curves(curves, lower.name, upper.name, extreme, common)
-    return Frontier(lower, upper, extreme, setting, tuple(curves), unit, words, skipped)
+    words = tell_curves(curves, lower.name, upper.name, extreme, " * ".join(common))
+    is_choice = setting is None or len(frame) == 1
+    stretches = find_stretches(curves, extreme) if is_choice else ()
+    notes = [tell_sources([case for _, _, case in cases], frame)]
+    if setting is None:
+        notes.append(tell_forced_uptake(curves, lower, upper, extreme, cases[0][2]))
+    return Frontier(
+        lower, upper, extreme, setting, tuple(curves), unit, words, skipped, common, stretches,
+        tell_stretches(stretches, lower.name, lower.unit), tuple(n for n in notes if n),
+    )
 
 
 def _setting_name(setting: Setting) -> str:
@@ -161,15 +176,20 @@ def _trade(
     proven = prove_path(path, rows, exact, aim, along, cost, start, stop, within=_WITHIN)
     words = tell_curve(proven.breaks, x.name, y.name, y.unit, unit, extreme)
     ends = (
-        _end_words(f"the least {x.name}", hold_words(proven.low_holds, problem), start is None),
-        _end_words(f"the most {x.name}", hold_words(proven.high_holds, problem), stop is None),
-    )
+        _end_words(f"the least {x.name}", hold_words(proven.low_holds, problem),
+                   proven.breaks[0].x, start, is_end=path.low_places is not None),
+        _end_words(f"the most {x.name}", hold_words(proven.high_holds, problem),
+                   proven.breaks[-1].x, stop, is_end=path.high_places is not None),
+    )  # fmt: skip
     return _told(path, proven.breaks, problem, words, ends, proven.proof)
 
 
-def _end_words(what: str, held: str, is_end: bool) -> str:
+def _end_words(what: str, held: str, found: float, asked: float | None, *, is_end: bool) -> str:
+    """What an end of x is: that of all x there is, or where the range asked for ends."""
     if not is_end:
         return "asked for"
+    if asked is not None and abs(found - asked) > 1e-9 * max(1.0, abs(asked)):
+        what += f" there is (not {number_words(asked)})"
     return f"{what}: {held}" if held else what
 
 

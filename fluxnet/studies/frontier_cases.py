@@ -60,10 +60,8 @@ def find_cases(
 
 
 def common_parts(cases: Sequence[tuple[str, str, Network]]) -> tuple[str, ...]:
-    """The variants that all of several combinations have."""
+    """The variants that all combinations have."""
     parts = [name.split(" * ") for name, _, _ in cases]
-    if len(parts) < 2:
-        return ()
     return tuple(p for p in parts[0] if p != BASE and all(p in other for other in parts))
 
 

@@ -9,7 +9,7 @@ from fluxnet.solving.parametric import Extreme
 from fluxnet.solving.proof import Proof
 from fluxnet.studies.frontier_axis import Axis
 
-__all__ = ["Curve", "CurveStatus", "Frontier", "FrontierPoint", "OverKind", "Setting"]
+__all__ = ["Curve", "CurveStatus", "Frontier", "FrontierPoint", "OverKind", "Setting", "Stretch"]
 
 
 class CurveStatus(Enum):
@@ -86,10 +86,24 @@ class Curve:
 
 
 @record
+class Stretch:
+    """A part of x on which the same curves are the best; ``alone`` where no other goes there."""
+
+    low: float
+    high: float
+    labels: tuple[str, ...]
+    alone: bool
+    low_exact: str | None = None
+    high_exact: str | None = None
+
+
+@record
 class Frontier:
     """The trade-off, variant by variant.
 
-    ``skipped`` are combinations of variants that make no network, and why.
+    ``skipped`` are combinations of variants that make no network, and why. ``common`` are the
+    variants that all curves have, ``stretches`` tell which curve is the best where, and
+    ``choice`` says so; ``notes`` are what is to be known beside it.
     """
 
     x: Axis
@@ -100,6 +114,10 @@ class Frontier:
     slope_unit: str
     words: str
     skipped: tuple[tuple[str, str], ...] = ()
+    common: tuple[str, ...] = ()
+    stretches: tuple[Stretch, ...] = ()
+    choice: str = ""
+    notes: tuple[str, ...] = ()
 
     @property
     def is_sound(self) -> bool:

@@ -148,8 +148,10 @@ def tell_curves(
     found = [c for c in curves if c.points]
     if not found:
         return f"There is no curve of {y} over {x}: {curves[0].words}"
+    head = f"With {common}: " if common else ""
     if len(curves) == 1:
-        return found[0].words
+        words = found[0].words
+        return f"{head}{words[:1].lower()}{words[1:]}" if head else words
     is_most = extreme is Extreme.MOST
 
     def end_of(curve: Curve) -> FrontierPoint:
@@ -165,8 +167,8 @@ def tell_curves(
     if len(reach) < len(found):
         words += f"; {x} goes farthest, to {_n(farthest)}, in {_listed(reach)}"
     words += "."
-    if common:
-        words = f"With {common}: {words[:1].lower()}{words[1:]}"
+    if head:
+        words = f"{head}{words[:1].lower()}{words[1:]}"
     none = [c.label for c in curves if c.status not in (CurveStatus.TRACED, CurveStatus.POINT)]
     return words + (f" No curve: {_listed(none)}." if none else "")
 

@@ -153,3 +153,19 @@ def test_python_gives_the_same(model: Path, tmp_path: Path) -> None:
     assert json.loads(answer.to_json())["document"] == "frontier/1"
     assert "lactate" in str(answer)
     assert "<table>" in answer._repr_html_()
+
+
+def test_what_is_to_be_known_beside_a_line_is_shown_and_in_the_document(
+    capsys: pytest.CaptureFixture[str]
+) -> None:
+    line = 'fluxnet frontier model.flux "in oxygen" ATP --across "base | tight"'
+    found = document(line, capsys)
+    run(shlex.split(line)[1:])
+    shown = " ".join(capsys.readouterr().out.split())
+
+    assert found["common"] == []
+    assert found["choice"] == "At every oxygen in, tight is best."
+    assert [(s["from"], s["to"], s["labels"]) for s in found["best"]] == [  # type: ignore[attr-defined]
+        (0, 12, ["tight"])
+    ]
+    assert str(found["choice"]) in shown

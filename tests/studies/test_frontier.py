@@ -344,3 +344,99 @@ def test_clashing_variants_are_skipped_and_told() -> None:
 def test_variants_of_the_test_are_sound() -> None:
     for name in ("more", "less"):
         assert apply_variant(two_ways(), name)[0] is not None
+
+
+TWO_SUGARS = """
+substrate glucose, xylose, oxygen
+exchange  CO2
+product   lactate
+carrier   ATP   carries energy
+carrier   NADH  carries 2 electrons
+compartment all
+    homo : glucose -> 2 lactate + 2 ATP
+    pent : 3 xylose -> 5 lactate + 5 ATP
+    burn : glucose -> 6 CO2 + 12 NADH + 4 ATP
+    rN   : NADH + 0.5 oxygen -> 2 ATP
+    upkeep : ATP -> nothing
+limit glucose <= 10
+limit xylose  <= 6
+variant no-xylose
+    limit xylose <= 0
+"""
+
+
+def two_sugars() -> Network:
+    network = read_model_text(TWO_SUGARS).network
+    assert network is not None
+    return network
+
+
+def test_another_sugar_that_may_be_taken_up_is_told_and_can_be_shut() -> None:
+    found = find_frontier(two_sugars(), "oxygen", "lactate")
+    alone = find_frontier(two_sugars(), "oxygen", "lactate", only=("glucose",))
+    xylose = find_frontier(two_sugars(), "lactate", "xylose")
+
+    assert found.notes[0] == "xylose may be taken up beside glucose: `--only glucose` shuts it."
+    assert max(p.y for p in found.curves[0].points) == 30
+    assert max(p.y for p in alone.curves[0].points) == 20
+    assert not any("--only" in note for note in alone.notes)
+    assert xylose.notes == ("glucose may be taken up beside xylose: `--only xylose` shuts it.",)
+    assert find_frontier(two_sugars(), "glucose", "xylose").notes == ()
+    shut = find_frontier(two_sugars(), "oxygen", "lactate", across=("no-xylose",))
+    assert not any("--only" in note for note in shut.notes)
+
+
+def test_only_takes_the_names_of_carbon_sources() -> None:
+    for name in ("oxygen", "glucos", "lactate", "CO2"):
+        with pytest.raises(MisuseError, match="glucose"):
+            find_frontier(two_sugars(), "oxygen", "lactate", only=(name,))
+
+
+def test_a_line_that_falls_for_forced_uptake_is_told_with_the_other_question() -> None:
+    found = find_frontier(two_sugars(), "oxygen", "lactate", only=("glucose",), stop=30)
+    (note,) = found.notes
+    freed = find_frontier(
+        two_sugars(), "lactate", over="oxygen", start=0, stop=30, only=("glucose",)
+    )
+
+    assert found.curves[0].points[-1].y < 20
+    assert "`frontier MODEL lactate --over oxygen --from 0 --to 30`" in note
+    assert freed.notes == ()
+    assert freed.curves[0].points[-1].y == 20
+    assert find_frontier(two_sugars(), "lactate", "ATP", only=("glucose",)).notes == ()
+
+
+def test_an_end_is_the_most_there_is_whatever_was_asked_for() -> None:
+    (beyond,) = find_frontier(two_ways(), "acetate", "ethanol", stop=90).curves
+    (just,) = find_frontier(two_ways(), "acetate", "ethanol", stop=30).curves
+    (within,) = find_frontier(two_ways(), "acetate", "ethanol", start=-1, stop=29).curves
+
+    assert beyond.points[-1].changes[-1] == (
+        "the most acetate there is (not 90): limit glucose <= 10"
+    )
+    assert just.points[-1].changes[-1] == "the most acetate: limit glucose <= 10"
+    assert within.points[-1].changes[-1] == "asked for"
+    assert within.points[0].changes[0] == "the least acetate there is (not -1)"
+
+
+def test_variants_are_chosen_by_where_their_lines_cross() -> None:
+    text = TWO_WAYS + "variant aside\n    limit ethanol <= 15\n"
+    network = read_model_text(text.replace("limit glucose <= 10", "limit glucose <= 9")).network
+    assert network is not None
+    found = find_frontier(network, "acetate", "ethanol", across=("less | aside | base",))
+
+    assert found.choice == "At every acetate, base is best (as good: aside from 4.5 to 27)."
+    assert find_frontier(network, "acetate", "ethanol").choice == ""
+    moved = find_frontier(network, "acetate", "ethanol", over="glucose", start=1, stop=3)
+    assert moved.stretches == ()
+
+
+def test_the_variants_that_all_share_are_named_once() -> None:
+    one = find_frontier(two_ways(), "acetate", "ethanol", across=("more",))
+    moved = find_frontier(
+        two_ways(), "acetate", "ethanol", across=("more",), over="glucose", start=2, stop=6
+    )
+
+    assert one.common == moved.common == ("more",)
+    assert one.words.startswith("With more: the most ethanol falls from 40")
+    assert [c.label for c in moved.curves] == ["glucose <= 2", "glucose <= 4", "glucose <= 6"]
