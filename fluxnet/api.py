@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import cached_property
 from pathlib import Path
@@ -19,6 +20,7 @@ if TYPE_CHECKING:
     import pandas as pd
     from numpy.typing import NDArray
 
+    from fluxnet.rates.cultivation import Mode, Phase
     from fluxnet.rates.measured import RatesTable, Run
     from fluxnet.studies.check import CheckResult
     from fluxnet.studies.closure_result import Closure
@@ -26,13 +28,14 @@ if TYPE_CHECKING:
     from fluxnet.studies.frontier_result import Frontier
     from fluxnet.studies.lump_overall import Overalls
     from fluxnet.studies.lump_result import Lumped
+    from fluxnet.studies.rates import FoundRates
     from fluxnet.studies.routes_result import Routes
     from fluxnet.studies.solution import Solution
 
 __all__ = [
     "Answer", "Model", "Network", "Rates", "check", "closure", "compare", "frontier", "lump",
-    "overall", "read_model", "read_model_text", "read_rates", "read_rates_text", "routes", "solve",
-    "write_model",
+    "overall", "read_cultivation", "read_model", "read_model_text", "read_rates",
+    "read_rates_text", "routes", "solve", "write_model",
 ]
 
 @dataclass(frozen=True)
@@ -188,6 +191,37 @@ def read_rates_text(
     return _rates(reading.table, reading.diagnostics)
 
 
+def read_cultivation(
+    path: str | Path,
+    network: Model | Network | None = None,
+    *,
+    phases: Sequence[Phase] = (),
+    mode: Mode | None = None,
+) -> Answer[FoundRates]:
+    """Rates from raw data as they came: a table, a workbook, or a folder of files.
+
+    The answer can be given to :func:`closure` and :func:`solve` in place of rates.
+
+    Raises
+    ------
+    InputError
+        With all findings, where the data hold errors or give no rate.
+    """
+    from fluxnet.presenting.rates_record import rates_record
+    from fluxnet.presenting.rates_screen import rates_screen
+    from fluxnet.studies.rates import find_rates
+    from fluxnet.tables.cultivation_tables import read_cultivation as read
+
+    model = _network_or_none(network)
+    reading = read(path, model, mode=mode)
+    result = find_rates(reading.cultivations, model, phases=phases)
+    told = in_order((*reading.diagnostics, *result.diagnostics))
+    if not result.table.runs:
+        raise InputError(told)
+    screen = rates_screen(result)
+    return Answer(result, Document.RATES, screen, rates_record(result), "rates", told)
+
+
 def check(network: Model | Network) -> Answer[CheckResult]:
     """Check a model: is its reaction list sound?
 
@@ -207,7 +241,9 @@ def check(network: Model | Network) -> Answer[CheckResult]:
 
 
 def closure(
-    rates: Rates, network: Model | Network | None = None, **options: Any
+    rates: Rates | Answer[FoundRates],
+    network: Model | Network | None = None,
+    **options: Any,
 ) -> Answer[Closure]:
     """Do carbon, nitrogen and electrons close?
 
@@ -232,7 +268,9 @@ def closure(
 
 
 def solve(
-    network: Model | Network, rates: Rates | None = None, **options: Any
+    network: Model | Network,
+    rates: Rates | Answer[FoundRates] | None = None,
+    **options: Any,
 ) -> Answer[Solution]:
     r"""What did the cell do, or what could it do at best?
 

@@ -34,6 +34,8 @@ class Command:
 
 
 COMMANDS: tuple[Command, ...] = (
+    Command("rates", "rates", "What are the rates, from the files as they came?",
+            "fluxnet rates run.xlsx -o rates.csv"),
     Command("closure", "closure", "Do carbon, nitrogen and electrons close?",
             "fluxnet closure rates.csv"),
     Command("check", "check", "Is my reaction list sound?", "fluxnet check model.flux"),

@@ -6,13 +6,16 @@ import argparse
 from pathlib import Path
 
 from fluxnet.cli.main import Exit
+from fluxnet.cli.new_raw import raw_files
 from fluxnet.presenting.files import refuse_file, write_text
+from fluxnet.rates.cultivation import Mode
 
 __all__ = ["EXAMPLES", "MODEL", "RATES", "add_arguments", "run"]
 
 EXAMPLES = """A folder to start from: a model, an empty rates table, an example of one, a how-to.
 
   fluxnet new my-strain
+  fluxnet new my-strain --mode fed-batch       and templates for the raw data of a fed-batch
 """
 
 MODEL = """\
@@ -76,10 +79,27 @@ numbers are invented, so that the commands can be tried.
 `fluxnet manual language` and `fluxnet manual rates` tell how the two files are written.
 """
 
+_RAW_HOW_TO = """
+The folder raw holds templates for the raw data of a {mode}: what was run (run-sheet.csv),
+samples, off-gas, what was added, and the hours that get rates (phases.csv). Their numbers are
+invented, so that the commands can be tried; put your own in their place, or the files of your
+instruments as they are.
+
+    fluxnet rates raw --model model.flux -o measured.csv     rates with their errors
+    fluxnet closure measured.csv --model model.flux
+    fluxnet solve model.flux measured.csv
+
+`fluxnet manual raw` tells what may stand in these files.
+"""
+
 
 def add_arguments(parser: argparse.ArgumentParser) -> None:
     """Options of the command."""
     parser.add_argument("name", type=Path, help="the folder")
+    parser.add_argument(
+        "--mode", choices=[mode.value for mode in Mode],
+        help="templates for raw data of this kind of cultivation as well",
+    )  # fmt: skip
     parser.add_argument("--force", "-f", action="store_true", help="overwrite files that exist")
 
 
@@ -89,10 +109,20 @@ def run(arguments: argparse.Namespace) -> int:
     files = {
         "model.flux": MODEL, "rates.csv": _EMPTY, "example.csv": RATES, "HOW-TO.txt": _HOW_TO
     }  # fmt: skip
+    if arguments.mode is not None:
+        files["HOW-TO.txt"] += _RAW_HOW_TO.format(mode=arguments.mode)
+        files |= {f"raw/{name}": text for name, text in raw_files(Mode(arguments.mode)).items()}
+        (folder / "raw").mkdir(parents=True, exist_ok=True)
     folder.mkdir(parents=True, exist_ok=True)
     for name in files:
         refuse_file(folder / name, force=arguments.force)
     for name, text in files.items():
         write_text(folder / name, text, force=arguments.force)
-    print(f"wrote {', '.join(files)} into {folder}; next: fluxnet check {folder / 'model.flux'}")
+    print(f"wrote {', '.join(files)} into {folder}; next: fluxnet {_next(folder, arguments.mode)}")
     return Exit.SOUND
+
+
+def _next(folder: Path, mode: str | None) -> str:
+    """What to ask first."""
+    model = folder / "model.flux"
+    return f"check {model}" if mode is None else f"rates {folder / 'raw'} --model {model}"

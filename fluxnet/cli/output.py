@@ -33,16 +33,18 @@ ALWAYS_WRITTEN = {
     Document.ROUTES: ("routes", "route_reactions"),
     Document.COMPARE: ("variants",),
     Document.LUMP: (),
+    Document.RATES: ("rates", "assumptions"),
 }
 """The tables that a command writes whatever its answer is."""
 
 NAMES_OF_TABLES = frozenset({
-    "alternatives", "balances", "bill", "bill_prices", "by_products", "carriers", "catalogue",
-    "compound", "conflict", "cuts", "destinations", "equations", "findings", "fluxes", "gone",
-    "heat", "holding", "kept", "least_change", "ledger", "limits", "lumped", "mode_yields",
+    "accounts", "alternatives", "assumptions", "balances", "bill", "bill_prices", "by_products",
+    "carriers", "catalogue", "compound", "conflict", "courses", "cuts", "destinations",
+    "doubtful", "equations", "estimators", "findings", "fluxes", "gone", "heat", "holding",
+    "kept", "least_change", "ledger", "left_out", "limits", "lumped", "mode_yields",
     "most_energy", "odds", "overall", "overview", "parameters", "plan", "points", "prices",
     "rates", "relations", "route_reactions", "routes", "shares", "spread", "staircase",
-    "suspects", "unbounded", "variants", "yields",
+    "steadiness", "suspects", "unbounded", "variants", "yields",
 })  # fmt: skip
 """Every table that some command writes."""
 

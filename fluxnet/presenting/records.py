@@ -37,6 +37,7 @@ class Document(StrEnum):
     ROUTES = "routes/1"
     COMPARE = "compare/1"
     LUMP = "lump/1"
+    RATES = "rates/1"
 
 
 @record

@@ -17,6 +17,12 @@ from fluxnet.tables.vocabulary import direction_of_role
 
 __all__ = ["sd_doubts", "sense_faults", "unit_faults"]
 
+_NOISE = 2.0
+"""Of its sd: a rate within this cannot be told from 0."""
+
+_TYPED = 6
+"""Digits of a number that somebody may have typed."""
+
 
 def unit_faults(
     entry: Entry, quantity: Quantity | None, units: Mapping[str, RateUnit | BadUnit]
@@ -79,7 +85,8 @@ def sense_faults(
     if value.percent and kind is not QuantityKind.RATIO:
         words = f"is in per cent, not in {entry.unit or 'a unit'}"
         add(Name.UNREADABLE_CELL, entry.value, entry.title, words)
-    if value.value is not None and value.value < 0 and kind is not QuantityKind.FLUX:
+    signed = kind is QuantityKind.FLUX or _is_noise(entry, value, sd)
+    if value.value is not None and value.value < 0 and not signed:
         mend = _magnitude(entry.value.text, quantity, species)
         add(Name.NEGATIVE_RATE, entry.value, entry.title, "is negative", mend)
     if (value.sd is not None or value.relative is not None) and sd.value is not None:
@@ -96,6 +103,21 @@ def sense_faults(
         mend = "fill in the rate, or leave both blank"
         add(Name.UNREADABLE_CELL, entry.sd, sd_title, "is the sd of a rate that is blank", mend)
     return faults
+
+
+def _is_noise(entry: Entry, value: Number, sd: Number) -> bool:
+    """Whether a value was reckoned and cannot be told from 0: noise makes it of either sign.
+
+    In a number that was typed a minus most often marks the direction.
+    """
+    if value.value is None or sd.value is None or sd.percent or entry.sd_unit == "%":
+        return False
+    return _is_reckoned(entry.sd.text) and abs(value.value) <= _NOISE * sd.value
+
+
+def _is_reckoned(text: str) -> bool:
+    """Whether a number has more digits than anybody types."""
+    return sum(letter.isdigit() for letter in text.split("e")[0].lstrip("0.,")) > _TYPED
 
 
 def _magnitude(text: str, quantity: Quantity | None, species: Sequence[Species]) -> str | None:
@@ -129,6 +151,8 @@ def sd_doubts(
         return []
     beside = split_numeral(entry.value.text)
     cell, shown = (entry.value, beside.error) if entry.sd.is_blank else (entry.sd, entry.sd.text)
+    if _is_reckoned(shown):
+        return []
     words = f"sd {shown} is larger than the rate {beside.value}"
     mend = "correct it; what cannot be told from 0 may have such an sd"
     if 1 <= sd <= 100:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import re
+import shlex
 from pathlib import Path
 
 import pytest
@@ -26,6 +27,26 @@ def test_the_screen_of_a_solve_is_what_the_starter_folder_gives(
 
     assert shown.startswith(head)
     assert ledger in shown
+
+
+def test_a_raw_workbook_goes_through_the_whole_job_without_editing(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    example = README.parent / "examples" / "3-one-yeast-in-three-vessels"
+    for name in ("chemostat.xlsx", "lv3.flux"):
+        (tmp_path / name).write_bytes((example / name).read_bytes())
+    monkeypatch.chdir(tmp_path)
+    (commands,) = (text for _, text in BLOCKS if text.startswith("fluxnet rates"))
+    (screen,) = (text for _, text in BLOCKS if text.startswith("Rates of slow"))
+    shown = []
+    for line in commands.splitlines():
+        assert run(shlex.split(line)[1:]) == Exit.SOUND, line
+        shown.append(capsys.readouterr().out)
+
+    assert len(shown) == 3
+    assert screen in shown[0]
+    assert "vessel 1 slow: closes" in shown[1]
+    assert "Carrier ledger" in shown[2]
 
 
 def test_the_finding_is_one_of_a_golden_screen() -> None:

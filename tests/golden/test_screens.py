@@ -6,6 +6,7 @@ Where a change is meant, write them anew with ``FLUXNET_WRITE_GOLDEN=1`` and rea
 from __future__ import annotations
 
 import os
+import shutil
 from pathlib import Path
 
 import pytest
@@ -55,6 +56,7 @@ SCREENS = {
     ],
     "lump": ["lump", "sw9.flux", "--keep", "pyruvate,acetate", "--variant", "base"],
     "overall": ["lump", "tw4.flux", "rates.csv", "--run", "W15", "--overall", "products"],
+    "rates": ["rates", "batch", "--model", "lv3.flux"],
     "explain": ["explain", "unbalanced-line"],
     "catalogue": ["catalogue", "acetic", "acid"],
 }
@@ -70,6 +72,8 @@ def test_a_screen_is_as_it_was(
     for source in resource_folder("examples").glob("*/*"):
         if source.suffix in (".flux", ".csv"):
             (tmp_path / source.name).write_bytes(source.read_bytes())
+    raw = resource_folder("examples") / "3-one-yeast-in-three-vessels" / "batch"
+    shutil.copytree(raw, tmp_path / "batch")
     (tmp_path / "broken.flux").write_text(BROKEN, encoding="utf-8")
     monkeypatch.chdir(tmp_path)
     monkeypatch.delenv("COLUMNS", raising=False)
