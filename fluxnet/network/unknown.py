@@ -8,8 +8,10 @@ from fractions import Fraction
 
 from fluxnet.exact.linear import independent_rows, kernel, solve
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
+from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
-from fluxnet.network.contents import Content, Functional
+from fluxnet.network.biomass import biomasses
+from fluxnet.network.contents import Content, Functional, content_of
 from fluxnet.network.expression import ZERO, Expression, constant
 from fluxnet.network.line_balance import (
     Contents,
@@ -20,10 +22,17 @@ from fluxnet.network.line_balance import (
 )
 from fluxnet.network.model import Network, Reaction, Term
 from fluxnet.network.unknown_signs import sign_findings
-from fluxnet.network.unknown_words import contradiction, free_unknowns, unseen_composition
+from fluxnet.network.unknown_words import (
+    carbon_dioxide_of,
+    contradiction,
+    free_unknowns,
+    unseen_composition,
+)
 from fluxnet.network.water import water_of
 
 __all__ = ["solve_unknowns"]
+
+_MOST_TENTHS = 11
 
 
 @record
@@ -122,8 +131,31 @@ def _solve_line(
         return reaction, (contradiction(reaction, signed, line, contents),)
     diagnostics = sign_findings(after, signed, values, contents.network.parameters)
     if has_errors(diagnostics):
-        return reaction, diagnostics
+        return reaction, _or_forgotten_gas(reaction, diagnostics, contents)
     return after, diagnostics
+
+
+def _or_forgotten_gas(
+    reaction: Reaction, diagnostics: tuple[Diagnostic, ...], contents: Contents
+) -> tuple[Diagnostic, ...]:
+    """Where growth lacks CO2, a number of it that leaves every ``?`` on its side is a mend too."""
+    network = contents.network
+    grown = {s.name for s in biomasses(network)}
+    gas = carbon_dioxide_of(network)
+    negative = [d for d in diagnostics if d.name is Name.COEFFICIENT_NEGATIVE and d.mend]
+    named = {t.species for _, t in reaction.terms}
+    if gas is None or gas.name in named or not negative or not named & grown:
+        return diagnostics
+    wider = replace(contents, by_species={**contents.by_species, gas.name: content_of(gas)})
+    for tenths in range(1, _MOST_TENTHS):
+        term = Term(gas.name, constant(Fraction(tenths, 10)))
+        if not has_errors(_solve_line(replace(reaction, right=(*reaction.right, term)), wider)[1]):
+            more = f"; or a number of {gas.name} on the right, such as {tenths / 10:g} {gas.name}"
+            return tuple(
+                replace(d, mend=f"{d.mend}{more}, if it was left out") if d in negative else d
+                for d in diagnostics
+            )
+    return diagnostics
 
 
 def _solution(

@@ -13,9 +13,9 @@ from fluxnet.network.amounts import number_text
 from fluxnet.network.balance_words import because_of, join
 from fluxnet.network.contents import Content, Functional
 from fluxnet.network.line_balance import Contents, LineBalance, held_by, line_functionals
-from fluxnet.network.model import CargoKind, Network, Reaction, Role, Term
+from fluxnet.network.model import CargoKind, Network, Reaction, Role, Species, Term
 
-__all__ = ["contradiction", "free_unknowns", "unseen_composition"]
+__all__ = ["carbon_dioxide_of", "contradiction", "free_unknowns", "unseen_composition"]
 
 _Signed = tuple[int, Term]
 
@@ -41,12 +41,14 @@ def free_unknowns(
     present: Mapping[str, Content],
 ) -> tuple[Diagnostic, ...]:
     """The ``?`` that the balances leave free: one finding for each way of freedom."""
+    carbon_dioxide = carbon_dioxide_of(network)
+    gas = None if carbon_dioxide is None else carbon_dioxide.name
     balances = join([f.name for f in functionals]) or "none"
     found: list[Diagnostic] = []
     for direction in loose:
         members = [u for u, x in zip(unknowns, direction, strict=True) if x]
         names = [t.species for _, t in members]
-        first = members[-1][1]
+        first = next((t for _, t in members if t.species == gas), members[-1][1])
         if len(members) == 1:
             found.append(
                 Diagnostic(
@@ -67,10 +69,16 @@ def free_unknowns(
                 first.span,
                 because=f"balances that see them: {balances}",
                 mend=f"write one of them as a number, for example {first.species}",
-                also=tuple(t.span for _, t in members[:-1]),
+                also=tuple(t.span for _, t in members if t is not first),
             )
         )
     return tuple(found)
+
+
+def carbon_dioxide_of(network: Network) -> Species | None:
+    """The boundary species that is CO2, whatever its name."""
+    counts = (("C", Fraction(1)), ("O", Fraction(2)))
+    return next((s for s in network.boundary if s.formula and s.formula.counts == counts), None)
 
 
 def _why_unseen(name: str, network: Network, present: Mapping[str, Content]) -> str:

@@ -109,7 +109,7 @@ def _run_blocks(
     mood = {True: Mood.GOOD, False: Mood.BAD, None: Mood.DOUBTFUL}[run.test.closes]
     suspects = run.suspects
     return (
-        Heading(f"run {run.run}: {_VERDICTS[run.test.closes]}"),
+        Heading(f"run {run.run}: {_VERDICTS[run.test.closes]}", is_run=True),
         *((Sentence(_world(run)),) if tells_world else ()),
         Sentence(run.words, mood, verdict=True),
         *(Sentence(f"Note: {note}.") for note in run.notes),

@@ -9,7 +9,7 @@ from enum import Enum
 from fluxnet.ground.record import record
 from fluxnet.ground.table import Column, Table
 
-__all__ = ["Block", "Data", "Heading", "Mood", "Sentence", "blocks_of_run", "screen_tables"]
+__all__ = ["Block", "Data", "Drawing", "Heading", "Mood", "Sentence", "blocks_of_run", "screen_tables"]
 
 
 class Mood(Enum):
@@ -27,6 +27,7 @@ class Heading:
     """The start of a part, such as a run."""
 
     text: str
+    is_run: bool = False
 
 
 @record
@@ -39,13 +40,20 @@ class Sentence:
 
 
 @record
+class Drawing:
+    """Lines of characters that stand as they are, below one another."""
+
+    lines: tuple[str, ...]
+
+
+@record
 class Data:
     """Tables that are not shown, and made only when somebody asks for them."""
 
     make: Callable[[], tuple[Table, ...]]
 
 
-Block = Heading | Sentence | Table | Data
+Block = Heading | Sentence | Table | Drawing | Data
 
 
 def blocks_of_run(blocks: Iterable[Block], run: str | None) -> tuple[Block, ...]:

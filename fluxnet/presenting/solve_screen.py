@@ -96,13 +96,17 @@ def _run_blocks(
     unproven = run.proof is not None and not run.proof.verified
     mood = Mood.BAD if unproven else _MOODS[run.status]
     blocks: list[Block] = [
-        Heading(heading),
+        Heading(heading, is_run=run.run is not None),
         Sentence(run.words, mood, verdict=True),
         *doubt_blocks(run),
         *_assumptions(run),
         *_suspects(run, everything=everything),
         *_obstacles(run, prices=with_bill),
     ]
+    if with_bill and run.aim is None and not run.conflicts:
+        blocks.append(
+            Sentence("No bill: there is no aim whose best value it could prove, and no conflict.")
+        )
     if run.plan is not None:
         return (*blocks, *_planned(run, run.plan))
     if run.fluxes:

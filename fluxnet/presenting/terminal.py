@@ -13,7 +13,7 @@ from fluxnet.ground.record import record
 from fluxnet.ground.table import Align, Table
 from fluxnet.presenting.cells import table_cells
 from fluxnet.presenting.excerpt import excerpt_lines, place_of, seen
-from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence
+from fluxnet.presenting.screen import Block, Data, Drawing, Heading, Mood, Sentence
 from fluxnet.presenting.table_lines import lay_out
 
 if TYPE_CHECKING:
@@ -85,11 +85,15 @@ class Terminal:
                 continue
             if after_table and isinstance(block, Sentence):
                 print(file=self.stream)
-            after_table = isinstance(block, Table)
+            after_table = isinstance(block, (Table, Drawing))
             if isinstance(block, Heading):
                 self._print(console, ("\n" if place else "") + block.text, "bold")
             elif isinstance(block, Sentence):
                 self._print(console, block.text, _STYLE[block.mood])
+            elif isinstance(block, Drawing):
+                print(file=self.stream)
+                for line in block.lines:
+                    self._print_whole(console, line)
             else:
                 self._show_table(console, block)
 
@@ -194,13 +198,13 @@ def rich_text(screen: tuple[Block, ...], width: int) -> Text:
 
 
 def _verdicts(screen: tuple[Block, ...]) -> tuple[Block, ...]:
-    """The verdicts alone; of several runs with their headings."""
+    """The verdicts alone, with the headings of runs; of several screens with all headings."""
     several = sum(isinstance(block, Heading) for block in screen) > 1
     return tuple(
         block
         for block in screen
         if (isinstance(block, Sentence) and block.verdict)
-        or (several and isinstance(block, Heading))
+        or (isinstance(block, Heading) and (several or block.is_run))
     )
 
 

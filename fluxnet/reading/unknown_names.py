@@ -14,6 +14,8 @@ from fluxnet.reading.scope import Kind, Mention, Scope
 
 __all__ = ["report_unknown", "resolve_free"]
 
+_MOST_LINES = 4
+
 
 def report_unknown(scope: Scope) -> None:
     """Tell every species that is used but not declared."""
@@ -31,7 +33,7 @@ def report_unknown(scope: Scope) -> None:
 
 def _report(name: str, mentions: list[Mention], scope: Scope) -> None:
     first = mentions[0]
-    more = f" (and {len(mentions) - 1} more)" if len(mentions) > 1 else ""
+    more = _also_in(mentions)
     twin = scope.twin(name, Kind.SPECIES)
     if twin is not None:
         scope.findings.add(
@@ -52,8 +54,12 @@ def _report(name: str, mentions: list[Mention], scope: Scope) -> None:
     synonym = _synonym(name, scope)
     unwritten = _unwritten(name)
     near = scope.findings.nearest(name, scope.species)
+    misspelt = _misspelt(name, near, scope)
     if synonym is not None:
         mend = f"{name} is another name of {synonym}: write {synonym}"
+    elif misspelt is not None:
+        line = scope.species[misspelt].span.line
+        mend = f"line {line} declares {misspelt}, which nothing knows: write {name} there"
     elif unwritten is not None:
         mend = unwritten
     elif (known := _declaration(name, scope)) is not None:
@@ -67,6 +73,29 @@ def _report(name: str, mentions: list[Mention], scope: Scope) -> None:
         Name.UNKNOWN_SPECIES, f"no species is called {name}{more}", first.line, first.word,
         mend=mend,
     )
+
+
+def _also_in(mentions: list[Mention]) -> str:
+    """The other lines that use a name: `` (also in lines 25 and 31)``; empty without any."""
+    here, *others = [m.line.span(m.word.start, m.word.end) for m in mentions]
+    places = {(x.file, x.line): None for x in others if (x.file, x.line) != (here.file, here.line)}
+    lines = [f"{line}" if file == here.file else f"{line} of {file}" for file, line in places]
+    if not lines:
+        return ""
+    if len(lines) > _MOST_LINES:
+        lines = [*lines[:_MOST_LINES], f"{len(lines) - _MOST_LINES} more"]
+    last = f" and {lines[-1]}" if len(lines) > 1 else ""
+    listed = ", ".join(lines[:-1] if last else lines)
+    return f" (also in line{'s' if last else ''} {listed}{last})"
+
+
+def _misspelt(name: str, near: Sequence[str], scope: Scope) -> str | None:
+    """A declared name near to one of the catalogue that is used, and itself known to nothing."""
+    if load_catalogue().find(name) is None:
+        return None
+    declared = [scope.species[other] for other in near if other in scope.species]
+    unknown = (s for s in declared if s.entry is None and s.formula is None and s.cargo is None)
+    return next((s.name for s in unknown), None)
 
 
 def _certain(scope: Scope, mentions: list[Mention], twin: str) -> None:

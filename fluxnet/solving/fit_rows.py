@@ -86,17 +86,23 @@ def fitted_rows(
             measured, sd = row.ratio, row.sd / (row.denominator or 1.0)
         sure = adjusted.get(place, 0.0)
         gap = row.value - float(point.values[place])
+        value, low, high, best_low, best_high = (
+            float(x[k]) + 0.0
+            for x in (ranges.values, ranges.low, ranges.high, ranges.best_low, ranges.best_high)
+        )
+        if np.isnan(value):  # a ratio over a rate of zero: any value fits, and so does the measured
+            value, low, high, best_low, best_high = measured, -np.inf, np.inf, -np.inf, np.inf
         found.append(
             FittedRow(
                 quantity=row.quantity,
                 name=row.name,
                 kind=RateKind.BALANCEABLE if tested[place] else RateKind.NOT_BALANCEABLE,
-                value=float(ranges.values[k]) + 0.0,
+                value=value,
                 value_sd=_known(ranges.sd[k]),
-                low=float(ranges.low[k]),
-                high=float(ranges.high[k]),
-                best_low=float(ranges.best_low[k]),
-                best_high=float(ranges.best_high[k]),
+                low=low,
+                high=high,
+                best_low=best_low,
+                best_high=best_high,
                 measured=measured,
                 sd=sd,
                 z=gap / sure if sure > 0 and (tested[place] or pressing) else None,

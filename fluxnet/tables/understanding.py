@@ -177,4 +177,7 @@ def _species(readings: Readings, biomass: Species | None) -> tuple[Species, ...]
 def _no_rows(grid: Grid, layout: Layout) -> Diagnostic:
     row = layout.header
     span = row.span if row is not None else Span(grid.source.file, 0, 0, 0)
-    return Diagnostic(Name.NO_MEASURED_RATE, "the table has a header and no row below it", span)
+    return Diagnostic(
+        Name.NO_MEASURED_RATE, "the table has a header and no row below it", span,
+        mend="type your numbers below the units; or try the example.csv that `fluxnet new` writes",
+    )

@@ -215,5 +215,5 @@ def test_many_runs_as_data_are_the_same_as_few(
 def test_quiet_tells_the_verdict_alone(capsys: pytest.CaptureFixture[str]) -> None:
     run(["closure", "good.csv", "--quiet"])
     words = " ".join(capsys.readouterr().out.split())
-    assert words.startswith("Carbon closes to")
+    assert words.startswith("run A: closes Carbon closes to")
     assert words.endswith(").")

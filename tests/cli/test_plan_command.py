@@ -133,3 +133,11 @@ def test_a_compartment_is_told_as_one(capsys: pytest.CaptureFixture[str]) -> Non
     assert run([*SOLVE, "--plan", "maintenance"]) == Exit.MISUSE
     shown = capsys.readouterr().err
     assert 'maintenance is a compartment; write --plan "ATP maintenance" or --plan upkeep' in shown
+
+
+def test_the_verdict_alone_names_its_run(capsys: pytest.CaptureFixture[str]) -> None:
+    assert run([*SOLVE, "--quiet"]) == Exit.SOUND
+    shown = capsys.readouterr().out
+    assert shown.startswith("run W15 (temperature 37): solved\nThe rates and the network agree")
+    assert run(["closure", "rates.csv", "--run", "W11", "--quiet"]) == Exit.FINDING
+    assert capsys.readouterr().out.startswith("run W11: does not close\n")

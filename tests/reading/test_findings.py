@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from fluxnet.ground.names import Name
 from fluxnet.reading.findings import nearest_names
 
 HEAD = "substrate glucose\nproduct ethanol, CO2\n"
@@ -31,7 +32,9 @@ def test_an_undeclared_species_is_told_once_at_its_first_use(fault) -> None:
 
     found = fault(f"{HEAD}inside pyruvate\ncompartment c\n{lines}")
 
-    assert found.message == "no species is called pyruvat (and 6 more)"
+    assert found.message == (
+        "no species is called pyruvat (also in lines 6, 7, 8, 9 and 2 more)"
+    )
     assert found.span.line == 5
     assert "pyruvate" in found.mend
 
@@ -117,3 +120,44 @@ def test_near_names_are_those_spelt_nearly_so() -> None:
     assert nearest_names("glucos", names)[0] == "glucose"
     assert nearest_names("NADHP", names)[0] in ("NADH", "NADPH")
     assert nearest_names("oxaloacetate", names) == ()
+
+
+def test_a_misspelt_declaration_is_told_where_the_right_name_is_used(faults) -> None:
+    found = faults("""\
+substrate glukose
+product ethanol, CO2
+compartment c
+    a : glucose -> 2 ethanol + 2 CO2
+""")
+
+    told = next(d for d in found if d.name is Name.UNKNOWN_SPECIES)
+    assert told.message == "no species is called glucose"
+    assert told.mend == "line 1 declares glukose, which nothing knows: write glucose there"
+
+
+GROWTH = """\
+substrate glucose, ammonia
+exchange CO2
+biomass X CH1.8O0.5N0.2 ash 0 %
+carrier NADH carries 2 electrons
+compartment c
+    growth : ? glucose + 0.2 ammonia -> X + {} + ? NADH
+"""
+
+
+def test_growth_that_forgot_its_carbon_dioxide_is_told_so(faults) -> None:
+    text = GROWTH.replace(" + {}", "")
+    found = [d for d in faults(text) if d.name is Name.COEFFICIENT_NEGATIVE]
+
+    assert [d.mend for d in found] == [
+        "? NADH on the left, where it is 0.1; or a number of CO2 on the right, such as 0.1 CO2, "
+        "if it was left out"
+    ]
+    assert not any(d.name is Name.COEFFICIENT_NEGATIVE for d in faults(GROWTH.format("0.1 CO2")))
+
+
+def test_of_unknown_coefficients_that_are_free_carbon_dioxide_is_to_be_written(faults) -> None:
+    (found,) = [d for d in faults(GROWTH.format("? CO2")) if d.name is Name.COEFFICIENT_FREE]
+
+    assert found.mend == "write one of them as a number, for example CO2"
+    assert len(found.also) == 2

@@ -60,3 +60,14 @@ def test_what_is_left_of_a_covariance_stays_with_its_rates(make_network, make_ru
 def test_a_run_whose_rates_tell_something_stays_as_it_is(make_network, make_run):
     run = make_run(make_network(YEAST), *RATES)
     assert without_weightless(run) is run
+
+
+def test_a_measured_ratio_over_a_rate_of_zero_can_be_anything(make_network, make_run):
+    network = make_network(YEAST)
+    rates = ("glucose in 10 ± 0.5", "ethanol out 19 ± 1", "oxygen in 0 ± 0")
+    ratio = row_of(fit_fluxes(network, make_run(network, *rates, "CO2 / oxygen 1.05 ± 0.03")),
+                   "CO2 out / oxygen in")  # fmt: skip
+
+    assert (ratio.value, ratio.value_sd) == (ratio.measured, None)
+    assert (ratio.low, ratio.high) == (-np.inf, np.inf)
+    assert (ratio.best_low, ratio.best_high) == (-np.inf, np.inf)

@@ -179,7 +179,9 @@ def test_a_run_without_a_measured_rate_is_an_error(fault):
 
 
 def test_a_header_without_rows_is_an_error(fault):
-    assert fault(LONG).name is Name.NO_MEASURED_RATE
+    empty = fault(LONG)
+    assert empty.name is Name.NO_MEASURED_RATE
+    assert empty.mend.startswith("type your numbers below the units; or try the example.csv")
 
 
 def test_a_table_without_a_header_is_an_error_that_shows_what_stood_there(fault):
