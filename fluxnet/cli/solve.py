@@ -44,10 +44,11 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
     aim.add_argument("--minimise", "--minimize", metavar="X", help="make X as small as possible")
     parser.add_argument(
         "--within", metavar="K", type=float, default=2.0,
-        help="with an aim, hold each measured rate within K sd (2)",
+        help="hold each measured rate within K sd (2): with an aim, or to find what contradicts "
+        "what",
     )  # fmt: skip
     parser.add_argument(
-        "--fraction", metavar="F", type=float, default=1.0,
+        "--fraction", metavar="F", type=float,
         help="with an aim, give ranges at this fraction of the optimum (1)",
     )  # fmt: skip
     parser.add_argument(
@@ -86,6 +87,7 @@ def run(arguments: argparse.Namespace) -> int:
 
     if arguments.model == "-" and arguments.rates == "-":
         raise MisuseError("standard input can be the model or the rates, not both")
+    _refuse_idle(arguments)
     refuse_outputs(arguments, Document.SOLVE)
     model = load_model(arguments, arguments.variant)
     if model.network is None:
@@ -114,7 +116,7 @@ def run(arguments: argparse.Namespace) -> int:
                 maximise=arguments.maximise,
                 minimise=arguments.minimise,
                 within=arguments.within,
-                fraction=arguments.fraction,
+                fraction=1.0 if arguments.fraction is None else arguments.fraction,
                 suspects=arguments.suspects,
                 plan=arguments.plan,
                 plan_error=arguments.plan_error / 100,
@@ -137,3 +139,14 @@ def run(arguments: argparse.Namespace) -> int:
         ),
         sound=solution.is_sound,
     )  # fmt: skip
+
+
+def _refuse_idle(arguments: argparse.Namespace) -> None:
+    """Refuse options that would change nothing."""
+    aimed = arguments.maximise is not None or arguments.minimise is not None
+    if arguments.fraction is not None and not aimed:
+        raise MisuseError("--fraction is a share of an optimum: add --maximise X or --minimise X")
+    if arguments.suspects and aimed:
+        raise MisuseError("--suspects tells what is wrong with measured rates: leave the aim out")
+    if arguments.rates is None and arguments.run:
+        raise MisuseError("--run chooses runs of a table: name the table behind the model")

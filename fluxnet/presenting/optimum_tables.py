@@ -111,7 +111,7 @@ def proof_blocks(run: FluxSolution, *, with_bill: bool) -> tuple[Block, ...]:
     bill = run.bill
     if not bill.verified:
         return (Sentence("The bill does not add up in exact arithmetic.", Mood.BAD),)
-    title = f"Bill of the optimum [{bill.unit}]"
+    title = f"Bill of the optimum [{bill.unit.strip('()')}]"
     from fluxnet.presenting.bill_table import BillTitles, bill_tables
 
     titles = BillTitles("what has to be paid", "supplied by", "left over")

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from fluxnet.ground.table import Align, Cell, Column, Table
+from fluxnet.network.model import Direction
 from fluxnet.presenting.numbers import format_number, format_p
 from fluxnet.presenting.screen import Block, Data, Mood, Sentence
 from fluxnet.presenting.suspect_text import and_words, suspect_words, would_be_words
@@ -15,6 +16,8 @@ _MOST_ROWS = 12
 _MOST_READ = 3
 _MOST_READINGS = 2
 _SAME = "="
+_ZERO = 1e-9
+"""A true value below this part of the measured one is none."""
 _PLAUSIBLE = (Standing.MEASURED, Standing.MODEL, Standing.COMMON)
 
 
@@ -245,6 +248,8 @@ def _what_to_do(best: Suspect, suspects: Suspects) -> str:
                 "well."
             )
         return text
+    if best.kind is SuspectKind.MEASURED_RATE and (lacking := _other_side(suspects)):
+        return lacking
     if best.kind is SuspectKind.MEASURED_RATE:
         other = [s.label for s in rates if s is not best]
         text = (
@@ -260,6 +265,21 @@ def _what_to_do(best: Suspect, suspects: Suspects) -> str:
         SuspectKind.PARAMETER: f"look into {best.name} of the model",
     }.get(best.kind, f"measure {best.name}")
     return f"To do: {what}; {suspect_words(best)} would explain it."
+
+
+def _other_side(suspects: Suspects) -> str:
+    """What to measure where only one side of the balances has rows; nothing where both have."""
+    rates = [s for s in suspects.all if s.kind is SuspectKind.MEASURED_RATE]
+    is_one_sided = all(abs(s.would_be or 0.0) <= _ZERO * abs(s.measured or 0.0) for s in rates)
+    sides = {s.direction for s in rates}
+    if not is_one_sided or len(sides) != 1:
+        return ""
+    if sides == {Direction.IN}:
+        lacking, way = "CO2, oxygen and the products", "it goes to"
+    else:
+        lacking, way = "the substrates, oxygen and CO2", "it comes from"
+    names = and_words([s.label for s in rates])
+    return f"To do: beside {names} nothing that {way} has a row: measure and give {lacking}."
 
 
 def _data(suspects: Suspects, run: str | None) -> Table:

@@ -75,8 +75,7 @@ def _of_test(
     test: ClosureTest, contradictions: Sequence[Sequence[str]], *, is_surprise: bool
 ) -> str:
     if contradictions:
-        sets = ", and ".join(_and(names) for names in contradictions)
-        return f"values given as exact contradict one another: {sets}"
+        return _of_exact(contradictions)
     if test.h is None or test.p is None or test.limit is None:
         return "no rate can be tested, since nothing is redundant"
     freedom = f"on {test.dof} degree{'s' if test.dof > 1 else ''} of freedom"
@@ -87,6 +86,19 @@ def _of_test(
         f"{freedom}, limit {_three(test.limit)}, {_p(test.p)}): one is wrong, or something "
         "exchanged has no row"
     )
+
+
+def _of_exact(contradictions: Sequence[Sequence[str]]) -> str:
+    """What is given as exact and cannot be: by itself, or beside other such values."""
+    alone = [names[0] for names in contradictions if len(names) == 1]
+    sets = [_and(names) for names in contradictions if len(names) > 1]
+    told = []
+    if alone:
+        verb = "are" if len(alone) > 1 else "is"
+        told.append(f"{_and(alone)} {verb} given as exact, and no balance allows it")
+    if sets:
+        told.append(f"values given as exact contradict one another: {', and '.join(sets)}")
+    return "; ".join(told)
 
 
 def _closes(balance: Balance) -> bool:

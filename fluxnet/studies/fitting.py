@@ -46,9 +46,6 @@ if TYPE_CHECKING:
 
 __all__ = ["fit_run"]
 
-# Within so many sds measured rates are asked to hold together when the fit is rejected.
-_WITHIN = 2.0
-
 # A relation of fluxes tells something where it is so much narrower than its terms.
 _TELLING = 0.5
 
@@ -61,6 +58,7 @@ def fit_run(
     run: Run | None,
     *,
     suspects: bool = False,
+    within: float = 2.0,
     plan: tuple[Target, float] | None = None,
     progress: Progress = silent,
 ) -> FluxSolution:
@@ -69,7 +67,8 @@ def fit_run(
     A run that the balances accept but whose fit a limit holds back beyond chance
     (p below 5 %) is inconsistent as well. What could be wrong is looked for where the balances
     reject a run, and with ``suspects`` always. ``plan`` asks what to measure next: what is to
-    be known better, and the relative error of what would be measured anew.
+    be known better, and the relative error of what would be measured anew. Of a rejected run it is
+    asked what contradicts what while measured values hold ``within`` so many sds.
 
     Examples
     --------
@@ -136,12 +135,12 @@ def fit_run(
         from fluxnet.solving.least_change import least_change
         from fluxnet.studies.conflicts import explain_conflicts
 
-        held = build_problem(network, run, within=_WITHIN)
-        conflicts = explain_conflicts(held, held.problem, frame.unit, _WITHIN)
+        held = build_problem(network, run, within=within)
+        conflicts = explain_conflicts(held, held.problem, frame.unit, within)
         if conflicts:
             change = least_change(held.problem)
             solution = replace(
-                solution, conflicts=conflicts, within=_WITHIN, least_change=change
+                solution, conflicts=conflicts, within=within, least_change=change
             )
     return solution
 

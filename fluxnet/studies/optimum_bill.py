@@ -11,7 +11,7 @@ from fluxnet.solving.words import number_words, quantity_words
 from fluxnet.studies.aims import Aim
 from fluxnet.studies.bill import Bill, BillLine, BillSide
 from fluxnet.studies.optimum_proof import sign_of
-from fluxnet.studies.units import rate_unit
+from fluxnet.studies.units import rate_unit, sum_unit
 
 __all__ = ["make_optimum_bill"]
 
@@ -33,7 +33,7 @@ def make_optimum_bill(
     if not proven.proof.verified:
         return None
     sign, solution = sign_of(aim.sense), proven.solution
-    aim_unit = _aim_unit(aim, unit)
+    aim_unit = sum_unit(aim.terms, unit)
     lines: list[BillLine] = []
     sums = {side: Fraction(0) for side in BillSide}
 
@@ -65,7 +65,8 @@ def make_optimum_bill(
         add(name, bound, own, prices[k], bound * prices[k] < 0)
     own_name = str(aim).removeprefix(f"{aim.sense.value} ")
     if solution.objective:
-        add(own_name, solution.objective, aim_unit, Fraction(1), solution.objective > 0)
+        own = "" if aim_unit.startswith("(") else aim_unit  # the name tells the terms
+        add(own_name, solution.objective, own, Fraction(1), solution.objective > 0)
     lines.sort(key=lambda line: (line.side is BillSide.SUPPLY, line.name != own_name, -line.worth))
     supply, demand = sums[BillSide.SUPPLY], sums[BillSide.DEMAND]
     return Bill(
@@ -87,12 +88,6 @@ def _row_name(row: Row, bound: float, within: float) -> str:
     if bound == row.value:
         return f"{name}, as measured"
     return f"{name}, {row.value:.4g} {'-' if bound < row.value else '+'} {within:g} sd"
-
-
-def _aim_unit(aim: Aim, unit: str) -> str:
-    """The aim's unit: that of its quantities."""
-    units = {rate_unit(quantity, unit) for _, quantity in aim.terms}
-    return units.pop() if len(units) == 1 else unit
 
 
 def _words(sign: int, objective: float) -> str:

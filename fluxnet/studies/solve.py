@@ -46,6 +46,9 @@ def solve_network(
         The aim, as :func:`fluxnet.studies.aims.read_aim` reads it; at most one of them.
     fraction
         The share of the optimum at which the ranges of the fluxes are searched.
+    within
+        With an aim, measured rates are held within so many sds; without one, it is asked
+        within so many what contradicts what, where the rates are rejected.
     suspects
         Without an aim, look for what could be wrong in sound runs, too.
     plan
@@ -81,8 +84,8 @@ def solve_network(
     if maximise is not None and minimise is not None:
         raise MisuseError("one aim at a time: maximise or minimise")
     if not within >= 0:
-        raise MisuseError("measured rates can only be held within a positive number of sd")
-    if _MOST < within < float("inf"):
+        raise MisuseError("measured rates are held within zero or more sd")
+    if within > _MOST:
         raise MisuseError(f"{within:g} sd hold nothing: leave the rates out, or take up to 1e6")
     if not 0 <= fraction <= 1:
         raise MisuseError("a fraction of the optimum lies between 0 and 1")
@@ -104,8 +107,9 @@ def solve_network(
 
         def fit_one(network: Network, run: Run | None) -> FluxSolution:
             return fit_run(
-                network, run, suspects=suspects, plan=wanted_for, progress=progress
-            )
+                network, run, suspects=suspects, within=within, plan=wanted_for,
+                progress=progress,
+            )  # fmt: skip
 
         return Solution(network, tuple(_with_cause(network, fit_one, run) for run in runs))
     from fluxnet.studies.aims import Sense, read_aim

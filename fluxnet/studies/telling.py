@@ -11,6 +11,7 @@ from fluxnet.solving.problem import Problem, RowKind
 from fluxnet.solving.violations import find_violations
 from fluxnet.solving.words import quantity_words
 from fluxnet.studies.solution import FluxKind, FluxSolution, FluxTest, OptimumSpan, RateKind
+from fluxnet.studies.units import sum_unit
 from fluxnet.studies.yields import ALL_CARBON
 
 if TYPE_CHECKING:
@@ -155,9 +156,7 @@ def _span_words(span: OptimumSpan, unit: str) -> str:
 
 
 def _aim_unit(solution: FluxSolution) -> str:
-    aim = solution.aim
-    is_mu = aim is not None and all(str(quantity) == "mu" for _, quantity in aim.terms)
-    return "1/h" if is_mu else solution.unit
+    return solution.unit if solution.aim is None else sum_unit(solution.aim.terms, solution.unit)
 
 
 def _share(solution: FluxSolution) -> str:

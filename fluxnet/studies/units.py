@@ -7,7 +7,7 @@ from fractions import Fraction
 
 from fluxnet.network.model import Quantity, QuantityKind
 
-__all__ = ["gain_unit", "rate_unit", "unusual_words"]
+__all__ = ["gain_unit", "rate_unit", "sum_unit", "unusual_words"]
 
 _UNUSUAL = 100.0  # mmol/g/h; few pass 50 (common practice)
 
@@ -23,6 +23,24 @@ def rate_unit(quantity: Quantity, unit: str) -> str:
     if quantity.kind is QuantityKind.MU:
         return "1/h"
     return "" if quantity.kind is QuantityKind.RATIO else unit
+
+
+def sum_unit(terms: Sequence[tuple[Fraction, Quantity]], unit: str) -> str:
+    """The unit of a weighted sum; of terms in different ones how each of them is counted.
+
+    Examples
+    --------
+    >>> ethanol = Quantity(QuantityKind.RATE, "ethanol")
+    >>> mu = Quantity(QuantityKind.MU)
+    >>> sum_unit([(Fraction(1), mu)], "mmol/g/h")
+    '1/h'
+    >>> sum_unit([(Fraction(2), ethanol), (Fraction(1), mu)], "mmol/g/h")
+    '(ethanol in mmol/g/h, mu in 1/h)'
+    """
+    units = {str(quantity): rate_unit(quantity, unit) for _, quantity in terms}
+    if len(set(units.values())) == 1:
+        return next(iter(units.values()))
+    return f"({', '.join(f'{name} in {own}' for name, own in units.items())})"
 
 
 def gain_unit(terms: Sequence[tuple[Fraction, Quantity]], limited: Quantity, unit: str) -> str:
@@ -46,7 +64,8 @@ def gain_unit(terms: Sequence[tuple[Fraction, Quantity]], limited: Quantity, uni
     if len(terms) == 1 and abs(terms[0][0]) == 1:
         gain = _part(quantities[0], shown)
     else:
-        gain = f"{shown} of the sum"
+        mixed = len({rate_unit(quantity, unit) for quantity in quantities}) > 1
+        gain = "of the sum" if mixed else f"{shown} of the sum"
     return f"{gain} per {_part(below, shown)}"
 
 

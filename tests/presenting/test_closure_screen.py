@@ -159,3 +159,16 @@ def test_only_a_typed_zero_is_told_as_exact_and_data_keep_every_zero() -> None:
     text = "A,glucose,in,2,0,mmol,x\nA,ethanol,out,3.9,0.1,mmol,x\nA,CO2,out,4.1,0.1,mmol,x\n"
     assert shown(text).count("exact") == 1
     assert list(answer(text).to_frame()["reconciled_sd"]) == [0, 0, 0]
+
+
+def test_where_one_side_alone_has_rows_the_other_is_to_be_measured() -> None:
+    alone = flat("A,glucose,in,10,0.2,mmol/g/h,north\n")
+    assert (
+        "To do: beside glucose in nothing that it goes to has a row: measure and give CO2, oxygen "
+        "and the products." in alone
+    )
+    assert "once more" not in alone
+    assert "nothing that it comes from has a row" in flat("A,ethanol,out,10,1,mmol/g/h,north\n")
+    assert "has a row: measure and give" not in flat(
+        "A,glucose,in,10,0.2,mmol/g/h,n\nA,ethanol,out,10,1,mmol/g/h,n\n"
+    )

@@ -80,3 +80,13 @@ def test_weights_may_be_fractions_negative_or_zero(network: Network) -> None:
 def test_rates_are_not_held_within_a_number_of_sd_that_holds_nothing(network: Network) -> None:
     with pytest.raises(MisuseError, match="hold nothing"):
         solve_network(network, maximise="mu", within=1e20)
+
+
+def test_a_sum_of_rates_and_mu_tells_the_unit_of_each_of_its_terms(network: Network) -> None:
+    limited = read_model_text(MODEL + "limit glucose <= 1\n").network
+    assert limited is not None
+    (run,) = solve_network(limited, maximise="2 ethanol + mu").runs
+    assert f"{run.optimum:.4g} (ethanol out in mmol/g/h, mu in 1/h)." in run.words
+    assert run.bill is not None
+    assert run.bill.unit == "(ethanol out in mmol/g/h, mu in 1/h)"
+    assert any(limit.unit == "of the sum per mmol/g/h glucose" for limit in run.limits)

@@ -104,3 +104,13 @@ def test_what_was_measured_of_a_balance_that_lacks_a_rate_is_no_recovery() -> No
     assert "carbon has no recovery (CO2 not measured)" in run.words
     assert "62" not in run.words
     assert balance(run, "electrons").recovery == pytest.approx(93)
+
+
+def test_one_exact_value_does_not_contradict_another() -> None:
+    failed = ClosureTest(None, 1, None, None, False)
+    assert verdict([], failed, [("CO2 out",)]) == (
+        "CO2 out is given as exact, and no balance allows it."
+    )
+    assert verdict([], failed, [("CO2 out", "glucose in")]) == (
+        "Values given as exact contradict one another: CO2 out and glucose in."
+    )

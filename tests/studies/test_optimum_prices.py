@@ -115,7 +115,7 @@ def test_a_limit_that_cannot_move_at_all_has_no_end_there() -> None:
     assert worth(run, "limit lactate")[0] == -float("inf")
 
 
-@pytest.mark.parametrize("within", [0.0, 0.5, 2.0, float("inf")])
+@pytest.mark.parametrize("within", [0.0, 0.5, 2.0, 50.0])
 def test_measured_rates_are_held_exactly_within_so_many_sds(within: float) -> None:
     model = network(AMPLE)
     table = read_rates_text(
