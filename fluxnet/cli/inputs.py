@@ -36,6 +36,7 @@ _UNREADABLE = frozenset(
     {
         Name.FILE_MISSING,
         Name.NOT_A_FILE,
+        Name.NO_RAW_DATA,
         Name.BINARY_FILE,
         Name.EMPTY_FILE,
         Name.FILE_TOO_LONG,

@@ -15,6 +15,7 @@ from fluxnet.cli.table_files import refuse_table, write_table
 from fluxnet.ground.diagnostic import Diagnostic, has_errors, in_order
 from fluxnet.ground.errors import MisuseError
 from fluxnet.network.model import Network
+from fluxnet.presenting.files import refuse_file
 from fluxnet.presenting.records import Document, Input
 from fluxnet.rates.cultivation import Mode, Phase
 
@@ -69,6 +70,10 @@ def run(arguments: argparse.Namespace) -> int:
             raise MisuseError(f"{path} is what is read; name another file to write")
     if arguments.table is not None:
         refuse_table(arguments.table, force=arguments.force)
+    if arguments.columns is not None:
+        refuse_file(arguments.columns, force=arguments.force)
+    if arguments.phases is not None:
+        refuse_file(arguments.phases, force=True)
     from fluxnet.presenting.rates_record import rates_record
     from fluxnet.presenting.rates_screen import rates_screen
     from fluxnet.studies.rates import find_rates, read_phase
@@ -144,4 +149,5 @@ def _write_files(arguments: argparse.Namespace, result: FoundRates) -> None:
 
         arguments.figures.mkdir(parents=True, exist_ok=True)
         paths = draw_rates(result, arguments.figures, force=arguments.force)
-        print(f"wrote {len(paths)} figures into {arguments.figures}", file=sys.stderr)
+        figures = "1 figure" if len(paths) == 1 else f"{len(paths)} figures"
+        print(f"wrote {figures} into {arguments.figures}", file=sys.stderr)

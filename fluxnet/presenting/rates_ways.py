@@ -60,7 +60,7 @@ def _estimators(found: CultivationRates) -> tuple[Table, ...]:
     )  # fmt: skip
     notes = (
         "regression: amounts against the integral of biomass; spline: slopes of smoothed amounts",
-        "where they are more than 2 sds apart the rate is not constant in the phase",
+        "more than 2 sds apart: the rate is not constant, or too few samples bend the spline",
     )
     title = "Two estimators of the same rates [mmol/g/h; mu 1/h]"
     return (Table("estimators", title, columns, tuple(rows), notes),)
