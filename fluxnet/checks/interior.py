@@ -16,6 +16,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.checks.cone import Cone, Form, FormKind
+from fluxnet.exact.programme import make_programme
+from fluxnet.exact.simplex import Place, solve_from
 from fluxnet.exact.sparse import NullSpace, null_space, point_near, product
 from fluxnet.ground.record import record
 from fluxnet.solving.linear import Outcome, Programme
@@ -23,8 +25,8 @@ from fluxnet.solving.problem import Problem, Row, RowKind
 from fluxnet.solving.scaling import find_scales
 
 __all__ = [
-    "ConeRows", "Interior", "Opening", "cone_rows", "exact_weights", "find_interior", "open_most",
-    "without_noise",
+    "ConeRows", "Interior", "Opening", "cone_rows", "exact_weights", "find_interior",
+    "open_exactly", "open_most", "without_noise",
 ]
 
 Vector = NDArray[np.float64]
@@ -32,6 +34,8 @@ Vector = NDArray[np.float64]
 # Far below 1, the least value of an open side, and far above what the solver leaves behind.
 _OPEN = 1e-6
 _NOISE = 1e-9
+# Exact pivots times forms: some seconds.
+_MOST_STEPS = 40_000
 
 
 @record
@@ -142,10 +146,7 @@ def open_most(cone: Cone, wanted: Sequence[int] | None = None) -> Opening:
     wanted
         Places of sides in ``cone.sides``; all of them unless given.
 
-    Raises
-    ------
-    ArithmeticError
-        Where the solver gives up.
+    Where the floating-point solver gives up the exact one is asked (:func:`open_exactly`).
     """
     rows = cone_rows(cone)
     asked = range(len(cone.sides)) if wanted is None else wanted
@@ -167,7 +168,7 @@ def open_most(cone: Cone, wanted: Sequence[int] | None = None) -> Opening:
     )
     solution = Programme(problem).maximise(np.concatenate([np.zeros(count), np.ones(more)]))
     if solution.outcome is not Outcome.OPTIMAL:
-        raise ArithmeticError(f"the solver could not tell what can run: {solution.outcome.value}")
+        return open_exactly(cone, asked)
     fluxes, amounts = solution.fluxes[:count].copy(), solution.fluxes[count:]
     for place, k in enumerate(asked):
         if k in rows.column_of:
@@ -175,6 +176,38 @@ def open_most(cone: Cone, wanted: Sequence[int] | None = None) -> Opening:
     opened = frozenset(k for place, k in enumerate(asked) if amounts[place] > _OPEN)
     weights = rows.weights(len(cone.sides), solution.row_prices, solution.column_prices)
     return Opening(opened, fluxes * rows.scale, weights)
+
+
+def open_exactly(cone: Cone, wanted: Sequence[int] | None = None) -> Opening:
+    """:func:`open_most` by exact pivots, as far as the steps that the cone's size allows lead.
+
+    Where they end before it is known what opens, what was reached is given: no proof of it will
+    stand.
+    """
+    asked = range(len(cone.sides)) if wanted is None else wanted
+    count, zero, one = len(cone.reactions), Fraction(0), Fraction(1)
+    place_of = {k: place for place, k in enumerate(asked)}
+    # Every side is a row of its own here, with what opens it taken off.
+    rows = [dict(form.row) for form in (*cone.equal, *cone.sides)]
+    for k, place in place_of.items():
+        rows[len(cone.equal) + k][count + place] = -one
+    programme = make_programme(
+        count + len(place_of),
+        rows,
+        [(zero, zero)] * len(cone.equal) + [(zero, None)] * len(cone.sides),
+        [(None, None)] * count + [(zero, one)] * len(place_of),
+        {count + place: -one for place in place_of.values()},
+    )
+    size = len(rows)
+    places = [Place.FREE] * count + [Place.LOW] * len(place_of) + [Place.BASIC] * size
+    found = solve_from(programme, places, _MOST_STEPS // size if size else None)
+    opened = frozenset(k for k, place in place_of.items() if found.fluxes[count + place] > 0)
+    prices = found.prices[len(cone.equal) :]
+    return Opening(
+        opened,
+        np.array([float(v) for v in found.fluxes[:count]]),
+        np.array([float(price) for price in prices]),
+    )
 
 
 def find_interior(cone: Cone) -> Interior:
@@ -192,7 +225,12 @@ def find_interior(cone: Cone) -> Interior:
     >>> interior.blocked, interior.verified
     (('ferment',), True)
     """
-    opening = open_most(cone)
+    found = _prove(cone, open_most(cone))
+    return found if found.verified else _prove(cone, open_exactly(cone))
+
+
+def _prove(cone: Cone, opening: Opening) -> Interior:
+    """What an opening says of a cone, and whether that stands in exact arithmetic."""
     closed = tuple(s for k, s in enumerate(cone.sides) if k not in opening.open)
     count = len(cone.reactions)
     space = null_space([f.row for f in (*cone.equal, *closed)], count)

@@ -7,13 +7,13 @@ can is shown with an irreducible set of reactions that makes it.
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Collection, Sequence
 from dataclasses import replace
 from enum import Enum
 from fractions import Fraction
 
 from fluxnet.checks.cone import Cone, Form, FormKind, flux_cone
-from fluxnet.checks.interior import exact_weights, open_most
+from fluxnet.checks.interior import Opening, exact_weights, open_exactly, open_most
 from fluxnet.checks.loops import find_loop
 from fluxnet.checks.words import and_list, equation, names_list
 from fluxnet.exact.sparse import null_space, product
@@ -94,12 +94,11 @@ def find_from_nothing(network: Network, stoich: Stoichiometry) -> FromNothing:
     ]
     opening = open_most(cone, wanted)
     if not opening.open:
-        weights = opening.weights.tolist()
-        asked = set(wanted)
-        held = [k for k, w in enumerate(weights) if w > 0 or k in asked]
-        space = null_space([f.row for f in cone.equal], len(cone.reactions))
-        proof = exact_weights(space, [cone.sides[k] for k in held], [weights[k] for k in held])
-        return FromNothing((), proof is not None or not wanted)
+        if not wanted or _is_proven(cone, wanted, opening):
+            return FromNothing((), True)
+        opening = open_exactly(cone, wanted)
+        if not opening.open:
+            return FromNothing((), _is_proven(cone, wanted, opening))
     found: list[Loop] = []
     verified = True
     for k in sorted(opening.open, key=lambda k: _order(network, cone.sides[k])):
@@ -109,6 +108,15 @@ def find_from_nothing(network: Network, stoich: Stoichiometry) -> FromNothing:
             continue
         found.append(_loop(network, cone, cone.sides[k], fluxes))
     return FromNothing(_each_cause_once(found), verified)
+
+
+def _is_proven(cone: Cone, wanted: Collection[int], opening: Opening) -> bool:
+    """Whether the weights of an opening prove that nothing wanted opens."""
+    weights = opening.weights.tolist()
+    held = [k for k, w in enumerate(weights) if w > 0 or k in wanted]
+    space = null_space([f.row for f in cone.equal], len(cone.reactions))
+    sides = [cone.sides[k] for k in held]
+    return exact_weights(space, sides, [weights[k] for k in held]) is not None
 
 
 def tell_from_nothing(network: Network, loops: Sequence[Loop]) -> tuple[Diagnostic, ...]:

@@ -11,9 +11,9 @@ import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.errors import MisuseError
-from fluxnet.ground.record import record
 from fluxnet.solving.basis_proof import Basis, is_best, is_spread
-from fluxnet.solving.outcome import Outcome
+from fluxnet.solving.exactly import Exactly, outcome_of
+from fluxnet.solving.outcome import LinearSolution, Outcome
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.residuals import (
     Entries,
@@ -27,7 +27,8 @@ from fluxnet.solving.scaling import find_scales
 from fluxnet.solving.solver_model import basis_places, load_model
 
 if TYPE_CHECKING:
-    from fluxnet.exact.simplex import Place
+    from fluxnet.exact.programme import ExactProgramme
+    from fluxnet.exact.simplex import ExactSolution, Place
 
 __all__ = ["LinearSolution", "Outcome", "Programme", "worst_violation"]
 
@@ -46,26 +47,6 @@ _ATTEMPTS = (
 )
 
 
-@record
-class LinearSolution:
-    """The end of one solve.
-
-    ``objective`` is NaN-free: the optimum, or ±inf where there is none. ``fluxes``,
-    ``row_prices`` and ``column_prices`` are zero unless the outcome is OPTIMAL. A price is the
-    change of the objective per unit by which the bound that holds the row (or column) is
-    raised, whether one minimises or maximises: cost = A' row_prices + column_prices.
-    ``residual`` is the worst violation of a bound or balance, as recomputed by
-    :func:`worst_violation`.
-    """
-
-    outcome: Outcome
-    objective: float
-    fluxes: Vector
-    row_prices: Vector
-    column_prices: Vector
-    residual: float
-
-
 _MEANINGS = {
     "kOptimal": Outcome.OPTIMAL,
     "kModelEmpty": Outcome.OPTIMAL,
@@ -81,6 +62,12 @@ class Programme:
     the costs or of a bound is a few pivots. Presolve is off: a warm start needs the whole
     model, and rays exist only there. Nothing is written anywhere.
 
+    Parameters
+    ----------
+    exact
+        The problem from its decimals as written. Where its coefficients lie decades apart each
+        answer is then proven, or mended, by exact pivots from the solver's basis.
+
     Examples
     --------
     >>> from fluxnet.solving.problem import Row, RowKind
@@ -93,7 +80,7 @@ class Programme:
     (5.0, [-1.0, 1.0])
     """
 
-    def __init__(self, problem: Problem) -> None:
+    def __init__(self, problem: Problem, exact: ExactProgramme | None = None) -> None:
         self.problem = problem
         self.outcome = Outcome.FAILED
         self.residual = 0.0
@@ -107,6 +94,9 @@ class Programme:
         self._cost_scale = 1.0
         self._row_scale, self._column_scale = find_scales(problem, sizes)
         self._is_spread = is_spread(sizes)
+        self._exactly = Exactly(problem, exact)
+        self._is_exact = self._is_spread and exact is not None
+        self._found: ExactSolution | None = None
         self._highs = load_model(problem, self._entries, self._row_scale, self._column_scale)
         self._set_method(*_ATTEMPTS[0])
 
@@ -116,6 +106,7 @@ class Programme:
         """Give row ``i`` other bounds; infinities lift them."""
         self._refuse_nan(low, high)
         self._row_low[i], self._row_high[i] = low, high
+        self._exactly.set_bounds(len(self._column_low) + i, low, high)
         scale = self._row_scale[i]
         self._highs.changeRowBounds(i, low * scale, high * scale)
 
@@ -123,6 +114,7 @@ class Programme:
         """Give the flux of column ``j`` other bounds; infinities lift them."""
         self._refuse_nan(low, high)
         self._column_low[j], self._column_high[j] = low, high
+        self._exactly.set_bounds(j, low, high)
         scale = self._column_scale[j]
         self._highs.changeColBounds(j, low / scale, high / scale)
 
@@ -171,8 +163,10 @@ class Programme:
         "Infeasible" is believed when the solver's weights prove it (or, where it has none, when
         two cold starts say so), "unbounded" when its direction keeps all bounds. Otherwise the
         programme is solved again from a cold start, by another simplex method; so it is where an
-        optimum does not meet its bounds.
+        optimum does not meet its bounds. What is still not known then exact pivots tell, if the
+        programme is not too large for them.
         """
+        self._found = None
         verdicts: list[Outcome] = []
         for strategy, tolerance in _ATTEMPTS:
             if verdicts:
@@ -180,11 +174,14 @@ class Programme:
                 self._set_method(strategy, tolerance)
             outcome, sure = self._attempt()
             verdicts.append(outcome)
-            if sure:
+            if (self._is_exact and len(verdicts) == 1 and self._ask_exactly()) or sure:
                 break
         else:
-            twice = verdicts[1:].count(Outcome.INFEASIBLE) > 1
-            outcome = Outcome.INFEASIBLE if twice else Outcome.FAILED
+            if not self._ask_exactly():
+                twice = verdicts[1:].count(Outcome.INFEASIBLE) > 1
+                outcome = Outcome.INFEASIBLE if twice else Outcome.FAILED
+        if self._found is not None:
+            outcome = outcome_of(self._found)
         if len(verdicts) > 1:
             self._set_method(*_ATTEMPTS[0])
         self.outcome = outcome
@@ -192,6 +189,8 @@ class Programme:
 
     def value(self) -> float:
         """The cost of the last optimum."""
+        if self._found is not None:
+            return float(self._found.objective)
         return float(self._highs.getInfo().objective_function_value) / self._cost_scale
 
     def fluxes(self) -> Vector:
@@ -200,16 +199,22 @@ class Programme:
 
     def dual_ray(self) -> Vector | None:
         """After INFEASIBLE: weights of the rows whose sum no fluxes can meet (Farkas)."""
+        if self._found is not None:
+            return np.array([float(w) for w in self._found.weights])
         _, exists, ray = self._highs.getDualRay()
         return np.array(ray) * self._row_scale if exists else None
 
     def primal_ray(self) -> Vector | None:
         """After UNBOUNDED: a direction of the fluxes that can be followed for ever."""
+        if self._found is not None:
+            return np.array([float(v) for v in self._found.ray])
         _, exists, ray = self._highs.getPrimalRay()
         return np.array(ray) * self._column_scale if exists else None
 
     def places(self) -> tuple[Place, ...]:
         """Where each flux, then each row, stands in the last basis (the rows' own without one)."""
+        if self._found is not None:
+            return self._found.places
         return basis_places(self._highs, *self.problem.matrix.shape)
 
     # --- inside ----------------------------------------------------------------------
@@ -225,14 +230,16 @@ class Programme:
             return LinearSolution(
                 outcome, sign * worth, nothing, np.zeros(rows), np.zeros(columns), 0.0
             )
-        solution = self._highs.getSolution()
+        cost_of, found = float(cost @ self._fluxes), self._found
+        if found is not None:
+            prices, gains = (np.array([float(p) for p in ps]) for ps in (found.prices, found.gains))
+            cost_of = float(sign * found.objective)
+        else:
+            solution = self._highs.getSolution()
+            prices = np.array(solution.row_dual) * self._row_scale / self._cost_scale
+            gains = np.array(solution.col_dual) / self._column_scale / self._cost_scale
         return LinearSolution(
-            outcome,
-            float(cost @ self._fluxes),
-            self._fluxes,
-            sign * np.array(solution.row_dual) * self._row_scale / self._cost_scale,
-            sign * np.array(solution.col_dual) / self._column_scale / self._cost_scale,
-            self.residual,
+            outcome, cost_of, self._fluxes, sign * prices, sign * gains, self.residual
         )
 
     def _bounds(self) -> tuple[Pair, Pair]:
@@ -262,8 +269,18 @@ class Programme:
         if outcome is Outcome.OPTIMAL:
             self._fluxes = np.array(self._highs.getSolution().col_value) * self._column_scale
             self.residual = violation_of(self._entries, self._fluxes, *bounds)
-            return outcome, self.residual < 1e-7 and (not self._is_spread or self._is_best())
+            doubtful = self._is_spread and not self._is_exact
+            return outcome, self.residual < 1e-7 and (not doubtful or self._is_best())
         return outcome, False
+
+    def _ask_exactly(self) -> bool:
+        """Whether exact pivots from the solver's basis lead to an answer."""
+        costs = self._costs / self._column_scale / self._cost_scale
+        self._found = found = self._exactly.solve(costs, self.places())
+        if found is not None:
+            self._fluxes = np.array([float(v) for v in found.fluxes])
+            self.residual = violation_of(self._entries, self._fluxes, *self._bounds())
+        return found is not None
 
     def _is_best(self) -> bool:
         """Whether the solver's basis is the best, in exact arithmetic."""

@@ -8,7 +8,13 @@ from fractions import Fraction
 import pytest
 
 from fluxnet.checks.cone import Cone, Form, FormKind, flux_cone
-from fluxnet.checks.interior import Interior, exact_weights, find_interior, open_most
+from fluxnet.checks.interior import (
+    Interior,
+    exact_weights,
+    find_interior,
+    open_exactly,
+    open_most,
+)
 from fluxnet.exact.sparse import null_space
 from fluxnet.matrices.stoichiometry import stoichiometry
 from fluxnet.network.model import Network
@@ -101,3 +107,28 @@ def test_two_sides_against_each_other_leave_a_plane(side: int) -> None:
     assert forms[side] in found.closed
     assert found.space.dimension == 1
     assert found.blocked == ()
+
+
+SPREAD = """
+carrier s1 carries energy
+carrier s2 carries energy
+carrier s4 carries energy
+carrier s5 carries energy
+compartment c
+    r2 : 3 s4 -> 1000 s5 + 1000000 s2
+    r6 : 0.37 s1 + 2 s4 -> 0.000001 s2
+"""
+
+
+def test_coefficients_twelve_decades_apart_are_told_and_proven(read: Read) -> None:
+    found = interior(read(SPREAD))
+
+    assert (found.blocked, found.verified) == (("r2", "r6"), True)
+
+
+def test_exact_pivots_open_what_the_solver_opens(read: Read) -> None:
+    for text in (BASE, BASE + "    r5 : A -> B\nlimit oxygen <= 0\n", SPREAD):
+        network = read(text)
+        cone = flux_cone(network, stoichiometry(network))
+
+        assert open_exactly(cone).open == open_most(cone).open
