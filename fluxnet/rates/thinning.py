@@ -13,7 +13,10 @@ from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
 
-__all__ = ["BinSums", "Thinned", "add_sums", "average_bins", "sum_bins", "thin"]
+__all__ = [
+    "BinSums", "BinnedTimes", "Thinned", "add_sums", "average_bins", "bin_times", "sum_bins",
+    "sum_values", "thin",
+]  # fmt: skip
 
 Array = NDArray[np.float64]
 
@@ -51,17 +54,43 @@ class Thinned:
     alike: float
 
 
+@record
+class BinnedTimes:
+    """Where the rows of a chunk fall in bins: shared by all that was measured at those times."""
+
+    width: float
+    index: NDArray[np.int64]
+    starts: NDArray[np.intp]
+    time: Array
+    """From the middle of each row's bin."""
+
+    sums: Array
+    """3 x bins: n, t, t^2."""
+
+
+def bin_times(time: Array, width: float) -> BinnedTimes:
+    """Put times, which increase, in bins of a width that start at multiples of it."""
+    keys = np.floor(time / width)
+    starts = np.flatnonzero(np.concatenate([[True], keys[1:] != keys[:-1]]))[: keys.size]
+    t = time - (keys + 0.5) * width
+    count = np.diff(np.append(starts, keys.size)).astype(np.float64)
+    parts = [np.add.reduceat(p, starts) if keys.size else np.zeros(0) for p in (t, t * t)]
+    return BinnedTimes(width, keys[starts].astype(np.int64), starts, t, np.array([count, *parts]))
+
+
+def sum_values(bins: BinnedTimes, value: Array) -> BinSums:
+    """Add up the values of one chunk at times that are in bins already."""
+    steps = np.zeros_like(value)
+    np.subtract(value[1:], value[:-1], out=steps[1:])
+    steps[bins.starts] = 0.0
+    parts = (value, value * value, bins.time * value, steps * steps)
+    sums = [np.add.reduceat(p, bins.starts) if value.size else np.zeros(0) for p in parts]
+    return BinSums(bins.width, bins.index, np.array([*bins.sums, *sums]), bins.sums[0] - 1)
+
+
 def sum_bins(time: Array, value: Array, width: float) -> BinSums:
     """Add up one chunk, whose times increase, in bins of a width that start at multiples of it."""
-    keys = np.floor(time / width).astype(np.int64)
-    starts = np.flatnonzero(np.r_[True, np.diff(keys) != 0]) if keys.size else np.arange(0)
-    t = time - (keys + 0.5) * width
-    steps = np.zeros_like(value)
-    steps[1:] = np.diff(value)
-    steps[starts] = 0.0
-    parts = (np.ones_like(value), t, t * t, value, value * value, t * value, steps * steps)
-    sums = np.array([np.add.reduceat(p, starts) for p in parts]) if keys.size else np.zeros((7, 0))
-    return BinSums(width, keys[starts], sums, sums[0] - 1)
+    return sum_values(bin_times(time, width), value)
 
 
 def add_sums(first: BinSums, second: BinSums) -> BinSums:

@@ -20,9 +20,15 @@ from fluxnet.tables.numerals import Decimal
 from fluxnet.tables.raw_blocks import Block
 from fluxnet.tables.raw_clock import DateOrder
 from fluxnet.tables.raw_grid import shown
-from fluxnet.tables.raw_long import choose_width, clock_fault, read_long, thin_piece
+from fluxnet.tables.raw_long import choose_width, read_long, thin_piece
 from fluxnet.tables.raw_numbers import Doubt
-from fluxnet.tables.raw_times import TimeAxis, changed_clock, read_axis, time_columns
+from fluxnet.tables.raw_times import (
+    TimeAxis,
+    changed_clock,
+    clock_fault,
+    read_axis,
+    time_columns,
+)
 
 __all__ = ["BlockRead", "read_block"]
 

@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
-from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.rates.cultivation import (
     Cultivation,
@@ -25,9 +25,14 @@ from fluxnet.rates.cultivation import (
 from fluxnet.tables.cultivation_blocks import BlockRead
 from fluxnet.tables.cultivation_grids import Gathered
 from fluxnet.tables.cultivation_series import Piece
-from fluxnet.tables.raw_clock import DateOrder, read_duration, read_moment
+from fluxnet.tables.cultivation_zero import (
+    Zero,
+    find_zero,
+    nothing_read,
+    shift_of,
+    whole_table,
+)
 from fluxnet.tables.raw_grid import RawValue, shown
-from fluxnet.tables.raw_long import as_moment
 
 __all__ = ["join"]
 
@@ -52,7 +57,7 @@ def join(
     if runs and common:
         faults.append(Diagnostic(
             Name.MISSING_COLUMN, f"{common[0].title} has no column `run`, and other tables tell "
-            f"the runs {', '.join(runs[:5])} apart", _whole(common[0]),
+            f"the runs {', '.join(runs[:5])} apart", whole_table(common[0]),
             mend="add the column `run`, or put each cultivation in a folder of its own",
         ))  # fmt: skip
         return (), tuple(faults)
@@ -64,16 +69,6 @@ def join(
     return tuple(found), tuple(faults)
 
 
-@record
-class _Zero:
-    """Inoculation: as a clock, as a process time, and what a clock shows at process time 0."""
-
-    clock: float | None
-    hours: float
-    offset: float | None
-    words: str
-
-
 def _join_run(
     gathered: Gathered, run: str, name: str, mode: Mode | None, faults: list[Diagnostic]
 ) -> Cultivation | None:
@@ -83,14 +78,14 @@ def _join_run(
     for one in told:
         words.update(one.words)
     settings = _settings([s for one in told for s in one.settings],
-                         next((t.dilution for t in told if t.dilution is not None), None))
-    zero = _zero(reads, words.get("inoculation"), gathered.order, faults)
+                         next((t.dilution for t in told if t.dilution is not None), None), faults)
+    zero = find_zero(reads, words.get("inoculation"), gathered.order, faults)
     if zero is None:
         return None
     doubtful = [d for read in reads for d in read.doubtful]
     groups: dict[tuple[SeriesKind, str], list[tuple[Piece, float]]] = {}
     for read in reads:
-        shift = _shift(read, zero)
+        shift = shift_of(read, zero)
         for piece in read.pieces:
             meaning = piece.column.meaning
             assert meaning.kind is not None
@@ -101,11 +96,7 @@ def _join_run(
         if joined is not None:
             series.append(joined)
     if not series:
-        faults.append(Diagnostic(
-            Name.NO_RAW_DATA, f"{name}: no row has both a time and a value",
-            _whole(reads[0]) if reads else Span(name, 0, 0, 0),
-            mend="look what the columns were taken for; columns.csv can say otherwise",
-        ))  # fmt: skip
+        faults.append(nothing_read(reads))
         return None
     _tell_before(series, faults)
     taken = mode or _mode(words.get("mode"), series, settings, faults)
@@ -116,94 +107,27 @@ def _join_run(
     )  # fmt: skip
 
 
-def _settings(settings: Sequence[Setting], dilution: float | None) -> tuple[Setting, ...]:
+def _settings(
+    settings: Sequence[Setting], dilution: float | None, faults: list[Diagnostic]
+) -> tuple[Setting, ...]:
     """Settings, the last one of each kind; a dilution rate as a flow of feed."""
     last = {(s.kind, s.of, s.stream): s for s in settings}
     volume = last.get((SettingKind.VOLUME, "", ""))
+    flow = last.get((SettingKind.GAS_FLOW, "", ""))
+    if flow is not None and flow.unit == "L/L/h":
+        if volume is None:
+            faults.append(Diagnostic(
+                Name.BROTH_UNKNOWN, f"{flow.place}: the gas flow is per broth, and no volume is "
+                "given", mend="give the volume as a setting: volume; 1.5; L",
+            ))  # fmt: skip
+        else:
+            sd = None if flow.sd is None else flow.sd * volume.value
+            last[(flow.kind, "", "")] = replace(flow, value=flow.value * volume.value, sd=sd,
+                                                unit="L/h")  # fmt: skip
     if dilution is not None and volume is not None:
-        flow = Setting(SettingKind.FLOW, dilution * volume.value, "L/h", None, "", "feed")
-        last.setdefault((flow.kind, "", "feed"), flow)
+        feed = Setting(SettingKind.FLOW, dilution * volume.value, "L/h", None, "", "feed")
+        last.setdefault((feed.kind, "", "feed"), feed)
     return tuple(last.values())
-
-
-def _zero(
-    reads: Sequence[BlockRead], said: tuple[RawValue, str] | None, order: DateOrder | None,
-    faults: list[Diagnostic],
-) -> _Zero | None:
-    """When the cultivation was inoculated, as told or, where all tell a clock, as assumed."""
-    offsets = [(r, r.offset) for r in reads if r.offset is not None]
-    offset = offsets[0][1] if offsets else None
-    for read, other in offsets[1:]:
-        assert offset is not None
-        apart = other - offset
-        if abs(apart) > 1 / 60:
-            faults.append(Diagnostic(
-                Name.CLOCKS_DIFFER, f"the clock of {read.title} is {abs(apart) * 60:.0f} min "
-                f"{'ahead of' if apart > 0 else 'behind'} that of {offsets[0][0].title}, by the "
-                "process time that both tell", _whole(read),
-                mend="process times are used; correct the clock, or the process time",
-            ))  # fmt: skip
-    clocks = [r for r in reads if r.is_clock]
-    if said is not None:
-        value, place = said
-        moment = read_moment(value, order or DateOrder.DAY_FIRST)
-        hours = read_duration(value)
-        if moment is None and hours is None and isinstance(value, (int, float)):
-            hours = float(value)
-        if moment is None and hours is None and isinstance(value, str):
-            number = value.lower().removesuffix("h").strip().replace(",", ".")
-            hours = float(number) if number.replace(".", "", 1).isdigit() else None
-        if moment is None and hours is None:
-            faults.append(Diagnostic(
-                Name.UNREADABLE_CELL, f"{place}: the inoculation `{shown(value)}` is no time",
-                mend="write 2026-03-02 09:30, or a process time such as 2.5 h",
-            ))  # fmt: skip
-            return None
-        if moment is None and clocks and len(clocks) == len(reads):
-            assert hours is not None  # a time of day, on the first day
-            first = min(r.first for r in clocks)
-            moment, hours = float(np.floor(first / 24)) * 24 + hours, None
-        words = f"inoculation at {as_moment(moment) if moment is not None else f'{hours:g} h'}"
-        start = moment - offset if moment is not None and offset is not None else hours
-        return _checked(reads, _Zero(moment, start or 0.0, offset, words), faults)
-    if clocks and offset is None and len(clocks) == len(reads):
-        first = min(r.first for r in clocks)
-        words = f"inoculation not told: the first row, {as_moment(first)}, is taken"
-        faults.append(Diagnostic(
-            Name.INOCULATION_ASSUMED, f"no line tells the inoculation; the first row "
-            f"({as_moment(first)}) is taken as time 0", _whole(clocks[0]),
-            mend="write a line above the table: inoculation; 2026-03-02 09:30",
-        ))  # fmt: skip
-        return _Zero(first, 0.0, None, words)
-    return _checked(reads, _Zero(None, 0.0, offset, "process time 0 is inoculation"), faults)
-
-
-def _checked(reads: Sequence[BlockRead], zero: _Zero, faults: list[Diagnostic]) -> _Zero | None:
-    """None where the clock of a table cannot be tied to the process time of another."""
-    for read in reads:
-        tied = zero.offset is not None or (zero.clock is not None if read.is_clock else (
-            zero.clock is None or zero.hours != 0.0
-        ))  # fmt: skip
-        if not tied and (read.is_clock or any(r.is_clock for r in reads)):
-            faults.append(Diagnostic(
-                Name.CLOCKS_UNTIED, f"{read.title} tells "
-                f"{'a clock' if read.is_clock else 'process time'}, others do not, and nothing "
-                "ties the two", _whole(read),
-                mend="write a line: inoculation; 2026-03-02 09:30 (process time is then taken "
-                "from it), or give both times in one table",
-            ))  # fmt: skip
-            return None
-    return zero
-
-
-def _shift(read: BlockRead, zero: _Zero) -> float:
-    """What is taken from a table's times to tell them from inoculation."""
-    if not read.is_clock:
-        return zero.hours
-    if zero.clock is not None:
-        return zero.clock
-    assert zero.offset is not None
-    return zero.offset + zero.hours
 
 
 def _series(
@@ -311,7 +235,7 @@ def _mode(
 
 
 def _understood(
-    gathered: Gathered, reads: Sequence[BlockRead], zero: _Zero, mode: Mode,
+    gathered: Gathered, reads: Sequence[BlockRead], zero: Zero, mode: Mode,
     series: Sequence[Series],
 ) -> tuple[str, ...]:
     """Three lines: what was read, the time, the columns."""
@@ -332,7 +256,3 @@ def _understood(
         f"; not used: {', '.join(dict.fromkeys(left))}" if left else ""
     )
     return first, second, third
-
-
-def _whole(read: BlockRead) -> Span:
-    return Span(read.file, 0, 0, 0)

@@ -17,7 +17,7 @@ from fluxnet.tables.cultivation_joining import join
 from fluxnet.tables.mapping import ColumnMatch, Mapping, read_mapping
 from fluxnet.tables.numerals import Decimal
 from fluxnet.tables.raw_files import folders_of, read_raw_path
-from fluxnet.tables.raw_long import NotOneTableError
+from fluxnet.tables.raw_long_times import NotOneTableError
 
 __all__ = ["CultivationReading", "read_cultivation"]
 

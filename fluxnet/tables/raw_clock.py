@@ -9,7 +9,10 @@ from enum import Enum
 
 from fluxnet.tables.raw_grid import RawValue
 
-__all__ = ["DateOrder", "date_orders", "find_order", "read_duration", "read_moment", "to_hours"]
+__all__ = [
+    "DateOrder", "as_moment", "date_orders", "find_order", "read_duration", "read_moment",
+    "to_hours",
+]  # fmt: skip
 
 
 class DateOrder(Enum):
@@ -160,9 +163,15 @@ def _moment(found: re.Match[str], month: int, day: int) -> float | None:
         return None
     if hour > 24 or minute > 59:
         return None
-    hours = to_hours(day_start) + hour + minute / 60 + seconds / 3600
+    hours = to_hours(day_start) + (hour * 3600 + minute * 60 + seconds) / 3600
     zone = found["zone"]
     if zone and zone[0] in "+-":
         shift = int(zone[1:3]) + int(zone[-2:]) / 60
         hours -= shift if zone[0] == "+" else -shift
     return hours
+
+
+def as_moment(hours: float) -> str:
+    """Hours since 1970 as a date, for messages."""
+    moment = datetime.datetime(1970, 1, 1) + datetime.timedelta(hours=hours)
+    return moment.isoformat(" ", "minutes")

@@ -6,7 +6,6 @@ reads the file, and only cells that are not plainly numbers are looked at one by
 
 from __future__ import annotations
 
-import datetime
 from collections.abc import Sequence
 from dataclasses import field, replace
 from typing import TYPE_CHECKING
@@ -20,20 +19,34 @@ from fluxnet.ground.progress import Progress
 from fluxnet.ground.record import record
 from fluxnet.ground.source import Span
 from fluxnet.rates.cultivation import DoubtfulCell, Form
-from fluxnet.rates.thinning import BinSums, add_sums, average_bins, sum_bins
+from fluxnet.rates.thinning import (
+    BinnedTimes,
+    BinSums,
+    add_sums,
+    average_bins,
+    bin_times,
+    sum_bins,
+    sum_values,
+)
 from fluxnet.tables.cultivation_columns import Column
 from fluxnet.tables.cultivation_series import Piece, gas_faults, value_faults
 from fluxnet.tables.numerals import Decimal, possible_decimals
 from fluxnet.tables.raw_blocks import Block
-from fluxnet.tables.raw_clock import DateOrder, read_duration, read_moment
-from fluxnet.tables.raw_fixed import read_fixed
+from fluxnet.tables.raw_clock import DateOrder
+from fluxnet.tables.raw_long_times import (
+    LongState,
+    LongSums,
+    NotOneTableError,
+    chunk_times,
+    in_order,
+)
 from fluxnet.tables.raw_numbers import read_number_text
-from fluxnet.tables.raw_times import TimeColumns, changed_clock
+from fluxnet.tables.raw_times import TimeColumns
 
 if TYPE_CHECKING:
     import pandas as pd
 
-__all__ = ["KEPT_BINS", "LongRead", "NotOneTableError", "choose_width", "read_long", "thin_piece"]
+__all__ = ["KEPT_BINS", "LongRead", "choose_width", "read_long", "thin_piece"]
 
 Array = NDArray[np.float64]
 
@@ -42,12 +55,7 @@ KEPT_BINS = 5_000
 
 _CHUNK = 131_072
 _SECONDS = (1, 2, 5, 10, 15, 20, 30, 60, 120, 300, 600, 900, 1200, 1800, 3600)
-_MOST_TOLD = 100
 _ENCODINGS = {"UTF-8": "utf-8", "UTF-16": "utf-16", "Latin-1": "cp1252"}
-
-
-class NotOneTableError(Exception):
-    """A long file holds more than one table: it has to be read whole."""
 
 
 @record
@@ -93,24 +101,29 @@ def read_long(
     assert clock is not None
     needed = [clock, *([times.of_day] if times.of_day else [])]
     wanted = sorted({t.column for t in needed} | {c.title.column for c in columns})
-    state = _State(grid.title, decimal, [_Sums() for _ in columns])
+    state = LongState(grid.title, decimal, [LongSums() for _ in columns])
     size = grid.long.stat().st_size
     with grid.long.open("rb") as opened:
         reader = pd.read_csv(
             opened, sep=grid.separator, decimal=decimal.value, header=None, skiprows=first - 1,
             usecols=wanted, names=list(range(len(block.titles))), index_col=False,
+            dtype={t.column: object for t in needed if times.clock is not None},
             chunksize=_CHUNK, skip_blank_lines=False, keep_default_na=False, na_values=[""],
             encoding=_ENCODINGS[grid.encoding], encoding_errors="replace", on_bad_lines="error",
         )  # fmt: skip
         line, last, shift = first, -np.inf, 0.0
         try:
             for chunk in reader:
-                time = _times(chunk, times, order, line, state)
-                time, last, shift = _in_order(time, last, shift, times, line, state)
+                time = chunk_times(chunk, times, order, line, state)
+                time, last, shift = in_order(time, last, shift, times, line, state)
                 lines = np.arange(line, line + len(chunk))
+                known = np.isfinite(time)
+                if not known.all():
+                    time, lines, chunk = time[known], lines[known], chunk[known]
+                bins = bin_times(time, width)
                 for column, sums in zip(columns, state.sums, strict=True):
-                    _add(chunk[column.title.column], column, sums, time, lines, width, state)
-                line += len(chunk)
+                    _add(chunk[column.title.column], column, sums, time, lines, bins, state)
+                line += known.size
                 progress(f"reading {grid.short}", min(opened.tell(), size), size)
                 if any(d.name is Name.TIME_BACKWARDS for d in state.faults):
                     break
@@ -125,115 +138,9 @@ def read_long(
     return LongRead(pieces, line - first, width, tuple(state.doubtful), tuple(state.faults))
 
 
-class _Sums:
-    """What is added up of one column."""
-
-    def __init__(self) -> None:
-        self.bins: BinSums | None = None
-        self.events: list[tuple[float, float, int]] = []
-        self.told: set[Name] = set()
-
-
-class _State:
-    """What is gathered while a file goes by."""
-
-    def __init__(self, title: str, decimal: Decimal, sums: list[_Sums]) -> None:
-        self.title, self.decimal, self.sums = title, decimal, sums
-        self.short = title.rpartition("/")[2]
-        self.doubtful: list[DoubtfulCell] = []
-        self.faults: list[Diagnostic] = []
-        self.more = 0
-
-    def doubt(self, line: int, text: str, done: str) -> None:
-        """Keep a doubtful cell, or count it where there are many."""
-        if len(self.doubtful) < _MOST_TOLD:
-            self.doubtful.append(DoubtfulCell(f"{self.short} row {line}", text, done))
-        else:
-            self.more += 1
-
-
-def _times(
-    chunk: pd.DataFrame, times: TimeColumns, order: DateOrder | None, line: int, state: _State
-) -> Array:
-    clock = times.clock or times.number
-    assert clock is not None
-    cells = chunk[clock.column]
-    if times.clock is None and cells.dtype.kind in "fi":
-        return cells.to_numpy(dtype=np.float64) * (times.scale or 1.0)
-    if cells.dtype.kind in "fi":
-        return np.array([
-            np.nan if v is None else v for v in (read_moment(float(x), order) for x in cells)
-        ])
-    texts = cells.fillna("").to_numpy(dtype=object)
-    found = read_fixed(texts, order) if times.clock is not None else None
-    if found is None:
-        found = np.full(len(texts), np.nan)
-        for place, text in enumerate(texts):
-            if text == "":
-                continue
-            bare = str(text).strip()
-            moment = read_moment(bare, order) if times.clock else _duration(bare, times, state)
-            if moment is None:
-                raise NotOneTableError(f"row {line + place}: `{bare}` is no time")
-            found[place] = moment
-    if times.of_day is not None:
-        parts = [read_duration(str(t).strip()) for t in chunk[times.of_day.column].fillna("")]
-        found = np.floor(found / 24) * 24 + np.array([np.nan if p is None else p for p in parts])
-    return found
-
-
-def _duration(text: str, times: TimeColumns, state: _State) -> float | None:
-    hours = read_duration(text)
-    if hours is not None:
-        return hours
-    value, _, is_limit, _ = read_number_text(text, state.decimal)
-    return None if is_limit or not np.isfinite(value) else value * (times.scale or 1.0)
-
-
-def _in_order(
-    time: Array, last: float, shift: float, times: TimeColumns, line: int, state: _State
-) -> tuple[Array, float, float]:
-    """Times of a chunk that never fall: hours of summer time mended, other falls told."""
-    time = time + shift
-    known = np.flatnonzero(np.isfinite(time))
-    if not known.size:
-        return time, last, shift
-    course = np.concatenate([[last] if np.isfinite(last) else [], time[known]])
-    ahead = course.size - known.size
-    if times.clock is not None:
-        for place, hours in changed_clock(course):
-            course[place:] += hours
-            shift += hours
-            row = line + int(known[place - ahead])
-            state.faults.append(clock_fault(state.title, row, hours))
-        time[known] = course[ahead:]
-    falls = np.flatnonzero(np.diff(course) < 0)
-    if falls.size:
-        row = line + int(known[falls[0] + 1 - ahead])
-        state.faults.append(Diagnostic(
-            Name.TIME_BACKWARDS, f"{state.short} row {row}: time runs backwards, from "
-            f"{course[falls[0]]:.6g} to {course[falls[0] + 1]:.6g} h", Span(state.title, row, 1, 1),
-            mend="correct the time, or put the rows in order",
-        ))  # fmt: skip
-    return time, float(course[-1]), shift
-
-
-def clock_fault(title: str, row: int, hours: float) -> Diagnostic:
-    """The warning of a clock that was changed."""
-    way = "back" if hours > 0 else "ahead"
-    end = "end" if hours > 0 else "start"
-    return Diagnostic(
-        Name.CLOCK_CHANGED,
-        f"{title.rpartition('/')[2]} row {row}: the clock was set an hour {way} "
-        f"at the {end} of summer time; {hours:+g} h are added from there on",
-        Span(title, row, 1, 1),
-        mend="look whether the other tables of that night were written by the same clock",
-    )  # fmt: skip
-
-
 def _add(
-    cells: pd.Series[float], column: Column, sums: _Sums, time: Array,
-    lines: NDArray[np.int64], width: float, state: _State,
+    cells: pd.Series[float], column: Column, sums: LongSums, time: Array,
+    lines: NDArray[np.int64], bins: BinnedTimes, state: LongState,
 ) -> None:
     if cells.dtype.kind in "fi":
         numbers = cells.to_numpy(dtype=np.float64)
@@ -241,28 +148,26 @@ def _add(
         numbers = _numbers(cells, lines, state)
     factor, offset = float(column.change.factor), float(column.change.offset)
     value: Array = np.asarray(numbers * factor + offset)
-    kept = np.isfinite(value) & np.isfinite(time)
+    kept = np.isfinite(value)
     if not kept.all():
         value, time, lines = value[kept], time[kept], lines[kept]
+        bins = bin_times(time, bins.width)
     if column.meaning.form is Form.EVENT:
         some = np.flatnonzero(value)
         sums.events += [(float(time[i]), float(value[i]), int(lines[i])) for i in some]
         return
-    none = np.zeros(0, dtype=np.bool_)
-    for fault in (
-        *gas_faults(_bare(column, state, time, value, lines, none)),
-        *value_faults(_bare(column, state, time, value, lines, none)),
-    ):
+    bare = _bare(column, state, time, value, lines, np.zeros(0, dtype=np.bool_))
+    for fault in (*gas_faults(bare), *value_faults(bare)):
         if fault.name not in sums.told:
             sums.told.add(fault.name)
             state.faults.append(fault)
     if value.size:
-        found = sum_bins(time, value, width)
+        found = sum_values(bins, value)
         sums.bins = found if sums.bins is None else add_sums(sums.bins, found)
 
 
 def _bare(
-    column: Column, state: _State, time: Array, value: Array, lines: NDArray[np.int64],
+    column: Column, state: LongState, time: Array, value: Array, lines: NDArray[np.int64],
     below: NDArray[np.bool_],
 ) -> Piece:
     from fluxnet.ground.source import Source
@@ -272,7 +177,7 @@ def _bare(
     return Piece(column, grid, time, value, None, below, lines)
 
 
-def _numbers(cells: pd.Series[float], lines: NDArray[np.int64], state: _State) -> Array:
+def _numbers(cells: pd.Series[float], lines: NDArray[np.int64], state: LongState) -> Array:
     """A chunk's column with texts in it: only those are read one by one."""
     import pandas as pd
 
@@ -301,7 +206,7 @@ def _numbers(cells: pd.Series[float], lines: NDArray[np.int64], state: _State) -
     return numbers
 
 
-def _piece(block: Block, column: Column, sums: _Sums) -> Piece:
+def _piece(block: Block, column: Column, sums: LongSums) -> Piece:
     grid = block.grid
     if sums.events:
         time, value, lines = (np.array(x) for x in zip(*sums.events, strict=True))
@@ -330,9 +235,3 @@ def thin_piece(piece: Piece, width: float) -> Piece:
     if piece.column.meaning.form is Form.EVENT or not piece.time.size:
         return piece
     return _averaged(piece, sum_bins(piece.time, piece.value, width))
-
-
-def as_moment(hours: float) -> str:
-    """Hours since 1970 as a date, for messages."""
-    moment = datetime.datetime(1970, 1, 1) + datetime.timedelta(hours=hours)
-    return moment.isoformat(" ", "minutes")

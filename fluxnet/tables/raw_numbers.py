@@ -4,11 +4,13 @@ from __future__ import annotations
 
 import re
 from collections.abc import Iterable, Sequence
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from fluxnet.ground.record import record
+from fluxnet.ground.source import Span
 from fluxnet.tables.grid import Cell
 from fluxnet.tables.no_numbers import ABSENT
 from fluxnet.tables.numerals import (
@@ -63,13 +65,25 @@ def is_numeric(value: RawValue) -> bool:
 def choose_decimal(grid: RawGrid, places: Iterable[tuple[int, int]]) -> DecimalChoice:
     """The decimal sign of a grid from the numbers of its tables; each text is looked at once."""
     seen: dict[str, Cell] = {}
+    rows: dict[int, int] = {}
     for row, column in places:
         value = grid.cell(row, column)
         if type(value) is str and value not in seen and ("." in value or "," in value):
             text = value.lstrip("<>≤≥= ")
             if possible_decimals(split_numeral(text).value):
-                seen[value] = Cell(text, column, grid.span(row, column))
-    return decide_decimal(seen.values(), grid.separator)
+                line = grid.lines[row]
+                seen[value] = Cell(text, column, Span(grid.title, line, column + 1, column + 2))
+                rows[line] = row
+    found = decide_decimal(seen.values(), grid.separator)
+
+    def placed(cells: tuple[Cell, ...]) -> tuple[Cell, ...]:
+        # where a cell stands in its line is sought only for those that are told
+        return tuple(replace(c, span=grid.span(rows[c.span.line], c.column)) for c in cells)
+
+    return replace(
+        found, doubtful=placed(found.doubtful), disputed=placed(found.disputed),
+        contrary=placed(found.contrary),
+    )  # fmt: skip
 
 
 def read_column(grid: RawGrid, rows: Sequence[int], column: int, decimal: Decimal) -> NumberColumn:

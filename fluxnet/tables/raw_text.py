@@ -91,7 +91,14 @@ def _quoted(lines: tuple[str, ...], first: int, sign: str) -> tuple[list[str], i
             return [], first + 1
         text += "\n" + lines[behind]
         behind += 1
-    cells = next(csv.reader([text], delimiter=sign, skipinitialspace=True))
-    if behind > first + 1 and any("\n" in c and sign in c.partition("\n")[2] for c in cells):
+    parts = text.split("\n")
+    reader = csv.reader([f"{t}\n" for t in parts[:-1]] + parts[-1:], delimiter=sign,
+                        skipinitialspace=True)  # fmt: skip
+    try:
+        cells = next(reader)
+    except csv.Error:
+        return [], first + 1
+    swallowed = any(sign in c.partition("\n")[2] for c in cells)
+    if reader.line_num < len(parts) or swallowed:
         return [], first + 1
     return [" ".join(c.split("\n")) for c in cells], behind

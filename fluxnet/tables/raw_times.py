@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
+from fluxnet.ground.source import Span
 from fluxnet.tables.cultivation_words import Part
 from fluxnet.tables.numerals import Decimal
 from fluxnet.tables.raw_clock import (
@@ -24,7 +25,9 @@ from fluxnet.tables.raw_grid import RawGrid, shown
 from fluxnet.tables.raw_numbers import Doubt, read_column
 from fluxnet.tables.raw_titles import RawTitle, try_unit
 
-__all__ = ["TimeAxis", "TimeColumns", "changed_clock", "read_axis", "time_columns"]
+__all__ = [
+    "TimeAxis", "TimeColumns", "changed_clock", "clock_fault", "read_axis", "time_columns",
+]  # fmt: skip
 
 Array = NDArray[np.float64]
 
@@ -246,3 +249,16 @@ def _is_change(day: datetime.date, *, autumn: bool) -> bool:
     return (day.month == 10 and last) or (day.month == 11 and day.day <= 7) if autumn else (
         (day.month == 3 and last) or (day.month == 3 and 8 <= day.day <= 14)
     )
+
+
+def clock_fault(title: str, row: int, hours: float) -> Diagnostic:
+    """The warning of a clock that was changed."""
+    way = "back" if hours > 0 else "ahead"
+    end = "end" if hours > 0 else "start"
+    return Diagnostic(
+        Name.CLOCK_CHANGED,
+        f"{title.rpartition('/')[2]} row {row}: the clock was set an hour {way} "
+        f"at the {end} of summer time; {hours:+g} h are added from there on",
+        Span(title, row, 1, 1),
+        mend="look whether the other tables of that night were written by the same clock",
+    )  # fmt: skip

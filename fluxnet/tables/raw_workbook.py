@@ -19,6 +19,7 @@ from fluxnet.ground.names import Name
 from fluxnet.ground.record import record
 from fluxnet.ground.source import Source, Span
 from fluxnet.tables.raw_grid import RawGrid, RawValue
+from fluxnet.tables.raw_old_workbook import old_marks
 from fluxnet.tables.sheet_marks import SheetMarks, percent_styles, place_of, read_marks, sheet_path
 from fluxnet.tables.workbook import DAMAGE, LARGEST, MOST_CELLS
 
@@ -65,7 +66,7 @@ def read_raw_workbook(data: bytes, file: str) -> RawBook:
             kind = "ODS" if "content.xml" in archive.namelist() else "XLSX"
             if kind == "ODS" and b"encryption-data" in archive.read("META-INF/manifest.xml"):
                 return _locked(file)
-        marks = _all_marks(archive, kind)
+        marks = old_marks(data) if archive is None else _all_marks(archive, kind)
         for name, found in marks.items():
             if found.height * max(found.width, 1) > MOST_CELLS:
                 words = f"reaches down to row {found.height} and across {found.width} columns"
@@ -84,6 +85,11 @@ def read_raw_workbook(data: bytes, file: str) -> RawBook:
         return _refused(file, f"cannot be read as a workbook ({fault})", "save it again as XLSX")
     except DAMAGE as fault:
         return _refused(file, f"cannot be unpacked as a workbook ({fault})", "save it again")
+    except BaseException as fault:
+        # the reader's own faults on damaged files derive from nothing narrower
+        if type(fault).__name__ != "PanicException":
+            raise
+        return _refused(file, "is a damaged workbook", "save it again")
 
 
 def _grid(
@@ -116,9 +122,7 @@ def _bare(value: RawValue) -> RawValue:
     return value
 
 
-def _all_marks(archive: zipfile.ZipFile | None, kind: str) -> dict[str, SheetMarks]:
-    if archive is None:
-        return {}
+def _all_marks(archive: zipfile.ZipFile, kind: str) -> dict[str, SheetMarks]:
     if kind == "ODS":
         return dict(_ods_marks(archive.read("content.xml")))
     styles = percent_styles(archive)
