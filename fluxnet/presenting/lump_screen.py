@@ -35,6 +35,14 @@ def lump_screen(lumped: Lumped) -> tuple[Block, ...]:
     else:
         text = "No intermediate can be taken out exactly: the model stays as it is."
         blocks.append(Sentence(text, Mood.DOUBTFUL, verdict=True))
+    for_variants = sum(k.why is Why.VARIANT for k in lumped.kept)
+    mostly = for_variants > len(lumped.eliminated)
+    if mostly:
+        text = (
+            f"The model's variants keep {_others(for_variants)} from being taken out: "
+            "`--variant base` lumps the model without them, `--variant V` with V applied."
+        )
+        blocks.append(Sentence(text, Mood.DOUBTFUL))
     if lumped.eliminated:
         blocks.append(_proof(lumped))
     if lumped.lumps:
@@ -42,8 +50,7 @@ def lump_screen(lumped: Lumped) -> tuple[Block, ...]:
     blocks += _told(lumped)
     if lumped.kept:
         blocks.append(_kept(lumped))
-    for_variants = sum(k.why is Why.VARIANT for k in lumped.kept)
-    if for_variants:
+    if for_variants and not mostly:
         text = (
             f"{for_variants} of these stay for variants: --variant base lumps the model without "
             "them, --variant V the model with V applied."
@@ -200,6 +207,10 @@ def _columns(*keys: str) -> tuple[Column, ...]:
 
 def _many(names: Sequence[str], word: str) -> str:
     return f"1 {word} is" if len(names) == 1 else f"{len(names)} {word}s are"
+
+
+def _others(count: int) -> str:
+    return "1 other" if count == 1 else f"{count} others"
 
 
 def _to_copy(text: str) -> str:

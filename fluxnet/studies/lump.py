@@ -76,7 +76,7 @@ def lump_network(
     """
     asked = _asked(network, keep)
     if network.variant != BASE or not variants:
-        network = replace(network, variants=(), variant=BASE)
+        network = _pruned(replace(network, variants=(), variant=BASE), asked)
     holds = find_holds(network, asked)
     work = Elimination(network, holds)
     kept = work.run(progress)
@@ -93,6 +93,26 @@ def lump_network(
         tuple(loops), tuple(spared), _gone(network, work.bundles, loops, spared),
         prove(network, reading.network, work.events, lumps, held), reading.diagnostics,
     )  # fmt: skip
+
+
+def _pruned(network: Network, asked: Sequence[str]) -> Network:
+    """The network without what only variants used: a check of the file would tell it as unused.
+
+    What crosses the boundary stays, for rates tables name it.
+    """
+    terms = [term for reaction in network.reactions for _, term in reaction.terms]
+    named = {*asked, *network.free, *(term.species for term in terms)}
+    named |= {name for limit in network.limits for name in limit.quantity.names}
+    named |= {s.name for s in network.boundary}
+    used = {
+        name for term in terms if term.coefficient is not None
+        for name in term.coefficient.parameters
+    }  # fmt: skip
+    return replace(
+        network,
+        species=tuple(s for s in network.species if s.name in named),
+        parameters=tuple(p for p in network.parameters if p.name in used),
+    )
 
 
 def _asked(network: Network, keep: Sequence[str]) -> tuple[str, ...]:

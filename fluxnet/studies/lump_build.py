@@ -108,10 +108,6 @@ def _cleared(
 def _tidied(network: Network, reactions: Sequence[Reaction], gone: frozenset[str]) -> Network:
     held = {r.compartment for v in network.variants for r in v.reactions}
     held |= {r.compartment for r in reactions}
-    before = {r.compartment for r in network.reactions}
-    compartments = tuple(
-        c for c in network.compartments if c.name in held or c.name not in before
-    )
     after = _used(reactions)
     for variant in network.variants:
         after |= _used(variant.reactions) | {p.name for p in variant.settings}
@@ -120,7 +116,7 @@ def _tidied(network: Network, reactions: Sequence[Reaction], gone: frozenset[str
         network,
         species=tuple(s for s in network.species if s.name not in gone),
         parameters=tuple(p for p in network.parameters if p.name not in lost),
-        compartments=compartments,
+        compartments=tuple(c for c in network.compartments if c.name in held),
         reactions=tuple(reactions),
     )
 

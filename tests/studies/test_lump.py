@@ -14,6 +14,7 @@ from fluxnet.ground.diagnostic import has_errors
 from fluxnet.ground.errors import MisuseError
 from fluxnet.network.model import Direction, Limit, Network, Quantity, QuantityKind, Relation, Role
 from fluxnet.network.variant import apply_variant
+from fluxnet.presenting.lump_screen import lump_screen
 from fluxnet.reading.model import read_model, read_model_text
 from fluxnet.reading.writer import write_model
 from fluxnet.studies.check import check_network
@@ -371,3 +372,60 @@ def test_the_proof_refuses_what_was_tampered_with() -> None:
     assert "no line stands for" in prove(
         network, fewer, work.events, lumped.lumps, frozenset()
     ).fault
+
+
+VARIANTS = (
+    HEAD.replace("inside     pyruvate", "inside     spare, pyruvate")
+    + """\
+    pdc    : pyruvate -> acetaldehyde + CO2
+    adh    : acetaldehyde + NADH -> ethanol
+    ldh    : pyruvate + NADH -> lactate
+compartment tail
+    pdh    : pyruvate -> acetyl-CoA + CO2 + NADH
+    ack    : acetyl-CoA -> acetate + ATP
+"""
+    + TAIL
+    + """\
+compartment new
+variant burner
+    add to new
+        more : pyruvate + NADH -> spare
+        less : spare -> lactate
+variant closed
+    drop pdh, ack, oxphos
+variant both from burner, closed
+"""
+)
+
+
+@pytest.mark.parametrize("name", ["base", "closed", "both"])
+def test_what_only_left_out_variants_used_makes_no_warning_in_the_written_file(name: str) -> None:
+    applied, _ = apply_variant(network_of(VARIANTS), name)
+    assert applied is not None
+    lumped = lump_network(applied, ["ethanol"], variants=False)
+    reading = read_model_text(lumped.text)
+    assert reading.network is not None
+    found = {d.name.value for d in check_network(reading.network, reading.diagnostics).diagnostics}
+
+    assert lumped.is_sound
+    # What crosses the boundary stays, for rates tables name it: acetate, used or not.
+    assert not found & {"empty-compartment", "unused-parameter"}
+    assert ("unused-species" in found) == (name != "base")
+    assert reading.network.find_species("acetate") is not None
+    assert reading.network.find_species("acetyl-CoA") is None
+    assert reading.network.find_species("spare") is None
+    assert [p.name for p in reading.network.parameters] == (["PO"] if name == "base" else [])
+    kept = {"way", "rest"} | {"base": {"tail"}, "both": {"new"}}.get(name, set())
+    assert {c.name for c in reading.network.compartments} == kept
+
+
+def test_variants_that_keep_most_are_told_first_with_the_mend() -> None:
+    network = network_of(VARIANTS)
+    texts = [b.text for b in lump_screen(lump_network(network, ["ethanol"])) if hasattr(b, "text")]
+    alone = lump_screen(lump_network(network, ["ethanol"], variants=False))
+
+    assert texts[1] == (
+        "The model's variants keep 3 others from being taken out: `--variant base` lumps the "
+        "model without them, `--variant V` with V applied."
+    )
+    assert not any("--variant base" in getattr(b, "text", "") for b in alone)
