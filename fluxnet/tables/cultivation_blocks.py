@@ -21,6 +21,7 @@ from fluxnet.tables.raw_blocks import Block
 from fluxnet.tables.raw_clock import DateOrder
 from fluxnet.tables.raw_grid import shown
 from fluxnet.tables.raw_long import choose_width, read_long, thin_piece
+from fluxnet.tables.raw_long_times import NotOneTableError
 from fluxnet.tables.raw_numbers import Doubt
 from fluxnet.tables.raw_times import (
     TimeAxis,
@@ -72,12 +73,15 @@ def read_block(
     times = time_columns(columns.times, grid.rows[block.body[0]])
     axis = read_axis(grid, block.body, times, decimal, order)
     if grid.long is not None and block.body[-1] == len(grid.rows) - 1:
+        if columns.run is not None:
+            raise NotOneTableError("it holds several runs")
         head, is_clock, offset, faults = _base(block, block.body, axis)
         known = head[np.isfinite(head)]
         steps = np.diff(known)
         step = float(np.median(steps[steps > 0])) if (steps > 0).any() else 1.0
         size = grid.long.stat().st_size
         text = sum(len(grid.line_text(r)) + 1 for r in block.body) / len(block.body)
+        text *= 2 if grid.encoding == "UTF-16" else 1
         width = choose_width(size / max(text, 1.0), step)
         if times.number is not None and not is_clock:
             times = replace(times, clock=None, of_day=None)

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterator, Sequence
-from dataclasses import field
+from dataclasses import field, replace
 
 from fluxnet.ground.diagnostic import Diagnostic
 from fluxnet.ground.names import Name
@@ -59,10 +59,11 @@ def gather(
     for grid in grids:
         cut = cut_blocks(grid, _understand(grid, bare))
         choice = choose_decimal(grid, _numbers(cut, bare))
-        if decimal is None:
-            found.extend(decimal_faults(choice))
-        cuts.append((cut, decimal or choice.decimal))
-        files.append(_how(grid, cut, choice, decimal))
+        asked = decimal or _said_decimal(grid, cut)
+        if asked is None:
+            found.extend(_decimal_faults(grid, choice))
+        cuts.append((cut, asked or choice.decimal))
+        files.append(_how(grid, cut, choice, asked))
     told = [one for cut, sign in cuts for one in _settings(cut, sign, network)]
     for _, one in told:
         found.extend(one.diagnostics)
@@ -121,6 +122,28 @@ def _numbers(cut: Cut, known: Known) -> Iterator[tuple[int, int]]:
             is_setting = block.kind is not BlockKind.SERIES and title.column > 0
             if is_value or title.is_sd or is_setting:
                 yield from ((row, title.column) for row in block.body)
+
+
+def _said_decimal(grid: RawGrid, cut: Cut) -> Decimal | None:
+    """The decimal sign that a line ``decimal; comma`` tells."""
+    told = {"comma": Decimal.COMMA, "komma": Decimal.COMMA, "point": Decimal.POINT,
+            "punkt": Decimal.POINT, ",": Decimal.COMMA, ".": Decimal.POINT}  # fmt: skip
+    settings = [r for b in cut.blocks if b.kind is BlockKind.SETTINGS for r in b.body]
+    for row in (*cut.lines, *settings):
+        if plain_words(shown(grid.cell(row, 0))) == "decimal":
+            return told.get(plain_words(shown(grid.cell(row, 1))))
+    return None
+
+
+def _decimal_faults(grid: RawGrid, choice: DecimalChoice) -> list[Diagnostic]:
+    """Numbers that may be read in two ways, with a mend that fits raw data."""
+    sign = choice.decimal.name.lower() if choice.said else "comma` or `decimal; point"
+    name = grid.short
+    return [
+        replace(d, message=f"{name} {d.message}",
+                mend=f"write all numbers in one way, or a line above the table: `decimal; {sign}`")
+        for d in decimal_faults(choice)
+    ]  # fmt: skip
 
 
 def _how(grid: RawGrid, cut: Cut, choice: DecimalChoice, asked: Decimal | None) -> str:

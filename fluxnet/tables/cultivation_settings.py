@@ -80,6 +80,7 @@ _WORDS = {
     "inoculation time": "inoculation", "time of inoculation": "inoculation",
     "animpfzeit": "inoculation", "inokulation": "inoculation", "animpfung": "inoculation",
     "start of cultivation": "inoculation", "dates": "dates", "date order": "dates",
+    "decimal": "decimal",
 }  # fmt: skip
 
 

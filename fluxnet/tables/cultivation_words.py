@@ -90,8 +90,8 @@ _FORM_WORDS = {
     **dict.fromkeys(("balance", "weight", "bottle", "scale", "waage", "gewicht", "mass",
                      "reservoir", "flasche"), "bottle"),
     **dict.fromkeys(("total", "totaliser", "totalizer", "cumulated", "cumulative", "sum", "summe",
-                     "gesamt", "added", "counter", "zähler", "volume", "volumen", "v", "m", "f"),
-                    "total"),
+                     "gesamt", "added", "counter", "zähler"), "total"),
+    **dict.fromkeys(("volume", "volumen", "v", "m", "f"), "amount"),
 }  # fmt: skip
 _FIXED: tuple[tuple[str, SeriesKind, str], ...] = (
     (r"od|od ?\d{3}|a ?\d{3}|optical density(?: \d+)?|absorbance|extinction|extinktion|abs"
@@ -220,10 +220,6 @@ def _form(said: set[str], measure: Measure | None, kind: SeriesKind) -> Form:
     if measure in (Measure.VOLUME_FLOW, Measure.MASS_FLOW):
         return Form.RATE
     if "event" in said or (kind is SeriesKind.SAMPLE and not said & {"total", "bottle"}):
-        return Form.EVENT
-    if kind is SeriesKind.SAMPLE and "total" in said and measure is not None and not said & {
-        "bottle"
-    }:
         return Form.EVENT
     return Form.RATE if "rate" in said and measure is None else Form.TOTAL
 

@@ -129,8 +129,4 @@ def read_raw_file(path: Path, *, whole: bool = False) -> RawFiles:
     if not grid.rows:
         words = f"{file} holds only blank lines"
         return RawFiles(diagnostics=(Diagnostic(Name.EMPTY_FILE, words, span),))
-    if decoded.guessed:
-        words = f"{file} is not UTF-8 and was read as Latin-1"
-        note = Diagnostic(Name.WRONG_ENCODING, words, span, mend="save the file as UTF-8")
-        faults = (*faults, note)
     return RawFiles((grid,), None, (grid.source,), faults)

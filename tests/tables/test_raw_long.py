@@ -116,6 +116,20 @@ def test_a_long_file_with_several_tables_is_read_whole(tmp_path: Path) -> None:
 
 
 @pytest.mark.usefixtures("short")
+@pytest.mark.parametrize("encoding", ["utf-16", "latin-1", "utf-8-sig"])
+def test_a_long_record_may_have_any_encoding(tmp_path: Path, encoding: str) -> None:
+    path = record(tmp_path / "gas.csv", 6_000)
+    plain = read_cultivation(path).cultivations[0]
+    text = path.read_text(encoding="utf-8").replace("mode;", "Säule;7 °C\nmode;")
+    path.write_text(text, encoding=encoding)
+    other = read_cultivation(path).cultivations[0]
+
+    assert [s.value.size for s in other.series] == [s.value.size for s in plain.series]
+    for one, two in zip(plain.series, other.series, strict=True):
+        np.testing.assert_allclose(two.value, one.value, rtol=1e-12)
+
+
+@pytest.mark.usefixtures("short")
 def test_progress_is_told_while_a_long_file_is_read(tmp_path: Path) -> None:
     seen: list[tuple[str, int, int]] = []
     read_cultivation(

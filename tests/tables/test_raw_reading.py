@@ -178,6 +178,53 @@ def test_a_bottle_on_a_balance_counts_what_it_lost(tmp_path: Path) -> None:
     assert feed.value == pytest.approx([0, 0.02, 0.05])
 
 
+@pytest.mark.parametrize(
+    ("title", "form"),
+    [
+        ("sample [mL]", Form.EVENT), ("sample volume [mL]", Form.EVENT),
+        ("sample total [mL]", Form.TOTAL), ("base [mL]", Form.TOTAL), ("base [mL/h]", Form.RATE),
+        ("feed pulse [g]", Form.EVENT), ("NaOH added [g]", Form.TOTAL),
+        ("feed 2 pump [g/min]", Form.RATE), ("antifoam addition [mL]", Form.EVENT),
+    ],
+)  # fmt: skip
+def test_words_and_unit_say_how_a_stream_is_counted(
+    tmp_path: Path, title: str, form: Form
+) -> None:
+    reading = read(tmp_path, f"mode,batch\nt [h],{title}\n0,1\n1,2\n2,4\n")
+
+    assert reading.cultivations[0].series[0].form is form
+
+
+def test_times_of_day_go_on_past_midnight(tmp_path: Path) -> None:
+    reading = read(tmp_path, "mode,batch\ninoculation,22:30\nUhrzeit,OD\n22:30,1\n23:45,2\n"
+                   "00:30,3\n")
+
+    assert series(reading, K.OPTICAL_DENSITY).time == pytest.approx([0, 1.25, 2.0])
+
+
+def test_dates_of_one_day_need_no_order(tmp_path: Path) -> None:
+    reading = read(tmp_path, "mode,batch\ninoculation,02/03/2026 09:00\ndate,OD\n"
+                   "02/03/2026 10:00,1\n02/03/2026 11:00,2\n")
+
+    assert series(reading, K.OPTICAL_DENSITY).time == pytest.approx([1.0, 2.0])
+
+
+@pytest.mark.parametrize(("sign", "expected"), [("comma", 1.234), ("point", 1234.0)])
+def test_an_ambiguous_number_is_refused_until_a_line_says_the_sign(
+    tmp_path: Path, sign: str, expected: float
+) -> None:
+    text = "mode;batch\n{}t [h];dry weight [g/L]\n0;1,234\n1;2,345\n"
+    refused = read(tmp_path, text.format(""))
+    told = refused.diagnostics[0]
+
+    assert (told.name, told.span.line, told.span.column) == (Name.AMBIGUOUS_NUMBER, 3, 3)
+    assert told.message.startswith("run.csv row 3, column B: `1,234` may be 1.234 or 1234")
+    assert told.mend is not None
+    assert "decimal; comma" in told.mend
+    taken = read(tmp_path, text.format(f"decimal;{sign}\n"))
+    assert series(taken, K.DRY_WEIGHT).value[0] == expected
+
+
 def test_gas_per_broth_needs_volume_and_reference(tmp_path: Path) -> None:
     text = "mode,batch\n{}t [h],aeration [vvm]\n0,1\n1,1\n"
     whole = read(tmp_path, text.format("volume,2,L\nreference,20,°C\n"))
