@@ -23,8 +23,8 @@ from fluxnet.ground.record import record
 from fluxnet.solving.statistics import chi_squared_quantile, chi_squared_tails
 
 __all__ = [
-    "PairArrays", "SuspectArrays", "Whitened", "first_group", "number_directions",
-    "weigh_pairs", "weigh_suspects", "whiten_residuals",
+    "PairArrays", "SuspectArrays", "TooFarApartError", "Whitened", "first_group",
+    "number_directions", "weigh_pairs", "weigh_suspects", "whiten_residuals",
 ]
 
 Array = NDArray[np.float64]
@@ -32,6 +32,10 @@ Classes = NDArray[np.intp]
 _ROUNDING = 1e-13
 _CHUNK = 2_000_000
 """So many correlations of directions are held at once."""
+
+
+class TooFarApartError(MisuseError):
+    """The sds of what was measured lie too far apart to weigh relations beside one another."""
 
 
 @record
@@ -122,6 +126,8 @@ def whiten_residuals(residuals: Array, roots: Array) -> Whitened:
     ------
     MisuseError
         Where a relation has no error of its own, or something is no number.
+    TooFarApartError
+        Where the errors of two relations cannot be told apart by rounding.
     """
     e = np.asarray(residuals, dtype=np.float64)
     F = np.broadcast_to(roots, (*e.shape, np.shape(roots)[-1]))
@@ -135,7 +141,7 @@ def whiten_residuals(residuals: Array, roots: Array) -> Whitened:
     if lower.shape[1] != lower.shape[2] or not (
         np.abs(np.einsum("nii->ni", lower)) > _ROUNDING
     ).all():
-        raise MisuseError("the errors leave a combination of relations without any")
+        raise TooFarApartError("the errors leave a combination of relations without any")
     factor = np.linalg.inv(lower) / scale[:, None, :]
     return Whitened((factor @ e[:, :, None])[:, :, 0], factor)
 

@@ -10,12 +10,13 @@ from fluxnet.ground.names import Name
 from fluxnet.ground.source import NOWHERE, Span
 from fluxnet.network.model import Network, QuantityKind
 from fluxnet.rates.measured import RatesTable, Run
-from fluxnet.studies.closure_batch import NoVarianceError
+from fluxnet.solving.suspects import TooFarApartError
+from fluxnet.studies.closure_batch import ClosureArrays, NoVarianceError
 from fluxnet.studies.closure_collect import collect_rows
 from fluxnet.studies.closure_make import make_closures
 from fluxnet.studies.closure_passes import PreparedRuns, close_prepared, prepare_runs
 from fluxnet.studies.closure_plan import ClosurePlan, plan_closure
-from fluxnet.studies.closure_result import Closure
+from fluxnet.studies.closure_result import Closure, RunClosure
 from fluxnet.studies.closure_without import leave_rates_out
 from fluxnet.studies.closure_world import NitrogenSource, find_source
 
@@ -23,6 +24,9 @@ __all__ = ["close_in_parts", "close_rates", "join_parts"]
 
 _PART = 2_000
 """Runs that are closed at once: enough for arrays to pay, few enough to tell of in between."""
+
+
+_NOT_WEIGHED = "its sds lie too far apart to weigh what could be wrong"
 
 
 def close_rates(
@@ -158,10 +162,7 @@ def _close_batch(
             and (suspects or (suspects is None and run.test.closes is False))
         ]  # fmt: skip
         if wanted:
-            from fluxnet.studies.suspects_closure import seek_suspects
-
-            for place, sought in seek_suspects(plan, batch, arrays, wanted, network).items():
-                closed[place] = replace(closed[place], sought=sought)
+            _add_suspects(closed, plan, batch, arrays, wanted, network)
         return Closure(tuple(closed))
     except NoVarianceError as fault:
         if len(batch.runs) > 1:
@@ -171,8 +172,36 @@ def _close_batch(
                 tuple(d for part in alone for d in part.diagnostics),
             )
         run = batch.runs[0]
-        fault_of_run = Diagnostic(Name.BAD_COVARIANCE, f"run {run.name}: {fault}", run.span)
+        fault_of_run = Diagnostic(
+            Name.BAD_COVARIANCE, f"run {run.name}: {fault}", run.span,
+            mend="give each rate an error of its own beside those that it shares",
+        )  # fmt: skip
         return Closure((), (fault_of_run,))
+
+
+def _add_suspects(
+    closed: list[RunClosure],
+    plan: ClosurePlan,
+    batch: PreparedRuns,
+    arrays: ClosureArrays,
+    wanted: Sequence[int],
+    network: Network | None,
+) -> None:
+    """Add to runs what could be wrong; to those whose sds do not allow it, that they do not."""
+    from fluxnet.studies.suspects_closure import seek_suspects
+
+    try:
+        found = seek_suspects(plan, batch, arrays, wanted, network)
+    except TooFarApartError:
+        if len(wanted) > 1:
+            for place in wanted:
+                _add_suspects(closed, plan, batch, arrays, (place,), network)
+            return
+        run = closed[wanted[0]]
+        closed[wanted[0]] = replace(run, notes=(*run.notes, _NOT_WEIGHED))
+        return
+    for place, sought in found.items():
+        closed[place] = replace(closed[place], sought=sought)
 
 
 def _source(

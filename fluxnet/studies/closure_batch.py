@@ -11,7 +11,8 @@ chi-squared with as many degrees of freedom as R has rows.
 
 from __future__ import annotations
 
-from dataclasses import field
+from dataclasses import field, fields, replace
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -23,8 +24,11 @@ from fluxnet.studies.closure_errors import (
     Errors,
     Joint,
     NoVarianceError,
+    Reduced,
+    alike,
     along,
     errors_of,
+    reduce_relations,
     sd_of_rows,
     sds_left,
     whiten,
@@ -152,12 +156,29 @@ def close_with(matrices: ClosureMatrices, values: Array, errors: Errors) -> Clos
     """Close many runs with errors of either kind; as :func:`close_many`."""
     y = np.asarray(values, dtype=np.float64)
     _check(matrices, y, errors)
+    groups = alike(errors)
+    if len(groups) < 2:
+        return _close(matrices, y, errors)
+    parts = [_close(matrices, y[places], errors.some(places)) for places in groups]
+    order = np.argsort(np.concatenate(groups), kind="stable")
+    joined: dict[str, Any] = {
+        f.name: np.concatenate([getattr(part, f.name) for part in parts])[order]
+        for f in fields(ClosureArrays)
+        if isinstance(getattr(parts[0], f.name), np.ndarray)
+    }
+    return replace(parts[0], errors=errors, **joined)
+
+
+def _close(matrices: ClosureMatrices, y: Array, errors: Errors) -> ClosureArrays:
+    """Close runs whose sds are much alike, or differ by a common factor."""
     R, W = matrices.redundancy, matrices.calculated
-    Z, f = whiten(R, along(R, y), errors)
+    sds = np.sqrt(errors.variances[0]) if len(y) else (~matrices.exact).astype(np.float64)
+    reduced = reduce_relations(R, sds)
+    Z, f = whiten(reduced, y, errors)
     h = np.square(f).sum(axis=0)
     correction = np.einsum("rn,rnp->np", f, Z)
     reduction = np.einsum("rnp,rnp->np", Z, Z)
-    reconciled = _settled(R, y, y - correction, errors)
+    reconciled = _settled(y, reduced, y - correction)
     tested = matrices.balanceable & ~matrices.exact
     with np.errstate(divide="ignore", invalid="ignore"):
         z = np.where(tested, correction / np.sqrt(reduction), np.nan)
@@ -176,10 +197,12 @@ def close_with(matrices: ClosureMatrices, values: Array, errors: Errors) -> Clos
         p=chi_squared_tails(h, dof) if dof else undefined,
         closes=h <= limit if dof else np.full(len(y), False),
         reconciled=reconciled,
-        reconciled_sd=np.where(matrices.exact, 0.0, sds_left(errors.variances, reduction)),
+        reconciled_sd=np.where(
+            matrices.exact, 0.0, sd_of_rows(np.eye(y.shape[1]), reduced, Z, errors)
+        ),
         z=z,
         calculated=calculated,
-        calculated_sd=sd_of_rows(W, Z, errors),
+        calculated_sd=sd_of_rows(W, reduced, Z, errors),
         residual=off.max(axis=1) if dof else np.zeros(len(y)),
         errors=errors,
         **_ratios(matrices, reconciled, Z, errors),
@@ -187,19 +210,10 @@ def close_with(matrices: ClosureMatrices, values: Array, errors: Errors) -> Clos
     )
 
 
-def _settled(R: Array, y: Array, reconciled: Array, errors: Errors) -> Array:
-    """Reconciled values without rounding: corrected again where sds differ much in size.
-
-    A value of which rounding is left is nothing.
-    """
-    gap = along(R, reconciled)
-    off = np.abs(gap) > _ROUNDING * along(np.abs(R), np.abs(y))
-    again = np.asarray(off.any(axis=1))
-    if again.any():
-        Z, f = whiten(R, gap[again], errors.some(again))
-        reconciled[again] -= np.einsum("rn,rnp->np", f, Z)
+def _settled(y: Array, reduced: Reduced, reconciled: Array) -> Array:
+    """Reconciled values that keep the relations; one of which rounding is left is nothing."""
     reconciled[np.abs(reconciled) <= _ROUNDING * np.abs(y)] = 0.0
-    return reconciled
+    return reduced.settled(reconciled)
 
 
 def _ratios(

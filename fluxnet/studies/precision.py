@@ -12,7 +12,7 @@ from fluxnet.network.amounts import number_text
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import Run
 
-__all__ = ["find_numbers_apart"]
+__all__ = ["find_numbers_apart", "find_sds_apart"]
 
 _APART = 10**5
 
@@ -42,6 +42,30 @@ def find_numbers_apart(network: Network, run: Run | None, reason: str) -> Diagno
         because=reason,
         mend="write them in another unit, or check them",
         also=(small,),
+    )
+
+
+def find_sds_apart(run: Run | None, reason: str) -> Diagnostic | None:
+    """The smallest and the largest sd of a run, told as the cause of a failure; None without two.
+
+    Parameters
+    ----------
+    reason
+        What failed, as a clause.
+    """
+    sds = [(Fraction(r.sd), r) for r in (() if run is None else run.rates) if r.sd]
+    if run is None or len(sds) < 2:
+        return None
+    (least, small), (most, large) = (pick(sds, key=lambda s: s[0]) for pick in (min, max))
+    return Diagnostic(
+        Name.BEYOND_PRECISION,
+        f"run {run.name}: the sd of {small.quantity}, {number_text(least)}, and that of "
+        f"{large.quantity}, {number_text(most)}, lie too far apart to be weighed beside each other",
+        small.span,
+        because=reason,
+        mend=f"check these two sds and the rates' units, or leave one out: --unmeasured "
+        f'"{large.quantity.name or large.quantity}"',
+        also=(large.span,),
     )
 
 

@@ -10,6 +10,7 @@ from fluxnet.ground.errors import InputError, MisuseError
 from fluxnet.ground.progress import Progress, silent
 from fluxnet.network.model import Network
 from fluxnet.rates.measured import RatesTable, Run
+from fluxnet.solving.suspects import TooFarApartError
 from fluxnet.studies.solution import FluxSolution, Solution
 
 __all__ = ["solve_network"]
@@ -131,6 +132,13 @@ def _with_cause(
     """Solve one run; where the solvers give up, numbers far apart are told as the cause."""
     try:
         return solve(network, run)
+    except TooFarApartError as failure:
+        from fluxnet.studies.precision import find_sds_apart
+
+        told = find_sds_apart(run, str(failure))
+        if told is None:
+            raise
+        raise InputError((told,)) from failure
     except (ArithmeticError, np.linalg.LinAlgError) as failure:
         from fluxnet.studies.precision import find_numbers_apart
 
