@@ -345,14 +345,14 @@ def frontier(
     x: str,
     y: str | None = None,
     *,
-    figure: str | Path | None = None,
+    figure: str | Path | Sequence[str | Path] | None = None,
     **options: Any,
 ) -> Answer[Frontier]:
     r"""The most (or least) y for each x: all break points, exact.
 
     ``options`` are those of :func:`fluxnet.studies.frontier.find_frontier`: ``across``,
     ``least``, ``over``, ``start``, ``stop``, ``only``. ``figure`` is a file that it is drawn
-    into; one that exists is overwritten.
+    into, or several; those that exist are overwritten.
 
     Examples
     --------
@@ -367,10 +367,10 @@ def frontier(
     from fluxnet.studies.frontier import find_frontier
 
     result = find_frontier(_network(network), x, y, **options)
-    if figure is not None:
+    for path in (figure,) if isinstance(figure, (str, Path)) else figure or ():
         from fluxnet.presenting.frontier_figure import draw_frontier
 
-        draw_frontier(result, Path(figure), force=True)
+        draw_frontier(result, Path(path), force=True)
     told = in_order(_told(network))
     screen = (*frontier_screen(result), *accepted_blocks(told))
     return Answer(result, Document.FRONTIER, screen, frontier_record(result), "points", told)

@@ -54,7 +54,8 @@ def add_arguments(parser: argparse.ArgumentParser) -> None:
         help="take up no carbon source but this; given twice, but these",
     )  # fmt: skip
     parser.add_argument(
-        "--figure", metavar="FILE", type=Path, help="draw it: FILE.svg, .png or .pdf"
+        "--figure", metavar="FILE", type=Path, action="append", default=[],
+        help="draw it: FILE.svg, .png or .pdf; given several times, into each",
     )
     add_output_options(parser)
 
@@ -66,12 +67,12 @@ def run(arguments: argparse.Namespace) -> int:
     from fluxnet.studies.frontier import find_frontier
 
     refuse_outputs(arguments, Document.FRONTIER)
-    if arguments.figure is not None:
+    for path in arguments.figure:
         from fluxnet.presenting.figures import refuse_figure
 
-        if str(arguments.figure) == arguments.model:
+        if str(path) == arguments.model:
             raise MisuseError(f"--figure would write over {arguments.model}, which is read")
-        refuse_figure(arguments.figure, force=arguments.force)
+        refuse_figure(path, force=arguments.force)
     model = load_model(arguments)
     if model.network is None:
         return give_faults(arguments, Document.FRONTIER, model.inputs, model.diagnostics)
@@ -86,11 +87,11 @@ def run(arguments: argparse.Namespace) -> int:
         told = (*model.diagnostics, *fault.diagnostics)
         return give_faults(arguments, Document.FRONTIER, model.inputs, told)
     give_findings(arguments, [d for d in in_order(model.told) if d.accepted is None])
-    if arguments.figure is not None and any(curve.points for curve in result.curves):
+    for path in arguments.figure if any(curve.points for curve in result.curves) else ():
         from fluxnet.presenting.frontier_figure import draw_frontier
 
-        draw_frontier(result, arguments.figure, force=arguments.force)
-        print(f"wrote {arguments.figure}", file=sys.stderr)
+        draw_frontier(result, path, force=arguments.force)
+        print(f"wrote {path}", file=sys.stderr)
     return give_screen(
         arguments, Document.FRONTIER, model.inputs, model.told, frontier_record(result),
         frontier_screen(result), sound=result.is_sound,

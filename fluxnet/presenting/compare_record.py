@@ -5,7 +5,7 @@ from __future__ import annotations
 from fractions import Fraction
 from typing import Any
 
-from fluxnet.presenting.compare_supplies import CAUTION
+from fluxnet.presenting.caution import CAUTION
 from fluxnet.studies.compare_result import Ability, Comparison, Facts, ModeYield, Supply
 from fluxnet.studies.compare_supply import per_litre, units_of
 from fluxnet.studies.staircase import Staircase

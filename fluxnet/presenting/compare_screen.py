@@ -4,9 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
+from fluxnet.presenting.caution import CAUTION
 from fluxnet.presenting.compare_detail import detail_blocks, fraction_text
 from fluxnet.presenting.compare_ranking import how_sure_blocks, ranking_table, shown_of
-from fluxnet.presenting.compare_supplies import CAUTION, supply_sentences
+from fluxnet.presenting.compare_supplies import supply_sentences
 from fluxnet.presenting.compare_tables import compare_data
 from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence
 from fluxnet.presenting.staircase_blocks import staircase_blocks

@@ -8,13 +8,7 @@ from fluxnet.presenting.screen import Sentence
 from fluxnet.studies.compare_result import Ability, Comparison, Facts, Supply
 from fluxnet.studies.compare_supply import per_litre, units_of
 
-__all__ = ["CAUTION", "supply_an_hour", "supply_sentences"]
-
-CAUTION = (
-    "Oxygen and heat are estimates from a lumped model, good for planning only: oxygen "
-    "enrichment, cooling, and off-gas that may burn or smother need the site's own safety "
-    "review, local codes and licensed engineers."
-)
+__all__ = ["supply_an_hour", "supply_sentences"]
 
 
 def supply_sentences(comparison: Comparison) -> list[Sentence]:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from typing import Any
 
+from fluxnet.presenting.caution import CAUTION
 from fluxnet.studies.frontier_result import Curve, Frontier
 
 __all__ = ["frontier_record"]
@@ -44,6 +45,7 @@ def frontier_record(result: Frontier) -> Record:
         "choice": result.choice,
         "notes": list(result.notes),
         "curves": [_curve(curve) for curve in result.curves],
+        "caution": CAUTION if result.sizes_oxygen else None,
         "skipped": [{"variant": name, "words": words} for name, words in result.skipped],
     }
 

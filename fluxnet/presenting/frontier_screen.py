@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from fluxnet.ground.table import Align, Column, Table
+from fluxnet.presenting.caution import CAUTION
+from fluxnet.presenting.frontier_plot import frontier_plot
 from fluxnet.presenting.numbers import format_number
 from fluxnet.presenting.screen import Block, Mood, Sentence
 from fluxnet.studies.frontier_result import Curve, CurveStatus, Frontier
@@ -27,7 +29,9 @@ def frontier_screen(result: Frontier) -> tuple[Block, ...]:
         for name, words in result.skipped
     ]
     if found:
-        blocks += [_points_table(result), *_proof_words(found)]
+        blocks += [*frontier_plot(result), _points_table(result), *_proof_words(found)]
+    if found and result.sizes_oxygen:
+        blocks.append(Sentence(CAUTION, Mood.QUIET))
     return tuple(blocks)
 
 

@@ -6,7 +6,7 @@ from html import escape
 
 from fluxnet.ground.table import Align, Table
 from fluxnet.presenting.cells import table_cells
-from fluxnet.presenting.screen import Block, Heading, Sentence
+from fluxnet.presenting.screen import Block, Drawing, Heading, Sentence
 
 __all__ = ["screen_html"]
 
@@ -27,6 +27,8 @@ def _block_html(block: Block) -> str:
         return f"<h4>{escape(block.text)}</h4>"
     if isinstance(block, Sentence):
         return f"<p>{escape(block.text)}</p>"
+    if isinstance(block, Drawing):
+        return f"<pre>{escape(chr(10).join(block.lines))}</pre>"
     return _table_html(block) if isinstance(block, Table) and block.is_shown else ""
 
 

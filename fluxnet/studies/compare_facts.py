@@ -26,13 +26,12 @@ from fluxnet.studies.compare_modes import (
     Demand,
     Demands,
     is_energy,
-    is_oxygen,
     moles_of,
     spenders,
 )
 from fluxnet.studies.compare_result import ByProduct, Destination, Facts, Holding, Limiting
 from fluxnet.studies.compare_scan import Best
-from fluxnet.studies.heat import Heat, heat_of
+from fluxnet.studies.heat import Heat, heat_of, is_oxygen
 from fluxnet.studies.solution import SpeciesPrice
 
 __all__ = ["ceiling_of", "find_facts", "growth_row", "release_rows"]

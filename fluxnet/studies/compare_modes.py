@@ -28,6 +28,7 @@ from fluxnet.solving.problem import Row, RowKind
 from fluxnet.solving.quantities import default_direction
 from fluxnet.studies.compare_cases import Case
 from fluxnet.studies.compare_family import Member
+from fluxnet.studies.heat import is_oxygen
 
 __all__ = [
     "DEMANDS", "Demand", "Demands", "Mode", "Question", "ask", "find_demands", "is_spender",
@@ -126,13 +127,6 @@ def is_spender(reaction: Reaction, carriers: Collection[str]) -> bool:
 def is_energy(species: Species) -> bool:
     """Whether a species is a carrier of energy alone."""
     return species.cargo is not None and species.cargo.kind is CargoKind.ENERGY
-
-
-def is_oxygen(species: Species | None) -> bool:
-    """Whether a species is molecular oxygen."""
-    if species is None or species.formula is None:
-        return False
-    return dict(species.formula.counts) == {"O": 2} and not species.formula.charge
 
 
 def moles_of(network: Network, name: str) -> Fraction:

@@ -102,7 +102,7 @@ def find_frontier(
     extreme = Extreme.LEAST if least else Extreme.MOST
     if y is None and over is None:
         raise MisuseError("name two quantities, or one and what is moved: --over LIMIT")
-    found, skipped = find_cases(network, across)
+    found, skipped, warnings = find_cases(network, across)
     common = common_parts(found)
     cases = tuple((name, label, shut_others(case, only)) for name, label, case in found)
     setting = None
@@ -145,7 +145,7 @@ def find_frontier(
     words = tell_curves(curves, lower.name, upper.name, extreme, " * ".join(common))
     is_choice = setting is None or len(frame) == 1
     stretches = find_stretches(curves, extreme) if is_choice else ()
-    notes = [tell_sources([case for _, _, case in cases], frame)]
+    notes = [*warnings, tell_sources([case for _, _, case in cases], frame)]
     if setting is None:
         notes.append(tell_forced_uptake(curves, lower, upper, extreme, cases[0][2]))
     return Frontier(

@@ -10,9 +10,12 @@ from fluxnet.network.model import Limit, Network, Quantity, QuantityKind
 from fluxnet.solving.quantities import units_per_mole
 from fluxnet.solving.words import quantity_words
 from fluxnet.studies.aims import Aim, Sense, name_quantity, read_aim
+from fluxnet.studies.heat import is_oxygen
 from fluxnet.studies.units import rate_unit
 
-__all__ = ["Axis", "read_axis", "refuse_same", "slope_unit"]
+__all__ = ["Axis", "read_axis", "refuse_same", "sizes_oxygen", "slope_unit"]
+
+Terms = tuple[tuple[Fraction, Quantity], ...]
 
 
 @record
@@ -20,11 +23,13 @@ class Axis:
     """A quantity of a trade-off: a weighted sum of quantities, its name and unit.
 
     ``name`` is short ("ethanol", "oxygen in", "ATP surplus"); a yield has the unit mol/mol.
+    ``is_oxygen`` marks one that a supply of oxygen is sized by.
     """
 
     terms: tuple[tuple[Fraction, Quantity], ...]
     name: str
     unit: str
+    is_oxygen: bool = False
 
     @property
     def titled(self) -> str:
@@ -71,7 +76,7 @@ def read_axis(text: str, network: Network) -> Axis:
     terms = read_aim(text, Sense.MAXIMISE, network).terms
     units = {rate_unit(quantity, network.basis.value) for _, quantity in terms}
     unit = units.pop() if len(units) == 1 else network.basis.value
-    return Axis(terms, _name(terms, network), unit)
+    return Axis(terms, _name(terms, network), unit, sizes_oxygen(terms, network))
 
 
 def _read_yield(text: str, network: Network) -> Axis:
@@ -94,7 +99,17 @@ def _read_yield(text: str, network: Network) -> Axis:
     ]
     is_mu = any(q.kind is QuantityKind.MU for _, q in terms) or under.kind is QuantityKind.MU
     unit = "mol/mol" if not is_mu else f"1/h per {network.basis.value}"
-    return Axis(tuple(counted), f"{_name(terms, network)} / {words}", unit)
+    sized = sizes_oxygen((*terms, (Fraction(1), under)), network)
+    return Axis(tuple(counted), f"{_name(terms, network)} / {words}", unit, sized)
+
+
+def sizes_oxygen(terms: Terms, network: Network) -> bool:
+    """Whether a quantity is, or holds, what crosses the boundary of molecular oxygen."""
+    return any(
+        quantity.kind is QuantityKind.RATE
+        and is_oxygen(network.find_species(quantity.name))
+        for _, quantity in terms
+    )
 
 
 def _fixes(limit: Limit, quantity: Quantity) -> bool:

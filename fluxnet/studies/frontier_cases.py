@@ -7,7 +7,7 @@ from itertools import product
 
 from fluxnet.ground.diagnostic import Diagnostic, has_errors
 from fluxnet.ground.errors import InputError, MisuseError
-from fluxnet.ground.names import Name
+from fluxnet.ground.names import Name, Severity
 from fluxnet.network.model import Network
 from fluxnet.network.variant import BASE, apply_variant
 from fluxnet.studies.frontier_axis import Axis, read_axis
@@ -23,10 +23,10 @@ _MOST_CURVES = 200
 
 def find_cases(
     network: Network, across: Sequence[str]
-) -> tuple[Cases, tuple[tuple[str, str], ...]]:
-    """All combinations of variants: name, label and network; and those that make none."""
+) -> tuple[Cases, tuple[tuple[str, str], ...], tuple[str, ...]]:
+    """All combinations of variants: name, label and network; those that make none; warnings."""
     if not across:
-        return ((BASE, "", network),), ()
+        return ((BASE, "", network),), (), ()
     lists = [[part.strip() for part in text.split("|")] for text in across]
     if any(not name for names in lists for name in names):
         raise MisuseError(f"a variant's name is missing in --across {' '.join(across)!r}")
@@ -39,6 +39,7 @@ def find_cases(
     found: list[tuple[str, str, Network]] = []
     skipped: list[tuple[str, str]] = []
     faults: list[Diagnostic] = []
+    warnings: dict[str, None] = {}
     for names in combinations:
         parts = dict.fromkeys(p.strip() for n in names for p in n.split("*") if p.strip() != BASE)
         label = " * ".join(parts) or BASE
@@ -50,13 +51,19 @@ def find_cases(
             errors = [d for d in told if has_errors([d])]
             faults += errors
             skipped.append((label, "; ".join(d.message for d in errors)))
-        elif set(parts) not in [set(known.split(" * ")) - {BASE} for known, _, _ in found]:
+            continue
+        warnings |= dict.fromkeys(
+            f"{d.message[:1].upper()}{d.message[1:]}."
+            for d in told
+            if d.severity is Severity.WARNING and d.accepted is None
+        )
+        if set(parts) not in [set(known.split(" * ")) - {BASE} for known, _, _ in found]:
             found.append((label, label, changed))
     if len(found) > 1:
         found = [(name, _shortened(name, common_parts(found)), there) for name, _, there in found]
     if not found:
         raise InputError(tuple(dict.fromkeys(faults)))
-    return tuple(found), tuple(dict.fromkeys(skipped))
+    return tuple(found), tuple(dict.fromkeys(skipped)), tuple(warnings)
 
 
 def common_parts(cases: Sequence[tuple[str, str, Network]]) -> tuple[str, ...]:

@@ -16,6 +16,7 @@ from fluxnet.solving.forms import as_fraction
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.words import limit_words, number_words, quantity_words
 from fluxnet.studies.aims import name_quantity
+from fluxnet.studies.frontier_axis import sizes_oxygen
 from fluxnet.studies.frontier_result import OverKind, Setting
 from fluxnet.studies.units import rate_unit
 
@@ -59,7 +60,8 @@ def read_setting(text: str, network: Network, start: float | None, stop: float |
         name = quantity_words(moved.quantity, network)
         if name_quantity(name.split(), network) != moved.quantity:
             name = str(moved.quantity)
-        return Setting(OverKind.LIMIT, name, unit, start, stop)
+        sized = sizes_oxygen(((Fraction(1), moved.quantity),), network)
+        return Setting(OverKind.LIMIT, name, unit, start, stop, sized)
     for end, is_inside in (
         (start, found.low is None or start >= found.low),
         (stop, found.high is None or stop <= found.high),

@@ -38,6 +38,7 @@ class Setting:
     unit: str
     start: float
     stop: float
+    is_oxygen: bool = False
 
 
 @record
@@ -118,6 +119,12 @@ class Frontier:
     stretches: tuple[Stretch, ...] = ()
     choice: str = ""
     notes: tuple[str, ...] = ()
+
+    @property
+    def sizes_oxygen(self) -> bool:
+        """Whether an axis, or what is moved, is what a supply of oxygen is sized by."""
+        moved = self.over is not None and self.over.is_oxygen
+        return self.x.is_oxygen or self.y.is_oxygen or moved
 
     @property
     def is_sound(self) -> bool:

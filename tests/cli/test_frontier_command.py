@@ -169,3 +169,51 @@ def test_what_is_to_be_known_beside_a_line_is_shown_and_in_the_document(
         (0, 12, ["tight"])
     ]
     assert str(found["choice"]) in shown
+
+
+def test_every_figure_that_is_asked_for_is_written(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    files = [tmp_path / name for name in ("a.svg", "b.png")]
+    line = ["frontier", "model.flux", "in oxygen", "ATP", "-q"]
+    asked = [word for file in files for word in ("--figure", str(file))]
+    assert run([*line, *asked]) == Exit.SOUND
+
+    assert all(file.stat().st_size > 1000 for file in files)
+    assert capsys.readouterr().err.count("wrote ") == 2
+    (files[0]).unlink()
+    assert run([*line, *asked]) == Exit.MISUSE
+    assert not files[0].exists()
+
+
+def test_a_variant_that_changes_nothing_is_told(
+    model: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    model.write_text(f"{MODEL}variant idle\n    limit glucose <= 2\n", encoding="utf-8")
+    found = document('fluxnet frontier model.flux lactate ATP --across "base|idle"', capsys)
+
+    assert "Variant idle changes nothing." in found["notes"]
+    run(["frontier", "model.flux", "lactate", "ATP", "--across", "base|idle"])
+    assert "Variant idle changes nothing." in capsys.readouterr().out
+
+
+def test_what_sizes_oxygen_is_told_with_its_caution_once(
+    capsys: pytest.CaptureFixture[str],
+) -> None:
+    for more in (["in oxygen", "ATP"], ["ATP", "--over", "oxygen", "--from", "0", "--to", "9"]):
+        run(["frontier", "model.flux", *more])
+        shown = " ".join(capsys.readouterr().out.split())
+        assert shown.count("safety review, local codes and licensed engineers") == 1
+    run(["frontier", "model.flux", "lactate", "ATP"])
+    assert "licensed engineers" not in " ".join(capsys.readouterr().out.split())
+
+
+def test_a_line_that_bends_is_drawn_in_eighty_columns(
+    capsys: pytest.CaptureFixture[str],
+) -> None:
+    run(["frontier", "model.flux", "ATP", "--over", "oxygen", "--from", "0", "--to", "15"])
+    lines = capsys.readouterr().out.splitlines()
+    plot = [line for line in lines if "|" in line]
+
+    assert sum(line.count("o") for line in plot if line.strip()) >= 3
+    assert max(map(len, lines)) <= 80
