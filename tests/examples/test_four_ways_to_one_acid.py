@@ -163,3 +163,19 @@ def test_the_cheapest_sugar_for_a_kilogram_of_acid():
     assert cost["alanine", "xylose"] == pytest.approx(0.66, abs=0.005)
     assert cost["alanine", "glucose"] == pytest.approx(0.96, abs=0.005)
     assert cost["aspartate", "xylose"] == pytest.approx(1.19, abs=0.005)
+
+
+def test_what_the_reactor_has_to_supply_is_what_the_comparison_tells(capsys):
+    asked = ["compare", str(MODEL), "--product", P, "--from", "xylose", "--across", "alanine"]
+    more = ["--across", "tank", "--reserve", "mu=0.04", "--biomass", "20 g/L", "--draws", "0"]
+    assert run([*asked, *more, "--json"]) == Exit.SOUND
+    litre = json.loads(capsys.readouterr().out)["variants"][0]["supply"]["per_litre"]
+    text = " ".join((FOLDER / "answer.md").read_text(encoding="utf-8").split())
+    for value, words in (
+        (litre["oxygen"], r"all the oxygen it has, ([\d.]+) mmol per litre"),
+        (litre["base"], r"([\d.]+) mmol of base per litre"),
+        (litre["heat"], r"cooling of ([\d.]+) W per litre"),
+        (litre["carbon_dioxide"], r"([\d.]+) mmol of CO2 per litre"),
+    ):
+        (told,) = re.findall(words, text)
+        assert float(told) == pytest.approx(value, rel=0.02)
