@@ -22,6 +22,7 @@ __all__ = ["Exactly", "outcome_of"]
 _MOST_ROWS = 300
 _MOST_STEPS = 20_000
 """Pivots times rows: some seconds at the worst."""
+_ROUNDING = 1e-13
 
 
 class Exactly:
@@ -45,7 +46,7 @@ class Exactly:
     def solve(self, costs: NDArray[np.float64], places: Sequence[Place]) -> ExactSolution | None:
         """The least ``costs @ v``, from a basis; None where that is too large to find out.
 
-        An end that is not OPTIMAL stands as it is told; OPEN is given as None.
+        None, too, where the costs fall along a ray by no more than their own rounding.
         """
         rows = len(self._problem.rows)
         if rows > _MOST_ROWS:
@@ -53,6 +54,10 @@ class Exactly:
         from fluxnet.exact.simplex import End, solve_from
 
         found = solve_from(self._programme(costs), places, _MOST_STEPS // max(rows, 10))
+        if found.end is End.UNBOUNDED:
+            ray = np.array([float(v) for v in found.ray])
+            if abs(costs @ ray) <= _ROUNDING * (np.abs(costs) @ np.abs(ray)):
+                return None
         return None if found.end is End.OPEN else found
 
     def _programme(self, costs: NDArray[np.float64]) -> ExactProgramme:

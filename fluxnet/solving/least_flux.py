@@ -2,7 +2,10 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
+from fractions import Fraction
+from typing import TYPE_CHECKING
 
 import numpy as np
 from numpy.typing import NDArray
@@ -11,19 +14,29 @@ from fluxnet.ground.errors import MisuseError
 from fluxnet.solving.linear import Outcome, Programme, worst_violation
 from fluxnet.solving.problem import Problem
 
+if TYPE_CHECKING:
+    from fluxnet.exact.programme import ExactProgramme
+
 __all__ = ["least_total_flux"]
 
 _TRACE = 1e-13
 """What the solver's own sums leave of a flux that is zero, beside the largest flux."""
 
 
-def least_total_flux(problem: Problem) -> NDArray[np.float64]:
+def least_total_flux(
+    problem: Problem, exact: ExactProgramme | None = None
+) -> NDArray[np.float64]:
     """Fluxes with the smallest sum of absolute values.
 
     min sum |v| subject to the problem's bounds, as a linear programme in which each flux that
     can go both ways is the difference of two. To ask for the least total among the optima of
     an aim, hold the aim at its optimum first (:func:`fluxnet.solving.alter.with_row`). Several
     fluxes may share the smallest total; this is one of them.
+
+    Parameters
+    ----------
+    exact
+        The problem from its decimals as written: see :class:`fluxnet.solving.linear.Programme`.
 
     Returns
     -------
@@ -59,13 +72,40 @@ def least_total_flux(problem: Problem) -> NDArray[np.float64]:
         column_high=np.append(ahead_high, -low[both]),
     )
     costs = np.where(high <= 0, -1.0, 1.0)
-    solution = Programme(split).minimise(np.append(costs, np.ones(count)))
+    programme = Programme(split, _split_exactly(exact, both.tolist()))
+    solution = programme.minimise(np.append(costs, np.ones(count)))
     if solution.outcome is Outcome.INFEASIBLE:
         raise MisuseError("no fluxes meet the bounds: there is no least total")
     fluxes = solution.fluxes[: len(low)].copy()
     fluxes[both] -= solution.fluxes[len(low) :]
-    fluxes[np.abs(fluxes) <= _TRACE * np.abs(fluxes).max(initial=0.0)] = 0.0
+    if not programme.is_exact:
+        fluxes[np.abs(fluxes) <= _TRACE * np.abs(fluxes).max(initial=0.0)] = 0.0
     if solution.outcome is not Outcome.OPTIMAL or worst_violation(problem, fluxes) > 1e-7:
         raise ArithmeticError("the least total flux could not be found")
     fluxes.setflags(write=False)
     return fluxes
+
+
+def _split_exactly(exact: ExactProgramme | None, both: Sequence[int]) -> ExactProgramme | None:
+    """An exact problem in which the columns that go both ways are differences of two."""
+    if exact is None:
+        return None
+    from fluxnet.exact.programme import to_flint
+
+    count, zero = exact.columns, to_flint(Fraction(0))
+    turned = {j: count + k for k, j in enumerate(both)}
+    low, high = exact.low[:count], exact.high[:count]
+    return replace(
+        exact,
+        columns=count + len(turned),
+        rows=tuple(
+            {**row, **{turned[j]: -a for j, a in row.items() if j in turned}} for row in exact.rows
+        ),
+        low=(
+            *(zero if j in turned else end for j, end in enumerate(low)),
+            *(zero for _ in turned),
+            *exact.low[count:],
+        ),
+        high=(*high, *(None if low[j] is None else -low[j] for j in turned), *exact.high[count:]),
+        costs={},
+    )

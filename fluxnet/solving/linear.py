@@ -37,6 +37,7 @@ Vector = NDArray[np.float64]
 TOLERANCE = 1e-9
 """How far the solver may leave a bound or a price, in the units of the problem."""
 
+_MOST_ROWS = 100  # with more, each answer of an exact programme would take too long
 _CHOOSE, _DUAL, _PRIMAL = 0, 1, 4  # numbers of HiGHS for its simplex methods
 _ATTEMPTS = (
     (_CHOOSE, TOLERANCE),
@@ -65,8 +66,8 @@ class Programme:
     Parameters
     ----------
     exact
-        The problem from its decimals as written. Where its coefficients lie decades apart each
-        answer is then proven, or mended, by exact pivots from the solver's basis.
+        The problem from its decimals as written. Where its coefficients lie decades apart, and
+        it is not too large, exact pivots from the solver's basis then prove or mend each answer.
 
     Examples
     --------
@@ -95,7 +96,7 @@ class Programme:
         self._row_scale, self._column_scale = find_scales(problem, sizes)
         self._is_spread = is_spread(sizes)
         self._exactly = Exactly(problem, exact)
-        self._is_exact = self._is_spread and exact is not None
+        self.is_exact = self._is_spread and exact is not None and len(problem.rows) <= _MOST_ROWS
         self._found: ExactSolution | None = None
         self._highs = load_model(problem, self._entries, self._row_scale, self._column_scale)
         self._set_method(*_ATTEMPTS[0])
@@ -174,7 +175,7 @@ class Programme:
                 self._set_method(strategy, tolerance)
             outcome, sure = self._attempt()
             verdicts.append(outcome)
-            if (self._is_exact and len(verdicts) == 1 and self._ask_exactly()) or sure:
+            if (self.is_exact and len(verdicts) == 1 and self._ask_exactly()) or sure:
                 break
         else:
             if not self._ask_exactly():
@@ -269,7 +270,7 @@ class Programme:
         if outcome is Outcome.OPTIMAL:
             self._fluxes = np.array(self._highs.getSolution().col_value) * self._column_scale
             self.residual = violation_of(self._entries, self._fluxes, *bounds)
-            doubtful = self._is_spread and not self._is_exact
+            doubtful = self._is_spread and not self.is_exact
             return outcome, self.residual < 1e-7 and (not doubtful or self._is_best())
         return outcome, False
 

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import TYPE_CHECKING
+
 import numpy as np
 from numpy.typing import NDArray
 
@@ -12,9 +14,15 @@ from fluxnet.solving.linear import Outcome, Programme
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.residuals import Entries
 
-__all__ = ["Ranges", "find_ranges"]
+if TYPE_CHECKING:
+    from fluxnet.exact.programme import ExactProgramme
+
+__all__ = ["Ranges", "add_up", "find_ranges"]
 
 Vector = NDArray[np.float64]
+
+_ROUNDING = 1e-14
+"""Of a sum, beside the sizes of its terms."""
 
 
 @record
@@ -33,7 +41,11 @@ class Ranges:
 
 
 def find_ranges(
-    problem: Problem, rows: Vector | None = None, *, progress: Progress = silent
+    problem: Problem,
+    rows: Vector | None = None,
+    *,
+    exact: ExactProgramme | None = None,
+    progress: Progress = silent,
 ) -> Ranges:
     """Minimise and maximise each flux, or each functional, under all bounds of a problem.
 
@@ -47,6 +59,8 @@ def find_ranges(
         What the fluxes must meet.
     rows
         Functionals, each a row over the columns; None asks for every flux.
+    exact
+        The problem from its decimals as written: see :class:`Programme`.
 
     Returns
     -------
@@ -69,7 +83,7 @@ def find_ranges(
     ([0.0, 0.0, 0.0], [4.0, 4.0, 1.0])
     """
     columns = len(problem.columns)
-    programme = Programme(problem)
+    programme = Programme(problem, exact)
     if rows is None:
         targets = np.eye(columns)
         floor, ceiling = problem.column_low, problem.column_high
@@ -82,14 +96,14 @@ def find_ranges(
     if not programme.is_feasible():
         return Ranges(low, high, Outcome.INFEASIBLE, 0.0)
     worst, outcome = 0.0, Outcome.OPTIMAL
-    seen = programme.fluxes()[None] @ targets.T
-    lowest, highest = seen[0].copy(), seen[0].copy()
+    seen = add_up(targets, programme.fluxes())
+    lowest, highest = seen.copy(), seen.copy()
     loose = ~_fixed_columns(problem)
     moves = (targets[:, loose] != 0).any(axis=1)
     for k, target in enumerate(targets):
         progress("ranges", k, len(targets))
         if not moves[k]:
-            low[k] = high[k] = min(max(seen[0, k], floor[k]), ceiling[k]) + 0.0
+            low[k] = high[k] = min(max(seen[k], floor[k]), ceiling[k]) + 0.0
             continue
         for sign, ends, reached, bound in (
             (1.0, low, lowest, floor),
@@ -106,13 +120,27 @@ def find_ranges(
                 continue
             fluxes = programme.fluxes()
             worst = max(worst, programme.residual)
-            values = fluxes if rows is None else targets @ fluxes
+            values = fluxes if rows is None else add_up(targets, fluxes)
             np.minimum(lowest, values, out=lowest)
             np.maximum(highest, values, out=highest)
-            ends[k] = min(max(values[k], floor[k]), ceiling[k]) + 0.0
+            value = sign * programme.value() if programme.is_exact else values[k]
+            ends[k] = min(max(value, floor[k]), ceiling[k]) + 0.0
     for ends in (low, high):
         ends.setflags(write=False)
     return Ranges(low, high, outcome, worst)
+
+
+def add_up(targets: Vector, fluxes: Vector) -> Vector:
+    """Functionals at some fluxes: zero where only the rounding of their terms is left.
+
+    Examples
+    --------
+    >>> add_up(np.array([[1.0, 1.0, -1.0]]), np.array([0.1, 0.2, 0.3])).tolist()
+    [0.0]
+    """
+    sums: Vector = targets @ fluxes
+    sums[np.abs(sums) <= _ROUNDING * (np.abs(targets) @ np.abs(fluxes))] = 0.0
+    return sums
 
 
 def _fixed_columns(problem: Problem) -> NDArray[np.bool_]:

@@ -16,6 +16,9 @@ __all__ = ["LedgerLine", "LedgerPlace", "keep_ledger", "ledger_places", "ledger_
 
 Array = NDArray[np.float64]
 
+_ROUNDING = 1e-14
+"""Of a net, beside what it is the difference of."""
+
 
 @record
 class LedgerPlace:
@@ -135,6 +138,9 @@ def keep_ledger(
     for k, place in enumerate(places):
         parts = rows[k] * fluxes
         made, spent = float(parts[parts > 0].sum()), 0.0 - float(parts[parts < 0].sum())
+        net = made - spent
+        if abs(net) <= _ROUNDING * (made + spent):
+            net = 0.0
         sd = None if sds is None or np.isnan(sds[k]) else float(sds[k])
         lines.append(
             LedgerLine(
@@ -142,7 +148,7 @@ def keep_ledger(
                 place.compartment,
                 made,
                 spent,
-                made - spent + 0.0,
+                net,
                 sd,
                 None if lows is None else float(lows[k]),
                 None if highs is None else float(highs[k]),

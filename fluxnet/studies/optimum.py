@@ -7,6 +7,7 @@ from dataclasses import replace
 
 import numpy as np
 
+from fluxnet.ground.errors import MisuseError
 from fluxnet.ground.progress import Progress, silent
 from fluxnet.network.biomass import biomasses
 from fluxnet.network.model import Network
@@ -20,9 +21,10 @@ from fluxnet.solving.linear import LinearSolution, Outcome, Programme, worst_vio
 from fluxnet.solving.problem import Problem
 from fluxnet.solving.ranges import find_ranges
 from fluxnet.solving.unbounded import explain_unbounded
-from fluxnet.studies.aim_problem import aim_cost, hold_optimum, open_carriers
+from fluxnet.studies.aim_problem import aim_cost, open_carriers
 from fluxnet.studies.aims import Aim, Sense
 from fluxnet.studies.optimum_bill import make_optimum_bill
+from fluxnet.studies.optimum_held import Optima, hold_proven
 from fluxnet.studies.optimum_proof import as_proven, find_worths, prove_aim
 from fluxnet.studies.optimum_rates import estimate_rates, is_point
 from fluxnet.studies.optimum_span import span_optimum
@@ -37,6 +39,11 @@ from fluxnet.studies.telling import (
 )
 
 __all__ = ["optimise"]
+
+_NOT_LEAST = (
+    "The fluxes shown are those of the proof: which ones have the least total flux could not "
+    "be found."
+)
 
 
 def optimise(
@@ -135,7 +142,8 @@ def optimise(
         limits=limits,
         bill=make_optimum_bill(problem, proven, aim, frame.unit, within),
     )
-    return _at_optimum(frame, built, problem, cost, best, aim.sense, progress)
+    optima = hold_proven(problem, cost, best, proven, aim.sense, fraction)
+    return _at_optimum(frame, built, problem, cost, best, optima, progress)
 
 
 def _at_optimum(
@@ -144,12 +152,12 @@ def _at_optimum(
     problem: Problem,
     cost: Array,
     best: LinearSolution,
-    sense: Sense,
+    optima: Optima,
     progress: Progress,
 ) -> FluxSolution:
-    at_best = hold_optimum(problem, cost, best, sense, frame.fraction)
-    fluxes = least_total_flux(at_best)
-    ranges = find_ranges(at_best, progress=progress)
+    at_best, exact = optima.problem, optima.exact
+    fluxes, is_least = _representative(optima, best)
+    ranges = find_ranges(at_best, exact=exact, progress=progress)
     estimates = tuple(
         FluxEstimate(
             reaction=reaction.name,
@@ -168,7 +176,7 @@ def _at_optimum(
     )
 
     def spans(rows: Array, drift: Mapping[str, Array]) -> Span:
-        found = find_ranges(at_best, rows, progress=progress)
+        found = find_ranges(at_best, rows, exact=exact, progress=progress)
         return Span(np.full(len(rows), np.nan), found.low, found.high)
 
     account = keep_account(built, fluxes, spans)
@@ -186,7 +194,18 @@ def _at_optimum(
         heat=account.heat,
         residual=max(best.residual, ranges.residual, worst_violation(at_best, fluxes)),
     )
-    return replace(solution, words=tell_optimum(solution, open_substrates(problem, solution)))
+    words = tell_optimum(solution, open_substrates(problem, solution))
+    return replace(solution, words=words if is_least else f"{words} {_NOT_LEAST}")
+
+
+def _representative(optima: Optima, best: LinearSolution) -> tuple[Array, bool]:
+    """The optimum of the least total flux, or where that is not found the one that is proven."""
+    try:
+        return least_total_flux(optima.problem, optima.exact), True
+    except (ArithmeticError, MisuseError):
+        if optima.exact is None:
+            raise
+        return best.fluxes, False
 
 
 def _smallest_within(built: Built, problem: Problem) -> float | None:
