@@ -188,3 +188,26 @@ def test_no_other_values_are_a_smaller_change(built):
     assert least(near, cost) == pytest.approx(here, abs=1e-6 * (1 + size))
     assert sum(c.in_sd**2 for c in change.changes) == pytest.approx(change.total, rel=1e-9)
     assert change.common_k <= max(abs(c.in_sd) for c in change.changes) * (1 + 1e-9)
+
+
+def test_the_bill_lacks_what_the_easiest_way_out_gives_up_or_says_that_it_does_not(built):
+    told = explain_conflicts(built, built.problem, "mmol/g/h", 2.0)
+    for one in told:
+        conflict = one.conflict
+        assert conflict.verified
+        assert not holds(built.problem, conflict.members)
+        for member in conflict.members:
+            rest = [m for m in conflict.members if m is not member]
+            assert holds(built.problem, rest), f"{member.words} is not needed"
+        ways = [w for w in one.alternatives if w.quantity.denominator is None]
+        if one.bill is None or not ways:
+            continue
+        easiest = min(ways, key=lambda w: w.ease)
+        (place,) = easiest.member.rows
+        bound = (built.problem.row_low if easiest.is_ceiling else built.problem.row_high)[place]
+        names = (easiest.member.name, str(easiest.quantity).removeprefix("flux "))
+        line = next(x for x in one.bill.lines if x.name.startswith(names))
+        moved = abs(bound - easiest.needed) * line.price
+        agrees = abs(moved - one.bill.shortfall) <= 1e-6 * max(1.0, abs(moved))
+        assert agrees or easiest in one.beyond
+        assert agrees or conflict.is_hard or len(told) > 1
