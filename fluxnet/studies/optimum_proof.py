@@ -109,7 +109,8 @@ def find_worths(
             gift = gifts.get(row.name, 0.0)
             ends = (price.value + gift, price.low + gift, price.high + gift)
             species.append(SpeciesPrice(row.name, *ends))
-        elif any((price.value, price.low, price.high)):
+        elif any(isfinite(worth) and worth for worth in (price.value, price.low, price.high)):
+            # Without end is what a step into the infeasible costs: it tells of no loss by itself.
             gained = "" if row.quantity is None else gain_unit(aim.terms, row.quantity, unit)
             limits.append(_limit(problem, proven, i, price, sign, gained, within))
     return tuple(species), tuple(sorted(limits, key=lambda limit: -_weight(limit)))

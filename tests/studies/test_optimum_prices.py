@@ -178,3 +178,27 @@ def test_what_exact_arithmetic_denies_is_not_called_proven_and_fails(tmp_path, c
     assert "Not proven: in exact arithmetic no fluxes meet everything (off by" in told
     assert "Proven in exact arithmetic" not in told
     assert status == 1
+
+
+def test_a_limit_that_only_bars_what_nothing_wants_holds_nothing_back() -> None:
+    # lactate is made in vain: allowing more of it gives nothing, less of it there cannot be
+    text = """
+substrate glucose
+product ethanol, lactate
+exchange CO2
+carrier NADH carries 2 electrons
+inside pyruvate
+compartment a
+    g : glucose -> 2 pyruvate + 2 NADH
+    f : pyruvate + NADH -> ethanol + CO2
+    l : pyruvate + NADH -> lactate
+limit glucose <= 10
+limit l <= 0
+"""
+    network = read_model_text(text).network
+    assert network is not None
+
+    (run,) = solve_network(network, maximise="ethanol").runs
+
+    assert [limit.name for limit in run.limits] == ["limit glucose <= 10"]
+    assert "limit l" not in run.words
