@@ -57,6 +57,12 @@ def _lead(suspects: Suspects) -> Sentence:
             "fully, and none can be told from another.",
             Mood.DOUBTFUL,
         )
+    if not suspects.explained and suspects.passed:
+        return Sentence(
+            "What could be wrong? No single error of a measurement or of the model: what would "
+            f"explain the balances still passes {and_words(suspects.passed)}. Look into that first.",
+            Mood.BAD,
+        )
     if not suspects.explained:
         best = min((s.h_left for s in suspects.group if s.possible), default=suspects.h)
         return Sentence(
@@ -113,7 +119,8 @@ def _table(suspects: Suspects, *, everything: bool) -> Table:
         "speaks for it; apart: how far off the nearest different suspect is"
     )
     unit = _usual_unit(suspects)
-    title = f"Suspects [{unit}]" if unit else "Suspects"
+    what = "Suspects" if any(s.possible for s in suspects.group) else "Suspects, none possible"
+    title = f"{what} [{unit}]" if unit else what
     return Table("", title, columns, tuple(cells), tuple(notes))
 
 
@@ -142,7 +149,8 @@ def _named(suspect: Suspect, suspects: Suspects) -> str:
         label += f" [{suspect.unit}]"
     if suspect.kind is SuspectKind.CARRIER:
         label += " spent beside" if suspect.size >= 0 else " made beside"
-    return label if suspect.possible else f"{label} (not possible)"
+    is_told = suspect.possible or not any(s.possible for s in suspects.group)
+    return label if is_told else f"{label} (not possible)"
 
 
 def _usual_unit(suspects: Suspects) -> str:
@@ -172,7 +180,7 @@ def _pairs(suspects: Suspects) -> Table:
 
 def _readings(suspects: Suspects) -> list[str]:
     """What in the laboratory may have made the first rates wrong by so much."""
-    rates = [s for s in suspects.group if s.readings][:_MOST_READ]
+    rates = [s for s in suspects.group if s.readings and s.possible][:_MOST_READ]
     return [
         f"{s.label}, possible causes: {'; or '.join(r.words for r in s.readings[:_MOST_READINGS])}."
         for s in rates
@@ -191,7 +199,7 @@ def _advice(suspects: Suspects, more: str) -> list[str]:
     best = best or next((s for s in suspects.group if s.possible), None)
     if suspects.explained and best is not None:
         told.append(_what_to_do(best, suspects))
-    if not suspects.explained:
+    if not suspects.explained and not suspects.passed:
         told.append(_of_two(suspects))
     if suspects.dof == 2 and suspects.explained:
         told.append(

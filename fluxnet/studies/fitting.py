@@ -18,7 +18,6 @@ from fluxnet.solving.flux_fit import (
     FittedRow,
     FluxFit,
     FluxRelation,
-    PressingBound,
 )
 from fluxnet.solving.least_squares import fit_fluxes
 from fluxnet.solving.sources import find_sources
@@ -38,11 +37,18 @@ from fluxnet.studies.solution import (
     RateEstimate,
     SolveStatus,
 )
-from fluxnet.studies.telling import tell_fit, tell_infeasible, tell_violations
+from fluxnet.studies.telling import (
+    bound_words,
+    tell_clashes,
+    tell_fit,
+    tell_infeasible,
+    tell_violations,
+)
 from fluxnet.studies.units import rate_unit
 
 if TYPE_CHECKING:
     from fluxnet.studies.plan_target import Target
+    from fluxnet.studies.suspect_result import Suspects
 
 __all__ = ["fit_run"]
 
@@ -120,11 +126,9 @@ def fit_run(
     solution = replace(
         _account(frame, fit, progress), test=test, status=_status(fit, test), residual=fit.residual
     )
-    solution = replace(solution, words=tell_fit(solution, test))
+    solution = replace(solution, words=tell_fit(solution, test, tell_clashes(fit.built.problem)))
     if suspects or test.closes is False:
-        from fluxnet.studies.suspects_solve import seek_flux_suspects
-
-        solution = replace(solution, suspects=seek_flux_suspects(fit, frame.unit))
+        solution = replace(solution, suspects=_suspects(fit, frame.unit))
     if plan is not None:
         from fluxnet.studies.plan_without import plan_beside_limits
 
@@ -145,6 +149,15 @@ def fit_run(
     return solution
 
 
+def _suspects(fit: FluxFit, unit: str) -> Suspects | None:
+    """What could be wrong, and whether limits leave it possible."""
+    from fluxnet.studies.suspects_limits import keep_limits
+    from fluxnet.studies.suspects_solve import seek_flux_suspects
+
+    found = seek_flux_suspects(fit, unit)
+    return None if found is None else keep_limits(found, fit)
+
+
 def _status(fit: FluxFit, test: FluxTest) -> SolveStatus:
     held_back = test.bound_p is not None and test.bound_p < 0.05
     if fit.status is FitStatus.INCONSISTENT or held_back:
@@ -161,18 +174,13 @@ def _test(fit: FluxFit) -> FluxTest:
         closes=fit.closes,
         bound_h=fit.bound_h,
         bound_p=fit.bound_p,
-        active=tuple(_tell_bound(bound) for bound in fit.bounds),
+        active=tuple(bound_words(bound) for bound in fit.bounds),
         pulling=tuple(
-            f"{_tell_bound(bound)} pulls {bound.pulled} by {abs(bound.pull or 0):.1f} sd"
+            f"{bound_words(bound)} pulls {bound.pulled} by {abs(bound.pull or 0):.1f} sd"
             for bound in fit.bounds
             if bound.is_strong
         ),
     )
-
-
-def _tell_bound(bound: PressingBound) -> str:
-    kind = bound.kind.value
-    return bound.name if kind in bound.name else f"{kind} of {bound.name}"
 
 
 def _account(frame: FluxSolution, fit: FluxFit, progress: Progress) -> FluxSolution:

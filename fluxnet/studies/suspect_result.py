@@ -122,7 +122,8 @@ class Suspects:
     ``tried`` counts all suspects, ``distinct`` their directions. ``explained`` tells whether
     any possible one by itself brings the test value below its 5 % limit; where none does,
     ``pairs`` holds pairs that do best. ``with_model`` tells whether a model was asked what it
-    can make.
+    can make. ``passed`` are limits that fluxes would still pass with suspects that are for this
+    reason not possible.
     """
 
     h: float
@@ -137,6 +138,7 @@ class Suspects:
     pairs_left: int = 0
     missing: MissingContent | None = None
     with_model: bool = False
+    passed: tuple[str, ...] = ()
 
     @property
     def all(self) -> tuple[Suspect, ...]:

@@ -16,33 +16,40 @@ from fluxnet.studies.yields import ALL_CARBON
 
 if TYPE_CHECKING:
     from fluxnet.solving.conflict import LeastChange
+    from fluxnet.solving.flux_fit import PressingBound
     from fluxnet.solving.unbounded import Unbounded
     from fluxnet.studies.aims import Aim
     from fluxnet.studies.conflicts import ToldConflict
 
 __all__ = [
-    "open_substrates", "tell_fit", "tell_infeasible", "tell_optimum", "tell_unbounded",
-    "tell_violations",
+    "bound_words", "listed", "open_substrates", "tell_clashes", "tell_fit", "tell_infeasible",
+    "tell_optimum", "tell_unbounded", "tell_violations",
 ]  # fmt: skip
 
 
-def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
-    """What a least-squares solve found."""
+def tell_fit(solution: FluxSolution, test: FluxTest, clashes: Sequence[str] = ()) -> str:
+    """What a least-squares solve found.
+
+    ``clashes`` are limits that a measured value by itself passes (:func:`tell_clashes`).
+    """
     determined = sum(f.kind is FluxKind.DETERMINED for f in solution.fluxes)
     known = f"{determined} of {len(solution.fluxes)} fluxes are determined"
     spender = _largest_spender(solution) + _guessed_ratios(solution)
     beyond = test.bound_p is not None and test.bound_p < 0.05
-    if beyond and test.closes is not False:
-        return (
-            "The rates balance, but only with fluxes that the limits forbid: "
-            f"{', '.join(test.active)}. Fluxes are given, and not to be trusted."
-        )
+    chance = _chance(test.p)
+    if clashes or beyond:
+        told = [f"{words[:1].upper()}{words[1:]}." for words in clashes]
+        if not clashes:
+            start = "The rates fit only" if test.closes is False else "The rates balance, but only"
+            told.append(f"{start} with fluxes that the limits forbid: {', '.join(test.active)}.")
+        if test.closes is False:
+            told.append(f"The balances alone reject the rates, too (p {_equals(chance)}).")
+        return f"{' '.join(told)} Fluxes are given, and not to be trusted."
     if test.h is None:
         measured = any(rate.measured is not None for rate in solution.rates)
-        if not measured:
+        if solution.run is None or not measured:
             return f"No rate is measured: the limits alone leave this; {known}.{spender}"
         return f"The rates fit the network, but none tests another; {known}.{spender}"
-    chance = _chance(test.p)
     if test.closes is False:
         worst = _worst(solution)
         return (
@@ -50,6 +57,29 @@ def tell_fit(solution: FluxSolution, test: FluxTest) -> str:
             f"probability {chance}; {worst}. Fluxes are given, and not to be trusted."
         )
     return f"The rates and the network agree (p = {chance}); {known}.{spender}"
+
+
+def _equals(chance: str) -> str:
+    return chance if chance.startswith("below") else f"= {chance}"
+
+
+def bound_words(bound: PressingBound) -> str:
+    """A bound as it is named."""
+    kind = bound.kind.value
+    return bound.name if kind in bound.name else f"{kind} of {bound.name}"
+
+
+def tell_clashes(problem: Problem) -> tuple[str, ...]:
+    """Each limit with the measured value of the same quantity that passes it by two sds."""
+    told = []
+    for found in find_violations(problem):
+        row = found.measured
+        sd = (row.sd or 0.0) / (1.0 if row.ratio is None else row.denominator or 1.0)
+        told.append(
+            f"{found.limit.name} and {row.name} as measured, {found.value:.4g} ± {sd:.2g}, "
+            "contradict each other"
+        )
+    return tuple(told)
 
 
 def _chance(p: float | None) -> str:
@@ -79,7 +109,7 @@ def _worst(solution: FluxSolution) -> str:
         return "no single rate can be named"
     most = abs(ranked[0].z or 0.0)
     alike = [rate for rate in ranked[:4] if abs(rate.z or 0.0) > most - 0.5]
-    names = _listed([f"{rate.quantity} (z = {rate.z:.1f})" for rate in alike])
+    names = listed([f"{rate.quantity} (z = {rate.z:.1f})" for rate in alike])
     if len(alike) == 1:
         return f"the largest adjustment is that of {names}"
     return f"the largest adjustments, nearly alike, are those of {names}"
@@ -91,6 +121,8 @@ def _largest_spender(solution: FluxSolution) -> str:
         lines = [line for line in solution.ledger if line.carrier == carrier]
         spent = -sum(line.net for line in lines if line.net < 0)
         if spent > 0:
+            if any(line.sd is None for line in lines):
+                return ""  # shown is one of many values
             most = min(lines, key=lambda line: line.net)
             return (
                 f" Of the {carrier} that compartments make for one another (net of what each "
@@ -130,7 +162,7 @@ def tell_optimum(solution: FluxSolution, unbounded: tuple[str, ...] = ()) -> str
     if solution.span is not None:
         words += _span_words(solution.span, _aim_unit(solution))
     if solution.limits:
-        words += f"It is held back by {_listed([limit.name for limit in solution.limits[:3]])}."
+        words += f"It is held back by {listed([limit.name for limit in solution.limits[:3]])}."
     elif solution.proof is None or solution.proof.verified:
         words += "No limit of the model holds it back, only the balances."
     if solution.unheld is not None:
@@ -138,7 +170,7 @@ def tell_optimum(solution: FluxSolution, unbounded: tuple[str, ...] = ()) -> str
         words += f" Without its own measurement {free}."
     if unbounded and is_maximum:
         words += (
-            f" No limit is set on {_listed([f'{name} in' for name in unbounded])}: this is the "
+            f" No limit is set on {listed([f'{name} in' for name in unbounded])}: this is the "
             "largest rate that the other limits allow, and the yield that goes with it need not "
             "be the largest."
         )
@@ -147,8 +179,9 @@ def tell_optimum(solution: FluxSolution, unbounded: tuple[str, ...] = ()) -> str
 
 def _span_words(span: OptimumSpan, unit: str) -> str:
     """Where the optimum lies over the errors of the parameters."""
-    names = _listed(list(span.parameters))
-    gap = "" if span.feasible else "; at some of these values nothing is feasible"
+    names = listed(list(span.parameters))
+    gap = f" (searched at {span.points} points"
+    gap += f"; {span.infeasible} of them infeasible)" if span.infeasible else ")"
     if isclose(span.low, span.high, rel_tol=1e-9, abs_tol=1e-12):
         return f"Within ± 2 sd of {names} it stays the same{gap}. "
     low, high = ("no end" if isinf(end) else f"{end:.4g}" for end in (span.low, span.high))
@@ -200,7 +233,7 @@ def _first_conflict(conflicts: Sequence[ToldConflict]) -> str:
         return ""
     bill = conflicts[0].bill
     given = [member.name for member in conflicts[0].conflict.given]
-    names = _listed(given) if given else "what the model demands"
+    names = listed(given) if given else "what the model demands"
     words = f": {names} cannot hold together" if bill is None else f". {bill.words[:-1]}"
     if len(conflicts) > 1:
         words += f", and {len(conflicts) - 1} more such conflict"
@@ -236,7 +269,7 @@ def tell_unbounded(aim: Aim, reason: Unbounded, network: Network) -> str:
     lines = [f"`limit {quantity_words(uptake, network)} <= 10`" for uptake in uptakes]
     if not lines:
         return told
-    return f"{told} Write {_listed(lines)} into the model, with your own number."
+    return f"{told} Write {listed(lines)} into the model, with your own number."
 
 
 def tell_violations(problem: Problem) -> tuple[str, ...]:
@@ -248,7 +281,8 @@ def tell_violations(problem: Problem) -> tuple[str, ...]:
     )
 
 
-def _listed(words: list[str]) -> str:
+def listed(words: Sequence[str]) -> str:
+    """Words in a row, the last one behind "and"."""
     if len(words) <= 1:
         return "".join(words)
     return f"{', '.join(words[:-1])} and {words[-1]}"
