@@ -88,7 +88,10 @@ def _many_runs(closure: Closure) -> tuple[Block, ...]:
 def _how_to_read(closure: Closure) -> str:
     """What the signs and the kinds that are shown mean."""
     shown = {rate.kind for run in closure.runs for rate in run.rates}
-    kinds = [f"{_kind(kind)}: {words}" for kind, words in _MEANING.items() if kind in shown]
+    meaning = dict(_MEANING)
+    if all(run.test.h is None for run in closure.runs):
+        meaning[RateKind.BALANCEABLE] = "the others fix it"
+    kinds = [f"{_kind(kind)}: {words}" for kind, words in meaning.items() if kind in shown]
     return (
         "± is one standard deviation (sd); z of a balance is its gap over its sd, z of a rate its "
         f"change over its own sd, positive where it was raised. {_capital('; '.join(kinds))}."

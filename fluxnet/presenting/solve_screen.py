@@ -14,6 +14,7 @@ from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence, bloc
 from fluxnet.presenting.share_blocks import share_blocks
 from fluxnet.presenting.solve_tables import solve_tables
 from fluxnet.studies.solution import FluxSolution, FluxTest, Solution, SolveStatus
+from fluxnet.studies.telling import agrees_exactly
 from fluxnet.studies.units import unusual_words
 
 if TYPE_CHECKING:
@@ -165,7 +166,7 @@ def _suspects(run: FluxSolution, *, everything: bool) -> list[Block]:
 def _assumptions(run: FluxSolution) -> list[Block]:
     lines: list[Block] = []
     if run.test is not None:
-        lines.append(_test(run.test))
+        lines.append(_test(run.test, exact=agrees_exactly(run)))
     lines += [
         Sentence(f"Limit against measurement: {words}.", Mood.BAD) for words in run.violated_limits
     ]
@@ -190,7 +191,12 @@ def _assumptions(run: FluxSolution) -> list[Block]:
     return lines
 
 
-def _test(test: FluxTest) -> Sentence:
+def _test(test: FluxTest, *, exact: bool) -> Sentence:
+    if test.h is None and exact:
+        return Sentence(
+            "Only values without an error test one another: they agree, and h is not defined.",
+            Mood.DOUBTFUL,
+        )
     if test.h is None:
         return Sentence(
             "Nothing is redundant: no measured rate tests another, so h is not defined.",

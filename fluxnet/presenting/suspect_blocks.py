@@ -60,7 +60,8 @@ def _lead(suspects: Suspects) -> Sentence:
     if not suspects.explained and suspects.passed:
         return Sentence(
             "What could be wrong? No single error of a measurement or of the model: what would "
-            f"explain the balances still passes {and_words(suspects.passed)}. Look into that first.",
+            f"explain the balances still passes {and_words(suspects.passed)}. Look into that "
+            "first.",
             Mood.BAD,
         )
     if not suspects.explained:

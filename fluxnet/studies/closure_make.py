@@ -72,7 +72,9 @@ def _closure(told: _Told, place: int) -> RunClosure:
         world=plan.world,
         rates=rates,
         reference=plan.reference,
-        words=verdict(balances, test, contradictions),
+        words=verdict(
+            balances, test, contradictions, exact=bool(plan.redundancy.contradictions)
+        ),
         contradictions=contradictions,
         left_out=told.batch.rows.left_out,
         notes=(*told.notes, *([unusual] if unusual else ())),

@@ -13,9 +13,13 @@ _TWO_SIDED = 1.959964  # 95 % of a normal distribution
 
 
 def verdict(
-    balances: Sequence[Balance], test: ClosureTest, contradictions: Sequence[Sequence[str]]
+    balances: Sequence[Balance],
+    test: ClosureTest,
+    contradictions: Sequence[Sequence[str]],
+    *,
+    exact: bool = False,
 ) -> str:
-    """What the balances and the test say.
+    """What the balances and the test say; ``exact``: values without an error fix one another.
 
     Examples
     --------
@@ -30,7 +34,9 @@ def verdict(
         _of_failing(failing),
         _of_sourceless([b for b in balances if not b.taken and b.released > 0]),
         _of_missing([b for b in balances if b.missing]),
-        _of_test(test, contradictions, is_surprise=bool(closing) and not failing),
+        _of_test(
+            test, contradictions, is_surprise=bool(closing) and not failing, exact=exact
+        ),
     ]
     text = "; ".join(part for part in parts if part)
     return f"{text[0].upper()}{text[1:]}."
@@ -72,10 +78,12 @@ def _of_missing(balances: Sequence[Balance]) -> str:
 
 
 def _of_test(
-    test: ClosureTest, contradictions: Sequence[Sequence[str]], *, is_surprise: bool
+    test: ClosureTest, contradictions: Sequence[Sequence[str]], *, is_surprise: bool, exact: bool
 ) -> str:
     if contradictions:
         return _of_exact(contradictions)
+    if test.h is None and exact:
+        return "the exact values agree, and without errors nothing is tested"
     if test.h is None or test.p is None or test.limit is None:
         return "no rate can be tested, since nothing is redundant"
     freedom = f"on {test.dof} degree{'s' if test.dof > 1 else ''} of freedom"

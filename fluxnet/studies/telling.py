@@ -22,8 +22,8 @@ if TYPE_CHECKING:
     from fluxnet.studies.conflicts import ToldConflict
 
 __all__ = [
-    "bound_words", "listed", "open_substrates", "tell_clashes", "tell_fit", "tell_infeasible",
-    "tell_optimum", "tell_unbounded", "tell_violations",
+    "agrees_exactly", "bound_words", "listed", "open_substrates", "tell_clashes", "tell_fit",
+    "tell_infeasible", "tell_optimum", "tell_unbounded", "tell_violations",
 ]  # fmt: skip
 
 
@@ -45,6 +45,8 @@ def tell_fit(solution: FluxSolution, test: FluxTest, clashes: Sequence[str] = ()
         if test.closes is False:
             told.append(f"The balances alone reject the rates, too (p {_equals(chance)}).")
         return f"{' '.join(told)} Fluxes are given, and not to be trusted."
+    if test.h is None and agrees_exactly(solution):
+        return f"The exact values agree, and without errors nothing is tested; {known}.{spender}"
     if test.h is None:
         measured = any(rate.measured is not None for rate in solution.rates)
         if solution.run is None or not measured:
@@ -61,6 +63,12 @@ def tell_fit(solution: FluxSolution, test: FluxTest, clashes: Sequence[str] = ()
 
 def _equals(chance: str) -> str:
     return chance if chance.startswith("below") else f"= {chance}"
+
+
+def agrees_exactly(solution: FluxSolution) -> bool:
+    """Whether values without an error are fixed by one another, and none has one."""
+    fixed = [r for r in solution.rates if r.kind is RateKind.BALANCEABLE]
+    return bool(fixed) and all(not rate.sd for rate in fixed)
 
 
 def bound_words(bound: PressingBound) -> str:

@@ -48,3 +48,28 @@ def test_a_proof_without_anything_to_prove_is_told(capsys: pytest.CaptureFixture
     assert "No bill: there is no aim whose best value it could prove, and no conflict." in text
     _, text = shown(["solve", "limited.flux", "rates.csv", "--proof"], capsys)
     assert "No bill" not in text
+
+
+def test_exact_values_that_agree_are_not_said_to_test_nothing_or_one_another(
+    tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    (tmp_path / "exact.csv").write_text(
+        "run,species,direction,rate,sd,unit\nA,glucose,in,10,0,mmol/g/h\n"
+        "A,ethanol,out,20,0,mmol/g/h\nA,CO2,out,20,0,mmol/g/h\n",
+        encoding="utf-8",
+    )
+    lines = MODEL.replace("parameter  PO   = 1.4 ± 0.2  in [0.5, 2.5]", "parameter PO = 1.4")
+    model = "\n".join(x for x in lines.splitlines() if not x.startswith(("limit", "    burn")))
+    model = model.replace("    growth ", "    loss : ATP -> nothing\n    # growth ")
+    (tmp_path / "short.flux").write_text(
+        "\n".join(x for x in model.splitlines() if "K_X" not in x and "biomass" not in x) + "\n",
+        encoding="utf-8",
+    )
+    _, text = shown(["solve", "short.flux", "exact.csv"], capsys)
+    assert "The exact values agree, and without errors nothing is tested" in text
+    assert "they agree, and h is not defined" in text
+    assert "none tests another" not in text
+    _, text = shown(["closure", "exact.csv"], capsys)
+    assert "the exact values agree, and without errors nothing is tested." in text
+    assert "Balanceable: the others fix it." in text
+    assert "test it" not in text
