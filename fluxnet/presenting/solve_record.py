@@ -35,6 +35,8 @@ def _run(run: FluxSolution) -> Record:
         "optimum": run.optimum,
         "optimum_low": None if run.span is None else run.span.low,
         "optimum_high": None if run.span is None else run.span.high,
+        "optimum_points": None if run.span is None else run.span.points,
+        "optimum_infeasible_points": None if run.span is None else run.span.infeasible,
         "optimum_without_own_row": run.unheld,
         "fraction": None if run.aim is None else run.fraction,
         "within": run.within,

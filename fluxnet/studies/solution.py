@@ -168,14 +168,15 @@ class SpeciesPrice:
 class OptimumSpan:
     """The optimum over ± 2 sd of the ``parameters``, which otherwise stand at their values.
 
-    ``feasible`` is False where at some of these values nothing is: the ends are then those of
-    the others.
+    The ends are the largest and the least found at so many ``points``, their values among them;
+    at ``infeasible`` of these nothing is feasible.
     """
 
     low: float
     high: float
     parameters: tuple[str, ...]
-    feasible: bool = True
+    points: int
+    infeasible: int = 0
 
 
 @record

@@ -10,7 +10,7 @@ import pytest
 import fluxnet as fx
 from fluxnet.network.variant import apply_variant
 from fluxnet.reading.model import read_model_text
-from fluxnet.studies.solution import FluxSolution, OptimumSpan
+from fluxnet.studies.solution import FluxSolution
 from fluxnet.studies.solve import solve_network
 
 # One glucose makes 2 ATP, and one waste spends n m of them; by hand: 2 / (n m) of waste at most.
@@ -44,7 +44,8 @@ def test_the_optimum_is_given_over_two_sds_of_each_parameter_within_its_range() 
     assert run.span.low == pytest.approx(2 / (2.5 * 1.2))
     assert run.span.high == pytest.approx(2 / (1.5 * 0.8))
     assert run.span.parameters == ("n", "m")
-    assert "Over ± 2 sd of n and m it lies between 0.6667 and 1.667 mmol/g/h." in run.words
+    assert "Over ± 2 sd of n and m it lies between 0.6667 and 1.667 mmol/g/h (" in run.words
+    assert f"(searched at {run.span.points} points)." in run.words
 
 
 def test_a_least_value_has_its_span_as_well() -> None:
@@ -80,16 +81,20 @@ def test_a_model_without_uncertain_numbers_has_no_span() -> None:
 def test_an_optimum_that_the_parameters_do_not_touch_stays_the_same() -> None:
     run = best(MODEL, "ethanol")
 
-    assert run.span == OptimumSpan(2.0, 2.0, ("n", "m"))
-    assert "Within ± 2 sd of n and m it stays the same." in run.words
+    assert run.span is not None
+    assert (run.span.low, run.span.high) == (2.0, 2.0)
+    assert "Within ± 2 sd of n and m it stays the same (searched at 8 points)." in run.words
 
 
 def test_values_at_which_nothing_is_feasible_are_told() -> None:
     run = best(MODEL + "limit waste >= 0.9\n", "waste")
 
     assert run.span is not None
-    assert not run.span.feasible
-    assert "at some of these values nothing is feasible" in run.words
+    assert run.span.infeasible > 0
+    assert f"points; {run.span.infeasible} of them infeasible)" in run.words
+    # 2 / (n m) falls to 0.9, where the feasible ends.
+    assert run.span.low == pytest.approx(0.9, rel=2e-3)
+    assert run.span.low >= 0.9
 
 
 def test_a_corner_without_an_end_is_told() -> None:
@@ -181,3 +186,64 @@ def test_a_variant_moves_the_span() -> None:
 
     assert run.span is not None
     assert run.span.low == pytest.approx(2 / (2.25 * 1.2))
+
+
+RATES = """run,species,direction,rate,sd,unit
+1,glucose,in,3,0.1,mmol/g/h
+1,CO2,out,6,0.2,mmol/g/h
+1,oxygen,in,5,0.2,mmol/g/h
+1,ethanol,out,1,0.05,mmol/g/h
+1,mu,,0.2,0.01,1/h
+"""
+
+
+def respiring(more: str = "") -> str:
+    from fluxnet.cli.new import MODEL as RESPIRING
+
+    return RESPIRING + more
+
+
+def test_an_optimum_that_falls_to_nothing_inside_the_box_is_found() -> None:
+    # With PO 1.42 and K_X 2.07 hardly any ATP is left; no corner says so.
+    run = best(respiring(), "ATP", RATES)
+
+    assert run.span is not None
+    assert 0 <= run.span.low < 3e-4
+    assert run.span.high == pytest.approx(10.854, rel=1e-4)
+    assert 0 < run.span.infeasible < run.span.points < 300
+
+
+def test_a_ridge_across_the_box_is_climbed() -> None:
+    run = best(respiring("limit CO2 / oxygen = 1.05 ± 0.03\nlimit glucose <= 10\n"), "mu")
+
+    assert run.span is not None
+    assert run.span.high == pytest.approx(1.0674739, rel=1e-6)
+    assert run.span.infeasible == 0
+
+
+def test_where_each_parameter_acts_one_way_the_corners_are_enough() -> None:
+    run = best(MODEL, "waste")
+
+    assert run.span is not None
+    # the values, four corners, four middles of edges and two on the way to the centre
+    assert run.span.points <= 1 + 4 + 4 + 2
+
+
+@pytest.mark.parametrize("seed", range(3))
+def test_no_point_of_the_box_lies_outside_the_ends(seed: int) -> None:
+    import random
+
+    dice = random.Random(seed)
+    run = best(respiring(), "ATP", RATES)
+    assert run.span is not None
+    for _ in range(15):
+        po, growth = dice.uniform(1.0, 1.8), dice.uniform(1.2, 2.4)
+        text = respiring("variant there\n    set PO = {po:.6f}\n    set K_X = {growth:.6f}\n")
+        network = read_model_text(text.format(po=po, growth=growth)).network
+        assert network is not None
+        changed, told = apply_variant(network, "there")
+        assert changed is not None, told
+        table = fx.read_rates_text(RATES, fx.read_model_text(respiring()))
+        (other,) = solve_network(changed, table, maximise="ATP").runs
+        if other.optimum is not None:
+            assert run.span.low - 2e-3 <= other.optimum <= run.span.high * (1 + 1e-9)
