@@ -5,17 +5,25 @@ from __future__ import annotations
 import argparse
 import sys
 from dataclasses import replace
+from typing import TYPE_CHECKING
 
 from fluxnet.cli.inputs import load_model, load_rates, without_limits
+from fluxnet.cli.main import Exit
 from fluxnet.cli.options import add_model_argument, add_output_options, add_table_options
 from fluxnet.cli.output import give_faults, give_findings, give_screen, refuse_outputs
 from fluxnet.cli.progress import progress_on
 from fluxnet.ground.diagnostic import in_order
 from fluxnet.ground.errors import InputError, MisuseError
 from fluxnet.ground.names import Name
+from fluxnet.ground.progress import Progress
+from fluxnet.network.model import Network
 from fluxnet.presenting.records import Document
 from fluxnet.presenting.solve_record import solve_record
 from fluxnet.presenting.solve_screen import solve_screen
+from fluxnet.studies.solution import FluxSolution, Solution
+
+if TYPE_CHECKING:
+    from fluxnet.rates.measured import RatesTable
 
 __all__ = ["EXAMPLES", "add_arguments", "run"]
 
@@ -83,7 +91,6 @@ def per_cent(text: str) -> float:
 def run(arguments: argparse.Namespace) -> int:
     """Solve each run that was asked for, and show it."""
     from fluxnet.rates.aligning import align_table
-    from fluxnet.studies.solve import solve_network
 
     if arguments.model == "-" and arguments.rates == "-":
         raise MisuseError("standard input can be the model or the rates, not both")
@@ -110,18 +117,7 @@ def run(arguments: argparse.Namespace) -> int:
     network = without_limits(model.network, arguments.unmeasured)
     try:
         with progress_on(sys.stderr) as progress:
-            solution = solve_network(
-                network,
-                table,
-                maximise=arguments.maximise,
-                minimise=arguments.minimise,
-                within=arguments.within,
-                fraction=1.0 if arguments.fraction is None else arguments.fraction,
-                suspects=arguments.suspects,
-                plan=arguments.plan,
-                plan_error=arguments.plan_error / 100,
-                progress=progress,
-            )
+            solution = _solve(arguments, network, table, progress)
     except InputError as fault:
         texts = {source.file: source for source in model.sources}
         told = tuple(
@@ -132,13 +128,49 @@ def run(arguments: argparse.Namespace) -> int:
         )
         return give_faults(arguments, Document.SOLVE, inputs, (*diagnostics, *told))
     give_findings(arguments, [d for d in in_order(diagnostics) if d.accepted is None])
-    return give_screen(
-        arguments, Document.SOLVE, inputs, diagnostics, solve_record(solution),
+    total = 1 if table is None else len(table.runs)
+    done = len(solution.runs)
+    body = solve_record(solution)
+    if done < total:
+        body["undone"] = total - done
+    status = give_screen(
+        arguments, Document.SOLVE, inputs, diagnostics, body,
         solve_screen(
             solution, with_bill=arguments.proof, everything=arguments.all, shares=arguments.shares
         ),
         sound=solution.is_sound,
     )  # fmt: skip
+    if done < total:
+        print(f"interrupted: {done:,} of {total:,} runs are solved", file=sys.stderr)
+        return Exit.INTERRUPTED
+    return status
+
+
+def _solve(
+    arguments: argparse.Namespace, network: Network, table: RatesTable | None, progress: Progress
+) -> Solution:
+    """The answers of all runs, or of those that are done when the user stops."""
+    from fluxnet.studies.solve import solve_runs
+
+    solved: list[FluxSolution] = []
+    try:
+        for run in solve_runs(
+            network,
+            table,
+            maximise=arguments.maximise,
+            minimise=arguments.minimise,
+            within=arguments.within,
+            fraction=1.0 if arguments.fraction is None else arguments.fraction,
+            suspects=arguments.suspects,
+            plan=arguments.plan,
+            plan_error=arguments.plan_error / 100,
+            progress=progress,
+        ):
+            solved.append(run)
+    except KeyboardInterrupt:
+        if not solved:
+            raise
+    return Solution(network, tuple(solved))
 
 
 def _refuse_idle(arguments: argparse.Namespace) -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import replace
 from math import ceil, log10
 from typing import TYPE_CHECKING
@@ -12,6 +13,7 @@ from fluxnet.presenting.numbers import format_number, format_p
 from fluxnet.presenting.optimum_tables import doubt_blocks, proof_blocks
 from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence, blocks_of_run
 from fluxnet.presenting.share_blocks import share_blocks
+from fluxnet.presenting.solve_many import MOST_IN_FULL, blocks_of_many
 from fluxnet.presenting.solve_tables import solve_tables
 from fluxnet.studies.solution import FluxSolution, FluxTest, Solution, SolveStatus
 from fluxnet.studies.telling import agrees_exactly
@@ -36,6 +38,9 @@ def solve_screen(
 ) -> tuple[Block, ...]:
     """Everything that is shown of a solve: an overview of several runs, then each.
 
+    Of many runs the overview alone, of very many how they spread and the worst; the tables of
+    all are there as data.
+
     Parameters
     ----------
     with_bill
@@ -45,10 +50,29 @@ def solve_screen(
     shares
         Show where the error of every flux comes from.
     """
+    if len(solution.runs) > MOST_IN_FULL:
+        data = replace(_overview(solution), title="")
+        columns = tuple(replace(column, title="") for column in data.columns)
+
+        def each() -> tuple[Table, ...]:
+            return (replace(data, columns=columns), *_all_tables(solution.runs))
+
+        return (*blocks_of_many(solution.runs), Data(each))
     blocks: list[Block] = [_overview(solution)]
     for run in solution.runs:
         blocks += blocks_of_run(_run_blocks(run, with_bill, everything, shares), run.run)
     return (*blocks, *heat_caution(solution.runs))
+
+
+def _all_tables(runs: Sequence[FluxSolution]) -> tuple[Table, ...]:
+    """The tables of all runs, as data."""
+    return tuple(
+        replace(table, run=run.run)
+        for run in runs
+        for block in _run_blocks(run, with_bill=False, everything=False, shares=False)
+        for table in (block.make() if isinstance(block, Data) else (block,))
+        if isinstance(table, Table)
+    )
 
 
 def _overview(solution: Solution) -> Table:

@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Iterator, Sequence
+from typing import TypedDict, Unpack
 
 import numpy as np
 
@@ -13,13 +14,52 @@ from fluxnet.rates.measured import RatesTable, Run
 from fluxnet.solving.suspects import TooFarApartError
 from fluxnet.studies.solution import FluxSolution, Solution
 
-__all__ = ["solve_network"]
+__all__ = ["SolveOptions", "solve_network", "solve_runs"]
+
+
+class SolveOptions(TypedDict, total=False):
+    """The options of :func:`solve_runs`."""
+
+    maximise: str | None
+    minimise: str | None
+    within: float
+    fraction: float
+    suspects: bool
+    plan: str | None
+    plan_error: float
+    progress: Progress
+
 
 # More sds than this are no bound beside the rates themselves.
 _MOST = 1e6
 
 
 def solve_network(
+    network: Network, table: RatesTable | None = None, **options: Unpack[SolveOptions]
+) -> Solution:
+    """The fluxes of all runs: :func:`solve_runs`, which tells the options, in one answer.
+
+    Examples
+    --------
+    >>> from fluxnet.reading.model import read_model_text
+    >>> network = read_model_text('''
+    ... substrate glucose
+    ... product   lactate
+    ... carrier   ATP  carries energy
+    ... compartment a
+    ...     lump   : glucose -> 2 lactate + 2 ATP
+    ... compartment b
+    ...     upkeep : ATP -> nothing
+    ... limit glucose <= 10
+    ... ''').network
+    >>> (run,) = solve_network(network, maximise="lactate").runs
+    >>> run.status.value, run.optimum, [limit.name for limit in run.limits]
+    ('optimal', 20.0, ['limit glucose <= 10'])
+    """
+    return Solution(network, tuple(solve_runs(network, table, **options)))
+
+
+def solve_runs(
     network: Network,
     table: RatesTable | None = None,
     *,
@@ -31,8 +71,8 @@ def solve_network(
     plan: str | None = None,
     plan_error: float = 0.05,
     progress: Progress = silent,
-) -> Solution:
-    """Solve the fluxes of each run.
+) -> Iterator[FluxSolution]:
+    """Solve the fluxes of each run, one at a time: whoever stops keeps those that are done.
 
     Without an aim they are those nearest to the measured rates (:func:`fit_run`); with one,
     measured rates are held within ``within`` sds (:func:`optimise`).
@@ -64,23 +104,6 @@ def solve_network(
         Where both aims are given, an aim names nothing, or a number makes no sense.
     InputError
         Where numbers of the model or a run lie too far apart to be computed with.
-
-    Examples
-    --------
-    >>> from fluxnet.reading.model import read_model_text
-    >>> network = read_model_text('''
-    ... substrate glucose
-    ... product   lactate
-    ... carrier   ATP  carries energy
-    ... compartment a
-    ...     lump   : glucose -> 2 lactate + 2 ATP
-    ... compartment b
-    ...     upkeep : ATP -> nothing
-    ... limit glucose <= 10
-    ... ''').network
-    >>> (run,) = solve_network(network, maximise="lactate").runs
-    >>> run.status.value, run.optimum, [limit.name for limit in run.limits]
-    ('optimal', 20.0, ['limit glucose <= 10'])
     """
     if maximise is not None and minimise is not None:
         raise MisuseError("one aim at a time: maximise or minimise")
@@ -96,6 +119,8 @@ def solve_network(
         raise MisuseError("the error of a new measurement lies between 0 and 100 %")
     runs: tuple[Run | None, ...] = (None,) if table is None else table.runs
     wanted = minimise if maximise is None else maximise
+    # of several runs the runs are counted, of one what it does
+    progress, told = (silent, progress) if len(runs) > 1 else (progress, silent)
     # Each of the two ways imports what it needs when it is gone.
     if wanted is None:
         from fluxnet.studies.fitting import fit_run
@@ -112,7 +137,8 @@ def solve_network(
                 progress=progress,
             )  # fmt: skip
 
-        return Solution(network, tuple(_with_cause(network, fit_one, run) for run in runs))
+        yield from _each(network, fit_one, runs, told)
+        return
     from fluxnet.studies.aims import Sense, read_aim
     from fluxnet.studies.optimum import optimise
 
@@ -123,7 +149,18 @@ def solve_network(
             network, run, aim, within=within, fraction=fraction, progress=progress
         )
 
-    return Solution(network, tuple(_with_cause(network, best_of, run) for run in runs))
+    yield from _each(network, best_of, runs, told)
+
+
+def _each(
+    network: Network,
+    solve: Callable[[Network, Run | None], FluxSolution],
+    runs: Sequence[Run | None],
+    progress: Progress,
+) -> Iterator[FluxSolution]:
+    for done, run in enumerate(runs, 1):
+        yield _with_cause(network, solve, run)
+        progress("solving runs", done, len(runs))
 
 
 def _with_cause(
