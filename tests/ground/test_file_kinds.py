@@ -70,5 +70,5 @@ def test_no_model_that_comes_with_the_tool_is_taken_for_a_table(path: Path):
 
 @pytest.mark.parametrize("path", TABLES, ids=lambda p: p.name)
 def test_no_table_that_comes_with_the_tool_is_taken_for_a_model(path: Path):
-    lines = path.read_text(encoding="utf-8").splitlines()
+    lines = path.read_text(encoding="utf-8", errors="replace").splitlines()  # exports are Latin-1
     assert find_model_instead(lines, path.name) is None
