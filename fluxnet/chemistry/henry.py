@@ -69,4 +69,5 @@ def carbonate_factor(ph: float) -> float:
     >>> round(carbonate_factor(6.35), 3), round(carbonate_factor(7.0), 2)
     (2.0, 5.47)
     """
-    return 1.0 + 10.0 ** (ph - _PKA1)
+    held: float = 10.0 ** (ph - _PKA1)
+    return 1.0 + held

@@ -9,7 +9,9 @@ from enum import Enum
 from fluxnet.ground.record import record
 from fluxnet.ground.table import Column, Table
 
-__all__ = ["Block", "Data", "Drawing", "Heading", "Mood", "Sentence", "blocks_of_run", "screen_tables"]
+__all__ = [
+    "Block", "Data", "Drawing", "Heading", "Mood", "Sentence", "blocks_of_run", "screen_tables",
+]
 
 
 class Mood(Enum):

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
+from fractions import Fraction
 
 import numpy as np
 from numpy.typing import NDArray
@@ -156,7 +157,9 @@ def _gas_quotient(network: Network) -> Quantity | None:
     by_formula = {
         tuple(sorted(s.formula.counts)): s.name for s in network.boundary if s.formula is not None
     }
-    oxygen, dioxide = by_formula.get((("O", 2),)), by_formula.get((("C", 1), ("O", 2)))
+    one, two = Fraction(1), Fraction(2)
+    oxygen = by_formula.get((("O", two),))
+    dioxide = by_formula.get((("C", one), ("O", two)))
     if oxygen is None or dioxide is None:
         return None
     return Quantity(

@@ -187,7 +187,8 @@ def test_a_flux_without_an_end_is_not_determined_at_an_optimum() -> None:
     # there and back go round beside free, so that all three can be of any size
     text = TEXT.replace("inside pyruvate", "inside pyruvate, one, other").replace(
         "compartment m",
-        "    there : one -> other\n    back : other -> one\n    free : one <-> other\ncompartment m",
+        "    there : one -> other\n    back : other -> one\n    free : one <-> other\n"
+        "compartment m",
     )
     circled = read_model_text(text).network
     assert circled is not None
