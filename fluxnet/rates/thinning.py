@@ -80,10 +80,11 @@ def bin_times(time: Array, width: float) -> BinnedTimes:
 
 def sum_values(bins: BinnedTimes, value: Array) -> BinSums:
     """Add up the values of one chunk at times that are in bins already."""
-    steps = np.zeros_like(value)
+    steps = np.empty_like(value)
     np.subtract(value[1:], value[:-1], out=steps[1:])
     steps[bins.starts] = 0.0
-    parts = (value, value * value, bins.time * value, steps * steps)
+    np.square(steps, out=steps)
+    parts = (value, value * value, bins.time * value, steps)
     sums = [np.add.reduceat(p, bins.starts) if value.size else np.zeros(0) for p in parts]
     return BinSums(bins.width, bins.index, np.array([*bins.sums, *sums]), bins.sums[0] - 1)
 
@@ -95,6 +96,16 @@ def sum_bins(time: Array, value: Array, width: float) -> BinSums:
 
 def add_sums(first: BinSums, second: BinSums) -> BinSums:
     """The sums of two chunks of one record; a bin that both hold becomes one."""
+    if first.index.size and second.index.size and first.index[-1] <= second.index[0]:
+        # one after the other: at most one bin is shared
+        shared = int(first.index[-1] == second.index[0])
+        sums = np.concatenate([first.sums, second.sums[:, shared:]], axis=1)
+        pairs = np.concatenate([first.pairs, second.pairs[shared:]])
+        if shared:
+            sums[:, first.index.size - 1] += second.sums[:, 0]
+            pairs[first.index.size - 1] += second.pairs[0]
+        index = np.concatenate([first.index, second.index[shared:]])
+        return BinSums(first.width, index, sums, pairs)
     index = np.union1d(first.index, second.index)
     sums, pairs = np.zeros((7, index.size)), np.zeros(index.size)
     for part in (first, second):

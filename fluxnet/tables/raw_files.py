@@ -21,7 +21,7 @@ __all__ = ["LONG_BYTES", "RawFiles", "folders_of", "read_raw_file", "read_raw_pa
 LONG_BYTES = 2_000_000
 """Texts from this size on are read in chunks; of them only the beginning is a grid."""
 
-_HEAD = 40_000
+_HEAD = 24_000
 _SUFFIXES = frozenset({
     ".csv", ".tsv", ".txt", ".tab", ".asc", ".dat", ".prn", ".xlsx", ".xlsm", ".xls", ".ods",
 })  # fmt: skip
