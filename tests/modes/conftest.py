@@ -2,4 +2,4 @@
 
 from importlib.util import find_spec
 
-collect_ignore = [] if find_spec("ppl") else ["test_against_polyhedra.py"]
+collect_ignore = [] if find_spec("ppl") else ["test_against_polyhedra.py", "polyhedra.py"]
