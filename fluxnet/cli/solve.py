@@ -5,7 +5,7 @@ from __future__ import annotations
 import argparse
 import sys
 from dataclasses import replace
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Any
 
 from fluxnet.cli.inputs import load_model, load_rates, without_limits
 from fluxnet.cli.main import Exit
@@ -18,7 +18,6 @@ from fluxnet.ground.names import Name
 from fluxnet.ground.progress import Progress
 from fluxnet.network.model import Network
 from fluxnet.presenting.records import Document
-from fluxnet.presenting.solve_record import solve_record
 from fluxnet.presenting.solve_screen import solve_screen
 from fluxnet.studies.solution import FluxSolution, Solution
 
@@ -130,9 +129,13 @@ def run(arguments: argparse.Namespace) -> int:
     give_findings(arguments, [d for d in in_order(diagnostics) if d.accepted is None])
     total = 1 if table is None else len(table.runs)
     done = len(solution.runs)
-    body = solve_record(solution)
-    if done < total:
-        body["undone"] = total - done
+    body: dict[str, Any] = {}
+    if arguments.json:
+        from fluxnet.presenting.solve_record import solve_record
+
+        body = solve_record(solution)
+        if done < total:
+            body["undone"] = total - done
     status = give_screen(
         arguments, Document.SOLVE, inputs, diagnostics, body,
         solve_screen(

@@ -10,10 +10,8 @@ from fluxnet.presenting.numbers import format_p
 from fluxnet.presenting.screen import Block, Mood, Sentence
 from fluxnet.studies.solution import FluxEstimate, FluxKind, FluxSolution, SolveStatus
 
-__all__ = ["MOST_IN_FULL", "blocks_of_many"]
+__all__ = ["blocks_of_many"]
 
-MOST_IN_FULL = 12
-"""With more runs than this only an overview is shown."""
 _MOST_IN_OVERVIEW = 30
 """With more runs than this the overview is of the worst."""
 _WORST = 20

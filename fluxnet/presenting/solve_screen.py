@@ -13,7 +13,6 @@ from fluxnet.presenting.numbers import format_number, format_p
 from fluxnet.presenting.optimum_tables import doubt_blocks, proof_blocks
 from fluxnet.presenting.screen import Block, Data, Heading, Mood, Sentence, blocks_of_run
 from fluxnet.presenting.share_blocks import share_blocks
-from fluxnet.presenting.solve_many import MOST_IN_FULL, blocks_of_many
 from fluxnet.presenting.solve_tables import solve_tables
 from fluxnet.studies.solution import FluxSolution, FluxTest, Solution, SolveStatus
 from fluxnet.studies.telling import agrees_exactly
@@ -31,6 +30,8 @@ _MOODS = {
     SolveStatus.INFEASIBLE: Mood.BAD,
     SolveStatus.UNBOUNDED: Mood.BAD,
 }
+_MOST_IN_FULL = 12
+"""With more runs than this only an overview is shown."""
 
 
 def solve_screen(
@@ -50,7 +51,9 @@ def solve_screen(
     shares
         Show where the error of every flux comes from.
     """
-    if len(solution.runs) > MOST_IN_FULL:
+    if len(solution.runs) > _MOST_IN_FULL:
+        from fluxnet.presenting.solve_many import blocks_of_many
+
         data = replace(_overview(solution), title="")
         columns = tuple(replace(column, title="") for column in data.columns)
 
