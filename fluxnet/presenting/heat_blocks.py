@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections.abc import Sequence
 
 from fluxnet.ground.table import Align, Cell, Column, Table
+from fluxnet.presenting.caution import CAUTION
 from fluxnet.presenting.numbers import format_number, format_range
 from fluxnet.presenting.screen import Block, Mood, Sentence
 from fluxnet.studies.dissipation import Growth
@@ -13,11 +14,6 @@ from fluxnet.studies.heat_run import HeatRange, RunHeat
 from fluxnet.studies.solution import FluxSolution, SolveStatus
 
 __all__ = ["heat_blocks", "heat_caution"]
-
-_CAUTION = (
-    "Heat is an estimate for planning: cooling, oxygen supply and off-gas are sized with the "
-    "site's own safety review, local codes and licensed engineers."
-)
 
 # A heat whose range is no wider than this part of it is as good as known.
 _NEARLY = 0.1
@@ -37,7 +33,7 @@ def heat_blocks(run: FluxSolution) -> list[Block]:
 def heat_caution(runs: Sequence[FluxSolution]) -> list[Block]:
     """What heats are for, once, where any is shown."""
     shown = any(run.heat is not None and run.plan is None for run in runs)
-    return [Sentence(_CAUTION, Mood.QUIET)] if shown else []
+    return [Sentence(CAUTION, Mood.QUIET)] if shown else []
 
 
 def _table(heat: RunHeat, title: str) -> Table:
