@@ -89,7 +89,12 @@ def run(arguments: argparse.Namespace) -> int:
 def _files(example: str, folder: Path) -> dict[Path, Path]:
     """Where each file of an example goes, and where it lies."""
     top = resource_folder("examples") / example
-    return {folder / p.relative_to(top): p for p in sorted(top.rglob("*")) if p.is_file()}
+    # installing compiles the scripts of a scenario: that is no part of it
+    return {
+        folder / p.relative_to(top): p
+        for p in sorted(top.rglob("*"))
+        if p.is_file() and p.suffix != ".pyc"
+    }
 
 
 def _is_path(path: Path) -> bool:
